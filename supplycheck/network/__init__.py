@@ -1,0 +1,1 @@
+"""The network: arrays, exact reduction, Newton, demand and operating solutions, diagnosis."""

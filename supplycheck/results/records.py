@@ -1,0 +1,281 @@
+"""The `Result` and its parts, all SI. Report writers read these and compute nothing.
+
+Every number that is printed anywhere is a field here, so that screen, PDF, CSV and ``result.json``
+show the same value after display rounding.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from types import MappingProxyType
+from typing import Literal
+
+from supplycheck.findings import Finding
+from supplycheck.model import Project
+from supplycheck.model.system import Fitting
+
+Verdict = Literal["adequate", "not adequate", "undetermined"]
+
+
+@dataclass(frozen=True, slots=True)
+class NodeRow:
+    """One node in the demand solution; pressures [Pa], flows [m³/s]."""
+
+    tag: str
+    kind: str
+    x: float | None
+    y: float | None
+    elevation: float
+    pressure: float
+    discharge: float
+    k_factor: float | None
+    required_discharge: float | None
+    required_pressure: float | None
+    required_by: str
+    area: float | None
+    branch_line: str | None
+    sprinkler: str | None
+    in_design_area: bool
+    velocity_pressure: float | None
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class PipeRow:
+    """One pipe in the demand solution, in the direction of flow (``flow`` ≥ 0).
+
+    Losses [Pa] are signed from ``start`` to ``end``:
+    pressure(start) − pressure(end) = friction + elevation + device loss.
+    """
+
+    tag: str
+    start: str
+    end: str
+    role: str
+    flow: float
+    flow_added: float
+    velocity: float
+    nominal: str
+    material: str
+    bore: float
+    c_factor: float | None
+    roughness: float | None
+    friction_factor: float | None
+    reynolds: float | None
+    length: float
+    equivalent_length: float
+    total_length: float
+    fittings: tuple[Fitting, ...]
+    devices: tuple[str, ...]
+    friction_gradient: float
+    friction_loss: float
+    elevation_loss: float
+    device_loss: float
+    second_law_friction_loss: float | None
+    start_pressure: float
+    end_pressure: float
+    valve: str
+    fittings_text: str = ""
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class PathStep:
+    """One segment of the walk from the remote head to the supply.
+
+    ``pressure_start`` and ``pressure_end`` [Pa] are at the ends of the segment in walking order (from
+    head towards supply); losses are positive where the pressure needed rises.
+    """
+
+    start: str
+    end: str
+    pipe: str
+    nominal: str
+    bore: float
+    c_factor: float | None
+    friction_factor: float | None
+    flow_added: float
+    flow: float
+    length: float
+    equivalent_length: float
+    total_length: float
+    fittings_text: str
+    friction_gradient: float
+    pressure_start: float
+    friction: float
+    fitting_friction: float
+    elevation: float
+    device: float
+    pressure_end: float
+    k_at_start: float | None
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class HandStep:
+    """One line of the hand-check: a formula with its numbers already filled in and its result."""
+
+    step: str
+    formula: str
+    value: float
+    kind: str
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class CurvePoints:
+    """A line for the supply graph: flows [m³/s] and pressures [Pa] of equal length."""
+
+    name: str
+    style: Literal["measured", "adjusted", "demand", "combined", "tank", "pump"]
+    flows: tuple[float, ...]
+    pressures: tuple[float, ...]
+    extrapolated_from: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class GraphPoint:
+    """A marked point of the supply graph."""
+
+    name: str
+    style: Literal["test", "demand", "demand with hose", "available", "operating"]
+    flow: float
+    pressure: float
+
+
+@dataclass(frozen=True, slots=True)
+class Placement:
+    """One placement of the design area that was tried, and what it needs.
+
+    ``required_pressure`` [Pa] and ``flow`` [m³/s] are at the point of comparison; ``margin`` [Pa] is
+    what is left against the supply; ``x``/``y`` the centre of the heads.
+    """
+
+    label: str
+    heads: tuple[str, ...]
+    required_pressure: float
+    flow: float
+    margin: float
+    area: float
+    x: float | None
+    y: float | None
+
+
+@dataclass(frozen=True, slots=True)
+class DesignAreaRecord:
+    """How the design area was found. Steps are (text, value, kind) and print in order."""
+
+    mode: Literal["given", "search"]
+    steps: tuple[HandStep, ...]
+    placements: tuple[Placement, ...]
+    governing: Placement
+    runner_up: Placement | None
+    most_favourable: Placement | None
+    tried: int
+    statement: str
+
+
+@dataclass(frozen=True, slots=True)
+class DemandRecord:
+    """The demand at the point of comparison."""
+
+    node: str
+    flow: float
+    pressure: float
+    sprinkler_flow: float
+    hose_flow: float
+    heads: int
+    governing_head: str
+    governing_by: str
+
+
+@dataclass(frozen=True, slots=True)
+class SupplyRecord:
+    """The supply at the point of comparison; ``available_pressure`` at the total demand flow.
+
+    ``unadjusted_pressure`` is the same before the adjustments of the project. ``available_flow`` is the
+    flow available at the demand pressure (``None`` where the curve never falls to it);
+    ``flow_at_20_psi`` is read at the test node.
+    """
+
+    static: float
+    residual: float | None
+    test_flow: float | None
+    available_pressure: float
+    available_flow: float | None
+    unadjusted_pressure: float
+    flow_at_20_psi: float | None
+    static_at_comparison: float
+    tested_range_ratio: float | None
+    steps: tuple[HandStep, ...]
+    statement: str
+
+
+@dataclass(frozen=True, slots=True)
+class MarginRecord:
+    """Margin before the rule (``pressure``), what the rule asks (``required``), what is left."""
+
+    pressure: float
+    required: float | None
+    after_rule: float | None
+    rule: str
+    steps: tuple[HandStep, ...]
+    source: str
+
+
+@dataclass(frozen=True, slots=True)
+class BalanceRecord:
+    """Recomputed from the reported rows: largest imbalances, and the flow they are measured against."""
+
+    largest_flow_imbalance: float
+    largest_pressure_imbalance: float
+    total_flow: float
+    flow_node: str
+    pressure_pipe: str
+    iterations: int
+
+
+@dataclass(frozen=True, slots=True)
+class ScenarioRow:
+    """What really flows in one scenario, with the actual supply."""
+
+    name: str
+    total_flow: float
+    supply_pressure: float
+    sprinkler_flow: float
+    heads_open: int
+    lowest_head: str
+    lowest_pressure: float
+    lowest_ratio: float | None
+    delivered_density: float | None
+    over_discharge: float | None
+    minutes_of_storage: float | None
+    note: str
+    head_flows: tuple[tuple[str, float, float], ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Result:
+    """The complete answer for one project."""
+
+    project: Project
+    version: str
+    verdict: Verdict
+    verdict_text: str
+    governs: str
+    demand: DemandRecord
+    supply: SupplyRecord
+    margin: MarginRecord
+    balance: BalanceRecord
+    design_area: DesignAreaRecord
+    nodes: tuple[NodeRow, ...]
+    pipes: tuple[PipeRow, ...]
+    path: tuple[PathStep, ...]
+    hand_check: tuple[HandStep, ...]
+    curves: tuple[CurvePoints, ...]
+    points: tuple[GraphPoint, ...]
+    scenarios: tuple[ScenarioRow, ...]
+    findings: tuple[Finding, ...]
+    open_questions: tuple[str, ...]
+    library_versions: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
