@@ -1,0 +1,285 @@
+"""Demand and supply side by side at one point, and the margin before and after the rule.
+
+The network is solved from the source, so the losses between source and point of comparison are known at
+the demand flow. What is left over at the source is left over at the point as well:
+
+    available there = demand there + (curve at the demand flow − demand at the source).
+
+The demand flow is all that the supply gives: sprinklers, hose inside and outside, and any other fixed
+outflow, each counted once, at the node where it is drawn.
+"""
+
+from __future__ import annotations
+
+import datetime as dt
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from supplycheck.errors import DomainError
+from supplycheck.model import Project
+from supplycheck.network.records import Solution
+from supplycheck.supply.hose import hose_parts
+from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margin, rule_words
+from supplycheck.supply.narration import supply_steps
+from supplycheck.supply.route import CarriedCurve, no_flow_pressure, solved_route
+from supplycheck.supply.sources import NodeSupply
+from supplycheck.supply.words import Step, Words, escaped
+
+
+@dataclass(frozen=True, slots=True)
+class SourceShare:
+    """What one source gives in the demand solution, and what it could give; pressures [Pa], flow [m³/s].
+
+    ``available`` is the compared curve at ``flow``, ``unadjusted`` the lowest measured curve there.
+    ``governing`` names the test or tank; ``test_static``, ``test_residual`` and ``test_flow`` are as read
+    (the reading at the largest flow of that test), ``None`` for a tank. ``required`` is what the margin
+    rule asks of this source.
+    """
+
+    node: str
+    flow: float
+    demand_pressure: float
+    available: float
+    unadjusted: float
+    governing: str
+    test_static: float | None
+    test_residual: float | None
+    test_flow: float | None
+    tested_flow: float
+    extrapolated: bool
+    tested_ratio: float | None
+    required: float | None
+
+
+@dataclass(frozen=True, slots=True)
+class Comparison:
+    """Demand against supply at ``node``; pressures [Pa], flows [m³/s].
+
+    ``demand_flow`` is all that the sources give: ``sprinkler_flow`` + ``hose_inside`` + ``hose_outside`` +
+    ``other_flow``. ``carried_flow`` is the part that passes ``node`` or is drawn at it. ``available_flow``
+    is the flow at which the demand pressure is still there (``None``: at every flow). ``margin`` is the
+    available less the demand pressure; ``required`` what the rule asks (``None``: no rule given) and
+    ``after_rule`` what is left. ``static`` and ``highest_static`` are the no-flow pressures at ``node`` on
+    the compared curve and on the highest measured one. ``principal`` is the source that gives most.
+    """
+
+    node: str
+    demand_flow: float
+    carried_flow: float
+    sprinkler_flow: float
+    hose_inside: float
+    hose_outside: float
+    other_flow: float
+    demand_pressure: float
+    available_pressure: float
+    unadjusted_pressure: float
+    available_flow: float | None
+    static: float
+    highest_static: float
+    margin: float
+    required: float | None
+    after_rule: float | None
+    rule: Words
+    rule_source: str
+    principal: str
+    sources: tuple[SourceShare, ...]
+    carried: CarriedCurve
+    carried_unadjusted: CarriedCurve
+    supply_steps: tuple[Step, ...]
+    margin_steps: tuple[Step, ...]
+    flow_at_floor: float | None
+    floor_pressure: float
+    notes: tuple[Words, ...]
+
+    @property
+    def hose_flow(self) -> float:
+        """Hose inside and outside [m³/s]."""
+        return self.hose_inside + self.hose_outside
+
+    @property
+    def main_source(self) -> SourceShare:
+        """The share of the principal source."""
+        return next(share for share in self.sources if share.node == self.principal)
+
+
+FLOOR = 20.0 * 0.45359237 * 9.80665 / 0.0254**2
+"""Pressure [Pa] at which the flow of a main is rated, 20 psi (NFPA 291)."""
+
+
+def reference_date(project: Project) -> dt.date:
+    """Return the day against which a test's age counts: submittal, or the date of the project."""
+    return project.supply.submittal_date or project.facts.date
+
+
+def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) -> Comparison:
+    """Return demand against supply at ``project.supply.compare_at``.
+
+    ``solution`` is the demand solution made with these ``curves``. With one source the margin is the
+    curve at the demand flow less the demand at the source; with several it is ``solution.shift``, by how
+    much all curves can be lowered together, and the source that gives most stands for the rest.
+
+    Raises :class:`DomainError` where the solution holds no demand (no shift, no flow), where the point of
+    comparison does not exist or no open pipe leads to it, and for a margin rule that cannot be applied.
+    """
+    by_node = {one.node: one for one in curves}
+    if len(solution.source_tags) == 0 or not math.isfinite(solution.shift):
+        raise DomainError("only a demand solution can be compared with a supply")
+    shares = tuple(
+        _share(project, by_node[tag], float(flow), float(pressure))
+        for tag, flow, pressure in zip(
+            solution.source_tags, solution.source_flow, solution.source_pressure, strict=True
+        )
+    )
+    main = max(shares, key=lambda share: share.flow)
+    supply = by_node[main.node]
+    margin = main.available - main.demand_pressure if len(shares) == 1 else solution.shift
+    at = project.supply.compare_at
+    if at not in solution.node_tags:
+        raise DomainError(f"the point of comparison {at} is not a node of the network")
+    demand = float(solution.pressure[solution.node(at)])
+    exponent = project.law.flow_exponent
+    path = solved_route(project.system, solution, main.node, at, main.flow, exponent)
+    carried, before = CarriedCurve(supply.curve, path), CarriedCurve(supply.unadjusted, path)
+    rule = project.supply.margin
+    required = None if rule is None else max(share.required or 0.0 for share in shares)
+    flows = _flows(project, solution)
+    weight = project.fluid.unit_weight
+    statics = [
+        no_flow_pressure(project.system, static, main.node, at, weight)
+        for static in (supply.curve.static, max(curve.static for curve in supply.measured))
+    ]
+    floor = project.supply.main_floor_pressure or FLOOR
+    return Comparison(
+        node=at,
+        demand_flow=math.fsum(share.flow for share in shares),
+        carried_flow=_through(project, solution, at),
+        sprinkler_flow=flows["sprinklers"],
+        hose_inside=flows["inside"],
+        hose_outside=flows["outside"],
+        other_flow=flows["other"],
+        demand_pressure=demand,
+        available_pressure=demand + margin,
+        unadjusted_pressure=demand + margin + main.unadjusted - main.available,
+        available_flow=carried.flow_at(demand),
+        static=statics[0],
+        highest_static=statics[1],
+        margin=margin,
+        required=required,
+        after_rule=None if required is None else margin - required,
+        rule=rule_words(rule),
+        rule_source=rule.source if rule is not None else "",
+        principal=main.node,
+        sources=shares,
+        carried=carried,
+        carried_unadjusted=before,
+        supply_steps=supply_steps(supply, main.flow, carried.route, at, demand, margin),
+        margin_steps=_margin_steps(project, by_node, shares, demand, margin, required),
+        flow_at_floor=supply.curve.flow_at(floor),
+        floor_pressure=floor,
+        notes=supply.notes + _range_notes(shares, carried),
+    )
+
+
+def _margin_of(project: Project, supply: NodeSupply, flow: float, demand: float) -> RequiredMargin | None:
+    rule = project.supply.margin
+    if rule is None:
+        return None
+    curve = supply.adjusted_member(flow)
+    case = MarginCase(
+        curve=curve,
+        flow=flow,
+        demand_pressure=demand,
+        measured_static=supply.measured_member(flow).gauge_static,
+        test_date=None if supply.tank is not None else supply.test(curve.name).date,
+        reference_date=reference_date(project),
+    )
+    return required_margin(rule, case)
+
+
+def _share(project: Project, supply: NodeSupply, flow: float, demand: float) -> SourceShare:
+    flow = max(flow, 0.0)
+    curve = supply.curve
+    test = supply.test_at(flow)
+    last = None if test is None else max(test.points, key=lambda point: (point.flow, -point.residual))
+    member = supply.adjusted_member(flow)
+    required = _margin_of(project, supply, flow, demand)
+    return SourceShare(
+        node=supply.node,
+        flow=flow,
+        demand_pressure=demand,
+        available=curve.pressure_at(flow),
+        unadjusted=supply.unadjusted.pressure_at(flow),
+        governing=member.name,
+        test_static=None if test is None else test.static,
+        test_residual=None if last is None else last.residual,
+        test_flow=None if last is None else last.flow,
+        tested_flow=member.tested_flow,
+        extrapolated=member.is_extrapolated(flow),
+        tested_ratio=member.tested_ratio(flow),
+        required=None if required is None else required.required,
+    )
+
+
+def _flows(project: Project, solution: Solution) -> dict[str, float]:
+    """Return the outflow by what draws it; every outflow of the solution is counted once."""
+    left = {tag: float(flow) for tag, flow in zip(solution.node_tags, solution.outflow, strict=True)}
+    drawn = dict.fromkeys(("inside", "outside", "sprinklers", "other"), 0.0)
+    for part in hose_parts(project):
+        amount = min(part.flow, left.get(part.node, 0.0))
+        drawn[part.name] += amount
+        left[part.node] -= amount
+    heads = {node.tag for node in project.system.nodes if node.k_factor is not None}
+    drawn["sprinklers"] = math.fsum(flow for tag, flow in left.items() if tag in heads)
+    drawn["other"] = math.fsum(flow for tag, flow in left.items() if tag not in heads)
+    return drawn
+
+
+def _through(project: Project, solution: Solution, node: str) -> float:
+    """Return the flow [m³/s] that arrives at ``node`` from pipes and from a source there."""
+    flow = sum(
+        float(amount)
+        for tag, amount in zip(solution.source_tags, solution.source_flow, strict=True)
+        if tag == node
+    )
+    ends = {pipe.tag: pipe for pipe in project.system.pipes}
+    for tag, amount in zip(solution.pipe_tags, solution.pipe_flow, strict=True):
+        pipe = ends[tag]
+        flow += max(float(amount), 0.0) if pipe.end == node else 0.0
+        flow += max(-float(amount), 0.0) if pipe.start == node else 0.0
+    return flow
+
+
+def _margin_steps(
+    project: Project,
+    by_node: dict[str, NodeSupply],
+    shares: tuple[SourceShare, ...],
+    demand: float,
+    margin: float,
+    required: float | None,
+) -> tuple[Step, ...]:
+    available = (("available", demand + margin, "pressure"), ("demand", demand, "pressure"))
+    steps = [Step("Margin before the rule", Words("{available} − {demand}", available), margin, "pressure")]
+    if required is None:
+        return tuple(steps)
+    strictest = max(shares, key=lambda share: share.required or 0.0)
+    asked = _margin_of(project, by_node[strictest.node], strictest.flow, strictest.demand_pressure)
+    steps += list(asked.steps) if asked is not None else []
+    values = (("margin", margin, "pressure"), ("required", required, "pressure"))
+    words = Words("{margin} − {required}", values)
+    steps.append(Step("Margin after the rule", words, margin - required, "pressure"))
+    return tuple(steps)
+
+
+def _range_notes(shares: tuple[SourceShare, ...], carried: CarriedCurve) -> tuple[Words, ...]:
+    notes = []
+    for share in shares:
+        if share.extrapolated:
+            values = (("flow", share.flow, "flow"), ("tested", share.tested_flow, "flow"))
+            text = f"At {escaped(share.node)} the demand of " + "{flow} lies beyond the tested {tested}: "
+            notes.append(Words(text + "the curve is extrapolated there.", values))
+    if not carried.route.within_devices(carried.route.flow):
+        notes.append(
+            Words("A device between the supply and the point of comparison is used beyond its curve.")
+        )
+    return tuple(notes)

@@ -1,0 +1,142 @@
+"""Lines and points of the supply graph, at the point of comparison.
+
+On a flow axis spaced as Q^1.85 the supply lines are straight between their points.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Literal
+
+from supplycheck.model import Project
+from supplycheck.network.records import Solution
+from supplycheck.supply.comparison import Comparison
+from supplycheck.supply.curve import EXPONENT, SupplyCurve
+from supplycheck.supply.route import CarriedCurve, Route
+from supplycheck.supply.sources import NodeSupply
+
+LineStyle = Literal["measured", "adjusted", "demand", "combined", "tank", "pump"]
+PointStyle = Literal["test", "demand", "demand with hose", "available", "operating"]
+_SAMPLES = 25
+
+
+@dataclass(frozen=True, slots=True)
+class CurveLine:
+    """A line of the graph: flows [m³/s] and pressures [Pa] of equal length.
+
+    Beyond ``extrapolated_from`` [m³/s] it is carried on past what was measured.
+    """
+
+    name: str
+    style: LineStyle
+    flows: tuple[float, ...]
+    pressures: tuple[float, ...]
+    extrapolated_from: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class MarkedPoint:
+    """A marked point of the graph: flow [m³/s], pressure [Pa]."""
+
+    name: str
+    style: PointStyle
+    flow: float
+    pressure: float
+
+
+@dataclass(frozen=True, slots=True)
+class GraphData:
+    """All that the supply graph shows."""
+
+    lines: tuple[CurveLine, ...]
+    points: tuple[MarkedPoint, ...]
+
+
+def curve_points(
+    project: Project, solution: Solution, curves: Sequence[NodeSupply], comparison: Comparison
+) -> GraphData:
+    """Return the graph of ``comparison``: supply as measured and as compared, demand, marked points.
+
+    The supply lines are those of the principal source, carried to the point of comparison with the losses
+    of the demand solution; test points are carried in height only, as they were read with the system shut.
+    """
+    supply = next(one for one in curves if one.node == comparison.principal)
+    share = comparison.main_source
+    reach = _reach(supply, share.flow)
+    path = comparison.carried.route
+    lines = _supply_lines(supply, path, reach)
+    demand = _demand_line(project, solution, comparison)
+    points = [*_test_points(supply, path), *_demand_points(comparison)]
+    return GraphData((*lines, demand), tuple(points))
+
+
+def _reach(supply: NodeSupply, flow: float) -> float:
+    tested = [curve.tested_flow for curve in supply.measured if math.isfinite(curve.tested_flow)]
+    return 1.1 * max([flow, *tested])
+
+
+def _supply_lines(supply: NodeSupply, path: Route, reach: float) -> list[CurveLine]:
+    if supply.tank is not None:
+        return [_line(f"tank {supply.tank.tag}", "tank", supply.curve, path, reach)]
+    lines = [_line(f"test {one.name}", "measured", one, path, reach) for one in supply.measured]
+    if len(supply.measured) > 1:
+        lines.append(_line("low-supply curve", "measured", supply.unadjusted, path, reach))
+    if len(supply.stages) > 1:
+        lines.append(_line("adjusted curve", "adjusted", supply.curve, path, reach))
+    return lines
+
+
+def _line(name: str, style: LineStyle, curve: SupplyCurve, path: Route, reach: float) -> CurveLine:
+    carried = CarriedCurve(curve, path)
+    flows = {flow for flow in curve.flows if flow <= reach} | {0.0, reach}
+    flows |= {curve.tested_flow} if 0.0 < curve.tested_flow <= reach else set()
+    if path.curves:
+        flows |= {reach * (index / _SAMPLES) ** (1 / EXPONENT) for index in range(1, _SAMPLES)}
+    ordered = sorted(flows)
+    kept = [(flow, carried.pressure_at(flow)) for flow in ordered]
+    kept = _cut_at_zero(kept, carried)
+    tested = curve.tested_flow if 0.0 < curve.tested_flow < kept[-1][0] else None
+    return CurveLine(name, style, tuple(flow for flow, _ in kept), tuple(p for _, p in kept), tested)
+
+
+def _cut_at_zero(points: list[tuple[float, float]], carried: CarriedCurve) -> list[tuple[float, float]]:
+    """End a line where no pressure is left."""
+    above = [point for point in points if point[1] >= 0.0]
+    if len(above) == len(points) or not above:
+        return points
+    end = carried.flow_at(0.0)
+    return above if end is None or end <= above[-1][0] else [*above, (end, carried.pressure_at(end))]
+
+
+def _demand_line(project: Project, solution: Solution, comparison: Comparison) -> CurveLine:
+    """Return the system's demand: from its height at no flow to the demand, then on by the hose."""
+    levels = {node.tag: node.elevation for node in project.system.nodes}
+    height = levels.get(solution.governing, levels[comparison.node]) - levels[comparison.node]
+    flow = comparison.demand_flow - comparison.hose_flow
+    start, end = project.fluid.unit_weight * height, comparison.demand_pressure
+    flows: tuple[float, ...] = (0.0, flow)
+    pressures: tuple[float, ...] = (start, end)
+    if comparison.hose_flow > 0.0:
+        flows, pressures = (*flows, comparison.demand_flow), (*pressures, end)
+    return CurveLine("demand", "demand", flows, pressures)
+
+
+def _test_points(supply: NodeSupply, path: Route) -> list[MarkedPoint]:
+    points = []
+    for test, curve in zip(supply.tests, supply.measured, strict=True):
+        shift = curve.offset - path.elevation
+        points.append(MarkedPoint(f"{test.tag} static", "test", 0.0, test.static + shift))
+        name = f"{test.tag} residual"
+        points += [MarkedPoint(name, "test", one.flow, one.residual + shift) for one in test.points]
+    return points
+
+
+def _demand_points(comparison: Comparison) -> list[MarkedPoint]:
+    pressure, total = comparison.demand_pressure, comparison.demand_flow
+    points = [MarkedPoint("demand", "demand", total - comparison.hose_flow, pressure)]
+    if comparison.hose_flow > 0.0:
+        points.append(MarkedPoint("demand with hose", "demand with hose", total, pressure))
+    points.append(MarkedPoint("available", "available", total, comparison.available_pressure))
+    return points
