@@ -1,0 +1,331 @@
+"""Branch lines as the search sees them: heads in order along the line, lines in order across.
+
+A line is taken from the tag given at its heads, otherwise inferred from the pipes. Lines of one direction
+form a bay with axes along and across. Where a main passes between two heads of a line, its two sides are
+lines of their own, and the joined line is kept as well.
+"""
+
+from __future__ import annotations
+
+import itertools
+import math
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from typing import Final
+
+import numpy as np
+
+from supplycheck.demand.heads import FloatArray, Heads
+from supplycheck.demand.piping import Link, Piping, read_piping
+from supplycheck.errors import DomainError
+from supplycheck.model import System
+
+STEP_HEIGHT: Final = 0.9144
+"""A step in height of more than 36 in [m] parts two levels (NFPA 13, ceiling steps; from memory)."""
+
+SLOPE: Final = 0.5
+STOREY: Final = 2.0
+"""Heads under a slope stay on one level up to a rise of 1 in 2 and of 2 m from one to the next."""
+
+PARALLEL: Final = math.radians(10)
+"""Lines within 10° of each other in plan count as parallel."""
+
+
+def same_level(rise: float, distance: float) -> bool:
+    """Say whether two neighbouring heads with this rise [m] at this distance in plan [m] share a level.
+
+    >>> same_level(0.3, 3.0), same_level(3.0, 3.0)
+    (True, False)
+    """
+    return abs(rise) <= max(STEP_HEIGHT, min(SLOPE * abs(distance), STOREY)) + 1e-9
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Line:
+    """A branch line, or one side of it.
+
+    ``heads`` are row numbers in order along the line; ``along`` [m] their coordinates, ``share`` [m] the
+    length of line that each stands for, ``across`` [m] the line's coordinate, ``sums`` the running sums
+    of area [m²], ``heights`` of elevation [m], ``width`` [m] how wide a strip its heads cover. ``fed``
+    says whether pipe goes on beyond its low and its high end. ``sides`` are the lines it joins.
+    """
+
+    name: str
+    heads: tuple[int, ...]
+    bay: int
+    along: FloatArray
+    across: float
+    share: FloatArray
+    sums: FloatArray
+    heights: FloatArray
+    width: float
+    fed: tuple[bool, bool]
+    sides: tuple[int, ...] = ()
+
+    def __len__(self) -> int:
+        return len(self.heads)
+
+
+@dataclass(frozen=True, slots=True)
+class Lines:
+    """All lines: the sides, and the lines joined across a main (``sides`` index into ``sides``)."""
+
+    sides: tuple[Line, ...]
+    joined: tuple[Line, ...]
+    inferred: bool
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Plan:
+    """Coordinates [m] of all heads; their own floor areas [m²] come with ``heads``."""
+
+    heads: Heads
+    xy: FloatArray
+    z: FloatArray
+    open_ends: tuple[bool, ...]
+
+
+class _Groups:
+    """Disjoint groups of row numbers that are merged pair by pair."""
+
+    def __init__(self, count: int) -> None:
+        self._parent = list(range(count))
+
+    def find(self, row: int) -> int:
+        while self._parent[row] != row:
+            self._parent[row] = self._parent[self._parent[row]]
+            row = self._parent[row]
+        return row
+
+    def merge(self, a: int, b: int) -> None:
+        self._parent[self.find(b)] = self.find(a)
+
+    def groups(self, rows: Iterable[int]) -> list[list[int]]:
+        found: dict[int, list[int]] = {}
+        for row in rows:
+            found.setdefault(self.find(row), []).append(row)
+        return list(found.values())
+
+
+def _coordinates(heads: Heads) -> tuple[FloatArray, FloatArray]:
+    missing = [node.tag for node in heads.nodes if node.x is None or node.y is None]
+    if missing:
+        some = ", ".join(missing[:5]) + (" …" if len(missing) > 5 else "")
+        raise DomainError(
+            f"{len(missing)} of {len(heads)} heads have no coordinates ({some}), so the design area cannot "
+            "be searched; give x and y, or name the heads of the design area"
+        )
+    xy = np.array([(node.x, node.y) for node in heads.nodes], dtype=np.float64)
+    z = np.array([node.elevation for node in heads.nodes], dtype=np.float64)
+    return xy, z
+
+
+def _angle(vector: Sequence[float] | FloatArray) -> float:
+    """Direction of a vector in plan [rad], in [0, π)."""
+    angle = math.atan2(float(vector[1]), float(vector[0])) % math.pi
+    return 0.0 if math.isclose(angle, math.pi, abs_tol=1e-9) else angle
+
+
+def _turn(a: float, b: float) -> float:
+    """Angle [rad] between two directions, whichever way they point."""
+    turn = abs(a - b) % math.pi
+    return min(turn, math.pi - turn)
+
+
+def _kept_links(links: Sequence[Link], plan: _Plan) -> list[Link]:
+    """Drop links of untagged heads that turn off their line, where a head has links two ways."""
+    tag = [node.branch_line for node in plan.heads.nodes]
+    free = [k for k in links if tag[k.first] is None and tag[k.second] is None and not k.bent]
+    angles = {k: _angle(plan.xy[k.second] - plan.xy[k.first]) for k in free}
+    bins = [0] * 18
+    for angle in angles.values():
+        bins[int(angle / math.pi * 18) % 18] += 1
+    common = (max(range(18), key=bins.__getitem__) + 0.5) * math.pi / 18
+    best: dict[int, float] = {}
+    for link, angle in angles.items():
+        for row in (link.first, link.second):
+            best[row] = min(best.get(row, math.pi), _turn(angle, common))
+    kept = [k for k in links if k not in angles and tag[k.first] is not None and tag[k.second] is not None]
+    for link, angle in angles.items():
+        if all(_turn(angle, common) <= best[row] + PARALLEL for row in (link.first, link.second)):
+            kept.append(link)
+    return kept
+
+
+def _order(rows: list[int], plan: _Plan) -> list[int]:
+    """Sort the heads of one line along it, by their coordinate on its longest extent."""
+    if len(rows) < 2:
+        return rows
+    points = plan.xy[rows]
+    centred = points - points.mean(axis=0)
+    axis = np.linalg.svd(centred, full_matrices=False)[2][0]
+    angle = _angle(axis)
+    along = points @ np.array([math.cos(angle), math.sin(angle)])
+    return [rows[i] for i in np.lexsort((plan.z[rows], along))]
+
+
+def _levels(rows: list[int], plan: _Plan) -> list[list[int]]:
+    """Part one line, in order along it, where it steps from one level to another."""
+    chains: list[list[int]] = []
+    for row in rows:
+        for chain in sorted(chains, key=lambda c: abs(float(plan.z[c[-1]] - plan.z[row]))):
+            rise = float(plan.z[row] - plan.z[chain[-1]])
+            if same_level(rise, float(np.hypot(*(plan.xy[row] - plan.xy[chain[-1]])))):
+                chain.append(row)
+                break
+        else:
+            chains.append([row])
+    return chains
+
+
+def _split(rows: list[int], crossings: set[tuple[int, int]]) -> list[list[int]]:
+    """Part one line where a main passes between two consecutive heads."""
+    parts = [[rows[0]]]
+    for before, row in itertools.pairwise(rows):
+        if (min(before, row), max(before, row)) in crossings:
+            parts.append([])
+        parts[-1].append(row)
+    return parts
+
+
+def _gather(plan: _Plan, links: Sequence[Link]) -> tuple[list[list[int]], list[tuple[int, int]]]:
+    """Return the sides (rows in order) and the pairs of sides that a main parts."""
+    crossings = {(link.first, link.second) for link in links if link.crossing}
+    lines: dict[str, list[int]] = {}
+    for row, node in enumerate(plan.heads.nodes):
+        if node.branch_line is not None:
+            lines.setdefault(node.branch_line, []).append(row)
+    free = [row for row, node in enumerate(plan.heads.nodes) if node.branch_line is None]
+    groups = _Groups(len(plan.heads))
+    for link in links:
+        if not link.crossing and plan.heads.nodes[link.first].branch_line is None:
+            groups.merge(link.first, link.second)
+    sides: list[list[int]] = []
+    pairs: list[tuple[int, int]] = []
+    for rows in [*lines.values(), *groups.groups(free)]:
+        for chain in _levels(_order(rows, plan), plan):
+            parts = _split(chain, crossings)
+            pairs += [(len(sides) + i, len(sides) + i + 1) for i in range(len(parts) - 1)]
+            sides += parts
+    home = {row: number for number, rows in enumerate(sides) for row in rows}
+    for first, second in crossings:
+        rise = float(plan.z[first] - plan.z[second])
+        if same_level(rise, float(np.hypot(*(plan.xy[first] - plan.xy[second])))):
+            pairs.append((home[first], home[second]))
+    return sides, [(a, b) for a, b in pairs if a != b]
+
+
+def _bays(sides: list[list[int]], plan: _Plan, links: Sequence[Link]) -> tuple[list[int], list[float]]:
+    """Return the bay of each side and the direction [rad] of each bay."""
+    angles: list[float | None] = [
+        _angle(plan.xy[rows[-1]] - plan.xy[rows[0]])
+        if len(rows) > 1 and np.hypot(*(plan.xy[rows[-1]] - plan.xy[rows[0]])) > 1e-6
+        else None
+        for rows in sides
+    ]
+    home = {row: number for number, rows in enumerate(sides) for row in rows}
+    for link in links:
+        for row in (link.first, link.second):
+            if angles[home[row]] is None and link.crossing:
+                angles[home[row]] = _angle(plan.xy[link.second] - plan.xy[link.first])
+    bays: list[float] = []
+    chosen = [-1] * len(sides)
+    for number in sorted(range(len(sides)), key=lambda i: (angles[i] is None, -len(sides[i]))):
+        angle = angles[number]
+        if angle is None:
+            if not bays:
+                bays.append(0.0)
+            chosen[number] = 0
+            continue
+        near = [i for i, bay in enumerate(bays) if _turn(angle, bay) <= PARALLEL]
+        if not near:
+            bays.append(angle)
+            near = [len(bays) - 1]
+        chosen[number] = near[0]
+    return chosen, bays
+
+
+def _line(name: str, rows: list[int], bay: int, angle: float, plan: _Plan, sides: tuple[int, ...]) -> Line:
+    """Return one line with its coordinates on the axes of its bay, heads from the low end up."""
+    points = plan.xy[rows]
+    along = points @ np.array([math.cos(angle), math.sin(angle)])
+    order = np.lexsort((plan.z[rows], along))
+    rows, along = [rows[i] for i in order], along[order]
+    across = float(np.mean(points @ np.array([-math.sin(angle), math.cos(angle)])))
+    area = plan.heads.area[rows]
+    gaps = np.diff(along)
+    if len(rows) > 1:
+        share = (np.concatenate((gaps[:1], gaps)) + np.concatenate((gaps, gaps[-1:]))) / 2
+    else:
+        share = np.sqrt(area)
+    real = share > 1e-6
+    width = float(np.median(area[real] / share[real])) if real.any() else float(np.sqrt(np.median(area)))
+    fed = (plan.open_ends[rows[0]], plan.open_ends[rows[-1]])
+    zero = np.zeros(1)
+    return Line(
+        name,
+        tuple(rows),
+        bay,
+        along,
+        across,
+        share,
+        np.concatenate((zero, np.cumsum(area))),
+        np.concatenate((zero, np.cumsum(plan.z[rows]))),
+        width,
+        fed,
+        sides,
+    )
+
+
+def _names(sides: list[list[int]], plan: _Plan, lows: list[tuple[int, float, float]]) -> list[str]:
+    """Name the sides: the given tag, else numbers in order across each bay."""
+    names = [""] * len(sides)
+    number = 0
+    for side in sorted(range(len(sides)), key=lows.__getitem__):
+        tag = plan.heads.nodes[sides[side][0]].branch_line
+        if tag is None:
+            number += 1
+        names[side] = tag if tag is not None else f"{number}"
+    return names
+
+
+def find_lines(heads: Heads, system: System) -> Lines:
+    """Return the branch lines of all heads, sides and joined ones.
+
+    Raises
+    ------
+    DomainError
+        Where a head has no coordinates.
+    """
+    xy, z = _coordinates(heads)
+    piping: Piping = read_piping(system, heads.nodes)
+    beside_main = {row for link in piping.links if link.crossing for row in (link.first, link.second)}
+    ends = tuple(count > 0 or row in beside_main for row, count in enumerate(piping.open_ends))
+    plan = _Plan(heads, xy, z, ends)
+    links = _kept_links(piping.links, plan)
+    sides, pairs = _gather(plan, links)
+    bay_of, bays = _bays(sides, plan, links)
+    keys = []
+    for number, rows in enumerate(sides):
+        angle = bays[bay_of[number]]
+        centre = xy[rows].mean(axis=0)
+        across = float(centre @ np.array([-math.sin(angle), math.cos(angle)]))
+        along = float(centre @ np.array([math.cos(angle), math.sin(angle)]))
+        keys.append((bay_of[number], round(across, 2), along))
+    names = _names(sides, plan, keys)
+    made = tuple(
+        _line(names[i], rows, bay_of[i], bays[bay_of[i]], plan, (i,)) for i, rows in enumerate(sides)
+    )
+    groups = _Groups(len(sides))
+    for a, b in pairs:
+        if bay_of[a] == bay_of[b] and abs(made[a].across - made[b].across) < 0.5 * made[a].width:
+            groups.merge(a, b)
+    joined = []
+    for group in groups.groups(range(len(sides))):
+        if len(group) > 1:
+            rows = [row for side in group for row in sides[side]]
+            name = "+".join(dict.fromkeys(names[side] for side in sorted(group, key=keys.__getitem__)))
+            bay = bay_of[group[0]]
+            joined.append(_line(name, rows, bay, bays[bay], plan, tuple(sorted(group))))
+    inferred = any(node.branch_line is None for node in heads.nodes)
+    return Lines(made, tuple(joined), inferred)

@@ -1,0 +1,102 @@
+"""Runs of consecutive heads on one line, and how the runs of two lines face each other."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from supplycheck.demand.heads import FloatArray
+from supplycheck.demand.lines import Line
+
+IntArray = NDArray[np.int64]
+ROUND = 1e-9
+"""Relative slack on lengths and areas: converting units must not ask for one more head."""
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Runs:
+    """All runs of one line: heads ``low`` up to, not including, ``high``; from ``begin`` to ``end`` [m]."""
+
+    low: IntArray
+    high: IntArray
+    begin: FloatArray
+    end: FloatArray
+
+    def __len__(self) -> int:
+        return len(self.low)
+
+
+def minimal_runs(sums: FloatArray, needed: float, count: int = 1) -> list[tuple[int, int]]:
+    """Return every run over running sums ``sums`` that holds ``needed`` in at least ``count`` items.
+
+    A run is kept when it would fall short without its first or without its last item: counted from either
+    of its ends it goes no further than it must.
+
+    >>> minimal_runs(np.array([0.0, 3.0, 6.0, 9.0]), 6.0)
+    [(0, 2), (1, 3)]
+    """
+    items = len(sums) - 1
+    goal = needed * (1 - ROUND)
+    slack = ROUND * max(float(sums[-1]), needed)
+    low = np.arange(items)
+    high = np.maximum(np.searchsorted(sums, sums[:-1] + goal - slack, side="left"), low + count)
+    found = {(int(i), int(j)) for i, j in zip(low, high, strict=True) if j <= items}
+    top = np.arange(1, items + 1)
+    start = np.minimum(np.searchsorted(sums, sums[1:] - goal + slack, side="right") - 1, top - count)
+    found |= {(int(i), int(j)) for i, j in zip(start, top, strict=True) if i >= 0}
+    return sorted(found)
+
+
+def runs_of(line: Line, length: float, count: int) -> Runs:
+    """Return the runs of ``line`` that reach ``length`` [m] along it with at least ``count`` heads.
+
+    A line too short for that is taken whole.
+    """
+    along = np.concatenate((np.zeros(1), np.cumsum(line.share)))
+    pairs = minimal_runs(along, length, count) or [(0, len(line))]
+    low = np.array([pair[0] for pair in pairs], dtype=np.int64)
+    high = np.array([pair[1] for pair in pairs], dtype=np.int64)
+    begin = line.along[low] - line.share[low] / 2
+    end = line.along[high - 1] + line.share[high - 1] / 2
+    return Runs(low, high, begin, end)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Facing:
+    """For each run of one line the run of another that faces it; −1 where none does.
+
+    ``first`` and ``last`` differ where two runs lie equally near on either hand (staggered heads).
+    """
+
+    first: IntArray
+    last: IntArray
+    distance: FloatArray
+
+
+def facing(own: Runs, other: Runs) -> Facing:
+    """Return which run of ``other`` faces each run of ``own``: the one whose middle is nearest.
+
+    A run faces only where the two lie side by side over some length.
+    """
+    middle = (own.begin + own.end) / 2
+    centres = (other.begin + other.end) / 2
+    order = np.argsort(centres, kind="stable")
+    ranked = centres[order]
+    right = np.minimum(np.searchsorted(ranked, middle), len(ranked) - 1)
+    left = np.maximum(right - 1, 0)
+    to_right, to_left = np.abs(ranked[right] - middle), np.abs(ranked[left] - middle)
+    near = np.minimum(to_left, to_right)
+    tie = 0.02 * (own.end - own.begin)
+    first = order[np.where(to_left <= near + tie, left, right)]
+    last = order[np.where(to_right <= near + tie, right, left)]
+
+    def beside(chosen: IntArray) -> NDArray[np.bool_]:
+        overlap = np.minimum(own.end, other.end[chosen]) - np.maximum(own.begin, other.begin[chosen])
+        return np.asarray(overlap > 1e-6, dtype=np.bool_)
+
+    first_ok, last_ok = beside(first), beside(last)
+    first = np.where(first_ok, first, np.where(last_ok, last, -1))
+    last = np.where(last_ok, last, first)
+    return Facing(first.astype(np.int64), last.astype(np.int64), near)

@@ -1,0 +1,320 @@
+"""Every placement of the design area that the rules allow.
+
+A placement is a group of runs on consecutive lines. The run on the first line reaches 1.2√A along it (or
+is the whole of a shorter line); each further line adds the run that faces the first; the last line adds
+only as many heads as the area still asks, in every position within the width of the group. Both
+directions across are tried from every run of every line.
+
+Sources: 1.2√A parallel to the lines and whole heads up, NFPA 13 (2007), 11.2.3.1.1 and 22.4.4.1 (from
+memory); that the left-over heads may take any position is wider than the common practice of placing them
+nearest the cross main. A run crosses a main only where one of the sides of the line is shorter than 1.2√A
+(common practice, no source). EN 12845 (2015), 13.4.4 (from memory): whole lines and pairs of lines either
+side of a main, and areas as near square as can be for the most favourable one, are tried as well.
+"""
+
+from __future__ import annotations
+
+import itertools
+import math
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass, field, replace
+from typing import Final, NamedTuple
+
+import numpy as np
+
+from supplycheck.demand.heads import Heads
+from supplycheck.demand.lines import SLOPE, STEP_HEIGHT, STOREY, Line, Lines, same_level
+from supplycheck.demand.runs import ROUND, Facing, IntArray, Runs, facing, minimal_runs, runs_of
+
+CAP: Final = 200_000
+"""Placements after which the search stops and says so."""
+
+TOUCH: Final = 2.0
+"""Lines further apart than this many times the width they cover do not touch."""
+
+SAME_ROW: Final = 0.25
+"""Lines closer across than this part of the width they cover stand in one row."""
+
+
+class Row(NamedTuple):
+    """Heads ``low`` up to, not including, ``high`` of a line."""
+
+    line: Line
+    low: int
+    high: int
+
+
+@dataclass(frozen=True, slots=True)
+class Placement:
+    """One placement: its heads (row numbers), the runs it is made of, heads added singly, a note."""
+
+    heads: tuple[int, ...]
+    rows: tuple[Row, ...]
+    extra: tuple[int, ...] = ()
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Rule:
+    """What a placement must reach: area [m²], length along the lines [m], heads, heads in a run."""
+
+    area: float
+    length: float
+    heads: int
+    run: int = 1
+
+    def reached(self, area: float, heads: int) -> bool:
+        """Say whether ``area`` [m²] with so many heads is enough."""
+        return area >= self.area * (1 - ROUND) and heads >= self.heads
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """All placements, and whether the search was complete."""
+
+    placements: tuple[Placement, ...]
+    complete: bool
+
+
+class _CapReachedError(Exception):
+    """The search holds as many placements as it may."""
+
+
+@dataclass(slots=True)
+class _Bag:
+    """Placements without duplicates, in the order found."""
+
+    cap: int
+    found: dict[frozenset[int], Placement] = field(default_factory=dict)
+
+    def add(self, rows: Sequence[Row]) -> None:
+        heads: list[int] = []
+        for line, low, high in rows:
+            heads += line.heads[low:high]
+        self.put(Placement(tuple(heads), tuple(rows)))
+
+    def put(self, placement: Placement) -> None:
+        key = frozenset(placement.heads)
+        if key not in self.found:
+            if len(self.found) >= self.cap:
+                raise _CapReachedError
+            self.found[key] = placement
+
+    def covered(self) -> set[int]:
+        return set().union(*self.found)
+
+
+class _Field:
+    """A set of lines with their runs under one rule; looks up what faces what, each once."""
+
+    def __init__(self, lines: Sequence[Line], rule: Rule) -> None:
+        self.lines = lines
+        self.rule = rule
+        self.runs: list[Runs] = [runs_of(line, rule.length, rule.run) for line in lines]
+        self._across = np.array([line.across for line in lines])
+        self._bay = np.array([line.bay for line in lines])
+        self._begin = np.array([line.along[0] - line.share[0] / 2 for line in lines])
+        self._end = np.array([line.along[-1] + line.share[-1] / 2 for line in lines])
+        self.tied: list[set[int]] = [set() for _ in lines]
+        self._facing: dict[tuple[int, int], Facing] = {}
+        self._ahead: dict[tuple[int, int], tuple[IntArray, IntArray]] = {}
+
+    def facing(self, own: int, other: int) -> Facing:
+        """Return which runs of line ``other`` face the runs of line ``own``."""
+        pair = (own, other)
+        if pair not in self._facing:
+            face = facing(self.runs[own], self.runs[other])
+            self.tied[own].update(np.flatnonzero(face.first != face.last).tolist())
+            self._facing[pair] = face
+        return self._facing[pair]
+
+    def rows_ahead(self, own: int, sign: int) -> Iterator[list[int]]:
+        """Yield the lines that lie beside line ``own`` on one hand, row by row outwards."""
+        if (own, sign) not in self._ahead:
+            self._ahead[own, sign] = self._look(own, sign)
+        order, bounds = self._ahead[own, sign]
+        for start, stop in itertools.pairwise(bounds.tolist()):
+            yield order[start:stop].tolist()
+
+    def _look(self, own: int, sign: int) -> tuple[IntArray, IntArray]:
+        step = SAME_ROW * self.lines[own].width
+        away = sign * (self._across - self._across[own])
+        beside = np.minimum(self._end, self._end[own]) - np.maximum(self._begin, self._begin[own]) > 1e-6
+        rows = np.flatnonzero((away > step) & beside & (self._bay == self._bay[own]))
+        rows = rows[np.argsort(away[rows], kind="stable")]
+        breaks = np.flatnonzero(np.diff(away[rows]) > step) + 1
+        bounds = np.concatenate(([0], breaks, [len(rows)])) if len(rows) else np.zeros(1, dtype=np.int64)
+        return rows, bounds.astype(np.int64)
+
+
+def _height(row: Row) -> float:
+    return float(row.line.heights[row.high] - row.line.heights[row.low]) / (row.high - row.low)
+
+
+def _next_row(space: _Field, own: int, run: int, group: list[int], last: Row, late: bool) -> Row | None:
+    """Return the run in one row of lines that best faces run ``run`` of line ``own``, on its level."""
+    best: Row | None = None
+    nearest = math.inf
+    for other in group:
+        line = space.lines[other]
+        face = space.facing(own, other)
+        chosen = int((face.last if late else face.first)[run])
+        if chosen < 0 or face.distance[run] >= nearest:
+            continue
+        row = Row(line, int(space.runs[other].low[chosen]), int(space.runs[other].high[chosen]))
+        gap = abs(line.across - last.line.across)
+        if gap > TOUCH * max(line.width, last.line.width) or not same_level(
+            _height(row) - _height(last), gap
+        ):
+            continue
+        best, nearest = row, float(face.distance[run])
+    return best
+
+
+def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -> None:
+    """Add the placements that start with one run and grow to one hand.
+
+    Where two runs of a line face the first equally, ``late`` takes the further one.
+    """
+    rule = space.rule
+    first = Row(space.lines[own], int(space.runs[own].low[run]), int(space.runs[own].high[run]))
+    rows = [first]
+    area = float(first.line.sums[first.high] - first.line.sums[first.low])
+    count = first.high - first.low
+    if rule.reached(area, count):
+        bag.add(rows)
+        return
+    for group in space.rows_ahead(own, sign):
+        row = _next_row(space, own, run, group, rows[-1], late)
+        if row is None:
+            if abs(space.lines[group[0]].across - rows[-1].line.across) > TOUCH * rows[-1].line.width:
+                return
+            continue
+        sums = row.line.sums[row.low : row.high + 1]
+        more = float(sums[-1] - sums[0])
+        if rule.reached(area + more, count + row.high - row.low):
+            for low, high in minimal_runs(sums - sums[0], rule.area - area, max(1, rule.heads - count)):
+                bag.add([*rows, Row(row.line, row.low + low, row.low + high)])
+            return
+        rows.append(row)
+        area += more
+        count += row.high - row.low
+
+
+def _fill(space: _Field, bag: _Bag, starts: Iterable[int]) -> None:
+    """Add every placement that starts on one of the lines ``starts``."""
+    for own in starts:
+        for run in range(len(space.runs[own])):
+            for sign in (1, -1):
+                _grow(space, own, run, sign, False, bag)
+                if run in space.tied[own]:
+                    _grow(space, own, run, sign, True, bag)
+
+
+def _is_short(line: Line, rule: Rule) -> bool:
+    return float(line.share.sum()) < rule.length * (1 - ROUND)
+
+
+def _spanning(lines: Lines, rule: Rule, everywhere: bool) -> tuple[Line, ...]:
+    """Return the lines, joined across the main where a side is too short (or everywhere)."""
+    chosen = [
+        line
+        for line in lines.joined
+        if everywhere or any(_is_short(lines.sides[side], rule) for side in line.sides)
+    ]
+    if not chosen:
+        return ()
+    taken = {side for line in chosen for side in line.sides}
+    return (*chosen, *(line for i, line in enumerate(lines.sides) if i not in taken))
+
+
+def _lengthen(lines: Sequence[Line], rule: Rule, bag: _Bag, most: int) -> None:
+    """Let runs grow along the lines for heads that no placement holds: too few lines lie side by side."""
+    shares = [int(np.ceil(rule.length / max(float(np.median(line.share)), 1e-6))) for line in lines]
+    run = min(most, max(1, min(shares, default=1)))
+    while run < most:
+        covered = bag.covered()
+        starts = [i for i, line in enumerate(lines) if not covered.issuperset(line.heads)]
+        if not starts:
+            return
+        run += 1
+        _fill(_Field(lines, replace(rule, run=run)), bag, starts)
+
+
+def _gather_near(heads: Heads, seed: list[int], rule: Rule) -> list[int]:
+    """Return the heads nearest to ``seed`` that make up the area, those that touch it on its level."""
+    xy = np.array([(node.x, node.y) for node in heads.nodes], dtype=np.float64)
+    z = np.array([node.elevation for node in heads.nodes])
+    reach = TOUCH * np.sqrt(heads.area)
+    near = np.full(len(heads), np.inf)
+    chosen: list[int] = []
+    inside = np.zeros(len(heads), dtype=bool)
+    area = 0.0
+    waiting = list(seed)
+    while True:
+        row = waiting.pop(0) if waiting else int(np.argmin(np.where(inside, np.inf, near)))
+        if inside[row] or (row not in seed and not math.isfinite(near[row])):
+            return chosen
+        chosen.append(row)
+        inside[row] = True
+        area += float(heads.area[row])
+        if not waiting and rule.reached(area, len(chosen)):
+            return chosen
+        apart = np.hypot(*(xy - xy[row]).T)
+        level = np.abs(z - z[row]) <= np.maximum(STEP_HEIGHT, np.minimum(SLOPE * apart, STOREY)) + 1e-9
+        near = np.minimum(near, np.where(level & (apart <= (reach + reach[row]) / 2), apart, np.inf))
+
+
+def _leftovers(heads: Heads, lines: Lines, rule: Rule, bag: _Bag) -> None:
+    """Give the heads that still stand in no placement one made up with the heads nearest to them."""
+    for line in lines.sides:
+        covered = bag.covered()
+        seed = [row for row in line.heads if row not in covered]
+        if not seed:
+            continue
+        chosen = _gather_near(heads, seed, rule)
+        low, high = line.heads.index(seed[0]), line.heads.index(seed[-1]) + 1
+        extra = tuple(row for row in chosen if row not in line.heads[low:high])
+        rows = (Row(line, low, high),)
+        members = dict.fromkeys((*line.heads[low:high], *extra))
+        short = not rule.reached(float(heads.area[list(members)].sum()), len(members))
+        note = "area smaller than the design area: all heads" if short else ""
+        bag.put(Placement(tuple(members), rows, extra, note))
+
+
+def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int = CAP) -> Found:
+    """Return every placement of the design area that the rules allow, without duplicates.
+
+    Parameters
+    ----------
+    heads, lines
+        All heads, and the lines they stand on.
+    rule
+        Area [m²], length along the lines [m] and number of heads that a placement must reach.
+    european
+        Also try whole lines and pairs of lines, areas near a square, and areas across a main anywhere.
+    cap
+        Number of placements after which the search stops.
+    """
+    bag = _Bag(cap)
+    most = max(rule.heads, math.ceil(rule.area / float(heads.area.min())))
+    try:
+        rules = [rule]
+        if european:
+            rules += [replace(rule, length=math.sqrt(rule.area)), replace(rule, length=math.inf)]
+        for each in rules:
+            for chosen in (lines.sides, _spanning(lines, each, european)):
+                space = _Field(chosen, each)
+                whole = math.isinf(each.length)
+                starts = [
+                    i
+                    for i, line in enumerate(chosen)
+                    if not whole or not rule.reached(float(line.sums[-1]), len(line))
+                ]
+                _fill(space, bag, starts)
+        for chosen in (lines.sides, _spanning(lines, rule, everywhere=True)):
+            _lengthen(chosen, rule, bag, most)
+        _leftovers(heads, lines, rule, bag)
+    except _CapReachedError:
+        return Found(tuple(bag.found.values()), complete=False)
+    return Found(tuple(bag.found.values()), complete=True)
