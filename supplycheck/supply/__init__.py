@@ -15,7 +15,7 @@ from supplycheck.supply.margin import (
     required_margin,
     rule_words,
 )
-from supplycheck.supply.outlets import OutletFlow, outlet_flow, pumper_factor, reduce_outlets
+from supplycheck.supply.outlets import OutletFlow, outlet_flow, reduce_outlets
 from supplycheck.supply.quality import FlowTestFacts, PitotFact, flow_test_facts
 from supplycheck.supply.route import CarriedCurve, Route
 from supplycheck.supply.sources import NodeSupply, Stage, gauge_curve, source_curves, supply_curves
@@ -51,7 +51,6 @@ __all__ = [
     "hose_parts",
     "lower_envelope",
     "outlet_flow",
-    "pumper_factor",
     "reduce_outlets",
     "reference_date",
     "required_margin",

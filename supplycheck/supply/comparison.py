@@ -15,6 +15,7 @@ import datetime as dt
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import Final
 
 from supplycheck.errors import DomainError
 from supplycheck.model import Project
@@ -61,7 +62,8 @@ class Comparison:
     is the flow at which the demand pressure is still there (``None``: at every flow). ``margin`` is the
     available less the demand pressure; ``required`` what the rule asks (``None``: no rule given) and
     ``after_rule`` what is left. ``static`` and ``highest_static`` are the no-flow pressures at ``node`` on
-    the compared curve and on the highest measured one. ``principal`` is the source that gives most.
+    the compared curve and on the highest measured one. ``principal`` is the source that gives most; the
+    flows at 20 psi are read at its node, on the lowest measured and on the compared curve.
     """
 
     node: str
@@ -88,8 +90,8 @@ class Comparison:
     carried_unadjusted: CarriedCurve
     supply_steps: tuple[Step, ...]
     margin_steps: tuple[Step, ...]
-    flow_at_floor: float | None
-    floor_pressure: float
+    flow_at_20_psi: float | None
+    adjusted_flow_at_20_psi: float | None
     notes: tuple[Words, ...]
 
     @property
@@ -103,7 +105,7 @@ class Comparison:
         return next(share for share in self.sources if share.node == self.principal)
 
 
-FLOOR = 20.0 * 0.45359237 * 9.80665 / 0.0254**2
+RATING_PRESSURE: Final = 20.0 * 0.45359237 * 9.80665 / 0.0254**2
 """Pressure [Pa] at which the flow of a main is rated, 20 psi (NFPA 291)."""
 
 
@@ -149,7 +151,6 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
         no_flow_pressure(project.system, static, main.node, at, weight)
         for static in (supply.curve.static, max(curve.static for curve in supply.measured))
     ]
-    floor = project.supply.main_floor_pressure or FLOOR
     return Comparison(
         node=at,
         demand_flow=math.fsum(share.flow for share in shares),
@@ -175,8 +176,8 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
         carried_unadjusted=before,
         supply_steps=supply_steps(supply, main.flow, carried.route, at, demand, margin),
         margin_steps=_margin_steps(project, by_node, shares, demand, margin, required),
-        flow_at_floor=supply.curve.flow_at(floor),
-        floor_pressure=floor,
+        flow_at_20_psi=supply.unadjusted.flow_at(RATING_PRESSURE),
+        adjusted_flow_at_20_psi=supply.curve.flow_at(RATING_PRESSURE),
         notes=supply.notes + _range_notes(shares, carried),
     )
 

@@ -3,8 +3,7 @@
 References
 ----------
 .. [1] NFPA 291, flow from a hydrant outlet: Q = 29.84 c d² √p with Q in gpm, d in inches and p in psi
-   (from memory; some prints have 29.83, 0.03 % less). The factors for a pumper outlet are from memory
-   too, except 0.83 at 7 psi and above, which a practitioners' worked example gives.
+   (from memory; some prints have 29.83, 0.03 % less).
 """
 
 from __future__ import annotations
@@ -12,16 +11,10 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
-from itertools import pairwise
-from typing import Final
 
 from supplycheck.errors import DomainError
 from supplycheck.hydraulics import pitot_discharge
 from supplycheck.model import Outlet
-
-_PSI: Final = 0.45359237 * 9.80665 / 0.0254**2
-PUMPER_FACTORS: Final = ((2.0, 0.97), (3.0, 0.92), (4.0, 0.89), (5.0, 0.86), (6.0, 0.84), (7.0, 0.83))
-"""Factor on the flow of a large pumper outlet by pitot reading in psi; the last holds above 7 psi."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,20 +61,3 @@ def reduce_outlets(outlets: Sequence[Outlet]) -> tuple[float, tuple[OutletFlow, 
         raise DomainError("a flow test needs at least one flowing outlet or a given flow")
     each = tuple(outlet_flow(outlet) for outlet in outlets)
     return math.fsum(one.flow for one in each), each
-
-
-def pumper_factor(pitot: float) -> float | None:
-    """Return the published factor for a pumper outlet at ``pitot`` [Pa], ``None`` below 2 psi.
-
-    Straight between the printed readings (2 to 7 psi), 0.83 above; NFPA 291, from memory.
-
-    >>> pumper_factor(10 * 6894.757293168)
-    0.83
-    """
-    reading = pitot / _PSI
-    if reading < PUMPER_FACTORS[0][0] * (1 - 1e-9):
-        return None
-    for (low, at_low), (high, at_high) in pairwise(PUMPER_FACTORS):
-        if reading <= high:
-            return at_low + (at_high - at_low) * max(reading - low, 0.0) / (high - low)
-    return PUMPER_FACTORS[-1][1]
