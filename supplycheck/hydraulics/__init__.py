@@ -25,6 +25,9 @@ from supplycheck.hydraulics.equivalent_length import (
 )
 from supplycheck.hydraulics.hazen_williams import hazen_williams_gradient, hazen_williams_resistance
 from supplycheck.hydraulics.heads import elevation_pressure, minor_loss, velocity, velocity_pressure
+from supplycheck.hydraulics.one_pipe import solve as solve_one_pipe
+from supplycheck.hydraulics.pipe_laws import ConstantFactor, DarcyWeisbach, HazenWilliams, PipeLaw
+from supplycheck.hydraulics.pipe_problem import OnePipe, OnePipeResult, Step
 from supplycheck.hydraulics.power import KNEE, smooth_power
 from supplycheck.hydraulics.pump import (
     at_speed,
@@ -39,7 +42,14 @@ from supplycheck.hydraulics.water import water_density, water_viscosity
 
 __all__ = [
     "KNEE",
+    "ConstantFactor",
     "Curve",
+    "DarcyWeisbach",
+    "HazenWilliams",
+    "OnePipe",
+    "OnePipeResult",
+    "PipeLaw",
+    "Step",
     "at_speed",
     "bore_factor",
     "c_multiplier",
@@ -66,6 +76,7 @@ __all__ = [
     "rated_pump_curve",
     "reynolds_number",
     "smooth_power",
+    "solve_one_pipe",
     "velocity",
     "velocity_pressure",
     "water_density",

@@ -1,0 +1,313 @@
+"""The answer of ``supplycheck pipe`` as text and as JSON."""
+
+from __future__ import annotations
+
+import json
+import math
+from typing import Any
+
+from supplycheck.commands.pipe_question import NextSize, Question
+from supplycheck.hydraulics import OnePipeResult
+from supplycheck.units import UnitSet
+
+_KINDS = (
+    "flow",
+    "pressure",
+    "length",
+    "size",
+    "velocity",
+    "gradient",
+    "power",
+    "roughness",
+    "mass_density",
+    "viscosity",
+)
+_FOUND = {"loss": "Loss", "flow": "Flow", "diameter": "Diameter", "pump": "Pump"}
+
+
+def digits(number: float, significant: int = 4) -> str:
+    """Return ``number`` with so many significant digits, grouped, never in powers of ten near 1.
+
+    >>> digits(0.0172345), digits(141689.9), digits(-12.3456), digits(2.5e-7)
+    ('0.01723', '141,700', '−12.35', '2.500e-07')
+    """
+    if number == 0:
+        return "0"
+    size = abs(number)
+    if size < 1e-4 or size >= 1e9:
+        text = f"{number:.{significant - 1}e}"
+    else:
+        places = significant - 1 - math.floor(math.log10(size))
+        text = f"{round(number, places):,.{max(places, 0)}f}"
+    return text.replace("-", "−", 1) if number < 0 else text
+
+
+def _quantity(units: UnitSet, value: float, kind: str) -> str:
+    return f"{digits(units.from_si(value, kind))} {units.symbol(kind)}"
+
+
+def _table(rows: list[tuple[str, ...]], gap: str = "  ") -> list[str]:
+    """Return the rows with the first column to the left and the others to the right."""
+    widths = [max(len(row[i]) for row in rows if i < len(row)) for i in range(max(map(len, rows)))]
+    lines = []
+    for row in rows:
+        cells = [cell.ljust(widths[0]) if i == 0 else cell.rjust(widths[i]) for i, cell in enumerate(row)]
+        lines.append(gap + gap.join(cells).rstrip())
+    return lines
+
+
+def _pressure(question: Question, name: str, value: float) -> tuple[str, ...]:
+    """Return one row of the pressure table: name, pressure, head of the fluid."""
+    units = question.units
+    head = value / question.problem.unit_weight
+    return name, digits(units.from_si(value, "pressure")), digits(units.from_si(head, "length"))
+
+
+def as_text(
+    question: Question, result: OnePipeResult, next_size: NextSize | str | None, *, steps: bool
+) -> str:
+    """Return the answer for the screen."""
+    lines = [f"{_FOUND[result.found]}: {_answer(question, result)}", "", question.law_name]
+    lines += _pipe_lines(question, result)
+    lines += ["", "Where the pressure goes, start to end"]
+    lines += _table(_pressure_rows(question, result))
+    if next_size is not None:
+        lines += ["", *_next_lines(question, next_size)]
+    if steps:
+        lines += ["", *_step_lines(question, result)]
+    lines += ["", *(f"Assumed: {text}" for text in question.assumptions)]
+    lines += [f"Remark: {text}" for text in result.remarks]
+    return "\n".join(lines).rstrip()
+
+
+def _answer(question: Question, result: OnePipeResult) -> str:
+    units = question.units
+    if result.found == "flow":
+        return _quantity(units, result.flow, "flow")
+    if result.found == "diameter":
+        return _quantity(units, result.bore, "size")
+    value = result.pump_pressure if result.found == "pump" else result.loss
+    head = digits(units.from_si(value / question.problem.unit_weight, "length"))
+    text = f"{_quantity(units, value, 'pressure')} ({head} {units.symbol('length')} of the fluid)"
+    if result.found == "pump":
+        text += f", {_quantity(units, result.fluid_power, 'power')} to the fluid"
+    return text
+
+
+def _pipe_rows(question: Question, result: OnePipeResult) -> list[tuple[str, str, str]]:
+    """Return name, value and unit of what describes the flow in the pipe."""
+    units, problem = question.units, question.problem
+
+    def row(name: str, value: float, kind: str) -> tuple[str, str, str]:
+        return name, digits(units.from_si(value, kind)), units.symbol(kind)
+
+    rows = [
+        row("flow", result.flow, "flow"),
+        row("inside diameter", result.bore, "size"),
+        row("length", problem.length, "length"),
+        row("velocity", result.velocity, "velocity"),
+        row("loss per length", result.gradient, "gradient"),
+        ("friction factor f", digits(result.friction_factor), _factor_note(result)),
+    ]
+    if result.reynolds is not None:
+        rows.append(("Reynolds number", digits(result.reynolds), result.regime or ""))
+    if result.relative_roughness is not None:
+        rows.append(("relative roughness", digits(result.relative_roughness, 3), ""))
+    if result.pump_pressure:
+        rows.append(
+            (
+                "power to the fluid",
+                digits(units.from_si(result.fluid_power, "power")),
+                units.symbol("power"),
+            )
+        )
+    if result.pump_pressure and result.pump_power is not None:
+        rows.append(
+            ("power at the shaft", digits(units.from_si(result.pump_power, "power")), units.symbol("power"))
+        )
+    rows = [(name, value, unit) for name, value, unit in rows]
+    return rows
+
+
+def _pipe_lines(question: Question, result: OnePipeResult) -> list[str]:
+    """Return name, value and unit in columns, then what is said in words."""
+    rows = _pipe_rows(question, result)
+    words = [("fluid", question.fluid_name), ("weight for the rise", question.weight_name)]
+    words += [("size", question.size_name)] if question.size_name else []
+    wide = max(len(row[0]) for row in rows + words)
+    long = max(len(row[1]) for row in rows)
+    lines = [f"  {name:<{wide}}  {value:>{long}} {unit}".rstrip() for name, value, unit in rows]
+    return lines + [f"  {name:<{wide}}  {text}" for name, text in words]
+
+
+def _factor_note(result: OnePipeResult) -> str:
+    from supplycheck.hydraulics import HazenWilliams
+
+    return "computed back from the loss" if isinstance(result.problem.law, HazenWilliams) else ""
+
+
+def _pressure_rows(question: Question, result: OnePipeResult) -> list[tuple[str, ...]]:
+    units, problem = question.units, question.problem
+    rows: list[tuple[str, ...]] = [("", units.symbol("pressure"), f"{units.symbol('length')} of the fluid")]
+    if question.start_pressure is not None or question.end_pressure is not None:
+        rows.append(_pressure(question, "pressure at the start", start_pressure(question, result)))
+    if result.pump_pressure:
+        rows.append(_pressure(question, "+ pump", result.pump_pressure))
+    rows.append(_pressure(question, "− friction in the pipe", result.pipe_loss))
+    if problem.equivalent_length:
+        rows.append(_pressure(question, "− fittings, by equivalent length", result.fitting_loss))
+    if problem.minor_k:
+        rows.append(_pressure(question, "− fittings, by K", result.minor_loss))
+    if problem.rise:
+        name = "− rise" if problem.rise > 0 else "+ fall"
+        rows.append(_pressure(question, name, abs(result.elevation)))
+    if problem.kinetic:
+        name = "− velocity pressure" if problem.kinetic > 0 else "+ velocity pressure recovered"
+        rows.append(_pressure(question, name, abs(result.kinetic)))
+    if question.start_pressure is not None or question.end_pressure is not None:
+        rows.append(
+            _pressure(question, "= pressure at the end", start_pressure(question, result) - result.drop)
+        )
+    else:
+        rows.append(_pressure(question, "= pressure drop from start to end", result.drop))
+    return rows
+
+
+def start_pressure(question: Question, result: OnePipeResult) -> float:
+    """Return the gauge pressure at the start [Pa]: given, or from the end and the drop."""
+    if question.start_pressure is not None:
+        return question.start_pressure
+    return (question.end_pressure or 0.0) + result.drop
+
+
+def _next_lines(question: Question, size: NextSize | str) -> list[str]:
+    if isinstance(size, str):
+        return [f"Next larger size: {size}"]
+    units = question.units
+    bore = _quantity(units, size.bore, "size")
+    return [
+        f"Next larger size: {size.nominal} {size.material}, {bore} ({size.source})",
+        f"  there: loss {_quantity(units, size.result.loss, 'pressure')}, "
+        f"velocity {_quantity(units, size.result.velocity, 'velocity')}",
+    ]
+
+
+def _step_lines(question: Question, result: OnePipeResult) -> list[str]:
+    if not result.steps:
+        return ["No search was needed."]
+    units = question.units
+    kind = "flow" if result.found == "flow" else "size"
+    rows: list[tuple[str, ...]] = [
+        (
+            "",
+            "step",
+            f"{result.found} [{units.symbol(kind)}]",
+            f"taken less available [{units.symbol('pressure')}]",
+        )
+    ]
+    for number, step in enumerate(result.steps, 1):
+        trial = f"{units.from_si(step.trial, kind):.8g}"
+        rows.append((step.phase, str(number), trial, f"{units.from_si(step.imbalance, 'pressure'):.3e}"))
+    return ["Search: enclose the answer, then narrow (method of Brent)", *_table(rows)]
+
+
+def _units_block(units: UnitSet) -> dict[str, str]:
+    return {kind: units.symbol(kind) for kind in _KINDS}
+
+
+def as_json(question: Question, result: OnePipeResult, next_size: NextSize | str | None) -> str:
+    """Return the answer as JSON: plain numbers in the unit set named on top."""
+    units, problem = question.units, question.problem
+
+    def number(value: float | None, kind: str) -> float | None:
+        return None if value is None else units.from_si(value, kind)
+
+    ends = question.start_pressure is not None or question.end_pressure is not None
+    start = start_pressure(question, result) if ends else None
+    answer: dict[str, Any] = {
+        "schema": 1,
+        "units": _units_block(units),
+        "found": result.found,
+        "law": question.law_name,
+        "fluid": {
+            "name": question.fluid_name,
+            "density": number(problem.density, "mass_density"),
+            "viscosity": number(problem.viscosity, "viscosity"),
+            "unit_weight": number(problem.unit_weight, "gradient"),
+        },
+        "flow": number(result.flow, "flow"),
+        "diameter": number(result.bore, "size"),
+        "length": number(problem.length, "length"),
+        "equivalent_length": number(problem.equivalent_length, "length"),
+        "minor_k": problem.minor_k,
+        "rise": number(problem.rise, "length"),
+        "velocity": number(result.velocity, "velocity"),
+        "reynolds": result.reynolds,
+        "regime": result.regime,
+        "relative_roughness": result.relative_roughness,
+        "friction_factor": result.friction_factor,
+        "gradient": number(result.gradient, "gradient"),
+        "loss": {
+            "total": number(result.loss, "pressure"),
+            "pipe": number(result.pipe_loss, "pressure"),
+            "equivalent_length": number(result.fitting_loss, "pressure"),
+            "minor": number(result.minor_loss, "pressure"),
+            "head": number(result.loss / problem.unit_weight, "length"),
+        },
+        "elevation": number(result.elevation, "pressure"),
+        "velocity_pressure": number(result.velocity_pressure, "pressure"),
+        "velocity_pressure_lost": number(result.kinetic, "pressure"),
+        "pressure_drop": number(result.drop, "pressure"),
+        "start_pressure": number(start, "pressure"),
+        "end_pressure": None if start is None else number(start - result.drop, "pressure"),
+        "pump": {
+            "pressure": number(result.pump_pressure, "pressure"),
+            "head": number(result.pump_pressure / problem.unit_weight, "length"),
+            "fluid_power": number(result.fluid_power, "power"),
+            "shaft_power": number(result.pump_power, "power"),
+        },
+        "next_size": _next_json(next_size, units),
+        "steps": [
+            {
+                "phase": step.phase,
+                "trial": number(step.trial, "flow" if result.found == "flow" else "size"),
+                "imbalance": number(step.imbalance, "pressure"),
+            }
+            for step in result.steps
+        ],
+        "assumptions": list(question.assumptions),
+        "remarks": list(result.remarks),
+    }
+    return json.dumps(answer, indent=2, ensure_ascii=False)
+
+
+def _next_json(size: NextSize | str | None, units: UnitSet) -> dict[str, Any] | None:
+    if size is None or isinstance(size, str):
+        return None if size is None else {"none": size}
+    return {
+        "material": size.material,
+        "nominal": size.nominal,
+        "diameter": units.from_si(size.bore, "size"),
+        "source": size.source,
+        "loss": units.from_si(size.result.loss, "pressure"),
+        "velocity": units.from_si(size.result.velocity, "velocity"),
+    }
+
+
+def no_solution_text(question: Question, reason: str) -> str:
+    """Return why there is no solution, with the balance of pressures that shows it."""
+    problem, units = question.problem, question.units
+    lines = [f"No solution: {reason}."]
+    if problem.loss is None and problem.drop is not None:
+        drop = _quantity(units, problem.drop, "pressure")
+        rise = _quantity(units, problem.rise * problem.unit_weight, "pressure")
+        lines.append(f"  pressure at the start less pressure at the end {drop}; the rise takes {rise}")
+        if problem.pump_pressure is not None:
+            lines.append(f"  the pump adds {_quantity(units, problem.pump_pressure, 'pressure')}")
+    return "\n".join(lines)
+
+
+def no_solution_json(question: Question, reason: str) -> str:
+    """Return the same as JSON."""
+    block = {"schema": 1, "units": _units_block(question.units), "found": None, "error": reason}
+    return json.dumps(block, indent=2, ensure_ascii=False)

@@ -1,0 +1,321 @@
+"""From the options of ``supplycheck pipe`` to a one-pipe problem."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+from typing import Any, Final
+
+import click
+
+from supplycheck.errors import NotInCatalogueError
+from supplycheck.hydraulics import (
+    ConstantFactor,
+    DarcyWeisbach,
+    HazenWilliams,
+    OnePipe,
+    OnePipeResult,
+    PipeLaw,
+    solve_one_pipe,
+    water_density,
+    water_viscosity,
+)
+from supplycheck.model import HEAD_FORM, HW_METRIC, HW_US
+from supplycheck.project.quantity import NumberFault, Sign, read_number
+from supplycheck.units import BAR, FOOT, GRAVITY, PSI, UNIT_SETS, UnitSet
+
+_FORMS: Final = {"us": HW_US, "metric": HW_METRIC, "head": HEAD_FORM}
+_COLD: Final = 288.15
+
+
+@dataclass(frozen=True, slots=True)
+class Question:
+    """A problem and how it was put: unit set, pressures at the ends [Pa], texts for the reader."""
+
+    problem: OnePipe
+    units: UnitSet
+    start_pressure: float | None
+    end_pressure: float | None
+    law_name: str
+    fluid_name: str
+    weight_name: str
+    material: str | None
+    size_name: str
+    assumptions: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class NextSize:
+    """The next larger size of a material: bore [m] and what the pipe does at that bore."""
+
+    material: str
+    nominal: str
+    bore: float
+    source: str
+    result: OnePipeResult
+
+
+@dataclass(frozen=True, slots=True)
+class _Options:
+    """The options and the unit set in which bare numbers stand."""
+
+    given: Mapping[str, Any]
+    units: UnitSet
+
+    def has(self, name: str) -> bool:
+        return self.given[name] is not None
+
+    def number(self, name: str, kind: str, sign: Sign = "positive") -> float | None:
+        """Return option ``name`` in SI, ``None`` where it is not given."""
+        text = self.given[name]
+        if text is None:
+            return None
+        try:
+            return read_number(text, kind, sign).si(self.units)
+        except NumberFault as fault:
+            raise _bad(name, text, fault) from None
+
+    def head(self, name: str, bare: str, weight: float) -> float | None:
+        """Return a pressure [Pa] given as one or as a head; a bare number is of kind ``bare``."""
+        text = self.given[name]
+        if text is None:
+            return None
+        other = "length" if bare == "pressure" else "pressure"
+        try:
+            value, kind = read_number(text, bare).si(self.units), bare
+        except NumberFault as fault:
+            try:
+                value, kind = read_number(text, other).si(self.units), other
+            except NumberFault:
+                raise _bad(name, text, fault) from None
+        return value if kind == "pressure" else value * weight
+
+
+def _bad(name: str, text: str, fault: NumberFault) -> click.BadParameter:
+    remedy = f"; {fault.remedy}" if fault.remedy else ""
+    message = f"{text!r} {fault.problem}; allowed: {fault.allowed}{remedy}"
+    return click.BadParameter(message, param_hint="--" + name.replace("_", "-"))
+
+
+def ask(given: Mapping[str, Any]) -> Question:
+    """Return the question that the options put; :class:`click.UsageError` where they do not fit."""
+    options = _Options(given, UNIT_SETS[given["units"]])
+    law, law_name = _law(options)
+    density, viscosity, fluid_name, assumptions = _fluid(options, law)
+    weight, weight_name = _unit_weight(options, law, density)
+    start, end = _ends(options)
+    bore, size_name = _bore(options)
+    if options.has("pump_power") and not options.has("efficiency"):
+        raise click.UsageError(
+            "--pump-power is the power at the shaft: give --efficiency too "
+            "(1 where it is what the fluid gets)"
+        )
+    problem = OnePipe(
+        law=law,
+        length=options.number("length", "length", "zero or more") or 0.0,
+        density=density,
+        unit_weight=weight,
+        viscosity=viscosity,
+        flow=options.number("flow", "flow"),
+        bore=bore,
+        drop=None if start is None or end is None else start - end,
+        loss=options.head("loss", "pressure", weight),
+        rise=options.number("rise", "length", "any") or 0.0,
+        minor_k=options.number("minor_k", "ratio", "zero or more") or 0.0,
+        equivalent_length=options.number("equivalent_length", "length", "zero or more") or 0.0,
+        start="reservoir" if given["from_reservoir"] else "pipe",
+        end="jet" if given["jet"] else "reservoir" if given["to_reservoir"] else "pipe",
+        pump_pressure=options.head("pump_head", "length", weight),
+        pump_power=options.number("pump_power", "power"),
+        efficiency=_efficiency(options),
+    )
+    _check_ends(problem, start, end)
+    units = options.units
+    return Question(
+        problem,
+        units,
+        start,
+        end,
+        law_name,
+        fluid_name,
+        weight_name,
+        given["material"],
+        size_name,
+        assumptions,
+    )
+
+
+def _law(options: _Options) -> tuple[PipeLaw, str]:
+    """Return the friction law that the options name and its name for the reader."""
+    given = [name for name in ("c_factor", "roughness", "friction_factor") if options.has(name)]
+    if len(given) != 1:
+        found = " and ".join("--" + name.replace("_", "-") for name in given) or "none of them"
+        raise click.UsageError(
+            "give one of --c-factor (Hazen-Williams), --roughness (Darcy-Weisbach) and --friction-factor; "
+            f"found {found}"
+        )
+    wanted = "hazen-williams" if given[0] == "c_factor" else "darcy-weisbach"
+    if options.given["law"] not in (None, wanted):
+        raise click.UsageError(
+            f"--law {options.given['law']} does not go with --{given[0].replace('_', '-')}"
+        )
+    c_factor = options.number("c_factor", "ratio")
+    if c_factor is not None:
+        form = _FORMS[options.given["form"] or options.units.name]
+        law = HazenWilliams(c_factor, form.coefficient, form.flow_exponent, form.bore_exponent)
+        return law, f"{form.name}, C {c_factor:g}"
+    if options.has("form"):
+        raise click.UsageError("--form belongs to Hazen-Williams (--c-factor)")
+    factor = options.number("friction_factor", "ratio")
+    if factor is not None:
+        return ConstantFactor(factor), f"Darcy-Weisbach with the friction factor given, {factor:g}"
+    roughness = options.number("roughness", "roughness", "zero or more") or 0.0
+    shown = f"{options.units.from_si(roughness, 'roughness'):.4g} {options.units.symbol('roughness')}"
+    return DarcyWeisbach(roughness), f"Darcy-Weisbach, exact Colebrook factor, roughness {shown}"
+
+
+def _fluid(options: _Options, law: PipeLaw) -> tuple[float, float | None, str, tuple[str, ...]]:
+    """Return density [kg/m³], viscosity [Pa·s], name and assumptions."""
+    density = options.number("density", "mass_density")
+    viscosity = options.number("viscosity", "viscosity")
+    temperature = options.number("temperature", "temperature", "any")
+    if temperature is not None and (density is not None or viscosity is not None):
+        raise click.UsageError(
+            "--temperature is for water; a fluid of its own has --density and --viscosity"
+        )
+    if density is not None:
+        if viscosity is None and isinstance(law, DarcyWeisbach):
+            raise click.UsageError("a fluid of its own needs --viscosity as well as --density")
+        return density, viscosity, "as given", ()
+    if viscosity is not None:
+        raise click.UsageError("a fluid of its own needs --density as well as --viscosity")
+    assumptions: tuple[str, ...] = ()
+    if temperature is None:
+        if isinstance(law, DarcyWeisbach | ConstantFactor):
+            raise click.UsageError(
+                "Darcy-Weisbach depends on the fluid: give --temperature for water, "
+                "or --density and --viscosity"
+            )
+        temperature = _COLD
+        assumed = options.units.text(_COLD, "temperature")
+        assumptions = (
+            f"water at {assumed}, for Re, velocity pressure and losses by K; give --temperature",
+        )
+    try:
+        rho = water_density(temperature=temperature)[0]
+        mu = water_viscosity(temperature=temperature)[0]
+    except ValueError:
+        raise click.BadParameter(
+            "water is known here from 0 to 100 °C (32 to 212 °F)", param_hint="--temperature"
+        ) from None
+    return rho, mu, f"water at {options.units.text(temperature, 'temperature')}", assumptions
+
+
+def _unit_weight(options: _Options, law: PipeLaw, density: float) -> tuple[float, str]:
+    """Return the weight [Pa/m] with which a rise is counted, and where it comes from."""
+    if isinstance(law, HazenWilliams) and not options.has("density"):
+        if options.units.name == "us":
+            return 0.433 * PSI / FOOT, "0.433 psi/ft, as NFPA 13 prints it"
+        return 0.098 * BAR, "0.098 bar/m, as EN 12845 prints it"
+    weight = density * GRAVITY
+    return (
+        weight,
+        f"{options.units.from_si(weight, 'gradient'):.4g} {options.units.symbol('gradient')}, density × g",
+    )
+
+
+def _ends(options: _Options) -> tuple[float | None, float | None]:
+    """Return the gauge pressures at start and end [Pa], ``None`` where nothing says them."""
+    given = options.given
+    if given["jet"] and given["to_reservoir"]:
+        raise click.UsageError(
+            "the end is either a free jet or still water: give one of --jet, --to-reservoir"
+        )
+    if given["jet"] and options.has("end_pressure"):
+        raise click.UsageError("a free jet has pressure 0: leave out --end-pressure")
+    start = options.number("start_pressure", "pressure", "any")
+    end = options.number("end_pressure", "pressure", "any")
+    if start is None and given["from_reservoir"]:
+        start = 0.0
+    if end is None and (given["jet"] or given["to_reservoir"]):
+        end = 0.0
+    if options.has("loss") and start is not None and end is not None:
+        raise click.UsageError("give either --loss or the pressures at both ends, not both")
+    return start, end
+
+
+def _check_ends(problem: OnePipe, start: float | None, end: float | None) -> None:
+    """Refuse a question that lacks one end."""
+    if problem.flow is not None and problem.bore is not None:
+        return
+    if problem.drop is None and problem.loss is None:
+        lacking = [
+            name
+            for name, value in (
+                ("start (--start-pressure or --from-reservoir)", start),
+                ("end (--end-pressure, --to-reservoir or --jet)", end),
+            )
+            if value is None
+        ]
+        if problem.flow is None and problem.bore is None:
+            raise click.UsageError("give --flow or --diameter (or --material and --size)")
+        what = "flow" if problem.flow is None else "diameter"
+        raise click.UsageError(
+            f"to find the {what}, give --loss or the pressure at both ends; nothing is said of the "
+            + " and the ".join(lacking)
+        )
+
+
+def _efficiency(options: _Options) -> float | None:
+    """Return the efficiency as a fraction, written 0.7 or 70 %."""
+    text = options.given["efficiency"]
+    if text is None:
+        return None
+    kind = "percent" if "%" in text else "ratio"
+    value = options.number("efficiency", kind)
+    if value is not None and value > 1:
+        raise click.BadParameter(f"{text!r} is above 1; write 0.7 or 70%", param_hint="--efficiency")
+    return value
+
+
+def _bore(options: _Options) -> tuple[float | None, str]:
+    """Return the bore [m] and the size it came from."""
+    diameter = options.number("diameter", "size")
+    if not options.has("size"):
+        return diameter, ""
+    if diameter is not None:
+        raise click.UsageError("give either --diameter or --material and --size")
+    if not options.has("material"):
+        raise click.UsageError("--size needs --material")
+    rows = _rows(options.given["material"])
+    for row in rows:
+        if row.nominal == options.given["size"]:
+            return row.bore, f"{row.nominal} {options.given['material']} ({row.source})"
+    sizes = ", ".join(row.nominal for row in rows)
+    raise click.BadParameter(
+        f"{options.given['size']!r} is not a size of {options.given['material']}; there are {sizes}",
+        param_hint="--size",
+    )
+
+
+def _rows(material: str) -> tuple[Any, ...]:
+    """Return the rows of ``material`` in the catalogue; a usage error names what is near."""
+    from supplycheck import catalogue
+
+    try:
+        return tuple(catalogue.bores(material))
+    except NotInCatalogueError as error:
+        near = f"; near: {', '.join(error.near)}" if error.near else ""
+        raise click.BadParameter(f"{error}{near}", param_hint="--material") from None
+
+
+def next_size(question: Question, result: OnePipeResult) -> NextSize | str | None:
+    """Return the next larger size where a diameter was found for a material; a text where none is."""
+    if result.found != "diameter" or question.material is None:
+        return None
+    rows = sorted(_rows(question.material), key=lambda row: row.bore)
+    for row in rows:
+        if row.bore >= result.bore:
+            solved = solve_one_pipe(replace(question.problem, bore=row.bore, drop=None, loss=None))
+            return NextSize(question.material, row.nominal, row.bore, row.source, solved)
+    return f"no size of {question.material} is large enough; the largest, {rows[-1].nominal}, is smaller"
