@@ -1,0 +1,1 @@
+"""Figures made of neutral drawing primitives; none of them knows a writer."""

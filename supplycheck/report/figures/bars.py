@@ -1,0 +1,134 @@
+"""Bars: where the pressure goes on the way to the supply, and demand against supply at a glance."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Final
+
+from supplycheck.report.drawing import Box, Drawing, Item, Label, Line
+from supplycheck.report.figures.axes import plain, round_steps, short
+from supplycheck.report.theme import CLAY, INK, LAGOON, MIST, PETROL, RULE, SAND, SLATE, text_width
+from supplycheck.results.records import PathStep, Result
+from supplycheck.units import UnitSet
+
+_ROW: Final = 15.0
+_NAMES: Final = 178.0
+_ENDS: Final = 88.0
+
+Scale = Callable[[float], float]
+
+# what, colour; the lightness falls in this order too
+_PARTS: Final = (
+    ("required at the head", MIST),
+    ("friction in pipe", PETROL),
+    ("fittings", LAGOON),
+    ("elevation", SAND),
+    ("devices", CLAY),
+)
+
+
+def pressure_bars(
+    path: tuple[PathStep, ...], first: int, result: Result, units: UnitSet, width: float
+) -> Drawing:
+    """Return bars for ``path``; ``first`` is the place of its first segment in the whole path."""
+    rows = len(path) + (1 if first == 0 else 0)
+    height = rows * _ROW + 52
+    every = [value for step in result.path for value in (step.pressure_start, step.pressure_end)]
+    top = max([*every, result.supply.available_pressure], default=0.0)
+    steps = round_steps(units.from_si(top, "pressure") * 1.02, 8)
+    right = width - _ENDS
+    scale = (right - _NAMES) / steps[-1]
+
+    def x(pressure: float) -> float:
+        return _NAMES + scale * max(units.from_si(pressure, "pressure"), 0.0)
+
+    bottom = 30.0
+    items: list[Item] = []
+    for pressure in steps:
+        at = _NAMES + scale * pressure
+        items.append(Line(((at, bottom), (at, height - 18)), RULE, 0.35))
+        items.append(Label(at, bottom - 9, plain(pressure), 6.4, "middle", colour=SLATE))
+    items.append(Label(right + 6, bottom - 9, units.symbol("pressure"), 6.4, colour=SLATE))
+    y = height - 18 - _ROW
+    if first == 0 and path:
+        items += _head_row(path[0], x, y, units)
+        y -= _ROW
+    for number, step in enumerate(path, start=first + 1):
+        items += _step_row(number, step, x, y, units)
+        y -= _ROW
+    at = x(result.supply.available_pressure)
+    items.append(Line(((at, bottom), (at, height - 14)), INK, 1.3, (5.0, 2.0)))
+    text = f"available {units.text(result.supply.available_pressure, 'pressure')}"
+    half = text_width(text, 6.6) / 2
+    items.append(Label(min(at, width - half), height - 10, text, 6.6, "middle", True))
+    return Drawing(width, height, (*items, *_key(width)), "pressure needed along the path")
+
+
+def _head_row(step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
+    left, end = x(0.0), x(step.pressure_start)
+    return [
+        Label(0, y + 3.5, short(f"head {step.start}", _NAMES - 10, 6.8), 6.8, bold=True),
+        Box(left, y + 2, end - left, _ROW - 5, MIST, INK, 0.5),
+        Label(end + 4, y + 3.5, units.text(step.pressure_start, "pressure"), 6.6),
+    ]
+
+
+def _step_row(number: int, step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
+    parts = (step.friction, step.fitting_friction, step.elevation, step.device)
+    name = f"{number}  {short(step.start, 58, 6.6)} to {short(step.end, 58, 6.6)}"
+    items: list[Item] = [
+        Label(0, y + 3.5, name, 6.6),
+        Label(_NAMES - 8, y + 3.5, short(step.nominal, 34, 6.6), 6.6, "end", colour=SLATE),
+    ]
+    at = step.pressure_start
+    reach = x(at)
+    for (_, colour), part in zip(_PARTS[1:], parts, strict=True):
+        start, end = sorted((x(at), x(at + part)))
+        if end - start > 0.05:
+            outline = INK if part < 0 else None
+            items.append(Box(start, y + 2, end - start, _ROW - 5, colour, outline, 0.6))
+        at += part
+        reach = max(reach, end)
+    left = x(step.pressure_start)
+    items.append(Line(((left, y + 2), (left, y + _ROW)), SLATE, 0.5))
+    items.append(Label(reach + 4, y + 3.5, units.text(step.pressure_end, "pressure"), 6.6))
+    return items
+
+
+def _key(width: float) -> list[Item]:
+    items: list[Item] = []
+    x = 0.0
+    for name, colour in _PARTS:
+        items.append(Box(x, 3, 9, 8, colour, INK, 0.4))
+        items.append(Label(x + 13, 4.2, name, 6.8))
+        x += 26 + text_width(name, 6.8)
+    items.append(Line(((x, 7), (x + 16, 7)), INK, 1.3, (5.0, 2.0)))
+    items.append(Label(min(x + 20, width), 4.2, "available at the demand", 6.8))
+    return items
+
+
+def answer_bars(result: Result, units: UnitSet, width: float) -> Drawing:
+    """Return two bars: the pressure needed, with what the margin rule adds, and the one available."""
+    demand, supply, margin = result.demand, result.supply, result.margin
+    need = demand.pressure + (margin.required or 0.0)
+    most = max(need, supply.available_pressure, supply.static_at_comparison, 1.0)
+    left, right = 82.0, width - 120.0
+    scale = (right - left) / most
+    x = [left + scale * max(value, 0.0) for value in (demand.pressure, need, supply.available_pressure)]
+    items: list[Item] = [
+        Label(0, 29, "needed", 7.4, colour=SLATE),
+        Box(left, 25, x[0] - left, 12, CLAY),
+    ]
+    text = units.text(demand.pressure, "pressure")
+    if margin.required:
+        items.append(Box(x[0], 25, x[1] - x[0], 12, "#ffffff", CLAY, 1.0, (2.0, 1.5)))
+        text = f"{text} + {units.text(margin.required, 'pressure')} by the rule"
+    items.append(Label(x[1] + 5, 28.5, text, 7.0))
+    items += [
+        Label(0, 11, "available", 7.4, colour=SLATE),
+        Box(left, 7, x[2] - left, 12, PETROL),
+        Label(x[2] + 5, 10.5, units.text(supply.available_pressure, "pressure"), 7.0),
+        Line(((left, 2), (left, 42)), INK, 0.8),
+        Line(((x[2], 2), (x[2], 42)), PETROL, 0.6, (1.5, 1.5)),
+    ]
+    return Drawing(width, 44, tuple(items), "pressure needed and available at the demand flow")

@@ -1,0 +1,123 @@
+"""Plane geometry of the plan: windows, clipping, and the outline round a set of heads."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from supplycheck.results.records import NodeRow
+
+Point = tuple[float, float]
+Cell = tuple[float, float, float, float]
+
+
+@dataclass(frozen=True, slots=True)
+class Window:
+    """A part of the plan [m]."""
+
+    x0: float
+    y0: float
+    x1: float
+    y1: float
+
+    def holds(self, x: float | None, y: float | None) -> bool:
+        """True where (``x``, ``y``) lies in the window."""
+        return x is not None and y is not None and self.x0 <= x <= self.x1 and self.y0 <= y <= self.y1
+
+    def grown(self, by: float) -> Window:
+        """Return the window larger by ``by`` on each side."""
+        return Window(self.x0 - by, self.y0 - by, self.x1 + by, self.y1 + by)
+
+
+def clipped(start: Point, end: Point, window: Window) -> tuple[Point, Point] | None:
+    """Return the part of the line inside ``window``, or ``None`` where there is none."""
+    (x0, y0), (x1, y1) = start, end
+    dx, dy = x1 - x0, y1 - y0
+    near, far = 0.0, 1.0
+    for step, room in ((-dx, x0 - window.x0), (dx, window.x1 - x0), (-dy, y0 - window.y0), (dy, window.y1 - y0)):
+        if step == 0:
+            if room < 0:
+                return None
+            continue
+        share = room / step
+        if step < 0:
+            near = max(near, share)
+        else:
+            far = min(far, share)
+    if near > far:
+        return None
+    return (x0 + near * dx, y0 + near * dy), (x0 + far * dx, y0 + far * dy)
+
+
+def cells_of_heads(nodes: Iterable[NodeRow]) -> list[Cell]:
+    """Return for each placed head of the design area a rectangle reaching half way to its neighbours.
+
+    Drawn only to show which heads are in the area; the figures of the area stand in the text.
+    """
+    placed = [n for n in nodes if n.kind == "sprinkler" and n.x is not None and n.y is not None]
+    points = [(node.x or 0.0, node.y or 0.0) for node in placed]
+    cells = []
+    for node, (x, y) in zip(placed, points, strict=True):
+        if not node.in_design_area:
+            continue
+        half = math.sqrt(node.area) / 2 if node.area else 1.5
+        across, along = half, half
+        near_x = [abs(px - x) for px, py in points if abs(px - x) > 0.05 and abs(px - x) >= 4 * abs(py - y)]
+        near_y = [abs(py - y) for px, py in points if abs(py - y) > 0.05 and abs(py - y) >= 4 * abs(px - x)]
+        across = min(near_x, default=2 * half) / 2
+        along = min(near_y, default=2 * half) / 2
+        cells.append((x - across, y - along, x + across, y + along))
+    return cells
+
+
+def outline_of(cells: list[Cell]) -> list[tuple[Point, Point]]:
+    """Return the edges round the union of ``cells`` as straight pieces."""
+    if not cells:
+        return []
+    xs = _distinct(edge for cell in cells for edge in (cell[0], cell[2]))
+    ys = _distinct(edge for cell in cells for edge in (cell[1], cell[3]))
+    covered = set()
+    for x0, y0, x1, y1 in cells:
+        for i in range(_index(xs, x0), _index(xs, x1)):
+            for j in range(_index(ys, y0), _index(ys, y1)):
+                covered.add((i, j))
+    edges: list[tuple[Point, Point]] = []
+    for i, j in sorted(covered):
+        left, right, low, high = xs[i], xs[i + 1], ys[j], ys[j + 1]
+        if (i - 1, j) not in covered:
+            edges.append(((left, low), (left, high)))
+        if (i + 1, j) not in covered:
+            edges.append(((right, low), (right, high)))
+        if (i, j - 1) not in covered:
+            edges.append(((left, low), (right, low)))
+        if (i, j + 1) not in covered:
+            edges.append(((left, high), (right, high)))
+    return _joined(edges)
+
+
+def _distinct(values: Iterable[float]) -> list[float]:
+    out: list[float] = []
+    for value in sorted(values):
+        if not out or value - out[-1] > 0.02:
+            out.append(value)
+    return out
+
+
+def _index(values: list[float], value: float) -> int:
+    return min(range(len(values)), key=lambda place: abs(values[place] - value))
+
+
+def _joined(edges: list[tuple[Point, Point]]) -> list[tuple[Point, Point]]:
+    """Join straight pieces that follow one another, so that dashes run through."""
+    out: list[tuple[Point, Point]] = []
+    for flat in (0, 1):
+        pieces = sorted(
+            (e for e in edges if (e[0][1] == e[1][1]) == (flat == 0)), key=lambda e: (e[0][1 - flat], e[0][flat])
+        )
+        for start, end in pieces:
+            if out and out[-1][1] == start and (out[-1][0][1 - flat] == end[1 - flat]):
+                out[-1] = (out[-1][0], end)
+            else:
+                out.append((start, end))
+    return out

@@ -1,0 +1,100 @@
+"""The map of required pressure by placement of the design area."""
+
+from __future__ import annotations
+
+from typing import Final
+
+from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
+from supplycheck.report.figures.axes import Taken
+from supplycheck.report.figures.outline import Window
+from supplycheck.report.figures.plan import Scale
+from supplycheck.report.theme import CLAY, INK, PAPER, RULE, SLATE, text_width
+from supplycheck.results.records import Placement, Result
+from supplycheck.units import UnitSet
+
+_SHADES: Final = ("#e3eef0", "#b5d3d9", "#7fb2bd", "#3f8797", "#0b4a5a")
+
+
+def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> Drawing | None:
+    """Return the map, or ``None`` where fewer than two placements have a place."""
+    area = result.design_area
+    spots = [one for one in area.placements if one.x is not None and one.y is not None]
+    if len(spots) < 2:
+        return None
+    nodes = {n.tag: (n.x, n.y) for n in result.nodes if n.x is not None and n.y is not None}
+    xs = [x or 0.0 for x, _ in nodes.values()] + [one.x or 0.0 for one in spots]
+    ys = [y or 0.0 for _, y in nodes.values()] + [one.y or 0.0 for one in spots]
+    window = Window(min(xs), min(ys), max(xs), max(ys))
+    wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
+    factor = min((size[0] - 32) / wide, (size[1] - 60) / high)
+    height = max(high * factor, 30.0) + 60
+    scale = Scale(window, factor, (size[0] - wide * factor) / 2, 34 + (height - 50 - high * factor) / 2)
+    items: list[Item] = [Box(0, 24, size[0], height - 24, PAPER, SLATE, 0.5)]
+    for pipe in result.pipes:
+        start, end = nodes.get(pipe.start), nodes.get(pipe.end)
+        if start and end and start != end:
+            a = scale.at(start[0] or 0.0, start[1] or 0.0)
+            b = scale.at(end[0] or 0.0, end[1] or 0.0)
+            items.append(Line((a, b), RULE, 0.4))
+    items += _spots(spots, result, scale, units, (size[0], height))
+    items += _key(spots, units, size[0])
+    return Drawing(size[0], height, tuple(items), "required pressure by placement of the design area")
+
+
+def _classes(spots: list[Placement]) -> list[float]:
+    low = min(one.required_pressure for one in spots)
+    high = max(one.required_pressure for one in spots)
+    return [low + (high - low) * place / len(_SHADES) for place in range(len(_SHADES) + 1)]
+
+
+def _shade(value: float, bounds: list[float]) -> int:
+    return next((i for i in range(len(_SHADES) - 1) if value < bounds[i + 1]), len(_SHADES) - 1)
+
+
+def _spots(
+    spots: list[Placement], result: Result, scale: Scale, units: UnitSet, size: tuple[float, float]
+) -> list[Item]:
+    bounds = _classes(spots)
+    radius = 4.5 if len(spots) <= 60 else 3.2 if len(spots) <= 300 else 2.2
+    area = result.design_area
+    taken = Taken(2, 26, size[0] - 2, size[1] - 2)
+    items: list[Item] = []
+    for one in sorted(spots, key=lambda spot: spot.required_pressure):
+        x, y = scale.at(one.x or 0.0, one.y or 0.0)
+        taken.take((x - radius, y - radius, x + radius, y + radius))
+        items.append(Dot(x, y, radius, _SHADES[_shade(one.required_pressure, bounds)], INK, 0.4))
+    named = [(area.governing, "governing"), (area.runner_up, "runner-up")]
+    for chosen, word in named:
+        if chosen is None or chosen.x is None or chosen.y is None:
+            continue
+        x, y = scale.at(chosen.x, chosen.y)
+        if word == "governing":
+            items.append(Dot(x, y, radius + 2.6, None, CLAY, 1.6))
+        else:
+            items.append(Dot(x, y, radius + 2.2, None, INK, 0.9))
+        text = f"{word} {units.text(chosen.required_pressure, 'pressure')}"
+        found = taken.place(x, y, text, 6.6, gap=radius + 3, bold=True)
+        if found:
+            items.append(Label(found[0], found[1], text, 6.6, found[2], True, INK, 0.0, PAPER))
+    if len(spots) <= 120:
+        for one in spots:
+            x, y = scale.at(one.x or 0.0, one.y or 0.0)
+            text = units.number(one.required_pressure, "pressure")
+            found = taken.place(x, y, text, 5.6, gap=radius)
+            if found:
+                items.append(Label(found[0], found[1], text, 5.6, found[2], colour=SLATE))
+    return items
+
+
+def _key(spots: list[Placement], units: UnitSet, width: float) -> list[Item]:
+    bounds = _classes(spots)
+    items: list[Item] = [Label(0, 8, f"required pressure, {units.symbol('pressure')}", 6.8, colour=SLATE)]
+    x = text_width("required pressure, L/min", 6.8) + 14
+    for place, shade in enumerate(_SHADES):
+        text = f"{units.number(bounds[place], 'pressure')} to {units.number(bounds[place + 1], 'pressure')}"
+        items.append(Dot(x + 4, 10.4, 4.0, shade, INK, 0.4))
+        items.append(Label(x + 11, 8, text, 6.4))
+        x += 22 + text_width(text, 6.4)
+    items.append(Dot(min(x + 4, width - 60), 10.4, 4.4, None, CLAY, 1.6))
+    items.append(Label(min(x + 12, width - 52), 8, "governing", 6.4))
+    return items

@@ -1,0 +1,281 @@
+"""The plan of the system drawn from its coordinates, whole and with the design area enlarged."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Final
+
+from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
+from supplycheck.report.figures.axes import Taken, plain, put_label, round_steps, short
+from supplycheck.report.figures.outline import Window, cells_of_heads, clipped, outline_of
+from supplycheck.report.theme import CLAY, INK, MIST, PAPER, PETROL, SAND, SLATE, text_width
+from supplycheck.results.records import NodeRow, PipeRow, Result
+from supplycheck.units import UnitSet
+
+_EDGE: Final = 16.0
+_BAR_ROOM: Final = 20.0
+_RAMP: Final = ("#7fb2bd", "#4f94a3", "#2b7787", "#0b4a5a", "#16262e")
+
+
+@dataclass(frozen=True, slots=True)
+class PlanView:
+    """A drawing of the plan and what could not be shown on it."""
+
+    drawing: Drawing
+    tags_shown: int
+    tags_wanted: int
+    without_place: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Scale:
+    """Places coordinates [m] on the drawing [points], the same in both directions."""
+
+    window: Window
+    factor: float
+    left: float
+    bottom: float
+
+    def at(self, x: float, y: float) -> tuple[float, float]:
+        """Return the place of (``x``, ``y``)."""
+        return (
+            self.left + (x - self.window.x0) * self.factor,
+            self.bottom + (y - self.window.y0) * self.factor,
+        )
+
+
+def has_plan(result: Result) -> bool:
+    """True where at least two nodes at different places have coordinates."""
+    return len({(node.x, node.y) for node in result.nodes if node.x is not None and node.y is not None}) > 1
+
+
+def whole_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> PlanView:
+    """Return the plan of everything that has coordinates."""
+    placed = [node for node in result.nodes if node.x is not None and node.y is not None]
+    xs, ys = [node.x or 0.0 for node in placed], [node.y or 0.0 for node in placed]
+    window = Window(min(xs), min(ys), max(xs), max(ys))
+    return _view(result, units, window, size, enlarged=False)
+
+
+def area_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> PlanView | None:
+    """Return the design area enlarged, or ``None`` where it is (nearly) the whole plan or unplaced."""
+    heads = [n for n in result.nodes if n.in_design_area and n.x is not None and n.y is not None]
+    if not heads:
+        return None
+    xs, ys = [node.x or 0.0 for node in heads], [node.y or 0.0 for node in heads]
+    reach = 0.12 * max(max(xs) - min(xs), max(ys) - min(ys), 3.0) + 1.5
+    window = Window(min(xs) - reach, min(ys) - reach, max(xs) + reach, max(ys) + reach)
+    return _view(result, units, window, size, enlarged=True)
+
+
+def _scale(window: Window, size: tuple[float, float]) -> tuple[Scale, float, float]:
+    """Return the scale and the width and height that the drawing really takes."""
+    wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
+    factor = min((size[0] - 2 * _EDGE) / wide, (size[1] - 2 * _EDGE - _BAR_ROOM) / high)
+    height = max(high * factor, 24.0) + 2 * _EDGE + _BAR_ROOM
+    left = (size[0] - wide * factor) / 2
+    bottom = _BAR_ROOM + _EDGE + (height - 2 * _EDGE - _BAR_ROOM - high * factor) / 2
+    return Scale(window, factor, left, bottom), size[0], height
+
+
+def _view(
+    result: Result, units: UnitSet, window: Window, size: tuple[float, float], *, enlarged: bool
+) -> PlanView:
+    scale, width, height = _scale(window, size)
+    places = {n.tag: (n.x, n.y) for n in result.nodes if n.x is not None and n.y is not None}
+    inside = [n for n in result.nodes if n.tag in places and window.holds(*places[n.tag])]
+    taken = Taken(2.0, _BAR_ROOM + 2, width - 2, height - 2)
+    items: list[Item] = [Box(0, _BAR_ROOM, width, height - _BAR_ROOM, PAPER, SLATE, 0.5)]
+    items += _area(result, scale)
+    strokes = pipe_strokes(result.pipes)
+    for pipe in result.pipes:
+        items += _pipe(pipe, places, scale, strokes, taken, enlarged=enlarged)
+    size_of = 2.3 if enlarged else max(0.8, min(2.0, 0.16 * scale.factor + 0.5))
+    for node in inside:
+        items += _symbol(node, scale.at(*places[node.tag]), size_of, taken)
+    tags, shown, wanted = _tags(result, inside, places, scale, units, taken, enlarged=enlarged)
+    items += tags
+    items += _scale_bar(scale, units, width)
+    items += _legend(width)
+    missing = tuple(node.tag for node in result.nodes if node.tag not in places)
+    what = "design area enlarged" if enlarged else "plan of the system"
+    return PlanView(Drawing(width, height, tuple(items), what), shown, wanted, missing)
+
+
+def _area(result: Result, scale: Scale) -> list[Item]:
+    """Return the ground and the outline of the design area."""
+    boxes = cells_of_heads(result.nodes)
+    items: list[Item] = []
+    for x0, y0, x1, y1 in boxes:
+        left, low = scale.at(max(x0, scale.window.x0 - 2), max(y0, scale.window.y0 - 2))
+        right, high = scale.at(min(x1, scale.window.x1 + 2), min(y1, scale.window.y1 + 2))
+        edge = _EDGE - 2
+        left, right = max(left, 2), max(right, 2)
+        del edge
+        items.append(Box(left, low, right - left, high - low, "#f4e9d2"))
+    for start, end in outline_of(boxes):
+        items.append(Line((scale.at(*start), scale.at(*end)), CLAY, 1.2, (5.0, 2.5)))
+    return items
+
+
+def pipe_strokes(pipes: tuple[PipeRow, ...]) -> dict[str, tuple[float, str]]:
+    """Return line width and colour by nominal size, wider and darker for a larger bore."""
+    bores: dict[str, float] = {}
+    for pipe in pipes:
+        bores[pipe.nominal] = max(bores.get(pipe.nominal, 0.0), pipe.bore)
+    ordered = sorted(bores, key=lambda nominal: (bores[nominal], nominal))
+    last = max(len(ordered) - 1, 1)
+    return {
+        nominal: (0.6 + 2.6 * place / last, _RAMP[round((len(_RAMP) - 1) * place / last)])
+        for place, nominal in enumerate(ordered)
+    }
+
+
+def _pipe(
+    pipe: PipeRow,
+    places: dict[str, tuple[float | None, float | None]],
+    scale: Scale,
+    strokes: dict[str, tuple[float, str]],
+    taken: Taken,
+    *,
+    enlarged: bool,
+) -> list[Item]:
+    start, end = places.get(pipe.start), places.get(pipe.end)
+    if start is None or end is None or start == end:
+        return []
+    cut = clipped(start, end, scale.window.grown(0.0 if not enlarged else 12.0 / scale.factor))
+    if cut is None:
+        return []
+    a, b = scale.at(*cut[0]), scale.at(*cut[1])
+    width, colour = strokes[pipe.nominal]
+    dash = (2.0, 2.0) if pipe.valve == "closed" else ()
+    items: list[Item] = [Line((a, b), colour, width, dash)]
+    taken.take_line(a, b, width / 2 + 0.6)
+    long = math.hypot(b[0] - a[0], b[1] - a[1])
+    if enlarged and long > 26 and pipe.flow > 0:
+        items.append(_arrow(a, b, long))
+    return items
+
+
+def _arrow(a: tuple[float, float], b: tuple[float, float], long: float) -> Line:
+    """Return a small head in the middle of the pipe that points where the water goes."""
+    ux, uy = (b[0] - a[0]) / long, (b[1] - a[1]) / long
+    x, y = a[0] + 0.5 * (b[0] - a[0]), a[1] + 0.5 * (b[1] - a[1])
+    tip = (x + 3.4 * ux, y + 3.4 * uy)
+    left = (x - 2.6 * ux - 2.4 * uy, y - 2.6 * uy + 2.4 * ux)
+    right = (x - 2.6 * ux + 2.4 * uy, y - 2.6 * uy - 2.4 * ux)
+    return Line((tip, left, right), PAPER, 0.4, (), INK)
+
+
+def _symbol(node: NodeRow, at: tuple[float, float], size: float, taken: Taken) -> list[Item]:
+    x, y = at
+    if node.kind == "junction":
+        return [Dot(x, y, size * 0.45, INK)]
+    reach = size + 0.8
+    taken.take((x - reach, y - reach, x + reach, y + reach))
+    if node.kind == "sprinkler":
+        fill = CLAY if node.in_design_area else PAPER
+        return [Dot(x, y, size, fill, INK, 0.5)]
+    if node.kind == "supply":
+        big = size + 2.4
+        return [Line(((x - big, y - big), (x + big, y - big), (x, y + big)), PAPER, 0.6, (), PETROL)]
+    half = size + 1.2
+    return [Box(x - half, y - half, 2 * half, 2 * half, SAND, INK, 0.6)]
+
+
+def _tags(
+    result: Result,
+    inside: list[NodeRow],
+    places: dict[str, tuple[float | None, float | None]],
+    scale: Scale,
+    units: UnitSet,
+    taken: Taken,
+    *,
+    enlarged: bool,
+) -> tuple[list[Item], int, int]:
+    """Return the tags that fit, the most wanted first, and how many were placed and wanted."""
+
+    def rank(node: NodeRow) -> int:
+        first = {result.demand.governing_head, result.demand.node}
+        if node.tag in first or node.kind in {"supply", "hose", "hydrant", "outlet"}:
+            return 0
+        return 1 if node.in_design_area else 3 if node.kind == "sprinkler" else 2
+
+    style = Label(0, 0, "", 5.8 if enlarged else 5.2)
+    strong = Label(0, 0, "", 6.4, bold=True)
+    items: list[Item] = []
+    shown = 0
+    for node in sorted(inside, key=rank):
+        text = short(node.tag, 70, style.size)
+        if enlarged and node.in_design_area:
+            text = f"{short(node.tag, 46, style.size)}  {units.number(node.pressure, 'pressure')}"
+        at = scale.at(*places[node.tag])
+        label = put_label(taken, at, text, strong if rank(node) == 0 else style)
+        if label is not None:
+            items.append(label)
+            shown += 1
+    return items, shown, len(inside)
+
+
+def _scale_bar(scale: Scale, units: UnitSet, width: float) -> list[Item]:
+    per_unit = scale.factor * units.to_si(1.0, "length")
+    length = round_steps(90.0 / per_unit, 1)[1]
+    if length * per_unit > 150:
+        length /= 2
+    right = width - 4
+    left = right - length * per_unit
+    text = f"{plain(length)} {units.symbol('length')}"
+    return [
+        Line(((left, 8), (right, 8)), INK, 1.6),
+        Line(((left, 5), (left, 11)), INK, 0.8),
+        Line(((right, 5), (right, 11)), INK, 0.8),
+        Label(left - 5, 5.5, text, 6.6, "end"),
+    ]
+
+
+def _legend(width: float) -> list[Item]:
+    entries = (
+        (Dot(4, 8, 2.3, CLAY, INK, 0.5), "head in the design area"),
+        (Dot(4, 8, 2.3, PAPER, INK, 0.5), "head"),
+        (Line(((0, 5), (8, 5), (4, 12)), PAPER, 0.5, (), PETROL), "supply"),
+        (Box(1, 5, 6, 6, SAND, INK, 0.6), "hose, hydrant, outlet"),
+        (Line(((0, 8), (14, 8)), CLAY, 1.2, (5.0, 2.5)), "design area"),
+    )
+    items: list[Item] = []
+    x = 0.0
+    for symbol, text in entries:
+        if isinstance(symbol, Dot):
+            items.append(Dot(symbol.x + x, symbol.y, symbol.radius, symbol.fill, symbol.stroke, symbol.line))
+        elif isinstance(symbol, Box):
+            items.append(Box(x + 1, 5, 6, 6, symbol.fill, symbol.stroke, symbol.line))
+        else:
+            points = tuple((px + x, py) for px, py in symbol.points)
+            items.append(Line(points, symbol.stroke, symbol.width, symbol.dash, symbol.fill))
+        shift = 18 if text == "design area" else 11
+        items.append(Label(x + shift, 5.5, text, 6.4))
+        x += shift + text_width(text, 6.4) + 12
+    return items if x < width else items[:4]
+
+
+def size_legend(pipes: tuple[PipeRow, ...], units: UnitSet, width: float) -> Drawing:
+    """Return the legend of pipe sizes: a sample of the line, the nominal size, the bore or bores."""
+    strokes = pipe_strokes(pipes)
+    items: list[Item] = []
+    x, rows = 0.0, 1
+    placed: list[tuple[float, int, str, str]] = []
+    for nominal in strokes:
+        bores = sorted({pipe.bore for pipe in pipes if pipe.nominal == nominal})
+        text = f"{short(nominal, 120, 6.6)} ({' / '.join(units.text(bore, 'size') for bore in bores[:3])})"
+        wide = 32 + text_width(text, 6.6)
+        if x + wide > width and x > 0:
+            x, rows = 0.0, rows + 1
+        placed.append((x, rows, nominal, text))
+        x += wide + 8
+    height = rows * 11.0 + 2
+    for x, row, nominal, text in placed:
+        y = height - row * 11.0
+        stroke, colour = strokes[nominal]
+        items.append(Line(((x, y + 2.4), (x + 22, y + 2.4)), colour, stroke))
+        items.append(Label(x + 27, y, text, 6.6))
+    return Drawing(width, height, tuple(items), "line by pipe size")

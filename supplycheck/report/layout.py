@@ -1,0 +1,210 @@
+"""From the neutral document to pages: places everything, breaks lines and pages, computes nothing."""
+
+from __future__ import annotations
+
+from typing import Final
+
+from supplycheck.report.document import (
+    BlankLines,
+    Block,
+    Document,
+    Facts,
+    Figure,
+    Heading,
+    Listing,
+    Paragraph,
+    Section,
+    Table,
+    Verdict,
+)
+from supplycheck.report.drawing import Box, Item, Label, Line
+from supplycheck.report.sheet import Sheet, Sheets
+from supplycheck.report.sheet_table import put_table
+from supplycheck.report.theme import CLAY, INK, MIST, PAPER, PETROL, RULE, SLATE, VERDICT_COLOURS
+from supplycheck.report.wrapping import Ruler, wrap
+
+_SIZES: Final = {"body": 8.4, "lead": 9.6, "small": 7.0, "caution": 8.4}
+
+
+def lay_out(document: Document, ruler: Ruler) -> list[Sheet]:
+    """Return the pages of ``document`` as primitives, ready to be painted."""
+    sheets = Sheets(document, ruler)
+    sheets.turn(False)
+    _front(sheets, document)
+    for number, section in enumerate(document.sections):
+        _section(sheets, section, number)
+    return sheets.finish()
+
+
+def _front(sheets: Sheets, document: Document) -> None:
+    size = 17.0 if len(document.title) <= 90 else 11.0
+    sheets.text(document.title, size, bold=True, colour=INK)
+    if document.subtitle:
+        sheets.text(document.subtitle, 8.6, colour=SLATE)
+    sheets.y -= 6
+
+
+def _section(sheets: Sheets, section: Section, number: int) -> None:
+    if section.fresh or section.landscape != sheets.landscape:
+        sheets.turn(section.landscape)
+    if number > 0:
+        sheets.need(96)
+        if not sheets.is_fresh:
+            sheets.y -= 8
+        sheets.sheet.entries.append((section.title, sheets.y))
+        sheets.text(section.title, 13.0, bold=True, colour=PETROL)
+        sheets.put(Line(((sheets.left, sheets.y), (sheets.left + sheets.room, sheets.y)), PETROL, 1.1))
+        sheets.y -= 7
+    else:
+        sheets.sheet.entries.append((section.title, sheets.top))
+    for block in section.blocks:
+        _block(sheets, block)
+
+
+def _block(sheets: Sheets, block: Block) -> None:
+    match block:
+        case Heading():
+            sheets.need(44)
+            sheets.y -= 4
+            sheets.text(block.text, 9.4, bold=True, colour=PETROL)
+            sheets.y -= 2
+        case Paragraph():
+            _paragraph(sheets, block)
+        case Facts():
+            _facts(sheets, block)
+        case Table():
+            put_table(sheets, block)
+        case Figure():
+            _figure(sheets, block)
+        case Verdict():
+            _verdict(sheets, block)
+        case BlankLines():
+            _blank_lines(sheets, block)
+        case Listing():
+            _listing(sheets, block)
+
+
+def _paragraph(sheets: Sheets, block: Paragraph) -> None:
+    size = _SIZES[block.tone]
+    indent = 0.0
+    if block.bullet:
+        indent = 14.0
+        sheets.need(size * 1.38)
+        y = sheets.y - size * 1.38 + size * 0.3
+        sheets.put(Label(sheets.left, y, sheets.ruler.clean(block.bullet), size, bold=True, colour=CLAY))
+    colour = SLATE if block.tone == "small" else INK
+    sheets.text(block.text, size, bold=block.tone == "lead", colour=colour, indent=indent)
+    sheets.y -= 3
+
+
+def _facts(sheets: Sheets, block: Facts) -> None:
+    """Labels and values in columns; pairs read down the first column, then down the next."""
+    size, leading = 8.0, 10.8
+    columns = block.columns
+    share = sheets.room / columns
+    widest = max((sheets.ruler.width(label, size) for label, _ in block.pairs), default=0.0)
+    label_room = min(widest + 10, share * 0.42)
+    for first in range(0, len(block.pairs), columns):
+        group = block.pairs[first : first + columns]
+        labels = [wrap(label, label_room - 6, size, sheets.ruler) for label, _ in group]
+        values = [wrap(value, share - label_room - 10, size, sheets.ruler) for _, value in group]
+        deep = max(len(lines) for lines in labels + values)
+        for place in range(deep):
+            sheets.need(leading)
+            sheets.y -= leading
+            for column, (label, value) in enumerate(zip(labels, values, strict=True)):
+                x = sheets.left + column * share
+                if place < len(label):
+                    sheets.put(Label(x, sheets.y + 2.6, label[place], size, colour=SLATE))
+                if place < len(value):
+                    sheets.put(Label(x + label_room, sheets.y + 2.6, value[place], size))
+        y = sheets.y - 0.6
+        sheets.put(Line(((sheets.left, y), (sheets.left + sheets.room, y)), RULE, 0.3))
+        sheets.y -= 1.6
+    sheets.y -= 6
+
+
+def _figure(sheets: Sheets, block: Figure) -> None:
+    drawing = block.drawing
+    caption = wrap(block.caption, sheets.room, 7.0, sheets.ruler) if block.caption else []
+    sheets.need(drawing.height + 18 + len(caption) * 9.7)
+    if block.title:
+        sheets.text(block.title, 9.4, bold=True, colour=PETROL)
+        sheets.y -= 3
+    sheets.y -= drawing.height
+    sheets.draw(drawing, sheets.left + max(0.0, (sheets.room - drawing.width) / 2), sheets.y)
+    sheets.y -= 3
+    if block.caption:
+        sheets.text(block.caption, 7.0, colour=SLATE)
+    sheets.y -= 7
+
+
+def _verdict(sheets: Sheets, block: Verdict) -> None:
+    colour = VERDICT_COLOURS[block.word]
+    sentence = wrap(block.sentence, sheets.room - 28, 8.8, sheets.ruler)
+    height = 40 + len(sentence) * 12.2
+    sheets.need(height + 66)
+    sheets.y -= height
+    x, y = sheets.left, sheets.y
+    items: list[Item] = [Box(x, y, sheets.room, height, fill=colour)]
+    items.append(_label(x + 14, y + height - 26, block.word.upper(), 20.0, colour=PAPER, bold=True))
+    for place, line in enumerate(sentence):
+        items.append(_label(x + 14, y + height - 42 - place * 12.2, line, 8.8, colour=PAPER))
+    if block.word == "not adequate":
+        items.append(Box(x, y, 5, height, fill=INK))
+    sheets.put(*items)
+    _tiles(sheets, block, colour)
+
+
+def _label(x: float, y: float, text: str, size: float, *, colour: str = INK, bold: bool = False) -> Label:
+    return Label(x, y, text, size, "start", bold, colour)
+
+
+def _tiles(sheets: Sheets, block: Verdict, colour: str) -> None:
+    share = sheets.room / max(len(block.tiles), 1)
+    details = [wrap(tile.detail, share - 14, 7.0, sheets.ruler) for tile in block.tiles]
+    height = 42 + max((len(lines) for lines in details), default=0) * 9.2
+    sheets.y -= height
+    items: list[Item] = [Box(sheets.left, sheets.y, sheets.room, height, fill=MIST)]
+    for place, (tile, detail) in enumerate(zip(block.tiles, details, strict=True)):
+        x = sheets.left + place * share + 8
+        items.append(_label(x, sheets.y + height - 13, tile.label, 7.4, colour=SLATE))
+        size = 13.5
+        value = sheets.ruler.clean(tile.value)
+        while sheets.ruler.width(value, size, True) > share - 12 and size > 7:
+            size -= 0.5
+        items.append(_label(x, sheets.y + height - 30, value, size, bold=True))
+        for row, line in enumerate(detail):
+            items.append(_label(x, sheets.y + height - 42 - row * 9.2, line, 7.0, colour=SLATE))
+        if place:
+            rule = ((x - 8, sheets.y + 6), (x - 8, sheets.y + height - 6))
+            items.append(Line(rule, RULE, 0.6))
+    items.append(Line(((sheets.left, sheets.y), (sheets.left + sheets.room, sheets.y)), colour, 1.6))
+    sheets.put(*items)
+    sheets.y -= 10
+
+
+def _blank_lines(sheets: Sheets, block: BlankLines) -> None:
+    sheets.need(40 + 24 * (len(block.labels) + block.remarks))
+    sheets.text(block.title, 9.4, bold=True, colour=PETROL)
+    right = sheets.left + sheets.room
+    for label in block.labels:
+        sheets.y -= 24
+        x = sheets.left + 150
+        sheets.put(Label(sheets.left, sheets.y, label, 8.0, colour=SLATE))
+        sheets.put(Line(((x, sheets.y - 1), (right, sheets.y - 1)), SLATE, 0.5))
+    for _ in range(block.remarks):
+        sheets.y -= 22
+        sheets.put(Line(((sheets.left, sheets.y - 1), (right, sheets.y - 1)), SLATE, 0.5))
+    sheets.y -= 14
+
+
+def _listing(sheets: Sheets, block: Listing) -> None:
+    sheets.need(40)
+    sheets.text(block.title, 8.4, bold=True, colour=PETROL)
+    if block.note:
+        sheets.text(block.note, 7.0, colour=SLATE)
+    sheets.y -= 2
+    for line in block.lines:
+        sheets.text(line, 6.4, colour=INK, indent=6)
+    sheets.y -= 8

@@ -1,0 +1,107 @@
+"""The first page: the whole answer in one look."""
+
+from __future__ import annotations
+
+from typing import Final
+
+from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph, Section, Tile, Verdict
+from supplycheck.report.figures.bars import answer_bars
+from supplycheck.report.show import Show, given
+from supplycheck.results.display import STATE_TITLES, counts, finding_text
+from supplycheck.results.records import Result
+
+MOST_QUESTIONS: Final = 6
+MOST_FAILS: Final = 5
+
+
+def answer(result: Result, width: float) -> Section:
+    """Return the first page."""
+    show = Show.of(result)
+    blocks: list[Block] = [
+        Verdict(result.verdict, result.verdict_text, _tiles(result, show)),
+        Figure("", answer_bars(result, show.units, width)),
+        Facts(_facts(result, show)),
+        *_fails(result, show),
+        *_questions(result),
+        Paragraph(
+            "This page says whether the supply carries the demand as calculated from the inputs listed in "
+            "this report. It is a preliminary aid, neither a design nor an approval: a licensed designer "
+            "checks and takes responsibility, and the authority having jurisdiction decides.",
+            "small",
+        ),
+    ]
+    return Section("The answer", tuple(blocks))
+
+
+def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
+    demand, supply, margin = result.demand, result.supply, result.margin
+    hose = f"{show.n(demand.sprinkler_flow, 'flow')} sprinklers + {show.t(demand.hose_flow, 'flow')} hose"
+    asked = "no rule given" if margin.required is None else show.t(margin.required, "pressure")
+    after = "cannot be judged" if margin.after_rule is None else show.signed(margin.after_rule, "pressure")
+    return (
+        Tile(
+            "Demand",
+            show.t(demand.pressure, "pressure"),
+            f"at {show.t(demand.flow, 'flow')} ({hose}), at {demand.node}",
+        ),
+        Tile(
+            "Available",
+            show.t(supply.available_pressure, "pressure"),
+            f"at {show.t(demand.flow, 'flow')}; static there {show.t(supply.static_at_comparison, 'pressure')}",
+        ),
+        Tile("Margin before the rule", show.signed(margin.pressure, "pressure"), "available − demand"),
+        Tile("Left after the rule", after, f"the rule asks {asked}"),
+    )
+
+
+def _facts(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
+    project, area = result.project, result.design_area
+    facts, criteria, balance = project.facts, project.criteria, result.balance
+    found = ", ".join(
+        f"{number} {STATE_TITLES[state].lower()}" for state, number in counts(result.findings).items() if number
+    )
+    density = f"{show.t(criteria.density, 'density')} over {show.t(criteria.required_area, 'area')}"
+    return (
+        ("What governs", result.governs),
+        ("Design area", area.statement),
+        ("Margin rule", result.margin.rule),
+        ("Hazard, system", f"{criteria.hazard}, {criteria.system}; {density}"),
+        ("Standard, edition", facts.standard),
+        ("Authority", given(facts.authority)),
+        ("Stage", facts.stage),
+        ("Findings", found or "no check was run"),
+        (
+            "Balance",
+            f"largest flow imbalance {show.small(balance.largest_flow_imbalance, 'flow')}, largest pressure "
+            f"imbalance {show.small(balance.largest_pressure_imbalance, 'pressure')}, recomputed from "
+            "the numbers reported",
+        ),
+    )
+
+
+def _fails(result: Result, show: Show) -> list[Block]:
+    fails = [finding for finding in result.findings if finding.state == "fail"]
+    if not fails:
+        return []
+    blocks: list[Block] = [Heading("Outside a limit")]
+    blocks += [
+        Paragraph(f"{one.check}: {finding_text(one, show.units)}", bullet="×") for one in fails[:MOST_FAILS]
+    ]
+    if len(fails) > MOST_FAILS:
+        blocks.append(Paragraph(f"{len(fails) - MOST_FAILS} more are listed under Findings.", "small"))
+    return blocks
+
+
+def _questions(result: Result) -> list[Block]:
+    questions = result.open_questions
+    if not questions:
+        return [Heading("Open questions"), Paragraph("None was recorded. Assumptions are listed in the report.")]
+    blocks: list[Block] = [Heading("Open questions")]
+    blocks += [
+        Paragraph(question, bullet=f"{place}.")
+        for place, question in enumerate(questions[:MOST_QUESTIONS], start=1)
+    ]
+    if len(questions) > MOST_QUESTIONS:
+        rest = len(questions) - MOST_QUESTIONS
+        blocks.append(Paragraph(f"{rest} more are listed at the end of the findings.", "small"))
+    return blocks

@@ -1,0 +1,131 @@
+"""Findings by state, scenarios, and the balance of the calculation."""
+
+from __future__ import annotations
+
+from supplycheck.report.document import Block, Facts, Heading, Paragraph, Row, Section, Table
+from supplycheck.report.show import Show, column, words
+from supplycheck.results.display import (
+    STATE_TITLES,
+    STATES,
+    finding_text,
+    measure_text,
+    remedy_text,
+    tags_text,
+)
+from supplycheck.results.records import Result, ScenarioRow
+
+
+def findings(result: Result) -> Section:
+    """Return the findings, what needs action first."""
+    show = Show.of(result)
+    columns = (words("Check"), words("What was found"), column("Measured"), column("Limit"), words("Source"))
+    blocks: list[Block] = [
+        Paragraph(
+            "Each check reports what it measured, the limit and where the limit comes from. Checks that were "
+            "not run are shown as not run. That no check is outside a limit says nothing about what was not "
+            "checked."
+        )
+    ]
+    for state in STATES:
+        rows = []
+        for one in result.findings:
+            if one.state != state:
+                continue
+            remedy = remedy_text(one, show.units)
+            notes = [f"What to do: {remedy}"] if remedy else []
+            notes += [f"At: {tags_text(one.tags, 30)}"] if one.tags else []
+            measured, limit = measure_text(one.measured, show.units), measure_text(one.limit, show.units)
+            rows.append(
+                Row(
+                    (one.check, finding_text(one, show.units), measured, limit, one.source),
+                    note="  ·  ".join(notes),
+                )
+            )
+        if rows:
+            blocks.append(Table(f"{STATE_TITLES[state]} ({len(rows)})", columns, tuple(rows)))
+    if len(blocks) == 1:
+        blocks.append(Paragraph("No check was run."))
+    if result.open_questions:
+        blocks.append(Heading("Open questions"))
+        blocks += [
+            Paragraph(question, bullet=f"{place}.")
+            for place, question in enumerate(result.open_questions, start=1)
+        ]
+    return Section("Findings", tuple(blocks), fresh=True)
+
+
+def flows(result: Result) -> Section:
+    """Return what really flows in each scenario, and how well the calculation balances."""
+    show = Show.of(result)
+    balance = result.balance
+    blocks: list[Block] = [_scenarios(result, show)]
+    blocks += [_head_table(row, show) for row in result.scenarios if row.head_flows]
+    pairs = (
+        (
+            "Largest flow imbalance",
+            f"{show.small(balance.largest_flow_imbalance, 'flow')} at {balance.flow_node or '–'}, of "
+            f"{show.t(balance.total_flow, 'flow')}",
+        ),
+        (
+            "Largest pressure imbalance",
+            f"{show.small(balance.largest_pressure_imbalance, 'pressure')} at {balance.pressure_pipe or '–'}",
+        ),
+        ("Iterations", str(balance.iterations)),
+    )
+    blocks += [
+        Heading("Balance"),
+        Paragraph(
+            "Recomputed from the node and pipe rows of this report: the flows at every node, and the pressures "
+            "along every pipe."
+        ),
+        Facts(pairs),
+    ]
+    return Section("What really flows, and the balance", tuple(blocks))
+
+
+def _scenarios(result: Result, show: Show) -> Table:
+    columns = (
+        words("Scenario"),
+        column("Total flow", show.s("flow")),
+        column("At the supply", show.s("pressure")),
+        column("Heads", show.s("flow")),
+        column("Open"),
+        words("Lowest head"),
+        column("There", show.s("pressure")),
+        column("Of its required flow"),
+        column("Density", show.s("density")),
+        column("Over-discharge"),
+        column("Storage lasts", "min"),
+    )
+    rows = tuple(
+        Row(
+            (
+                row.name,
+                show.n(row.total_flow, "flow"),
+                show.n(row.supply_pressure, "pressure"),
+                show.n(row.sprinkler_flow, "flow"),
+                str(row.heads_open),
+                row.lowest_head or "–",
+                show.n(row.lowest_pressure, "pressure"),
+                show.n(row.lowest_ratio, "ratio", 2),
+                show.n(row.delivered_density, "density"),
+                "–" if row.over_discharge is None else show.n(row.over_discharge, "ratio", 2),
+                "–" if row.minutes_of_storage is None else f"{row.minutes_of_storage:.0f}",
+            ),
+            note=row.note,
+        )
+        for row in result.scenarios
+    )
+    note = "With the supply as it is: heads give what the pressure makes them give, not only what is required."
+    return Table("Scenarios", columns, rows, note, empty="no scenario was calculated", size=6.6)
+
+
+def _head_table(row: ScenarioRow, show: Show) -> Table:
+    columns = (words("Head"), column("Flow", show.s("flow")), column("Pressure", show.s("pressure")))
+    three: list[Row] = []
+    cells = [(tag, show.n(flow, "flow"), show.n(pressure, "pressure")) for tag, flow, pressure in row.head_flows]
+    for first in range(0, len(cells), 3):
+        group = cells[first : first + 3]
+        group += [("", "", "")] * (3 - len(group))
+        three.append(Row(tuple(text for cell in group for text in cell)))
+    return Table(f"Heads in {row.name}", columns * 3, tuple(three), size=6.6)

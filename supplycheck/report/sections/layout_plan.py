@@ -1,0 +1,93 @@
+"""The plan of the system and the map of placements."""
+
+from __future__ import annotations
+
+from supplycheck.report.document import Block, Figure, Paragraph, Row, Section, Table
+from supplycheck.report.figures.placements import placement_map
+from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, size_legend, whole_plan
+from supplycheck.report.show import Show, column, words
+from supplycheck.results.display import tags_text
+from supplycheck.results.records import Placement, Result
+
+
+def plan(result: Result, width: float) -> Section:
+    """Return the plan, the enlarged design area and the placements that were tried."""
+    show = Show.of(result)
+    blocks: list[Block] = []
+    if has_plan(result):
+        whole = whole_plan(result, show.units, (width, 470.0))
+        blocks.append(Figure("Whole system", whole.drawing, _caption(whole)))
+        blocks.append(Figure("Pipe sizes (bore)", size_legend(result.pipes, show.units, width)))
+        near = area_plan(result, show.units, (width, 400.0))
+        if near is not None:
+            unit = show.s("pressure")
+            text = f"Behind the tag of a head: its pressure in {unit}. Arrows point the way of the flow. "
+            blocks.append(Figure("Design area, enlarged", near.drawing, text + _caption(near)))
+    else:
+        blocks.append(
+            Paragraph(
+                "The project gives no coordinates, so there is no plan to draw. The pipe information lists "
+                "every pipe with its end nodes; give x and y in the node table to have the plan drawn."
+            )
+        )
+    blocks += _placements(result, show, width)
+    return Section("Plan and design area", tuple(blocks), fresh=True)
+
+
+def _caption(view: PlanView) -> str:
+    texts = []
+    if view.tags_shown < view.tags_wanted:
+        texts.append(
+            f"{view.tags_shown} of {view.tags_wanted} tags have room here; all are in the node analysis."
+        )
+    if view.without_place:
+        count = len(view.without_place)
+        verb = "node has" if count == 1 else "nodes have"
+        texts.append(
+            f"{count} {verb} no coordinates and can be followed in the pipe information: "
+            f"{tags_text(view.without_place)}."
+        )
+    return " ".join(texts)
+
+
+def _placements(result: Result, show: Show, width: float) -> list[Block]:
+    area = result.design_area
+    blocks: list[Block] = [Paragraph(area.statement)]
+    drawn = placement_map(result, show.units, (width, 330.0))
+    if drawn is not None:
+        blocks.append(
+            Figure(
+                "Required pressure by placement of the design area",
+                drawn,
+                f"{area.tried} placements tried; each dot stands at the centre of its heads.",
+            )
+        )
+    chosen = [("governing", area.governing), ("runner-up", area.runner_up), ("most favourable", area.most_favourable)]
+    rows = tuple(_row(word, one, show) for word, one in chosen if one is not None)
+    columns = (
+        words("Placement"),
+        words("Label"),
+        column("Required", show.s("pressure")),
+        column("Flow", show.s("flow")),
+        column("Margin", show.s("pressure")),
+        column("Area", show.s("area")),
+        column("Heads"),
+        words("Tags"),
+    )
+    blocks.append(Table("Placements compared", columns, rows))
+    return blocks
+
+
+def _row(word: str, one: Placement, show: Show) -> Row:
+    return Row(
+        (
+            word,
+            one.label,
+            show.n(one.required_pressure, "pressure"),
+            show.n(one.flow, "flow"),
+            show.n(one.margin, "pressure"),
+            show.n(one.area, "area"),
+            str(len(one.heads)),
+            tags_text(one.heads, 40),
+        )
+    )

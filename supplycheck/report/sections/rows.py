@@ -1,0 +1,139 @@
+"""Node analysis and pipe information."""
+
+from __future__ import annotations
+
+from supplycheck.report.document import Block, Column, Paragraph, Row, Section, Table
+from supplycheck.report.show import Show, column, words
+from supplycheck.results.records import NodeRow, PipeRow, Result
+
+
+def node_analysis(result: Result) -> Section:
+    """Return every node with its elevation, K-factor, pressure and discharge."""
+    show = Show.of(result)
+    with_velocity = any(node.velocity_pressure for node in result.nodes)
+    columns = [
+        words("Node"),
+        words("Kind"),
+        column("Elevation", show.s("length")),
+        column("K-factor", show.s("k_factor")),
+        column("Pressure", show.s("pressure")),
+        column("Discharge", show.s("flow")),
+        column("Required", show.s("flow")),
+        column("Required", show.s("pressure")),
+        words("Required by"),
+        column("Area", show.s("area")),
+        words("Branch line"),
+    ]
+    if with_velocity:
+        columns.insert(5, column("Velocity pressure", show.s("pressure")))
+    rows = tuple(_node(node, show, with_velocity=with_velocity) for node in result.nodes)
+    note = "Heads in the design area are in bold. Pressures are gauge pressures in the demand solution."
+    table = Table("", tuple(columns), rows, note, size=6.6)
+    return Section("Node analysis", (table,), fresh=True)
+
+
+def _node(node: NodeRow, show: Show, *, with_velocity: bool) -> Row:
+    cells = [
+        node.tag,
+        f"{node.kind} {node.sprinkler}" if node.sprinkler else node.kind,
+        show.n(node.elevation, "length"),
+        show.n(node.k_factor, "k_factor"),
+        show.n(node.pressure, "pressure"),
+        show.n(node.discharge, "flow") if node.discharge else "–",
+        show.n(node.required_discharge, "flow"),
+        show.n(node.required_pressure, "pressure"),
+        node.required_by,
+        show.n(node.area, "area"),
+        node.branch_line or "",
+    ]
+    if with_velocity:
+        cells.insert(5, show.n(node.velocity_pressure, "pressure"))
+    return Row(tuple(cells), note=node.note, strong=node.in_design_area)
+
+
+def pipe_information(result: Result) -> Section:
+    """Return every pipe with what the standard asks a report to carry."""
+    show = Show.of(result)
+    darcy = any(pipe.roughness is not None and pipe.c_factor is None for pipe in result.pipes)
+    second = any(pipe.second_law_friction_loss is not None for pipe in result.pipes)
+    rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in result.pipes)
+    blocks: list[Block] = [
+        Paragraph(
+            "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt pressure at "
+            "the start and the end, pe change by elevation, pf friction with fittings, pd devices: "
+            "pt start − pt end = pf + pe + pd.",
+            "small",
+        ),
+        Table("", _pipe_columns(show, darcy=darcy, second=second), rows, size=6.3),
+    ]
+    return Section("Pipe information", tuple(blocks), landscape=True, fresh=True)
+
+
+def _pipe_columns(show: Show, *, darcy: bool, second: bool) -> tuple[Column, ...]:
+    flow, pressure, length = show.s("flow"), show.s("pressure"), show.s("length")
+    law = [column("ε", show.s("roughness")), column("f")] if darcy else [column("C")]
+    law = [Column("Rough- ness", show.s("roughness"), right=True), column("f")] if darcy else law
+    columns = [
+        words("From"),
+        words("To"),
+        column("Q added", flow),
+        column("Q total", flow),
+        words("Nominal"),
+        column("Bore", show.s("size")),
+        column("L", length),
+        column("F", length),
+        column("T", length),
+        *law,
+        column("Loss per length", show.s("gradient")),
+        column("pt start", pressure),
+        column("pf", pressure),
+        column("pe", pressure),
+        column("pd", pressure),
+        column("pt end", pressure),
+        column("Velocity", show.s("velocity")),
+    ]
+    if second:
+        columns.append(column("pf by the second law", pressure))
+    return tuple(columns)
+
+
+def _pipe(pipe: PipeRow, show: Show, *, darcy: bool, second: bool) -> Row:
+    fine = 2 if show.units.name == "us" else 3
+    law = [f"{pipe.c_factor:g}" if pipe.c_factor is not None else "–"]
+    if darcy:
+        law = [show.n(pipe.roughness, "roughness"), show.n(pipe.friction_factor, "ratio", 4)]
+    cells = [
+        pipe.start,
+        pipe.end,
+        show.n(pipe.flow_added, "flow"),
+        show.n(pipe.flow, "flow"),
+        pipe.nominal,
+        show.n(pipe.bore, "size"),
+        show.n(pipe.length, "length"),
+        show.n(pipe.equivalent_length, "length"),
+        show.n(pipe.total_length, "length"),
+        *law,
+        show.n(pipe.friction_gradient, "gradient"),
+        show.n(pipe.start_pressure, "pressure", fine),
+        show.n(pipe.friction_loss, "pressure", fine),
+        show.n(pipe.elevation_loss, "pressure", fine),
+        show.n(pipe.device_loss, "pressure", fine),
+        show.n(pipe.end_pressure, "pressure", fine),
+        show.n(pipe.velocity, "velocity"),
+    ]
+    if second:
+        cells.append(show.n(pipe.second_law_friction_loss, "pressure", fine))
+    return Row(tuple(cells), note=_pipe_note(pipe))
+
+
+def _pipe_note(pipe: PipeRow) -> str:
+    parts = [pipe.tag, pipe.role, pipe.material]
+    if pipe.fittings_text:
+        parts.append(f"fittings: {pipe.fittings_text}")
+    if pipe.devices:
+        parts.append(f"devices: {', '.join(pipe.devices)}")
+    if pipe.valve != "open":
+        parts.append("closed" if pipe.valve == "closed" else "check valve")
+    if pipe.note:
+        parts.append(pipe.note)
+    return " · ".join(part for part in parts if part)

@@ -1,0 +1,162 @@
+"""The water supply: tests, curve, what was done to it, margin, graph."""
+
+from __future__ import annotations
+
+from supplycheck.model import FlowTest, Supply
+from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph, Row, Section, Table
+from supplycheck.report.figures.graph import supply_graph
+from supplycheck.report.show import Show, column, given, steps_table, words
+from supplycheck.results.records import Result
+
+
+def water(result: Result, width: float) -> Section:
+    """Return the water supply analysis."""
+    show = Show.of(result)
+    supply = result.project.supply
+    graph = supply_graph(result.curves, result.points, show.units, (width, 330.0))
+    blocks: list[Block] = [
+        Paragraph(result.supply.statement),
+        Facts(_numbers(result, show), columns=2),
+        Figure(
+            "Supply and demand",
+            graph,
+            "Dashed: beyond the greatest flow that was tested. The flow axis is linear in flow to the power "
+            "1.85, so that a measured supply is a straight line.",
+        ),
+    ]
+    for test in supply.tests:
+        blocks += _test(test, show)
+    if supply.tanks:
+        blocks.append(_tanks(supply, show))
+    blocks += [
+        _adjustments(supply, show),
+        steps_table("The curve, step by step", result.supply.steps, show),
+        Heading("Margin"),
+        Paragraph(result.margin.rule + (f" ({result.margin.source})" if result.margin.source else "")),
+        steps_table("The margin, step by step", result.margin.steps, show),
+    ]
+    return Section("Water supply analysis", tuple(blocks), fresh=True)
+
+
+def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
+    supply, demand = result.supply, result.demand
+    ratio = supply.tested_range_ratio
+    return (
+        ("Static", show.t(supply.static, "pressure")),
+        ("Residual", f"{show.t(supply.residual, 'pressure')} at {show.t(supply.test_flow, 'flow')}"),
+        ("Compared at", demand.node),
+        ("Static there", show.t(supply.static_at_comparison, "pressure")),
+        ("Demand there", f"{show.t(demand.pressure, 'pressure')} at {show.t(demand.flow, 'flow')}"),
+        ("Available there", show.t(supply.available_pressure, "pressure")),
+        ("Before adjustments", show.t(supply.unadjusted_pressure, "pressure")),
+        ("Flow at the demand pressure", show.t(supply.available_flow, "flow")),
+        ("Flow at 20 psi (1.38 bar)", f"{show.t(supply.flow_at_20_psi, 'flow')} at the test"),
+        ("Demand / tested flow", "–" if ratio is None else f"{ratio:.2f}"),
+    )
+
+
+def _test(test: FlowTest, show: Show) -> list[Block]:
+    kind = "Model values" if test.model else "Flow test"
+    measured = {True: "measured", False: "not measured", None: "not given"}[test.outlet_diameter_measured]
+    calibrated = test.gauge_calibrated.isoformat() if test.gauge_calibrated else "not given"
+    accuracy = "not given" if test.gauge_accuracy is None else show.t(test.gauge_accuracy, "percent")
+    pairs = (
+        ("Date, time", f"{test.date.isoformat()} {test.time}".strip()),
+        ("Node", test.node),
+        ("Static hydrant", given(test.static_hydrant)),
+        ("Flowing hydrant", given(test.flow_hydrant)),
+        ("Conducted by", given(test.conducted_by)),
+        ("Witnessed by", given(test.witnessed_by)),
+        ("Main", given(test.main)),
+        ("Gauge elevation", show.t(test.gauge_elevation, "length")),
+        ("Gauge range, accuracy", f"{show.t(test.gauge_range, 'pressure')}, {accuracy}"),
+        ("Gauge calibrated", calibrated),
+        ("Outlet diameters", measured),
+        ("Source", given(test.source)),
+    )
+    rows = [
+        Row(("static", show.n(0.0, "flow"), show.n(test.static, "pressure"), "", "", "", "")),
+    ]
+    for number, point in enumerate(test.points, start=1):
+        rows.append(
+            Row(
+                (
+                    f"point {number}",
+                    show.n(point.flow, "flow"),
+                    show.n(point.residual, "pressure"),
+                    "",
+                    "",
+                    "",
+                    "",
+                )
+            )
+        )
+        rows += [
+            Row(
+                (
+                    "   outlet" + (f" {outlet.hydrant}" if outlet.hydrant else ""),
+                    "",
+                    "",
+                    show.n(outlet.diameter, "size"),
+                    f"{outlet.coefficient:.2f} ({outlet.shape or outlet.origin})",
+                    show.n(outlet.pitot, "pressure"),
+                    f"{outlet.pumper_factor:.2f}",
+                )
+            )
+            for outlet in point.outlets
+        ]
+    columns = (
+        words("Reading"),
+        column("Flow", show.s("flow")),
+        column("Pressure at gauge", show.s("pressure")),
+        column("Outlet diameter", show.s("size")),
+        column("Coefficient"),
+        column("Pitot", show.s("pressure")),
+        column("Pumper factor"),
+    )
+    return [Heading(f"{kind} {test.tag}"), Facts(pairs, columns=2), Table("", columns, tuple(rows))]
+
+
+def _tanks(supply: Supply, show: Show) -> Table:
+    columns = (
+        words("Tank"),
+        words("Kind"),
+        words("Node"),
+        column("Water level", show.s("length")),
+        column("Volume", show.s("volume")),
+        column("Refill", show.s("flow")),
+    )
+    rows = tuple(
+        Row(
+            (
+                tank.tag,
+                tank.kind,
+                tank.node,
+                show.n(tank.water_level, "length"),
+                show.n(tank.volume, "volume"),
+                show.n(tank.refill, "flow"),
+            )
+        )
+        for tank in supply.tanks
+    )
+    return Table("Tanks", columns, rows)
+
+
+def _adjustments(supply: Supply, show: Show) -> Table:
+    what = {
+        "low supply": "static and residual lowered by {p}",
+        "static cap": "no pressure above {p}",
+        "percent": "every pressure times {f}",
+    }
+    rows = tuple(
+        Row(
+            (
+                one.kind,
+                what[one.kind].format(p=show.t(one.pressure, "pressure"), f=f"{one.factor:.3f}"),
+                given(one.reason),
+            )
+        )
+        for one in supply.adjustments
+    )
+    columns = (words("Adjustment, in the order applied"), words("What it does"), words("Reason"))
+    return Table("Adjustments of the curve", columns, rows, empty="none in the project")

@@ -1,0 +1,217 @@
+"""Tables on sheets: column widths, repeated headers, rows broken over pages, nothing clipped."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Final
+
+from supplycheck.report.document import Column, Row, Table
+from supplycheck.report.drawing import Box, Item, Label, Line
+from supplycheck.report.sheet import Sheets
+from supplycheck.report.theme import INK, MIST, PETROL, RULE, SLATE
+from supplycheck.report.wrapping import Ruler, wrap
+
+PAD: Final = 3.0
+LEAST: Final = 24.0
+
+
+@dataclass(frozen=True, slots=True)
+class _Grid:
+    """Where the columns of one table lie: widths [points] and the size of its letters."""
+
+    widths: tuple[float, ...]
+    size: float
+
+    @property
+    def leading(self) -> float:
+        return self.size * 1.3
+
+    @property
+    def total(self) -> float:
+        return sum(self.widths)
+
+
+def put_table(sheets: Sheets, table: Table) -> None:
+    """Write ``table`` from the cursor down."""
+    grid = _grid(table, sheets.room, sheets.ruler)
+    head = _header_lines(table.columns, grid, sheets.ruler)
+    height = _header_height(head, grid)
+    sheets.need(height + 3.2 * grid.leading + (14 if table.title else 0))
+    _title(sheets, table.title)
+    _header(sheets, table.columns, head, grid)
+    if not table.rows:
+        sheets.text(table.empty, grid.size, colour=SLATE, indent=PAD)
+    for number, row in enumerate(table.rows):
+        lines = [
+            wrap(cell, width - 2 * PAD, grid.size, sheets.ruler, bold=row.strong)
+            for cell, width in zip(row.cells, grid.widths, strict=True)
+        ]
+        notes = wrap(row.note, grid.total - 18, grid.size - 0.4, sheets.ruler) if row.note else []
+        _row(sheets, table, head, grid, (number, row, lines, notes))
+    sheets.put(Line(((sheets.left, sheets.y), (sheets.left + grid.total, sheets.y)), SLATE, 0.6))
+    sheets.y -= 4
+    if table.note:
+        sheets.text(table.note, 6.6, colour=SLATE)
+    sheets.y -= 8
+
+
+def _title(sheets: Sheets, title: str) -> None:
+    if title:
+        sheets.text(title, 8.4, bold=True, colour=PETROL)
+        sheets.y -= 3
+
+
+def _grid(table: Table, room: float, ruler: Ruler) -> _Grid:
+    size = table.size
+    natural = _natural(table, size, ruler)
+    while sum(natural) > room and size > 5.6 and not any(column.wrap for column in table.columns):
+        size -= 0.2
+        natural = _natural(table, size, ruler)
+    over = sum(natural) - room
+    if over <= 0:
+        return _Grid(_stretched(table, natural, room), size)
+    elastic = [width if column.wrap else 0.0 for column, width in zip(table.columns, natural, strict=True)]
+    widths = _shrunk(natural, elastic, over)
+    over = sum(widths) - room
+    if over > 0:
+        widths = _shrunk(widths, widths, over)
+    return _Grid(tuple(widths), size)
+
+
+def _natural(table: Table, size: float, ruler: Ruler) -> list[float]:
+    widths = []
+    for place, column in enumerate(table.columns):
+        words = [*column.title.split(" "), *column.unit.split(" ")]
+        need = max((ruler.width(word, size, True) for word in words), default=0.0)
+        cells = (ruler.width(ruler.clean(row.cells[place]), size, row.strong) for row in table.rows)
+        widths.append(max(need, max(cells, default=0.0), LEAST - 2 * PAD) + 2 * PAD + 0.5)
+    return widths
+
+
+def _stretched(table: Table, natural: list[float], room: float) -> tuple[float, ...]:
+    spare = room - sum(natural)
+    wide = [place for place, column in enumerate(table.columns) if column.wrap]
+    if wide:
+        return tuple(w + (spare / len(wide) if i in wide else 0.0) for i, w in enumerate(natural))
+    share = min(spare / len(natural), 26.0)
+    return tuple(width + share for width in natural)
+
+
+def _shrunk(widths: list[float], elastic: list[float], over: float) -> list[float]:
+    """Take ``over`` from the widest of the elastic columns, down to a least width."""
+    out = list(widths)
+    places = [place for place, width in enumerate(elastic) if width > 0]
+    for _ in range(40):
+        wide = [place for place in places if out[place] > 2 * LEAST]
+        if over <= 0.01 or not wide:
+            break
+        level = sorted({round(out[place], 3) for place in wide}, reverse=True)
+        top = [place for place in wide if out[place] >= level[0] - 0.002]
+        floor = max(level[1] if len(level) > 1 else 2 * LEAST, 2 * LEAST)
+        step = min(out[top[0]] - floor, over / len(top))
+        for place in top:
+            out[place] -= step
+        over -= step * len(top)
+    if over > 0.01 and places == list(range(len(out))):
+        scale = (sum(out) - over) / sum(out)
+        out = [width * scale for width in out]
+    return out
+
+
+def _header_lines(columns: tuple[Column, ...], grid: _Grid, ruler: Ruler) -> list[tuple[list[str], str]]:
+    return [
+        (wrap(column.title, width - 2 * PAD + 0.5, grid.size, ruler, bold=True), column.unit)
+        for column, width in zip(columns, grid.widths, strict=True)
+    ]
+
+
+def _header_height(head: list[tuple[list[str], str]], grid: _Grid) -> float:
+    most = max(len(lines) for lines, _ in head)
+    return (most + any(unit for _, unit in head)) * grid.leading + 6
+
+
+def _header(
+    sheets: Sheets, columns: tuple[Column, ...], head: list[tuple[list[str], str]], grid: _Grid
+) -> None:
+    height = _header_height(head, grid)
+    sheets.y -= height
+    items: list[Item] = [Box(sheets.left, sheets.y, grid.total, height, fill=MIST)]
+    has_units = any(unit for _, unit in head)
+    x = sheets.left
+    for column, width, (lines, unit) in zip(columns, grid.widths, head, strict=True):
+        y = sheets.y + 3.5 + (grid.leading if has_units else 0.0)
+        for line in reversed(lines):
+            items.append(_cell(x, y, width, line, grid.size, column.right, True))
+            y += grid.leading
+        if unit:
+            items.append(_cell(x, sheets.y + 3.5, width, unit, grid.size, column.right, False, SLATE))
+        x += width
+    items.append(Line(((sheets.left, sheets.y), (x, sheets.y)), SLATE, 0.8))
+    sheets.put(*items)
+
+
+def _cell(
+    x: float,
+    y: float,
+    width: float,
+    text: str,
+    size: float,
+    right: bool,
+    bold: bool,
+    colour: str = INK,
+) -> Label:
+    if right:
+        return Label(x + width - PAD, y, text, size, "end", bold, colour)
+    return Label(x + PAD, y, text, size, "start", bold, colour)
+
+
+_Laid = tuple[int, Row, list[list[str]], list[str]]
+
+
+def _row(
+    sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: _Laid
+) -> None:
+    """Write one row; one that is taller than a page goes on over the next."""
+    number, row, lines, notes = laid
+    start = 0
+    left = max(len(cell) for cell in lines) + len(notes)
+    while left > 0:
+        room = int((sheets.y - sheets.bottom - 4) / grid.leading)
+        if room < left and not _is_below_header(sheets, head, grid):
+            sheets.new_page()
+            _title(sheets, f"{table.title} (continued)" if table.title else "")
+            _header(sheets, table.columns, head, grid)
+            continue
+        taken = min(left, max(room, 1))
+        _part(sheets, grid, table.columns, (number, row, lines, notes), start, taken)
+        start += taken
+        left -= taken
+
+
+def _is_below_header(sheets: Sheets, head: list[tuple[list[str], str]], grid: _Grid) -> bool:
+    return sheets.y > sheets.top - _header_height(head, grid) - 40
+
+
+def _part(
+    sheets: Sheets, grid: _Grid, columns: tuple[Column, ...], laid: _Laid, start: int, taken: int
+) -> None:
+    _, row, lines, notes = laid
+    deep = max(len(cell) for cell in lines)
+    height = taken * grid.leading + 3.4
+    top = sheets.y
+    sheets.y -= height
+    items: list[Item] = []
+    x = sheets.left
+    for column, width, cell in zip(columns, grid.widths, lines, strict=True):
+        for place, line in enumerate(cell[start : start + taken]):
+            y = top - (place + 1) * grid.leading + grid.size * 0.12
+            if line:
+                items.append(_cell(x, y, width, line, grid.size, column.right, row.strong))
+        x += width
+    for place, line in enumerate(notes):
+        at = deep + place - start
+        if 0 <= at < taken:
+            y = top - (at + 1) * grid.leading + grid.size * 0.12
+            items.append(Label(sheets.left + 15, y, line, grid.size - 0.4, colour=SLATE))
+    items.append(Line(((sheets.left, sheets.y), (x, sheets.y)), RULE, 0.35))
+    sheets.put(*items)

@@ -1,0 +1,69 @@
+"""Numbers of one project as text, and tables of steps that several sections share."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from supplycheck.report.document import Column, Row, Table
+from supplycheck.results.display import value_text
+from supplycheck.results.records import HandStep, Result
+from supplycheck.units import UNIT_SETS, UnitSet
+
+
+class Show:
+    """Displays SI values in the units of one project."""
+
+    def __init__(self, units: UnitSet) -> None:
+        self.units = units
+
+    @classmethod
+    def of(cls, result: Result) -> Show:
+        """Return the display of ``result``'s project."""
+        return cls(UNIT_SETS[result.project.units])
+
+    def n(self, value: float | None, kind: str, decimals: int | None = None) -> str:
+        """Return the number without its unit."""
+        return self.units.number(value, kind, decimals)
+
+    def t(self, value: float | None, kind: str, decimals: int | None = None) -> str:
+        """Return the number with its unit."""
+        if kind not in self.units.units:
+            return value_text(value, kind, self.units)
+        return self.units.text(value, kind, decimals)
+
+    def signed(self, value: float | None, kind: str) -> str:
+        """Return the number with its unit and its sign, also where it is positive."""
+        text = self.t(value, kind)
+        return f"+{text}" if value is not None and value > 0 and text[:1].isdigit() else text
+
+    def s(self, kind: str) -> str:
+        """Return the symbol of the unit."""
+        return self.units.symbol(kind)
+
+    def small(self, value: float, kind: str) -> str:
+        """Return a residual of the calculation as a power of ten with its unit."""
+        return f"{self.units.from_si(value, kind):.1e}".replace("e-0", "e-") + f" {self.s(kind)}"
+
+
+def column(title: str, unit: str = "") -> Column:
+    """Return a column of numbers."""
+    return Column(title, unit, right=True)
+
+
+def words(title: str) -> Column:
+    """Return a column of text that may be broken."""
+    return Column(title, wrap=True)
+
+
+def steps_table(title: str, steps: Iterable[HandStep], show: Show, note: str = "") -> Table:
+    """Return steps as a table: what is worked out, the formula with its numbers, the result."""
+    rows = tuple(
+        Row((step.step, step.formula, show.t(step.value, step.kind)), note=step.note) for step in steps
+    )
+    columns = (words("Step"), words("Formula and numbers"), column("Result"))
+    return Table(title, columns, rows, note, empty="no steps recorded")
+
+
+def given(text: str) -> str:
+    """Return ``text``, or the words that nothing was given."""
+    return text if text.strip() else "not given"

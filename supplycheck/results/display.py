@@ -1,0 +1,116 @@
+"""Texts of findings and other words, filled with numbers in the project's units.
+
+One door for every reader-facing text: screen, PDF, HTML, tables and ``result.json`` all call these
+functions, so that they show the same words and the same digits.
+"""
+
+from __future__ import annotations
+
+import math
+import re
+from collections.abc import Iterable
+from types import MappingProxyType
+from typing import Final
+
+from supplycheck.findings import Finding, Measure, State
+from supplycheck.units import UnitSet
+
+STATES: Final[tuple[State, ...]] = ("fail", "missing", "ask authority", "ok", "not applicable")
+"""The states of a finding in the order in which they are shown: what needs action first."""
+
+STATE_TITLES: Final = MappingProxyType(
+    {
+        "fail": "Outside a limit",
+        "missing": "Not run: data missing",
+        "ask authority": "To be put to the authority",
+        "ok": "Within the limit",
+        "not applicable": "Not applicable here",
+    }
+)
+
+_FIELD: Final = re.compile(r"\{([A-Za-z_]\w*)\}")
+
+
+def measure_text(measure: Measure | None, units: UnitSet) -> str:
+    """Return ``measure`` as text with its unit; a dash for ``None``.
+
+    A kind that the unit set does not know (a count, say) prints as a plain number.
+    """
+    if measure is None:
+        return "–"
+    return value_text(measure.value, measure.kind, units)
+
+
+def value_text(value: float | None, kind: str, units: UnitSet) -> str:
+    """Return ``value`` [SI] of ``kind`` as text with its unit; a dash for ``None``.
+
+    >>> from supplycheck.units import US
+    >>> value_text(12, "count", US)
+    '12'
+    """
+    if value is None:
+        return "–"
+    if kind in units.units:
+        return units.text(value, kind)
+    if not math.isfinite(value):
+        return "–"
+    return f"{value:.6g}".replace("-", "−")
+
+
+def fill(text: str, finding: Finding, units: UnitSet) -> str:
+    """Return ``text`` with ``{measured}``, ``{limit}`` and the keys of ``finding.values`` filled in.
+
+    Braces that name nothing known stay as they were typed, and what is filled in is not read again.
+    """
+    known = {**finding.values, "measured": finding.measured, "limit": finding.limit}
+
+    def replaced(match: re.Match[str]) -> str:
+        name = match.group(1)
+        return measure_text(known[name], units) if name in known else match.group(0)
+
+    return _FIELD.sub(replaced, text)
+
+
+def finding_text(finding: Finding, units: UnitSet) -> str:
+    """Return the text of ``finding`` with its numbers."""
+    return fill(finding.text, finding, units)
+
+
+def remedy_text(finding: Finding, units: UnitSet) -> str:
+    """Return the remedy of ``finding`` with its numbers."""
+    return fill(finding.remedy, finding, units)
+
+
+def in_order(findings: Iterable[Finding]) -> list[Finding]:
+    """Return ``findings`` grouped by state, what needs action first, otherwise in their own order."""
+    return sorted(findings, key=lambda finding: STATES.index(finding.state))
+
+
+def counts(findings: Iterable[Finding]) -> dict[State, int]:
+    """Return how many findings there are of each state, in display order."""
+    found = list(findings)
+    return {state: sum(one.state == state for one in found) for state in STATES}
+
+
+def visible(text: str) -> str:
+    """Return ``text`` with control characters, which a page cannot carry, written out.
+
+    >>> visible("a" + chr(7) + "b")
+    'a\\\\x07b'
+    """
+    if text.isprintable():
+        return text
+    return "".join(char if char.isprintable() else _written_out(char) for char in text)
+
+
+def _written_out(char: str) -> str:
+    if char in "\u00a0\u2007\u202f\u2009\u2003\u2002":
+        return " "
+    return char.encode("unicode_escape").decode("ascii")
+
+
+def tags_text(tags: Iterable[str], most: int = 12) -> str:
+    """Return ``tags`` joined by commas, cut after ``most`` with the number left out."""
+    shown = list(tags)
+    text = ", ".join(shown[:most])
+    return f"{text} and {len(shown) - most} more" if len(shown) > most else text
