@@ -1,0 +1,267 @@
+"""The Newton core. It knows no pipes: arrays, a loss law and a first guess in; flows and heads out.
+
+Unknown are the flow q of every link and the head H of every free node, so that
+
+* loss(q) = H(start) − H(end) for every link, the loss strictly increasing in q, and
+* the flows at every free node add up to its outflow.
+
+The solution is the minimum of a strictly convex function of the flows, the content Σ∫loss dq less
+the work of the fixed heads [1]_; the step is Newton's on both sets of equations at once with the flows
+eliminated (the global gradient of Todini and Pilati [2]_), written for the increments so that rounding is
+that of the last increment. With ``damped`` the step is shortened until the slope of the content along
+it has come down, which makes convergence certain wherever a solution exists.
+
+The demand question adds one unknown for each group of nodes, the ``shift`` of its sources, and one
+condition: the least slack (head less required head) of the group is zero. The step takes the shift at
+which the least linearised slack is zero: a second right-hand side, no second factorisation.
+
+References
+----------
+.. [1] Collins, M., Cooper, L., Helgason, R., Kennington, J. and LeBlanc, L. (1978). Solving the pipe
+   network analysis problem using optimization techniques. Management Science 24, 747–760.
+.. [2] Todini, E. and Pilati, S. (1988). A gradient algorithm for the analysis of pipe networks. In:
+   Computer Applications in Water Supply, vol. 1, Research Studies Press, 1–20.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field, replace
+from typing import Final
+
+import numpy as np
+
+from supplycheck.network.links import BoolArray
+from supplycheck.network.nodal import Nodal
+from supplycheck.network.records import FloatArray, IntArray
+
+Law = Callable[[FloatArray], tuple[FloatArray, FloatArray]]
+
+HEAD_TOLERANCE: Final = 1e-5
+"""Largest loss residual and slack of a converged state [Pa]."""
+FLOW_TOLERANCE: Final = 1e-9
+"""Largest last step of a flow, as a part of the flow scale."""
+MASS_TOLERANCE: Final = 1e-11
+"""Largest imbalance of a node, as a part of the flow scale."""
+LEAST_RESPONSE: Final = 1e-9
+"""Least rise of a head for a rise of the supply that is believed [-]."""
+SEARCH_PART: Final = 0.5
+"""Part of the first slope of the content that a damped step may leave."""
+ROUGH_HEAD: Final = 1e-3
+"""Loss residual accepted where rounding stops the progress [Pa]."""
+
+_NONE: Final = np.zeros(0, dtype=np.int64)
+_EMPTY: Final = np.zeros(0)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Problem:
+    """Links (m,), free nodes (n,) in rows 0 … n−1 and fixed nodes (f,) in the rows behind them.
+
+    ``outflow`` (n,) and ``fixed`` (f,) heads. ``moves`` (f,) is 1 where a fixed head rises with the
+    shift of its group, else 0. ``floor_rows`` (k,), sorted by group, are free nodes that need the head
+    ``floors``; none in an operating problem. ``group`` numbers the groups of all n + f nodes and
+    ``groups`` counts them. ``valve_links`` (v,) get an extra loss such that the head at ``valve_rows``
+    is ``valve_heads``.
+    """
+
+    start: IntArray
+    end: IntArray
+    outflow: FloatArray
+    fixed: FloatArray
+    law: Law
+    one_way: BoolArray
+    moves: FloatArray
+    floor_rows: IntArray
+    floors: FloatArray
+    nodal: Nodal
+    group: IntArray
+    groups: int = 1
+    valve_links: IntArray = field(default_factory=lambda: _NONE)
+    valve_rows: IntArray = field(default_factory=lambda: _NONE)
+    valve_heads: FloatArray = field(default_factory=lambda: _EMPTY)
+    closed: BoolArray | None = None
+    ground: IntArray = field(default_factory=lambda: _NONE)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class State:
+    """Flows (m,), heads of all nodes (n + f,), shift of each group, extra loss of each valve."""
+
+    flow: FloatArray
+    head: FloatArray
+    shift: FloatArray
+    extra: FloatArray
+    iterations: int
+    converged: bool
+    energy: float
+    mass: float
+
+
+def first_state(problem: Problem, flow: FloatArray) -> State:
+    """Return the state before the first step, with ``flow`` as guessed."""
+    mean = float(problem.fixed.mean()) if len(problem.fixed) else 0.0
+    head = np.concatenate([np.full(len(problem.outflow), mean), problem.fixed])
+    extra = np.zeros(len(problem.valve_links))
+    return State(flow, head, np.zeros(problem.groups), extra, 0, False, np.inf, np.inf)
+
+
+def residuals(problem: Problem, state: State) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return energy residual (m,), mass residual (n,) and the slope of each loss (m,)."""
+    loss, slope = problem.law(state.flow)
+    energy = state.head[problem.start] - state.head[problem.end] - loss
+    energy[problem.valve_links] -= state.extra
+    n, nodes = len(problem.outflow), len(state.head)
+    leaving = np.bincount(problem.start, state.flow, minlength=nodes)
+    leaving -= np.bincount(problem.end, state.flow, minlength=nodes)
+    mass = -(leaving[:n] + problem.outflow)
+    if problem.closed is not None:
+        energy[problem.closed] = 0.0
+    return energy, mass, slope
+
+
+def solve(problem: Problem, state: State, *, limit: int = 40, damped: bool = False) -> State:
+    """Return the converged state, or the last one with ``converged`` false after ``limit`` steps."""
+    energy, mass, slope = residuals(problem, state)
+    for count in range(1, limit + 1):
+        step, shift, extra, head = _step(problem, state, energy, mass, slope)
+        if not (np.isfinite(step).all() and np.isfinite(head).all()):
+            break
+        length = 1.0
+        if damped and count > 1 and np.abs(mass).max(initial=0.0) <= 1e-9 * _scale(state.flow):
+            length = _line_search(problem, state.flow, step, head, extra)
+        flow = state.flow + length * step
+        head = head if length == 1.0 else _partly(problem, state.head, head, length)
+        state = replace(
+            state, flow=flow, head=head, shift=shift, extra=extra, iterations=state.iterations + 1
+        )
+        energy, mass, slope = residuals(problem, state)
+        worst = float(np.abs(energy).max(initial=0.0))
+        lost = float(np.abs(mass).max(initial=0.0))
+        scale = _scale(flow)
+        moved = length * float(np.abs(step).max(initial=0.0))
+        rounding = 1e-13 * float(np.abs(head).max(initial=0.0))
+        good = worst <= HEAD_TOLERANCE + rounding and moved <= FLOW_TOLERANCE * scale
+        good = good or (worst <= ROUGH_HEAD and count == limit)
+        if good and lost <= MASS_TOLERANCE * scale and _slack(problem, head) <= HEAD_TOLERANCE + rounding:
+            return replace(state, converged=True, energy=worst, mass=lost)
+    return replace(
+        state,
+        energy=float(np.abs(energy).max(initial=0.0)),
+        mass=float(np.abs(mass).max(initial=0.0)),
+    )
+
+
+def _scale(flow: FloatArray) -> float:
+    return max(float(np.abs(flow).max(initial=0.0)), 1e-9)
+
+
+def _slack(problem: Problem, head: FloatArray) -> float:
+    """Return by how much the least slack of any group differs from zero [Pa]."""
+    if not len(problem.floor_rows):
+        return 0.0
+    slack = head[problem.floor_rows] - problem.floors
+    return float(np.abs(np.minimum.reduceat(slack, _group_starts(problem))).max())
+
+
+def _group_starts(problem: Problem) -> IntArray:
+    if problem.groups == 1:
+        return np.zeros(1, dtype=np.int64)
+    return np.searchsorted(problem.group[problem.floor_rows], np.arange(problem.groups))
+
+
+def _partly(problem: Problem, old: FloatArray, new: FloatArray, length: float) -> FloatArray:
+    """Return heads ``length`` of the way; fixed heads go all the way."""
+    head = old + length * (new - old)
+    n = len(problem.outflow)
+    head[n:] = new[n:]
+    return head
+
+
+def _step(
+    problem: Problem, state: State, energy: FloatArray, mass: FloatArray, slope: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
+    """Return the step of the flows and the new shift, extra losses and heads."""
+    n, nodes = len(problem.outflow), len(state.head)
+    conductance = 1.0 / slope
+    if problem.closed is not None:
+        conductance[problem.closed] = 0.0
+    demand = len(problem.floor_rows) > 0
+    drive = [conductance * energy]
+    moves = np.zeros(nodes)
+    moves[n:] = problem.moves
+    if demand:
+        drive.append(conductance * (moves[problem.start] - moves[problem.end]))
+    for link in problem.valve_links:
+        pull = np.zeros(len(conductance))
+        pull[link] = -conductance[link]
+        drive.append(pull)
+    rhs = np.empty((n, len(drive)))
+    for column, push in enumerate(drive):
+        leaving = np.bincount(problem.start, push, minlength=nodes)
+        leaving -= np.bincount(problem.end, push, minlength=nodes)
+        rhs[:, column] = -leaving[:n]
+    rhs[:, 0] += mass
+    answer = problem.nodal.factorise(conductance, problem.ground)(rhs)
+    change = np.zeros(nodes)
+    change[:n] = answer[:, 0]
+    shift, extra = state.shift, state.extra
+    step = energy
+    if demand:
+        more = _shift_step(problem, state.head, answer)
+        by_node = more[problem.group]
+        change[:n] += answer[:, 1] * by_node[:n]
+        change[n:] = problem.moves * by_node[n:]
+        shift = shift + more
+    elif len(problem.valve_links):
+        hold = answer[:, 1:]
+        miss = problem.valve_heads - state.head[problem.valve_rows] - answer[problem.valve_rows, 0]
+        added = np.linalg.solve(hold[problem.valve_rows], miss)
+        change[:n] += hold @ added
+        extra = extra + added
+        step = energy.copy()
+        step[problem.valve_links] -= added
+    step = conductance * (step + change[problem.start] - change[problem.end])
+    return step, shift, extra, state.head + change
+
+
+def _shift_step(problem: Problem, head: FloatArray, answer: FloatArray) -> FloatArray:
+    """Return, for each group, the shift at which its least linearised slack is zero."""
+    rows = problem.floor_rows
+    lack = problem.floors - head[rows] - answer[rows, 0]
+    response = np.maximum(answer[rows, 1], LEAST_RESPONSE)
+    return np.maximum.reduceat(lack / response, _group_starts(problem))
+
+
+def _line_search(
+    problem: Problem, flow: FloatArray, step: FloatArray, head: FloatArray, extra: FloatArray
+) -> float:
+    """Return the part of ``step`` at which the content has come down enough along it.
+
+    The slope of the convex content along the step is negative at its start; it may be positive at the
+    end. The part returned leaves at most half of it, found by bisection and false position.
+    """
+    fall = head[problem.start] - head[problem.end]
+    fall[problem.valve_links] -= extra
+
+    def slope_at(part: float) -> float:
+        loss, _ = problem.law(flow + part * step)
+        return float(((loss - fall) * step).sum())
+
+    first = slope_at(0.0)
+    low, high, at_low, at_high = 0.0, 1.0, first, slope_at(1.0)
+    if first >= 0.0 or abs(at_high) <= abs(first) * SEARCH_PART:
+        return 1.0
+    if at_high < 0.0:
+        return 1.0
+    part = 1.0
+    for turn in range(60):
+        part = low - at_low * (high - low) / (at_high - at_low) if turn % 3 else 0.5 * (low + high)
+        value = slope_at(part)
+        if abs(value) <= SEARCH_PART * abs(first):
+            break
+        if value < 0.0:
+            low, at_low = part, value
+        else:
+            high, at_high = part, value
+    return part

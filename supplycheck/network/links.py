@@ -1,0 +1,152 @@
+"""Links and their loss laws: the pipes of a network, whole or reduced, as arrays.
+
+The loss of a link is the sum of
+
+* ``resistance`` times the smooth power of the flow (Hazen-Williams), or its Darcy-Weisbach *terms*:
+  length times gradient for each different pair of bore and roughness it is made of;
+* ``minor`` times the smooth square of the flow (fittings given by a coefficient);
+* ``least`` times the flow: :data:`LEAST_SLOPE` for a pipe of no loss at all, else 0;
+* the drop of its devices, in its own direction.
+
+All but the devices are odd in the flow and add up exactly in series, which is what the reduction uses.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Final
+
+import numpy as np
+from numpy.typing import NDArray
+
+from supplycheck.hydraulics import darcy_weisbach_gradient, smooth_power
+from supplycheck.network.curves import DeviceLaw
+from supplycheck.network.records import FloatArray, IntArray
+
+LEAST_SLOPE: Final = 1e-2
+"""Slope given to a pipe whose law has none (no length) [Pa·s/m³]; 0.1 m³/s makes it 1e-3 Pa."""
+
+STEEP: Final = 1e13
+"""Slope of a one-way link against its direction [Pa·s/m³]; such a link is then closed exactly."""
+
+BoolArray = NDArray[np.bool_]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Terms:
+    """Darcy-Weisbach terms: (t,) each ``length`` [m] of pipe sort ``sort`` on ``link``."""
+
+    link: IntArray
+    sort: IntArray
+    length: FloatArray
+    bore: FloatArray
+    roughness: FloatArray
+    density: float
+    viscosity: float
+
+    def loss(self, flow: FloatArray, count: int) -> tuple[FloatArray, FloatArray]:
+        """Return loss [Pa] and slope on each of ``count`` links carrying ``flow``."""
+        value, slope = darcy_weisbach_gradient(
+            flow=flow[self.link],
+            bore=self.bore[self.sort],
+            roughness=self.roughness[self.sort],
+            density=self.density,
+            viscosity=self.viscosity,
+        )
+        total = np.bincount(self.link, value * self.length, minlength=count)
+        return total, np.bincount(self.link, slope * self.length, minlength=count)
+
+    def merged(self, to: IntArray) -> Terms:
+        """Return the terms with link ``i`` become part of link ``to[i]`` (negative: dropped)."""
+        target = to[self.link]
+        kept = target >= 0
+        sorts = len(self.bore)
+        key, index = np.unique(target[kept] * sorts + self.sort[kept], return_inverse=True)
+        length = np.bincount(index, self.length[kept], minlength=len(key))
+        return Terms(
+            key // sorts, key % sorts, length, self.bore, self.roughness, self.density, self.viscosity
+        )
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Links:
+    """Links (m,) between node rows ``start`` and ``end``; positive flow runs from start to end.
+
+    ``area`` [m²] is the smallest bore area, used for a first guess only. ``devices`` pairs a link with
+    a device in it; ``one_way`` marks links that pass no flow from end to start.
+    """
+
+    start: IntArray
+    end: IntArray
+    resistance: FloatArray
+    exponent: float
+    minor: FloatArray
+    least: FloatArray
+    area: FloatArray
+    one_way: BoolArray
+    devices: tuple[tuple[int, DeviceLaw], ...]
+    terms: Terms | None
+
+    def __len__(self) -> int:
+        return len(self.start)
+
+    def friction(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return the friction loss [Pa] and its slope, without devices."""
+        if self.terms is not None:
+            value, slope = self.terms.loss(flow, len(flow))
+        else:
+            power, dpower = smooth_power(flow, self.exponent)
+            value = self.resistance * power
+            slope = self.resistance * dpower
+        value += self.least * flow
+        slope += self.least
+        if self.minor.any():
+            square, dsquare = smooth_power(flow, 2.0)
+            value += self.minor * square
+            slope += self.minor * dsquare
+        return value, slope
+
+    def device_drop(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return the drop of the devices in each link [Pa] and its slope (0 where there are none)."""
+        value, slope = np.zeros(len(self)), np.zeros(len(self))
+        for link, law in self.devices:
+            drop, rise = law.drop(flow[link : link + 1])
+            value[link] += drop[0]
+            slope[link] += rise[0]
+        return value, slope
+
+    def loss(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return the whole loss [Pa] and its slope; against its direction a one-way link is steep."""
+        value, slope = self.friction(flow)
+        if self.devices:
+            drop, rise = self.device_drop(flow)
+            value += drop
+            slope += rise
+        if self.one_way.any():
+            back = self.one_way & (flow < 0)
+            value[back] += STEEP * flow[back]
+            slope[back] += STEEP
+        return value, slope
+
+    def marked(self) -> BoolArray:
+        """Return which links hold a device or are one-way: they are never merged with others."""
+        mark = self.one_way.copy()
+        mark[[link for link, _ in self.devices]] = True
+        return mark
+
+    def take(self, rows: IntArray) -> Links:
+        """Return the links ``rows``, in this order."""
+        to = np.full(len(self), -1)
+        to[rows] = np.arange(len(rows))
+        return Links(
+            self.start[rows],
+            self.end[rows],
+            self.resistance[rows],
+            self.exponent,
+            self.minor[rows],
+            self.least[rows],
+            self.area[rows],
+            self.one_way[rows],
+            tuple((int(to[link]), law) for link, law in self.devices if to[link] >= 0),
+            self.terms.merged(to) if self.terms is not None else None,
+        )
