@@ -44,21 +44,8 @@ def test_json_holds_plain_numbers_in_the_chosen_units() -> None:
 
 
 def test_several_outlets_and_the_published_pumper_factor() -> None:
-    answer = json.loads(
-        run(
-            "--static",
-            "80",
-            "--residual",
-            "47",
-            "--outlet",
-            "4 in, 0.9, 10 psi",
-            "--outlet",
-            "2.5, smooth, 40",
-            "--pumper-factor",
-            "table",
-            "--json",
-        ).output  # fmt: skip
-    )
+    outlets = ("--outlet", "4 in, 0.9, 10 psi", "--outlet", "2.5, smooth, 40")
+    answer = json.loads(run(*PRESSURES, *outlets, "--pumper-factor", "table", "--json").output)
     flows = [outlet["flow"] for outlet in answer["outlets"]]
     # Practitioners' forum: 1127 and 1061 gpm, printed with 29.83.
     assert flows == pytest.approx([1127, 1061], abs=0.9)

@@ -21,7 +21,7 @@ def formula(static: float, residual: float, tested: float, flow: float) -> float
 
 
 @st.composite
-def tested_mains(draw: st.DrawFn) -> SupplyCurve:
+def mains(draw: st.DrawFn) -> SupplyCurve:
     """A curve through one to three readings, not always on one line."""
     static = draw(st.floats(20.0, 200.0))
     count = draw(st.integers(1, 3))
@@ -80,12 +80,12 @@ def test_readings_that_make_no_curve(readings: list[tuple[float, float]], proble
         curve_through("t", "S", 80 * PSI, [(flow * GPM, p * PSI) for flow, p in readings])
 
 
-@given(tested_mains(), FLOWS)
+@given(mains(), FLOWS)
 def test_never_rises(curve: SupplyCurve, flow: float) -> None:
     assert curve.pressure_at(flow * GPM) >= curve.pressure_at(1.1 * flow * GPM + 1e-6) - 1e-6
 
 
-@given(tested_mains(), st.floats(1.0, 300.0))
+@given(mains(), st.floats(1.0, 300.0))
 def test_flow_at_is_the_largest_flow_with_that_pressure(curve: SupplyCurve, psi: float) -> None:
     flow = curve.flow_at(psi * PSI)
     assert flow is not None  # every tested main runs out
@@ -97,13 +97,13 @@ def test_flow_at_is_the_largest_flow_with_that_pressure(curve: SupplyCurve, psi:
 
 
 @settings(max_examples=200)
-@given(tested_mains(), st.floats(5.0, 150.0), FLOWS)
+@given(mains(), st.floats(5.0, 150.0), FLOWS)
 def test_a_cap_is_the_lower_of_curve_and_cap(curve: SupplyCurve, cap: float, flow: float) -> None:
     expected = min(cap * PSI, curve.pressure_at(flow * GPM))
     assert curve.capped(cap * PSI).pressure_at(flow * GPM) == pytest.approx(expected, rel=1e-7, abs=1e-3)
 
 
-@given(tested_mains(), st.floats(0.5, 1.0), st.floats(-20.0, 20.0), FLOWS)
+@given(mains(), st.floats(0.5, 1.0), st.floats(-20.0, 20.0), FLOWS)
 def test_scaling_and_height(curve: SupplyCurve, factor: float, gain: float, flow: float) -> None:
     at = flow * GPM
     plain = curve.pressure_at(at)
@@ -117,7 +117,7 @@ def test_scaling_and_height(curve: SupplyCurve, factor: float, gain: float, flow
 
 
 @settings(max_examples=200)
-@given(st.lists(tested_mains(), min_size=2, max_size=4), FLOWS)
+@given(st.lists(mains(), min_size=2, max_size=4), FLOWS)
 def test_the_envelope_is_the_lowest_everywhere(curves: list[SupplyCurve], flow: float) -> None:
     low = lower_envelope("low", curves)
     expected = min(curve.pressure_at(flow * GPM) for curve in curves)
@@ -141,7 +141,7 @@ def test_curves_at_two_nodes_have_no_envelope() -> None:
 
 
 @settings(max_examples=300)
-@given(tested_mains(), st.sampled_from(["plain", "cap", "percent", "low", "envelope"]), FLOWS)
+@given(mains(), st.sampled_from(["plain", "cap", "percent", "low", "envelope"]), FLOWS)
 def test_the_network_sees_the_same_curve(curve: SupplyCurve, change: str, flow: float) -> None:
     other = curve_through("other", "S", 60 * PSI, [(900 * GPM, 30 * PSI)])
     changed = {
