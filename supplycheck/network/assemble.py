@@ -37,12 +37,12 @@ class Case:
     floor_rows: IntArray
     floors: FloatArray
 
-    def keep(self, nodes: int) -> BoolArray:
-        """Return the nodes (n,) that this case asks about, supplies apart."""
-        mask = self.outflow != 0
+    def keep(self) -> BoolArray:
+        """Return which nodes (n,) this case asks about, supplies apart."""
+        mask: BoolArray = self.outflow != 0
         mask[self.outlets] = True
         mask[self.floor_rows] = True
-        return mask[:nodes]
+        return mask
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -128,7 +128,9 @@ class Assembled:
     """A problem for the core and where its rows come from.
 
     ``rows`` are the node rows of the network for the core's free nodes and then its fixed source
-    nodes; core links are the reduced links, then ``piped`` supplies, then outlets.
+    nodes; core links are the reduced links, then ``piped`` supplies, then outlets. ``valves`` (v,) are
+    the core links with a pressure-reducing valve, ``valve_rows`` the core nodes behind them and
+    ``valve_heads`` [Pa] the heads they are set to.
     """
 
     problem: Problem
@@ -136,6 +138,9 @@ class Assembled:
     pipes: int
     piped: IntArray
     start: State
+    valves: IntArray
+    valve_rows: IntArray
+    valve_heads: FloatArray
 
     def outlet_flow(self, state: State) -> FloatArray:
         """Return the flow from each open outlet [m³/s], never negative."""
@@ -195,7 +200,19 @@ def assemble(links: Links, base: FloatArray, case: Case, feed: Feed, *, demand: 
         group=np.zeros(free + len(fixed), dtype=np.int64),
     )
     guess = _guess(links, case, len(piped), static - base[feed.rows])
-    return Assembled(problem, rows, len(links), piped, first_state(problem, guess))
+    set_laws = [(link, law.setting) for link, law in links.devices if law.setting is not None]
+    valves = np.array([link for link, _ in set_laws], dtype=np.int64)
+    behind = links.end[valves]
+    return Assembled(
+        problem,
+        rows,
+        len(links),
+        piped,
+        first_state(problem, guess),
+        valves,
+        index[behind],
+        base[behind] + np.array([setting for _, setting in set_laws]),
+    )
 
 
 def _law(links: Links, sources: Sequence[SourceLaw], case: Case) -> Law:

@@ -32,6 +32,11 @@ STEEP: Final = 1e13
 BoolArray = NDArray[np.bool_]
 
 
+def sums(row: IntArray, value: FloatArray, count: int) -> FloatArray:
+    """Return (``count``,) the sum of ``value`` over equal ``row``."""
+    return np.bincount(row, value, minlength=count).astype(np.float64, copy=False)
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class Terms:
     """Darcy-Weisbach terms: (t,) each ``length`` [m] of pipe sort ``sort`` on ``link``."""
@@ -53,8 +58,8 @@ class Terms:
             density=self.density,
             viscosity=self.viscosity,
         )
-        total = np.bincount(self.link, value * self.length, minlength=count)
-        return total, np.bincount(self.link, slope * self.length, minlength=count)
+        total = sums(self.link, value * self.length, count)
+        return total, sums(self.link, slope * self.length, count)
 
     def merged(self, to: IntArray) -> Terms:
         """Return the terms with link ``i`` become part of link ``to[i]`` (negative: dropped)."""
@@ -62,7 +67,7 @@ class Terms:
         kept = target >= 0
         sorts = len(self.bore)
         key, index = np.unique(target[kept] * sorts + self.sort[kept], return_inverse=True)
-        length = np.bincount(index, self.length[kept], minlength=len(key))
+        length = sums(index, self.length[kept], len(key))
         return Terms(
             key // sorts, key % sorts, length, self.bore, self.roughness, self.density, self.viscosity
         )

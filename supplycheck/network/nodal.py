@@ -12,6 +12,7 @@ from typing import Any, Final
 
 import numpy as np
 
+from supplycheck.network.links import sums
 from supplycheck.network.records import FloatArray, IntArray
 
 DENSE_BELOW: Final = 48
@@ -47,23 +48,23 @@ class Nodal:
 
     def _dense(self, entries: FloatArray, ground: IntArray | None) -> Solver:
         n = self.free
-        flat = np.bincount(self._rows * n + self._cols, entries, minlength=n * n)
+        flat = sums(self._rows * n + self._cols, entries, n * n)
         matrix = flat.reshape(n, n)
         if ground is not None and len(ground):
             matrix[ground, ground] += _tie(entries)
-        return lambda rhs: np.linalg.solve(matrix, rhs)
+        return lambda rhs: np.asarray(np.linalg.solve(matrix, rhs), dtype=np.float64)
 
     def _sparse(self, entries: FloatArray, ground: IntArray | None) -> Solver:
         from scipy.sparse.linalg import splu
 
         options = {"SymmetricMode": True}
         if self._order is None:
-            matrix, _ = self._pattern(np.arange(self.free))
-            self._fill(matrix, entries, ground)
-            first = splu(matrix[0], permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.0, options=options)
+            plain = self._pattern(np.arange(self.free))
+            self._fill(plain, entries, ground)
+            first = splu(plain[0], permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.0, options=options)
             self._order = np.asarray(first.perm_c, dtype=np.int64)
-            self._ordered, _ = self._pattern(self._order)
-            return lambda rhs: first.solve(rhs)
+            self._ordered = self._pattern(self._order)
+            return lambda rhs: np.asarray(first.solve(rhs))
         self._fill(self._ordered, entries, ground)
         order = self._order
         factor = splu(self._ordered[0], permc_spec="NATURAL", diag_pivot_thresh=0.0, options=options)
@@ -71,11 +72,11 @@ class Nodal:
         def solve(rhs: FloatArray) -> FloatArray:
             moved = np.empty_like(rhs)
             moved[order] = rhs
-            return factor.solve(moved)[order]
+            return np.asarray(factor.solve(moved)[order])
 
         return solve
 
-    def _pattern(self, order: IntArray) -> tuple[Any, None]:
+    def _pattern(self, order: IntArray) -> tuple[Any, IntArray, IntArray]:
         from scipy.sparse import csc_array
 
         n = self.free
@@ -86,7 +87,7 @@ class Nodal:
             (np.zeros(len(key)), (key % n).astype(np.int32), pointers.astype(np.int32)), (n, n)
         )
         diagonal = np.searchsorted(key, order * n + order)
-        return (matrix, slot, diagonal), None
+        return matrix, slot, diagonal
 
     def _fill(self, pattern: Any, entries: FloatArray, ground: IntArray | None) -> None:
         matrix, slot, diagonal = pattern

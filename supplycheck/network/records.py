@@ -50,6 +50,9 @@ class Solution:
     ``source_flow``/``source_pressure`` follow ``source_tags``. In a demand solution ``shift`` is by
     how much every source curve could be lowered [Pa] with the demand still met (NaN in an operating
     solution) and ``governing`` is the outlet at which the requirement is met exactly.
+    ``velocity_pressure`` (m,) is ½ρv² in each pipe; ``outlet_velocity_pressure`` (n,) is what was taken off
+    the total pressure to get the pressure that drives an outlet (all 0 unless normal pressure is used).
+    Against its direction a one-way pipe is closed: its ``device_loss`` is the difference it holds.
     ``mass_residual`` [m³/s] and ``energy_residual`` [Pa] are the largest left by the solver.
     """
 
@@ -75,6 +78,7 @@ class Solution:
     energy_residual: float
     notes: tuple[str, ...] = ()
     out_of_range: tuple[tuple[str, str, float], ...] = ()
+    outlet_velocity_pressure: FloatArray = field(default_factory=lambda: np.zeros(0))
 
     def node(self, tag: str) -> int:
         """Return the row of node ``tag``."""

@@ -21,7 +21,7 @@ import numpy as np
 from scipy.sparse import csr_array
 from scipy.sparse.csgraph import breadth_first_order, connected_components
 
-from supplycheck.network.links import BoolArray, Links
+from supplycheck.network.links import BoolArray, Links, sums
 from supplycheck.network.records import FloatArray, IntArray
 
 
@@ -58,9 +58,14 @@ def reduce_links(links: Links, keep: BoolArray, shut: BoolArray | None = None) -
     Parameters
     ----------
     links : Links (m,) between node rows.
-    keep : (n,) nodes that must stay: supplies, open outlets, fixed outflows, nodes asked about.
+    keep : (n,) nodes that must stay: supplies, open outlets, fixed outflows, nodes asked about. The ends
+        of pressure-reducing valves stay too.
     shut : (m,) links that are closed, or ``None``.
     """
+    keep = keep.copy()
+    for link, law in links.devices:
+        if law.setting is not None and not (shut is not None and shut[link]):
+            keep[[links.start[link], links.end[link]]] = True
     rows = np.arange(len(links)) if shut is None or not shut.any() else np.flatnonzero(~shut)
     whole = _identity(links, rows)
     while True:
@@ -122,25 +127,25 @@ def _chains(links: Links, inner: BoolArray) -> Reduced:
     sign = _directions(links, inner, pairs, owner[first], ends[first])
     number = np.cumsum(~closed_off) - 1
     part = np.where(closed_off[label], -1, number[label])
-    sums = int((~closed_off).sum())
+    live_chains = int((~closed_off).sum())
     live = part >= 0
     merged = Links(
         start=ends[first],
         end=ends[last],
-        resistance=np.bincount(part[live], links.resistance[live], minlength=sums),
+        resistance=sums(part[live], links.resistance[live], live_chains),
         exponent=links.exponent,
-        minor=np.bincount(part[live], links.minor[live], minlength=sums),
-        least=np.bincount(part[live], links.least[live], minlength=sums),
-        area=_smallest(part[live], links.area[live], sums),
-        one_way=np.bincount(part[live], links.one_way[live], minlength=sums) > 0,
+        minor=sums(part[live], links.minor[live], live_chains),
+        least=sums(part[live], links.least[live], live_chains),
+        area=_smallest(part[live], links.area[live], live_chains),
+        one_way=np.bincount(part[live], links.one_way[live], minlength=live_chains) > 0,
         devices=tuple((int(part[link]), law) for link, law in links.devices if part[link] >= 0),
         terms=links.terms.merged(part) if links.terms is not None else None,
     )
     return Reduced(merged, part, np.where(live, sign, 0.0))
 
 
-def _smallest(part: IntArray, area: FloatArray, sums: int) -> FloatArray:
-    smallest = np.full(sums, np.inf)
+def _smallest(part: IntArray, area: FloatArray, count: int) -> FloatArray:
+    smallest = np.full(count, np.inf)
     np.minimum.at(smallest, part, area)
     return smallest
 

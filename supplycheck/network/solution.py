@@ -10,6 +10,8 @@ from supplycheck.hydraulics import friction_factor
 from supplycheck.network.arrays import Network
 from supplycheck.network.assemble import Assembled, Case, Feed
 from supplycheck.network.core import State
+from supplycheck.network.curves import DeviceLaw
+from supplycheck.network.links import BoolArray
 from supplycheck.network.records import FloatArray, Solution, SourceCurve
 from supplycheck.network.reduce import Reduced
 from supplycheck.network.restore import spread_heads
@@ -31,6 +33,8 @@ def whole_solution(
     flow = reduced.flow(state.flow[: assembled.pipes]) + 0.0
     friction, _ = links.friction(flow)
     device, _ = links.device_drop(flow)
+    taken_off = np.zeros(nodes)
+    taken_off[case.outlets] = case.offset
     head, known = assembled.heads(state, nodes)
     head = _all_heads(network, case, head, known, friction + device)
     out = case.outflow.copy()
@@ -45,7 +49,9 @@ def whole_solution(
     source_pressure = pressure[feed.rows]
     rise = network.base[links.end] - network.base[links.start]
     energy = head[links.start] - head[links.end] - friction - device
-    live = ~case.shut & ~(links.one_way & (flow == 0)) & np.isfinite(energy)
+    holding = _holding(network, flow)
+    device = device + np.where(holding, energy, 0.0)
+    live = ~case.shut & ~holding & np.isfinite(energy)
     for array in (friction, device):
         array[case.shut] = np.nan
     rise = np.where(case.shut, np.nan, rise)
@@ -78,17 +84,18 @@ def whole_solution(
         iterations=state.iterations,
         mass_residual=float(np.abs(leaving + out - at_source).max()),
         energy_residual=float(np.abs(energy[live]).max(initial=0.0)),
-        notes=(),
+        notes=_notes(network, case, feed, flow, supplied, device, pressure),
         out_of_range=tuple(
             (network.pipe_tags[link], law.tag, float(flow[link]))
             for link, law in links.devices
             if law.beyond(float(flow[link]))
         ),
+        outlet_velocity_pressure=taken_off,
     )
 
 
 def _all_heads(
-    network: Network, case: Case, head: FloatArray, known: np.ndarray, loss: FloatArray
+    network: Network, case: Case, head: FloatArray, known: BoolArray, loss: FloatArray
 ) -> FloatArray:
     links = network.links
     rows = np.flatnonzero(~case.shut)
@@ -114,3 +121,59 @@ def _numbers(network: Network, flow: FloatArray) -> tuple[FloatArray, FloatArray
         rough = network.roughness[moving] / network.bore[moving]
         factor[moving], _ = friction_factor(reynolds=reynolds[moving], relative_roughness=rough)
     return reynolds, factor
+
+
+def _holding(network: Network, flow: FloatArray) -> BoolArray:
+    """Return the pipes that hold a difference of pressure: closed one-way ones, regulating valves."""
+    links = network.links
+    holding = links.one_way & (flow <= 0)
+    for link, law in links.devices:
+        if law.setting is not None:
+            holding[link] = True
+    return holding
+
+
+def _notes(
+    network: Network,
+    case: Case,
+    feed: Feed,
+    flow: FloatArray,
+    supplied: FloatArray,
+    device: FloatArray,
+    pressure: FloatArray,
+) -> tuple[str, ...]:
+    """Return what a reader should know about the state, one sentence each."""
+    links, pipes, nodes = network.links, network.pipe_tags, network.node_tags
+    notes = [
+        f"water runs into the supply at {nodes[row]}: another one is stronger"
+        for row, inflow in zip(feed.rows.tolist(), supplied.tolist(), strict=True)
+        if inflow < 0
+    ]
+    dry = [nodes[row] for row in case.outlets.tolist() if pressure[row] <= 0]
+    if dry:
+        notes.append(f"open outlets that run dry: {', '.join(dry)}")
+    regulating = {
+        link: law for link, law in links.devices if law.setting is not None and not case.shut[link]
+    }
+    for link, law in regulating.items():
+        notes.append(_valve_note(network, link, law, flow, pressure))
+    held = np.flatnonzero(links.one_way & ~case.shut & (flow <= 0) & (device < -1.0)).tolist()
+    notes += [
+        f"the one-way valve in pipe {pipes[link]} is closed by the pressure behind it"
+        for link in held
+        if link not in regulating
+    ]
+    return tuple(notes)
+
+
+def _valve_note(network: Network, link: int, law: DeviceLaw, flow: FloatArray, pressure: FloatArray) -> str:
+    name = f"pressure-reducing valve {law.tag} in pipe {network.pipe_tags[link]}"
+    setting = law.setting if law.setting is not None else np.nan
+    behind = pressure[network.links.end[link]]
+    if abs(behind - setting) <= 1.0:
+        return f"{name} holds its setting"
+    if behind > setting:
+        return f"{name} is shut: the pressure behind it is above its setting"
+    if pressure[network.links.start[link]] < setting:
+        return f"{name} is fully open: it is set above its inlet pressure"
+    return f"{name} is fully open" if flow[link] > 0 else f"{name} passes nothing"

@@ -4,19 +4,24 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
+from typing import Final
 
 import numpy as np
 
 from supplycheck.errors import NotConvergedError
 from supplycheck.network.arrays import Network
 from supplycheck.network.assemble import Assembled, Case, Feed, assemble, read_case, read_feed
-from supplycheck.network.core import Problem, State, solve
-from supplycheck.network.records import LoadCase, Solution, SourceCurve
-from supplycheck.network.reduce import reduce_links
+from supplycheck.network.core import State
+from supplycheck.network.diagnose import check_reached, check_structure, explain
+from supplycheck.network.find import NoStateError, find_state
+from supplycheck.network.records import FloatArray, LoadCase, Solution, SourceCurve
+from supplycheck.network.reduce import Reduced, reduce_links
 from supplycheck.network.solution import whole_solution
 
-FAST_LIMIT = 30
-SURE_LIMIT = 200
+TURNS: Final = 100
+"""Most rounds in which velocity pressures are brought up to date."""
+VELOCITY_TOLERANCE: Final = 1e-6
+"""Largest change of a velocity pressure in the last round [Pa]."""
 
 
 def solve_operating(
@@ -29,7 +34,8 @@ def solve_operating(
     network : The network.
     load : Open outlets, fixed outflows, shut pipes.
     sources : One supply or several, each at its node.
-    velocity_pressure : Whether outlets discharge by normal instead of total pressure.
+    velocity_pressure : Whether outlets discharge by normal instead of total pressure: total less the
+        velocity pressure of the pipe that feeds the outlet, except at the end of a line.
 
     Raises
     ------
@@ -40,7 +46,7 @@ def solve_operating(
     """
     case = read_case(network, load)
     feed = read_feed(network, sources, demand=False)
-    return _solve(network, case, feed, sources, demand=False)
+    return _solve(network, case, feed, sources, demand=False, normal=velocity_pressure)
 
 
 def solve_demand(
@@ -60,9 +66,10 @@ def solve_demand(
     ----------
     network : The network.
     load : Open outlets, fixed outflows, shut pipes.
-    required : Pressure needed at each of these nodes [Pa].
+    required : Pressure needed at each of these nodes [Pa]; with ``velocity_pressure`` at an open outlet
+        it is the normal pressure that is needed.
     sources : One supply or several, each at its node.
-    velocity_pressure : Whether outlets discharge by normal instead of total pressure.
+    velocity_pressure : As in :func:`solve_operating`.
 
     Raises
     ------
@@ -80,25 +87,66 @@ def solve_demand(
         )
     case = read_case(network, load, required)
     feed = read_feed(network, sources, demand=True)
-    return _solve(network, case, feed, sources, demand=True)
+    return _solve(network, case, feed, sources, demand=True, normal=velocity_pressure)
 
 
 def _solve(
-    network: Network, case: Case, feed: Feed, sources: Sequence[SourceCurve], *, demand: bool
+    network: Network, case: Case, feed: Feed, sources: Sequence[SourceCurve], *, demand: bool, normal: bool
 ) -> Solution:
-    keep = case.keep(len(network.node_tags))
+    keep = case.keep()
     keep[feed.rows] = True
     reduced = reduce_links(network.links, keep, case.shut)
+    check_structure(network, reduced.links, case, feed)
     assembled = assemble(reduced.links, network.base, case, feed, demand=demand)
-    state = find_state(assembled)
-    return whole_solution(network, case, feed, sources, reduced, assembled, state, demand=demand)
+    state = _find(network, reduced, assembled, None)
+    turns = 0
+    while normal:
+        offset = _velocity_pressures(network, case, reduced.flow(state.flow[: assembled.pipes]))
+        turns += 1
+        if float(np.abs(offset - case.offset).max(initial=0.0)) <= VELOCITY_TOLERANCE:
+            break
+        if turns > TURNS:
+            raise NotConvergedError(
+                "the velocity pressures did not settle",
+                cause="numbers",
+                tags=tuple(network.node_tags[row] for row in case.outlets),
+                remedy="use total pressure, or larger pipes at the outlets",
+            )
+        case = _with_offset(case, offset)
+        assembled = assemble(reduced.links, network.base, case, feed, demand=demand)
+        state = _find(network, reduced, assembled, state)
+    solution = whole_solution(network, case, feed, sources, reduced, assembled, state, demand=demand)
+    notes = check_reached(network, case, solution.pressure)
+    return replace(solution, notes=(*solution.notes, *notes)) if notes else solution
 
 
-def find_state(assembled: Assembled) -> State:
-    """Return the converged state of an assembled problem."""
-    state = solve(assembled.problem, assembled.start, limit=FAST_LIMIT)
-    if not state.converged:
-        raise NotConvergedError(
-            "the network did not converge", cause="numbers", tags=(), remedy="check resistances"
-        )
-    return state
+def _find(network: Network, reduced: Reduced, assembled: Assembled, start: State | None) -> State:
+    if start is not None:
+        start = replace(start, extra=start.extra[:0], converged=False)
+    try:
+        return find_state(assembled, start)
+    except NoStateError as failure:
+        raise explain(network, reduced, assembled, failure) from failure
+
+
+def _with_offset(case: Case, offset: FloatArray) -> Case:
+    """Return ``case`` with velocity pressures taken off, required pressures raised by as much."""
+    more = dict(zip(case.outlets.tolist(), (offset - case.offset).tolist(), strict=True))
+    raised = np.array([more.get(row, 0.0) for row in case.floor_rows.tolist()])
+    return replace(case, offset=offset, floors=case.floors + raised)
+
+
+def _velocity_pressures(network: Network, case: Case, flow: FloatArray) -> FloatArray:
+    """Return the velocity pressure of the pipe feeding each open outlet; 0 at the end of a line [Pa]."""
+    links, nodes = network.links, len(network.node_tags)
+    moving = np.flatnonzero(np.abs(flow) > 0)
+    into = np.where(flow[moving] > 0, links.end[moving], links.start[moving])
+    out_of = np.where(flow[moving] > 0, links.start[moving], links.end[moving])
+    onward = np.bincount(out_of, minlength=nodes) > 0
+    size = np.abs(flow[moving])
+    order = np.argsort(size, kind="stable")
+    feeding = np.full(nodes, -1)
+    feeding[into[order]] = moving[order]
+    pipe = feeding[case.outlets]
+    speed = np.where(pipe >= 0, flow[pipe] / links.area[pipe], 0.0)
+    return np.where(onward[case.outlets], 0.5 * network.fluid.density * speed**2, 0.0)

@@ -4,7 +4,8 @@ Start at the remote head with its required pressure, add friction and elevation 
 discharge of each head that is passed, and bring in a side branch with its equivalent K-factor,
 K = Q/√P, taken where the branch joins. The K of a branch holds exactly only at the pressure at which it
 was worked out, so each branch is worked out again from its own remote head until it arrives at the
-pressure of the junction. Nothing here uses the Newton core: it is its rival, and the path can be followed by hand.
+pressure of the junction. Nothing here uses the Newton core: it is its rival, and the path can be
+followed by hand.
 """
 
 from __future__ import annotations
