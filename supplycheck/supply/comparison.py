@@ -144,7 +144,7 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
     path = solved_route(project.system, solution, main.node, at, main.flow, exponent)
     carried, before = CarriedCurve(supply.curve, path), CarriedCurve(supply.unadjusted, path)
     rule = project.supply.margin
-    required = None if rule is None else max(share.required or 0.0 for share in shares)
+    required = None if rule is None else _strictest(shares).required
     flows = _flows(project, solution)
     weight = project.fluid.unit_weight
     statics = [
@@ -199,27 +199,33 @@ def _margin_of(project: Project, supply: NodeSupply, flow: float, demand: float)
 
 
 def _share(project: Project, supply: NodeSupply, flow: float, demand: float) -> SourceShare:
-    flow = max(flow, 0.0)
     curve = supply.curve
-    test = supply.test_at(flow)
+    given = max(flow, 0.0)  # a source that is fed backwards is read at no flow
+    test = supply.test_at(given)
     last = None if test is None else max(test.points, key=lambda point: (point.flow, -point.residual))
-    member = supply.adjusted_member(flow)
-    required = _margin_of(project, supply, flow, demand)
+    member = supply.adjusted_member(given)
+    required = _margin_of(project, supply, given, demand)
     return SourceShare(
         node=supply.node,
         flow=flow,
         demand_pressure=demand,
-        available=curve.pressure_at(flow),
-        unadjusted=supply.unadjusted.pressure_at(flow),
+        available=curve.pressure_at(given),
+        unadjusted=supply.unadjusted.pressure_at(given),
         governing=member.name,
         test_static=None if test is None else test.static,
         test_residual=None if last is None else last.residual,
         test_flow=None if last is None else last.flow,
         tested_flow=member.tested_flow,
-        extrapolated=member.is_extrapolated(flow),
-        tested_ratio=member.tested_ratio(flow),
+        extrapolated=member.is_extrapolated(given),
+        tested_ratio=member.tested_ratio(given),
         required=None if required is None else required.required,
     )
+
+
+def _strictest(shares: Sequence[SourceShare]) -> SourceShare:
+    """Return the source of which the margin rule asks most, among those that give water."""
+    giving = [share for share in shares if share.flow > 0.0] or list(shares)
+    return max(giving, key=lambda share: share.required or 0.0)
 
 
 def _flows(project: Project, solution: Solution) -> dict[str, float]:
@@ -263,8 +269,10 @@ def _margin_steps(
     steps = [Step("Margin before the rule", Words("{available} − {demand}", available), margin, "pressure")]
     if required is None:
         return tuple(steps)
-    strictest = max(shares, key=lambda share: share.required or 0.0)
-    asked = _margin_of(project, by_node[strictest.node], strictest.flow, strictest.demand_pressure)
+    strictest = _strictest(shares)
+    asked = _margin_of(
+        project, by_node[strictest.node], max(strictest.flow, 0.0), strictest.demand_pressure
+    )
     steps += list(asked.steps) if asked is not None else []
     values = (("margin", margin, "pressure"), ("required", required, "pressure"))
     words = Words("{margin} − {required}", values)

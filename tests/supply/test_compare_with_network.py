@@ -1,0 +1,102 @@
+"""The comparison on solutions of the network solver: one source, two sources, datum and place moved."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from supply_systems import Chain, flow_test, project_of, solve
+
+from supplycheck.model import Adjustment, MarginRule, Pipe, Project
+from supplycheck.network import LoadCase, Solution, build_network, solve_demand
+from supplycheck.supply import compare, hose_loads, source_curves, supply_curves
+from supplycheck.units import FOOT, GPM, INCH, PSI
+
+
+def solved(project: Project, pressure: float) -> Solution:
+    network = build_network(project.system, law=project.law, fluid=project.fluid)
+    load = LoadCase(("H",), hose_loads(project))
+    return solve_demand(network, load, {"H": pressure}, source_curves(supply_curves(project)))
+
+
+def test_the_solver_gives_the_walked_back_comparison() -> None:
+    chain = Chain(hose_inside=50.0, adjustments=(Adjustment("low supply", pressure=5 * PSI),))
+    project, by_hand, curves = solve(chain)
+    expected = compare(project, by_hand, curves)
+    found = compare(project, solved(project, chain.head_pressure * PSI), curves)
+    # The solver's own tolerance is far below 1 Pa (0.00015 psi).
+    for name in ("demand_pressure", "available_pressure", "margin", "static"):
+        assert getattr(found, name) == pytest.approx(getattr(expected, name), abs=1.0), name
+    for name in ("demand_flow", "sprinkler_flow", "hose_flow", "available_flow", "carried_flow"):
+        assert getattr(found, name) == pytest.approx(getattr(expected, name), rel=1e-6), name
+
+
+@pytest.mark.parametrize(
+    "adjustments",
+    [
+        (),
+        (Adjustment("static cap", pressure=70 * PSI),),
+        (Adjustment("percent", factor=0.9), Adjustment("low supply", pressure=3 * PSI)),
+    ],
+)
+def test_the_margin_is_what_the_solver_calls_shift(adjustments: tuple[Adjustment, ...]) -> None:
+    project = project_of(Chain(adjustments=adjustments))
+    solution = solved(project, 30 * PSI)
+    comparison = compare(project, solution, supply_curves(project))
+    assert comparison.margin == pytest.approx(solution.shift, abs=1.0)
+
+
+def two_supplies(chain: Chain) -> Project:
+    """A second, weaker connection at X feeds the riser base by its own lead-in."""
+    project = project_of(chain)
+    nodes = project.system.nodes
+    second = replace(nodes[0], tag="X", elevation=nodes[0].elevation + 2 * FOOT)
+    pipe = Pipe("V", "X", "B", 300 * FOOT, 4.1 * INCH, "4", "main", 140.0, None)
+    system = replace(project.system, nodes=(*nodes, second), pipes=(*project.system.pipes, pipe))
+    weaker = replace(project.supply.tests[0], tag="W", node="X", static=75 * PSI)
+    return replace(
+        project, system=system, supply=replace(project.supply, tests=(*project.supply.tests, weaker))
+    )
+
+
+def test_two_supplies_share_one_margin() -> None:
+    project = two_supplies(Chain(compare_at="B"))
+    solution = solved(project, 30 * PSI)
+    comparison = compare(project, solution, supply_curves(project))
+    assert comparison.principal == "S"
+    assert len(comparison.sources) == 2
+    assert comparison.margin == solution.shift
+    # Every source that gives water has the same pressure to spare.
+    for share in comparison.sources:
+        assert share.flow > 0.0
+        assert share.available - share.demand_pressure == pytest.approx(solution.shift, abs=1.0)
+    assert comparison.demand_flow == pytest.approx(510 * GPM, rel=1e-6)
+    # Lowering both tests by the margin leaves nothing to spare.
+    low = Adjustment("low supply", pressure=comparison.margin)
+    lowered = replace(project, supply=replace(project.supply, adjustments=(low,)))
+    again = compare(lowered, solved(lowered, 30 * PSI), supply_curves(lowered))
+    assert again.margin == pytest.approx(0.0, abs=2.0)
+
+
+@settings(max_examples=15, deadline=None)
+@given(
+    datum=st.floats(-300.0, 3000.0),
+    place=st.sampled_from(["S", "B", "H", "X"]),
+    two=st.booleans(),
+    hose=st.floats(0.0, 400.0),
+)
+def test_the_margin_stays_when_datum_or_place_moves(
+    datum: float, place: str, two: bool, hose: float
+) -> None:
+    rule = MarginRule("percent", percent=0.1, reading="pressure scaled")
+    make = two_supplies if two else project_of
+    chain = Chain(hose_outside=hose, margin=rule, tests=(flow_test(),))
+    here = make(chain)
+    there = make(replace(chain, datum=datum, compare_at=place if two or place != "X" else "B"))
+    first = compare(here, solved(here, 30 * PSI), supply_curves(here))
+    second = compare(there, solved(there, 30 * PSI), supply_curves(there))
+    # The solver stops within its own tolerance: 2 Pa is 0.0003 psi.
+    assert second.margin == pytest.approx(first.margin, abs=2.0)
+    assert second.required == pytest.approx(first.required, abs=2.0)
