@@ -10,7 +10,7 @@ from typing import TypeVar
 
 from supplycheck.demand.derivation import area_steps, shape_steps, statement_of
 from supplycheck.demand.heads import Heads, all_heads
-from supplycheck.demand.labels import label, unique
+from supplycheck.demand.labels import Labels, unique
 from supplycheck.demand.lines import Line, find_lines
 from supplycheck.demand.records import Candidates, Step
 from supplycheck.demand.runs import ROUND
@@ -82,7 +82,7 @@ def _case(heads: Heads, rows: Sequence[int], text: str, lines: int, along: int, 
         of(heads.flow),
         of(heads.pressure),
         of(heads.by),
-        float(heads.area[list(rows)].sum()),
+        math.fsum(of(heads.areas)),
         lines,
         along,
         note,
@@ -190,7 +190,8 @@ def _searched(project: Project, heads: Heads, cap: int) -> Candidates:
     european = criteria.standard == EUROPEAN
     rule = _rule(criteria)
     found = search(heads, lines, rule, european=european, cap=cap)
-    texts = unique([label(placement, heads.tags) for placement in found.placements])
+    name = Labels(heads.tags)
+    texts = unique([name.of(placement) for placement in found.placements])
     cases = tuple(
         _placed(heads, placement, text) for placement, text in zip(found.placements, texts, strict=True)
     )

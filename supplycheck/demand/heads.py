@@ -26,11 +26,12 @@ FloatArray = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Heads:
-    """All heads of the system as parallel sequences: areas [m²], flows [m³/s], pressures [Pa]."""
+    """All heads of the system as parallel sequences: areas [m²] twice, flows [m³/s], pressures [Pa]."""
 
     nodes: tuple[Node, ...]
     tags: tuple[str, ...]
     area: FloatArray
+    areas: tuple[float, ...]
     flow: tuple[float, ...]
     pressure: tuple[float, ...]
     by: tuple[str, ...]
@@ -67,8 +68,8 @@ def required_at_head(project: Project, node: Node) -> tuple[float, float, Govern
     Returns
     -------
     tuple
-        Required flow [m³/s], required pressure [Pa], and which of ``"density"``, ``"listing"`` and
-        ``"minimum pressure"`` governs (the first named where they are equal).
+        Required flow [m³/s], required pressure [Pa], and which of ``"density"``, ``"minimum pressure"``
+        and ``"listing"`` governs (the first named where they are equal).
 
     Raises
     ------
@@ -92,8 +93,8 @@ def _required(project: Project, node: Node, kinds: dict[str, Sprinkler]) -> tupl
     listing = max(kind.minimum_pressure if kind else 0.0, node.minimum_pressure or 0.0)
     choices: tuple[tuple[Governing, float], ...] = (
         ("density", (flow / k_factor) ** 2),
-        ("listing", listing),
         ("minimum pressure", project.criteria.minimum_pressure),
+        ("listing", listing),
     )
     by, pressure = max(choices, key=lambda choice: choice[1])
     return (flow if by == "density" else k_factor * math.sqrt(pressure)), pressure, by
@@ -119,6 +120,7 @@ def all_heads(project: Project) -> Heads:
         nodes,
         tuple(node.tag for node in nodes),
         np.array(areas, dtype=np.float64),
+        tuple(areas),
         tuple(need[0] for need in needs),
         tuple(need[1] for need in needs),
         tuple(need[2] for need in needs),

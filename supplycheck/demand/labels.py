@@ -3,9 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Final
 
 from supplycheck.demand.lines import Line
 from supplycheck.demand.search import Placement, Row
+
+ALL: Final = "all heads"
 
 
 def _span(row: Row) -> str:
@@ -14,7 +17,7 @@ def _span(row: Row) -> str:
     if line.fed[0] and not line.fed[1]:
         low, high = len(line) - high, len(line) - low
     if high - low == len(line):
-        return "all heads" if len(line) > 1 else "its one head"
+        return ALL
     heads = f"heads {low + 1}–{high}" if high - low > 1 else f"head {low + 1}"
     return f"{heads} of {len(line)}"
 
@@ -22,38 +25,62 @@ def _span(row: Row) -> str:
 def _origin(line: Line, tags: Sequence[str]) -> str:
     """From where the heads of a line are counted."""
     if line.fed[0] and not line.fed[1]:
-        return f"from the end at {tags[line.heads[-1]]}"
+        return f" from the end at {tags[line.heads[-1]]}"
     if line.fed[1] and not line.fed[0]:
-        return f"from the end at {tags[line.heads[0]]}"
-    return f"from {tags[line.heads[0]]}"
+        return f" from the end at {tags[line.heads[0]]}"
+    return f" from {tags[line.heads[0]]}"
 
 
-def label(placement: Placement, tags: Sequence[str]) -> str:
-    """Return the readable name of a placement, such as "lines 7–9, heads 1–4 of 8 from the end at S71"."""
-    groups: list[tuple[str, list[Row]]] = []
-    for row in placement.rows:
-        span = _span(row)
-        if groups and groups[-1][0] == span:
-            groups[-1][1].append(row)
-        else:
-            groups.append((span, [row]))
-    parts = []
-    for span, rows in groups:
-        first, last = rows[0].line, rows[-1].line
-        names = f"line {first.name}" if len(rows) == 1 else f"lines {first.name}–{last.name}"
-        across = " across the main" if len(first.sides) > 1 else ""
-        counted = "" if span.startswith(("all", "its")) else f" {_origin(first, tags)}"
-        ends = f" ({tags[first.heads[0]]} to {tags[first.heads[-1]]})" if span.startswith("all") else ""
-        parts.append(f"{names}{across}, {span}{counted}{ends}")
-    text = "; ".join(parts)
-    if placement.extra:
-        near = len(placement.extra)
-        text += f"; {near} nearest head{'s' if near > 1 else ''} beside it"
-    return text
+class Labels:
+    """Names placements such as "lines 7–9, heads 1–4 of 8 from the end at S71"."""
+
+    def __init__(self, tags: Sequence[str]) -> None:
+        self._tags = tags
+        self._spans: dict[tuple[int, int, int], str] = {}
+        self._origins: dict[int, str] = {}
+
+    def _span(self, row: Row) -> str:
+        key = (id(row.line), row.low, row.high)
+        found = self._spans.get(key)
+        if found is None:
+            found = self._spans[key] = _span(row)
+        return found
+
+    def _counted(self, line: Line, span: str) -> str:
+        if span is ALL:
+            return f" ({self._tags[line.heads[0]]} to {self._tags[line.heads[-1]]})"
+        found = self._origins.get(id(line))
+        if found is None:
+            found = self._origins[id(line)] = _origin(line, self._tags)
+        return found
+
+    def of(self, placement: Placement) -> str:
+        """Return the readable name of a placement."""
+        groups: list[tuple[str, Line, Line]] = []
+        for row in placement.rows:
+            span = self._span(row)
+            if groups and groups[-1][0] == span:
+                groups[-1] = (span, groups[-1][1], row.line)
+            else:
+                groups.append((span, row.line, row.line))
+        parts = []
+        for span, first, last in groups:
+            names = f"line {first.name}" if first is last else f"lines {first.name}–{last.name}"
+            across = " across the main" if len(first.sides) > 1 else ""
+            parts.append(f"{names}{across}, {span}{self._counted(first, span)}")
+        text = "; ".join(parts)
+        if placement.extra:
+            near = len(placement.extra)
+            text += f"; {near} nearest head{'s' if near > 1 else ''} beside it"
+        return text
 
 
 def unique(labels: Sequence[str]) -> list[str]:
-    """Return the labels, equal ones told apart by a number."""
+    """Return the labels, equal ones told apart by a number.
+
+    >>> unique(["a", "b", "a"])
+    ['a', 'b', 'a (2)']
+    """
     seen: dict[str, int] = {}
     out = []
     for text in labels:

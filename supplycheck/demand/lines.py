@@ -56,8 +56,8 @@ class Line:
     along: FloatArray
     across: float
     share: FloatArray
-    sums: FloatArray
-    heights: FloatArray
+    sums: tuple[float, ...]
+    heights: tuple[float, ...]
     width: float
     fed: tuple[bool, bool]
     sides: tuple[int, ...] = ()
@@ -261,7 +261,6 @@ def _line(name: str, rows: list[int], bay: int, angle: float, plan: _Plan, sides
     real = share > 1e-6
     width = float(np.median(area[real] / share[real])) if real.any() else float(np.sqrt(np.median(area)))
     fed = (plan.open_ends[rows[0]], plan.open_ends[rows[-1]])
-    zero = np.zeros(1)
     return Line(
         name,
         tuple(rows),
@@ -269,22 +268,24 @@ def _line(name: str, rows: list[int], bay: int, angle: float, plan: _Plan, sides
         along,
         across,
         share,
-        np.concatenate((zero, np.cumsum(area))),
-        np.concatenate((zero, np.cumsum(plan.z[rows]))),
+        (0.0, *np.cumsum(area).tolist()),
+        (0.0, *np.cumsum(plan.z[rows]).tolist()),
         width,
         fed,
         sides,
     )
 
 
-def _names(sides: list[list[int]], plan: _Plan, lows: list[tuple[int, float, float]]) -> list[str]:
-    """Name the sides: the given tag, else numbers in order across each bay."""
+def _names(sides: list[list[int]], plan: _Plan, keys: list[tuple[int, float, float]]) -> list[str]:
+    """Name the sides: the given tag, else the number of their row in order across each bay."""
     names = [""] * len(sides)
     number = 0
-    for side in sorted(range(len(sides)), key=lows.__getitem__):
+    last: tuple[int, float] | None = None
+    for side in sorted(range(len(sides)), key=keys.__getitem__):
         tag = plan.heads.nodes[sides[side][0]].branch_line
-        if tag is None:
+        if tag is None and keys[side][:2] != last:
             number += 1
+            last = keys[side][:2]
         names[side] = tag if tag is not None else f"{number}"
     return names
 

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from bisect import bisect_left, bisect_right
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -19,8 +21,8 @@ ROUND = 1e-9
 class Runs:
     """All runs of one line: heads ``low`` up to, not including, ``high``; from ``begin`` to ``end`` [m]."""
 
-    low: IntArray
-    high: IntArray
+    low: tuple[int, ...]
+    high: tuple[int, ...]
     begin: FloatArray
     end: FloatArray
 
@@ -28,25 +30,29 @@ class Runs:
         return len(self.low)
 
 
-def minimal_runs(sums: FloatArray, needed: float, count: int = 1) -> list[tuple[int, int]]:
+def minimal_runs(sums: Sequence[float], needed: float, count: int = 1) -> list[tuple[int, int]]:
     """Return every run over running sums ``sums`` that holds ``needed`` in at least ``count`` items.
 
     A run is kept when it would fall short without its first or without its last item: counted from either
     of its ends it goes no further than it must.
 
-    >>> minimal_runs(np.array([0.0, 3.0, 6.0, 9.0]), 6.0)
+    >>> minimal_runs([0.0, 3.0, 6.0, 9.0], 6.0)
     [(0, 2), (1, 3)]
     """
     items = len(sums) - 1
-    goal = needed * (1 - ROUND)
-    slack = ROUND * max(float(sums[-1]), needed)
-    low = np.arange(items)
-    high = np.maximum(np.searchsorted(sums, sums[:-1] + goal - slack, side="left"), low + count)
-    found = {(int(i), int(j)) for i, j in zip(low, high, strict=True) if j <= items}
-    top = np.arange(1, items + 1)
-    start = np.minimum(np.searchsorted(sums, sums[1:] - goal + slack, side="right") - 1, top - count)
-    found |= {(int(i), int(j)) for i, j in zip(start, top, strict=True) if i >= 0}
-    return sorted(found)
+    goal = needed * (1 - ROUND) - ROUND * sums[-1]
+    found = []
+    for low in range(items):
+        high = max(bisect_left(sums, sums[low] + goal, low), low + count)
+        if high > items:
+            break
+        found.append((low, high))
+    for high in range(items, 0, -1):
+        low = min(bisect_right(sums, sums[high] - goal, 0, high + 1) - 1, high - count)
+        if low < 0:
+            break
+        found.append((low, high))
+    return sorted(set(found))
 
 
 def runs_of(line: Line, length: float, count: int) -> Runs:
@@ -54,13 +60,13 @@ def runs_of(line: Line, length: float, count: int) -> Runs:
 
     A line too short for that is taken whole.
     """
-    along = np.concatenate((np.zeros(1), np.cumsum(line.share)))
+    along = [0.0, *np.cumsum(line.share).tolist()]
     pairs = minimal_runs(along, length, count) or [(0, len(line))]
     low = np.array([pair[0] for pair in pairs], dtype=np.int64)
     high = np.array([pair[1] for pair in pairs], dtype=np.int64)
     begin = line.along[low] - line.share[low] / 2
     end = line.along[high - 1] + line.share[high - 1] / 2
-    return Runs(low, high, begin, end)
+    return Runs(tuple(low.tolist()), tuple(high.tolist()), begin, end)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -70,9 +76,14 @@ class Facing:
     ``first`` and ``last`` differ where two runs lie equally near on either hand (staggered heads).
     """
 
-    first: IntArray
-    last: IntArray
-    distance: FloatArray
+    first: tuple[int, ...]
+    last: tuple[int, ...]
+    distance: tuple[float, ...]
+
+    @property
+    def tied(self) -> frozenset[int]:
+        """The runs that two runs face equally."""
+        return frozenset(i for i, (a, b) in enumerate(zip(self.first, self.last, strict=True)) if a != b)
 
 
 def facing(own: Runs, other: Runs) -> Facing:
@@ -99,4 +110,4 @@ def facing(own: Runs, other: Runs) -> Facing:
     first_ok, last_ok = beside(first), beside(last)
     first = np.where(first_ok, first, np.where(last_ok, last, -1))
     last = np.where(last_ok, last, first)
-    return Facing(first.astype(np.int64), last.astype(np.int64), near)
+    return Facing(tuple(first.tolist()), tuple(last.tolist()), tuple(near.tolist()))

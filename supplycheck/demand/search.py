@@ -14,9 +14,8 @@ side of a main, and areas as near square as can be for the most favourable one, 
 
 from __future__ import annotations
 
-import itertools
 import math
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Final, NamedTuple
 
@@ -29,7 +28,7 @@ from supplycheck.demand.runs import ROUND, Facing, IntArray, Runs, facing, minim
 CAP: Final = 200_000
 """Placements after which the search stops and says so."""
 
-TOUCH: Final = 2.0
+TOUCH: Final = 1.75
 """Lines further apart than this many times the width they cover do not touch."""
 
 SAME_ROW: Final = 0.25
@@ -82,10 +81,11 @@ class _CapReachedError(Exception):
 
 @dataclass(slots=True)
 class _Bag:
-    """Placements without duplicates, in the order found."""
+    """Placements without duplicates, in the order found, and the heads that stand in any of them."""
 
     cap: int
     found: dict[frozenset[int], Placement] = field(default_factory=dict)
+    covered: set[int] = field(default_factory=set)
 
     def add(self, rows: Sequence[Row]) -> None:
         heads: list[int] = []
@@ -99,56 +99,80 @@ class _Bag:
             if len(self.found) >= self.cap:
                 raise _CapReachedError
             self.found[key] = placement
-
-    def covered(self) -> set[int]:
-        return set().union(*self.found)
+            self.covered.update(key)
 
 
 class _Field:
-    """A set of lines with their runs under one rule; looks up what faces what, each once."""
+    """A set of lines with their runs under one rule; looks up what faces what, each once.
 
-    def __init__(self, lines: Sequence[Line], rule: Rule) -> None:
+    Lines with the same spacing share their runs, and what faces them.
+    """
+
+    def __init__(self, lines: Sequence[Line], rule: Rule, most: int) -> None:
         self.lines = lines
         self.rule = rule
-        self.runs: list[Runs] = [runs_of(line, rule.length, rule.run) for line in lines]
+        self.tied: list[set[int]] = [set() for _ in lines]
+        known: dict[bytes, Runs] = {}
+        self.runs: list[Runs] = []
+        for line in lines:
+            key = line.along.tobytes() + line.share.tobytes()
+            if key not in known:
+                known[key] = runs_of(line, rule.length, rule.run)
+            self.runs.append(known[key])
         self._across = np.array([line.across for line in lines])
-        self._bay = np.array([line.bay for line in lines])
         self._begin = np.array([line.along[0] - line.share[0] / 2 for line in lines])
         self._end = np.array([line.along[-1] + line.share[-1] / 2 for line in lines])
-        self.tied: list[set[int]] = [set() for _ in lines]
+        self._reach = most * TOUCH * max((line.width for line in lines), default=0.0)
+        self._rows: dict[int, IntArray] = {}
+        for bay in {line.bay for line in lines}:
+            rows = np.array([i for i, line in enumerate(lines) if line.bay == bay], dtype=np.int64)
+            self._rows[bay] = rows[np.argsort(self._across[rows], kind="stable")]
+        self._same: dict[tuple[int, int], Facing] = {}
         self._facing: dict[tuple[int, int], Facing] = {}
-        self._ahead: dict[tuple[int, int], tuple[IntArray, IntArray]] = {}
+        self._ahead: dict[tuple[int, int], list[list[int]]] = {}
 
     def facing(self, own: int, other: int) -> Facing:
         """Return which runs of line ``other`` face the runs of line ``own``."""
-        pair = (own, other)
-        if pair not in self._facing:
-            face = facing(self.runs[own], self.runs[other])
-            self.tied[own].update(np.flatnonzero(face.first != face.last).tolist())
-            self._facing[pair] = face
-        return self._facing[pair]
+        found = self._facing.get((own, other))
+        if found is None:
+            key = (id(self.runs[own]), id(self.runs[other]))
+            if key not in self._same:
+                self._same[key] = facing(self.runs[own], self.runs[other])
+            found = self._facing[own, other] = self._same[key]
+            self.tied[own].update(found.tied)
+        return found
 
-    def rows_ahead(self, own: int, sign: int) -> Iterator[list[int]]:
-        """Yield the lines that lie beside line ``own`` on one hand, row by row outwards."""
+    def rows_ahead(self, own: int, sign: int) -> list[list[int]]:
+        """Return the lines that lie beside line ``own`` on one hand, row by row outwards."""
         if (own, sign) not in self._ahead:
             self._ahead[own, sign] = self._look(own, sign)
-        order, bounds = self._ahead[own, sign]
-        for start, stop in itertools.pairwise(bounds.tolist()):
-            yield order[start:stop].tolist()
+        return self._ahead[own, sign]
 
-    def _look(self, own: int, sign: int) -> tuple[IntArray, IntArray]:
-        step = SAME_ROW * self.lines[own].width
-        away = sign * (self._across - self._across[own])
-        beside = np.minimum(self._end, self._end[own]) - np.maximum(self._begin, self._begin[own]) > 1e-6
-        rows = np.flatnonzero((away > step) & beside & (self._bay == self._bay[own]))
-        rows = rows[np.argsort(away[rows], kind="stable")]
-        breaks = np.flatnonzero(np.diff(away[rows]) > step) + 1
-        bounds = np.concatenate(([0], breaks, [len(rows)])) if len(rows) else np.zeros(1, dtype=np.int64)
-        return rows, bounds.astype(np.int64)
+    def _look(self, own: int, sign: int) -> list[list[int]]:
+        line = self.lines[own]
+        step = SAME_ROW * line.width
+        order = self._rows[line.bay]
+        ranked = self._across[order]
+        near, far = line.across + sign * step, line.across + sign * self._reach
+        low, high = np.searchsorted(ranked, [min(near, far), max(near, far)])
+        rows = order[low:high]
+        beside = np.minimum(self._end[rows], self._end[own]) - np.maximum(
+            self._begin[rows], self._begin[own]
+        )
+        rows = rows[beside > 1e-6]
+        away = sign * (self._across[rows] - line.across)
+        groups: list[list[int]] = []
+        edge = -math.inf
+        for i in np.argsort(away, kind="stable").tolist():
+            if float(away[i]) > edge + step:
+                groups.append([])
+            edge = float(away[i])
+            groups[-1].append(int(rows[i]))
+        return groups
 
 
 def _height(row: Row) -> float:
-    return float(row.line.heights[row.high] - row.line.heights[row.low]) / (row.high - row.low)
+    return (row.line.heights[row.high] - row.line.heights[row.low]) / (row.high - row.low)
 
 
 def _next_row(space: _Field, own: int, run: int, group: list[int], last: Row, late: bool) -> Row | None:
@@ -158,16 +182,16 @@ def _next_row(space: _Field, own: int, run: int, group: list[int], last: Row, la
     for other in group:
         line = space.lines[other]
         face = space.facing(own, other)
-        chosen = int((face.last if late else face.first)[run])
+        chosen = (face.last if late else face.first)[run]
         if chosen < 0 or face.distance[run] >= nearest:
             continue
-        row = Row(line, int(space.runs[other].low[chosen]), int(space.runs[other].high[chosen]))
+        row = Row(line, space.runs[other].low[chosen], space.runs[other].high[chosen])
         gap = abs(line.across - last.line.across)
         if gap > TOUCH * max(line.width, last.line.width) or not same_level(
             _height(row) - _height(last), gap
         ):
             continue
-        best, nearest = row, float(face.distance[run])
+        best, nearest = row, face.distance[run]
     return best
 
 
@@ -177,9 +201,9 @@ def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -
     Where two runs of a line face the first equally, ``late`` takes the further one.
     """
     rule = space.rule
-    first = Row(space.lines[own], int(space.runs[own].low[run]), int(space.runs[own].high[run]))
+    first = Row(space.lines[own], space.runs[own].low[run], space.runs[own].high[run])
     rows = [first]
-    area = float(first.line.sums[first.high] - first.line.sums[first.low])
+    area = first.line.sums[first.high] - first.line.sums[first.low]
     count = first.high - first.low
     if rule.reached(area, count):
         bag.add(rows)
@@ -190,10 +214,11 @@ def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -
             if abs(space.lines[group[0]].across - rows[-1].line.across) > TOUCH * rows[-1].line.width:
                 return
             continue
-        sums = row.line.sums[row.low : row.high + 1]
-        more = float(sums[-1] - sums[0])
+        base = row.line.sums[row.low]
+        more = row.line.sums[row.high] - base
         if rule.reached(area + more, count + row.high - row.low):
-            for low, high in minimal_runs(sums - sums[0], rule.area - area, max(1, rule.heads - count)):
+            sums = [total - base for total in row.line.sums[row.low : row.high + 1]]
+            for low, high in minimal_runs(sums, rule.area - area, max(1, rule.heads - count)):
                 bag.add([*rows, Row(row.line, row.low + low, row.low + high)])
             return
         rows.append(row)
@@ -233,12 +258,11 @@ def _lengthen(lines: Sequence[Line], rule: Rule, bag: _Bag, most: int) -> None:
     shares = [int(np.ceil(rule.length / max(float(np.median(line.share)), 1e-6))) for line in lines]
     run = min(most, max(1, min(shares, default=1)))
     while run < most:
-        covered = bag.covered()
-        starts = [i for i, line in enumerate(lines) if not covered.issuperset(line.heads)]
+        starts = [i for i, line in enumerate(lines) if not bag.covered.issuperset(line.heads)]
         if not starts:
             return
         run += 1
-        _fill(_Field(lines, replace(rule, run=run)), bag, starts)
+        _fill(_Field(lines, replace(rule, run=run), most), bag, starts)
 
 
 def _gather_near(heads: Heads, seed: list[int], rule: Rule) -> list[int]:
@@ -268,8 +292,7 @@ def _gather_near(heads: Heads, seed: list[int], rule: Rule) -> list[int]:
 def _leftovers(heads: Heads, lines: Lines, rule: Rule, bag: _Bag) -> None:
     """Give the heads that still stand in no placement one made up with the heads nearest to them."""
     for line in lines.sides:
-        covered = bag.covered()
-        seed = [row for row in line.heads if row not in covered]
+        seed = [row for row in line.heads if row not in bag.covered]
         if not seed:
             continue
         chosen = _gather_near(heads, seed, rule)
@@ -304,12 +327,12 @@ def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int =
             rules += [replace(rule, length=math.sqrt(rule.area)), replace(rule, length=math.inf)]
         for each in rules:
             for chosen in (lines.sides, _spanning(lines, each, european)):
-                space = _Field(chosen, each)
+                space = _Field(chosen, each, most)
                 whole = math.isinf(each.length)
                 starts = [
                     i
                     for i, line in enumerate(chosen)
-                    if not whole or not rule.reached(float(line.sums[-1]), len(line))
+                    if not whole or not rule.reached(line.sums[-2], len(line) - 1)
                 ]
                 _fill(space, bag, starts)
         for chosen in (lines.sides, _spanning(lines, rule, everywhere=True)):
