@@ -17,6 +17,7 @@ _SPELLED: Final = MappingProxyType(
     {
         "sch": "schedule",
         "sched": "schedule",
+        "cl": "class",
         "galvanised": "galvanized",
         "galv": "galvanized",
         "elbows": "elbow",
