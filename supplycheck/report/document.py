@@ -40,12 +40,16 @@ class Facts:
 
 @dataclass(frozen=True, slots=True)
 class Column:
-    """A column: title, unit row, ``right`` for numbers, ``wrap`` where the text may be broken."""
+    """A column: title, unit row, ``right`` for numbers, ``wrap`` where the text may be broken.
+
+    ``share`` is its part of the width; tables whose columns all have one line up under each other.
+    """
 
     title: str
     unit: str = ""
     right: bool = False
     wrap: bool = False
+    share: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,11 +75,12 @@ class Table:
 
 @dataclass(frozen=True, slots=True)
 class Figure:
-    """A drawing with its title and a caption."""
+    """A drawing with its title and a caption; ``if_room`` leaves it out where the page is full."""
 
     title: str
     drawing: Drawing
     caption: str = ""
+    if_room: bool = False
 
 
 @dataclass(frozen=True, slots=True)

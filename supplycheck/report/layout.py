@@ -88,7 +88,7 @@ def _paragraph(sheets: Sheets, block: Paragraph) -> None:
     size = _SIZES[block.tone]
     indent = 0.0
     if block.bullet:
-        indent = 14.0
+        indent = max(14.0, sheets.ruler.width(block.bullet, size, True) + 5)
         sheets.need(size * 1.38)
         y = sheets.y - size * 1.38 + size * 0.3
         sheets.put(Label(sheets.left, y, sheets.ruler.clean(block.bullet), size, bold=True, colour=CLAY))
@@ -127,7 +127,10 @@ def _facts(sheets: Sheets, block: Facts) -> None:
 def _figure(sheets: Sheets, block: Figure) -> None:
     drawing = block.drawing
     caption = wrap(block.caption, sheets.room, 7.0, sheets.ruler) if block.caption else []
-    sheets.need(drawing.height + 18 + len(caption) * 9.7)
+    height = drawing.height + 18 + len(caption) * 9.7
+    if block.if_room and sheets.y - height < sheets.bottom:
+        return
+    sheets.need(height)
     if block.title:
         sheets.text(block.title, 9.4, bold=True, colour=PETROL)
         sheets.y -= 3

@@ -91,9 +91,7 @@ class Sheets:
         """Paint ``items`` on the page."""
         self.sheet.items.extend(items)
 
-    def text(
-        self, text: str, size: float, *, bold: bool = False, colour: str, indent: float = 0.0
-    ) -> None:
+    def text(self, text: str, size: float, *, bold: bool = False, colour: str, indent: float = 0.0) -> None:
         """Write ``text`` from the cursor down, broken into lines and over pages."""
         leading = size * 1.38
         for line in wrap(text, self.room - indent, size, self.ruler, bold=bold):
@@ -141,7 +139,5 @@ def moved(item: Item, x: float, y: float, ruler: Ruler) -> Item:
     if isinstance(item, Label):
         text = ruler.clean(item.text)
         place = (item.x + x, item.y + y)
-        return Label(
-            *place, text, item.size, item.anchor, item.bold, item.colour, item.angle, item.behind
-        )
+        return Label(*place, text, item.size, item.anchor, item.bold, item.colour, item.angle, item.behind)
     return type(item)(item.x + x, item.y + y, item.radius, item.fill, item.stroke, item.line)

@@ -63,6 +63,9 @@ def _title(sheets: Sheets, title: str) -> None:
 
 def _grid(table: Table, room: float, ruler: Ruler) -> _Grid:
     size = table.size
+    if all(column.share for column in table.columns):
+        whole = sum(column.share for column in table.columns)
+        return _Grid(tuple(room * column.share / whole for column in table.columns), size)
     natural = _natural(table, size, ruler)
     while sum(natural) > room and size > 5.6 and not any(column.wrap for column in table.columns):
         size -= 0.2
@@ -89,12 +92,12 @@ def _natural(table: Table, size: float, ruler: Ruler) -> list[float]:
 
 
 def _stretched(table: Table, natural: list[float], room: float) -> tuple[float, ...]:
+    """Give the room that is left to all columns alike, and to wrapped ones what is over that."""
     spare = room - sum(natural)
+    share = min(spare / len(natural), 14.0)
     wide = [place for place, column in enumerate(table.columns) if column.wrap]
-    if wide:
-        return tuple(w + (spare / len(wide) if i in wide else 0.0) for i, w in enumerate(natural))
-    share = min(spare / len(natural), 26.0)
-    return tuple(width + share for width in natural)
+    more = (spare - share * len(natural)) / len(wide) if wide else 0.0
+    return tuple(width + share + (more if i in wide else 0.0) for i, width in enumerate(natural))
 
 
 def _shrunk(widths: list[float], elastic: list[float], over: float) -> list[float]:
@@ -168,9 +171,7 @@ def _cell(
 _Laid = tuple[int, Row, list[list[str]], list[str]]
 
 
-def _row(
-    sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: _Laid
-) -> None:
+def _row(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: _Laid) -> None:
     """Write one row; one that is taller than a page goes on over the next."""
     number, row, lines, notes = laid
     start = 0

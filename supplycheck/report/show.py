@@ -60,7 +60,11 @@ def steps_table(title: str, steps: Iterable[HandStep], show: Show, note: str = "
     rows = tuple(
         Row((step.step, step.formula, show.t(step.value, step.kind)), note=step.note) for step in steps
     )
-    columns = (words("Step"), words("Formula and numbers"), column("Result"))
+    columns = (
+        Column("Step", wrap=True, share=0.34),
+        Column("Formula and numbers", wrap=True, share=0.5),
+        Column("Result", right=True, share=0.16),
+    )
     return Table(title, columns, rows, note, empty="no steps recorded")
 
 

@@ -20,9 +20,7 @@ CLAY: Final = "#9c3b22"
 SAND: Final = "#d9b77a"
 PLUM: Final = "#6b4a7d"
 
-VERDICT_COLOURS: Final = MappingProxyType(
-    {"adequate": PETROL, "not adequate": CLAY, "undetermined": SLATE}
-)
+VERDICT_COLOURS: Final = MappingProxyType({"adequate": PETROL, "not adequate": CLAY, "undetermined": SLATE})
 
 # Advance widths of the letters space to tilde in thousandths of the size (Bitstream Vera Sans), for
 # figures that must know how long a label is before a writer draws it.

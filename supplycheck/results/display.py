@@ -28,6 +28,16 @@ STATE_TITLES: Final = MappingProxyType(
     }
 )
 
+STATE_WORDS: Final = MappingProxyType(
+    {
+        "fail": "outside a limit",
+        "missing": "not run for want of data",
+        "ask authority": "for the authority",
+        "ok": "within the limit",
+        "not applicable": "not applicable",
+    }
+)
+
 _FIELD: Final = re.compile(r"\{([A-Za-z_]\w*)\}")
 
 
@@ -90,6 +100,12 @@ def counts(findings: Iterable[Finding]) -> dict[State, int]:
     """Return how many findings there are of each state, in display order."""
     found = list(findings)
     return {state: sum(one.state == state for one in found) for state in STATES}
+
+
+def counts_text(findings: Iterable[Finding]) -> str:
+    """Return how many findings there are of each state, in words."""
+    parts = [f"{number} {STATE_WORDS[state]}" for state, number in counts(findings).items() if number]
+    return ", ".join(parts) or "no check was run"
 
 
 def visible(text: str) -> str:

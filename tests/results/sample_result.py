@@ -7,6 +7,7 @@ characters in titles, nodes without coordinates, every state of a finding.
 from __future__ import annotations
 
 import datetime as dt
+from itertools import pairwise
 from types import MappingProxyType
 
 from supplycheck.findings import Finding, Measure
@@ -119,16 +120,22 @@ class Maker:
                 last = head == self.heads - 1
                 start = f"J{line + 1}" if last else self.tag(line, head + 1)
                 size = sizes[min(head, 3)]
-                rows.append(self._pipe(start, self.tag(line, head), size, "branch line", line, (darcy, second)))
+                rows.append(
+                    self._pipe(start, self.tag(line, head), size, "branch line", line, (darcy, second))
+                )
             start = f"J{line + 2}" if line + 1 < self.lines else "TOR"
-            rows.append(self._pipe(start, f"J{line + 1}", ("4", 4.026), "cross main", line, (darcy, second)))
+            rows.append(
+                self._pipe(start, f"J{line + 1}", ("4", 4.026), "cross main", line, (darcy, second))
+            )
         rows.append(self._pipe("BOR", "TOR", ("4", 4.026), "riser", 0, (darcy, second)))
         rows.append(self._pipe("S", "BOR", ("6 cement-lined", 6.275), "underground", 0, (darcy, second)))
         return tuple(rows)
 
     def _pipe(self, start, end, size, role, line, laws) -> PipeRow:
         darcy, second = laws
-        fittings = (Fitting("elbow 90", 2, 7 * FT, 14 * FT, 0.0, "inferred", "table of equivalent lengths"),)
+        fittings = (
+            Fitting("elbow 90", 2, 7 * FT, 14 * FT, 0.0, "inferred", "table of equivalent lengths"),
+        )
         devices = ("backflow",) if role == "riser" else ()
         return PipeRow(
             tag=f"P-{start}-{end}",
@@ -166,7 +173,7 @@ def path() -> tuple[PathStep, ...]:
     names = ("H1.1", "H1.2", "H1.3", "H1.4", "J1", "J2", "J3", "TOR", "BOR", "S")
     at = 12.125
     steps = []
-    for place, (start, end) in enumerate(zip(names, names[1:], strict=False)):
+    for place, (start, end) in enumerate(pairwise(names)):
         riser, device = start == "TOR", start == "BOR"
         friction, fitting = 1.4875 + 0.1 * place, 0.62 * (place % 3)
         elevation, loss = (8.227 if riser else 0.0), (6.2 if device else 0.0)
@@ -202,7 +209,9 @@ def path() -> tuple[PathStep, ...]:
 
 def hand_check() -> tuple[HandStep, ...]:
     return (
-        HandStep("Flow asked of the head", "0.150 gpm/ft² × 130.0 ft²", 19.5 * GPM, "flow", "density governs"),
+        HandStep(
+            "Flow asked of the head", "0.150 gpm/ft² × 130.0 ft²", 19.5 * GPM, "flow", "density governs"
+        ),
         HandStep("Pressure at the head", "(19.5 / 5.60)²", 12.125 * PSI, "pressure"),
         HandStep(
             "Loss per foot H1.1 to H1.2",
@@ -228,7 +237,8 @@ def findings() -> tuple[Finding, ...]:
         Finding(
             "age of the flow test",
             "fail",
-            "The test was {measured} old at submittal; the limit in the project is {limit} ({unknown} stays).",
+            "The test was {measured} old at submittal; the limit in the project is {limit} "
+            "({unknown} stays).",
             Measure(1.52, "age"),
             Measure(1.0, "age"),
             "limit given in the project",
@@ -342,7 +352,14 @@ def project(units: UnitSet, title: str, *, paper: str, darcy: bool, second: bool
             (),
             (
                 Sprinkler(
-                    "A", 5.6 * GPM / PSI**0.5, 7 * PSI, 130 * FT**2, 175 * PSI, "quick", 341.5, "data sheet 7"
+                    "A",
+                    5.6 * GPM / PSI**0.5,
+                    7 * PSI,
+                    130 * FT**2,
+                    175 * PSI,
+                    "quick",
+                    341.5,
+                    "data sheet 7",
                 ),
             ),
             (),
@@ -359,7 +376,9 @@ def project(units: UnitSet, title: str, *, paper: str, darcy: bool, second: bool
             Assumption("pipe.branch.c_factor", "120", "catalogue", "steel, wet (from memory)"),
         ),
         files=(
-            InputFile("project.toml", "ab" * 32, 53, 'units = "us"\n[project]\ntitle = "<b>x</b>"\n\ta\x07b\n'),
+            InputFile(
+                "project.toml", "ab" * 32, 53, 'units = "us"\n[project]\ntitle = "<b>x</b>"\n\ta\x07b\n'
+            ),
         ),
         origins=(Assumption("criteria.density", "0.15 gpm/ft²", "catalogue", "hazard class table"),),
     )

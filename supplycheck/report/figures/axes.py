@@ -4,12 +4,15 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, field
-from typing import Final
+from typing import Final, Literal
 
 from supplycheck.report.drawing import Anchor, Label
 from supplycheck.report.theme import text_width
 
 CELL: Final = 24.0
+
+Reach = Literal["beside", "around", "far"]
+_SIDES: Final[tuple[tuple[float, Anchor], ...]] = ((0.0, "middle"), (1.0, "start"), (-1.0, "end"))
 
 
 def round_steps(top: float, most: int) -> list[float]:
@@ -70,9 +73,21 @@ class Taken:
             self.take((x - half, y - half, x + half, y + half))
 
     def place(
-        self, x: float, y: float, text: str, size: float, *, gap: float = 4.0, bold: bool = False
+        self,
+        x: float,
+        y: float,
+        text: str,
+        size: float,
+        *,
+        gap: float = 4.0,
+        bold: bool = False,
+        reach: Reach = "around",
+        down: bool = False,
     ) -> tuple[float, float, Anchor] | None:
-        """Return where ``text`` fits beside (``x``, ``y``) and cover that place; ``None`` if nowhere."""
+        """Return where ``text`` fits beside (``x``, ``y``) and cover that place; ``None`` if nowhere.
+
+        ``reach`` says how far from the point it may stand; ``down`` tries the places below first.
+        """
         wide = text_width(text, size, bold=bold)
         tries: tuple[tuple[float, float, Anchor], ...] = (
             (x + gap, y + gap * 0.6, "start"),
@@ -86,9 +101,20 @@ class Taken:
             (x - 3 * gap, y + 3 * gap, "end"),
             (x + 3 * gap, y - 3 * gap - size * 0.75, "start"),
         )
+        if reach == "beside":
+            tries = tries[:6]
+        if reach == "far":
+            tries += tuple(
+                (x + side * step, y + way * step - (size * 0.75 if way < 0 else 0.0), anchor)
+                for step in (gap * times for times in range(3, 22, 2))
+                for way in (1, -1)
+                for side, anchor in _SIDES
+            )
+        if down:
+            tries = tuple(sorted(tries, key=lambda one: one[1] > y))
         for at_x, at_y, anchor in tries:
             left = at_x - {"start": 0.0, "middle": wide / 2, "end": wide}[anchor]
-            box = (left, at_y - size * 0.22, left + wide, at_y + size * 0.8)
+            box = (left - 1.0, at_y - size * 0.22, left + wide + 1.0, at_y + size * 0.8)
             if self.is_free(box):
                 self.take(box)
                 return at_x, at_y, anchor
@@ -110,9 +136,11 @@ def short(text: str, room: float, size: float) -> str:
     return cut.rstrip() + "…"
 
 
-def put_label(taken: Taken, point: tuple[float, float], text: str, style: Label) -> Label | None:
+def put_label(
+    taken: Taken, point: tuple[float, float], text: str, style: Label, reach: Reach = "around"
+) -> Label | None:
     """Return ``style`` with ``text`` placed beside ``point``, or ``None`` where it does not fit."""
-    found = taken.place(*point, text, style.size, bold=style.bold)
+    found = taken.place(*point, text, style.size, gap=5.0, bold=style.bold, reach=reach)
     if found is None:
         return None
     x, y, anchor = found

@@ -112,7 +112,7 @@ def answer_bars(result: Result, units: UnitSet, width: float) -> Drawing:
     demand, supply, margin = result.demand, result.supply, result.margin
     need = demand.pressure + (margin.required or 0.0)
     most = max(need, supply.available_pressure, supply.static_at_comparison, 1.0)
-    left, right = 82.0, width - 120.0
+    left, right = 82.0, width - 130.0
     scale = (right - left) / most
     x = [left + scale * max(value, 0.0) for value in (demand.pressure, need, supply.available_pressure)]
     items: list[Item] = [
@@ -123,7 +123,7 @@ def answer_bars(result: Result, units: UnitSet, width: float) -> Drawing:
     if margin.required:
         items.append(Box(x[0], 25, x[1] - x[0], 12, "#ffffff", CLAY, 1.0, (2.0, 1.5)))
         text = f"{text} + {units.text(margin.required, 'pressure')} by the rule"
-    items.append(Label(x[1] + 5, 28.5, text, 7.0))
+    items.append(Label(max(x[1], x[2]) + 5, 28.5, text, 7.0))
     items += [
         Label(0, 11, "available", 7.4, colour=SLATE),
         Box(left, 7, x[2] - left, 12, PETROL),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 from typing import Final
 
@@ -24,6 +25,7 @@ _CURVES: Final[dict[str, tuple[str, float, tuple[float, ...]]]] = {
     "tank": (LAGOON, 1.4, ()),
     "pump": (PLUM, 1.4, ()),
 }
+_Mark = tuple[str, str, float, float]
 _FAR_DASH: Final = (3.5, 2.5)
 
 
@@ -36,7 +38,7 @@ class _Frame:
         self.low, self.high = steps[0], steps[-1]
 
     def x(self, flow: float) -> float:
-        share = (max(flow, 0.0) / self.flow) ** EXPONENT
+        share = math.pow(max(flow, 0.0) / self.flow, EXPONENT)
         return _LEFT + (self.right - _LEFT) * share
 
     def y(self, pressure: float) -> float:
@@ -52,7 +54,7 @@ def supply_graph(
     """Return the graph; a curve is dashed beyond the flow up to which it was tested."""
     width, height = size
     lines = [_in_units(curve, units) for curve in curves]
-    marks = [
+    marks: list[_Mark] = [
         (p.name, p.style, units.from_si(p.flow, "flow"), units.from_si(p.pressure, "pressure"))
         for p in points
     ]
@@ -78,7 +80,7 @@ def _in_units(curve: CurvePoints, units: UnitSet) -> list[tuple[float, float]]:
 
 def _frame(
     lines: list[list[tuple[float, float]]],
-    marks: list[tuple[str, str, float, float]],
+    marks: list[_Mark],
     width: float,
     height: float,
 ) -> _Frame | None:
@@ -86,7 +88,7 @@ def _frame(
     flow = max((q for q, _ in every), default=0.0)
     if flow <= 0:
         return None
-    steps = round_steps(max(p for _, p in every) * 1.06, 8)
+    steps = round_steps(max(p for _, p in every) * 1.06, 10)
     lowest = min(p for _, p in every)
     if lowest < 0:
         step = steps[1]
@@ -100,7 +102,9 @@ def _grid(frame: _Frame, units: UnitSet) -> list[Item]:
     for pressure in frame.steps:
         y = frame.y(pressure)
         strong = pressure == 0
-        items.append(Line(((_LEFT, y), (frame.right, y)), SLATE if strong else RULE, 0.8 if strong else 0.35))
+        items.append(
+            Line(((_LEFT, y), (frame.right, y)), SLATE if strong else RULE, 0.8 if strong else 0.35)
+        )
         items.append(Label(_LEFT - 4, y - 2.4, plain(pressure), 6.6, "end"))
     flows = round_steps(frame.flow, 20)
     last = -1e9
@@ -141,7 +145,7 @@ def _curve(
         if len(part) > 1:
             path = tuple((frame.x(q), frame.y(p)) for q, p in part)
             items.append(Line(path, colour, width, how))
-            for start, end in zip(path, path[1:], strict=False):
+            for start, end in itertools.pairwise(path):
                 taken.take_line(start, end)
     return items
 
@@ -177,9 +181,7 @@ def _between(start: float, end: float, share: float) -> float:
     return float(power ** (1 / EXPONENT))
 
 
-def _marks(
-    marks: list[tuple[str, str, float, float]], frame: _Frame, units: UnitSet, taken: Taken
-) -> list[Item]:
+def _marks(marks: list[_Mark], frame: _Frame, units: UnitSet, taken: Taken) -> list[Item]:
     items: list[Item] = []
     for _, _, flow, pressure in marks:
         x, y = frame.x(flow), frame.y(pressure)
@@ -191,11 +193,14 @@ def _marks(
         flow_text = f"{flow:.{units.unit('flow').decimals}f} {units.symbol('flow')}"
         pressure_text = f"{pressure:.{units.unit('pressure').decimals}f} {units.symbol('pressure')}"
         text = f"{name}: {flow_text}, {pressure_text}".replace("-", "−")
-        found = taken.place(x, y, text, 6.6, gap=6.0)
+        found = taken.place(x, y, text, 6.6, gap=6.0, reach="far", down=style.startswith("demand"))
         if found is None:
             left_out.append(text)
         else:
             at_x, at_y, anchor = found
+            if abs(at_y - y) > 17 or abs(at_x - x) > 17:
+                near = at_y - 2 if at_y > y else at_y + 6
+                items.append(Line(((x, y), (at_x, near)), SLATE, 0.4))
             items.append(Label(at_x, at_y, text, 6.6, anchor, False, INK, 0.0, "#ffffff"))
     for place, text in enumerate(left_out):
         items.append(Label(_LEFT + 6, _BOTTOM + 6 + place * 8, text, 6.2, behind="#ffffff"))

@@ -35,7 +35,12 @@ def clipped(start: Point, end: Point, window: Window) -> tuple[Point, Point] | N
     (x0, y0), (x1, y1) = start, end
     dx, dy = x1 - x0, y1 - y0
     near, far = 0.0, 1.0
-    for step, room in ((-dx, x0 - window.x0), (dx, window.x1 - x0), (-dy, y0 - window.y0), (dy, window.y1 - y0)):
+    for step, room in (
+        (-dx, x0 - window.x0),
+        (dx, window.x1 - x0),
+        (-dy, y0 - window.y0),
+        (dy, window.y1 - y0),
+    ):
         if step == 0:
             if room < 0:
                 return None
@@ -113,7 +118,8 @@ def _joined(edges: list[tuple[Point, Point]]) -> list[tuple[Point, Point]]:
     out: list[tuple[Point, Point]] = []
     for flat in (0, 1):
         pieces = sorted(
-            (e for e in edges if (e[0][1] == e[1][1]) == (flat == 0)), key=lambda e: (e[0][1 - flat], e[0][flat])
+            (e for e in edges if (e[0][1] == e[1][1]) == (flat == 0)),
+            key=lambda e: (e[0][1 - flat], e[0][flat]),
         )
         for start, end in pieces:
             if out and out[-1][1] == start and (out[-1][0][1 - flat] == end[1 - flat]):

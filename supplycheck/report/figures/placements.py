@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
 from typing import Final
 
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Taken
 from supplycheck.report.figures.outline import Window
-from supplycheck.report.figures.plan import Scale
+from supplycheck.report.figures.plan import Scale, places_of
 from supplycheck.report.theme import CLAY, INK, PAPER, RULE, SLATE, text_width
 from supplycheck.results.records import Placement, Result
 from supplycheck.units import UnitSet
@@ -21,9 +22,9 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
     spots = [one for one in area.placements if one.x is not None and one.y is not None]
     if len(spots) < 2:
         return None
-    nodes = {n.tag: (n.x, n.y) for n in result.nodes if n.x is not None and n.y is not None}
-    xs = [x or 0.0 for x, _ in nodes.values()] + [one.x or 0.0 for one in spots]
-    ys = [y or 0.0 for _, y in nodes.values()] + [one.y or 0.0 for one in spots]
+    nodes = places_of(result)
+    xs = [x for x, _ in nodes.values()] + [one.x or 0.0 for one in spots]
+    ys = [y for _, y in nodes.values()] + [one.y or 0.0 for one in spots]
     window = Window(min(xs), min(ys), max(xs), max(ys))
     wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
     factor = min((size[0] - 32) / wide, (size[1] - 60) / high)
@@ -33,9 +34,7 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
     for pipe in result.pipes:
         start, end = nodes.get(pipe.start), nodes.get(pipe.end)
         if start and end and start != end:
-            a = scale.at(start[0] or 0.0, start[1] or 0.0)
-            b = scale.at(end[0] or 0.0, end[1] or 0.0)
-            items.append(Line((a, b), RULE, 0.4))
+            items.append(Line((scale.at(*start), scale.at(*end)), RULE, 0.4))
     items += _spots(spots, result, scale, units, (size[0], height))
     items += _key(spots, units, size[0])
     return Drawing(size[0], height, tuple(items), "required pressure by placement of the design area")
@@ -47,6 +46,17 @@ def _classes(spots: list[Placement]) -> list[float]:
     return [low + (high - low) * place / len(_SHADES) for place in range(len(_SHADES) + 1)]
 
 
+def _closest(spots: list[Placement]) -> float:
+    """Return the smallest distance [m] between rows or columns of spots."""
+    gaps = [
+        after - before
+        for values in ({one.x or 0.0 for one in spots}, {one.y or 0.0 for one in spots})
+        for before, after in pairwise(sorted(values))
+        if after - before > 0.05
+    ]
+    return min(gaps, default=10.0)
+
+
 def _shade(value: float, bounds: list[float]) -> int:
     return next((i for i in range(len(_SHADES) - 1) if value < bounds[i + 1]), len(_SHADES) - 1)
 
@@ -55,7 +65,7 @@ def _spots(
     spots: list[Placement], result: Result, scale: Scale, units: UnitSet, size: tuple[float, float]
 ) -> list[Item]:
     bounds = _classes(spots)
-    radius = 4.5 if len(spots) <= 60 else 3.2 if len(spots) <= 300 else 2.2
+    radius = max(1.4, min(4.5, 0.42 * scale.factor * _closest(spots)))
     area = result.design_area
     taken = Taken(2, 26, size[0] - 2, size[1] - 2)
     items: list[Item] = []
@@ -78,9 +88,11 @@ def _spots(
             items.append(Label(found[0], found[1], text, 6.6, found[2], True, INK, 0.0, PAPER))
     if len(spots) <= 120:
         for one in spots:
+            if one in {area.governing, area.runner_up}:
+                continue
             x, y = scale.at(one.x or 0.0, one.y or 0.0)
             text = units.number(one.required_pressure, "pressure")
-            found = taken.place(x, y, text, 5.6, gap=radius)
+            found = taken.place(x, y, text, 5.6, gap=radius, reach="beside")
             if found:
                 items.append(Label(found[0], found[1], text, 5.6, found[2], colour=SLATE))
     return items

@@ -9,9 +9,11 @@ from typing import Final
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Taken, plain, put_label, round_steps, short
 from supplycheck.report.figures.outline import Window, cells_of_heads, clipped, outline_of
-from supplycheck.report.theme import CLAY, INK, MIST, PAPER, PETROL, SAND, SLATE, text_width
+from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, SAND, SLATE, text_width
 from supplycheck.results.records import NodeRow, PipeRow, Result
 from supplycheck.units import UnitSet
+
+Places = dict[str, tuple[float, float]]
 
 _EDGE: Final = 16.0
 _BAR_ROOM: Final = 20.0
@@ -45,6 +47,11 @@ class Scale:
         )
 
 
+def places_of(result: Result) -> Places:
+    """Return the coordinates [m] of every node that has them."""
+    return {n.tag: (n.x, n.y) for n in result.nodes if n.x is not None and n.y is not None}
+
+
 def has_plan(result: Result) -> bool:
     """True where at least two nodes at different places have coordinates."""
     return len({(node.x, node.y) for node in result.nodes if node.x is not None and node.y is not None}) > 1
@@ -52,8 +59,11 @@ def has_plan(result: Result) -> bool:
 
 def whole_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> PlanView:
     """Return the plan of everything that has coordinates."""
-    placed = [node for node in result.nodes if node.x is not None and node.y is not None]
-    xs, ys = [node.x or 0.0 for node in placed], [node.y or 0.0 for node in placed]
+    places = places_of(result).values()
+    xs, ys = [x for x, _ in places], [y for _, y in places]
+    for x0, y0, x1, y1 in cells_of_heads(result.nodes):
+        xs += [x0, x1]
+        ys += [y0, y1]
     window = Window(min(xs), min(ys), max(xs), max(ys))
     return _view(result, units, window, size, enlarged=False)
 
@@ -64,7 +74,10 @@ def area_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> Plan
     if not heads:
         return None
     xs, ys = [node.x or 0.0 for node in heads], [node.y or 0.0 for node in heads]
-    reach = 0.12 * max(max(xs) - min(xs), max(ys) - min(ys), 3.0) + 1.5
+    for x0, y0, x1, y1 in cells_of_heads(result.nodes):
+        xs += [x0, x1]
+        ys += [y0, y1]
+    reach = 0.04 * max(max(xs) - min(xs), max(ys) - min(ys), 3.0) + 0.5
     window = Window(min(xs) - reach, min(ys) - reach, max(xs) + reach, max(ys) + reach)
     return _view(result, units, window, size, enlarged=True)
 
@@ -83,7 +96,7 @@ def _view(
     result: Result, units: UnitSet, window: Window, size: tuple[float, float], *, enlarged: bool
 ) -> PlanView:
     scale, width, height = _scale(window, size)
-    places = {n.tag: (n.x, n.y) for n in result.nodes if n.x is not None and n.y is not None}
+    places = places_of(result)
     inside = [n for n in result.nodes if n.tag in places and window.holds(*places[n.tag])]
     taken = Taken(2.0, _BAR_ROOM + 2, width - 2, height - 2)
     items: list[Item] = [Box(0, _BAR_ROOM, width, height - _BAR_ROOM, PAPER, SLATE, 0.5)]
@@ -110,9 +123,6 @@ def _area(result: Result, scale: Scale) -> list[Item]:
     for x0, y0, x1, y1 in boxes:
         left, low = scale.at(max(x0, scale.window.x0 - 2), max(y0, scale.window.y0 - 2))
         right, high = scale.at(min(x1, scale.window.x1 + 2), min(y1, scale.window.y1 + 2))
-        edge = _EDGE - 2
-        left, right = max(left, 2), max(right, 2)
-        del edge
         items.append(Box(left, low, right - left, high - low, "#f4e9d2"))
     for start, end in outline_of(boxes):
         items.append(Line((scale.at(*start), scale.at(*end)), CLAY, 1.2, (5.0, 2.5)))
@@ -134,7 +144,7 @@ def pipe_strokes(pipes: tuple[PipeRow, ...]) -> dict[str, tuple[float, str]]:
 
 def _pipe(
     pipe: PipeRow,
-    places: dict[str, tuple[float | None, float | None]],
+    places: Places,
     scale: Scale,
     strokes: dict[str, tuple[float, str]],
     taken: Taken,
@@ -187,7 +197,7 @@ def _symbol(node: NodeRow, at: tuple[float, float], size: float, taken: Taken) -
 def _tags(
     result: Result,
     inside: list[NodeRow],
-    places: dict[str, tuple[float | None, float | None]],
+    places: Places,
     scale: Scale,
     units: UnitSet,
     taken: Taken,
@@ -211,7 +221,10 @@ def _tags(
         if enlarged and node.in_design_area:
             text = f"{short(node.tag, 46, style.size)}  {units.number(node.pressure, 'pressure')}"
         at = scale.at(*places[node.tag])
-        label = put_label(taken, at, text, strong if rank(node) == 0 else style)
+        first = rank(node) == 0
+        label = put_label(
+            taken, at, text, strong if first else style, "around" if first or enlarged else "beside"
+        )
         if label is not None:
             items.append(label)
             shown += 1
@@ -246,7 +259,9 @@ def _legend(width: float) -> list[Item]:
     x = 0.0
     for symbol, text in entries:
         if isinstance(symbol, Dot):
-            items.append(Dot(symbol.x + x, symbol.y, symbol.radius, symbol.fill, symbol.stroke, symbol.line))
+            items.append(
+                Dot(symbol.x + x, symbol.y, symbol.radius, symbol.fill, symbol.stroke, symbol.line)
+            )
         elif isinstance(symbol, Box):
             items.append(Box(x + 1, 5, 6, 6, symbol.fill, symbol.stroke, symbol.line))
         else:

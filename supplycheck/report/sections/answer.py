@@ -6,8 +6,9 @@ from typing import Final
 
 from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph, Section, Tile, Verdict
 from supplycheck.report.figures.bars import answer_bars
+from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, given
-from supplycheck.results.display import STATE_TITLES, counts, finding_text
+from supplycheck.results.display import counts_text, finding_text
 from supplycheck.results.records import Result
 
 MOST_QUESTIONS: Final = 6
@@ -23,6 +24,11 @@ def answer(result: Result, width: float) -> Section:
         Facts(_facts(result, show)),
         *_fails(result, show),
         *_questions(result),
+        Figure(
+            "Supply and demand",
+            supply_graph(result.curves, result.points, show.units, (width, 176.0)),
+            if_room=True,
+        ),
         Paragraph(
             "This page says whether the supply carries the demand as calculated from the inputs listed in "
             "this report. It is a preliminary aid, neither a design nor an approval: a licensed designer "
@@ -47,7 +53,8 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
         Tile(
             "Available",
             show.t(supply.available_pressure, "pressure"),
-            f"at {show.t(demand.flow, 'flow')}; static there {show.t(supply.static_at_comparison, 'pressure')}",
+            f"at {show.t(demand.flow, 'flow')}; static there "
+            f"{show.t(supply.static_at_comparison, 'pressure')}",
         ),
         Tile("Margin before the rule", show.signed(margin.pressure, "pressure"), "available − demand"),
         Tile("Left after the rule", after, f"the rule asks {asked}"),
@@ -57,9 +64,6 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
 def _facts(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     project, area = result.project, result.design_area
     facts, criteria, balance = project.facts, project.criteria, result.balance
-    found = ", ".join(
-        f"{number} {STATE_TITLES[state].lower()}" for state, number in counts(result.findings).items() if number
-    )
     density = f"{show.t(criteria.density, 'density')} over {show.t(criteria.required_area, 'area')}"
     return (
         ("What governs", result.governs),
@@ -69,10 +73,11 @@ def _facts(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Standard, edition", facts.standard),
         ("Authority", given(facts.authority)),
         ("Stage", facts.stage),
-        ("Findings", found or "no check was run"),
+        ("Findings", counts_text(result.findings)),
         (
             "Balance",
-            f"largest flow imbalance {show.small(balance.largest_flow_imbalance, 'flow')}, largest pressure "
+            f"largest flow imbalance {show.small(balance.largest_flow_imbalance, 'flow')}, largest "
+            "pressure "
             f"imbalance {show.small(balance.largest_pressure_imbalance, 'pressure')}, recomputed from "
             "the numbers reported",
         ),
@@ -95,7 +100,10 @@ def _fails(result: Result, show: Show) -> list[Block]:
 def _questions(result: Result) -> list[Block]:
     questions = result.open_questions
     if not questions:
-        return [Heading("Open questions"), Paragraph("None was recorded. Assumptions are listed in the report.")]
+        return [
+            Heading("Open questions"),
+            Paragraph("None was recorded. Assumptions are listed in the report."),
+        ]
     blocks: list[Block] = [Heading("Open questions")]
     blocks += [
         Paragraph(question, bullet=f"{place}.")

@@ -60,12 +60,17 @@ def _criteria(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
         ("Design area", "searched over all placements" if search else "heads named in the project"),
         ("Least pressure at a head", show.t(criteria.minimum_pressure, "pressure")),
         ("Duration", show.t(criteria.duration, "time")),
-        ("Greatest coverage, spacing", f"{show.t(criteria.maximum_coverage, 'area')}, "
-         f"{show.t(criteria.maximum_spacing, 'length')}"),
+        (
+            "Greatest coverage, spacing",
+            f"{show.t(criteria.maximum_coverage, 'area')}, {show.t(criteria.maximum_spacing, 'length')}",
+        ),
         ("Ceiling height", show.t(criteria.ceiling_height, "length")),
         ("Component rating", show.t(criteria.maximum_pressure, "pressure")),
         ("Velocity limits", f"{velocity.name}: {', '.join(limits) or 'none set'} ({velocity.source})"),
-        ("Velocity pressure", "taken into account" if criteria.velocity_pressure else "not taken into account"),
+        (
+            "Velocity pressure",
+            "taken into account" if criteria.velocity_pressure else "not taken into account",
+        ),
         ("Source of the criteria", criteria.source),
     )
 
@@ -108,7 +113,8 @@ def _sprinklers(sprinklers: tuple[Sprinkler, ...], show: Show) -> Table:
 def _law_facts(project: Project, show: Show) -> tuple[tuple[str, str], ...]:
     hose, law, second, fluid = project.hose, project.law, project.second_law, project.fluid
     unit_names = ", ".join(
-        show.s(kind) for kind in ("flow", "pressure", "length", "size", "area", "density", "velocity", "k_factor")
+        show.s(kind)
+        for kind in ("flow", "pressure", "length", "size", "area", "density", "velocity", "k_factor")
     )
     weight = show.t(fluid.unit_weight, "gradient")
     pairs = [
@@ -118,7 +124,8 @@ def _law_facts(project: Project, show: Show) -> tuple[tuple[str, str], ...]:
         ("Friction law", f"{law.name} ({law.source})"),
         (
             "Fluid",
-            f"{fluid.name}: {show.t(fluid.density, 'mass_density')}, {show.t(fluid.viscosity, 'viscosity')}, "
+            f"{fluid.name}: {show.t(fluid.density, 'mass_density')}, "
+            f"{show.t(fluid.viscosity, 'viscosity')}, "
             f"elevation {weight}"
             + (f", at {show.t(fluid.temperature, 'temperature')}" if fluid.temperature is not None else "")
             + f" ({fluid.source})",

@@ -22,21 +22,27 @@ MOST_LINES: Final = 160
 MOST_LETTERS: Final = 400
 
 CAUTIONS: Final = (
-    "This is a preliminary engineering aid. It is not a design, an approval, a listing or a certificate, and it "
+    "This is a preliminary engineering aid. It is not a design, an approval, a listing or a "
+    "certificate, and it "
     "must not be presented as one.",
     "A licensed or certified person checks the inputs, the layout and the calculation, and takes "
     "responsibility under their own name.",
-    "The authority having jurisdiction decides, under the edition that it has adopted and with its amendments. "
+    "The authority having jurisdiction decides, under the edition that it has adopted and with its "
+    "amendments. "
     "Ask it before relying on any figure here; an insurer may ask for more.",
-    "The supply is described as it was at the hour of the test. Mains, pumps and other users change: test again "
+    "The supply is described as it was at the hour of the test. Mains, pumps and other users change: "
+    "test again "
     "when the test is old or something has been altered.",
     "Values that were assumed are listed with their origin. Each of them is a question until somebody has "
     "answered it.",
-    "Outside this report: special hazards and storage that were not entered, obstructions, freezing, corrosion, "
+    "Outside this report: special hazards and storage that were not entered, obstructions, freezing, "
+    "corrosion, "
     "earthquake bracing, water quality.",
     "A check that was not run is shown as not run. The absence of a failure is not conformity.",
-    "Flow testing is done only with the utility's permission and, where it asks, its operator. Keep people clear "
-    "of caps and streams, mind the traffic, and know where the water will go: erosion, ice, chlorine reaching a "
+    "Flow testing is done only with the utility's permission and, where it asks, its operator. Keep "
+    "people clear "
+    "of caps and streams, mind the traffic, and know where the water will go: erosion, ice, chlorine "
+    "reaching a "
     "stream.",
     "Open hydrants fully, close them slowly, drain dry barrels. Stop before the main falls below 20 psi "
     "(1.4 bar): below that, contaminated water may be drawn in.",
@@ -46,7 +52,12 @@ CAUTIONS: Final = (
 
 def assumptions(result: Result) -> Section:
     """Return what was assumed or inferred, then where the other values come from."""
-    columns = (words("Value"), words("Taken as"), Column("Origin"), words("Source"))
+    columns = (
+        Column("Value", wrap=True, share=0.27),
+        Column("Taken as", wrap=True, share=0.22),
+        Column("Origin", wrap=True, share=0.11),
+        Column("Source", wrap=True, share=0.4),
+    )
     project = result.project
     rows = tuple(Row((one.key, one.value, one.origin, one.source)) for one in project.assumptions)
     origins = tuple(Row((one.key, one.value, one.origin, one.source)) for one in project.origins)
@@ -60,14 +71,16 @@ def assumptions(result: Result) -> Section:
     ]
     if origins:
         blocks.append(Table("Where the other values come from", columns, origins))
-    return Section("Assumptions and origins", tuple(blocks), fresh=True)
+    return Section("Assumptions and origins", tuple(blocks))
 
 
 def cautions(result: Result) -> Section:
     """Return the cautions and blank lines for those who review the report."""
     authority = result.project.facts.authority.strip()
     named = f" Named in the project as the authority: {authority}." if authority else ""
-    blocks: list[Block] = [Paragraph(text, bullet=f"{place}.") for place, text in enumerate(CAUTIONS, start=1)]
+    blocks: list[Block] = [
+        Paragraph(text, bullet=f"{place}.") for place, text in enumerate(CAUTIONS, start=1)
+    ]
     blocks += [
         Paragraph(
             "Before anything is built or relied on, take this report to the local authority having "
@@ -75,7 +88,9 @@ def cautions(result: Result) -> Section:
             "lead",
         ),
         BlankLines(
-            "For the licensed designer's review", ("Name", "Licence no. and place", "Date", "Remarks"), remarks=2
+            "For the licensed designer's review",
+            ("Name", "Licence no. and place", "Date", "Remarks"),
+            remarks=2,
         ),
         BlankLines("For the authority's review", ("Name and office", "Date", "Remarks"), remarks=2),
     ]
@@ -94,7 +109,7 @@ def echo(result: Result) -> Section:
         Table("Made with", (words("Program or library"), words("Version")), tuple(versions), size=6.6),
     ]
     blocks += [_listing(one) for one in files if one.text is not None]
-    return Section("Input as read", tuple(blocks), fresh=True)
+    return Section("Input as read", tuple(blocks))
 
 
 def _listing(file: InputFile) -> Listing:

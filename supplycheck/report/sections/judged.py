@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from supplycheck.report.document import Block, Facts, Heading, Paragraph, Row, Section, Table
+from supplycheck.report.document import Block, Column, Facts, Heading, Paragraph, Row, Section, Table
 from supplycheck.report.show import Show, column, words
 from supplycheck.results.display import (
     STATE_TITLES,
@@ -18,11 +18,19 @@ from supplycheck.results.records import Result, ScenarioRow
 def findings(result: Result) -> Section:
     """Return the findings, what needs action first."""
     show = Show.of(result)
-    columns = (words("Check"), words("What was found"), column("Measured"), column("Limit"), words("Source"))
+    columns = (
+        Column("Check", wrap=True, share=0.17),
+        Column("What was found", wrap=True, share=0.4),
+        Column("Measured", right=True, share=0.11),
+        Column("Limit", right=True, share=0.11),
+        Column("Source", wrap=True, share=0.21),
+    )
     blocks: list[Block] = [
         Paragraph(
-            "Each check reports what it measured, the limit and where the limit comes from. Checks that were "
-            "not run are shown as not run. That no check is outside a limit says nothing about what was not "
+            "Each check reports what it measured, the limit and where the limit comes from. Checks "
+            "that were "
+            "not run are shown as not run. That no check is outside a limit says nothing about what "
+            "was not "
             "checked."
         )
     ]
@@ -68,14 +76,16 @@ def flows(result: Result) -> Section:
         ),
         (
             "Largest pressure imbalance",
-            f"{show.small(balance.largest_pressure_imbalance, 'pressure')} at {balance.pressure_pipe or '–'}",
+            f"{show.small(balance.largest_pressure_imbalance, 'pressure')} at "
+            f"{balance.pressure_pipe or '–'}",
         ),
         ("Iterations", str(balance.iterations)),
     )
     blocks += [
         Heading("Balance"),
         Paragraph(
-            "Recomputed from the node and pipe rows of this report: the flows at every node, and the pressures "
+            "Recomputed from the node and pipe rows of this report: the flows at every node, and the "
+            "pressures "
             "along every pipe."
         ),
         Facts(pairs),
@@ -116,14 +126,18 @@ def _scenarios(result: Result, show: Show) -> Table:
         )
         for row in result.scenarios
     )
-    note = "With the supply as it is: heads give what the pressure makes them give, not only what is required."
+    note = (
+        "With the supply as it is: heads give what the pressure makes them give, not only what is required."
+    )
     return Table("Scenarios", columns, rows, note, empty="no scenario was calculated", size=6.6)
 
 
 def _head_table(row: ScenarioRow, show: Show) -> Table:
     columns = (words("Head"), column("Flow", show.s("flow")), column("Pressure", show.s("pressure")))
     three: list[Row] = []
-    cells = [(tag, show.n(flow, "flow"), show.n(pressure, "pressure")) for tag, flow, pressure in row.head_flows]
+    cells = [
+        (tag, show.n(flow, "flow"), show.n(pressure, "pressure")) for tag, flow, pressure in row.head_flows
+    ]
     for first in range(0, len(cells), 3):
         group = cells[first : first + 3]
         group += [("", "", "")] * (3 - len(group))

@@ -15,10 +15,10 @@ def plan(result: Result, width: float) -> Section:
     show = Show.of(result)
     blocks: list[Block] = []
     if has_plan(result):
-        whole = whole_plan(result, show.units, (width, 470.0))
+        whole = whole_plan(result, show.units, (width, 400.0))
         blocks.append(Figure("Whole system", whole.drawing, _caption(whole)))
         blocks.append(Figure("Pipe sizes (bore)", size_legend(result.pipes, show.units, width)))
-        near = area_plan(result, show.units, (width, 400.0))
+        near = area_plan(result, show.units, (width, 300.0))
         if near is not None:
             unit = show.s("pressure")
             text = f"Behind the tag of a head: its pressure in {unit}. Arrows point the way of the flow. "
@@ -52,8 +52,8 @@ def _caption(view: PlanView) -> str:
 
 def _placements(result: Result, show: Show, width: float) -> list[Block]:
     area = result.design_area
-    blocks: list[Block] = [Paragraph(area.statement)]
-    drawn = placement_map(result, show.units, (width, 330.0))
+    blocks: list[Block] = []
+    drawn = placement_map(result, show.units, (width, 250.0))
     if drawn is not None:
         blocks.append(
             Figure(
@@ -62,7 +62,11 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
                 f"{area.tried} placements tried; each dot stands at the centre of its heads.",
             )
         )
-    chosen = [("governing", area.governing), ("runner-up", area.runner_up), ("most favourable", area.most_favourable)]
+    chosen = [
+        ("governing", area.governing),
+        ("runner-up", area.runner_up),
+        ("most favourable", area.most_favourable),
+    ]
     rows = tuple(_row(word, one, show) for word, one in chosen if one is not None)
     columns = (
         words("Placement"),
@@ -74,7 +78,7 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
         column("Heads"),
         words("Tags"),
     )
-    blocks.append(Table("Placements compared", columns, rows))
+    blocks.append(Table("Placements compared", columns, rows, area.statement))
     return blocks
 
 

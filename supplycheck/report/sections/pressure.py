@@ -19,7 +19,9 @@ def pressure(result: Result, width: float) -> Section:
     path = result.path
     if not path:
         return Section(
-            "Where the pressure goes", (Paragraph("No path was recorded for this calculation."),), fresh=True
+            "Where the pressure goes",
+            (Paragraph("No path was recorded for this calculation."),),
+            fresh=True,
         )
     blocks: list[Block] = []
     for first in range(0, len(path), ROWS):
@@ -77,7 +79,8 @@ def _table(result: Result, path: tuple[PathStep, ...], show: Show) -> Table:
         )
         cells = tuple(show.n(v, "pressure", 2 if show.units.name == "us" else 3) for v in values)
         rows.append(Row(("", "whole path", "", *cells), strong=True))
-    note = f"The supply has {show.t(result.supply.available_pressure, 'pressure')} available at the demand flow."
+    available = show.t(result.supply.available_pressure, "pressure")
+    note = f"The supply has {available} available at the demand flow."
     return Table("Pressure by segment", columns, tuple(rows), note)
 
 
@@ -101,12 +104,14 @@ def hand_check(result: Result) -> Section:
         column("At end", show.s("pressure")),
     )
     note = (
-        "L is the pipe, F the fittings as equivalent length, T both. The head's flow is K × √pressure; where a "
+        "L is the pipe, F the fittings as equivalent length, T both. The head's flow is K × "
+        "√pressure; where a "
         "branch joins, its flow at the pressure of the junction is added."
     )
     blocks: list[Block] = [
         Paragraph(
-            "The governing path can be followed from here with a pocket calculator: each line holds the formula "
+            "The governing path can be followed from here with a pocket calculator: each line holds "
+            "the formula "
             "with its numbers, as displayed, and its result."
         ),
         Table("The path", columns, path_rows, note, size=6.6),

@@ -59,7 +59,8 @@ def pipe_information(result: Result) -> Section:
     rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in result.pipes)
     blocks: list[Block] = [
         Paragraph(
-            "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt pressure at "
+            "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt "
+            "pressure at "
             "the start and the end, pe change by elevation, pf friction with fittings, pd devices: "
             "pt start − pt end = pf + pe + pd.",
             "small",

@@ -20,7 +20,8 @@ def water(result: Result, width: float) -> Section:
         Figure(
             "Supply and demand",
             graph,
-            "Dashed: beyond the greatest flow that was tested. The flow axis is linear in flow to the power "
+            "Dashed: beyond the greatest flow that was tested. The flow axis is linear in flow to "
+            "the power "
             "1.85, so that a measured supply is a straight line.",
         ),
     ]
