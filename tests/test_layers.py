@@ -17,14 +17,15 @@ ALLOWED: dict[str, set[str]] = {
     "hydraulics": {"errors"},
     "model": {"errors", "findings"},
     "catalogue": {"model"} | BASE,
-    "project": {"catalogue", "model"} | BASE,
+    "project": {"catalogue", "model", "hydraulics"} | BASE,
     "network": {"model", "hydraulics", "errors"},
     "demand": {"model", "hydraulics", "errors"},
     "supply": {"network", "model", "hydraulics", "errors"},
     "checks": {"model", "hydraulics", "network", "supply", "findings"},
     "results": {"checks", "supply", "demand", "network", "model", "hydraulics"} | BASE,
     "report": {"results", "model"} | BASE,
-    "check": {"project", "catalogue", "model", "hydraulics", "network", "demand", "supply"}
+    "scenarios": {"results", "supply", "network", "model", "errors"},
+    "check": {"project", "scenarios", "catalogue", "model", "hydraulics", "network", "demand", "supply"}
     | {"checks", "results", "report"}
     | BASE,
 }

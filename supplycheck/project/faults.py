@@ -1,0 +1,104 @@
+"""Faults in the user's files: collected, named once, raised all together."""
+
+from __future__ import annotations
+
+import difflib
+from collections.abc import Iterable, Sequence
+
+from supplycheck.errors import SupplyCheckError
+from supplycheck.findings import Fault, Place
+
+SHOWN = 60
+
+
+class ProjectFaultsError(SupplyCheckError):
+    """The project has faults; ``faults`` holds all of them in the order in which they were met."""
+
+    def __init__(self, faults: Sequence[Fault]) -> None:
+        self.faults = tuple(faults)
+        count = len(self.faults)
+        head = f"the project has {count} fault{'s' if count != 1 else ''}"
+        super().__init__("\n".join([head, *(f"  {fault}" for fault in self.faults)]))
+
+
+def quoted(value: object) -> str:
+    """Return ``value`` as it was typed, shortened, with control characters escaped.
+
+    >>> quoted("tab" + chr(9))
+    '"tab\\\\t"'
+    >>> quoted(12)
+    '12'
+    """
+    if isinstance(value, bool):
+        return "true" if value else "false"
+    if isinstance(value, str):
+        text = value if len(value) <= SHOWN else f"{value[:SHOWN]}… ({len(value)} characters)"
+        escaped = "".join(char if char.isprintable() else repr(char)[1:-1] for char in text)
+        return f'"{escaped}"'
+    if isinstance(value, dict):
+        return "a table"
+    if isinstance(value, list | tuple):
+        return f"a list of {len(value)}"
+    text = str(value)
+    return text if len(text) <= SHOWN else text[:SHOWN] + "…"
+
+
+def near(word: str, allowed: Iterable[str]) -> str:
+    """Return the allowed word closest to ``word``, or an empty text.
+
+    >>> near("resdiual", ["static", "residual"])
+    'residual'
+    """
+    folded = {choice.casefold(): choice for choice in allowed}
+    close = difflib.get_close_matches(word.casefold(), list(folded), n=1, cutoff=0.6)
+    return folded[close[0]] if close else ""
+
+
+def listed(words: Iterable[str], limit: int = 12) -> str:
+    """Return the words as a short list for a message.
+
+    >>> listed(["a", "b"])
+    'a, b'
+    """
+    words = list(words)
+    more = len(words) - limit
+    return ", ".join(words[:limit]) + (f" and {more} more" if more > 0 else "")
+
+
+class FaultList:
+    """The faults met so far. A place that already has a fault gets no second one."""
+
+    def __init__(self) -> None:
+        self._faults: dict[tuple[str, str, str], Fault] = {}
+        self._places: set[tuple[str, str]] = set()
+
+    def add(
+        self, place: Place, problem: str, *, found: str = "", allowed: str = "", remedy: str = ""
+    ) -> None:
+        """Note one fault at ``place``."""
+        key = (place.file, place.where, problem)
+        self._faults.setdefault(key, Fault(place, problem, found, allowed, remedy))
+        self._places.add((place.file, place.where))
+
+    def has(self, place: Place) -> bool:
+        """Return whether ``place``, or the value it stands in, already has a fault."""
+        return any(
+            file == place.file
+            and (place.where == where or place.where.startswith((f"{where}.", f"{where}[")))
+            for file, where in self._places
+        )
+
+    def __bool__(self) -> bool:
+        return bool(self._faults)
+
+    def __len__(self) -> int:
+        return len(self._faults)
+
+    def all(self) -> tuple[Fault, ...]:
+        """Return the faults in the order in which they were met."""
+        return tuple(self._faults.values())
+
+    def stop(self) -> None:
+        """Raise :class:`ProjectFaultsError` if there is any fault."""
+        if self._faults:
+            raise ProjectFaultsError(self.all())

@@ -1,0 +1,306 @@
+"""Reading a project: one function from the file to the frozen record, or all its faults at once."""
+
+from __future__ import annotations
+
+import re
+import tomllib
+from pathlib import Path
+from typing import Any, Final
+
+from supplycheck.catalogue import HazardRow
+from supplycheck.findings import Place
+from supplycheck.model import (
+    Criteria,
+    FrictionLaw,
+    HoseAllowance,
+    Project,
+    ProjectFacts,
+    Scenario,
+    Supply,
+    System,
+)
+from supplycheck.model.system import Origin
+from supplycheck.project.criteria import CriteriaReader, Standard, read_laws, read_standard
+from supplycheck.project.drafts import DraftSystem, Notes
+from supplycheck.project.faults import FaultList, quoted
+from supplycheck.project.files import Folder
+from supplycheck.project.fittings import Lengths
+from supplycheck.project.fluid import read_fluid
+from supplycheck.project.layout import generate
+from supplycheck.project.layout_parts import units_in
+from supplycheck.project.network_tables import read_network
+from supplycheck.project.parts import KindReader, kinds_by_name, read_devices, read_extra, read_sprinklers
+from supplycheck.project.sections import Sections, read_sections
+from supplycheck.project.supply import SupplyReader, TagCheck
+from supplycheck.project.system import Finisher, finish
+from supplycheck.units import UNIT_SETS
+
+PROJECT_FILE: Final = "project.toml"
+LARGEST_PROJECT: Final = 5_000_000
+
+
+def _parse(text: str, name: str, faults: FaultList) -> dict[str, Any] | None:
+    """Return the TOML tables of ``text``; ``None`` with a fault noted."""
+    if len(text) > LARGEST_PROJECT:
+        faults.add(
+            Place(name),
+            "the project file is too large",
+            found=f"{len(text) / 1e6:.1f} million characters",
+            allowed=f"at most {LARGEST_PROJECT / 1e6:.0f} million; put long tables into CSV files",
+        )
+        return None
+    try:
+        return tomllib.loads(text)
+    except tomllib.TOMLDecodeError as caught:
+        match = re.fullmatch(
+            r"(.*?)\s*\(at (?:line (\d+), column (\d+)|end of document)\)", str(caught), re.DOTALL
+        )
+        problem = match[1] if match else str(caught)
+        where = f"line {match[2]}, column {match[3]}" if match and match[2] else "end of the file"
+        lines = text.splitlines()
+        line = (
+            lines[int(match[2]) - 1].strip() if match and match[2] and int(match[2]) <= len(lines) else ""
+        )
+        faults.add(
+            Place(name, where),
+            f"is not TOML: {problem[:1].lower()}{problem[1:]}",
+            found=quoted(line) if line else "",
+            remedy="texts stand in quotes; a backslash or a quote in a text is written inside '…'",
+        )
+    except (ValueError, RecursionError) as caught:
+        faults.add(
+            Place(name),
+            f"cannot be read as TOML ({type(caught).__name__})",
+            allowed="plain tables and numbers",
+        )
+    return None
+
+
+def _facts(sections: Sections, standard: Standard, notes: Notes) -> ProjectFacts | None:
+    table = sections.project
+    if table is None:
+        return None
+    paper = table.paper or ("letter" if sections.units == "us" else "a4")
+    if table.paper is None:
+        notes.add("project.paper", paper, "assumed", "by the units of the project")
+    return ProjectFacts(
+        title=table.title,
+        site=table.site,
+        stage=table.stage,
+        date=table.date,
+        standard=standard.text,
+        authority=table.authority,
+        owner=table.owner,
+        designer=table.designer,
+        building=table.building,
+        occupancy=table.occupancy,
+        paper=paper,
+    )
+
+
+def _hose(
+    sections: Sections,
+    row: HazardRow | None,
+    supply: Supply,
+    tags: TagCheck,
+    notes: Notes,
+    faults: FaultList,
+) -> HoseAllowance:
+    """Return the hose allowance; what is not given comes from the hazard class and joins at the supply."""
+    table = sections.hose
+    units = units_in(table, UNIT_SETS[sections.units]) if table else UNIT_SETS[sections.units]
+    inside = table.inside.si(units) if table and table.inside else 0.0
+    total = (row.hose_outside if row else None) or 0.0
+    source = row.source if row else ""
+    node = supply.tests[0].node if supply.tests else supply.tanks[0].node if supply.tanks else ""
+    if table and table.outside is not None:
+        outside = table.outside.si(units)
+        source = table.source or "given in the project"
+    else:
+        outside = max(total - inside, 0.0)
+        text = units.text(outside, "flow")
+        words = "hose of the hazard class" if total else "the standard asks for none"
+        notes.add("hose.outside", text, "catalogue" if total else "assumed", f"{words}; {source}")
+    outside_node = table.outside_node if table else None
+    if outside_node is None and outside > 0:
+        outside_node = node
+        notes.add("hose.outside_node", node, "assumed", "outside hose joins at the supply node")
+    if outside_node and table and table.outside_node:
+        tags.node(outside_node, "hose.outside_node")
+    inside_node = table.inside_node if table else None
+    if inside_node:
+        tags.node(inside_node, "hose.inside_node")
+    elif inside > 0:
+        faults.add(
+            sections.place("hose.inside_node"),
+            "is missing: inside hose joins at a node",
+            allowed="a node tag",
+        )
+    origin: Origin = "given" if table and table.outside is not None else "catalogue"
+    return HoseAllowance(inside, inside_node, outside, outside_node, source, origin)
+
+
+def _scenarios(sections: Sections, tags: TagCheck, faults: FaultList) -> tuple[Scenario, ...]:
+    found: dict[str, Scenario] = {}
+    for number, table in sections.scenarios:
+        where = f"scenario[{number}]"
+        units = units_in(table, UNIT_SETS[sections.units])
+        if table.name in found:
+            faults.add(
+                sections.place(f"{where}.name"),
+                "stands twice",
+                found=quoted(table.name),
+                allowed="every name once",
+            )
+        heads = None if table.heads == "design area" else tuple(table.heads)
+        for tag in heads or ():
+            tags.head(tag, f"{where}.heads")
+        for tag in table.closed_pipes:
+            tags.pipe(tag, f"{where}.closed_pipes")
+        for tag in table.flows:
+            tags.node(tag, f"{where}.flows")
+        flows = tuple((tag, flow.si(units)) for tag, flow in table.flows.items())
+        found[table.name] = Scenario(
+            table.name, heads, tuple(table.closed_pipes), flows, table.hose, sections.place(where)
+        )
+    return tuple(found.values())
+
+
+def _check_area(
+    sections: Sections, criteria: Criteria | None, system: System, tags: TagCheck, faults: FaultList
+) -> None:
+    """Note an empty design area and heads in it that do not exist."""
+    where = "criteria.design_area"
+    heads = [node for node in system.nodes if node.kind == "sprinkler"]
+    if not heads and not faults.has(sections.place("layout")):
+        faults.add(
+            sections.place("layout" if sections.layout else "network.nodes"),
+            "there is no sprinkler",
+            allowed="at least one node of kind sprinkler",
+        )
+    area = criteria.design_area if criteria else "search"
+    if area == "search":
+        return
+    if not area:
+        faults.add(
+            sections.place(where),
+            "is empty",
+            found="[]",
+            allowed='"search", or the tags of at least one sprinkler',
+        )
+    for tag in area:
+        tags.head(tag, where)
+    for tag in sorted({tag for tag in area if area.count(tag) > 1}):
+        faults.add(
+            sections.place(where), "a sprinkler stands twice", found=quoted(tag), allowed="every tag once"
+        )
+
+
+def _draft(
+    sections: Sections, folder: Folder, sprinklers: Any, notes: Notes, faults: FaultList
+) -> DraftSystem | None:
+    if sections.layout is not None and sections.network is not None:
+        faults.add(sections.place("network"), "layout and network are both given", allowed="one of them")
+        return None
+    if sections.layout is not None:
+        return generate(sections, sprinklers, notes, faults)
+    if sections.network is not None:
+        return read_network(sections, folder, sprinklers, notes, faults)
+    if not faults.has(sections.place("layout")):
+        faults.add(
+            sections.place("layout"),
+            "the system is missing",
+            allowed="a table [layout] for a regular array, or [network] with tables of nodes and pipes",
+        )
+    return None
+
+
+def _system(
+    sections: Sections,
+    folder: Folder,
+    laws: tuple[FrictionLaw, FrictionLaw | None],
+    standard: Standard | None,
+    notes: Notes,
+    faults: FaultList,
+) -> System | None:
+    extra = read_extra(sections)
+    sprinklers = read_sprinklers(sections, notes, faults)
+    devices = read_devices(sections, notes, faults)
+    used = tuple(law for law in laws if law is not None)
+    kind_reader = KindReader(sections, used, standard.text if standard else "", extra, notes, faults)
+    kinds = kinds_by_name(kind_reader, sections.pipes)
+    draft = _draft(sections, folder, sprinklers, notes, faults)
+    if draft is None:
+        return None
+    lengths = Lengths(standard.text if standard else "NFPA 13", extra, faults)
+    finisher = Finisher(sections, kinds, devices, lengths, faults)
+    return finish(draft, finisher, sprinklers, notes, faults)
+
+
+def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
+    notes = Notes()
+    standard = read_standard(sections, faults)
+    laws = read_laws(sections, standard, faults)
+    system = _system(sections, folder, laws, standard, notes, faults)
+    tags = TagCheck(system, sections, faults)
+    criteria, row = None, None
+    if sections.criteria is not None and standard is not None:
+        criteria, row = CriteriaReader(sections, sections.criteria, standard, notes, faults).read()
+    if system is not None:
+        _check_area(sections, criteria, system, tags, faults)
+    supply = None
+    if sections.supply is not None:
+        supply = SupplyReader(sections, sections.supply, tags, notes, faults).read()
+    hose = _hose(sections, row, supply, tags, notes, faults) if supply else None
+    scenarios = _scenarios(sections, tags, faults)
+    fluid = read_fluid(sections, standard, notes, faults)
+    facts = _facts(sections, standard, notes) if standard else None
+    faults.stop()
+    if (
+        facts is None
+        or criteria is None
+        or system is None
+        or supply is None
+        or hose is None
+        or fluid is None
+    ):
+        faults.add(Place(sections.file), "the project is not complete")
+        faults.stop()
+        raise AssertionError
+    return Project(
+        facts=facts,
+        units=sections.units,
+        criteria=criteria,
+        system=system,
+        supply=supply,
+        hose=hose,
+        fluid=fluid,
+        law=laws[0],
+        second_law=laws[1],
+        scenarios=scenarios,
+        assumptions=tuple(notes.entries),
+        files=folder.files(),
+    )
+
+
+def read_project(path: Path) -> Project:
+    """Return the project whose file, or whose folder with a ``project.toml``, is ``path``.
+
+    Tables are read from the same folder only. All numbers of the record are SI.
+
+    Raises
+    ------
+    ProjectFaultsError
+        The project has faults; the error holds all that were found.
+    """
+    faults = FaultList()
+    path = Path(path)
+    if path.is_dir():
+        path = path / PROJECT_FILE
+    folder = Folder(path.parent, faults)
+    text = folder.read_text(path.name, Place(path.name))
+    raw = _parse(text, path.name, faults) if text is not None else None
+    if raw is None:
+        faults.stop()
+    sections = read_sections(raw or {}, path.name, faults)
+    return _assemble(sections, folder, faults)

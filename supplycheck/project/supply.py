@@ -1,0 +1,333 @@
+"""Flow tests, tanks, adjustments and the margin rule: from the user's tables to records."""
+
+from __future__ import annotations
+
+from supplycheck import catalogue
+from supplycheck.errors import DomainError, NotInCatalogueError
+from supplycheck.hydraulics.discharge import pitot_discharge
+from supplycheck.model import Adjustment, FlowTest, Outlet, Supply, System, Tank, TestPoint
+from supplycheck.model.system import Origin
+from supplycheck.project.drafts import Notes
+from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.layout_parts import units_in
+from supplycheck.project.margin import read_margin
+from supplycheck.project.schema_supply import (
+    FlowTestTable,
+    OutletTable,
+    SupplyTable,
+    TankTable,
+    TestPointTable,
+)
+from supplycheck.project.sections import Sections
+from supplycheck.units import INCH, UNIT_SETS, UnitSet
+
+PUMPER_SIZE = 4 * INCH
+"""Outlets from this diameter [m] up are pumper outlets, whose stream is not full."""
+
+
+class TagCheck:
+    """Knows the tags of a system and notes those that do not exist."""
+
+    def __init__(self, system: System | None, sections: Sections, faults: FaultList) -> None:
+        self.nodes = {node.tag: node for node in system.nodes} if system else {}
+        self.pipes = {pipe.tag for pipe in system.pipes} if system else set()
+        self.known, self.sections, self.faults = system is not None, sections, faults
+
+    def _missing(self, tag: str, where: str, what: str, known: dict[str, object] | set[str]) -> None:
+        close = near(tag, known) if len(known) < 5000 else ""
+        self.faults.add(
+            self.sections.place(where),
+            f"there is no such {what}",
+            found=quoted(tag),
+            allowed=f"a tag of a {what} of the system",
+            remedy=f"did you mean {close}?" if close else "",
+        )
+
+    def node(self, tag: str, where: str) -> None:
+        """Note a node that does not exist."""
+        if self.known and tag not in self.nodes:
+            self._missing(tag, where, "node", dict(self.nodes))
+
+    def head(self, tag: str, where: str) -> None:
+        """Note a node that does not exist or is no sprinkler."""
+        self.node(tag, where)
+        node = self.nodes.get(tag)
+        if node is not None and node.kind != "sprinkler":
+            self.faults.add(
+                self.sections.place(where),
+                "is not a sprinkler",
+                found=f"{tag}, a {node.kind}",
+                allowed="a sprinkler",
+            )
+
+    def pipe(self, tag: str, where: str) -> None:
+        """Note a pipe that does not exist."""
+        if self.known and tag not in self.pipes:
+            self._missing(tag, where, "pipe", self.pipes)
+
+
+class SupplyReader:
+    """Assembles the supply of one project."""
+
+    def __init__(
+        self, sections: Sections, table: SupplyTable, tags: TagCheck, notes: Notes, faults: FaultList
+    ) -> None:
+        self.sections, self.table, self.tags = sections, table, tags
+        self.notes, self.faults = notes, faults
+        self.units = units_in(table, UNIT_SETS[sections.units])
+        self.several = len(table.flow_test) > 1
+        self.supply_nodes = [node.tag for node in tags.nodes.values() if node.kind == "supply"]
+
+    def _fault(
+        self, where: str, problem: str, *, found: str = "", allowed: str = "", remedy: str = ""
+    ) -> None:
+        self.faults.add(self.sections.place(where), problem, found=found, allowed=allowed, remedy=remedy)
+
+    def _node(self, given: str | None, where: str) -> str:
+        """Return the node at which a test applies."""
+        tag = given or self.table.node
+        if tag is not None:
+            self.tags.node(tag, where if given else "supply.node")
+            node = self.tags.nodes.get(tag)
+            if node is not None and node.kind != "supply":
+                self._fault(
+                    where if given else "supply.node",
+                    "is not a supply node",
+                    found=f"{tag}, a {node.kind}",
+                    allowed=listed(self.supply_nodes) or "a node of kind supply",
+                )
+            return tag
+        if len(self.supply_nodes) > 1:
+            self._fault(
+                where, "is missing: there are several supply nodes", allowed=listed(self.supply_nodes)
+            )
+        return self.supply_nodes[0] if self.supply_nodes else ""
+
+    def _outlet(self, table: OutletTable, where: str, units: UnitSet) -> Outlet | None:
+        units = units_in(table, units)
+        diameter, pitot = table.diameter.si(units), table.pitot.si(units)
+        coefficient, origin = self._coefficient(table, where)
+        factor = table.pumper_factor.number if table.pumper_factor else 1.0
+        if table.pumper_factor is None and diameter >= PUMPER_SIZE * (1 - 1e-9):
+            try:
+                row = catalogue.pumper_factor(pitot)
+            except DomainError as caught:
+                self._fault(
+                    f"{where}.pumper_factor", f"is missing: {caught}", allowed="a factor above 0, at most 1"
+                )
+                return None
+            factor = row.value
+            self.notes.add(f"{where}.pumper_factor", f"{factor:g}", "catalogue", row.source)
+        for key, value in (("coefficient", coefficient), ("pumper_factor", factor)):
+            if value is not None and value > 1:
+                self._fault(
+                    f"{where}.{key}",
+                    "is above 1",
+                    found=f"{value:g}",
+                    allowed="a number above 0, at most 1",
+                )
+        if coefficient is None:
+            return None
+        return Outlet(diameter, coefficient, pitot, factor, table.shape, origin, table.hydrant)
+
+    def _coefficient(self, table: OutletTable, where: str) -> tuple[float | None, Origin]:
+        if table.coefficient is not None:
+            return table.coefficient.number, "given"
+        shapes = listed(catalogue.outlet_shapes())
+        if not table.shape:
+            self._fault(f"{where}.coefficient", "is missing", allowed=f"a coefficient, or shape: {shapes}")
+            return None, "given"
+        try:
+            row = catalogue.outlet_coefficient(table.shape)
+        except NotInCatalogueError:
+            self._fault(
+                f"{where}.shape",
+                "is not a shape of the catalogue",
+                found=quoted(table.shape),
+                allowed=shapes,
+                remedy="or give coefficient",
+            )
+            return None, "given"
+        self.notes.add(f"{where}.coefficient", f"{row.value:g}, {table.shape}", "catalogue", row.source)
+        return row.value, "catalogue"
+
+    def _point(self, table: TestPointTable | FlowTestTable, where: str, units: UnitSet) -> TestPoint | None:
+        units = units_in(table, units)
+        if table.residual is None:
+            return None
+        if (table.flow is None) == (not table.outlets):
+            both = table.flow is not None
+            self._fault(
+                f"{where}.flow",
+                "flow and outlets are both given" if both else "is missing",
+                allowed="either flow, or outlets with their pitot readings",
+            )
+            return None
+        outlets = [
+            self._outlet(outlet, f"{where}.outlets[{number}]", units)
+            for number, outlet in enumerate(table.outlets, start=1)
+        ]
+        sound = tuple(outlet for outlet in outlets if outlet is not None)
+        flow = (
+            table.flow.si(units) if table.flow is not None else sum(_discharge(outlet) for outlet in sound)
+        )
+        return TestPoint(table.residual.si(units), flow, sound)
+
+    def _points(self, table: FlowTestTable, where: str, units: UnitSet) -> tuple[TestPoint, ...]:
+        if table.points and (table.residual is not None or table.flow is not None or table.outlets):
+            self._fault(
+                f"{where}.points",
+                "points and a single reading are both given",
+                allowed="either residual with flow or outlets, or points",
+            )
+        elif not table.points and table.residual is None:
+            self._fault(
+                f"{where}.residual", "is missing", allowed="the pressure at the gauge while water flows"
+            )
+        if table.points:
+            found = [
+                self._point(point, f"{where}.points[{number}]", units)
+                for number, point in enumerate(table.points, start=1)
+            ]
+        else:
+            found = [self._point(table, where, units)]
+        return tuple(sorted((point for point in found if point is not None), key=lambda point: point.flow))
+
+    def _check_drop(self, table: FlowTestTable, where: str, units: UnitSet) -> None:
+        static = table.static.si(units)
+        readings = [(f"{where}.residual", table.residual, units)] + [
+            (f"{where}.points[{number}].residual", point.residual, units_in(point, units))
+            for number, point in enumerate(table.points, start=1)
+        ]
+        for place, residual, local in readings:
+            if residual is not None and residual.si(local) >= static:
+                self._fault(
+                    place,
+                    "is not below the static pressure",
+                    found=units.text(residual.si(local), "pressure"),
+                    allowed=f"less than the static of {units.text(static, 'pressure')}",
+                    remedy="check whether static and residual are exchanged",
+                )
+
+    def _test(self, number: int, table: FlowTestTable) -> FlowTest:
+        where = f"supply.flow_test[{number}]" if self.several else "supply.flow_test"
+        units = units_in(table, self.units)
+        self._check_drop(table, where, units)
+        points = self._points(table, where, units)
+        return FlowTest(
+            tag=table.tag or f"test {number}",
+            node=self._node(table.node, f"{where}.node"),
+            date=table.date,
+            static=table.static.si(units),
+            points=points,
+            gauge_elevation=table.gauge_elevation.si(units),
+            time=table.time,
+            static_hydrant=table.static_hydrant,
+            flow_hydrant=table.flow_hydrant,
+            conducted_by=table.conducted_by,
+            witnessed_by=table.witnessed_by,
+            main=table.main,
+            gauge_range=table.gauge_range.si(units) if table.gauge_range else None,
+            gauge_accuracy=table.gauge_accuracy.si(units) if table.gauge_accuracy else None,
+            gauge_calibrated=table.gauge_calibrated,
+            outlet_diameter_measured=table.outlet_diameter_measured,
+            model=table.model,
+            source=table.source,
+            place=self.sections.place(where),
+        )
+
+    def _tank(self, number: int, table: TankTable) -> Tank:
+        where = f"supply.tank[{number}]"
+        units = units_in(table, self.units)
+        return Tank(
+            tag=table.tag,
+            node=self._node(table.node, f"{where}.node"),
+            water_level=table.water_level.si(units),
+            volume=table.volume.si(units) if table.volume else None,
+            refill=table.refill.si(units) if table.refill else 0.0,
+            kind=table.kind,
+            place=self.sections.place(where),
+        )
+
+    def _adjustments(self) -> tuple[Adjustment, ...]:
+        found = []
+        for number, table in enumerate(self.table.adjustment, start=1):
+            where = f"supply.adjustment[{number}]"
+            units = units_in(table, self.units)
+            key = "percent" if table.kind == "percent" else "pressure"
+            other = "pressure" if key == "percent" else "percent"
+            if getattr(table, key) is None:
+                self._fault(f"{where}.{key}", f"is missing: the kind {quoted(table.kind)} needs it")
+            if getattr(table, other) is not None:
+                self._fault(
+                    f"{where}.{other}",
+                    f"the kind {quoted(table.kind)} does not use it",
+                    remedy="take it out",
+                )
+            percent = table.percent.si(units) if table.percent else 0.0
+            if percent >= 1:
+                self._fault(
+                    f"{where}.percent",
+                    "is 100 or more",
+                    found=f"{percent * 100:g}",
+                    allowed="less than 100",
+                )
+            pressure = table.pressure.si(units) if table.pressure else 0.0
+            found.append(Adjustment(table.kind, pressure, 1.0 - percent, table.reason))
+        return tuple(found)
+
+    def read(self) -> Supply:
+        """Return the supply. With faults noted it is not fit for use."""
+        table = self.table
+        if (
+            not table.flow_test
+            and not table.tank
+            and not self.faults.has(self.sections.place("supply.flow_test"))
+        ):
+            self._fault(
+                "supply.flow_test",
+                "there is neither a flow test nor a tank",
+                allowed="a table [supply.flow_test] with static, residual, flow, date and gauge_elevation",
+            )
+        tests = tuple(self._test(number, test) for number, test in enumerate(table.flow_test, start=1))
+        tanks = tuple(self._tank(number, tank) for number, tank in enumerate(table.tank, start=1))
+        for what, tags in (
+            ("flow_test", [test.tag for test in tests]),
+            ("tank", [tank.tag for tank in tanks]),
+        ):
+            for tag in {tag for tag in tags if tags.count(tag) > 1}:
+                self._fault(
+                    f"supply.{what}", "a tag stands twice", found=quoted(tag), allowed="every tag once"
+                )
+        margin = read_margin(table.margin, "supply.margin", self.sections, self.units, self.faults)
+        return Supply(
+            tests=tests,
+            tanks=tanks,
+            adjustments=self._adjustments(),
+            margin=margin,
+            compare_at=self._compare_at(),
+            maximum_test_age_months=table.maximum_test_age_months.number
+            if table.maximum_test_age_months
+            else None,
+            submittal_date=table.submittal_date,
+            main_floor_pressure=table.main_floor_pressure.si(self.units)
+            if table.main_floor_pressure
+            else None,
+        )
+
+    def _compare_at(self) -> str:
+        tag = self.table.compare_at
+        if tag is not None:
+            self.tags.node(tag, "supply.compare_at")
+            return tag
+        tag = self.table.node or (self.supply_nodes[0] if self.supply_nodes else "")
+        self.notes.add("supply.compare_at", tag, "assumed", "the supply node")
+        return tag
+
+
+def _discharge(outlet: Outlet) -> float:
+    """Return the flow of an outlet [m³/s] by the pitot law, its pumper factor included."""
+    flow, _ = pitot_discharge(
+        coefficient=outlet.coefficient, diameter=outlet.diameter, pitot=outlet.pitot
+    )
+    return float(flow) * outlet.pumper_factor

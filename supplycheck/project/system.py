@@ -1,0 +1,241 @@
+"""From drafts to the finished system: bores, C-factors, fittings; what hangs together and what not."""
+
+from __future__ import annotations
+
+import math
+from collections import Counter
+from collections.abc import Mapping, Sequence
+
+from supplycheck import catalogue
+from supplycheck.errors import NotInCatalogueError
+from supplycheck.findings import Place
+from supplycheck.model import Fitting, Node, Pipe, Sprinkler, System
+from supplycheck.project.drafts import DraftPipe, DraftSystem, Notes
+from supplycheck.project.faults import FaultList, listed, quoted
+from supplycheck.project.fittings import Lengths, PipeSize, WrittenFitting, parse
+from supplycheck.project.geometry import infer
+from supplycheck.project.graph import islands, tree_from
+from supplycheck.project.parts import DeviceOrLength, KindOfPipe
+from supplycheck.project.sections import Sections
+from supplycheck.units import UNIT_SETS
+
+
+def check_connections(
+    nodes: Sequence[Node], pipes: Sequence[DraftPipe], place: Place, faults: FaultList
+) -> None:
+    """Note a missing supply, nodes that no pipe joins to it, and valves that cut nodes off."""
+    roots = [number for number, node in enumerate(nodes) if node.kind == "supply"]
+    if not roots:
+        faults.add(
+            place,
+            "there is no supply node",
+            allowed="at least one node of kind supply",
+            remedy="set the kind of the node at which the supply is known to supply",
+        )
+        return
+    index = {node.tag: number for number, node in enumerate(nodes)}
+    ends = [(index[pipe.start], index[pipe.end]) for pipe in pipes]
+    groups = islands(len(nodes), ends, tree_from(len(nodes), ends, roots).order)
+    for group in groups:
+        tags = [nodes[number].tag for number in group]
+        first = nodes[group[0]].place or place
+        where = (
+            "is not joined to anything"
+            if len(group) == 1
+            else "a part of the system is not joined to the supply"
+        )
+        faults.add(
+            first,
+            f"the node {tags[0]} {where}" if len(group) == 1 else where,
+            found=f"{len(group)} nodes: {listed(tags)}" if len(group) > 1 else "",
+            allowed="a way through pipes from every node to a supply node",
+            remedy="add the missing pipe, or take the nodes out",
+        )
+    if groups:
+        return
+    opened = [end for end, pipe in zip(ends, pipes, strict=True) if pipe.valve != "closed"]
+    cut = [
+        node
+        for node, rank in zip(nodes, tree_from(len(nodes), opened, roots).order, strict=True)
+        if rank < 0
+    ]
+    heads = [node.tag for node in cut if node.kind == "sprinkler"]
+    if heads:
+        shut = [pipe for pipe in pipes if pipe.valve == "closed"]
+        faults.add(
+            shut[0].place,
+            "closed valves cut sprinklers off from the supply",
+            found=f"{len(heads)} sprinklers: {listed(heads)}",
+            allowed="an open way to every sprinkler",
+            remedy="open the valve here, and close it in a scenario (closed_pipes)",
+        )
+
+
+class Finisher:
+    """Turns draft pipes into pipes."""
+
+    def __init__(
+        self,
+        sections: Sections,
+        kinds: Mapping[str, KindOfPipe],
+        devices: Mapping[str, DeviceOrLength],
+        lengths: Lengths,
+        faults: FaultList,
+    ) -> None:
+        self.sections, self.kinds, self.devices = sections, kinds, devices
+        self.lengths, self.faults = lengths, faults
+        self._bores: dict[tuple[str, str], float] = {}
+        self._unknown: dict[tuple[str, str], tuple[str, list[DraftPipe]]] = {}
+        self._written: dict[str, list[WrittenFitting]] = {}
+        table = sections.network or sections.layout
+        self.units = UNIT_SETS[(table.units if table else None) or sections.units]
+
+    def bore(self, draft: DraftPipe) -> float:
+        """Return the bore [m]; NaN where it is not known (noted later, once for each kind and size)."""
+        if draft.bore is not None:
+            return draft.bore
+        key = (draft.kind, draft.size)
+        if key in self._unknown:
+            self._unknown[key][1].append(draft)
+            return math.nan
+        if key not in self._bores:
+            kind = self.kinds.get(draft.kind)
+            if kind is None or not draft.size:
+                return math.nan
+            try:
+                self._bores[key] = catalogue.find_bore(kind.record.material, draft.size, kind.extra).bore
+            except NotInCatalogueError as caught:
+                self._unknown[key] = (str(caught), [draft])
+                return math.nan
+        return self._bores[key]
+
+    def note_unknown_sizes(self) -> None:
+        """Note the sizes that the catalogue does not have."""
+        for (_, size), (message, drafts) in self._unknown.items():
+            others = [draft.place.where for draft in drafts[1:]]
+            same = set(others) <= {drafts[0].place.where}
+            self.faults.add(
+                drafts[0].place,
+                message,
+                found=f"size {quoted(size)} of pipe kind {drafts[0].kind}",
+                remedy="" if same or not others else f"also in {listed(others)}",
+            )
+
+    def _entries(self, draft: DraftPipe) -> list[WrittenFitting]:
+        text = draft.fittings
+        if not text:
+            return []
+        if text not in self._written:
+            before = len(self.faults)
+            column = draft.place.where.startswith("row ")
+            where = draft.place.where + (", column fittings" if column else ".fittings")
+            entries = parse(text, self.units, Place(draft.place.file, where), self.faults)
+            if len(self.faults) > before:
+                return entries
+            self._written[text] = entries
+        return self._written[text]
+
+    def _fittings(
+        self, draft: DraftPipe, size: PipeSize, charged: Sequence[tuple[str, str]]
+    ) -> list[Fitting]:
+        found = [self.lengths.charge(entry, size, "given", draft.place) for entry in self._entries(draft)]
+        for (name, node), count in Counter(charged).items():
+            found.append(
+                self.lengths.charge(WrittenFitting(count, name), size, "inferred", draft.place, node)
+            )
+        for tag in draft.devices:
+            device = self.devices.get(tag)
+            if device is not None and device.equivalent_length is not None:
+                length = device.equivalent_length * self.lengths.c_only(size)
+                found.append(
+                    Fitting(device.title, 1, device.equivalent_length, length, 0.0, "given", device.source)
+                )
+        return [fitting for fitting in found if fitting is not None]
+
+    def pipe(self, draft: DraftPipe, bore: float, charged: Sequence[tuple[str, str]]) -> Pipe:
+        """Return the finished pipe; ``charged`` are the (fitting, node) inferred for it."""
+        kind = self.kinds.get(draft.kind)
+        c_factor = draft.c_factor if draft.c_factor is not None else kind.record.c_factor if kind else None
+        known = math.isfinite(bore)
+        size = PipeSize(draft.size, bore, c_factor)
+        return Pipe(
+            tag=draft.tag,
+            start=draft.start,
+            end=draft.end,
+            length=draft.length,
+            bore=bore,
+            nominal=catalogue.normalise_nominal(draft.size) if draft.size else "",
+            kind=draft.kind,
+            c_factor=c_factor,
+            roughness=kind.record.roughness if kind else None,
+            fittings=tuple(self._fittings(draft, size, charged)) if known and kind else (),
+            devices=tuple(
+                tag for tag in draft.devices if tag in self.devices and self.devices[tag].device is not None
+            ),
+            valve=draft.valve,
+            role=draft.role,
+            place=draft.place,
+        )
+
+
+def _note_inferred(pipes: Sequence[Pipe], notes: Notes) -> None:
+    counts: Counter[str] = Counter()
+    for pipe in pipes:
+        for fitting in pipe.fittings:
+            if fitting.origin == "inferred":
+                counts[fitting.name] += fitting.count
+    if counts:
+        text = ", ".join(f"{count} {name}" for name, count in sorted(counts.items()))
+        notes.add(
+            "fittings from geometry",
+            text,
+            "inferred",
+            "turns and tees at the nodes; each one is listed with its pipe and node",
+        )
+
+
+def _note_bores(
+    drafts: Sequence[DraftPipe], pipes: Sequence[Pipe], kinds: Mapping[str, KindOfPipe], notes: Notes
+) -> None:
+    used: dict[str, dict[str, float]] = {}
+    for draft, pipe in zip(drafts, pipes, strict=True):
+        if draft.bore is None:
+            used.setdefault(draft.kind, {})[pipe.nominal] = pipe.bore
+    for name, sizes in used.items():
+        text = ", ".join(
+            f"{size}: {bore * 1000:.2f} mm" for size, bore in sorted(sizes.items(), key=lambda s: s[1])
+        )
+        notes.add(f"pipe.{name}: bores", text, "catalogue", kinds[name].record.bore_source)
+
+
+def finish(
+    draft: DraftSystem,
+    finisher: Finisher,
+    sprinklers: Mapping[str, Sprinkler],
+    notes: Notes,
+    faults: FaultList,
+) -> System:
+    """Return the finished system. With faults noted it is not fit for use."""
+    place = finisher.sections.place("layout" if finisher.sections.layout else "network.nodes")
+    check_connections(draft.nodes, draft.pipes, place, faults)
+    bores = [finisher.bore(pipe) for pipe in draft.pipes]
+    finisher.note_unknown_sizes()
+    charges: dict[int, list[tuple[str, str]]] = {}
+    if any(pipe.infer for pipe in draft.pipes):
+        safe = [bore if math.isfinite(bore) else 0.0 for bore in bores]
+        for charge in infer(draft.nodes, draft.pipes, safe, faults):
+            charges.setdefault(charge.pipe, []).append((charge.fitting, charge.node))
+    pipes = [
+        finisher.pipe(pipe, bore, charges.get(number, ()))
+        for number, (pipe, bore) in enumerate(zip(draft.pipes, bores, strict=True))
+    ]
+    if not faults:
+        _note_inferred(pipes, notes)
+        _note_bores(draft.pipes, pipes, finisher.kinds, notes)
+    return System(
+        nodes=draft.nodes,
+        pipes=tuple(pipes),
+        sprinklers=tuple(sprinklers.values()),
+        pipe_kinds=tuple(kind.record for kind in finisher.kinds.values()),
+        devices=tuple(entry.device for entry in finisher.devices.values() if entry.device is not None),
+    )
