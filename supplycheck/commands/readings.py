@@ -28,12 +28,12 @@ def read_si(option: str, text: str, kind: str, units: UnitSet, whole: str | None
 
     ``whole`` is the whole text of the option where ``text`` is one part of it.
     """
-    from supplycheck.project.quantity import NumberFault, read_number
+    from supplycheck.project.quantity import NumberError, read_number
 
     sign: Any = "zero or more" if option in {"residual", "point", "at-pressure", "at-flow"} else "positive"
     try:
         return read_number(text, kind, sign).si(units)
-    except NumberFault as fault:
+    except NumberError as fault:
         problem = str(fault) if whole is None else f"{text!r} {fault}"
         refuse(option, text if whole is None else whole, problem, fault.allowed, fault.remedy)
 
