@@ -1,0 +1,147 @@
+"""Rules on the basis of the calculation: standard, authority, method, assumptions, what lies outside."""
+
+from __future__ import annotations
+
+import re
+
+from supplycheck.checks.context import CheckContext
+from supplycheck.checks.rule import About, Rule, count, some
+from supplycheck.findings import Finding
+
+EDITION = About(
+    "standard and edition",
+    "whether the adopted standard and its edition are named",
+    ("ok", "missing"),
+    "NFPA 13, hydraulic data report: the standard with its edition",
+)
+AUTHORITY = About(
+    "authority",
+    "whether the approving authority is named",
+    ("ok", "missing"),
+    "NFPA 13, hydraulic data report: approving agency",
+)
+FRICTION = About(
+    "friction formula",
+    "friction law against the form that the standard prints, and against the fluid",
+    ("ok", "ask authority"),
+    "NFPA 13: 4.52 form, Darcy-Weisbach for antifreeze (from memory); BS EN 12845:2004 13.2.1: 6.05e5 form",
+)
+FULL = About(
+    "full calculation of loops",
+    "whether looped and gridded pipes are solved as a network",
+    ("ok", "not applicable"),
+    "EN 12845 13.1.1: full calculation is mandatory for loops and grids",
+    weight=1,
+)
+ASSUMED = About(
+    "assumed values",
+    "values on which the answer depends that nobody gave",
+    ("ok", "ask authority"),
+    "reviewers' practice, no source",
+)
+OUTSIDE = About(
+    "outside this calculation",
+    "freezing, obstructions, seismic bracing, storage arrangements, corrosion",
+    ("not applicable",),
+    "scope of a hydraulic calculation",
+    weight=1,
+)
+
+
+def edition(context: CheckContext) -> Finding:
+    """Figures change between editions, and amendments are nowhere in the file."""
+    criteria, named = context.project.criteria, context.project.facts.standard.strip()
+    year = criteria.edition.strip()
+    if not named or not (year or re.search(r"\b(19|20)\d\d\b", named)):
+        name = named or criteria.standard
+        text = f"Not run: {name} is named without its edition."
+        return EDITION.says("missing", text, remedy=f"Which edition of {criteria.standard} is adopted?")
+    text = f"Calculated to {named}; local amendments are not part of it."
+    return EDITION.says("ok", text)
+
+
+def authority(context: CheckContext) -> Finding:
+    """The name as typed."""
+    name = context.project.facts.authority.strip()
+    if not name:
+        ask = "Which authority reviews this project?"
+        return AUTHORITY.says("missing", "Not run: no authority is named.", remedy=ask)
+    return AUTHORITY.says("ok", f"To be reviewed by {name}.")
+
+
+def friction(context: CheckContext) -> Finding:
+    """Standard first, then fluid."""
+    project = context.project
+    water = "water" in project.fluid.name.casefold() or not project.fluid.name
+    law, standard = project.law, project.criteria.standard
+    if law.family == "hazen-williams" and not water:
+        text = f"{project.fluid.name} is calculated by Hazen-Williams, which holds for water."
+        ask = f"Is Hazen-Williams accepted for {project.fluid.name}, or is Darcy-Weisbach asked?"
+        return FRICTION.says("ask authority", text, remedy=ask)
+    if law.family != "hazen-williams" and water:
+        text = f"Friction follows Darcy-Weisbach; {standard} prints Hazen-Williams."
+        ask = f"Is Darcy-Weisbach accepted in place of the formula of {standard}?"
+        return FRICTION.says("ask authority", text, remedy=ask)
+    printed = {"NFPA 13": "4.52", "EN 12845": "6.05"}[standard]
+    if law.family == "hazen-williams" and printed not in law.name:
+        text = f"Friction follows another form than {standard} prints: {law.name}."
+        ask = f"Is this form accepted in place of the one that {standard} prints?"
+        return FRICTION.says("ask authority", text, remedy=ask)
+    return FRICTION.says("ok", f"Friction: {law.name}.")
+
+
+def loops_in(context: CheckContext) -> int:
+    """Return the number of independent loops of the open pipes."""
+    parent = {tag: tag for tag in context.nodes}
+
+    def root(tag: str) -> str:
+        while parent[tag] != tag:
+            parent[tag] = parent[parent[tag]]
+            tag = parent[tag]
+        return tag
+
+    loops = 0
+    for pipe in context.project.system.pipes:
+        if pipe.valve == "closed":
+            continue
+        one, two = root(pipe.start), root(pipe.end)
+        loops += one == two
+        parent[one] = two
+    return loops
+
+
+def full_calculation(context: CheckContext) -> Finding:
+    """The solver always solves the whole network."""
+    if not context.european:
+        return FULL.says("not applicable", "Asked by EN 12845 only.")
+    loops = loops_in(context)
+    if not loops:
+        return FULL.says("not applicable", "The pipes form no loop.")
+    return FULL.says("ok", "{measured} loops, solved as one network.", measured=count(loops))
+
+
+def assumed(context: CheckContext) -> Finding:
+    """Assumed is what nobody gave; catalogue and inferred values have their source."""
+    keys = tuple(note.key for note in context.project.assumptions if note.origin == "assumed")
+    if not keys:
+        return ASSUMED.says("ok", "No value is assumed.", measured=count(0))
+    text = f"{{measured}} assumed: {some(keys)}."
+    ask = f"Are the assumed values right: {some(keys)}?"
+    return ASSUMED.says("ask authority", text, measured=count(len(keys)), tags=keys, remedy=ask)
+
+
+def outside(context: CheckContext) -> Finding:
+    """One line for all that a hydraulic calculation does not see."""
+    del context
+    text = "Freezing, obstructions, seismic bracing, storage arrangements and corrosion are not looked at."
+    return OUTSIDE.says("not applicable", text)
+
+
+RULES = (
+    Rule(EDITION, edition),
+    Rule(AUTHORITY, authority),
+    Rule(FRICTION, friction),
+    Rule(FULL, full_calculation),
+    Rule(ASSUMED, assumed),
+    Rule(OUTSIDE, outside),
+)

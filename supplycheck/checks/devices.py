@@ -1,0 +1,135 @@
+"""Rules on backflow preventers, meters and valves."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from supplycheck.checks import limits
+from supplycheck.checks.context import CheckContext
+from supplycheck.checks.rule import About, Rule, flow, pressure, some
+from supplycheck.findings import Finding, Measure
+from supplycheck.model import Device, Pipe
+
+ON_PATH = About(
+    "devices on the way",
+    "whether any device with a loss stands between supply and heads",
+    ("ok", "ask authority"),
+    "reviewers' practice, no source: backflow forgotten or guessed is among the commonest errors",
+    weight=3,
+)
+FIXED = About(
+    "device loss at actual flow",
+    "whether each device has a loss curve instead of one fixed loss",
+    ("ok", "ask authority", "not applicable"),
+    "reviewers' practice, no source: loss at the flow that passes, from the maker's curve",
+)
+CURVE = About(
+    "device curve range",
+    "flow through each device against the range of its curve",
+    ("ok", "fail", "not applicable"),
+    "the curve as given; outside it nothing is known",
+    weight=3,
+)
+REDUCING = About(
+    "pressure-reducing valve",
+    "inlet pressure of each pressure-reducing valve against its setting",
+    ("ok", "fail", "not applicable"),
+    "the valve's setting as given",
+)
+
+
+def _flowing(context: CheckContext) -> Iterator[tuple[Pipe, Device, float]]:
+    for pipe in context.project.system.pipes:
+        amount = context.flow(pipe)
+        if abs(amount) > limits.ROUND_OFF * context.comparison.demand_flow:
+            for tag in pipe.devices:
+                yield pipe, context.devices[tag], amount
+
+
+def on_path(context: CheckContext) -> Finding:
+    """No device at all is unusual enough to ask."""
+    used = tuple({device.tag: 0 for _, device, _ in _flowing(context)})
+    if used:
+        return ON_PATH.says("ok", f"On the way of the flow: {some(used)}.", tags=used)
+    ask = "Does no backflow preventer, meter or alarm valve stand between supply and heads?"
+    return ON_PATH.says("ask authority", "No device stands between supply and heads.", remedy=ask)
+
+
+def fixed(context: CheckContext) -> Finding:
+    """The largest fixed loss is shown."""
+    devices = {device.tag: device for _, device, _ in _flowing(context) if device.kind == "loss"}
+    if not devices:
+        return FIXED.says("not applicable", "No flow passes a device with a loss.")
+    guessed = sorted(
+        (device for device in devices.values() if device.is_fixed_loss), key=lambda one: -one.values[0]
+    )
+    if not guessed:
+        return FIXED.says("ok", "Each device takes its loss from a curve.", tags=tuple(devices))
+    tags = tuple(device.tag for device in guessed)
+    through = max((abs(q) for _, device, q in _flowing(context) if device.tag == tags[0]), default=0.0)
+    text = f"{some(tags)} has a fixed loss, {{measured}} at {{flow}} through {tags[0]}."
+    return FIXED.says(
+        "ask authority",
+        text,
+        measured=pressure(guessed[0].values[0]),
+        tags=tags,
+        values={"flow": flow(through)},
+        remedy=f"What does the maker's curve of {some(tags)} give at the actual flow?",
+    )
+
+
+def _use(device: Device, amount: float) -> tuple[float, float]:
+    """Return how far ``amount`` goes to the end of the curve (above 1 outside it) and that end."""
+    low, high = min(device.flows), max(device.flows)
+    return (low / amount, low) if amount < low else (amount / high, high)
+
+
+def curve(context: CheckContext) -> Finding:
+    """Below the first point and above the last are both outside."""
+    seen = sorted(
+        (
+            (*_use(device, abs(signed)), device.tag, abs(signed))
+            for _, device, signed in _flowing(context)
+            if len(device.flows) > 1
+        ),
+        reverse=True,
+    )
+    if not seen:
+        return CURVE.says("not applicable", "No flow passes a device with a curve.")
+    outside = tuple({tag: 0 for share, _, tag, _ in seen if share > 1 + limits.ROUND_OFF})
+    _, limit, tag, amount = seen[0]
+    if outside:
+        side = "ends at" if amount > limit else "starts at"
+        text = f"{{measured}} passes {tag}; its curve {side} {{limit}}."
+        do = f"Give a curve of {some(outside)} that covers the flow, or choose another size."
+        return CURVE.says("fail", text, measured=flow(amount), limit=flow(limit), tags=outside, remedy=do)
+    text = f"Nearest to the end of its curve is {tag}: {{measured}} of {{limit}}."
+    return CURVE.says("ok", text, measured=flow(amount), limit=flow(limit), tags=(tag,))
+
+
+def reducing(context: CheckContext) -> Finding:
+    """A valve set above its inlet stands fully open and reduces nothing."""
+    valves = [
+        (pipe, device)
+        for pipe in context.project.system.pipes
+        for tag in pipe.devices
+        for device in (context.devices[tag],)
+        if device.kind == "pressure-reducing valve" and device.setting is not None
+    ]
+    if not valves:
+        return REDUCING.says("not applicable", "There is no pressure-reducing valve.")
+
+    def inlet(pipe: Pipe) -> float:
+        return context.pressure(pipe.start if context.flow(pipe) >= 0 else pipe.end)
+
+    pipe, device = min(valves, key=lambda one: inlet(one[0]) - (one[1].setting or 0.0))
+    setting = device.setting or 0.0
+    measured, limit = Measure(inlet(pipe), "pressure"), pressure(setting)
+    text = f"{device.tag} takes in {{measured}} and is set to {{limit}}."
+    if inlet(pipe) < setting:
+        do = "The valve stands fully open: lower its setting, or leave it out."
+        return REDUCING.says("fail", text, measured=measured, limit=limit, tags=(device.tag,), remedy=do)
+    return REDUCING.says("ok", text, measured=measured, limit=limit, tags=(device.tag,))
+
+
+RULES = (Rule(ON_PATH, on_path), Rule(FIXED, fixed), Rule(CURVE, curve), Rule(REDUCING, reducing))

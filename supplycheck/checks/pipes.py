@@ -1,0 +1,381 @@
+"""Rules on pipes: C-factor, bore, equivalent lengths, tees, elevations, velocity."""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from fractions import Fraction
+
+import numpy as np
+
+from supplycheck.checks import limits
+from supplycheck.checks.context import CheckContext
+from supplycheck.checks.rule import About, Rule, pressure, some
+from supplycheck.findings import Finding, Measure, State
+from supplycheck.model import Fitting, Pipe
+from supplycheck.network.records import Solution
+
+C_SYSTEM = About(
+    "C-factor of dry steel",
+    "C-factor of steel pipe in dry and preaction systems against 100",
+    ("ok", "fail", "missing", "not applicable"),
+    "NFPA 13 (2019, 2022, from memory): steel 100 in dry and preaction systems, 120 in wet",
+    weight=3,
+)
+C_CATALOGUE = About(
+    "C-factor against the catalogue",
+    "C-factor of every pipe against the catalogue's for its material",
+    ("ok", "ask authority", "missing", "not applicable"),
+    "C-factors of the adopted standard, from the catalogue",
+)
+BORE = About(
+    "actual bore",
+    "bore of every pipe against its nominal size, and whether its source is known",
+    ("ok", "fail", "missing"),
+    "reviewers' practice, no source: nominal size in place of the bore is among the commonest errors",
+)
+EQUIVALENT = About(
+    "equivalent lengths corrected",
+    "equivalent lengths from the table against the corrections for C and bore",
+    ("ok", "fail", "not applicable"),
+    "NFPA 13: (C/120)^1.85 and (bore/table bore)^4.87; EN 12845 table 23: C row only",
+)
+TEES = About(
+    "tee where flow turns",
+    "whether each point where flow divides is charged a tee or cross",
+    ("ok", "fail", "not applicable"),
+    "NFPA 13 charging rules (from memory): the leg that turns is charged the tee",
+)
+ELEVATIONS = About(
+    "elevations given",
+    "whether any elevation is assumed",
+    ("ok", "missing"),
+    "reviewers' practice, no source",
+    weight=3,
+)
+RISES = About(
+    "pipe shorter than its rise",
+    "length of every pipe against the difference in elevation of its ends",
+    ("ok", "fail"),
+    "geometry",
+)
+LEVEL = About(
+    "risers and drops without rise",
+    "elevation difference of every riser, riser nipple and drop",
+    ("ok", "ask authority", "not applicable"),
+    "reviewers' practice, no source: wrong elevations are among the commonest errors",
+)
+VELOCITY = About(
+    "velocity",
+    "largest velocity in pipes and through valves against the policy of the project",
+    ("ok", "fail", "not applicable"),
+    "EN 12845: 10 m/s (13.2.3, published example), 6 m/s at valves (from memory); NFPA 13 sets no limit",
+)
+VELOCITY_PRESSURE = About(
+    "velocity pressure",
+    "whether one policy is stated and kept",
+    ("ok",),
+    "NFPA 13: total pressure, or normal pressure throughout lines and mains (23.4.4.10)",
+    weight=1,
+)
+_ELEVATION_SIDE = ("riser", "riser nipple", "drop")
+_VALVE_WORDS = ("valve", "gate", "check", "butterfly", "strainer", "flow switch", "alarm")
+
+
+def _steel(context: CheckContext, pipe: Pipe) -> bool:
+    kind = context.kinds.get(pipe.kind)
+    material = (kind.material if kind is not None else pipe.kind).casefold()
+    return ("steel" in material or "galvan" in material) and "stainless" not in material
+
+
+def dry_steel(context: CheckContext) -> Finding:
+    """Underground pipe stays full, so it is left out."""
+    system = context.project.criteria.system.casefold()
+    if context.european or not ("dry" in system or "preaction" in system or "interlock" in system):
+        reason = "EN 12845 makes no difference." if context.european else f"The system is {system}."
+        return C_SYSTEM.says("not applicable", reason)
+    if context.project.law.family != "hazen-williams":
+        return C_SYSTEM.says("not applicable", "Darcy-Weisbach uses roughness, not C.")
+    steel = [
+        pipe
+        for pipe in context.project.system.pipes
+        if pipe.role != "underground" and _steel(context, pipe) and pipe.c_factor is not None
+    ]
+    if not steel:
+        ask = "What C-factor has the steel pipe of this system?"
+        return C_SYSTEM.says("missing", "Not run: no steel pipe with a C-factor.", remedy=ask)
+    worst = max(steel, key=lambda pipe: pipe.c_factor or 0.0)
+    measured, limit = Measure(worst.c_factor or 0.0, "count"), Measure(limits.DRY_STEEL_C, "count")
+    over = tuple(pipe.tag for pipe in steel if (pipe.c_factor or 0.0) > limits.DRY_STEEL_C)
+    if over:
+        text = f"Steel in a {system} system is taken at C {{measured}} in {some(over)}; {{limit}} applies."
+        do = "Use C 100, or show the edition and nitrogen supply that allow more."
+        return C_SYSTEM.says("fail", text, measured=measured, limit=limit, tags=over, remedy=do)
+    return C_SYSTEM.says("ok", "Steel is taken at C {measured} at most.", measured=measured, limit=limit)
+
+
+def catalogue_c(context: CheckContext) -> Finding:
+    """The pipe with the largest C over the catalogue's is shown."""
+    if context.project.law.family != "hazen-williams":
+        return C_CATALOGUE.says("not applicable", "Darcy-Weisbach uses roughness, not C.")
+    known = [
+        (pipe, pipe.c_factor, context.catalogue_c[pipe.kind])
+        for pipe in context.project.system.pipes
+        if pipe.c_factor is not None and pipe.kind in context.catalogue_c
+    ]
+    high = tuple(pipe.tag for pipe, used, table in known if used > table * (1 + limits.ROUND_OFF))
+    if high:
+        pipe, used, table = max(known, key=lambda one: one[1] / one[2])
+        text = f"{pipe.kind} is taken at C {{measured}}; the catalogue has {{limit}}."
+        ask = f"What supports C {used:g} for {pipe.kind}?"
+        return C_CATALOGUE.says(
+            "ask authority",
+            text,
+            measured=Measure(used, "count"),
+            limit=Measure(table, "count"),
+            tags=high,
+            remedy=ask,
+        )
+    bare = {pipe.kind: 0 for pipe in context.project.system.pipes if pipe.kind not in context.catalogue_c}
+    if bare:
+        ask = f"What is the published C-factor of {some(bare)}?"
+        text = f"Not run: the catalogue has no C-factor for {some(bare)}."
+        return C_CATALOGUE.says("missing", text, tags=tuple(bare), remedy=ask)
+    return C_CATALOGUE.says("ok", "No C-factor is above the catalogue's for its material and system.")
+
+
+def nominal_size(text: str, *, metric: bool) -> float | None:
+    """Return the size [m] that a nominal size names, ``None`` where it names none.
+
+    >>> round(nominal_size("1 1/4", metric=False) / 0.0254, 2)
+    1.25
+    """
+    words = text.casefold().replace("dn", "").replace("″", "").replace('"', "").split()
+    unit = 1e-3 if metric else limits.INCH
+    if words and words[-1] in {"in", "mm"}:
+        unit = limits.INCH if words.pop() == "in" else 1e-3
+    try:
+        return float(sum(Fraction(word) for word in words)) * unit if words else None
+    except (ValueError, ZeroDivisionError):
+        return None
+
+
+def bore(context: CheckContext) -> Finding:
+    """12 in standard pipe is 12.000 in bore and so is exempt."""
+    metric = context.project.units == "metric"
+    nominal = {pipe.tag: nominal_size(pipe.nominal, metric=metric) for pipe in context.project.system.pipes}
+    same = [
+        pipe
+        for pipe in context.project.system.pipes
+        for size in (nominal[pipe.tag],)
+        if size is not None and abs(pipe.bore - size) < 5e-4 * size and abs(size - 12 * limits.INCH) > 1e-4
+    ]
+    if same:
+        tags = tuple(pipe.tag for pipe in same)
+        text = f"{some(tags)} is calculated with its nominal size ({{measured}}) as the bore."
+        do = "Give the actual inside diameter of this pipe."
+        return BORE.says("fail", text, measured=Measure(same[0].bore, "size"), tags=tags, remedy=do)
+    used = {pipe.kind for pipe in context.project.system.pipes}
+    bare = tuple(
+        sorted(tag for tag in used if tag not in context.kinds or not context.kinds[tag].bore_source)
+    )
+    if bare:
+        ask = f"Where does the bore of {some(bare)} come from?"
+        return BORE.says(
+            "missing", f"Not run: no source for the bore of {some(bare)}.", tags=bare, remedy=ask
+        )
+    return BORE.says("ok", "Every pipe has an actual bore with its source.")
+
+
+def _expected(context: CheckContext, pipe: Pipe, fitting: Fitting) -> float:
+    factor: float = ((pipe.c_factor or 120.0) / 120.0) ** 1.85
+    reference = context.reference_bores.get(pipe.nominal)
+    if reference and not context.european:
+        factor *= (pipe.bore / reference) ** 4.87
+    return fitting.table_length * fitting.count * factor
+
+
+def equivalent(context: CheckContext) -> Finding:
+    """Within 1 %: the printed C row is rounded (0.713 for 0.714, 1.51 for 1.511).
+
+    Without the table's own bore only the correction for C can be checked.
+    """
+    if context.project.law.family != "hazen-williams":
+        return EQUIVALENT.says("not applicable", "The corrections belong to Hazen-Williams.")
+    read = [
+        (pipe, fitting, fitting.length, _expected(context, pipe, fitting))
+        for pipe in context.project.system.pipes
+        for fitting in pipe.fittings
+        if fitting.table_length > 0 and fitting.origin != "given"
+        if pipe.nominal in context.reference_bores or context.european or pipe.c_factor != 120
+    ]
+    if not read:
+        return EQUIVALENT.says("not applicable", "No equivalent length from the table needs a correction.")
+    low = [one for one in read if _is_low(context, *one)]
+    if low:
+        pipe, fitting, length, due = max(low, key=lambda one: one[3] - one[2])
+        tags = tuple({one[0].tag: 0 for one in low})
+        text = f"{fitting.name} on {pipe.tag} is charged {{measured}}; with C and bore it is {{limit}}."
+        do = "Multiply table lengths by (C/120)^1.85 and the bore ratio to 4.87."
+        measured, limit = Measure(length, "length"), Measure(due, "length")
+        return EQUIVALENT.says("fail", text, measured=measured, limit=limit, tags=tags, remedy=do)
+    return EQUIVALENT.says("ok", "Equivalent lengths are corrected for C and bore.")
+
+
+def _is_low(context: CheckContext, pipe: Pipe, fitting: Fitting, length: float, due: float) -> bool:
+    if pipe.nominal in context.reference_bores or context.european:
+        return length < 0.99 * due
+    plain = fitting.table_length * fitting.count
+    return abs(length - plain) < 1e-6 * plain and due > 1.01 * plain
+
+
+def tees(context: CheckContext) -> Finding:
+    """Where three pipes carry flow, at least one of them turns."""
+    small = limits.ROUND_OFF * context.comparison.demand_flow
+    at: dict[str, list[Pipe]] = defaultdict(list)
+    for pipe in context.project.system.pipes:
+        if abs(context.flow(pipe)) > small:
+            at[pipe.start].append(pipe)
+            at[pipe.end].append(pipe)
+    forks = {tag: pipes for tag, pipes in at.items() if len(pipes) >= 3}
+    if not forks:
+        return TEES.says("not applicable", "The flow divides nowhere.")
+    bare = tuple(tag for tag, pipes in forks.items() if not any(_turns(pipe, tag) for pipe in pipes))
+    if bare:
+        text = f"No tee or cross is charged where the flow divides at {some(bare)}."
+        do = "Charge the leg that turns (branch outlet, riser nipple) the tee of its own size."
+        return TEES.says("fail", text, tags=bare, remedy=do)
+    return TEES.says("ok", "Each point where the flow divides is charged a tee or cross.")
+
+
+def _turns(pipe: Pipe, tag: str) -> bool:
+    words = ("tee", "cross", "outlet", "equivalent")
+    return any(
+        fitting.node in {None, tag}
+        and (fitting.minor_k > 0 or any(word in fitting.name.casefold() for word in words))
+        for fitting in pipe.fittings
+    )
+
+
+def elevations(context: CheckContext) -> Finding:
+    """The reader lists an elevation that was not given as an assumption."""
+    keys = tuple(
+        note.key
+        for note in context.project.assumptions
+        if "elevation" in note.key and note.origin == "assumed"
+    )
+    if keys:
+        ask = f"What are the elevations for {some(keys)}, on one datum?"
+        return ELEVATIONS.says(
+            "missing", f"Not run: assumed elevations: {some(keys)}.", tags=keys, remedy=ask
+        )
+    nodes = context.project.system.nodes
+    values = {
+        "low": Measure(min(node.elevation for node in nodes), "length"),
+        "high": Measure(max(node.elevation for node in nodes), "length"),
+    }
+    return ELEVATIONS.says("ok", "Elevations are given at every node, {low} to {high}.", values=values)
+
+
+def _rise(context: CheckContext, pipe: Pipe) -> float:
+    return abs(context.nodes[pipe.end].elevation - context.nodes[pipe.start].elevation)
+
+
+def rises(context: CheckContext) -> Finding:
+    """Lengths are typed to a hundredth, so each end may be off by half of it."""
+    pipes = context.project.system.pipes
+    worst = max(pipes, key=lambda pipe: _rise(context, pipe) - pipe.length)
+    short = [pipe for pipe in pipes if _rise(context, pipe) > pipe.length + limits.TYPED_LENGTH]
+    if not short:
+        return RISES.says("ok", "No pipe is shorter than its rise.")
+    short.sort(key=lambda pipe: pipe.length - _rise(context, pipe))
+    text = f"{worst.tag} is {{measured}} long but rises {{limit}} between {worst.start} and {worst.end}."
+    measured, limit = Measure(worst.length, "length"), Measure(_rise(context, worst), "length")
+    do = "Correct the length or an elevation."
+    tags = tuple(pipe.tag for pipe in short)
+    return RISES.says("fail", text, measured=measured, limit=limit, tags=tags, remedy=do)
+
+
+def level(context: CheckContext) -> Finding:
+    """A riser or drop between two nodes of one elevation has lost its height."""
+    upright = [pipe for pipe in context.project.system.pipes if pipe.role in _ELEVATION_SIDE]
+    if not upright:
+        return LEVEL.says("not applicable", "No pipe is named a riser, riser nipple or drop.")
+    flat = tuple(pipe.tag for pipe in upright if _rise(context, pipe) == 0 and pipe.length > 0)
+    if flat:
+        ask = f"What are the elevations at both ends of {some(flat)}?"
+        text = f"{some(flat)} joins two nodes of one elevation."
+        return LEVEL.says("ask authority", text, tags=flat, remedy=ask)
+    return LEVEL.says("ok", "Every riser, riser nipple and drop has its height.")
+
+
+def _is_valve(pipe: Pipe) -> bool:
+    named = any(word in one.name.casefold() for one in pipe.fittings for word in _VALVE_WORDS)
+    return named or bool(pipe.devices) or pipe.valve == "check"
+
+
+def _fastest(solution: Solution, pipes: list[Pipe]) -> tuple[float, str]:
+    wanted = {pipe.tag for pipe in pipes}
+    rows = [row for row, tag in enumerate(solution.pipe_tags) if tag in wanted]
+    if not rows:
+        return 0.0, ""
+    speeds = np.nan_to_num(np.abs(solution.velocity[rows]))
+    best = int(np.argmax(speeds))
+    return float(speeds[best]), solution.pipe_tags[rows[best]]
+
+
+def velocity(context: CheckContext) -> Finding:
+    """Demand state and, where it was solved, what really flows: the faster counts."""
+    policy = context.project.criteria.velocity
+    states = [context.solution] + ([context.operating] if context.operating is not None else [])
+    every = list(context.project.system.pipes)
+    speed, tag = max(_fastest(state, every) for state in states)
+    measured = Measure(speed, "velocity")
+    if policy.pipe_limit is None and policy.valve_limit is None:
+        text = f"No limit is set; the fastest is {{measured}} in {tag}."
+        return VELOCITY.says("not applicable", text, measured=measured, tags=(tag,))
+    source = policy.source or VELOCITY.source
+    valves = [pipe for pipe in every if _is_valve(pipe)]
+    groups = (("in", every, policy.pipe_limit), ("through a valve in", valves, policy.valve_limit))
+    seen = [
+        (speed / most, speed, most, f"{word} {tag}", tag)
+        for word, pipes, most in groups
+        if most is not None
+        for speed, tag in (max(_fastest(state, pipes) for state in states),)
+        if tag
+    ]
+    share, speed, most, where, tag = max(
+        seen, default=(0.0, speed, policy.pipe_limit or 0.0, f"in {tag}", tag)
+    )
+    state: State = "fail" if share > 1 + limits.ROUND_OFF else "ok"
+    return VELOCITY.says(
+        state,
+        f"{{measured}} {where}; {policy.name} allows {{limit}}.",
+        measured=Measure(speed, "velocity"),
+        limit=Measure(most, "velocity"),
+        tags=(tag,),
+        remedy="Enlarge the pipe or valve." if state == "fail" else "",
+        source=source,
+    )
+
+
+def velocity_pressure(context: CheckContext) -> Finding:
+    """One switch for the whole project."""
+    largest = float(np.nan_to_num(context.solution.velocity_pressure).max(initial=0.0))
+    text = "Velocity pressure is left out throughout; at most {measured} in any pipe."
+    if context.project.criteria.velocity_pressure:
+        text = "Velocity pressure is taken into account throughout; at most {measured} in any pipe."
+    return VELOCITY_PRESSURE.says("ok", text, measured=pressure(largest))
+
+
+RULES = (
+    Rule(C_SYSTEM, dry_steel),
+    Rule(C_CATALOGUE, catalogue_c),
+    Rule(BORE, bore),
+    Rule(EQUIVALENT, equivalent),
+    Rule(TEES, tees),
+    Rule(ELEVATIONS, elevations),
+    Rule(RISES, rises),
+    Rule(LEVEL, level),
+    Rule(VELOCITY, velocity),
+    Rule(VELOCITY_PRESSURE, velocity_pressure),
+)

@@ -1,0 +1,61 @@
+"""Every rule in one tuple, the order of display, and the questions that stay open."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from typing import Final
+
+from supplycheck.checks import (
+    area,
+    balance,
+    basis,
+    devices,
+    flow_record,
+    heads,
+    hose,
+    pipes,
+    pumps_and_tanks,
+    readings,
+    water_supply,
+)
+from supplycheck.checks.context import CheckContext
+from supplycheck.checks.rule import Rule
+from supplycheck.findings import Finding, State
+
+RULES: Final[tuple[Rule, ...]] = (
+    *water_supply.RULES,
+    *pumps_and_tanks.RULES,
+    *area.RULES,
+    *heads.RULES,
+    *hose.RULES,
+    *readings.RULES,
+    *flow_record.RULES,
+    *devices.RULES,
+    *pipes.RULES,
+    *balance.RULES,
+    *basis.RULES,
+)
+"""All rules; what weighs most stands first."""
+
+DISPLAY_ORDER: Final[tuple[State, ...]] = ("fail", "ask authority", "missing", "ok", "not applicable")
+
+
+def run_checks(context: CheckContext) -> tuple[Finding, ...]:
+    """Return what every rule finds, in display order; no rule is left out."""
+    return in_display_order(rule.run(context) for rule in RULES)
+
+
+def in_display_order(findings: Iterable[Finding]) -> tuple[Finding, ...]:
+    """Return ``findings`` by state, within a state by weight, otherwise as they came."""
+    weight = {rule.about.name: rule.about.weight for rule in RULES}
+    return tuple(
+        sorted(findings, key=lambda one: (DISPLAY_ORDER.index(one.state), -weight.get(one.check, 0)))
+    )
+
+
+def open_questions(findings: Iterable[Finding]) -> tuple[str, ...]:
+    """Return the questions of what is missing or left to the authority, most weighty first, each once."""
+    weight = {rule.about.name: rule.about.weight for rule in RULES}
+    asking = [one for one in findings if one.state in ("missing", "ask authority") and one.remedy]
+    asking.sort(key=lambda one: -weight.get(one.check, 0))
+    return tuple({one.remedy: None for one in asking})
