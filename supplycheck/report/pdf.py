@@ -81,80 +81,121 @@ def pdf_bytes(document: Document) -> bytes:
     canvas.setCreator(document.producer)
     canvas.setProducer(document.producer)
     for number, sheet in enumerate(sheets):
-        _paint(canvas, sheet, number)
+        _paint(canvas, ruler, sheet, number)
     canvas.save()
     return out.getvalue()
 
 
-def _paint(canvas: Any, sheet: Sheet, number: int) -> None:
+def _paint(canvas: Any, ruler: FontRuler, sheet: Sheet, number: int) -> None:
     canvas.setPageSize((sheet.width, sheet.height))
     for place, (title, y) in enumerate(sheet.entries):
         key = f"s{number}.{place}"
         canvas.bookmarkHorizontal(key, 0, y + 10)
         canvas.addOutlineEntry(title, key, 0, 0)
+    brush = Brush(canvas, ruler)
     for item in sheet.items:
-        _item(canvas, item)
+        brush.item(item)
+    brush.close()
     canvas.showPage()
 
 
-def _item(canvas: Any, item: Item) -> None:
-    match item:
-        case Label():
-            _text(canvas, item)
-        case Line():
-            _line(canvas, item)
-        case Box():
-            _pen(canvas, item.fill, item.stroke, item.line, item.dash)
-            fill, stroke = int(item.fill is not None), int(item.stroke is not None)
-            canvas.rect(item.x, item.y, item.width, item.height, stroke, fill)
-        case Dot():
-            _pen(canvas, item.fill, item.stroke, item.line, ())
-            fill, stroke = int(item.fill is not None), int(item.stroke is not None)
-            canvas.circle(item.x, item.y, item.radius, stroke, fill)
+class Brush:
+    """Paints one page; sets a colour, width or font only where it changes."""
 
+    def __init__(self, canvas: Any, ruler: FontRuler) -> None:
+        self.canvas = canvas
+        self.ruler = ruler
+        self.text: Any = None
+        self.font: tuple[str, float] | None = None
+        self.ink: str | None = None
+        self.fill: str | None = None
+        self.pen: tuple[str, float, tuple[float, ...]] | None = None
 
-def _pen(canvas: Any, fill: str | None, stroke: str | None, width: float, dash: tuple[float, ...]) -> None:
-    if fill is not None:
-        canvas.setFillColor(HexColor(fill))
-    if stroke is not None:
-        canvas.setStrokeColor(HexColor(stroke))
-        canvas.setLineWidth(width)
-        canvas.setDash(list(dash))
+    def item(self, item: Item) -> None:
+        """Paint ``item``."""
+        if isinstance(item, Label) and not item.angle and item.behind is None:
+            self._write(item)
+            return
+        self.close()
+        match item:
+            case Label():
+                self._write_apart(item)
+            case Line():
+                self._line(item)
+            case Box():
+                fill, stroke = self._set(item.fill, item.stroke, item.line, item.dash)
+                self.canvas.rect(item.x, item.y, item.width, item.height, stroke, fill)
+            case Dot():
+                fill, stroke = self._set(item.fill, item.stroke, item.line, ())
+                self.canvas.circle(item.x, item.y, item.radius, stroke, fill)
 
+    def close(self) -> None:
+        """End the text that is open."""
+        if self.text is not None:
+            self.canvas.drawText(self.text)
+            self.text = None
 
-def _line(canvas: Any, item: Line) -> None:
-    _pen(canvas, item.fill, item.stroke, item.width, item.dash)
-    if item.fill is None and len(item.points) == 2:
-        canvas.line(*item.points[0], *item.points[1])
-        return
-    path = canvas.beginPath()
-    path.moveTo(*item.points[0])
-    for point in item.points[1:]:
-        path.lineTo(*point)
-    if item.fill is not None:
-        path.close()
-    canvas.setLineJoin(1)
-    canvas.drawPath(path, int(item.stroke is not None), int(item.fill is not None))
+    def _write(self, item: Label) -> None:
+        font = BOLD if item.bold else REGULAR
+        if self.text is None:
+            self.text = self.canvas.beginText()
+            self.font = self.ink = None
+        if self.font != (font, item.size):
+            self.font = (font, item.size)
+            self.text.setFont(font, item.size)
+        if self.ink != item.colour:
+            self.ink = item.colour
+            self.fill = None
+            self.text.setFillColor(HexColor(item.colour))
+        self.text.setTextOrigin(item.x + self._shift(item), item.y)
+        self.text.textOut(item.text)
 
-
-def _text(canvas: Any, item: Label) -> None:
-    font = BOLD if item.bold else REGULAR
-    width = 0.0
-    if item.anchor != "start" or item.behind is not None:
-        width = pdfmetrics.stringWidth(item.text, font, item.size)
-    shift = {"start": 0.0, "middle": -width / 2, "end": -width}[item.anchor]
-    if item.angle:
+    def _write_apart(self, item: Label) -> None:
+        """Write text that is turned or stands on a ground of its own."""
+        canvas, shift = self.canvas, self._shift(item)
         canvas.saveState()
         canvas.translate(item.x, item.y)
         canvas.rotate(item.angle)
-        x, y = shift, 0.0
-    else:
-        x, y = item.x + shift, item.y
-    if item.behind is not None:
-        canvas.setFillColor(HexColor(item.behind))
-        canvas.rect(x - 1.2, y - item.size * 0.24, width + 2.4, item.size * 1.12, 0, 1)
-    canvas.setFillColor(HexColor(item.colour))
-    canvas.setFont(font, item.size)
-    canvas.drawString(x, y, item.text)
-    if item.angle:
+        if item.behind is not None:
+            canvas.setFillColor(HexColor(item.behind))
+            width = self.ruler.width(item.text, item.size, item.bold)
+            canvas.rect(shift - 1.2, -item.size * 0.24, width + 2.4, item.size * 1.12, 0, 1)
+        canvas.setFillColor(HexColor(item.colour))
+        canvas.setFont(BOLD if item.bold else REGULAR, item.size)
+        canvas.drawString(shift, 0.0, item.text)
         canvas.restoreState()
+
+    def _set(
+        self, fill: str | None, stroke: str | None, width: float, dash: tuple[float, ...]
+    ) -> tuple[int, int]:
+        """Set what is needed and return whether to fill and whether to stroke."""
+        if fill is not None and fill != self.fill:
+            self.fill = fill
+            self.canvas.setFillColor(HexColor(fill))
+        if stroke is not None and self.pen != (stroke, width, dash):
+            self.pen = (stroke, width, dash)
+            self.canvas.setStrokeColor(HexColor(stroke))
+            self.canvas.setLineWidth(width)
+            self.canvas.setDash(list(dash))
+        return int(fill is not None), int(stroke is not None)
+
+    def _line(self, item: Line) -> None:
+        fill, stroke = self._set(item.fill, item.stroke, item.width, item.dash)
+        if item.fill is None and len(item.points) == 2:
+            self.canvas.line(*item.points[0], *item.points[1])
+            return
+        path = self.canvas.beginPath()
+        path.moveTo(*item.points[0])
+        for point in item.points[1:]:
+            path.lineTo(*point)
+        if item.fill is not None:
+            path.close()
+        self.canvas.setLineJoin(1)
+        self.canvas.drawPath(path, stroke, fill)
+
+    def _shift(self, item: Label) -> float:
+        """Return how far left of its anchor the text starts, as a negative number."""
+        if item.anchor == "start":
+            return 0.0
+        width = self.ruler.width(item.text, item.size, item.bold)
+        return -width / (2 if item.anchor == "middle" else 1)

@@ -1,0 +1,113 @@
+"""The answer on one screen: aligned words, no colour needed, at most 24 lines of 100 columns."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Sequence
+from typing import Final
+
+from supplycheck.results.display import counts_text, finding_text, visible
+from supplycheck.results.records import Result
+from supplycheck.units import UNIT_SETS, UnitSet
+
+COLUMNS: Final = 96
+LINES: Final = 24
+_LABEL: Final = 12
+
+
+def screen_text(result: Result, files: Sequence[str] = ()) -> str:
+    """Return the one-screen answer; ``files`` are the names of the files that were written.
+
+    Every number is the one in ``result.json`` after display rounding. What does not fit is counted,
+    never dropped silently.
+    """
+    units = UNIT_SETS[result.project.units]
+    title = _wrapped("", result.project.facts.title, 1)
+    head = [*title, *_wrapped("", f"{result.verdict.upper()}: {result.verdict_text}", 2), ""]
+    body = [line for label, text, most in _entries(result, units) for line in _wrapped(label, text, most)]
+    tail = _files(files)
+    room = LINES - len(head) - len(body) - len(tail)
+    fails = [f"{one.check}: {finding_text(one, units)}" for one in result.findings if one.state == "fail"]
+    questions = list(result.open_questions)
+    for_fails = max(room - min(len(questions), 2), 1)
+    fail_lines = _list("Fails", fails, for_fails)
+    question_lines = _list("Open", questions, max(room - len(fail_lines), 1))
+    return "\n".join([*head, *body, *fail_lines, *question_lines, *tail])
+
+
+def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
+    """Return label, text and the most lines that the text may take."""
+    demand, supply, margin, balance = result.demand, result.supply, result.margin, result.balance
+    parts = " + ".join(
+        f"{units.number(flow, 'flow')} {what}"
+        for flow, what in ((demand.sprinkler_flow, "sprinklers"), (demand.hose_flow, "hose"))
+    )
+    residual = ""
+    if supply.residual is not None and supply.test_flow is not None:
+        residual = f", residual {_t(units, supply.residual)} at {_t(units, supply.test_flow, 'flow')}"
+    asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
+    after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
+    flow_gap = f"{units.from_si(balance.largest_flow_imbalance, 'flow'):.0e} {units.symbol('flow')}"
+    gap = f"{units.from_si(balance.largest_pressure_imbalance, 'pressure'):.0e} {units.symbol('pressure')}"
+    return [
+        (
+            "Demand",
+            f"{_t(units, demand.pressure)} at {_t(units, demand.flow, 'flow')} at {demand.node} ({parts})",
+            2,
+        ),
+        (
+            "Available",
+            f"{_t(units, supply.available_pressure)} at that flow (test: static "
+            f"{_t(units, supply.static)}{residual})",
+            2,
+        ),
+        ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),
+        ("Rule", margin.rule, 2),
+        ("Governs", result.governs, 2),
+        ("Design area", result.design_area.statement, 2),
+        ("Balance", f"flows within {flow_gap}, pressures within {gap}", 1),
+        ("Findings", counts_text(result.findings), 2),
+    ]
+
+
+def _t(units: UnitSet, value: float, kind: str = "pressure") -> str:
+    return units.text(value, kind)
+
+
+def _signed(units: UnitSet, value: float) -> str:
+    text = units.text(value, "pressure")
+    return f"+{text}" if value > 0 and text[:1].isdigit() else text
+
+
+def _wrapped(label: str, text: str, most: int) -> list[str]:
+    """Return ``text`` behind ``label`` on at most ``most`` lines, three dots where it is longer."""
+    indent = _LABEL if label else 0
+    lines = textwrap.wrap(visible(text), COLUMNS - indent, break_on_hyphens=False) or ["–"]
+    if len(lines) > most:
+        last = textwrap.shorten(" ".join(lines[most - 1 :]), COLUMNS - indent, placeholder=" …")
+        if len(last) < 8:
+            last = lines[most - 1][: COLUMNS - indent - 2] + " …"
+        lines = [*lines[: most - 1], last]
+    return [f"{label if place == 0 else '':<{indent}}{line}" for place, line in enumerate(lines)]
+
+
+def _list(label: str, texts: list[str], room: int) -> list[str]:
+    """Return ``texts`` in at most ``room`` lines; where that is too little the last line counts the rest."""
+    for most in (2, 1):
+        rows = [line for text in texts for line in _wrapped(label, text, most)]
+        if len(rows) <= room:
+            return _once(label, rows)
+    shown = texts[: max(room - 1, 0)]
+    rows = [_wrapped(label, text, 1)[0] for text in shown]
+    return _once(label, [*rows, f"{label:<{_LABEL}}… {len(texts) - len(shown)} more in the report"])
+
+
+def _once(label: str, rows: list[str]) -> list[str]:
+    """Return ``rows`` with ``label`` on the first of them alone."""
+    blank = " " * _LABEL
+    rest = (blank + row[_LABEL:] if row.startswith(label) else row for row in rows[1:])
+    return [*rows[:1], *rest]
+
+
+def _files(files: Sequence[str]) -> list[str]:
+    return _wrapped("Files", ", ".join(files), 2) if files else []
