@@ -25,6 +25,10 @@ _SPELLED: Final = MappingProxyType(
         "crosses": "cross",
         "valves": "valve",
         "bends": "bend",
+        "i": "1",
+        "ii": "2",
+        "iii": "3",
+        "iv": "4",
     }
 )
 _SILENT: Final = frozenset({"degree", "degrees", "deg", "pipe", "the"})
@@ -38,7 +42,8 @@ def fold(text: str) -> str:
     >>> fold("90° elbows") == fold("elbow 90")
     True
     """
-    lowered = re.sub(r"([a-z])(\d)", r"\1 \2", text.casefold())
+    lowered = text.casefold().replace("pre-action", "preaction")
+    lowered = re.sub(r"([a-z])(\d)", r"\1 \2", lowered)
     words = (_SPELLED.get(word, word) for word in re.findall(r"\d+(?:\.\d+)?[a-z]*|[^\W\d_]+", lowered))
     return " ".join(sorted(word for word in words if word not in _SILENT))
 
@@ -83,16 +88,21 @@ def normalise_nominal(text: str | float) -> str:
 
 
 def not_found(what: str, asked: object, known: Iterable[str], remedy: str = "") -> NotInCatalogueError:
-    """Return the error for a name that a table does not have, with the near ones of ``known``."""
+    """Return the error for a name that a table does not have, with the near ones of ``known``.
+
+    Near are first the names that hold every word asked, then those spelt alike; six at most."""
     import difflib
 
-    names = sorted(set(known))
-    folded = {name.casefold(): name for name in names}
-    found = difflib.get_close_matches(str(asked).casefold(), list(folded), n=4, cutoff=0.5)
-    near = tuple(folded[name] for name in found)
-    message = f"the catalogue has no {what} {str(asked)[:80]!r}"
+    names = list(dict.fromkeys(known))
+    text = str(asked)[:80]
+    words = set(fold(text).split())
+    near = [name for name in names if words and words <= set(fold(name).split())][:6]
+    folded = {name.casefold(): name for name in reversed(names)}
+    close = difflib.get_close_matches(text.casefold(), list(folded), n=4, cutoff=0.5)
+    near += [folded[name] for name in close if folded[name] not in near][: 6 - len(near)]
+    message = f"the catalogue has no {what} {text!r}"
     if near:
         message += "; near: " + ", ".join(near)
     elif 0 < len(names) <= 24:
         message += "; it has: " + ", ".join(names)
-    return NotInCatalogueError(message + (f"; {remedy}" if remedy else ""), near)
+    return NotInCatalogueError(message + (f"; {remedy}" if remedy else ""), tuple(near))

@@ -6,8 +6,9 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from pathlib import Path
+from types import MappingProxyType
 from typing import Final
 
 from supplycheck.catalogue.rules import margin_shapes
@@ -39,6 +40,13 @@ _TITLES: Final = (
     ("Pre-calculated pump duties, EN 12845", "pump_duties_en"),
     ("Antifreeze", "fluids"),
     ("Single figures by standard and edition", "rules"),
+)
+_CROSSED: Final = MappingProxyType(
+    {
+        "fittings_nfpa": ("fitting", "nominal", "length_ft"),
+        "fittings_en": ("fitting", "nominal", "length_m"),
+        "fire_flow": ("flow_gpm duration_h", "construction", "area_up_to_ft2"),
+    }
 )
 _INTRO: Final = """# Catalogue
 
@@ -72,10 +80,49 @@ def _grid(header: Sequence[str], rows: Iterable[Sequence[str]]) -> list[str]:
     return lines + ["| " + " | ".join(map(_cell, row)) + " |" for row in rows]
 
 
-def _section(title: str, rows: Sequence[Row]) -> list[str]:
-    used = [column for column in rows[0] if any(row[column] for row in rows)]
-    lines = _grid(used, ([row[column] for column in used] for row in rows))
-    return [f"## {title}", "", *lines, ""]
+def _section(title: str, name: str) -> list[str]:
+    rows = table(name)
+    sources = list(dict.fromkeys(row["source"] for row in rows))
+    mark = {source: f"[{number}]" for number, source in enumerate(sources, start=1)}
+    lines = _crossed(rows, *_CROSSED[name], mark) if name in _CROSSED else _plain(rows, mark)
+    notes = [f"- {number} {_cell(source)}" for source, number in mark.items()]
+    return [f"## {title}", "", *lines, "", *notes, ""]
+
+
+def _plain(rows: Sequence[Row], mark: Mapping[str, str]) -> list[str]:
+    used = [column for column in rows[0] if column != "source" and any(row[column] for row in rows)]
+    return _grid(
+        [*used, "source"], ([*(row[column] for column in used), mark[row["source"]]] for row in rows)
+    )
+
+
+def _crossed(rows: Sequence[Row], down: str, across: str, value: str, mark: Mapping[str, str]) -> list[str]:
+    """Lay the rows out as the publication prints them, one fitting or flow a line."""
+
+    def label(row: Row) -> str:
+        return " / ".join(row[column] for column in down.split())
+
+    def cell(row: Row) -> str:
+        return f"{row[value]} {mark[row['source']]}" if len(mark) > 1 else row[value]
+
+    order = [
+        size for row in table("nominal_sizes") for size in (row["nominal_in"], f"DN {row['nominal_dn']}")
+    ]
+    tops = list(dict.fromkeys(row[across] for row in rows))
+    if across == "nominal":
+        tops.sort(key=order.index)
+    cells = {(label(row), row[across]): cell(row) for row in rows}
+    names = dict.fromkeys(label(row) for row in rows)
+    header = [f"{value} by {down.replace(' ', ' / ')}", *tops]
+    lines = _grid(header, ([name, *(cells.get((name, top), "–") for top in tops)] for name in names))
+    told: dict[tuple[str, str], list[str]] = {}
+    for row in rows:
+        if row["note"]:
+            told.setdefault((label(row), row["note"]), []).append(row[across])
+    for (name, note), places in told.items():
+        where = f" in {places[0]}" if len(places) == 1 else ""
+        lines += ["", f"{name}{where}: {_cell(note)}."]
+    return lines
 
 
 def _margins() -> list[str]:
@@ -90,7 +137,7 @@ def catalogue_page() -> str:
     """Return the page as Markdown."""
     lines = [_INTRO]
     for title, name in _TITLES:
-        lines += _section(title, table(name))
+        lines += _section(title, name)
     return "\n".join([*lines, *_margins()])
 
 

@@ -85,11 +85,18 @@ def _size_unit(material: str) -> str:
     return row["size_unit"] if row else ""
 
 
+def _no_bores(material: str, family: str) -> NotInCatalogueError:
+    kinds = tuple(row.name for row in materials() if row.family == family and row.size_unit)
+    choice = f"choose one of {', '.join(kinds)}, or give" if kinds else "give"
+    return NotInCatalogueError(
+        f"{material} names a family of pipe, without bores; {choice} its bores", kinds
+    )
+
+
 def _unknown_material(material: str, *, with_bores: bool, extra: ExtraRows) -> NotInCatalogueError:
     rows = [row for row in materials() if row.size_unit or not with_bores]
-    known = [name for row in rows for name in (row.name, *row.aliases)] + [
-        row.material for row in extra.bores
-    ]
+    known = [row.name for row in rows] + [row.material for row in extra.bores]
+    known += [alias for row in rows for alias in row.aliases]
     return not_found("material", material, known, "or give bore and C-factor in the project")
 
 
@@ -129,6 +136,8 @@ def bores(material: str, extra: ExtraRows = _NO_EXTRA) -> tuple[BoreRow, ...]:
     key = fold(row["material"]) if row else fold(material)
     own = [bore for bore in extra.bores if fold(bore.material) in {key, fold(material)}]
     listed = _catalogue_bores(row["material"]) if row else ()
+    if row and not own and not listed:
+        raise _no_bores(material, row["family"])
     if not own and not listed:
         raise _unknown_material(material, with_bores=True, extra=extra)
     unit = row["size_unit"] if row else ""

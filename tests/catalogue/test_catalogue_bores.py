@@ -224,7 +224,25 @@ def test_an_ambiguous_wall_basis_is_not_chosen_silently() -> None:
     assert {"PVC C900 DR18, minimum wall", "PVC C900 DR18, average wall"} <= set(caught.value.near)
 
 
+def test_a_family_has_a_c_factor_and_no_bores() -> None:
+    assert catalogue.c_factor("PVC", "wet", "NFPA 13 (2022)").value == 150  # plastic; NFPA 13 from memory
+    with pytest.raises(NotInCatalogueError, match="family of pipe") as caught:
+        catalogue.bores("copper")
+    assert caught.value.near == ("copper type K", "copper type L", "copper type M")
+    with pytest.raises(NotInCatalogueError, match="without bores; give its bores"):
+        catalogue.bores("brass")
+    own = ExtraRows(bores=(BoreRow("brass", "1", 0.0266, source="maker"),))
+    assert catalogue.find_bore("brass", "1", own).bore == 0.0266
+
+
 def test_unknown_names_come_with_near_ones() -> None:
+    with pytest.raises(NotInCatalogueError) as caught:
+        catalogue.bores("ductile iron")
+    assert "ductile iron class 52, bare" in caught.value.near
+    assert "ductile iron class 52, cement-lined" in caught.value.near
+    with pytest.raises(NotInCatalogueError) as caught:
+        catalogue.bores("x" * 1_000_000)
+    assert len(str(caught.value)) < 1000
     with pytest.raises(NotInCatalogueError) as caught:
         catalogue.bores("steel schedul 40")
     assert "steel schedule 40" in caught.value.near

@@ -188,6 +188,11 @@ def test_every_name_of_a_class() -> None:
         assert not {fold(row["alias"]) for row in aliases} & {fold(name) for name in names}
 
 
+def test_roman_groups() -> None:
+    assert catalogue.hazard_class("Ordinary Hazard (Group II)", LATEST).name == "ordinary hazard group 2"
+    assert catalogue.hazard_class("extra hazard I", LATEST).name == "extra hazard group 1"
+
+
 def test_the_edition_must_be_known() -> None:
     with pytest.raises(DomainError, match="give the edition"):
         catalogue.hazard_class("OH2", "NFPA 13")
