@@ -51,7 +51,7 @@ def read_fluid(
         row = catalogue.rule("unit weight of water", standard.name if standard else "NFPA 13")
         notes.add(
             "fluid: unit weight",
-            f"{row.value:.1f} Pa/m, as the standard rounds it",
+            f"{units.text(row.value, 'gradient')}, as the standard rounds it",
             "catalogue",
             row.source,
         )

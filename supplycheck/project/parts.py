@@ -140,7 +140,7 @@ class KindReader:
                 remedy="give roughness",
             )
             return None, ""
-        text = f"{row.value * 1000:.4g} mm"
+        text = units.text(row.value, "roughness")
         self.notes.add(f"pipe.{name}.roughness", text, "catalogue", row.source)
         return row.value, row.source
 

@@ -17,7 +17,7 @@ from supplycheck.project.geometry import infer
 from supplycheck.project.graph import islands, tree_from
 from supplycheck.project.parts import DeviceOrLength, KindOfPipe
 from supplycheck.project.sections import Sections
-from supplycheck.units import UNIT_SETS
+from supplycheck.units import UNIT_SETS, UnitSet
 
 
 def check_connections(
@@ -195,7 +195,11 @@ def _note_inferred(pipes: Sequence[Pipe], notes: Notes) -> None:
 
 
 def _note_bores(
-    drafts: Sequence[DraftPipe], pipes: Sequence[Pipe], kinds: Mapping[str, KindOfPipe], notes: Notes
+    drafts: Sequence[DraftPipe],
+    pipes: Sequence[Pipe],
+    kinds: Mapping[str, KindOfPipe],
+    units: UnitSet,
+    notes: Notes,
 ) -> None:
     used: dict[str, dict[str, float]] = {}
     for draft, pipe in zip(drafts, pipes, strict=True):
@@ -203,7 +207,7 @@ def _note_bores(
             used.setdefault(draft.kind, {})[pipe.nominal] = pipe.bore
     for name, sizes in used.items():
         text = ", ".join(
-            f"{size}: {bore * 1000:.2f} mm" for size, bore in sorted(sizes.items(), key=lambda s: s[1])
+            f"{size}: {units.text(bore, 'size')}" for size, bore in sorted(sizes.items(), key=lambda s: s[1])
         )
         notes.add(f"pipe.{name}: bores", text, "catalogue", kinds[name].record.bore_source)
 
@@ -231,7 +235,7 @@ def finish(
     ]
     if not faults:
         _note_inferred(pipes, notes)
-        _note_bores(draft.pipes, pipes, finisher.kinds, notes)
+        _note_bores(draft.pipes, pipes, finisher.kinds, UNIT_SETS[finisher.sections.units], notes)
     return System(
         nodes=draft.nodes,
         pipes=tuple(pipes),
