@@ -1,0 +1,150 @@
+"""``supplycheck check``: the main job, and the files of the review package."""
+
+from __future__ import annotations
+
+import json
+import sys
+import time
+from pathlib import Path
+from typing import TYPE_CHECKING, Final
+
+import click
+
+if TYPE_CHECKING:
+    from supplycheck.check import Progress
+    from supplycheck.errors import NotConvergedError
+    from supplycheck.project import ProjectFaultsError
+
+ADEQUATE: Final = 0
+NOT_ADEQUATE: Final = 1
+WRONG_USAGE: Final = 2
+PROJECT_FAULTS: Final = 3
+NOT_CONVERGED: Final = 4
+PATIENCE: Final = 1.0  # seconds before a progress bar appears
+
+
+@click.command()
+@click.argument("project", type=click.Path(path_type=Path))
+@click.option(
+    "--out",
+    type=click.Path(path_type=Path, file_okay=False),
+    help="Folder for the review package (default: `review` beside the project file).",
+)
+@click.option("--json", "as_json", is_flag=True, help="Print result.json instead of the screen answer.")
+@click.option("--no-files", is_flag=True, help="Write no files; only print the answer.")
+def command(project: Path, out: Path | None, as_json: bool, no_files: bool) -> None:
+    """Check the system in PROJECT (a project.toml, or its folder) against its water supply.
+
+    Writes result.json, review.pdf, nodes.csv, pipes.csv and tables.xlsx.
+    """
+    sys.exit(run(project, out, as_json=as_json, no_files=no_files))
+
+
+def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> int:
+    """Do the job and return the exit code."""
+    from supplycheck.check import check_project
+    from supplycheck.errors import DomainError, NotConvergedError
+    from supplycheck.project import ProjectFaultsError
+    from supplycheck.report.package import package_files, write_files
+    from supplycheck.results.json import result_json
+    from supplycheck.results.screen import screen_text
+
+    path = project / "project.toml" if project.is_dir() else project
+    try:
+        with _Bar() as progress:
+            result = check_project(path, progress)
+    except ProjectFaultsError as error:
+        _faults(error, as_json)
+        return PROJECT_FAULTS
+    except NotConvergedError as error:
+        _not_converged(error, as_json)
+        return NOT_CONVERGED
+    except DomainError as error:
+        _one_fault(str(error), as_json)
+        return PROJECT_FAULTS
+    folder = out or path.parent / "review"
+    if not no_files:
+        try:
+            write_files(folder, package_files(result))
+        except OSError as error:
+            click.echo(f"The review package could not be written to {folder}: {error.strerror}", err=True)
+            return WRONG_USAGE
+    if as_json:
+        click.echo(result_json(result), nl=False)
+    else:
+        click.echo(screen_text(result, "" if no_files else str(folder)))
+    return ADEQUATE if result.verdict == "adequate" else NOT_ADEQUATE
+
+
+class _Bar:
+    """A progress bar that appears only when the search takes longer than :data:`PATIENCE`."""
+
+    def __init__(self) -> None:
+        self._begun = time.monotonic()
+        self._shown = False
+
+    def __enter__(self) -> Progress:
+        return self._step
+
+    def __exit__(self, *_: object) -> None:
+        if self._shown:
+            click.echo(err=True)
+
+    def _step(self, done: int, total: int) -> None:
+        if not sys.stderr.isatty() or time.monotonic() - self._begun < PATIENCE:
+            return
+        self._shown = True
+        filled = 30 * done // max(total, 1)
+        bar = "#" * filled + "." * (30 - filled)
+        click.echo(f"\rplacements of the design area [{bar}] {done}/{total}", err=True, nl=False)
+
+
+def _faults(error: ProjectFaultsError, as_json: bool) -> None:
+    if as_json:
+        rows = [
+            {
+                "file": fault.place.file,
+                "where": fault.place.where,
+                "problem": fault.problem,
+                "found": fault.found,
+                "allowed": fault.allowed,
+                "remedy": fault.remedy,
+            }
+            for fault in error.faults
+        ]
+        click.echo(json.dumps({"error": "project faults", "faults": rows}, indent=2, ensure_ascii=False))
+        return
+    count = len(error.faults)
+    click.echo(f"The project has {count} fault{'s' if count > 1 else ''}; nothing was written.", err=True)
+    for fault in error.faults:
+        click.echo(f"\n{fault.place}", err=True)
+        click.echo(f"  {fault.problem}", err=True)
+        for name, text in (("found", fault.found), ("allowed", fault.allowed), ("do", fault.remedy)):
+            if text:
+                click.echo(f"  {name + ':':<9}{text}", err=True)
+
+
+def _not_converged(error: NotConvergedError, as_json: bool) -> None:
+    if as_json:
+        record = {
+            "error": "not converged",
+            "cause": error.cause,
+            "message": str(error),
+            "tags": list(error.tags),
+            "remedy": error.remedy,
+        }
+        click.echo(json.dumps(record, indent=2, ensure_ascii=False))
+        return
+    click.echo(f"The calculation has no result; nothing was written.\n  {error}", err=True)
+    if error.tags:
+        more = len(error.tags) - 12
+        tags = ", ".join(error.tags[:12]) + (f" and {more} more" if more > 0 else "")
+        click.echo(f"  {'at:':<9}{tags}", err=True)
+    click.echo(f"  {'cause:':<9}{error.cause}\n  {'do:':<9}{error.remedy}", err=True)
+
+
+def _one_fault(text: str, as_json: bool) -> None:
+    if as_json:
+        click.echo(json.dumps({"error": "project faults", "faults": [{"problem": text}]}, indent=2))
+    else:
+        click.echo(f"The project cannot be calculated; nothing was written.\n  {text}", err=True)

@@ -1,0 +1,34 @@
+"""The files of the review package: made in memory, then written whole or not at all."""
+
+from __future__ import annotations
+
+import tempfile
+from collections.abc import Mapping
+from pathlib import Path
+
+from supplycheck.report.build import build_document
+from supplycheck.report.pdf import pdf_bytes
+from supplycheck.results.json import result_json
+from supplycheck.results.records import Result
+
+
+def package_files(result: Result) -> Mapping[str, bytes]:
+    """Return name → content of every file of the review package."""
+    return {
+        "result.json": result_json(result).encode(),
+        "review.pdf": pdf_bytes(build_document(result)),
+    }
+
+
+def write_files(folder: Path, files: Mapping[str, bytes]) -> None:
+    """Write ``files`` into ``folder``, making it if need be.
+
+    All contents are first written beside their places and then moved there, so that a full disk or a lost
+    right leaves the old files as they were. Raises :class:`OSError`.
+    """
+    folder.mkdir(parents=True, exist_ok=True)
+    with tempfile.TemporaryDirectory(dir=folder, prefix=".unfinished-") as held:
+        for name, content in files.items():
+            (Path(held) / name).write_bytes(content)
+        for name in files:
+            (Path(held) / name).replace(folder / name)

@@ -1,0 +1,221 @@
+"""Puts the solved stages together into the one `Result`; nothing is solved here."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+from supplycheck.checks import open_questions
+from supplycheck.demand import Candidates
+from supplycheck.demand import Step as AreaStep
+from supplycheck.findings import Finding
+from supplycheck.model import DemandCase, Project
+from supplycheck.network import Solution
+from supplycheck.results.balance import balance_of
+from supplycheck.results.display import value_text
+from supplycheck.results.path import hand_check, path_to_supply
+from supplycheck.results.records import (
+    CurvePoints,
+    DemandRecord,
+    DesignAreaRecord,
+    GraphPoint,
+    HandStep,
+    MarginRecord,
+    NodeRow,
+    Placement,
+    Result,
+    ScenarioRow,
+    SupplyRecord,
+    Verdict,
+)
+from supplycheck.results.rows import node_rows, pipe_rows
+from supplycheck.supply import Comparison, GraphData
+from supplycheck.supply import Step as SupplyStep
+from supplycheck.units import UNIT_SETS
+
+Show = Callable[[float, str], str]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Stages:
+    """Everything that was worked out for one project, ready to be put together."""
+
+    project: Project
+    candidates: Candidates
+    placements: tuple[Placement, ...]
+    case: DemandCase
+    solution: Solution
+    comparison: Comparison
+    graph: GraphData
+    scenarios: tuple[ScenarioRow, ...]
+    findings: tuple[Finding, ...]
+    version: str
+    library_versions: Mapping[str, str]
+
+
+def assemble(stages: Stages) -> Result:
+    """Return the result of ``stages``."""
+    project, solution, comparison = stages.project, stages.solution, stages.comparison
+    units = UNIT_SETS[project.units]
+
+    def show(value: float, kind: str) -> str:
+        return value_text(value, kind, units)
+
+    nodes = node_rows(project, stages.case, solution)
+    pipes = pipe_rows(project, solution)
+    path = path_to_supply(nodes, pipes, solution.governing, solution.source_tags)
+    drawn = dict(zip(solution.source_tags, solution.source_flow.tolist(), strict=True))
+    balance = balance_of(project, nodes, pipes, drawn, solution.iterations)
+    verdict = _verdict(comparison)
+    return Result(
+        project=project,
+        version=stages.version,
+        verdict=verdict,
+        verdict_text=_verdict_text(verdict, comparison, show),
+        governs=_governs(nodes, solution.governing, stages.case, show),
+        demand=_demand(comparison, nodes, solution, stages.case),
+        supply=_supply(comparison, show),
+        margin=_margin(comparison, show),
+        balance=balance,
+        design_area=_design_area(stages, show),
+        nodes=nodes,
+        pipes=pipes,
+        path=path,
+        hand_check=hand_check(project, nodes, path),
+        curves=tuple(
+            CurvePoints(line.name, line.style, line.flows, line.pressures, line.extrapolated_from)
+            for line in stages.graph.lines
+        ),
+        points=tuple(
+            GraphPoint(point.name, point.style, point.flow, point.pressure) for point in stages.graph.points
+        ),
+        scenarios=stages.scenarios,
+        findings=stages.findings,
+        open_questions=open_questions(stages.findings),
+        library_versions=stages.library_versions,
+    )
+
+
+def _verdict(comparison: Comparison) -> Verdict:
+    if comparison.margin < 0:
+        return "not adequate"
+    if comparison.after_rule is None:
+        return "undetermined"
+    return "adequate" if comparison.after_rule >= 0 else "not adequate"
+
+
+def _verdict_text(verdict: Verdict, comparison: Comparison, show: Show) -> str:
+    margin = show(abs(comparison.margin), "pressure")
+    if comparison.margin < 0:
+        return f"The supply falls short of the demand by {margin}."
+    if comparison.required is None or comparison.after_rule is None:
+        return (
+            f"The supply carries the demand with {margin} to spare, but no margin rule is given: "
+            'ask the authority, then write it under [supply.margin] (rule = "none" if it asks for none).'
+        )
+    asked = show(comparison.required, "pressure")
+    if verdict == "adequate":
+        return f"The supply carries the demand with {margin} to spare; the margin rule asks for {asked}."
+    return (
+        f"The supply carries the demand with {margin} to spare, less than the {asked} that the "
+        "margin rule asks for."
+    )
+
+
+def _governs(nodes: tuple[NodeRow, ...], governing: str, case: DemandCase, show: Show) -> str:
+    head = next(node for node in nodes if node.tag == governing)
+    needs = f"{show(head.discharge, 'flow')} at {show(head.pressure, 'pressure')}"
+    return f"head {head.tag} ({needs}, set by {head.required_by}) in {case.label}"
+
+
+def _demand(
+    comparison: Comparison, nodes: tuple[NodeRow, ...], solution: Solution, case: DemandCase
+) -> DemandRecord:
+    head = next(node for node in nodes if node.tag == solution.governing)
+    return DemandRecord(
+        node=comparison.node,
+        flow=comparison.demand_flow,
+        pressure=comparison.demand_pressure,
+        sprinkler_flow=comparison.sprinkler_flow,
+        hose_flow=comparison.hose_flow,
+        heads=len(case.heads),
+        governing_head=solution.governing,
+        governing_by=head.required_by,
+    )
+
+
+def _supply(comparison: Comparison, show: Show) -> SupplyRecord:
+    main = comparison.main_source
+    static = main.test_static if main.test_static is not None else comparison.static
+    return SupplyRecord(
+        static=static,
+        residual=main.test_residual,
+        test_flow=main.test_flow,
+        available_pressure=comparison.available_pressure,
+        available_flow=comparison.available_flow,
+        unadjusted_pressure=comparison.unadjusted_pressure,
+        flow_at_20_psi=comparison.flow_at_20_psi,
+        static_at_comparison=comparison.static,
+        tested_range_ratio=main.tested_ratio,
+        steps=_filled(comparison.supply_steps, show),
+        statement=" ".join(note.fill(show) for note in comparison.notes),
+    )
+
+
+def _margin(comparison: Comparison, show: Show) -> MarginRecord:
+    return MarginRecord(
+        pressure=comparison.margin,
+        required=comparison.required,
+        after_rule=comparison.after_rule,
+        rule=comparison.rule.fill(show),
+        steps=_filled(comparison.margin_steps, show),
+        source=comparison.rule_source,
+    )
+
+
+def _filled(steps: Iterable[SupplyStep], show: Show) -> tuple[HandStep, ...]:
+    return tuple(
+        HandStep(step.step, step.formula.fill(show), step.value, step.kind, step.note) for step in steps
+    )
+
+
+def _area_steps(steps: Sequence[AreaStep], show: Show) -> tuple[HandStep, ...]:
+    return tuple(HandStep(step.text, step.filled(show), step.value, step.kind, step.note) for step in steps)
+
+
+def _design_area(stages: Stages, show: Show) -> DesignAreaRecord:
+    candidates, placements = stages.candidates, stages.placements
+    order = sorted(placements, key=lambda one: one.margin)
+    governing = order[0]
+    favourable = max(placements, key=lambda one: one.flow) if len(placements) > 1 else None
+    return DesignAreaRecord(
+        mode=candidates.mode,
+        steps=_area_steps(candidates.steps, show),
+        placements=placements,
+        governing=governing,
+        runner_up=order[1] if len(order) > 1 else None,
+        most_favourable=favourable,
+        tried=len(placements),
+        statement=_search_statement(candidates, order, show),
+    )
+
+
+def _search_statement(candidates: Candidates, order: list[Placement], show: Show) -> str:
+    if candidates.mode == "given" or len(order) < 2:
+        return candidates.statement
+    hardest = max(order, key=lambda one: one.required_pressure)
+    text = (
+        f"{candidates.statement} All {len(order)} placements were solved; {order[0].label} leaves the "
+        f"least margin, {show(order[0].margin, 'pressure')}."
+    )
+    if hardest.required_pressure > order[0].required_pressure and not math.isclose(
+        hardest.required_pressure, order[0].required_pressure, rel_tol=1e-9
+    ):
+        text += (
+            f" {hardest.label} needs more pressure, {show(hardest.required_pressure, 'pressure')}, but "
+            "less flow, at which the supply has more to give."
+        )
+    else:
+        text += " No other placement needs more pressure."
+    return text
