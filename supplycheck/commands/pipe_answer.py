@@ -56,13 +56,6 @@ def _table(rows: list[tuple[str, ...]], gap: str = "  ") -> list[str]:
     return lines
 
 
-def _pressure(question: Question, name: str, value: float) -> tuple[str, ...]:
-    """Return one row of the pressure table: name, pressure, head of the fluid."""
-    units = question.units
-    head = value / question.problem.unit_weight
-    return name, digits(units.from_si(value, "pressure")), digits(units.from_si(head, "length"))
-
-
 def as_text(
     question: Question, result: OnePipeResult, next_size: NextSize | str | None, *, steps: bool
 ) -> str:
@@ -114,18 +107,9 @@ def _pipe_rows(question: Question, result: OnePipeResult) -> list[tuple[str, str
     if result.relative_roughness is not None:
         rows.append(("relative roughness", digits(result.relative_roughness, 3), ""))
     if result.pump_pressure:
-        rows.append(
-            (
-                "power to the fluid",
-                digits(units.from_si(result.fluid_power, "power")),
-                units.symbol("power"),
-            )
-        )
+        rows.append(row("power to the fluid", result.fluid_power, "power"))
     if result.pump_pressure and result.pump_power is not None:
-        rows.append(
-            ("power at the shaft", digits(units.from_si(result.pump_power, "power")), units.symbol("power"))
-        )
-    rows = [(name, value, unit) for name, value, unit in rows]
+        rows.append(row("power at the shaft", result.pump_power, "power"))
     return rows
 
 
@@ -146,31 +130,48 @@ def _factor_note(result: OnePipeResult) -> str:
     return "computed back from the loss" if isinstance(result.problem.law, HazenWilliams) else ""
 
 
-def _pressure_rows(question: Question, result: OnePipeResult) -> list[tuple[str, ...]]:
-    units, problem = question.units, question.problem
-    rows: list[tuple[str, ...]] = [("", units.symbol("pressure"), f"{units.symbol('length')} of the fluid")]
-    if question.start_pressure is not None or question.end_pressure is not None:
-        rows.append(_pressure(question, "pressure at the start", start_pressure(question, result)))
+def _pressure_terms(question: Question, result: OnePipeResult) -> list[tuple[str, float]]:
+    """Return name and pressure [Pa] of every term of the balance, from start to end."""
+    problem = question.problem
+    ends = question.start_pressure is not None or question.end_pressure is not None
+    start = start_pressure(question, result)
+    terms = [("  pressure at the start", start)] if ends else []
     if result.pump_pressure:
-        rows.append(_pressure(question, "+ pump", result.pump_pressure))
-    rows.append(_pressure(question, "− friction in the pipe", result.pipe_loss))
+        terms.append(("+ pump", result.pump_pressure))
+    terms.append(("− friction in the pipe", result.pipe_loss))
     if problem.equivalent_length:
-        rows.append(_pressure(question, "− fittings, by equivalent length", result.fitting_loss))
+        terms.append(("− fittings, by equivalent length", result.fitting_loss))
     if problem.minor_k:
-        rows.append(_pressure(question, "− fittings, by K", result.minor_loss))
+        terms.append(("− fittings, by K", result.minor_loss))
     if problem.rise:
-        name = "− rise" if problem.rise > 0 else "+ fall"
-        rows.append(_pressure(question, name, abs(result.elevation)))
+        terms.append(("− rise" if problem.rise > 0 else "+ fall", abs(result.elevation)))
     if problem.kinetic:
-        name = "− velocity pressure" if problem.kinetic > 0 else "+ velocity pressure recovered"
-        rows.append(_pressure(question, name, abs(result.kinetic)))
-    if question.start_pressure is not None or question.end_pressure is not None:
-        rows.append(
-            _pressure(question, "= pressure at the end", start_pressure(question, result) - result.drop)
-        )
-    else:
-        rows.append(_pressure(question, "= pressure drop from start to end", result.drop))
-    return rows
+        name = "− velocity pressure" if problem.kinetic > 0 else "+ velocity pressure"
+        terms.append((name, abs(result.kinetic)))
+    if ends:
+        return [*terms, ("= pressure at the end", start - result.drop)]
+    return [*terms, ("= pressure drop from start to end", result.drop)]
+
+
+def _pressure_rows(question: Question, result: OnePipeResult) -> list[tuple[str, ...]]:
+    """Return the balance as pressure and as head of the fluid, each column with its own decimals."""
+    units = question.units
+    terms = _pressure_terms(question, result)
+    pressures = _column([units.from_si(value, "pressure") for _, value in terms])
+    weight = question.problem.unit_weight
+    heads = _column([units.from_si(value / weight, "length") for _, value in terms])
+    title = ("", units.symbol("pressure"), f"{units.symbol('length')} of the fluid")
+    return [title, *((name, p, h) for (name, _), p, h in zip(terms, pressures, heads, strict=True))]
+
+
+def _column(numbers: list[float]) -> list[str]:
+    """Return numbers with the decimals that give the largest four significant digits."""
+    largest = max(abs(number) for number in numbers)
+    places = min(max(3 - math.floor(math.log10(largest)), 0), 12) if largest > 0 else 0
+    texts = [f"{number:,.{places}f}" for number in numbers]
+    return [
+        text.lstrip("-") if float(text.replace(",", "")) == 0 else text.replace("-", "−") for text in texts
+    ]
 
 
 def start_pressure(question: Question, result: OnePipeResult) -> float:

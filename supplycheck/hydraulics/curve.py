@@ -103,10 +103,13 @@ def _pchip_slopes(x: FloatArray, y: FloatArray) -> FloatArray:
     if len(d) == 1:
         return np.array([d[0], d[0]])
     slopes = np.zeros_like(x)
-    same = d[:-1] * d[1:] > 0
+    before, after = d[:-1], d[1:]
+    same = np.sign(before) * np.sign(after) > 0
     w1, w2 = 2.0 * h[1:] + h[:-1], h[1:] + 2.0 * h[:-1]
-    mean = (w1 + w2)[same] / (w1[same] / d[:-1][same] + w2[same] / d[1:][same])
-    slopes[1:-1][same] = mean
+    swap = np.abs(before) > np.abs(after)  # divide by the larger slope: the smaller may be next to nothing
+    small, large = np.where(swap, after, before)[same], np.where(swap, before, after)[same]
+    w_small, w_large = np.where(swap, w2, w1)[same], np.where(swap, w1, w2)[same]
+    slopes[1:-1][same] = (w1 + w2)[same] * small / (w_small + w_large * (small / large))
     slopes[0] = _end_slope(h[0], h[1], d[0], d[1])
     slopes[-1] = _end_slope(h[-1], h[-2], d[-1], d[-2])
     return slopes

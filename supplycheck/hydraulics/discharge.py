@@ -101,7 +101,7 @@ def k_factor_of(*, flow: Number, pressure: AnyNumber) -> tuple[Number, Number]:
     """
     q = not_negative("flow", "m³/s", flow)
     root = np.sqrt(positive("pressure", "Pa", pressure))
-    return plain(q / root), spread(1.0 / root, root)
+    return plain(q / root), spread(1.0 / root, q)
 
 
 def pitot_discharge(*, pitot: Number, diameter: AnyNumber, coefficient: AnyNumber) -> tuple[Number, Number]:

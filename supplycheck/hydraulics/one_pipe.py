@@ -20,7 +20,7 @@ from typing import Final, Literal
 from supplycheck.errors import DomainError, NoSolutionError
 from supplycheck.hydraulics.darcy_weisbach import LAMINAR_END, TURBULENT_START, reynolds_number
 from supplycheck.hydraulics.heads import velocity, velocity_pressure
-from supplycheck.hydraulics.numbers import not_negative, positive
+from supplycheck.hydraulics.numbers import not_negative, positive, within
 from supplycheck.hydraulics.pipe_laws import DarcyWeisbach
 from supplycheck.hydraulics.pipe_problem import OnePipe, OnePipeResult, Regime, Step, Unknown
 from supplycheck.hydraulics.pump import power_from_pressure
@@ -59,16 +59,20 @@ def _check(problem: OnePipe) -> None:
     not_negative("loss coefficient", "", problem.minor_k)
     positive("density", "kg/m³", problem.density)
     positive("unit weight", "Pa/m", problem.unit_weight)
-    for name, unit, value in (
-        ("flow", "m³/s", problem.flow),
-        ("bore", "m", problem.bore),
-        ("efficiency", "", problem.efficiency),
-    ):
+    for name, unit, value in (("flow", "m³/s", problem.flow), ("bore", "m", problem.bore)):
         if value is not None:
             positive(name, unit, value)
-    for name, value in (("rise", problem.rise), ("pressure drop", problem.drop)):
-        if value is not None and not math.isfinite(value):
-            raise DomainError(f"{name} must be a finite number; found {value:g}")
+    for name, unit, value in (
+        ("pump pressure", "Pa", problem.pump_pressure),
+        ("pump power", "W", problem.pump_power),
+    ):
+        if value is not None:
+            not_negative(name, unit, value)
+    if problem.efficiency is not None:
+        within("efficiency", "", positive("efficiency", "", problem.efficiency), 0.0, 1.0)
+    for name, number in (("rise", problem.rise), ("pressure drop", problem.drop), ("loss", problem.loss)):
+        if number is not None and not math.isfinite(number):
+            raise DomainError(f"{name} must be a finite number; found {number:g}")
     if isinstance(problem.law, DarcyWeisbach) and problem.viscosity is None:
         raise DomainError("Darcy-Weisbach needs the viscosity of the fluid")
     if problem.pump_power is not None and problem.pump_pressure is not None:

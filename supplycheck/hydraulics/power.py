@@ -40,7 +40,7 @@ def smooth_power(flow: Number, exponent: float, knee: float = KNEE) -> tuple[Num
     """
     q = as_array(flow)
     size = np.abs(q)
-    power = size if exponent == 2.0 else np.power(size, exponent - 1.0)
+    power = size if exponent == 2.0 else np.power(np.maximum(size, knee), exponent - 1.0)
     value = np.multiply(q, power, out=np.empty_like(q))
     slope = np.multiply(exponent, power, out=np.empty_like(q))
     small = size < knee
@@ -48,6 +48,7 @@ def smooth_power(flow: Number, exponent: float, knee: float = KNEE) -> tuple[Num
         bend = (exponent - 1.0) / 2.0
         line = 1.0 - bend
         t = q[small] / knee
+        # at the knee and beyond `power` is exact; below it only these two lines count
         value[small] = knee**exponent * t * (line + bend * t * t)
         slope[small] = knee ** (exponent - 1.0) * (line + 3.0 * bend * t * t)
     return plain(value), plain(slope)
