@@ -134,8 +134,8 @@ def size(context: CheckContext) -> Finding:
 def shape(context: CheckContext) -> Finding:
     """Heads on each line against length over spacing; a line taken whole can give no more."""
     criteria = context.project.criteria
-    if criteria.shape_factor <= 0:
-        return SHAPE.says("not applicable", "No length along the lines is asked.")
+    if context.european or criteria.shape_factor <= 0:
+        return SHAPE.says("not applicable", "1.2√A along the lines is asked by NFPA 13 only.")
     on_line: dict[str, list[str]] = defaultdict(list)
     for node in context.case_heads:
         if node.branch_line is not None:

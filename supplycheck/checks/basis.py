@@ -121,8 +121,12 @@ def full_calculation(context: CheckContext) -> Finding:
 
 
 def assumed(context: CheckContext) -> Finding:
-    """Assumed is what nobody gave; catalogue and inferred values have their source."""
-    keys = tuple(note.key for note in context.project.assumptions if note.origin == "assumed")
+    """Assumed is what nobody gave; catalogue and inferred values have their source, paper has no weight."""
+    keys = tuple(
+        note.key
+        for note in context.project.assumptions
+        if note.origin == "assumed" and not note.key.startswith("project.")
+    )
     if not keys:
         return ASSUMED.says("ok", "No value is assumed.", measured=count(0))
     text = f"{{measured}} assumed: {some(keys)}."

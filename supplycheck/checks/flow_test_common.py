@@ -11,6 +11,7 @@ from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import FlowTest, Outlet
+from supplycheck.supply.margin import age_in_years
 
 NO_TEST: Final = "No flow test feeds this system."
 _NO_READING: Final = "No field reading to check: the values were computed by the utility."
@@ -46,4 +47,4 @@ def last_day(tested: dt.date, months: float) -> dt.date:
 
 def age(first: dt.date, last: dt.date) -> Measure:
     """Return the time between two days as a measure."""
-    return Measure(limits.fraction_of_year((last - first).days), "age")
+    return Measure(age_in_years(first, last), "age")

@@ -33,7 +33,7 @@ DISCHARGE = About(
     "discharge from pressure",
     "reported discharge of every head against K√p of its reported pressure",
     ("ok", "fail", "not applicable"),
-    "orifice law q = K√p (NFPA 13, EN 12845)",
+    "q = K√p; normal pressure where velocity pressure is used (NFPA 13, EN 12845)",
 )
 COVERAGE = About(
     "coverage of the class",
@@ -139,15 +139,15 @@ def density(context: CheckContext) -> Finding:
 
 
 def discharge(context: CheckContext) -> Finding:
-    """Under the normal-pressure method the outlet sees less than the node pressure."""
-    if context.project.criteria.velocity_pressure:
-        return DISCHARGE.says("not applicable", "Discharge follows normal pressure, not node pressure.")
+    """By the normal-pressure method what the solver took off is taken off here too."""
+    taken_off = context.solution.outlet_velocity_pressure
     heads = [node for node in context.case_heads if node.k_factor]
     if not heads:
         return DISCHARGE.says("not applicable", "No head of the area has a K-factor.")
 
     def due(node: Node) -> float:
-        return (node.k_factor or 0.0) * math.sqrt(max(context.pressure(node.tag), 0.0))
+        less = float(taken_off[context.node_rows[node.tag]]) if len(taken_off) else 0.0
+        return (node.k_factor or 0.0) * math.sqrt(max(context.pressure(node.tag) - less, 0.0))
 
     worst = max(heads, key=lambda node: abs(context.outflow(node.tag) - due(node)))
     off = abs(context.outflow(worst.tag) - due(worst)) > limits.ROUND_OFF * max(due(worst), 1e-9)

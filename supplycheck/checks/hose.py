@@ -29,10 +29,16 @@ ONCE = About(
 )
 
 
+def _hose_nodes(context: CheckContext) -> tuple[str, ...]:
+    nodes = context.project.system.nodes
+    return tuple(node.tag for node in nodes if node.kind == "hose" and node.fixed_flow > 0)
+
+
 def amount(context: CheckContext) -> Finding:
     """A zero may be right where hoses use another supply."""
     hose, figures = context.project.hose, context.class_figures
-    total = hose.inside + hose.outside
+    at_nodes = sum(context.nodes[tag].fixed_flow for tag in _hose_nodes(context))
+    total = hose.inside + hose.outside + at_nodes
     measured = flow(total)
     wanted = figures.hose if figures is not None else None
     if wanted is None:
@@ -44,7 +50,7 @@ def amount(context: CheckContext) -> Finding:
         )
     limit = flow(wanted)
     source = figures.source if figures is not None else AMOUNT.source
-    values = {"inside": flow(hose.inside), "outside": flow(hose.outside)}
+    values = {"inside": flow(hose.inside), "outside": flow(hose.outside + at_nodes)}
     text = "Hose {inside} inside, {outside} outside: {measured}; the class asks {limit}."
     if total >= wanted * (1 - limits.ROUND_OFF):
         return AMOUNT.says("ok", text, measured=measured, limit=limit, values=values, source=source)
@@ -99,9 +105,7 @@ def once(context: CheckContext) -> Finding:
     if allowance == 0:
         return ONCE.says("not applicable", "No hose is added.")
     measured, limit = flow(facts.hose_flow), flow(allowance)
-    own = [node.tag for node in context.project.system.nodes if node.kind == "hose" and node.fixed_flow > 0]
-    places = {hose.inside_node, hose.outside_node}
-    doubled = tuple(tag for tag in own if tag not in places)
+    doubled = _hose_nodes(context)
     slack = limits.ROUND_OFF * allowance
     if doubled:
         values = {"own": flow(sum(context.nodes[tag].fixed_flow for tag in doubled))}

@@ -15,7 +15,6 @@ PSI: Final = 0.45359237 * 9.80665 / INCH**2
 BAR: Final = 1e5
 LPM: Final = 1e-3 / 60
 GPM: Final = 231 * INCH**3 / 60
-DAY: Final = 86400.0
 YEAR_DAYS: Final = 365.25
 
 MINIMUM_PRESSURE_NFPA: Final = 7 * PSI
@@ -38,7 +37,9 @@ DROP_NOW, DROP_OLD = 0.10, 0.25
 PITOT_LOW, PITOT_HIGH = 10 * PSI, 30 * PSI
 """NFPA 291 (from memory): preferred readings on 2½ in outlets."""
 
-PUMPER_DIAMETER: Final = 4 * INCH
+PUMPER_DIAMETER: Final = 3.9 * INCH
+"""A 4 in outlet may measure a little less."""
+
 PUMPER_FACTORS: Final = ((2.0, 0.97), (3.0, 0.92), (4.0, 0.89), (5.0, 0.86), (6.0, 0.84), (7.0, 0.83))
 """NFPA 291: factor by pitot in psi, the last one for all above (0.83 also in a published example)."""
 
@@ -76,15 +77,6 @@ the last digit printed, so that a figure met on the nose is never failed for rou
 
 TYPED_LENGTH: Final = 0.005
 """Half of the hundredth of a foot or metre to which lengths and elevations are typed, both ends [m]."""
-
-
-def fraction_of_year(days: float) -> float:
-    """Return ``days`` as years.
-
-    >>> fraction_of_year(365.25)
-    1.0
-    """
-    return days / YEAR_DAYS
 
 
 def published_pumper_factor(pitot: float) -> float | None:

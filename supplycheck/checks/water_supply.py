@@ -6,6 +6,7 @@ from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, pressure, some
 from supplycheck.findings import Finding, Measure, State
+from supplycheck.model import Pipe
 
 RANGE = About(
     "demand within the tested flow",
@@ -144,18 +145,39 @@ def adjustment(context: CheckContext) -> Finding:
 
 
 def no_flow_pressures(context: CheckContext) -> dict[str, float]:
-    """Return the pressure [Pa] at each node without flow; pumps add their churn (upper bound)."""
+    """Return the pressure [Pa] at each node without flow, walked from the point of comparison.
+
+    A pump adds its churn, a pressure-reducing valve holds its setting; shut pipes are not passed.
+    """
     if context.no_flow is not None:
         return dict(context.no_flow)
-    facts, weight = context.comparison, context.project.fluid.unit_weight
-    used = {tag for pipe in context.project.system.pipes for tag in pipe.devices}
-    pumps = [one for tag, one in context.devices.items() if one.kind == "pump" and tag in used]
-    churn = sum(max(one.values, default=0.0) for one in pumps)
-    level = context.nodes[facts.node].elevation
-    return {
-        tag: facts.static_at_compare + churn - weight * (node.elevation - level)
-        for tag, node in context.nodes.items()
-    }
+    weight, found = context.project.fluid.unit_weight, {}
+    joined: dict[str, list[Pipe]] = {tag: [] for tag in context.nodes}
+    for pipe in context.project.system.pipes:
+        if pipe.valve != "closed":
+            joined[pipe.start].append(pipe)
+            joined[pipe.end].append(pipe)
+    found[context.comparison.node] = context.comparison.static_at_compare
+    row = [context.comparison.node]
+    for here in row:
+        for pipe in joined[here]:
+            there = pipe.end if pipe.start == here else pipe.start
+            if there not in found:
+                beyond = _past_devices(context, pipe, found[here], onward=pipe.start == here)
+                rise = context.nodes[there].elevation - context.nodes[here].elevation
+                found[there] = beyond - weight * rise
+                row.append(there)
+    return found
+
+
+def _past_devices(context: CheckContext, pipe: Pipe, value: float, *, onward: bool) -> float:
+    for tag in pipe.devices if onward else reversed(pipe.devices):
+        device = context.devices[tag]
+        if device.kind == "pump":
+            value += max(device.values, default=0.0) * (1 if onward else -1)
+        elif device.kind == "pressure-reducing valve" and device.setting is not None and onward:
+            value = min(value, device.setting)
+    return value
 
 
 def no_flow(context: CheckContext) -> Finding:
@@ -191,15 +213,15 @@ def no_flow(context: CheckContext) -> Finding:
 
 def sprinkler_maximum(context: CheckContext) -> Finding:
     """Only types that state a maximum of their own."""
+    standing = no_flow_pressures(context)
     most = {tag: one.maximum_pressure for tag, one in context.sprinklers.items()}
     heads = [
         (node.tag, limit)
         for node in context.all_heads
-        if node.sprinkler and (limit := most.get(node.sprinkler)) is not None
+        if node.sprinkler and (limit := most.get(node.sprinkler)) is not None and node.tag in standing
     ]
     if not heads:
         return SPRINKLER_MAXIMUM.says("not applicable", "No sprinkler type states a maximum of its own.")
-    standing = no_flow_pressures(context)
     tag, limit = max(heads, key=lambda one: standing[one[0]] / one[1])
     over = tuple(one for one, most_ in heads if standing[one] > most_ * (1 + limits.ROUND_OFF))
     state: State = "fail" if over else "ok"

@@ -11,6 +11,7 @@ import re
 from dataclasses import dataclass, field, replace
 from typing import Any
 
+import numpy as np
 import pytest
 from check_factory import DRY, EN, QUICK, TEE, K, array_with, built
 
@@ -161,10 +162,12 @@ SUPPLY = [
         175 * PSI,
         ("S", "B"),
     ),
-    Case("pressure without flow", "fail", WITH_PUMP, 200 * PSI, 175 * PSI),
+    Case("pressure without flow", "fail", WITH_PUMP, (80 + 120 - 20 * 0.433) * PSI, 175 * PSI),
     Case(
         "pressure without flow", "ok", WITH_PUMP | {"no_flow": {"S": 80 * PSI, "H1": 170 * PSI}}, 170 * PSI
     ),
+    Case("pressure without flow", "ok", WITH_REDUCER | {"project.system.nodes.S.elevation": 50 * FOOT}),
+    Case("maximum sprinkler pressure", "ok", WITH_REDUCER, (50 - 20 * 0.433) * PSI),
     Case("maximum sprinkler pressure", "ok", {}, (80 - 20 * 0.433) * PSI, 175 * PSI),
     Case("maximum sprinkler pressure", "fail", {"project.system.sprinklers.A.maximum_pressure": 70 * PSI}),
     Case(
@@ -220,12 +223,12 @@ SUPPLY = [
 ]
 
 TESTS = [
-    Case("test age", "ok", {}, 172 / 365.25, 1.0),
+    Case("test age", "ok", {}, 172 / 365, 1.0),
     Case("test age", "ok", {"project.supply.submittal_date": dt.date(2027, 6, 1)}),
-    Case("test age", "fail", {"project.supply.submittal_date": dt.date(2027, 6, 2)}, 366 / 365.25, 1.0),
+    Case("test age", "fail", {"project.supply.submittal_date": dt.date(2027, 6, 2)}, 1 + 1 / 366, 1.0),
     Case("test age", "fail", {"project.supply.submittal_date": dt.date(2026, 5, 31)}),
     Case("test age", "missing", {"project.supply.submittal_date": None}),
-    Case("test age", "ask authority", {"project.supply.maximum_test_age_months": None}, 172 / 365.25),
+    Case("test age", "ask authority", {"project.supply.maximum_test_age_months": None}, 172 / 365),
     Case("test age", "not applicable", NO_TEST),
     Case("pressure drop of the test", "ok", {}, 0.275, None, ("T-1",)),
     Case("pressure drop of the test", "ok", residual(60, 300), 0.25),
@@ -261,7 +264,7 @@ TESTS = [
     Case("two hydrants", "fail", {TEST0 + "flow_hydrant": "a 12 "}, tags=("T-1",)),
     Case("two hydrants", "missing", {TEST0 + "flow_hydrant": ""}),
     Case("two hydrants", "not applicable", MODEL),
-    Case("gauge calibration", "ok", {}, 120 / 365.25, 1.0),
+    Case("gauge calibration", "ok", {}, 120 / 365, 1.0),
     Case("gauge calibration", "ask authority", {TEST0 + "gauge_calibrated": dt.date(2025, 5, 31)}),
     Case("gauge calibration", "ask authority", {TEST0 + "gauge_calibrated": dt.date(2026, 6, 2)}),
     Case("gauge calibration", "missing", {TEST0 + "gauge_calibrated": None}),
@@ -312,7 +315,7 @@ AREA = [
     Case("shape of the design area", "fail", {"case.heads": ("H1", "H2", "H3", "H11", "H12", "H13")}),
     Case("shape of the design area", "missing", NO_PLACE),
     Case("shape of the design area", "missing", NO_LINES),
-    Case("shape of the design area", "not applicable", {"project.criteria.shape_factor": 0.0}),
+    Case("shape of the design area", "not applicable", EN),
     Case("most demanding area", "ok", {}, 9),
     Case("most demanding area", "ask authority", {"searched": False, "placements_tried": 1}),
     Case("most demanding area", "ask authority", {"placements_tried": 1}),
@@ -375,6 +378,13 @@ AREA = [
     Case("quick-response reduction", "fail", QUICK_TAKEN | EN),
 ]
 
+NORMAL_PRESSURE = {
+    "solution": lambda old: replace(
+        old,
+        pressure=old.pressure + 0.5 * PSI,
+        outlet_velocity_pressure=np.full(len(old.pressure), 0.5 * PSI),
+    )
+}
 LOW_H5 = {"solution": lambda old: array_with(old, "pressure", "H5", 6.9 * PSI)}
 HEADS = [
     Case("minimum pressure at heads", "ok", {}, (24 / 5.6) ** 2 * PSI, 7 * PSI, ("H7",)),
@@ -431,7 +441,8 @@ HEADS = [
     Case("density at every head", "missing", {"project.system.nodes.H1.area": None}, tags=("H1",)),
     Case("discharge from pressure", "ok"),
     Case("discharge from pressure", "fail", {"project.system.nodes.H4.k_factor": K * 1.01}, tags=("H4",)),
-    Case("discharge from pressure", "not applicable", {"project.criteria.velocity_pressure": True}),
+    Case("discharge from pressure", "ok", NORMAL_PRESSURE),
+    Case("discharge from pressure", "not applicable", {"project.system.nodes.*.k_factor": None}),
     Case("coverage of the class", "ok", {}, 120 * FOOT**2, 130 * FOOT**2),
     Case(
         "coverage of the class",
@@ -490,6 +501,16 @@ HOSE = [
     Case("hose allowance", "ok", {}, 250 * GPM, 250 * GPM),
     Case("hose allowance", "fail", {"project.hose.outside": 100 * GPM}, 100 * GPM, 250 * GPM),
     Case("hose allowance", "ask authority", {"project.hose.outside": 0.0}, 0.0, 250 * GPM),
+    Case(
+        "hose allowance",
+        "ok",
+        {
+            "project.hose.outside": 0.0,
+            "project.system.nodes.B.kind": "hose",
+            "project.system.nodes.B.fixed_flow": 250 * GPM,
+        },
+        250 * GPM,
+    ),
     Case("hose allowance", "missing", {"class_figures": None}),
     Case("hose allowance", "not applicable", EN | {"class_figures": None}),
     Case("where hose joins", "ok", {}, tags=("S",)),
@@ -506,6 +527,14 @@ HOSE = [
         "fail",
         {"project.system.nodes.B.kind": "hose", "project.system.nodes.B.fixed_flow": 250 * GPM},
         tags=("B",),
+    ),
+    Case(
+        "hose counted once",
+        "ok",
+        {
+            "project.system.nodes.B.fixed_flow": 100 * GPM,
+            "comparison.demand_flow": lambda old: old + 100 * GPM,
+        },
     ),
     Case("hose counted once", "fail", {"comparison.sprinkler_flow": 300 * GPM}),
     Case("hose counted once", "not applicable", {"project.hose.outside": 0.0}),
