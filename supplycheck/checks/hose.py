@@ -118,12 +118,15 @@ def once(context: CheckContext) -> Finding:
         text = "The demand holds {measured} of hose; the allowance is {limit}."
         do = "Count the allowance once, no more and no less."
         return ONCE.says("fail", text, measured=measured, limit=limit, remedy=do)
-    if (
-        abs(facts.demand_flow - facts.sprinkler_flow - facts.hose_flow)
-        > limits.ROUND_OFF * facts.demand_flow
-    ):
-        values = {"total": flow(facts.demand_flow), "heads": flow(facts.sprinkler_flow)}
-        text = "Heads {heads} and hose {measured} do not add up to the demand of {total}."
+    other = sum(node.fixed_flow for node in context.project.system.nodes)
+    added = facts.sprinkler_flow + facts.hose_flow + other
+    if abs(facts.demand_flow - added) > limits.ROUND_OFF * facts.demand_flow:
+        values = {
+            "total": flow(facts.demand_flow),
+            "heads": flow(facts.sprinkler_flow),
+            "other": flow(other),
+        }
+        text = "Heads {heads}, hose {measured} and other {other} do not add up to the demand of {total}."
         do = "Find the flow that is neither head nor hose."
         return ONCE.says("fail", text, measured=measured, limit=limit, values=values, remedy=do)
     return ONCE.says("ok", "The demand holds {measured} of hose, once.", measured=measured, limit=limit)
