@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections import Counter
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from operator import itemgetter
 from typing import TypeVar
 
@@ -192,8 +192,10 @@ def _searched(project: Project, heads: Heads, cap: int) -> Candidates:
     found = search(heads, lines, rule, european=european, cap=cap)
     name = Labels(heads.tags)
     texts = unique([name.of(placement) for placement in found.placements])
+    side_of = {row: number for number, line in enumerate(lines.sides) for row in line.heads}
     cases = tuple(
-        _placed(heads, placement, text) for placement, text in zip(found.placements, texts, strict=True)
+        _placed(heads, side_of, placement, text)
+        for placement, text in zip(found.placements, texts, strict=True)
     )
     steps = area_steps(criteria) + shape_steps(criteria, rule.length, heads, lines)
     whole = sum(bool(placement.note) for placement in found.placements)
@@ -201,6 +203,10 @@ def _searched(project: Project, heads: Heads, cap: int) -> Candidates:
     return Candidates(cases, tuple(steps), statement, "search", found.complete)
 
 
-def _placed(heads: Heads, placement: Placement, text: str) -> DemandCase:
+def _placed(heads: Heads, side_of: Mapping[int, int], placement: Placement, text: str) -> DemandCase:
+    rows, note = placement.heads, placement.note
+    if placement.extra:
+        counts = Counter(side_of[row] for row in rows)
+        return _case(heads, rows, text, len(counts), max(counts.values()), note)
     along = max(row.high - row.low for row in placement.rows)
-    return _case(heads, placement.heads, text, len(placement.rows), along, placement.note)
+    return _case(heads, rows, text, len(placement.rows), along, note)

@@ -14,6 +14,7 @@ side of a main, and areas as near square as can be for the most favourable one, 
 
 from __future__ import annotations
 
+import heapq
 import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field, replace
@@ -21,7 +22,7 @@ from typing import Final, NamedTuple
 
 import numpy as np
 
-from supplycheck.demand.heads import Heads
+from supplycheck.demand.heads import FloatArray, Heads
 from supplycheck.demand.lines import SLOPE, STEP_HEIGHT, STOREY, Line, Lines, same_level
 from supplycheck.demand.runs import ROUND, Facing, IntArray, Runs, facing, minimal_runs, runs_of
 
@@ -253,56 +254,88 @@ def _spanning(lines: Lines, rule: Rule, everywhere: bool) -> tuple[Line, ...]:
     return (*chosen, *(line for i, line in enumerate(lines.sides) if i not in taken))
 
 
+def _can_grow(space: _Field, own: int) -> bool:
+    """Say whether a line with all that lies beside it on one hand could make up the area."""
+    for sign in (1, -1):
+        lines = [space.lines[other] for group in space.rows_ahead(own, sign) for other in group]
+        lines.append(space.lines[own])
+        if space.rule.reached(sum(line.sums[-1] for line in lines), sum(len(line) for line in lines)):
+            return True
+    return False
+
+
 def _lengthen(lines: Sequence[Line], rule: Rule, bag: _Bag, most: int) -> None:
     """Let runs grow along the lines for heads that no placement holds: too few lines lie side by side."""
-    shares = [int(np.ceil(rule.length / max(float(np.median(line.share)), 1e-6))) for line in lines]
-    run = min(most, max(1, min(shares, default=1)))
+    space = _Field(lines, rule, most)
+    starts = [
+        i for i, line in enumerate(lines) if not bag.covered.issuperset(line.heads) and _can_grow(space, i)
+    ]
+    shares = [rule.length / max(float(np.median(lines[i].share)), 1e-6) for i in starts]
+    run = min(most, max(1, math.ceil(min(shares, default=0.0))))
     while run < most:
-        starts = [i for i, line in enumerate(lines) if not bag.covered.issuperset(line.heads)]
+        starts = [i for i in starts if not bag.covered.issuperset(lines[i].heads)]
         if not starts:
             return
         run += 1
         _fill(_Field(lines, replace(rule, run=run), most), bag, starts)
 
 
-def _gather_near(heads: Heads, seed: list[int], rule: Rule) -> list[int]:
-    """Return the heads nearest to ``seed`` that make up the area, those that touch it on its level."""
-    xy = np.array([(node.x, node.y) for node in heads.nodes], dtype=np.float64)
-    z = np.array([node.elevation for node in heads.nodes])
-    reach = TOUCH * np.sqrt(heads.area)
-    near = np.full(len(heads), np.inf)
-    chosen: list[int] = []
-    inside = np.zeros(len(heads), dtype=bool)
+@dataclass(frozen=True, slots=True, eq=False)
+class _Ground:
+    """Where all heads stand: plan [m], elevation [m], area [m²], how far each touches [m]."""
+
+    xy: FloatArray
+    z: FloatArray
+    area: FloatArray
+    reach: FloatArray
+
+    def near(self, row: int) -> tuple[IntArray, FloatArray]:
+        """Return the heads that touch head ``row`` on its level, and their distances [m]."""
+        apart = np.hypot(*(self.xy - self.xy[row]).T)
+        level = (
+            np.abs(self.z - self.z[row])
+            <= np.maximum(STEP_HEIGHT, np.minimum(SLOPE * apart, STOREY)) + 1e-9
+        )
+        rows = np.flatnonzero(level & (apart <= (self.reach + self.reach[row]) / 2))
+        return rows, apart[rows]
+
+
+def _gather_near(ground: _Ground, seed: Sequence[int], rule: Rule) -> list[int]:
+    """Return ``seed`` and the nearest heads that make up the area, each touching another on its level."""
+    chosen: dict[int, None] = {}
     area = 0.0
-    waiting = list(seed)
-    while True:
-        row = waiting.pop(0) if waiting else int(np.argmin(np.where(inside, np.inf, near)))
-        if inside[row] or (row not in seed and not math.isfinite(near[row])):
-            return chosen
-        chosen.append(row)
-        inside[row] = True
-        area += float(heads.area[row])
-        if not waiting and rule.reached(area, len(chosen)):
-            return chosen
-        apart = np.hypot(*(xy - xy[row]).T)
-        level = np.abs(z - z[row]) <= np.maximum(STEP_HEIGHT, np.minimum(SLOPE * apart, STOREY)) + 1e-9
-        near = np.minimum(near, np.where(level & (apart <= (reach + reach[row]) / 2), apart, np.inf))
+    waiting = [(0.0, row) for row in seed]
+    heapq.heapify(waiting)
+    while waiting:
+        apart, row = heapq.heappop(waiting)
+        if row in chosen:
+            continue
+        if apart > 0 and rule.reached(area, len(chosen)):
+            break
+        chosen[row] = None
+        area += float(ground.area[row])
+        rows, distances = ground.near(row)
+        for other, distance in zip(rows.tolist(), distances.tolist(), strict=True):
+            if other not in chosen:
+                heapq.heappush(waiting, (max(distance, 1e-9), other))
+    return list(chosen)
 
 
 def _leftovers(heads: Heads, lines: Lines, rule: Rule, bag: _Bag) -> None:
     """Give the heads that still stand in no placement one made up with the heads nearest to them."""
+    xy = np.array([(node.x, node.y) for node in heads.nodes], dtype=np.float64)
+    z = np.array([node.elevation for node in heads.nodes], dtype=np.float64)
+    ground = _Ground(xy, z, heads.area, TOUCH * np.sqrt(heads.area))
     for line in lines.sides:
-        seed = [row for row in line.heads if row not in bag.covered]
-        if not seed:
+        missing = [i for i, row in enumerate(line.heads) if row not in bag.covered]
+        if not missing:
             continue
-        chosen = _gather_near(heads, seed, rule)
-        low, high = line.heads.index(seed[0]), line.heads.index(seed[-1]) + 1
-        extra = tuple(row for row in chosen if row not in line.heads[low:high])
-        rows = (Row(line, low, high),)
-        members = dict.fromkeys((*line.heads[low:high], *extra))
-        short = not rule.reached(float(heads.area[list(members)].sum()), len(members))
+        own = Row(line, missing[0], missing[-1] + 1)
+        members = _gather_near(ground, line.heads[own.low : own.high], rule)
+        extra = tuple(members[own.high - own.low :])
+        short = not rule.reached(float(heads.area[members].sum()), len(members))
         note = "area smaller than the design area: all heads" if short else ""
-        bag.put(Placement(tuple(members), rows, extra, note))
+        bag.put(Placement(tuple(members), (own,), extra, note))
 
 
 def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int = CAP) -> Found:

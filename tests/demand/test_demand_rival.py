@@ -41,8 +41,8 @@ def brute(rows: int, columns: int, area: float) -> set[frozenset[tuple[int, int]
     return {frozenset(chosen) for chosen in subsets if is_placement(chosen, columns, along)}
 
 
-def made(built, area: float) -> set[frozenset[str]]:
-    found = demand_cases(project(built, criteria(base_area=area)))
+def made(built, area: float, standard: str = "NFPA 13") -> set[frozenset[str]]:
+    found = demand_cases(project(built, criteria(base_area=area, standard=standard)))
     sets = {frozenset(case.heads) for case in found.cases}
     assert len(sets) == len(found.cases)
     return sets
