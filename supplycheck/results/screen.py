@@ -92,7 +92,7 @@ def _wrapped(label: str, text: str, most: int) -> list[str]:
 
 
 def _list(label: str, texts: list[str], room: int) -> list[str]:
-    """Return ``texts`` in at most ``room`` lines; where that is too little the last line counts the rest."""
+    """Return ``texts`` in at most ``room`` lines; the last line counts what did not fit."""
     for most in (2, 1):
         rows = [line for text in texts for line in _wrapped(label, text, most)]
         if len(rows) <= room:

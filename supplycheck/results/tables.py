@@ -15,7 +15,7 @@ from typing import Any, Final
 import pandas as pd
 
 from supplycheck.findings import Finding
-from supplycheck.results.display import finding_text, in_order, measure_text, remedy_text
+from supplycheck.results.display import finding_text, in_order, measure_text, remedy_text, visible
 from supplycheck.results.json import Plain
 from supplycheck.results.records import NodeRow, PathStep, PipeRow, Placement, Result, ScenarioRow
 from supplycheck.units import UNIT_SETS, UnitSet
@@ -218,8 +218,11 @@ def disarmed(text: str) -> str:
 
 
 def csv_text(frame: pd.DataFrame) -> str:
-    """Return ``frame`` as CSV with a header row and ``\\n`` line ends; empty where there is no value."""
-    safe = frame.map(lambda cell: disarmed(cell) if isinstance(cell, str) else cell)
+    """Return ``frame`` as CSV with a header row and ``\\n`` line ends; empty where there is no value.
+
+    Control characters in texts are written out, so that a row is always one line.
+    """
+    safe = frame.map(lambda cell: disarmed(visible(cell)) if isinstance(cell, str) else cell)
     return safe.to_csv(index=False, lineterminator="\n")
 
 
