@@ -156,6 +156,10 @@ def test_en_classes(
         assert dry == 1.25 * wet, "dry areas of the table are a quarter larger"
     assert row.minimum_pressure == pytest.approx(bar * 1e5)
     assert row.maximum_coverage == coverage
+    # spacing and duration from memory of EN 12845: 4.6, 4.0, 3.7 m; 30, 60, 90 min
+    spacing, minutes = {"LH": (4.6, 30), "OH": (4.0, 60), "HH": (3.7, 90)}[name[:2]]
+    assert row.maximum_spacing == spacing
+    assert row.duration_min == row.duration_max == minutes * 60
     assert row.hose_outside is None
 
 
