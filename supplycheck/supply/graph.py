@@ -60,7 +60,9 @@ def curve_points(
     """Return the graph of ``comparison``: supply as measured and as compared, demand, marked points.
 
     The supply lines are those of the principal source, carried to the point of comparison with the losses
-    of the demand solution; test points are carried in height only, as they were read with the system shut.
+    of the demand solution; where pumps stand on the way, the supply is shown without them, then the pumps
+    by themselves, then both together as far as the curves go. Test points are carried in height only, as
+    they were read with the system shut.
     """
     supply = next(one for one in curves if one.node == comparison.principal)
     share = comparison.main_source
@@ -78,14 +80,27 @@ def _reach(supply: NodeSupply, flow: float) -> float:
 
 
 def _supply_lines(supply: NodeSupply, path: Route, reach: float) -> list[CurveLine]:
+    alone = path.without_pumps if path.pumps else path
     if supply.tank is not None:
-        return [_line(f"tank {supply.tank.tag}", "tank", supply.curve, path, reach)]
-    lines = [_line(f"test {one.name}", "measured", one, path, reach) for one in supply.measured]
-    if len(supply.measured) > 1:
-        lines.append(_line("low-supply curve", "measured", supply.unadjusted, path, reach))
-    if len(supply.stages) > 1:
-        lines.append(_line("adjusted curve", "adjusted", supply.curve, path, reach))
+        lines = [_line(f"tank {supply.tank.tag}", "tank", supply.curve, alone, reach)]
+    else:
+        lines = [_line(f"test {one.name}", "measured", one, alone, reach) for one in supply.measured]
+        if len(supply.measured) > 1:
+            lines.append(_line("low-supply curve", "measured", supply.unadjusted, alone, reach))
+        if len(supply.stages) > 1:
+            lines.append(_line("adjusted curve", "adjusted", supply.curve, alone, reach))
+    if path.pumps:
+        end = min(reach, path.largest_flow)
+        lines.append(_pump_line(path, end))
+        lines.append(_line("supply and pump", "combined", supply.curve, path, end))
     return lines
+
+
+def _pump_line(path: Route, reach: float) -> CurveLine:
+    """Return what the pumps on the route add at each flow of the source."""
+    flows = tuple(reach * index / _SAMPLES for index in range(_SAMPLES + 1))
+    gains = tuple(path.without_pumps.loss_at(flow) - path.loss_at(flow) for flow in flows)
+    return CurveLine("pump", "pump", flows, gains)
 
 
 def _line(name: str, style: LineStyle, curve: SupplyCurve, path: Route, reach: float) -> CurveLine:

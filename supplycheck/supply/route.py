@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+import math
 from collections import deque
 from collections.abc import Collection, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from supplycheck.errors import DomainError
 from supplycheck.hydraulics import Curve
@@ -40,6 +41,24 @@ class Route:
         share = flow / self.flow if self.flow > 0.0 else 0.0
         devices = sum(sign * float(curve.carried_on(own * share)[0]) for curve, own, sign in self.curves)
         return self.elevation + self.friction * float(share**self.exponent) + self.fixed + devices
+
+    @property
+    def pumps(self) -> tuple[Curve, ...]:
+        """The pressure curves of the pumps on the route."""
+        return tuple(curve for curve, _, sign in self.curves if sign < 0)
+
+    @property
+    def without_pumps(self) -> Route:
+        """The same route as if its pumps gave nothing."""
+        gains = sum(float(curve.carried_on(own)[0]) for curve, own, sign in self.curves if sign < 0)
+        kept = tuple(entry for entry in self.curves if entry[2] > 0)
+        return replace(self, curves=kept, device=self.device + gains)
+
+    @property
+    def largest_flow(self) -> float:
+        """The source flow [m³/s] at which the first of its devices is past its curve."""
+        ends = [curve.flows[-1] / own * self.flow for curve, own, _ in self.curves]
+        return min(ends, default=math.inf)
 
     def within_devices(self, flow: float) -> bool:
         """Return whether every device on the route is given up to its share of ``flow`` [m³/s]."""

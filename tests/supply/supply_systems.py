@@ -103,8 +103,10 @@ def friction(flow: float, length: float, bore: float, c: float) -> float:
     return 4.52 * flow**1.85 / (c**1.85 * bore**4.87) * length * PSI
 
 
-def solve(chain: Chain) -> tuple[Project, Solution, tuple[NodeSupply, ...]]:
-    """Return project, walked-back solution and supply curves."""
+def solve(
+    chain: Chain, device_gain: float | None = None
+) -> tuple[Project, Solution, tuple[NodeSupply, ...]]:
+    """Return project, walked-back solution and supply curves; ``device_gain`` [Pa] where it is a pump."""
     project = project_of(chain)
     z = _elevations(chain)
     head, inside = chain.head_flow, chain.hose_inside
@@ -112,7 +114,7 @@ def solve(chain: Chain) -> tuple[Project, Solution, tuple[NodeSupply, ...]]:
     at_s = chain.hose_outside - at_b
     through_u = head + inside + at_b
     friction_u, friction_r = friction(through_u, 200, 6.16, 140), friction(head, 60, 4.026, 120)
-    device = 9 * PSI * through_u / 500
+    device = 9 * PSI * through_u / 500 if device_gain is None else -device_gain
     p_h = chain.head_pressure * PSI
     p_b = p_h + friction_r + UNIT_WEIGHT * (z["H"] - z["B"])
     p_s = p_b + friction_u + device + UNIT_WEIGHT * (z["B"] - z["S"])

@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 from supply_systems import UNIT_WEIGHT, Chain, flow_test, friction, solve
 
 from supplycheck.errors import DomainError
+from supplycheck.hydraulics import Curve
 from supplycheck.model import Adjustment, Device, MarginRule
 from supplycheck.supply import Comparison, compare, curve_points, hose_loads
 from supplycheck.units import FOOT, GPM, PSI, US
@@ -212,6 +213,32 @@ def test_graph_points_lie_on_their_lines() -> None:
     # At no flow the demand line starts at the height of the governing head above B, 21 ft.
     assert demand.pressures[0] == pytest.approx(UNIT_WEIGHT * 21 * FOOT)
     assert graph.lines[0].extrapolated_from == pytest.approx(956 * GPM)
+
+
+def test_a_pump_on_the_way_shows_as_supply_pump_and_both() -> None:
+    pump = Device(
+        "backflow", "pump", (0.0, 500 * GPM, 750 * GPM), (70 * PSI, 50 * PSI, 32.5 * PSI), "maker"
+    )
+    chain = Chain(compare_at="B", device=pump)
+    project, solution, curves = solve(
+        chain, device_gain=float(Curve(pump.flows, pump.values).at(260 * GPM)[0])
+    )
+    comparison = compare(project, solution, curves)
+    graph = curve_points(project, solution, curves, comparison)
+    assert [line.style for line in graph.lines] == ["measured", "pump", "combined", "demand"]
+    measured, gains, combined = graph.lines[:3]
+    # The pump ends at 750 gpm through it, when 260 of 510 gpm pass.
+    assert combined.flows[-1] == pytest.approx(min(750 / 260 * 510, 1.1 * 956) * GPM)
+    assert gains.pressures[0] == pytest.approx(70 * PSI)
+    assert combined.pressures[0] == pytest.approx(measured.pressures[0] + gains.pressures[0])
+    height = UNIT_WEIGHT * 6 * FOOT
+    assert comparison.static == pytest.approx((82 + 70) * PSI + UNIT_WEIGHT * 8 * FOOT - height)
+    available = (
+        (82 - 28 * (510 / 956) ** 1.85) * PSI
+        + UNIT_WEIGHT * 8 * FOOT
+        - comparison.carried.route.loss_at(510 * GPM)
+    )
+    assert comparison.available_pressure == pytest.approx(available)
 
 
 def test_only_a_demand_solution_can_be_compared() -> None:

@@ -107,8 +107,8 @@ def test_unlike_pumps_in_parallel_add_flows_at_one_pressure(speed: float, share:
         return float(brentq(lambda q: float(curve.at(q)[0]) - pressure, 0.0, curve.flows[-1], xtol=1e-15))
 
     # Interpolated between 48 flows of each pump; beside the kink where the slower one begins to give, the
-    # smooth curve through the points differs most. 0.5 % of the largest flow is a tenth of a gauge reading.
-    assert flow == pytest.approx(flow_of(PUMP) + flow_of(slow), abs=5e-3 * both.flows[-1])
+    # smooth curve through the points differs most, a quarter of a per cent of the largest flow.
+    assert flow == pytest.approx(flow_of(PUMP) + flow_of(slow), abs=3e-3 * both.flows[-1])
 
 
 def test_unlike_pumps_in_series() -> None:
