@@ -19,7 +19,7 @@ A number without a unit is in the unit set of --units; any number may carry its 
 supplycheck pipe --flow 100 --diameter 2.067 --length 50 --c-factor 120
 supplycheck pipe --flow "6 L/s" --diameter "50 mm" --length "60 m" --roughness "0.002 mm" \\
     --temperature "15 °C" --units metric
-supplycheck pipe --flow 250 --loss 10 --length 200 --c-factor 120 --material "steel schedule 40"
+supplycheck pipe --flow 250 --loss 10 --length 200 --material "steel schedule 40" --system wet
 
 Exit codes: 0 solved, 2 wrong usage, 4 no solution.
 """
@@ -36,6 +36,7 @@ _OPTIONS = (
     _option("--diameter", "Inside diameter (in, mm)."),
     _option("--material", "Kind of pipe in the catalogue.", "TEXT"),
     _option("--size", "Nominal size of that material, instead of --diameter.", "TEXT"),
+    _option("--system", "Kind of system (wet, dry …), for C from the catalogue.", "TEXT"),
     _option("--loss", "Friction and minor loss together (psi, bar; or a head)."),
     _option("--start-pressure", "Gauge pressure at the start (psi, bar)."),
     _option("--end-pressure", "Gauge pressure at the end (psi, bar)."),

@@ -69,6 +69,7 @@ def as_text(
     if steps:
         lines += ["", *_step_lines(question, result)]
     lines += ["", *(f"Assumed: {text}" for text in question.assumptions)]
+    lines += [f"Source: {text}" for text in question.sources]
     lines += [f"Remark: {text}" for text in result.remarks]
     return "\n".join(lines).rstrip()
 
@@ -183,13 +184,14 @@ def start_pressure(question: Question, result: OnePipeResult) -> float:
 
 def _next_lines(question: Question, size: NextSize | str) -> list[str]:
     if isinstance(size, str):
-        return [f"Next larger size: {size}"]
+        return [f"Next larger size: none; {size}"]
     units = question.units
     bore = _quantity(units, size.bore, "size")
     return [
-        f"Next larger size: {size.nominal} {size.material}, {bore} ({size.source})",
+        f"Next larger size: {size.nominal} {size.material}, inside diameter {bore}",
         f"  there: loss {_quantity(units, size.result.loss, 'pressure')}, "
         f"velocity {_quantity(units, size.result.velocity, 'velocity')}",
+        f"  source: {size.source}",
     ]
 
 
@@ -277,6 +279,7 @@ def as_json(question: Question, result: OnePipeResult, next_size: NextSize | str
             for step in result.steps
         ],
         "assumptions": list(question.assumptions),
+        "sources": list(question.sources),
         "remarks": list(result.remarks),
     }
     return json.dumps(answer, indent=2, ensure_ascii=False)

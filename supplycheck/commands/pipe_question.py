@@ -21,11 +21,16 @@ from supplycheck.hydraulics import (
     water_viscosity,
 )
 from supplycheck.model import HEAD_FORM, HW_METRIC, HW_US
-from supplycheck.project.quantity import NumberFault, Sign, read_number
+from supplycheck.project.quantity import NumberError, Sign, read_number
 from supplycheck.units import BAR, FOOT, GRAVITY, PSI, UNIT_SETS, UnitSet
 
 _FORMS: Final = {"us": HW_US, "metric": HW_METRIC, "head": HEAD_FORM}
 _COLD: Final = 288.15
+_COEFFICIENTS: Final = {
+    "c_factor": "hazen-williams",
+    "roughness": "darcy-weisbach",
+    "friction_factor": "darcy-weisbach",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,6 +47,7 @@ class Question:
     material: str | None
     size_name: str
     assumptions: tuple[str, ...]
+    sources: tuple[str, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,7 +78,7 @@ class _Options:
             return None
         try:
             return read_number(text, kind, sign).si(self.units)
-        except NumberFault as fault:
+        except NumberError as fault:
             raise _bad(name, text, fault) from None
 
     def head(self, name: str, bare: str, weight: float) -> float | None:
@@ -83,15 +89,15 @@ class _Options:
         other = "length" if bare == "pressure" else "pressure"
         try:
             value, kind = read_number(text, bare).si(self.units), bare
-        except NumberFault as fault:
+        except NumberError as fault:
             try:
                 value, kind = read_number(text, other).si(self.units), other
-            except NumberFault:
+            except NumberError:
                 raise _bad(name, text, fault) from None
         return value if kind == "pressure" else value * weight
 
 
-def _bad(name: str, text: str, fault: NumberFault) -> click.BadParameter:
+def _bad(name: str, text: str, fault: NumberError) -> click.BadParameter:
     remedy = f"; {fault.remedy}" if fault.remedy else ""
     message = f"{text!r} {fault.problem}; allowed: {fault.allowed}{remedy}"
     return click.BadParameter(message, param_hint="--" + name.replace("_", "-"))
@@ -100,11 +106,11 @@ def _bad(name: str, text: str, fault: NumberFault) -> click.BadParameter:
 def ask(given: Mapping[str, Any]) -> Question:
     """Return the question that the options put; :class:`click.UsageError` where they do not fit."""
     options = _Options(given, UNIT_SETS[given["units"]])
-    law, law_name = _law(options)
+    law, law_name, origins = _law(options)
     density, viscosity, fluid_name, assumptions = _fluid(options, law)
     weight, weight_name = _unit_weight(options, law, density)
     start, end = _ends(options)
-    bore, size_name = _bore(options)
+    bore, size_name, bore_origin = _bore(options)
     if options.has("pump_power") and not options.has("efficiency"):
         raise click.UsageError(
             "--pump-power is the power at the shaft: give --efficiency too "
@@ -130,48 +136,72 @@ def ask(given: Mapping[str, Any]) -> Question:
         efficiency=_efficiency(options),
     )
     _check_ends(problem, start, end)
-    units = options.units
     return Question(
-        problem,
-        units,
-        start,
-        end,
-        law_name,
-        fluid_name,
-        weight_name,
-        given["material"],
-        size_name,
-        assumptions,
+        problem=problem,
+        units=options.units,
+        start_pressure=start,
+        end_pressure=end,
+        law_name=law_name,
+        fluid_name=fluid_name,
+        weight_name=weight_name,
+        material=given["material"],
+        size_name=size_name,
+        assumptions=assumptions,
+        sources=origins + bore_origin,
     )
 
 
-def _law(options: _Options) -> tuple[PipeLaw, str]:
-    """Return the friction law that the options name and its name for the reader."""
-    given = [name for name in ("c_factor", "roughness", "friction_factor") if options.has(name)]
-    if len(given) != 1:
-        found = " and ".join("--" + name.replace("_", "-") for name in given) or "none of them"
+def _law(options: _Options) -> tuple[PipeLaw, str, tuple[str, ...]]:
+    """Return the friction law that the options name, its name for the reader, and where it is from."""
+    given = [name for name in _COEFFICIENTS if options.has(name)]
+    if len(given) > 1:
         raise click.UsageError(
-            "give one of --c-factor (Hazen-Williams), --roughness (Darcy-Weisbach) and --friction-factor; "
-            f"found {found}"
+            f"give one of {' and '.join('--' + name.replace('_', '-') for name in given)}"
         )
-    wanted = "hazen-williams" if given[0] == "c_factor" else "darcy-weisbach"
-    if options.given["law"] not in (None, wanted):
-        raise click.UsageError(
-            f"--law {options.given['law']} does not go with --{given[0].replace('_', '-')}"
-        )
-    c_factor = options.number("c_factor", "ratio")
-    if c_factor is not None:
+    wanted = options.given["law"]
+    if given and wanted not in (None, _COEFFICIENTS[given[0]]):
+        other = given[0].replace("_", "-")
+        raise click.UsageError(f"--law {wanted} does not go with --{other}")
+    number, source = _coefficient(options, given[0] if given else None)
+    name = given[0] if given else "roughness" if wanted == "darcy-weisbach" else "c_factor"
+    origin = (source,) if source else ()
+    if name == "c_factor":
         form = _FORMS[options.given["form"] or options.units.name]
-        law = HazenWilliams(c_factor, form.coefficient, form.flow_exponent, form.bore_exponent)
-        return law, f"{form.name}, C {c_factor:g}"
+        law = HazenWilliams(number, form.coefficient, form.flow_exponent, form.bore_exponent)
+        return law, f"{form.name}, C {number:g}", origin
     if options.has("form"):
         raise click.UsageError("--form belongs to Hazen-Williams (--c-factor)")
-    factor = options.number("friction_factor", "ratio")
-    if factor is not None:
-        return ConstantFactor(factor), f"Darcy-Weisbach with the friction factor given, {factor:g}"
-    roughness = options.number("roughness", "roughness", "zero or more") or 0.0
-    shown = f"{options.units.from_si(roughness, 'roughness'):.4g} {options.units.symbol('roughness')}"
-    return DarcyWeisbach(roughness), f"Darcy-Weisbach, exact Colebrook factor, roughness {shown}"
+    if name == "friction_factor":
+        return ConstantFactor(number), f"Darcy-Weisbach with the friction factor given, {number:g}", ()
+    shown = f"{options.units.from_si(number, 'roughness'):.4g} {options.units.symbol('roughness')}"
+    return DarcyWeisbach(number), f"Darcy-Weisbach, exact Colebrook factor, roughness {shown}", origin
+
+
+def _coefficient(options: _Options, given: str | None) -> tuple[float, str]:
+    """Return C, roughness [m] or friction factor, from the options or for the material, and a source."""
+    if given == "roughness":
+        return options.number("roughness", "roughness", "zero or more") or 0.0, ""
+    if given is not None:
+        return options.number(given, "ratio") or 0.0, ""
+    material, system = options.given["material"], options.given["system"]
+    darcy = options.given["law"] == "darcy-weisbach"
+    if material is None or (system is None and not darcy):
+        raise click.UsageError(
+            "give one of --c-factor (Hazen-Williams), --roughness (Darcy-Weisbach) and --friction-factor; "
+            "or let the catalogue give C (--material and --system) or "
+            "roughness (--material and --law darcy-weisbach)"
+        )
+    from supplycheck import catalogue
+
+    try:
+        if darcy:
+            row = catalogue.roughness(material)
+            return row.value, f"roughness of {material}: {row.source}"
+        standard = "NFPA 13" if options.units.name == "us" else "EN 12845"
+        row = catalogue.c_factor(material, system, standard)
+    except NotInCatalogueError as error:
+        raise click.BadParameter(str(error), param_hint="--material") from None
+    return row.value, f"C of {material}, {system} system: {row.source}"
 
 
 def _fluid(options: _Options, law: PipeLaw) -> tuple[float, float | None, str, tuple[str, ...]]:
@@ -278,44 +308,37 @@ def _efficiency(options: _Options) -> float | None:
     return value
 
 
-def _bore(options: _Options) -> tuple[float | None, str]:
-    """Return the bore [m] and the size it came from."""
+def _bore(options: _Options) -> tuple[float | None, str, tuple[str, ...]]:
+    """Return the bore [m], the size it came from and its source."""
     diameter = options.number("diameter", "size")
     if not options.has("size"):
-        return diameter, ""
+        return diameter, "", ()
     if diameter is not None:
         raise click.UsageError("give either --diameter or --material and --size")
-    if not options.has("material"):
+    material = options.given["material"]
+    if material is None:
         raise click.UsageError("--size needs --material")
-    rows = _rows(options.given["material"])
-    for row in rows:
-        if row.nominal == options.given["size"]:
-            return row.bore, f"{row.nominal} {options.given['material']} ({row.source})"
-    sizes = ", ".join(row.nominal for row in rows)
-    raise click.BadParameter(
-        f"{options.given['size']!r} is not a size of {options.given['material']}; there are {sizes}",
-        param_hint="--size",
-    )
-
-
-def _rows(material: str) -> tuple[Any, ...]:
-    """Return the rows of ``material`` in the catalogue; a usage error names what is near."""
     from supplycheck import catalogue
 
     try:
-        return tuple(catalogue.bores(material))
+        row = catalogue.find_bore(material, options.given["size"])
     except NotInCatalogueError as error:
-        near = f"; near: {', '.join(error.near)}" if error.near else ""
-        raise click.BadParameter(f"{error}{near}", param_hint="--material") from None
+        raise click.BadParameter(str(error), param_hint="--material, --size") from None
+    return row.bore, f"{row.nominal} {row.material}", (f"size of {row.material}: {row.source}",)
 
 
 def next_size(question: Question, result: OnePipeResult) -> NextSize | str | None:
     """Return the next larger size where a diameter was found for a material; a text where none is."""
     if result.found != "diameter" or question.material is None:
         return None
-    rows = sorted(_rows(question.material), key=lambda row: row.bore)
-    for row in rows:
-        if row.bore >= result.bore:
-            solved = solve_one_pipe(replace(question.problem, bore=row.bore, drop=None, loss=None))
-            return NextSize(question.material, row.nominal, row.bore, row.source, solved)
-    return f"no size of {question.material} is large enough; the largest, {rows[-1].nominal}, is smaller"
+    from supplycheck import catalogue
+
+    try:
+        rows = catalogue.bores(question.material)
+    except NotInCatalogueError as error:
+        raise click.BadParameter(str(error), param_hint="--material") from None
+    if rows[-1].bore < result.bore:
+        return f"the largest size of {question.material}, {rows[-1].nominal}, is smaller"
+    row = next(row for row in rows if row.bore >= result.bore)
+    problem = replace(question.problem, bore=row.bore, drop=None, loss=None)
+    return NextSize(row.material, row.nominal, row.bore, row.source, solve_one_pipe(problem))
