@@ -138,6 +138,8 @@ class CriteriaReader:
         return density, area
 
     def _density_at(self, row: HazardRow, area: float) -> float:
+        if math.isnan(area):
+            return math.nan
         if self.table.area is None and row.density is None:
             self._fault(
                 "density", f"is missing: {row.standard} tabulates none for {row.name}", allowed="a density"
@@ -150,7 +152,7 @@ class CriteriaReader:
             return math.nan
         if math.isfinite(density):
             self.notes.add("criteria.density", self.units.text(density, "density"), "catalogue", row.source)
-        elif not self.faults.has(self.sections.place("criteria.area")):
+        elif not self.faults.touched(self.sections.place("criteria.area")):
             self._fault(
                 "density", f"is missing: {row.standard} tabulates none for {row.name}", allowed="a density"
             )

@@ -34,7 +34,7 @@ def descriptions(table: type[Table]) -> dict[str, str]:
                 and isinstance(text, ast.Expr)
                 and isinstance(text.value, ast.Constant)
             ):
-                found[field.target.id] = inspect.cleandoc(str(text.value.value))
+                found[field.target.id] = " ".join(str(text.value.value).split())
     return found
 
 

@@ -36,11 +36,11 @@ class DraftPipe:
 
 @dataclass(frozen=True, slots=True)
 class DraftSystem:
-    """Nodes and pipes, and what had to be inferred on the way."""
+    """Nodes and pipes; not ``complete`` where some could not be read."""
 
     nodes: tuple[Node, ...]
     pipes: tuple[DraftPipe, ...]
-    notes: tuple[Assumption, ...] = ()
+    complete: bool = True
 
 
 @dataclass(slots=True)

@@ -66,26 +66,59 @@ def listed(words: Iterable[str], limit: int = 12) -> str:
 
 
 class FaultList:
-    """The faults met so far. A place that already has a fault gets no second one."""
+    """The faults met so far.
+
+    After :meth:`seal` a key that already has a fault, and all below it, gets no further one: what
+    follows from a value that could not be read is no news.
+    """
 
     def __init__(self) -> None:
         self._faults: dict[tuple[str, str, str], Fault] = {}
-        self._places: set[tuple[str, str]] = set()
+        self._sealed: set[tuple[str, str]] = set()
+        self._meant: set[tuple[str, str]] = set()
 
     def add(
         self, place: Place, problem: str, *, found: str = "", allowed: str = "", remedy: str = ""
     ) -> None:
         """Note one fault at ``place``."""
+        if self.sealed(place):
+            return
         key = (place.file, place.where, problem)
         self._faults.setdefault(key, Fault(place, problem, found, allowed, remedy))
-        self._places.add((place.file, place.where))
 
-    def has(self, place: Place) -> bool:
-        """Return whether ``place``, or the value it stands in, already has a fault."""
+    def meant(self, place: Place) -> None:
+        """Note that a misspelled key was most likely meant to stand at ``place``."""
+        self._meant.add((place.file, place.where))
+
+    def seal(self) -> None:
+        """Take no further faults at the places that have one, nor at those of misspelled keys."""
+        for key in [key for key in self._faults if key[:2] in self._meant and "missing" in key[2]]:
+            del self._faults[key]
+        self._sealed = {key[:2] for key in self._faults} | self._meant
+
+    def sealed(self, place: Place) -> bool:
+        """Return whether ``place``, or the value it stands in, is sealed."""
+        if not self._sealed:
+            return False
+        if (place.file, place.where) in self._sealed:
+            return True
+        ends = [number for number, char in enumerate(place.where) if char in ".["]
+        return any((place.file, place.where[:end]) in self._sealed for end in ends)
+
+    def spoiled(self, place: Place) -> bool:
+        """Return whether a value at ``place`` or below it could not be read."""
+        below = (f"{place.where}.", f"{place.where}[")
         return any(
-            file == place.file
-            and (place.where == where or place.where.startswith((f"{where}.", f"{where}[")))
-            for file, where in self._places
+            file == place.file and (where == place.where or where.startswith(below))
+            for file, where in self._sealed
+        )
+
+    def touched(self, place: Place) -> bool:
+        """Return whether a fault stands at ``place`` or below it."""
+        below = (f"{place.where}.", f"{place.where}[")
+        keys = [key[:2] for key in self._faults] + list(self._meant)
+        return any(
+            file == place.file and (where == place.where or where.startswith(below)) for file, where in keys
         )
 
     def __bool__(self) -> bool:

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from typing import Final
 
 from supplycheck import catalogue
-from supplycheck.errors import DomainError, NotInCatalogueError
+from supplycheck.errors import NotInCatalogueError
 from supplycheck.findings import Place
 from supplycheck.hydraulics.equivalent_length import REFERENCE_C, bore_factor, c_multiplier
 from supplycheck.model import Fitting
@@ -76,7 +76,7 @@ def _own_value(
         return read_number(text, "length", "zero or more").si(units), None
     except NumberError as fault:
         faults.add(
-            place, f"the value of a fitting {fault.problem}", found=quoted(entry), allowed=fault.allowed
+            place, f"the value of a fitting: {fault.problem}", found=quoted(entry), allowed=fault.allowed
         )
         return 0.0, None
 
@@ -86,7 +86,7 @@ class Lengths:
 
     def __init__(self, standard: str, extra: catalogue.ExtraRows, faults: FaultList) -> None:
         self.standard, self.extra, self.faults = standard, extra, faults
-        self._rows: dict[tuple[str, str], catalogue.FittingRow | str] = {}
+        self._rows: dict[tuple[str, str], catalogue.FittingRow | NotInCatalogueError] = {}
         self._factors: dict[tuple[float | None, float, float | None, float], float] = {}
 
     def _factor(self, size: PipeSize, reference_c: float, reference_bore: float | None) -> float:
@@ -105,15 +105,33 @@ class Lengths:
         """Return the correction for C alone, for a length that holds for this size."""
         return self._factor(size, REFERENCE_C, None)
 
-    def _row(self, name: str, nominal: str) -> catalogue.FittingRow | str:
-        """Return the catalogue row, or the message that there is none."""
+    def _row(self, name: str, nominal: str) -> catalogue.FittingRow | NotInCatalogueError:
+        """Return the catalogue row, or the error that there is none."""
         key = (name, nominal)
         if key not in self._rows:
             try:
                 self._rows[key] = catalogue.equivalent_length(name, nominal, self.standard, self.extra)
-            except (NotInCatalogueError, DomainError) as caught:
-                self._rows[key] = str(caught)
+            except NotInCatalogueError as caught:
+                self._rows[key] = caught
         return self._rows[key]
+
+    def _note(self, caught: NotInCatalogueError, name: str, nominal: str, place: Place) -> None:
+        own = f"or state its length: {name} = 5 ft"
+        try:
+            known = catalogue.fitting_name(name, self.standard)
+        except NotInCatalogueError:
+            close = f"did you mean {caught.near[0]}? {own}" if caught.near else own
+            names = listed(catalogue.fitting_names(self.standard), 20)
+            problem = f"is not a fitting of {self.standard}"
+            self.faults.add(place, problem, found=quoted(name), allowed=names, remedy=close)
+            return
+        self.faults.add(
+            place,
+            f"{self.standard} prints no length of a {known} in this size",
+            found=f"size {nominal}",
+            allowed=f"sizes {listed(caught.near, 20)}",
+            remedy=own,
+        )
 
     def charge(
         self, written: WrittenFitting, size: PipeSize, origin: Origin, place: Place, node: str | None = None
@@ -142,10 +160,8 @@ class Lengths:
             )
             return None
         row = self._row(written.name, size.nominal)
-        if isinstance(row, str):
-            known = listed(catalogue.fitting_names(self.standard), 20)
-            allowed = known if f"fitting in {self.standard}" in row else ""
-            self.faults.add(place, row, found=quoted(written.name), allowed=allowed)
+        if isinstance(row, NotInCatalogueError):
+            self._note(row, written.name, size.nominal, place)
             return None
         factor = self._factor(size, row.reference_c, row.reference_bore)
         return Fitting(

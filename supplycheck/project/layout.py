@@ -118,10 +118,14 @@ def _far_main(builder: Builder, ys: Sequence[float], distance: float, *, tied: b
     if far is None:
         return
     for number, (ya, yb) in enumerate(pairwise(ys), start=1):
-        builder.pipe(f"FM{number + 1}", f"FM{number}", abs(ya - yb), far.pipe, far.size, "cross main")
+        builder.pipe(
+            f"FM{number + 1}", f"FM{number}", abs(ya - yb), far.pipe, far.size, "cross main", "far_main"
+        )
     if tied:
         for number in sorted({1, len(ys)}):
-            builder.pipe(f"M{number}", f"FM{number}", distance, far.pipe, far.size, "cross main")
+            builder.pipe(
+                f"M{number}", f"FM{number}", distance, far.pipe, far.size, "cross main", "far_main"
+            )
 
 
 def _tree(builder: Builder, ys: Sequence[float]) -> None:
@@ -298,7 +302,6 @@ def generate(
         return None
     units = UNIT_SETS[layout.units or sections.units]
     place = sections.place("layout")
-    before = len(faults)
     _check(layout, sections, faults)
     levels = read_levels(layout, units, sections, notes, faults)
     sprinkler = sprinklers.get(layout.sprinkler)
@@ -306,7 +309,7 @@ def generate(
     distance = (
         _distance(layout, units, place, notes, faults) if layout.type != "tree" and layout.far_main else 0.0
     )
-    if levels is None or (len(faults) > before and sum(layout.heads) * layout.lines > MOST_HEADS):
+    if faults.spoiled(place) or sum(layout.heads) * layout.lines > MOST_HEADS:
         return None
     builder = Builder(layout, units, levels, place, sprinkler, area)
     spacing = layout.line_spacing.si(units)

@@ -5,6 +5,8 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
+from types import MappingProxyType
+from typing import Final
 
 from supplycheck.findings import Place
 from supplycheck.model import Node, Sprinkler
@@ -16,6 +18,9 @@ from supplycheck.project.schema_system import LayoutTable
 from supplycheck.project.sections import Sections
 from supplycheck.units import UNIT_SETS, UnitSet
 
+_KEYS: Final = MappingProxyType(
+    {"branch line": "branch", "drop": "drop", "riser nipple": "riser_nipple", "cross main": "cross_main"}
+)
 SAME = 1e-6
 """Two elevations [m] closer than this are one."""
 
@@ -183,8 +188,11 @@ class Builder:
         self.pipe(point, tag, self.levels.drop, drop.pipe, drop.size, "drop")
         return point
 
-    def pipe(self, start: str, end: str, length: float, kind: str, size: str, role: PipeRole) -> None:
-        """Add a pipe whose fittings follow from geometry."""
+    def pipe(
+        self, start: str, end: str, length: float, kind: str, size: str, role: PipeRole, key: str = ""
+    ) -> None:
+        """Add a pipe with fittings from geometry; ``key`` names its table where the role does not."""
+        place = Place(self.place.file, f"{self.place.where}.{key or _KEYS[role]}")
         self.pipes.append(
-            DraftPipe(f"{start}-{end}", start, end, length, kind, size, self.place, role=role, infer=True)
+            DraftPipe(f"{start}-{end}", start, end, length, kind, size, place, role=role, infer=True)
         )

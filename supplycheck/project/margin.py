@@ -121,4 +121,6 @@ def read_margin(
     table: MarginTable | None, where: str, sections: Sections, units: UnitSet, faults: FaultList
 ) -> MarginRule | None:
     """Return the margin rule, ``None`` where the project gives none."""
-    return None if table is None else _rule(table, where, sections, units, faults)
+    if table is None or faults.sealed(sections.place(f"{where}.rule")):
+        return None
+    return _rule(table, where, sections, units, faults)

@@ -356,10 +356,12 @@ def read_network(
     if network is None:
         return None
     units = UNIT_SETS[network.units or sections.units]
+    before = len(faults)
     node_table = read_table(folder, network.nodes, sections.place("network.nodes"), NODE_COLUMNS, faults)
     pipe_table = read_table(folder, network.pipes, sections.place("network.pipes"), PIPE_COLUMNS, faults)
     if node_table is None or pipe_table is None:
         return None
+    complete = len(faults) == before
     node_reader = _NodeReader(node_table, units, sections, sprinklers, faults)
     nodes = [node for node in map(node_reader.node, node_table.rows) if node is not None]
     _without_twins([(node.tag, node.place or Place("")) for node in nodes], "node", faults)
@@ -374,4 +376,5 @@ def read_network(
             "inferred",
             "coordinates and elevations of the nodes",
         )
-    return DraftSystem(tuple(nodes), tuple(pipes))
+    complete &= len(by_tag) == len(node_table.rows) and len(pipes) == len(pipe_table.rows)
+    return DraftSystem(tuple(nodes), tuple(pipes), complete)

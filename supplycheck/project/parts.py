@@ -13,7 +13,7 @@ from supplycheck.errors import DomainError, NotInCatalogueError
 from supplycheck.findings import Place
 from supplycheck.model import Device, FrictionLaw, PipeKind, Sprinkler
 from supplycheck.project.drafts import Notes
-from supplycheck.project.faults import FaultList, listed, quoted
+from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.layout_parts import units_in
 from supplycheck.project.schema_system import DeviceTable, PipeTable, SprinklerTable
 from supplycheck.project.sections import Sections
@@ -83,10 +83,11 @@ def read_sprinklers(sections: Sections, notes: Notes, faults: FaultList) -> dict
 
 @dataclass(frozen=True, slots=True)
 class KindOfPipe:
-    """A kind of pipe with the catalogue rows that hold for it."""
+    """A kind of pipe with the catalogue rows that hold for it; ``unknown`` with a fault noted."""
 
     record: PipeKind
     extra: ExtraRows
+    unknown: bool = False
 
 
 class KindReader:
@@ -158,6 +159,23 @@ class KindReader:
         )
         return ExtraRows((*own, *kept), self.extra.c_factors, self.extra.fittings)
 
+    def _is_unknown(self, name: str, table: PipeTable) -> bool:
+        """Return whether the material says nothing: neither the catalogue nor the project knows it."""
+        known = [text for row in catalogue.materials() for text in (row.name, *row.aliases)]
+        wanted = catalogue.fold(table.material)
+        if any(catalogue.fold(text) == wanted for text in known) or table.c_factor or table.roughness:
+            return False
+        names = list(dict.fromkeys(row.name for row in catalogue.materials() if row.size_unit))
+        close = near(table.material, known)
+        self.faults.add(
+            self.sections.place(f"pipe.{name}.material"),
+            "is not a material of the catalogue",
+            found=quoted(table.material),
+            allowed=listed(names, 40),
+            remedy=f"did you mean {close}?" if close else "or give bores and c_factor",
+        )
+        return True
+
     def read(self, name: str, table: PipeTable) -> KindOfPipe:
         """Return the kind of pipe ``name``; a material without bores is noted where a size is asked."""
         units = units_in(table, UNIT_SETS[self.sections.units])
@@ -166,6 +184,9 @@ class KindReader:
             rows = catalogue.bores(table.material, extra)
         except NotInCatalogueError:
             rows = ()
+        if not rows and self._is_unknown(name, table):
+            record = PipeKind(name, table.material, (), None, None, "", "", "")
+            return KindOfPipe(record, extra, unknown=True)
         c_factor, c_source = self._c_factor(name, table)
         roughness, roughness_source = self._roughness(name, table, units)
         record = PipeKind(
@@ -221,7 +242,7 @@ def _device(
     ways = [key for key in ("curve", "loss", "equivalent_length") if getattr(table, key) is not None]
     if len(ways) > 1:
         faults.add(place, "its loss is given more than once", found=listed(ways), allowed="one of them")
-    if not ways and table.kind != "pressure-reducing valve" and not faults.has(place):
+    if not ways and table.kind != "pressure-reducing valve" and not faults.touched(place):
         faults.add(place, "has no loss", allowed="one of curve, loss, equivalent_length")
     if table.kind == "pump" and ways and ways != ["curve"]:
         faults.add(place, "a pump has no curve", found=listed(ways), allowed="curve")

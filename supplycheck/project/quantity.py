@@ -25,6 +25,8 @@ _NUMBER: Final = re.compile(rf"([+\-−]?)\s*({_MIXED})\s*(.*)", re.DOTALL)
 _FEET: Final = re.compile(
     rf"([+\-−]?)\s*(\d+(?:\.\d+)?)\s*(?:'|′|’|ft\.?|feet|foot)\s*-?\s*({_MIXED})\s*(?:\"|″|”|''|in\.?|inch|inches)?"
 )
+LARGEST: Final = 1e12
+"""Largest number read, in any unit: far above anything that flows in a pipe."""
 _SPOKEN: Final = {
     "length": "a length",
     "size": "a size",
@@ -163,6 +165,8 @@ def read_number(value: object, kind: str, sign: Sign = "positive") -> Written:
     number = written.number
     if not math.isfinite(number):
         raise NumberError("is not a finite number", "a finite number")
+    if abs(number) > LARGEST:
+        raise NumberError("is too large", f"at most {LARGEST:g}")
     if (sign == "positive" and number <= 0) or (sign == "zero or more" and number < 0):
         wanted = "a number above zero" if sign == "positive" else "zero or a number above it"
         raise NumberError("is negative" if number < 0 else "is zero", wanted)

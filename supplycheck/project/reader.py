@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import Any, Final
 
 from supplycheck.catalogue import HazardRow
+from supplycheck.errors import DomainError
 from supplycheck.findings import Place
 from supplycheck.model import (
     Criteria,
@@ -172,7 +173,7 @@ def _check_area(
     """Note an empty design area and heads in it that do not exist."""
     where = "criteria.design_area"
     heads = [node for node in system.nodes if node.kind == "sprinkler"]
-    if not heads and not faults.has(sections.place("layout")):
+    if not heads and not faults.touched(sections.place("layout")):
         faults.add(
             sections.place("layout" if sections.layout else "network.nodes"),
             "there is no sprinkler",
@@ -206,7 +207,7 @@ def _draft(
         return generate(sections, sprinklers, notes, faults)
     if sections.network is not None:
         return read_network(sections, folder, sprinklers, notes, faults)
-    if not faults.has(sections.place("layout")):
+    if not sections.present & {"layout", "network"}:
         faults.add(
             sections.place("layout"),
             "the system is missing",
@@ -303,4 +304,9 @@ def read_project(path: Path) -> Project:
     if raw is None:
         faults.stop()
     sections = read_sections(raw or {}, path.name, faults)
-    return _assemble(sections, folder, faults)
+    faults.seal()
+    try:
+        return _assemble(sections, folder, faults)
+    except DomainError:
+        faults.stop()  # a stand-in for a value that could not be read has gone too far
+        raise

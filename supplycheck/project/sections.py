@@ -16,6 +16,7 @@ from pydantic import ValidationError
 from supplycheck.findings import Place
 from supplycheck.project import describe
 from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.placeholders import filled
 from supplycheck.project.schema import (
     CriteriaTable,
     FactsTable,
@@ -43,7 +44,8 @@ _REQUIRED: Final = ("project", "criteria", "supply")
 class Sections:
     """The tables of a project file; ``None`` where a table is absent or beyond use.
 
-    ``declared`` holds the names of all sprinkler types, pipe kinds and devices, sound or not.
+    ``declared`` holds the names of all sprinkler types, pipe kinds and devices, ``present`` the keys at
+    the top of the file, sound or not.
     """
 
     file: str
@@ -61,16 +63,18 @@ class Sections:
     devices: Mapping[str, DeviceTable]
     scenarios: tuple[tuple[int, ScenarioTable], ...]
     declared: Mapping[str, frozenset[str]]
+    present: frozenset[str]
 
     def place(self, where: str) -> Place:
         """Return the place of a key path in the project file."""
         return Place(self.file, where)
 
 
-def key_path(base: str, raw: object, loc: Loc) -> tuple[str, list[str | int]]:
+def key_path(base: str, raw: object, loc: Loc, *, missing: bool = False) -> tuple[str, list[str | int]]:
     """Return the key path of pydantic's ``loc`` and its steps through ``raw``.
 
-    Steps that name a branch of a choice and not a key are left out. Lists count from 1.
+    Steps that name a branch of a choice and not a key are left out. Lists count from 1. Where the last
+    key is ``missing`` it is not in ``raw``.
     """
     text, steps = base, []
     current: Any = raw
@@ -83,7 +87,7 @@ def key_path(base: str, raw: object, loc: Loc) -> tuple[str, list[str | int]]:
             current = current[step] if step < len(current) else None
         else:
             known = isinstance(current, Mapping) and step in current
-            if not known and not (last and isinstance(current, Mapping)):
+            if not known and not (missing and last and isinstance(current, Mapping)):
                 continue
             text = f"{text}.{step}" if text else step
             current = current[step] if known else None
@@ -117,10 +121,18 @@ _TYPES: Final = {
 }
 
 
+_BOUNDS: Final = {
+    "greater_than_equal": ("or more", "ge"),
+    "less_than_equal": ("or less", "le"),
+}
+
+
 def _unknown_key(place: Place, table: type[Table], steps: Sequence[str | int], faults: FaultList) -> None:
     key = str(steps[-1])
     here = list(_table_at(table, steps[:-1]).model_fields)
     close = near(key, here)
+    if close:
+        faults.meant(Place(place.file, place.where.removesuffix(key) + close))
     homes = [] if close else describe.homes_of(key)
     if close:
         remedy = f"did you mean {close}?"
@@ -134,8 +146,9 @@ def _unknown_key(place: Place, table: type[Table], steps: Sequence[str | int], f
 def _note(
     error: Mapping[str, Any], table: type[Table], base: str, raw: object, file: str, faults: FaultList
 ) -> None:
-    where, steps = key_path(base, raw, error["loc"])
-    place, kind = Place(file, where), error["type"]
+    kind = error["type"]
+    where, steps = key_path(base, raw, error["loc"], missing=kind == "missing")
+    place = Place(file, where)
     context = error.get("ctx", {})
     value = error["input"]
     if kind == "extra_forbidden":
@@ -164,6 +177,18 @@ def _note(
     elif kind in _TYPES:
         problem, allowed = _TYPES[kind]
         faults.add(place, problem, found=quoted(value), allowed=allowed)
+    elif kind in _BOUNDS:
+        words, key = _BOUNDS[kind]
+        faults.add(place, "is out of range", found=quoted(value), allowed=f"{context[key]} {words}")
+    elif kind in ("too_short", "too_long"):
+        low, high = context.get("min_length"), context.get("max_length")
+        allowed = f"at least {low} entries" if low is not None else f"at most {high} entries"
+        faults.add(
+            place,
+            "has a wrong number of entries",
+            found=f"{context['actual_length']} entries",
+            allowed=allowed,
+        )
     else:
         message = str(error["msg"])
         faults.add(place, message[:1].lower() + message[1:], found=quoted(value))
@@ -181,9 +206,12 @@ def _is_noise(error: Mapping[str, Any], raw: object) -> bool:
 
 
 def _without(raw: Any, paths: Sequence[Sequence[str | int]]) -> Any:
-    """Return a copy of ``raw`` without what stands at ``paths``."""
+    """Return a copy of ``raw`` without what stands at ``paths``; a list with a faulty item goes whole."""
     pruned = copy.deepcopy(raw)
-    for steps in sorted(paths, key=len, reverse=True):
+    for path in sorted(paths, key=len, reverse=True):
+        steps = list(path)
+        while steps and isinstance(steps[-1], int):
+            steps.pop()
         if not steps:
             continue
         holder = _value_at(pruned, steps[:-1])
@@ -206,7 +234,8 @@ def check_table(
     for error in errors:
         _note(error, table, base, raw, file, faults)
     try:
-        return table.model_validate(_without(raw, [key_path("", raw, error["loc"])[1] for error in errors]))
+        rest = _without(raw, [key_path("", raw, error["loc"])[1] for error in errors])
+        return table.model_validate(filled(table, rest))
     except ValidationError:
         return None
 
@@ -284,10 +313,7 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
         )
     for key in _REQUIRED:
         if key not in raw:
-            text = describe.descriptions(ProjectFile)[key]
-            faults.add(
-                Place(file, key), "the table is missing", allowed=text, remedy=f"add a table [{key}]"
-            )
+            faults.add(Place(file, key), "the table is missing", remedy=f"add a table [{key}]")
 
     def one(table: type[AnyTable], key: str) -> AnyTable | None:
         return check_table(table, raw[key], key, file, faults) if key in raw else None
@@ -311,4 +337,5 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
         devices=devices,
         scenarios=_scenarios(raw.get("scenario"), file, faults),
         declared={"sprinkler": sprinkler_names, "pipe": pipe_names, "device": device_names},
+        present=frozenset(raw),
     )

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from supplycheck import catalogue
 from supplycheck.errors import DomainError, NotInCatalogueError
 from supplycheck.hydraulics.discharge import pitot_discharge
@@ -107,6 +109,8 @@ class SupplyReader:
         units = units_in(table, units)
         diameter, pitot = table.diameter.si(units), table.pitot.si(units)
         coefficient, origin = self._coefficient(table, where)
+        if not (math.isfinite(diameter) and math.isfinite(pitot)):
+            return None
         factor = table.pumper_factor.number if table.pumper_factor else 1.0
         if table.pumper_factor is None and diameter >= PUMPER_SIZE * (1 - 1e-9):
             try:
@@ -282,7 +286,7 @@ class SupplyReader:
         if (
             not table.flow_test
             and not table.tank
-            and not self.faults.has(self.sections.place("supply.flow_test"))
+            and not self.faults.touched(self.sections.place("supply.flow_test"))
         ):
             self._fault(
                 "supply.flow_test",
@@ -327,7 +331,5 @@ class SupplyReader:
 
 def _discharge(outlet: Outlet) -> float:
     """Return the flow of an outlet [m³/s] by the pitot law, its pumper factor included."""
-    flow, _ = pitot_discharge(
-        coefficient=outlet.coefficient, diameter=outlet.diameter, pitot=outlet.pitot
-    )
+    flow, _ = pitot_discharge(coefficient=outlet.coefficient, diameter=outlet.diameter, pitot=outlet.pitot)
     return float(flow) * outlet.pumper_factor

@@ -71,6 +71,16 @@ def check_connections(
         )
 
 
+def _cell(draft: DraftPipe, key: str) -> Place:
+    """Return the place of one value of a pipe: a cell of its row, or a key of its table in the layout."""
+    place = draft.place
+    if place.where.startswith("row "):
+        return Place(place.file, f"{place.where}, column {key}")
+    if key == "size" and place.where.endswith((".branch", ".cross_main")):
+        key = "sizes"
+    return Place(place.file, f"{place.where}.{key}")
+
+
 class Finisher:
     """Turns draft pipes into pipes."""
 
@@ -84,41 +94,45 @@ class Finisher:
     ) -> None:
         self.sections, self.kinds, self.devices = sections, kinds, devices
         self.lengths, self.faults = lengths, faults
-        self._bores: dict[tuple[str, str], float] = {}
-        self._unknown: dict[tuple[str, str], tuple[str, list[DraftPipe]]] = {}
+        self._bores: dict[tuple[str, str], tuple[float, str]] = {}
+        self._unknown: dict[tuple[str, str], tuple[NotInCatalogueError, list[DraftPipe]]] = {}
         self._written: dict[str, list[WrittenFitting]] = {}
         table = sections.network or sections.layout
         self.units = UNIT_SETS[(table.units if table else None) or sections.units]
 
-    def bore(self, draft: DraftPipe) -> float:
-        """Return the bore [m]; NaN where it is not known (noted later, once for each kind and size)."""
-        if draft.bore is not None:
-            return draft.bore
+    def size(self, draft: DraftPipe) -> tuple[float, str]:
+        """Return bore [m] and nominal size; NaN where it is not known (noted later, once a size)."""
         key = (draft.kind, draft.size)
+        if draft.bore is not None or not draft.size:
+            return math.nan if draft.bore is None else draft.bore, catalogue.normalise_nominal(draft.size)
         if key in self._unknown:
             self._unknown[key][1].append(draft)
-            return math.nan
+            return math.nan, draft.size
         if key not in self._bores:
             kind = self.kinds.get(draft.kind)
-            if kind is None or not draft.size:
-                return math.nan
+            if kind is None or kind.unknown:
+                return math.nan, draft.size
             try:
-                self._bores[key] = catalogue.find_bore(kind.record.material, draft.size, kind.extra).bore
+                row = catalogue.find_bore(kind.record.material, draft.size, kind.extra)
             except NotInCatalogueError as caught:
-                self._unknown[key] = (str(caught), [draft])
-                return math.nan
+                self._unknown[key] = (caught, [draft])
+                return math.nan, draft.size
+            self._bores[key] = (row.bore, catalogue.normalise_nominal(row.nominal))
         return self._bores[key]
 
     def note_unknown_sizes(self) -> None:
         """Note the sizes that the catalogue does not have."""
-        for (_, size), (message, drafts) in self._unknown.items():
-            others = [draft.place.where for draft in drafts[1:]]
-            same = set(others) <= {drafts[0].place.where}
+        for (kind, size), (caught, drafts) in self._unknown.items():
+            material = self.kinds[kind].record.material
+            others = list(dict.fromkeys(draft.place.where for draft in drafts[1:]))
+            also = [where for where in others if where != drafts[0].place.where]
             self.faults.add(
-                drafts[0].place,
-                message,
-                found=f"size {quoted(size)} of pipe kind {drafts[0].kind}",
-                remedy="" if same or not others else f"also in {listed(others)}",
+                _cell(drafts[0], "size"),
+                f"is not a size of {material}" if caught.near else str(caught),
+                found=quoted(size),
+                allowed=listed(caught.near, 20),
+                remedy=f"or give its bore under pipe.{kind}.bores"
+                + (f"; also in {listed(also)}" if also else ""),
             )
 
     def _entries(self, draft: DraftPipe) -> list[WrittenFitting]:
@@ -127,9 +141,7 @@ class Finisher:
             return []
         if text not in self._written:
             before = len(self.faults)
-            column = draft.place.where.startswith("row ")
-            where = draft.place.where + (", column fittings" if column else ".fittings")
-            entries = parse(text, self.units, Place(draft.place.file, where), self.faults)
+            entries = parse(text, self.units, _cell(draft, "fittings"), self.faults)
             if len(self.faults) > before:
                 return entries
             self._written[text] = entries
@@ -138,7 +150,8 @@ class Finisher:
     def _fittings(
         self, draft: DraftPipe, size: PipeSize, charged: Sequence[tuple[str, str]]
     ) -> list[Fitting]:
-        found = [self.lengths.charge(entry, size, "given", draft.place) for entry in self._entries(draft)]
+        place = _cell(draft, "fittings")
+        found = [self.lengths.charge(entry, size, "given", place) for entry in self._entries(draft)]
         for (name, node), count in Counter(charged).items():
             found.append(
                 self.lengths.charge(WrittenFitting(count, name), size, "inferred", draft.place, node)
@@ -152,19 +165,19 @@ class Finisher:
                 )
         return [fitting for fitting in found if fitting is not None]
 
-    def pipe(self, draft: DraftPipe, bore: float, charged: Sequence[tuple[str, str]]) -> Pipe:
+    def pipe(self, draft: DraftPipe, bore: float, nominal: str, charged: Sequence[tuple[str, str]]) -> Pipe:
         """Return the finished pipe; ``charged`` are the (fitting, node) inferred for it."""
         kind = self.kinds.get(draft.kind)
         c_factor = draft.c_factor if draft.c_factor is not None else kind.record.c_factor if kind else None
-        known = math.isfinite(bore)
-        size = PipeSize(draft.size, bore, c_factor)
+        known = math.isfinite(bore) and (c_factor is None or math.isfinite(c_factor))
+        size = PipeSize(nominal, bore, c_factor)
         return Pipe(
             tag=draft.tag,
             start=draft.start,
             end=draft.end,
             length=draft.length,
             bore=bore,
-            nominal=catalogue.normalise_nominal(draft.size) if draft.size else "",
+            nominal=nominal,
             kind=draft.kind,
             c_factor=c_factor,
             roughness=kind.record.roughness if kind else None,
@@ -207,7 +220,8 @@ def _note_bores(
             used.setdefault(draft.kind, {})[pipe.nominal] = pipe.bore
     for name, sizes in used.items():
         text = ", ".join(
-            f"{size}: {units.text(bore, 'size')}" for size, bore in sorted(sizes.items(), key=lambda s: s[1])
+            f"{size}: {units.text(bore, 'size')}"
+            for size, bore in sorted(sizes.items(), key=lambda s: s[1])
         )
         notes.add(f"pipe.{name}: bores", text, "catalogue", kinds[name].record.bore_source)
 
@@ -221,17 +235,18 @@ def finish(
 ) -> System:
     """Return the finished system. With faults noted it is not fit for use."""
     place = finisher.sections.place("layout" if finisher.sections.layout else "network.nodes")
-    check_connections(draft.nodes, draft.pipes, place, faults)
-    bores = [finisher.bore(pipe) for pipe in draft.pipes]
+    if draft.complete:
+        check_connections(draft.nodes, draft.pipes, place, faults)
+    sizes = [finisher.size(pipe) for pipe in draft.pipes]
     finisher.note_unknown_sizes()
     charges: dict[int, list[tuple[str, str]]] = {}
-    if any(pipe.infer for pipe in draft.pipes):
-        safe = [bore if math.isfinite(bore) else 0.0 for bore in bores]
+    if draft.complete and any(pipe.infer for pipe in draft.pipes):
+        safe = [bore if math.isfinite(bore) else 0.0 for bore, _ in sizes]
         for charge in infer(draft.nodes, draft.pipes, safe, faults):
             charges.setdefault(charge.pipe, []).append((charge.fitting, charge.node))
     pipes = [
-        finisher.pipe(pipe, bore, charges.get(number, ()))
-        for number, (pipe, bore) in enumerate(zip(draft.pipes, bores, strict=True))
+        finisher.pipe(pipe, bore, nominal, charges.get(number, ()))
+        for number, (pipe, (bore, nominal)) in enumerate(zip(draft.pipes, sizes, strict=True))
     ]
     if not faults:
         _note_inferred(pipes, notes)

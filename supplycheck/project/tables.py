@@ -13,7 +13,7 @@ from typing import Any, Final
 from supplycheck.findings import Place
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.files import Folder
-from supplycheck.project.quantity import NumberError, Sign, read_number
+from supplycheck.project.quantity import LARGEST, NumberError, Sign, read_number
 from supplycheck.units import Unit, UnitSet, find_unit
 
 LONGEST_CELL: Final = 10_000
@@ -67,7 +67,9 @@ class RowTable:
         unit = self.units.get(column) or default.unit(kind)
         try:
             value = float(text)
-            if math.isfinite(value) and (value > 0 or sign == "any" or (value == 0 and sign != "positive")):
+            if abs(value) <= LARGEST and (
+                value > 0 or sign == "any" or (value == 0 and sign != "positive")
+            ):
                 return unit.to_si(value)
         except ValueError:
             pass
@@ -273,6 +275,8 @@ def read_table(
             )
         return None
     names, units = _headings(head[1], head[0], name, by_name, faults)
+    if any(column.required and column.name not in names for column in columns):
+        return None
     rows = tuple(_body(raw, name, names, faults))
     if not rows and len(faults) == before:
         faults.add(place, "the table has no rows", found=quoted(name), allowed="rows below the heading row")
