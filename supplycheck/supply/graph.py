@@ -61,8 +61,7 @@ def curve_points(
 
     The supply lines are those of the principal source, carried to the point of comparison with the losses
     of the demand solution; where pumps stand on the way, the supply is shown without them, then the pumps
-    by themselves, then both together as far as the curves go. Test points are carried in height only, as
-    they were read with the system shut.
+    by themselves, then both together as far as the curves go. Test points are carried like the lines.
     """
     supply = next(one for one in curves if one.node == comparison.principal)
     share = comparison.main_source
@@ -139,12 +138,15 @@ def _demand_line(project: Project, solution: Solution, comparison: Comparison) -
 
 
 def _test_points(supply: NodeSupply, path: Route) -> list[MarkedPoint]:
+    alone = path.without_pumps if path.pumps else path
     points = []
     for test, curve in zip(supply.tests, supply.measured, strict=True):
-        shift = curve.offset - path.elevation
-        points.append(MarkedPoint(f"{test.tag} static", "test", 0.0, test.static + shift))
-        name = f"{test.tag} residual"
-        points += [MarkedPoint(name, "test", one.flow, one.residual + shift) for one in test.points]
+        readings = [(f"{test.tag} static", 0.0, test.static)]
+        readings += [(f"{test.tag} residual", one.flow, one.residual) for one in test.points]
+        points += [
+            MarkedPoint(name, "test", flow, pressure + curve.offset - alone.loss_at(flow))
+            for name, flow, pressure in readings
+        ]
     return points
 
 

@@ -209,6 +209,10 @@ def test_graph_points_lie_on_their_lines() -> None:
         assert len(line.flows) == len(line.pressures) >= 2
         assert list(line.flows) == sorted(line.flows)
         assert min(line.pressures) >= -1.0
+    tested = [point for point in graph.points if point.style == "test"]
+    assert [point.flow for point in tested] == [0.0, pytest.approx(956 * GPM)]
+    for point in tested:
+        assert comparison.carried_unadjusted.pressure_at(point.flow) == pytest.approx(point.pressure)
     demand = graph.lines[-1]
     # At no flow the demand line starts at the height of the governing head above B, 21 ft.
     assert demand.pressures[0] == pytest.approx(UNIT_WEIGHT * 21 * FOOT)
