@@ -69,7 +69,7 @@ def _head_row(step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
     return [
         Label(0, y + 3.5, short(f"head {step.start}", _NAMES - 10, 6.8), 6.8, bold=True),
         Box(left, y + 2, end - left, _ROW - 5, MIST, INK, 0.5),
-        Label(end + 4, y + 3.5, units.text(step.pressure_start, "pressure"), 6.6),
+        Label(end + 4, y + 3.5, units.text(step.pressure_start, "pressure"), 6.6, behind="#ffffff"),
     ]
 
 
@@ -91,7 +91,9 @@ def _step_row(number: int, step: PathStep, x: Scale, y: float, units: UnitSet) -
         reach = max(reach, end)
     left = x(step.pressure_start)
     items.append(Line(((left, y + 2), (left, y + _ROW)), SLATE, 0.5))
-    items.append(Label(reach + 4, y + 3.5, units.text(step.pressure_end, "pressure"), 6.6))
+    items.append(
+        Label(reach + 4, y + 3.5, units.text(step.pressure_end, "pressure"), 6.6, behind="#ffffff")
+    )
     return items
 
 

@@ -92,7 +92,7 @@ def _spots(
                 continue
             x, y = scale.at(one.x or 0.0, one.y or 0.0)
             text = units.number(one.required_pressure, "pressure")
-            found = taken.place(x, y, text, 5.6, gap=radius, reach="beside")
+            found = taken.place(x, y, text, 5.6, gap=radius + 2.0, reach="beside")
             if found:
                 items.append(Label(found[0], found[1], text, 5.6, found[2], colour=SLATE))
     return items

@@ -79,7 +79,16 @@ def area_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> Plan
         ys += [y0, y1]
     reach = 0.04 * max(max(xs) - min(xs), max(ys) - min(ys), 3.0) + 0.5
     window = Window(min(xs) - reach, min(ys) - reach, max(xs) + reach, max(ys) + reach)
-    return _view(result, units, window, size, enlarged=True)
+    return _view(result, units, _filling(window, size), size, enlarged=True)
+
+
+def _filling(window: Window, size: tuple[float, float]) -> Window:
+    """Return ``window`` widened to the shape of the frame, so that the neighbourhood is seen as well."""
+    shape = (size[0] - 2 * _EDGE) / (size[1] - 2 * _EDGE - _BAR_ROOM)
+    wide, high = window.x1 - window.x0, window.y1 - window.y0
+    more_x = max(high * shape - wide, 0.0) / 2
+    more_y = max(min(wide / shape, 2 * high) - high, 0.0) / 2
+    return Window(window.x0 - more_x, window.y0 - more_y, window.x1 + more_x, window.y1 + more_y)
 
 
 def _scale(window: Window, size: tuple[float, float]) -> tuple[Scale, float, float]:
