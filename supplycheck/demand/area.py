@@ -11,7 +11,8 @@ from typing import TypeVar
 from supplycheck.demand.derivation import area_steps, shape_steps, statement_of
 from supplycheck.demand.heads import Heads, all_heads
 from supplycheck.demand.labels import Labels, unique
-from supplycheck.demand.lines import Line, find_lines
+from supplycheck.demand.line import Line
+from supplycheck.demand.lines import find_lines
 from supplycheck.demand.records import Candidates, Step
 from supplycheck.demand.runs import ROUND
 from supplycheck.demand.search import CAP, Placement, Rule, search

@@ -7,7 +7,7 @@ import math
 import numpy as np
 
 from supplycheck.demand.heads import Heads
-from supplycheck.demand.lines import Lines
+from supplycheck.demand.line import Lines
 from supplycheck.demand.records import Step
 from supplycheck.demand.runs import ROUND
 from supplycheck.model import Criteria
@@ -129,10 +129,10 @@ def statement_of(count: int, complete: bool, lines: Lines, european: bool, whole
         parts.append("Branch lines were inferred from the pipes where none is given.")
     if lines.joined:
         parts.append(
-            "Whole lines, pairs of lines and areas across a main are among them."
+            "Whole lines, pairs of lines, and areas across a main or over lines end to end are tried too."
             if european
-            else "An area crosses a main only where one side of the line is shorter than the area asks "
-            "along it (common practice)."
+            else "An area crosses a main, or goes on over lines that meet end to end, only where one "
+            "of them is shorter than the area asks along it (common practice)."
         )
     if whole:
         parts.append(f"In {whole} of them the area is smaller than the design area and all its heads flow.")

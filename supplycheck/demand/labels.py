@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Final
 
-from supplycheck.demand.lines import Line
+from supplycheck.demand.line import Line
 from supplycheck.demand.search import Placement, Row
 
 ALL: Final = "all heads"
@@ -66,7 +66,7 @@ class Labels:
         parts = []
         for span, first, last in groups:
             names = f"line {first.name}" if first is last else f"lines {first.name}–{last.name}"
-            across = " across the main" if len(first.sides) > 1 else ""
+            across = f" {first.joint}" if first.joint else ""
             parts.append(f"{names}{across}, {span}{self._counted(first, span)}")
         text = "; ".join(parts)
         if placement.extra:

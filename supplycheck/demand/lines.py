@@ -2,77 +2,28 @@
 
 A line is taken from the tag given at its heads, otherwise inferred from the pipes. Lines of one direction
 form a bay with axes along and across. Where a main passes between two heads of a line, its two sides are
-lines of their own, and the joined line is kept as well.
+lines of their own, and the joined line is kept as well, as it is where two lines meet end to end.
 """
 
 from __future__ import annotations
 
 import itertools
 import math
+from bisect import bisect_right
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
 import numpy as np
 
 from supplycheck.demand.heads import FloatArray, Heads
+from supplycheck.demand.line import SAME_ROW, TOUCH, Line, Lines, same_level
 from supplycheck.demand.piping import Link, Piping, read_piping
 from supplycheck.errors import DomainError
 from supplycheck.model import System
 
-STEP_HEIGHT: Final = 0.9144
-"""A step in height of more than 36 in [m] parts two levels (NFPA 13, ceiling steps; from memory)."""
-
-SLOPE: Final = 0.5
-STOREY: Final = 2.0
-"""Heads under a slope stay on one level up to a rise of 1 in 2 and of 2 m from one to the next."""
-
 PARALLEL: Final = math.radians(10)
 """Lines within 10° of each other in plan count as parallel."""
-
-
-def same_level(rise: float, distance: float) -> bool:
-    """Say whether two neighbouring heads with this rise [m] at this distance in plan [m] share a level.
-
-    >>> same_level(0.3, 3.0), same_level(3.0, 3.0)
-    (True, False)
-    """
-    return abs(rise) <= max(STEP_HEIGHT, min(SLOPE * abs(distance), STOREY)) + 1e-9
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class Line:
-    """A branch line, or one side of it.
-
-    ``heads`` are row numbers in order along the line; ``along`` [m] their coordinates, ``share`` [m] the
-    length of line that each stands for, ``across`` [m] the line's coordinate, ``sums`` the running sums
-    of area [m²], ``heights`` of elevation [m], ``width`` [m] how wide a strip its heads cover. ``fed``
-    says whether pipe goes on beyond its low and its high end. ``sides`` are the lines it joins.
-    """
-
-    name: str
-    heads: tuple[int, ...]
-    bay: int
-    along: FloatArray
-    across: float
-    share: FloatArray
-    sums: tuple[float, ...]
-    heights: tuple[float, ...]
-    width: float
-    fed: tuple[bool, bool]
-    sides: tuple[int, ...] = ()
-
-    def __len__(self) -> int:
-        return len(self.heads)
-
-
-@dataclass(frozen=True, slots=True)
-class Lines:
-    """All lines: the sides, and the lines joined across a main (``sides`` index into ``sides``)."""
-
-    sides: tuple[Line, ...]
-    joined: tuple[Line, ...]
-    inferred: bool
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -290,6 +241,56 @@ def _names(sides: list[list[int]], plan: _Plan, keys: list[tuple[int, float, flo
     return names
 
 
+def _end_to_end(sides: Sequence[Line]) -> list[tuple[int, int]]:
+    """Return the pairs of lines that meet end to end, in one row and on one level."""
+    pairs = []
+    order = sorted(range(len(sides)), key=lambda i: (sides[i].bay, sides[i].across))
+    rows: list[list[int]] = []
+    for i in order:
+        last = sides[rows[-1][-1]] if rows else None
+        if last and last.bay == sides[i].bay and sides[i].across - last.across <= SAME_ROW * last.width:
+            rows[-1].append(i)
+        else:
+            rows.append([i])
+    for row in rows:
+        row.sort(key=lambda i: float(sides[i].along[0]))
+        begins = [float(sides[i].along[0]) for i in row]
+        for i in row:
+            line = sides[i]
+            end, reach = float(line.along[-1]), TOUCH * float(line.share[-1])
+            top = line.heights[-1] - line.heights[-2]
+            for other in row[bisect_right(begins, end + 1e-6) : bisect_right(begins, end + reach)]:
+                rise = sides[other].heights[1] - top
+                if same_level(rise, float(sides[other].along[0]) - end):
+                    pairs.append((i, other))
+                    break
+    return pairs
+
+
+def _joined(
+    made: Sequence[Line], pairs: Sequence[tuple[int, int]], plan: _Plan, bays: list[float]
+) -> list[Line]:
+    """Return the lines that the sides make across a main (``pairs``) or end to end."""
+    groups, over_main = _Groups(len(made)), _Groups(len(made))
+    for a, b in pairs:
+        if made[a].bay == made[b].bay and abs(made[a].across - made[b].across) < 0.5 * made[a].width:
+            groups.merge(a, b)
+            over_main.merge(a, b)
+    for a, b in _end_to_end(made):
+        groups.merge(a, b)
+    joined = []
+    for group in groups.groups(range(len(made))):
+        if len(group) > 1:
+            group.sort(key=lambda i: float(made[i].along[0]))
+            rows = [row for side in group for row in made[side].heads]
+            name = "+".join(dict.fromkeys(made[side].name for side in group))
+            bay = made[group[0]].bay
+            line = _line(name, rows, bay, bays[bay], plan, tuple(group))
+            main = len(over_main.groups(group)) == 1
+            joined.append(replace(line, joint="across the main" if main else "end to end"))
+    return joined
+
+
 def find_lines(heads: Heads, system: System) -> Lines:
     """Return the branch lines of all heads, sides and joined ones.
 
@@ -317,16 +318,6 @@ def find_lines(heads: Heads, system: System) -> Lines:
     made = tuple(
         _line(names[i], rows, bay_of[i], bays[bay_of[i]], plan, (i,)) for i, rows in enumerate(sides)
     )
-    groups = _Groups(len(sides))
-    for a, b in pairs:
-        if bay_of[a] == bay_of[b] and abs(made[a].across - made[b].across) < 0.5 * made[a].width:
-            groups.merge(a, b)
-    joined = []
-    for group in groups.groups(range(len(sides))):
-        if len(group) > 1:
-            rows = [row for side in group for row in sides[side]]
-            name = "+".join(dict.fromkeys(names[side] for side in sorted(group, key=keys.__getitem__)))
-            bay = bay_of[group[0]]
-            joined.append(_line(name, rows, bay, bays[bay], plan, tuple(sorted(group))))
+    joined = _joined(made, pairs, plan, bays)
     inferred = any(node.branch_line is None for node in heads.nodes)
     return Lines(made, tuple(joined), inferred)

@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from supplycheck.demand.heads import FloatArray
-from supplycheck.demand.lines import Line
+from supplycheck.demand.line import Line
 
 IntArray = NDArray[np.int64]
 ROUND = 1e-9
@@ -73,17 +73,14 @@ def runs_of(line: Line, length: float, count: int) -> Runs:
 class Facing:
     """For each run of one line the run of another that faces it; −1 where none does.
 
-    ``first`` and ``last`` differ where two runs lie equally near on either hand (staggered heads).
+    ``first`` and ``last`` differ where two runs lie equally near on either hand (staggered heads): there
+    the run is ``tied``.
     """
 
     first: tuple[int, ...]
     last: tuple[int, ...]
     distance: tuple[float, ...]
-
-    @property
-    def tied(self) -> frozenset[int]:
-        """The runs that two runs face equally."""
-        return frozenset(i for i, (a, b) in enumerate(zip(self.first, self.last, strict=True)) if a != b)
+    tied: frozenset[int]
 
 
 def facing(own: Runs, other: Runs) -> Facing:
@@ -110,4 +107,5 @@ def facing(own: Runs, other: Runs) -> Facing:
     first_ok, last_ok = beside(first), beside(last)
     first = np.where(first_ok, first, np.where(last_ok, last, -1))
     last = np.where(last_ok, last, first)
-    return Facing(tuple(first.tolist()), tuple(last.tolist()), tuple(near.tolist()))
+    tied = frozenset(np.flatnonzero(first != last).tolist())
+    return Facing(tuple(first.tolist()), tuple(last.tolist()), tuple(near.tolist()), tied)

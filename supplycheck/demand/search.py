@@ -7,9 +7,10 @@ directions across are tried from every run of every line.
 
 Sources: 1.2√A parallel to the lines and whole heads up, NFPA 13 (2007), 11.2.3.1.1 and 22.4.4.1 (from
 memory); that the left-over heads may take any position is wider than the common practice of placing them
-nearest the cross main. A run crosses a main only where one of the sides of the line is shorter than 1.2√A
-(common practice, no source). EN 12845 (2015), 13.4.4 (from memory): whole lines and pairs of lines either
-side of a main, and areas as near square as can be for the most favourable one, are tried as well.
+nearest the cross main. A run crosses a main, or goes on over lines that meet end to end, only where one of
+them is shorter than 1.2√A (common practice, no source). EN 12845 (2015), 13.4.4 (from memory): whole
+lines and pairs of lines either side of a main, and areas as near square as can be for the most favourable
+one, are tried as well.
 """
 
 from __future__ import annotations
@@ -23,17 +24,11 @@ from typing import Final, NamedTuple
 import numpy as np
 
 from supplycheck.demand.heads import FloatArray, Heads
-from supplycheck.demand.lines import SLOPE, STEP_HEIGHT, STOREY, Line, Lines, same_level
+from supplycheck.demand.line import SAME_ROW, SLOPE, STEP_HEIGHT, STOREY, TOUCH, Line, Lines, same_level
 from supplycheck.demand.runs import ROUND, Facing, IntArray, Runs, facing, minimal_runs, runs_of
 
 CAP: Final = 200_000
 """Placements after which the search stops and says so."""
-
-TOUCH: Final = 1.75
-"""Lines further apart than this many times the width they cover do not touch."""
-
-SAME_ROW: Final = 0.25
-"""Lines closer across than this part of the width they cover stand in one row."""
 
 
 class Row(NamedTuple):
@@ -242,7 +237,7 @@ def _is_short(line: Line, rule: Rule) -> bool:
 
 
 def _spanning(lines: Lines, rule: Rule, everywhere: bool) -> tuple[Line, ...]:
-    """Return the lines, joined across the main where a side is too short (or everywhere)."""
+    """Return the lines, joined with their neighbours in the row where one is too short (or everywhere)."""
     chosen = [
         line
         for line in lines.joined
