@@ -156,9 +156,7 @@ def shape(context: CheckContext) -> Finding:
     text = "{most} heads at {pitch} along the line reach {measured}; {limit} asks {needed}."
     if len(short) > 1 or len(short) == len(on_line):
         tags = tuple(tag for line in short for tag in on_line[line])
-        text = (
-            f"Line {some(short)} has fewer than the {{needed}} heads that {{limit}} along the lines asks."
-        )
+        text = f"Short of the {{needed}} heads that {{limit}} along the lines asks: line {some(short)}."
         do = f"Take {needed} heads on each line before going to the next."
         return SHAPE.says("fail", text, measured=measured, limit=limit, values=values, tags=tags, remedy=do)
     if most < needed:
@@ -171,7 +169,7 @@ def proof(context: CheckContext) -> Finding:
     tried, heads = context.placements_tried, len(context.case.heads)
     measured = count(tried)
     if context.searched and (tried > 1 or heads == len(context.all_heads)):
-        text = f"{context.case.label} needs the most of {{measured}} placements tried."
+        text = f"Most demanding of {{measured}} placements tried: {context.case.label}."
         if tried <= 1:
             text = "The area takes in every head of the layout."
         return PROOF.says("ok", text, measured=measured)

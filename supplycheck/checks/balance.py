@@ -7,7 +7,7 @@ from collections import defaultdict
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, pressure
-from supplycheck.findings import Finding, State
+from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import FrictionLaw, Pipe
 
 PRESSURE = About(
@@ -66,14 +66,19 @@ def pressures(context: CheckContext) -> Finding:
     tag = max(gaps, key=lambda one: gaps[one], default="")
     most = gaps.get(tag, 0.0)
     limit = limits.BALANCE_EN if context.european else limits.BALANCE_NFPA
-    state: State = "ok" if most <= limit else "fail"
-    text = f"Pressures agree within {{measured}} (largest in {tag}); {{limit}} is allowed."
-    if state == "fail":
-        text = f"Pressures disagree by {{measured}} in {tag}; {{limit}} is allowed."
+    figure = "1 mbar" if context.european else "{limit}"
+    where = f", in {tag}" if tag else ""
+    return _judged(PRESSURE, pressure(most), pressure(limit), f"pressure{where}", figure, tag)
+
+
+def _judged(about: About, most: Measure, limit: Measure, what: str, figure: str, tag: str) -> Finding:
+    """The share is told, because the limit is about the last digit that is printed."""
+    state: State = "ok" if most.value <= limit.value else "fail"
+    values = {"share": Measure(most.value / limit.value, "percent")}
+    text = f"Largest disagreement of {what}: {{share}} of the {figure} allowed."
     do = "Do not use these results: the calculation contradicts itself." if state == "fail" else ""
-    return PRESSURE.says(
-        state, text, measured=pressure(most), limit=pressure(limit), tags=(tag,), remedy=do
-    )
+    tags = (tag,) if tag else ()
+    return about.says(state, text, measured=most, limit=limit, tags=tags, values=values, remedy=do)
 
 
 def mass(context: CheckContext) -> Finding:
@@ -90,12 +95,7 @@ def mass(context: CheckContext) -> Finding:
         net[pipe.end] += amount
     worst = max(net, key=lambda tag: abs(net[tag]))
     off, limit = abs(net[worst]), limits.BALANCE_FLOW_EN if context.european else limits.BALANCE_FLOW_NFPA
-    state: State = "ok" if off <= limit else "fail"
-    text = f"Flow in and out agree within {{measured}} (largest at {worst}); {{limit}} is allowed."
-    if state == "fail":
-        text = f"Flow in and out disagree by {{measured}} at {worst}; {{limit}} is allowed."
-    do = "Do not use these results: the calculation contradicts itself." if state == "fail" else ""
-    return MASS.says(state, text, measured=flow(off), limit=flow(limit), tags=(worst,), remedy=do)
+    return _judged(MASS, flow(off), flow(limit), f"flow, at {worst}", "{limit}", worst)
 
 
 RULES = (Rule(PRESSURE, pressures), Rule(MASS, mass))

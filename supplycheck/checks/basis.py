@@ -20,6 +20,20 @@ AUTHORITY = About(
     ("ok", "missing"),
     "NFPA 13, hydraulic data report: approving agency",
 )
+OCCUPANCY = About(
+    "occupancy behind the hazard",
+    "whether the occupancy for which the hazard class is chosen is described",
+    ("ok", "missing"),
+    "NFPA 13, hydraulic data report: hazard description; a class too low is the commonest real error",
+    weight=3,
+)
+PLAN = About(
+    "every node on the plan",
+    "whether every node has its place in plan",
+    ("ok", "missing"),
+    "NFPA 13, hydraulic data report: reference points on the plan",
+    weight=1,
+)
 FRICTION = About(
     "friction formula",
     "friction law against the form that the standard prints, and against the fluid",
@@ -67,6 +81,27 @@ def authority(context: CheckContext) -> Finding:
         ask = "Which authority reviews this project?"
         return AUTHORITY.says("missing", "Not run: no authority is named.", remedy=ask)
     return AUTHORITY.says("ok", f"To be reviewed by {name}.")
+
+
+def occupancy(context: CheckContext) -> Finding:
+    """The program cannot judge the class; it shows on what it rests."""
+    facts, hazard = context.project.facts, context.project.criteria.hazard
+    if not facts.occupancy.strip():
+        ask = f"What is done and stored in the building, how high, that {hazard} covers it?"
+        return OCCUPANCY.says("missing", "Not run: no occupancy is described.", remedy=ask)
+    return OCCUPANCY.says(
+        "ok", f"{hazard[0].upper()}{hazard[1:]} is chosen for: {facts.occupancy.strip()}."
+    )
+
+
+def plan(context: CheckContext) -> Finding:
+    """Tables may leave the coordinates out."""
+    bare = tuple(node.tag for node in context.project.system.nodes if node.x is None or node.y is None)
+    if bare:
+        ask = f"Where in plan do {some(bare)} lie?"
+        text = f"Not run: {len(bare)} nodes have no place in plan: {some(bare)}."
+        return PLAN.says("missing", text, tags=bare, remedy=ask)
+    return PLAN.says("ok", "Every node has its place in plan.")
 
 
 def friction(context: CheckContext) -> Finding:
@@ -122,15 +157,17 @@ def full_calculation(context: CheckContext) -> Finding:
 
 def assumed(context: CheckContext) -> Finding:
     """Assumed is what nobody gave; catalogue and inferred values have their source, paper has no weight."""
-    keys = tuple(
-        note.key
+    notes = [
+        note
         for note in context.project.assumptions
         if note.origin == "assumed" and not note.key.startswith("project.")
-    )
-    if not keys:
+    ]
+    if not notes:
         return ASSUMED.says("ok", "No value is assumed.", measured=count(0))
-    text = f"{{measured}} assumed: {some(keys)}."
-    ask = f"Are the assumed values right: {some(keys)}?"
+    told = some((f"{note.key} = {note.value}" for note in notes), show=3)
+    text = f"{{measured}} assumed: {told}."
+    ask = f"Are the assumed values right: {told}?"
+    keys = tuple(note.key for note in notes)
     return ASSUMED.says("ask authority", text, measured=count(len(keys)), tags=keys, remedy=ask)
 
 
@@ -144,6 +181,8 @@ def outside(context: CheckContext) -> Finding:
 RULES = (
     Rule(EDITION, edition),
     Rule(AUTHORITY, authority),
+    Rule(OCCUPANCY, occupancy),
+    Rule(PLAN, plan),
     Rule(FRICTION, friction),
     Rule(FULL, full_calculation),
     Rule(ASSUMED, assumed),

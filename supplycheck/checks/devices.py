@@ -67,7 +67,7 @@ def fixed(context: CheckContext) -> Finding:
         return FIXED.says("ok", "Each device takes its loss from a curve.", tags=tuple(devices))
     tags = tuple(device.tag for device in guessed)
     through = max((abs(q) for _, device, q in _flowing(context) if device.tag == tags[0]), default=0.0)
-    text = f"{some(tags)} has a fixed loss, {{measured}} at {{flow}} through {tags[0]}."
+    text = f"Fixed loss at {some(tags)}: {{measured}} whatever the flow; {{flow}} passes {tags[0]}."
     return FIXED.says(
         "ask authority",
         text,

@@ -7,7 +7,7 @@ from collections.abc import Callable
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.flow_test_common import NO_TEST, age, field_tests, last_day, no_reading
-from supplycheck.checks.rule import About, Rule, some
+from supplycheck.checks.rule import About, Rule, named, some
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import FlowTest
 
@@ -73,8 +73,8 @@ def _facts(
     if not lacking:
         return about.says("ok", fine, tags=tuple(test.tag for test in tests))
     what = next(iter(lacking.values()))
-    text = f"Not run: test {some(lacking)} does not say {what}."
-    return about.says("missing", text, tags=tuple(lacking), remedy=ask.format(tests=some(lacking)))
+    text = f"Not run: {named(*lacking)} does not say {what}."
+    return about.says("missing", text, tags=tuple(lacking), remedy=ask.format(tests=named(*lacking)))
 
 
 def people(context: CheckContext) -> Finding:
@@ -87,13 +87,13 @@ def people(context: CheckContext) -> Finding:
             if not name.strip()
         )
 
-    ask = "Who ran test {tests}, and who witnessed it?"
+    ask = "Who ran {tests}, and who witnessed it?"
     return _facts(PEOPLE, context, lack, "Those who ran and witnessed the test are named.", ask)
 
 
 def time_of_day(context: CheckContext) -> Finding:
     """Any text that is not empty will do."""
-    ask = "At what hour was test {tests} run?"
+    ask = "At what hour was {tests} run?"
     fine = "The hour of the test is given."
     return _facts(TIME, context, lambda test: "" if test.time.strip() else "the hour", fine, ask)
 
@@ -116,11 +116,11 @@ def hydrants(context: CheckContext) -> Finding:
 
     one = tuple(test.tag for test in field_tests(context) if same(test))
     if one:
-        text = f"In test {some(one)} the gauge stood on the hydrant that flowed."
+        text = f"In {named(*one)} the gauge stood on the hydrant that flowed."
         return HYDRANTS.says(
             "fail", text, tags=one, remedy="Test again with the gauge on a second hydrant."
         )
-    ask = "Which hydrant carried the gauge and which one flowed in test {tests}?"
+    ask = "Which hydrant carried the gauge and which one flowed in {tests}?"
     return _facts(HYDRANTS, context, lack, "Gauge and flowing hydrants are named and differ.", ask)
 
 
@@ -132,19 +132,19 @@ def calibration(context: CheckContext) -> Finding:
     dated = [(test, test.gauge_calibrated) for test in tests if test.gauge_calibrated is not None]
     if len(dated) < len(tests):
         lacking = [test.tag for test in tests if test.gauge_calibrated is None]
-        text = f"Not run: test {some(lacking)} does not say when the gauges were calibrated."
-        ask = f"When were the gauges of test {some(lacking)} last calibrated?"
+        text = f"Not run: {named(*lacking)} does not say when the gauges were calibrated."
+        ask = f"When were the gauges of {named(*lacking)} last calibrated?"
         return CALIBRATION.says("missing", text, tags=tuple(lacking), remedy=ask)
     test, day = max(dated, key=lambda one: (one[0].date - one[1]).days)
     after = next((test for test, day in dated if day > test.date), None)
     if after is not None:
-        ask = f"Were the gauges of test {after.tag} in calibration on the day of the test?"
-        text = f"The gauges of test {after.tag} were calibrated after the test."
+        ask = f"Were the gauges of {named(after.tag)} in calibration on the day of the test?"
+        text = f"The gauges of {named(after.tag)} were calibrated after the test."
         return CALIBRATION.says("ask authority", text, tags=(after.tag,), remedy=ask)
     measured, limit = age(day, test.date), Measure(limits.GAUGE_YEARS, "age")
-    text = f"The gauges of test {test.tag} were calibrated {{measured}} before it"
+    text = f"The gauges of {named(test.tag)} were calibrated {{measured}} before it"
     if test.date > last_day(day, 12):
-        ask = f"Is the gauge calibration of {day} accepted for test {test.tag}?"
+        ask = f"Is the gauge calibration of {day} accepted for {named(test.tag)}?"
         return CALIBRATION.says(
             "ask authority",
             f"{text}; {{limit}} is usual.",
@@ -158,7 +158,7 @@ def calibration(context: CheckContext) -> Finding:
 
 def main(context: CheckContext) -> Finding:
     """Any text that is not empty will do."""
-    ask = "On which main, of what size, do the hydrants of test {tests} stand?"
+    ask = "On which main, of what size, do the hydrants of {tests} stand?"
     fine = "The main of the test is named."
     return _facts(MAIN, context, lambda test: "" if test.main.strip() else "the main", fine, ask)
 
@@ -182,7 +182,7 @@ def gauge(context: CheckContext) -> Finding:
         "gauge": Measure(test.gauge_elevation, "length"),
         "node": Measure(node.elevation, "length"),
     }
-    text = f"The gauge of test {test.tag} stands at {{gauge}}, node {node.tag} at {{node}}"
+    text = f"The gauge of {named(test.tag)} stands at {{gauge}}, node {node.tag} at {{node}}"
     if apart > _FAR_GAUGE:
         return GAUGE.says(
             "ask authority",
@@ -191,7 +191,7 @@ def gauge(context: CheckContext) -> Finding:
             limit=Measure(_FAR_GAUGE, "length"),
             tags=(test.tag, node.tag),
             values=values,
-            remedy=f"Are the gauge of test {test.tag} and node {node.tag} measured from one datum?",
+            remedy=f"Are the gauge of {named(test.tag)} and node {node.tag} measured from one datum?",
         )
     return GAUGE.says("ok", f"{text}.", measured=values["gauge"], tags=(test.tag,), values=values)
 

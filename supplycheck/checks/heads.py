@@ -196,7 +196,7 @@ def listed(context: CheckContext) -> Finding:
             covered[node.tag] = (node.area, kind.coverage_area)
     over = any(area > limit * (1 + limits.ROUND_OFF) for area, limit in covered.values())
     if (unsaid and not over) or not covered:
-        names = some(unsaid) or "any sprinkler type"
+        names = f"sprinkler type {some(unsaid)}" if unsaid else "any sprinkler type"
         ask = f"What floor area is {names} listed to cover?"
         return LISTED.says(
             "missing", f"Not run: no listed coverage for {names}.", tags=tuple(unsaid), remedy=ask

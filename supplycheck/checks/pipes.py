@@ -47,9 +47,9 @@ TEES = About(
 )
 ELEVATIONS = About(
     "elevations given",
-    "whether any elevation is assumed",
-    ("ok", "missing"),
-    "reviewers' practice, no source",
+    "whether any elevation is assumed, and whether all are the same",
+    ("ok", "ask authority", "missing"),
+    "reviewers' practice, no source: elevations without a datum are among the commonest errors",
     weight=3,
 )
 RISES = About(
@@ -162,11 +162,12 @@ def nominal_size(text: str, *, metric: bool) -> float | None:
 def bore(context: CheckContext) -> Finding:
     """12 in standard pipe is 12.000 in bore and so is exempt."""
     metric = context.project.units == "metric"
-    nominal = {pipe.tag: nominal_size(pipe.nominal, metric=metric) for pipe in context.project.system.pipes}
+    written = {pipe.nominal for pipe in context.project.system.pipes}
+    nominal = {text: nominal_size(text, metric=metric) for text in written}
     same = [
         pipe
         for pipe in context.project.system.pipes
-        for size in (nominal[pipe.tag],)
+        for size in (nominal[pipe.nominal],)
         if size is not None and abs(pipe.bore - size) < 5e-4 * size and abs(size - 12 * limits.INCH) > 1e-4
     ]
     if same:
@@ -264,7 +265,7 @@ def elevations(context: CheckContext) -> Finding:
         if "elevation" in note.key and note.origin == "assumed"
     )
     if keys:
-        ask = f"What are the elevations for {some(keys)}, on one datum?"
+        ask = f"What is {some(keys)}, on the datum of all other elevations?"
         return ELEVATIONS.says(
             "missing", f"Not run: assumed elevations: {some(keys)}.", tags=keys, remedy=ask
         )
@@ -273,6 +274,10 @@ def elevations(context: CheckContext) -> Finding:
         "low": Measure(min(node.elevation for node in nodes), "length"),
         "high": Measure(max(node.elevation for node in nodes), "length"),
     }
+    if len(nodes) > 1 and values["low"] == values["high"]:
+        ask = "Do supply, pipes and heads really lie at one elevation?"
+        text = "Every node lies at {low}, supply and heads alike."
+        return ELEVATIONS.says("ask authority", text, values=values, remedy=ask)
     return ELEVATIONS.says("ok", "Elevations are given at every node, {low} to {high}.", values=values)
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.flow_test_common import NO_TEST, age, field_tests, last_day, no_reading, outlets_of
-from supplycheck.checks.rule import About, Rule, pressure, some
+from supplycheck.checks.rule import About, Rule, named, pressure
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import FlowTest
 
@@ -58,17 +58,20 @@ def age_of_test(context: CheckContext) -> Finding:
     submittal = supply.submittal_date
     if submittal is None:
         old = age(oldest.date, context.project.facts.date)
-        text = f"Not run: no submittal date. Test {oldest.tag} is {{measured}} old at the project's date."
+        said = f"{named(oldest.tag, start=True)} is {{measured}} old at the project's date."
+        text = f"Not run: no submittal date. {said}"
         ask = "On which date are the documents submitted?"
         return TEST_AGE.says("missing", text, measured=old, limit=limit, tags=tags, remedy=ask)
     old = age(oldest.date, submittal)
     newest = max(supply.tests, key=lambda test: test.date)
     if newest.date > submittal:
-        text = f"Test {newest.tag} is dated after the submittal ({newest.date} and {submittal})."
+        text = (
+            f"{named(newest.tag, start=True)} is dated after the submittal ({newest.date} and {submittal})."
+        )
         return TEST_AGE.says("fail", text, tags=(newest.tag,), remedy="Correct one of the two dates.")
-    said = f"Test {oldest.tag} is {{measured}} old at submittal"
+    said = f"{named(oldest.tag, start=True)} is {{measured}} old at submittal"
     if months is None:
-        ask = f"How old may a flow test be at submittal (test {oldest.tag} is of {oldest.date})?"
+        ask = f"How old may a flow test be at submittal ({named(oldest.tag)} is of {oldest.date})?"
         return TEST_AGE.says(
             "ask authority", f"{said}; no limit is given.", measured=old, tags=tags, remedy=ask
         )
@@ -90,7 +93,7 @@ def drop(context: CheckContext) -> Finding:
     worst = min(tests, key=share)
     measured, tags = Measure(share(worst), "percent"), (worst.tag,)
     values = {"new": Measure(limits.DROP_NOW, "percent"), "old": Measure(limits.DROP_OLD, "percent")}
-    said = f"Test {worst.tag} pulled the static down by {{measured}}"
+    said = f"{named(worst.tag, start=True)} pulled the static down by {{measured}}"
     limit = values["new"]
     if share(worst) < limits.DROP_NOW * (1 - limits.ROUND_OFF):
         do = "Have it tested again with more outlets open; the curve is not proven by so small a drop."
@@ -108,7 +111,7 @@ def drop(context: CheckContext) -> Finding:
         text = f"{said}, at least {{limit}}, and flowed the full demand."
         return DROP.says("ok", text, measured=measured, limit=limit, tags=tags)
     text = f"{said}: enough for later editions ({{new}}), not for older ones ({{old}} or the full demand)."
-    ask = f"Is a drop under 25 % accepted for test {worst.tag}, which did not flow the full demand?"
+    ask = f"Is a drop under 25 % accepted for {named(worst.tag)}, which did not flow the full demand?"
     return DROP.says(
         "ask authority", text, measured=measured, limit=limit, tags=tags, remedy=ask, values=values
     )
@@ -141,12 +144,12 @@ def pitot(context: CheckContext) -> Finding:
     do = "open fewer outlets" if outlet.pitot < limits.PITOT_LOW else "open more outlets"
     return PITOT.says(
         "ask authority",
-        f"A 2½ in outlet of test {test.tag} was read at {{measured}}, {side}.",
+        f"A 2½ in outlet of {named(test.tag)} was read at {{measured}}, {side}.",
         measured=pressure(outlet.pitot),
         limit=pressure(limits.PITOT_LOW if outlet.pitot < limits.PITOT_LOW else limits.PITOT_HIGH),
         tags=(test.tag,),
         values=values,
-        remedy=f"Is the reading of test {test.tag} accepted, or should a new test {do}?",
+        remedy=f"Is the reading of {named(test.tag)} accepted, or should a new test {do}?",
     )
 
 
@@ -157,18 +160,18 @@ def outlet_diameter(context: CheckContext) -> Finding:
         return no_reading(DIAMETER, context)
     bare = [test.tag for test in tests if not any(point.outlets for point in test.points)]
     if bare:
-        text = f"Not run: the flow of test {some(bare)} is a number without its readings."
-        ask = f"Which outlets flowed in test {some(bare)}, of what measured diameter, at what pitot?"
+        text = f"Not run: the flow of {named(*bare)} is a number without its readings."
+        ask = f"Which outlets flowed in {named(*bare)}, of what measured diameter, at what pitot?"
         return DIAMETER.says("missing", text, tags=tuple(bare), remedy=ask)
     unsaid = [test.tag for test in tests if test.outlet_diameter_measured is None]
     if unsaid:
-        text = f"Not run: whether the outlets of test {some(unsaid)} were measured is not said."
-        ask = f"Was the inside diameter of each outlet measured in test {some(unsaid)}?"
+        text = f"Not run: whether the outlets of {named(*unsaid)} were measured is not said."
+        ask = f"Was the inside diameter of each outlet measured in {named(*unsaid)}?"
         return DIAMETER.says("missing", text, tags=tuple(unsaid), remedy=ask)
     nominal = [test.tag for test in tests if not test.outlet_diameter_measured]
     if nominal:
-        text = f"The outlets of test {some(nominal)} were taken at nominal size."
-        ask = f"Are nominal outlet diameters accepted for test {some(nominal)}?"
+        text = f"The outlets of {named(*nominal)} were taken at nominal size."
+        ask = f"Are nominal outlet diameters accepted for {named(*nominal)}?"
         return DIAMETER.says("ask authority", text, tags=tuple(nominal), remedy=ask)
     return DIAMETER.says("ok", "The flowing outlets were measured.", tags=tuple(t.tag for t in tests))
 
@@ -183,9 +186,9 @@ def pumper(context: CheckContext) -> Finding:
     if not large:
         return PUMPER.says("not applicable", "No outlet of 4 in or more was flowed.")
     without = tuple({test.tag: 0 for test, outlet in large if outlet.pumper_factor >= 1})
-    table = "Use the factor of the outlet's pitot reading (0.83 at 7 psi and more)."
+    table = "Use the factor of its pitot reading (0.83 at 7 psi and more); the flow is too high by a fifth."
     if without:
-        text = f"Test {some(without)} flows an outlet of 4 in or more without its factor: too much flow."
+        text = f"{named(*without, start=True)} flows an outlet of 4 in or more without its pumper factor."
         one = Measure(1.0, "ratio")
         return PUMPER.says("fail", text, measured=one, tags=without, remedy=table)
     for test, outlet in large:
@@ -196,11 +199,11 @@ def pumper(context: CheckContext) -> Finding:
             printed = "the table starts at 2 psi" if published is None else "the table gives {limit}"
             return PUMPER.says(
                 "ask authority",
-                f"Test {test.tag} uses a pumper factor of {{measured}}; {printed}.",
+                f"{named(test.tag, start=True)} uses a pumper factor of {{measured}}; {printed}.",
                 measured=used,
                 limit=limit,
                 tags=(test.tag,),
-                remedy=f"What is the pumper factor of test {test.tag} taken from?",
+                remedy=f"What is the pumper factor of {named(test.tag)} taken from?",
             )
     lowest = min(outlet.pumper_factor for _, outlet in large)
     tags = tuple({test.tag: 0 for test, _ in large})

@@ -73,6 +73,19 @@ def count(value: int) -> Measure:
     return Measure(float(value), "count")
 
 
+def named(*tags: str, start: bool = False) -> str:
+    """Return flow tests in words, with a capital at the ``start`` of a sentence.
+
+    A tag that says "test" itself is not told so again.
+
+    >>> named("T-1", "T-2"), named("test 1", start=True)
+    ('test T-1, T-2', 'Test 1')
+    """
+    text = some(tags)
+    text = text if text.casefold().startswith("test") else f"test {text}"
+    return text[0].upper() + text[1:] if start else text
+
+
 def some(tags: Iterable[str], show: int = 4) -> str:
     """Return the first tags in words and how many more there are.
 

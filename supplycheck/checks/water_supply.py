@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
-from supplycheck.checks.rule import About, Rule, flow, pressure, some
+from supplycheck.checks.rule import About, Rule, flow, named, pressure, some
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import Pipe
 
@@ -81,7 +81,7 @@ def tested_range(context: CheckContext) -> Finding:
     ratio = tested_ratio(context)
     tags = tuple(test.tag for test in context.project.supply.tests)
     if ratio is None:
-        ask = f"What was the largest flow of test {some(tags)}?"
+        ask = f"What was the largest flow of {named(*tags)}?"
         return RANGE.says("missing", "Not run: the test has no point with flow.", tags=tags, remedy=ask)
     one, values = Measure(1.0, "percent"), {"demand": flow(context.comparison.demand_flow)}
     text = "The demand of {demand} is {measured} of the tested flow"
@@ -116,7 +116,7 @@ def small_drop(context: CheckContext) -> Finding:
     tag = min(shares, key=lambda one: shares[one])
     measured, limit = Measure(shares[tag], "percent"), Measure(limits.DROP_NOW, "percent")
     values = {"ratio": Measure(ratio, "percent")}
-    text = f"The curve of test {tag} is carried on to {{ratio}} of its flow from a drop of {{measured}}"
+    text = f"The curve of {named(tag)} is carried on to {{ratio}} of its flow from a drop of {{measured}}"
     if shares[tag] < limits.DROP_NOW * (1 - limits.ROUND_OFF):
         do = "Have the main tested at the demand flow: the extrapolated pressure is not reliable."
         return SMALL_DROP.says(
@@ -262,8 +262,8 @@ def carried(context: CheckContext) -> Finding:
         return CARRIED.says("not applicable", "No flow test feeds this system.")
     outside = tuple(test.tag for test in tests if test.node not in context.nodes)
     if outside:
-        text = f"Not run: test {some(outside)} stands at no node of the calculation."
-        ask = f"At which node of the calculation does test {some(outside)} apply?"
+        text = f"Not run: {named(*outside)} stands at no node of the calculation."
+        ask = f"At which node of the calculation does {named(*outside)} apply?"
         return CARRIED.says("missing", text, tags=outside, remedy=ask)
     buried = {
         tag
@@ -313,7 +313,8 @@ def margin(context: CheckContext) -> Finding:
             "missing", text, measured=measured, values=values, tags=(facts.node,), remedy=ask
         )
     state: State = "ok" if facts.margin >= facts.required else "fail"
-    text = f"{{measured}} is left, {{limit}} is asked, {at}."
+    asked = "no margin" if facts.required == 0 else "{limit}"
+    text = f"{{measured}} is left, {asked} is asked, {at}."
     return MARGIN.says(
         state,
         text,

@@ -261,7 +261,13 @@ def sound() -> CheckContext:
     )
     project = Project(
         facts=ProjectFacts(
-            "Depot", "Mill Road", "preliminary", dt.date(2026, 11, 20), "NFPA 13 (2022)", "county"
+            "Depot",
+            "Mill Road",
+            "preliminary",
+            dt.date(2026, 11, 20),
+            "NFPA 13 (2022)",
+            "county",
+            occupancy="sorting of parcels",
         ),
         units="us",
         criteria=criteria,
