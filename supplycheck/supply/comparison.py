@@ -25,7 +25,7 @@ from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margi
 from supplycheck.supply.narration import supply_steps
 from supplycheck.supply.route import CarriedCurve, no_flow_pressure, solved_route
 from supplycheck.supply.sources import NodeSupply
-from supplycheck.supply.words import Step, Words, escaped
+from supplycheck.supply.words import Step, Value, Words
 
 
 @dataclass(frozen=True, slots=True)
@@ -284,8 +284,12 @@ def _range_notes(shares: tuple[SourceShare, ...], carried: CarriedCurve) -> tupl
     notes = []
     for share in shares:
         if share.extrapolated:
-            values = (("flow", share.flow, "flow"), ("tested", share.tested_flow, "flow"))
-            text = f"At {escaped(share.node)} the demand of " + "{flow} lies beyond the tested {tested}: "
+            values: tuple[Value, ...] = (
+                ("node", share.node, ""),
+                ("flow", share.flow, "flow"),
+                ("tested", share.tested_flow, "flow"),
+            )
+            text = "At {node} the demand of {flow} lies beyond the tested {tested}: "
             notes.append(Words(text + "the curve is extrapolated there.", values))
     if not carried.route.within_devices(carried.route.flow):
         notes.append(

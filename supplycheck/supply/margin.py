@@ -20,9 +20,7 @@ from dataclasses import dataclass
 from supplycheck.errors import DomainError
 from supplycheck.model import MarginRule
 from supplycheck.supply.curve import SupplyCurve
-from supplycheck.supply.words import Step, Words
-
-Value = tuple[str, float, str]
+from supplycheck.supply.words import Step, Value, Words
 
 
 @dataclass(frozen=True, slots=True)

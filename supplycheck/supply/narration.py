@@ -5,7 +5,7 @@ from __future__ import annotations
 from supplycheck.supply.curve import SupplyCurve
 from supplycheck.supply.route import Route
 from supplycheck.supply.sources import NodeSupply
-from supplycheck.supply.words import Step, Words, escaped
+from supplycheck.supply.words import Step, Words
 
 
 def curve_words(curve: SupplyCurve, flow: float) -> Words:
@@ -40,15 +40,13 @@ def supply_steps(
     measured = supply.measured_member(flow)
     gauge = measured.lowered(measured.offset)
     if supply.tests:
-        value, title = gauge.pressure_at(flow), f"Test {escaped(measured.name)} at the demand flow"
+        value, title = gauge.pressure_at(flow), f"Test {measured.name} at the demand flow"
         steps.append(Step(title, curve_words(gauge, flow), value, "pressure", "at the gauge"))
         words = Words(
             "pressure at the gauge + {gain} for the height from the gauge to the node",
             (("gain", measured.offset, "pressure"),),
         )
-        steps.append(
-            Step(f"Carried to node {escaped(supply.node)}", words, value + measured.offset, "pressure")
-        )
+        steps.append(Step(f"Carried to node {supply.node}", words, value + measured.offset, "pressure"))
     for stage in supply.stages[0 if supply.tank else 1 :]:
         value = stage.curve.pressure_at(flow)
         steps.append(Step("Curve compared", stage.words, value, "pressure", "at the demand flow"))
@@ -63,12 +61,10 @@ def supply_steps(
             ),
         )
         value = available - path.elevation - path.friction - path.device
-        steps.append(
-            Step(f"Carried to {escaped(at)}", words, value, "pressure", "losses at the demand flow")
-        )
+        steps.append(Step(f"Carried to {at}", words, value, "pressure", "losses at the demand flow"))
     words = Words(
         "demand {demand} + margin {margin}",
         (("demand", demand, "pressure"), ("margin", margin, "pressure")),
     )
-    steps.append(Step(f"Available at {escaped(at)}", words, demand + margin, "pressure"))
+    steps.append(Step(f"Available at {at}", words, demand + margin, "pressure"))
     return tuple(steps)

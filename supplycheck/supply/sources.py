@@ -14,7 +14,7 @@ from supplycheck.errors import DomainError
 from supplycheck.model import Adjustment, FlowTest, Project, Supply, System, Tank
 from supplycheck.network.records import SourceCurve
 from supplycheck.supply.curve import SupplyCurve, constant_curve, curve_through, lower_envelope
-from supplycheck.supply.words import Words, escaped
+from supplycheck.supply.words import Words
 
 _PSI: Final = 0.45359237 * 9.80665 / 0.0254**2
 READING: Final = 1.0 * _PSI
@@ -105,14 +105,18 @@ def adjust(curve: SupplyCurve, adjustment: Adjustment) -> SupplyCurve:
 
 def adjustment_words(adjustment: Adjustment) -> Words:
     """Return what an adjustment does, in words and numbers, with the reason as typed."""
-    reason = f" ({escaped(adjustment.reason)})" if adjustment.reason else ""
+    reason = " ({reason})" if adjustment.reason else ""
     if adjustment.kind == "low supply":
         text = "low supply: static and residual lowered by {pressure}"
     elif adjustment.kind == "static cap":
         text = "static cap: no pressure at the gauge above {pressure}"
     else:
         text = "percent: every pressure at the gauge multiplied by {factor}"
-    values = (("pressure", adjustment.pressure, "pressure"), ("factor", adjustment.factor, "ratio"))
+    values = (
+        ("pressure", adjustment.pressure, "pressure"),
+        ("factor", adjustment.factor, "ratio"),
+        ("reason", adjustment.reason, ""),
+    )
     return Words(text + reason, values)
 
 
@@ -128,12 +132,12 @@ def off_line(test: FlowTest) -> float:
 
 def _test_notes(tests: Iterable[FlowTest]) -> list[Words]:
     text = (
-        "do not lie on one N^1.85 line: they are up to {deviation} from the line through static and the "
-        "largest flow. The curve is straight between the readings; beyond them it follows the steeper of "
-        "the last piece and that line."
+        "The readings of flow test {tag} do not lie on one N^1.85 line: they are up to {deviation} from "
+        "the line through static and the largest flow. The curve is straight between the readings; beyond "
+        "them it follows the steeper of the last piece and that line."
     )
     return [
-        Words(f"The readings of flow test {escaped(test.tag)} {text}", (("deviation", away, "pressure"),))
+        Words(text, (("tag", test.tag, ""), ("deviation", away, "pressure")))
         for test in tests
         if (away := off_line(test)) > READING
     ]
@@ -149,8 +153,8 @@ def _from_tests(
     words = "as measured"
     if len(tests) > 1:
         words += f": the lowest of {len(tests)} tests at each flow (low-supply curve)"
-        text = f"Node {escaped(node)} has {len(tests)} flow tests; the lowest at each flow is used."
-        notes.append(Words(text))
+        text = f"has {len(tests)} flow tests; the lowest at each flow is used."
+        notes.append(Words("Node {node} " + text, (("node", node, ""),)))
 
     def placed() -> tuple[SupplyCurve, ...]:
         return tuple(curve.at_height(gain, node) for curve, gain in zip(at_gauge, gains, strict=True))
@@ -166,8 +170,13 @@ def _from_tests(
 def _from_tank(tank: Tank, elevation: float, unit_weight: float) -> NodeSupply:
     curve = constant_curve(tank.tag, tank.node, unit_weight * (tank.water_level - elevation))
     words = Words(
-        f"{tank.kind} tank {escaped(tank.tag)}: " + "water level {level}, node at {elevation}",
-        (("level", tank.water_level, "length"), ("elevation", elevation, "length")),
+        "{kind} tank {tag}: water level {level}, node at {elevation}",
+        (
+            ("kind", tank.kind, ""),
+            ("tag", tank.tag, ""),
+            ("level", tank.water_level, "length"),
+            ("elevation", elevation, "length"),
+        ),
     )
     return NodeSupply(tank.node, (), tank, (curve,), (curve,), (Stage(words, curve),))
 

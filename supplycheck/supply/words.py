@@ -2,30 +2,40 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable
 from dataclasses import dataclass
+from typing import Final
+
+_NAME: Final = re.compile(r"\{(\w+)\}")
 
 Show = Callable[[float, str], str]
 """Shows a value [SI] of a kind of quantity as text with its unit, such as ``UnitSet.text``."""
 
 
+Value = tuple[str, float | str, str]
+"""A name, what fills it and its kind of quantity; a text (kind ``""``) is put in as it stands."""
+
+
 @dataclass(frozen=True, slots=True)
 class Words:
-    """A text with ``{names}`` in braces and the (name, value [SI], kind) that fill them."""
+    """A text with ``{names}`` in braces and the (name, value [SI] or text, kind) that fill them."""
 
     template: str
-    values: tuple[tuple[str, float, str], ...] = ()
+    values: tuple[Value, ...] = ()
 
     def fill(self, show: Show) -> str:
-        """Return the text with every value shown by ``show``.
+        """Return the text with every value shown by ``show``; a text put in is not read again.
 
-        >>> Words("lowered by {drop}", (("drop", 2.0, "pressure"),)).fill(lambda v, k: f"{v} Pa")
-        'lowered by 2.0 Pa'
+        >>> values = (("drop", 2.0, "pressure"), ("why", "{drop}", ""))
+        >>> Words("lowered by {drop} ({why})", values).fill(lambda value, kind: f"{value} Pa")
+        'lowered by 2.0 Pa ({drop})'
         """
-        text = self.template
-        for name, value, kind in self.values:
-            text = text.replace("{" + name + "}", show(value, kind))
-        return text
+        shown = {
+            name: value if isinstance(value, str) else show(value, kind)
+            for name, value, kind in self.values
+        }
+        return _NAME.sub(lambda found: shown.get(found[1], found[0]), self.template)
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,8 +47,3 @@ class Step:
     value: float
     kind: str
     note: str = ""
-
-
-def escaped(text: str) -> str:
-    """Return a user's text with braces made harmless inside a template."""
-    return text.replace("{", "(").replace("}", ")")

@@ -9,8 +9,17 @@ import pytest
 from supply_systems import UNIT_WEIGHT, Chain, flow_test, project_of
 
 from supplycheck.errors import DomainError
-from supplycheck.model import Outlet, Supply, Tank, TestPoint
-from supplycheck.supply import flow_test_facts, reduce_outlets, source_curves, supply_curves
+from supplycheck.model import Adjustment, MarginRule, Outlet, Supply, Tank, TestPoint
+from supplycheck.supply import (
+    MarginCase,
+    flow_test_facts,
+    gauge_curve,
+    reduce_outlets,
+    required_margin,
+    rule_words,
+    source_curves,
+    supply_curves,
+)
 from supplycheck.units import FOOT, GPM, INCH, PSI, US
 
 
@@ -131,3 +140,63 @@ def test_facts_of_a_test() -> None:
 def test_values_of_a_model_have_no_witness_to_ask_for() -> None:
     assert flow_test_facts(replace(flow_test(), model=True), dt.date(2026, 6, 2)).missing == ()
     assert flow_test_facts(flow_test(), dt.date(2026, 6, 2)).missing != ()
+
+
+def test_typed_texts_print_as_typed() -> None:
+    odd = Adjustment("low supply", pressure=5 * PSI, reason="{pressure} <b>{x}</b>")
+    (found,) = supply_curves(project_of(Chain(adjustments=(odd,))))
+    words = found.stages[1].words.fill(US.text)
+    assert words == "low supply: static and residual lowered by 5.0 psi ({pressure} <b>{x}</b>)"
+
+
+FIXED = MarginRule("fixed", pressure=5 * PSI)
+TENTH = MarginRule("percent", percent=0.1, reading="flow scaled")
+
+
+@pytest.mark.parametrize(
+    ("rule", "words"),
+    [
+        (None, "no margin rule is given"),
+        (MarginRule("none"), "none: the available pressure need only reach the demand"),
+        (FIXED, "at least 5.0 psi above the demand"),
+        (TENTH, "every flow on the supply curve reduced by 10.0%"),
+        (
+            MarginRule("larger of", parts=(MarginRule("of demand", percent=0.05), FIXED)),
+            "the larger of (5.0% of the demand pressure at the supply; at least 5.0 psi above the demand)",
+        ),
+        (
+            MarginRule("by static", bands=((50 * PSI, FIXED), (float("inf"), TENTH))),
+            "by the static pressure of the test (static below 50.0 psi: at least 5.0 psi above the demand; "
+            "otherwise: every flow on the supply curve reduced by 10.0%)",
+        ),
+        (
+            MarginRule("by test age", pressure=5 * PSI, free_years=5.0, per_year=PSI),
+            "5.0 psi above the demand, and 1.0 psi more for each full year of test age beyond 5.00 years",
+        ),
+    ],
+)
+def test_rules_in_words(rule: MarginRule | None, words: str) -> None:
+    assert rule_words(rule).fill(US.text) == words
+
+
+@pytest.mark.parametrize(
+    ("rule", "problem"),
+    [
+        (MarginRule("percent", percent=0.1), "how it is read"),
+        (MarginRule("percent", percent=1.0, reading="flow scaled"), "between 0 and 100 %"),
+        (MarginRule("larger of"), "needs its parts"),
+        (MarginRule("by static", bands=((10 * PSI, FIXED),)), "stop below the static"),
+    ],
+)
+def test_rules_without_their_numbers(rule: MarginRule, problem: str) -> None:
+    curve = gauge_curve(flow_test())
+    case = MarginCase(curve, 700 * GPM, 50 * PSI, curve.static, dt.date(2026, 1, 1), dt.date(2026, 2, 1))
+    with pytest.raises(DomainError, match=problem):
+        required_margin(rule, case)
+
+
+def test_a_rule_by_age_needs_a_test() -> None:
+    rule = MarginRule("by test age", pressure=5 * PSI, free_years=5.0, per_year=PSI)
+    case = MarginCase(gauge_curve(flow_test()), 700 * GPM, 50 * PSI, 82 * PSI, None, dt.date(2026, 2, 1))
+    with pytest.raises(DomainError, match="needs a flow test"):
+        required_margin(rule, case)
