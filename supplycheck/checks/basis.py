@@ -62,6 +62,10 @@ OUTSIDE = About(
 )
 
 
+_LONGEST = 80
+"""Characters of a description that a finding repeats."""
+
+
 def edition(context: CheckContext) -> Finding:
     """Figures change between editions, and amendments are nowhere in the file."""
     criteria, named = context.project.criteria, context.project.facts.standard.strip()
@@ -85,13 +89,13 @@ def authority(context: CheckContext) -> Finding:
 
 def occupancy(context: CheckContext) -> Finding:
     """The program cannot judge the class; it shows on what it rests."""
-    facts, hazard = context.project.facts, context.project.criteria.hazard
-    if not facts.occupancy.strip():
+    hazard = context.project.criteria.hazard
+    told = " ".join(context.project.facts.occupancy.split())
+    if not told:
         ask = f"What is done and stored in the building, how high, that {hazard} covers it?"
         return OCCUPANCY.says("missing", "Not run: no occupancy is described.", remedy=ask)
-    return OCCUPANCY.says(
-        "ok", f"{hazard[0].upper()}{hazard[1:]} is chosen for: {facts.occupancy.strip()}."
-    )
+    short = told if len(told) <= _LONGEST else f"{told[:_LONGEST].rstrip()}…"
+    return OCCUPANCY.says("ok", f"{hazard[:1].upper()}{hazard[1:]} is chosen for: {short}.")
 
 
 def plan(context: CheckContext) -> Finding:

@@ -18,6 +18,8 @@ Each rule looks at one thing and reports one state:
 | ok | the limit is kept, with what was measured |
 | not applicable | the rule has no object in this project, or lies outside the calculation |
 
+Rules on heads and on the design area are also not applicable where no sprinkler is part of the demand.
+
 "No fail" does not mean that a system complies: many rules of a standard cannot be seen in a hydraulic
 calculation, and the authority and its adopted edition govern. A source marked "from memory" was not read
 in the publication for this page.

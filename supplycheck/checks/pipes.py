@@ -288,11 +288,11 @@ def _rise(context: CheckContext, pipe: Pipe) -> float:
 def rises(context: CheckContext) -> Finding:
     """Lengths are typed to a hundredth, so each end may be off by half of it."""
     pipes = context.project.system.pipes
-    worst = max(pipes, key=lambda pipe: _rise(context, pipe) - pipe.length)
     short = [pipe for pipe in pipes if _rise(context, pipe) > pipe.length + limits.TYPED_LENGTH]
     if not short:
         return RISES.says("ok", "No pipe is shorter than its rise.")
     short.sort(key=lambda pipe: pipe.length - _rise(context, pipe))
+    worst = short[0]
     text = f"{worst.tag} is {{measured}} long but rises {{limit}} between {worst.start} and {worst.end}."
     measured, limit = Measure(worst.length, "length"), Measure(_rise(context, worst), "length")
     do = "Correct the length or an elevation."

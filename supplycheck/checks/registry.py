@@ -41,8 +41,17 @@ DISPLAY_ORDER: Final[tuple[State, ...]] = ("fail", "ask authority", "missing", "
 
 
 def run_checks(context: CheckContext) -> tuple[Finding, ...]:
-    """Return what every rule finds, in display order; no rule is left out."""
-    return in_display_order(rule.run(context) for rule in RULES)
+    """Return what every rule finds, in display order; no rule is left out.
+
+    Where no sprinkler is open, the rules on heads and on the design area are not applicable.
+    """
+    without = {rule.about.name for rule in (*area.RULES, *heads.RULES)} if not context.case.heads else set()
+    return in_display_order(
+        rule.about.says("not applicable", "No sprinkler is part of the demand.")
+        if rule.about.name in without
+        else rule.run(context)
+        for rule in RULES
+    )
 
 
 def in_display_order(findings: Iterable[Finding]) -> tuple[Finding, ...]:

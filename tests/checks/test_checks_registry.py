@@ -199,3 +199,19 @@ def test_tags_of_any_spelling_print_as_typed() -> None:
     context = built({"project.supply.tests.0.tag": odd, "project.supply.tests.0.time": ""})
     found = next(one for one in run_checks(context) if one.check == "time of day of the test")
     assert found.tags == (odd,)
+
+
+def test_demand_without_sprinklers_and_without_pipes_is_still_looked_at() -> None:
+    """A hydrant at the supply node: no head, no pipe; every rule still answers."""
+    found = run_checks(built({"case.heads": (), "project.system.pipes": ()}))
+    assert len(found) == len(RULES)
+    states = {one.check: one.state for one in found}
+    assert states["size of the design area"] == states["density at every head"] == "not applicable"
+    assert states["test age"] == "ok"
+
+
+def test_long_descriptions_are_cut_in_a_finding() -> None:
+    long = "boxes on pallets " * 10_000
+    found = {one.check: one for one in run_checks(built({"project.facts.occupancy": long}))}
+    text = found["occupancy behind the hazard"].text
+    assert len(text) < 160 and text.endswith("….")
