@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import json
-import math
 from typing import Any
 
 from supplycheck.commands.pipe_question import NextSize, Question
@@ -37,9 +36,14 @@ def digits(number: float, significant: int = 4) -> str:
     if size < 1e-4 or size >= 1e9:
         text = f"{number:.{significant - 1}e}"
     else:
-        places = significant - 1 - math.floor(math.log10(size))
+        places = significant - 1 - _order(size, significant)
         text = f"{round(number, places):,.{max(places, 0)}f}"
     return text.replace("-", "−", 1) if number < 0 else text
+
+
+def _order(size: float, significant: int = 4) -> int:
+    """Return the power of ten of ``size`` after rounding, so that 9.99999 counts as 10."""
+    return int(f"{size:.{significant - 1}e}".partition("e")[2])
 
 
 def _quantity(units: UnitSet, value: float, kind: str) -> str:
@@ -168,7 +172,7 @@ def _pressure_rows(question: Question, result: OnePipeResult) -> list[tuple[str,
 def _column(numbers: list[float]) -> list[str]:
     """Return numbers with the decimals that give the largest four significant digits."""
     largest = max(abs(number) for number in numbers)
-    places = min(max(3 - math.floor(math.log10(largest)), 0), 12) if largest > 0 else 0
+    places = min(max(3 - _order(largest), 0), 12) if largest > 0 else 0
     texts = [f"{number:,.{places}f}" for number in numbers]
     return [
         text.lstrip("-") if float(text.replace(",", "")) == 0 else text.replace("-", "−") for text in texts
@@ -208,9 +212,13 @@ def _step_lines(question: Question, result: OnePipeResult) -> list[str]:
             f"taken less available [{units.symbol('pressure')}]",
         )
     ]
+    largest = max(abs(step.imbalance) for step in result.steps)
     for number, step in enumerate(result.steps, 1):
         trial = f"{units.from_si(step.trial, kind):.8g}"
-        rows.append((step.phase, str(number), trial, f"{units.from_si(step.imbalance, 'pressure'):.3e}"))
+        over_text = f"{units.from_si(step.imbalance, 'pressure'):+.3e}".replace("-", "−")
+        if abs(step.imbalance) < 1e-7 * largest:
+            over_text = "0"  # rounding of the last digits, which differs between machines
+        rows.append((step.phase, str(number), trial, over_text))
     return ["Search: enclose the answer, then narrow (method of Brent)", *_table(rows)]
 
 
