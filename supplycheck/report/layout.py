@@ -104,6 +104,8 @@ def _facts(sheets: Sheets, block: Facts) -> None:
     share = sheets.room / columns
     widest = max((sheets.ruler.width(label, size) for label, _ in block.pairs), default=0.0)
     label_room = min(widest + 10, share * 0.42)
+    if len(block.pairs) <= 8 * columns:
+        sheets.need(len(block.pairs) / columns * (leading + 1.6))
     for first in range(0, len(block.pairs), columns):
         group = block.pairs[first : first + columns]
         labels = [wrap(label, label_room - 6, size, sheets.ruler) for label, _ in group]

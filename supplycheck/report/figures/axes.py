@@ -140,7 +140,7 @@ def put_label(
     taken: Taken, point: tuple[float, float], text: str, style: Label, reach: Reach = "around"
 ) -> Label | None:
     """Return ``style`` with ``text`` placed beside ``point``, or ``None`` where it does not fit."""
-    found = taken.place(*point, text, style.size, gap=5.0, bold=style.bold, reach=reach)
+    found = taken.place(*point, text, style.size, gap=5.5, bold=style.bold, reach=reach)
     if found is None:
         return None
     x, y, anchor = found

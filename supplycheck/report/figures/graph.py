@@ -21,7 +21,7 @@ _CURVES: Final[dict[str, tuple[str, float, tuple[float, ...]]]] = {
     "measured": (SLATE, 1.1, ()),
     "adjusted": (PETROL, 2.0, ()),
     "combined": (PETROL, 2.4, ()),
-    "demand": (CLAY, 1.4, ()),
+    "demand": (CLAY, 1.4, (7.0, 2.0, 1.5, 2.0)),
     "tank": (LAGOON, 1.4, ()),
     "pump": (PLUM, 1.4, ()),
 }

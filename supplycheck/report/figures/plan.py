@@ -28,6 +28,8 @@ class PlanView:
     tags_shown: int
     tags_wanted: int
     without_place: tuple[str, ...]
+    upright: tuple[str, ...]
+    factor: float
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,7 +111,7 @@ def _view(
     inside = [n for n in result.nodes if n.tag in places and window.holds(*places[n.tag])]
     taken = Taken(2.0, _BAR_ROOM + 2, width - 2, height - 2)
     items: list[Item] = [Box(0, _BAR_ROOM, width, height - _BAR_ROOM, PAPER, SLATE, 0.5)]
-    items += _area(result, scale)
+    items += _area(result, scale, taken)
     strokes = pipe_strokes(result.pipes)
     for pipe in result.pipes:
         items += _pipe(pipe, places, scale, strokes, taken, enlarged=enlarged)
@@ -120,12 +122,16 @@ def _view(
     items += tags
     items += _scale_bar(scale, units, width)
     items += _legend(width)
+    rings, upright = _upright(result.pipes, places, window, scale)
+    items += rings
     missing = tuple(node.tag for node in result.nodes if node.tag not in places)
     what = "design area enlarged" if enlarged else "plan of the system"
-    return PlanView(Drawing(width, height, tuple(items), what), shown, wanted, missing)
+    return PlanView(
+        Drawing(width, height, tuple(items), what), shown, wanted, missing, upright, scale.factor
+    )
 
 
-def _area(result: Result, scale: Scale) -> list[Item]:
+def _area(result: Result, scale: Scale, taken: Taken) -> list[Item]:
     """Return the ground and the outline of the design area."""
     boxes = cells_of_heads(result.nodes)
     items: list[Item] = []
@@ -134,7 +140,9 @@ def _area(result: Result, scale: Scale) -> list[Item]:
         right, high = scale.at(min(x1, scale.window.x1 + 2), min(y1, scale.window.y1 + 2))
         items.append(Box(left, low, right - left, high - low, "#f4e9d2"))
     for start, end in outline_of(boxes):
-        items.append(Line((scale.at(*start), scale.at(*end)), CLAY, 1.2, (5.0, 2.5)))
+        edge = (scale.at(*start), scale.at(*end))
+        taken.take_line(*edge)
+        items.append(Line(edge, CLAY, 1.2, (5.0, 2.5)))
     return items
 
 
@@ -173,8 +181,25 @@ def _pipe(
     taken.take_line(a, b, width / 2 + 0.6)
     long = math.hypot(b[0] - a[0], b[1] - a[1])
     if enlarged and long > 26 and pipe.flow > 0:
+        middle = ((a[0] + b[0]) / 2, (a[1] + b[1]) / 2)
+        taken.take((middle[0] - 3.5, middle[1] - 3.0, middle[0] + 3.5, middle[1] + 3.0))
         items.append(_arrow(a, b, long))
     return items
+
+
+def _upright(
+    pipes: tuple[PipeRow, ...], places: Places, window: Window, scale: Scale
+) -> tuple[list[Item], tuple[str, ...]]:
+    """Return rings where pipes run upright (drops to heads apart) and the ends of those pipes."""
+    items: list[Item] = []
+    names = []
+    for pipe in pipes:
+        at = places.get(pipe.start)
+        if at is None or at != places.get(pipe.end) or pipe.role == "drop" or not window.holds(*at):
+            continue
+        items.append(Dot(*scale.at(*at), 3.6, None, INK, 0.9))
+        names.append(f"{pipe.start} to {pipe.end}")
+    return items, tuple(names)
 
 
 def _arrow(a: tuple[float, float], b: tuple[float, float], long: float) -> Line:

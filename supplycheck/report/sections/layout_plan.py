@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
+from types import MappingProxyType
+from typing import Final
+
 from supplycheck.report.document import Block, Figure, Paragraph, Row, Section, Table
 from supplycheck.report.figures.placements import placement_map
 from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, size_legend, whole_plan
 from supplycheck.report.show import Show, column, words
 from supplycheck.results.display import tags_text
 from supplycheck.results.records import Placement, Result
+
+PLAN_ROOM: Final = MappingProxyType({"letter": 515.0, "a4": 562.0})
 
 
 def plan(result: Result, width: float) -> Section:
@@ -18,7 +23,10 @@ def plan(result: Result, width: float) -> Section:
         whole = whole_plan(result, show.units, (width, 400.0))
         blocks.append(Figure("Whole system", whole.drawing, _caption(whole)))
         blocks.append(Figure("Pipe sizes (bore)", size_legend(result.pipes, show.units, width)))
-        near = area_plan(result, show.units, (width, 300.0))
+        rest = PLAN_ROOM["a4" if result.project.facts.paper == "a4" else "letter"] - whole.drawing.height
+        near = area_plan(result, show.units, (width, rest)) if 175 <= rest <= 330 else None
+        if near is None or near.factor < 1.4 * whole.factor:
+            near = area_plan(result, show.units, (width, 300.0))
         if near is not None:
             unit = show.s("pressure")
             text = f"Behind the tag of a head: its pressure in {unit}. Arrows point the way of the flow. "
@@ -40,6 +48,8 @@ def _caption(view: PlanView) -> str:
         texts.append(
             f"{view.tags_shown} of {view.tags_wanted} tags have room here; all are in the node analysis."
         )
+    if view.upright:
+        texts.append(f"Upright pipes, seen as rings: {tags_text(view.upright, 6)}.")
     if view.without_place:
         count = len(view.without_place)
         verb = "node has" if count == 1 else "nodes have"
