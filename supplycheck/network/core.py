@@ -47,6 +47,8 @@ LEAST_RESPONSE: Final = 1e-9
 """Least rise of a head for a rise of the supply that is believed [-]."""
 SEARCH_PART: Final = 0.5
 """Part of the first slope of the content that a damped step may leave."""
+HIGHEST_FLOW: Final = 1e9
+"""Step of a flow at which the iteration is given up [m³/s]."""
 ROUGH_HEAD: Final = 1e-3
 """Loss residual accepted where rounding stops the progress [Pa]."""
 
@@ -61,8 +63,8 @@ class Problem:
     ``outflow`` (n,) and ``fixed`` (f,) heads. ``moves`` (f,) is 1 where a fixed head rises with the
     shift of its group, else 0. ``floor_rows`` (k,), sorted by group, are free nodes that need the head
     ``floors``; none in an operating problem. ``group`` numbers the groups of all n + f nodes and
-    ``groups`` counts them. ``valve_links`` (v,) get an extra loss such that the head at ``valve_rows``
-    is ``valve_heads``.
+    ``groups`` counts them. The loss of ``valve_links`` (v,) is not their law but what brings the
+    head at ``valve_rows`` to ``valve_heads``.
     """
 
     start: IntArray
@@ -86,7 +88,7 @@ class Problem:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class State:
-    """Flows (m,), heads of all nodes (n + f,), shift of each group, extra loss of each valve."""
+    """Flows (m,), heads of all nodes (n + f,), shift of each group, loss of each valve link (v,)."""
 
     flow: FloatArray
     head: FloatArray
@@ -109,8 +111,14 @@ def first_state(problem: Problem, flow: FloatArray) -> State:
 def residuals(problem: Problem, state: State) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Return energy residual (m,), mass residual (n,) and the slope of each loss (m,)."""
     loss, slope = problem.law(state.flow)
+    if len(problem.valve_links):
+        loss[problem.valve_links] = state.extra
+        slope[problem.valve_links] = np.median(slope)
+    falling = slope <= 0  # a device whose loss falls with the flow: the chord serves instead
+    if falling.any():
+        size = np.maximum(np.abs(state.flow[falling]), 1e-9)
+        slope[falling] = np.maximum(np.abs(loss[falling]) / size, 1.0)
     energy = state.head[problem.start] - state.head[problem.end] - loss
-    energy[problem.valve_links] -= state.extra
     n, nodes = len(problem.outflow), len(state.head)
     leaving = np.bincount(problem.start, state.flow, minlength=nodes)
     leaving -= np.bincount(problem.end, state.flow, minlength=nodes)
@@ -124,8 +132,11 @@ def solve(problem: Problem, state: State, *, limit: int = 40, damped: bool = Fal
     """Return the converged state, or the last one with ``converged`` false after ``limit`` steps."""
     energy, mass, slope = residuals(problem, state)
     for count in range(1, limit + 1):
-        step, shift, extra, head = _step(problem, state, energy, mass, slope)
-        if not (np.isfinite(step).all() and np.isfinite(head).all()):
+        try:
+            step, shift, extra, head = _step(problem, state, energy, mass, slope)
+        except (np.linalg.LinAlgError, RuntimeError):  # a singular matrix, dense or sparse
+            break
+        if not (np.abs(step).max(initial=0.0) < HIGHEST_FLOW and np.isfinite(head).all()):
             break
         length = 1.0
         if damped and count > 1 and np.abs(mass).max(initial=0.0) <= 1e-9 * _scale(state.flow):
@@ -140,20 +151,21 @@ def solve(problem: Problem, state: State, *, limit: int = 40, damped: bool = Fal
         lost = float(np.abs(mass).max(initial=0.0))
         scale = _scale(flow)
         moved = length * float(np.abs(step).max(initial=0.0))
-        rounding = 1e-13 * float(np.abs(head).max(initial=0.0))
+        rounding = 1e-13 * float(np.abs(problem.fixed).max(initial=0.0))
         good = worst <= HEAD_TOLERANCE + rounding and moved <= FLOW_TOLERANCE * scale
         good = good or (worst <= ROUGH_HEAD and count == limit)
         if good and lost <= MASS_TOLERANCE * scale and _slack(problem, head) <= HEAD_TOLERANCE + rounding:
             return replace(state, converged=True, energy=worst, mass=lost)
     return replace(
         state,
+        converged=False,
         energy=float(np.abs(energy).max(initial=0.0)),
         mass=float(np.abs(mass).max(initial=0.0)),
     )
 
 
 def _scale(flow: FloatArray) -> float:
-    return max(float(np.abs(flow).max(initial=0.0)), 1e-9)
+    return max(float(np.abs(flow).max(initial=0.0)), 1e-6)
 
 
 def _slack(problem: Problem, head: FloatArray) -> float:
@@ -181,7 +193,7 @@ def _partly(problem: Problem, old: FloatArray, new: FloatArray, length: float) -
 def _step(
     problem: Problem, state: State, energy: FloatArray, mass: FloatArray, slope: FloatArray
 ) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
-    """Return the step of the flows and the new shift, extra losses and heads."""
+    """Return the step of the flows and the new shift, valve losses and heads."""
     n, nodes = len(problem.outflow), len(state.head)
     conductance = 1.0 / slope
     if problem.closed is not None:
@@ -202,22 +214,21 @@ def _step(
         leaving -= np.bincount(problem.end, push, minlength=nodes)
         rhs[:, column] = -leaving[:n]
     rhs[:, 0] += mass
-    answer = problem.nodal.factorise(conductance, problem.ground)(rhs)
-    change = np.zeros(nodes)
-    change[:n] = answer[:, 0]
+    answer = np.zeros((nodes, len(drive)))
+    answer[:n] = problem.nodal.factorise(conductance, problem.ground)(rhs)
+    change = answer[:, 0].copy()
     shift, extra = state.shift, state.extra
     step = energy
     if demand:
+        answer[n:, 1] = problem.moves
         more = _shift_step(problem, state.head, answer)
-        by_node = more[problem.group]
-        change[:n] += answer[:, 1] * by_node[:n]
-        change[n:] = problem.moves * by_node[n:]
+        change += answer[:, 1] * more[problem.group]
         shift = shift + more
     elif len(problem.valve_links):
         hold = answer[:, 1:]
         miss = problem.valve_heads - state.head[problem.valve_rows] - answer[problem.valve_rows, 0]
         added = np.linalg.solve(hold[problem.valve_rows], miss)
-        change[:n] += hold @ added
+        change += hold @ added
         extra = extra + added
         step = energy.copy()
         step[problem.valve_links] -= added
@@ -242,10 +253,10 @@ def _line_search(
     end. The part returned leaves at most half of it, found by bisection and false position.
     """
     fall = head[problem.start] - head[problem.end]
-    fall[problem.valve_links] -= extra
 
     def slope_at(part: float) -> float:
         loss, _ = problem.law(flow + part * step)
+        loss[problem.valve_links] = extra
         return float(((loss - fall) * step).sum())
 
     first = slope_at(0.0)

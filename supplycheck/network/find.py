@@ -9,7 +9,7 @@ exactly, and pressure-reducing valves are given their state: open, holding their
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from typing import Final
 
 import numpy as np
@@ -17,8 +17,8 @@ from scipy.sparse import csr_array
 from scipy.sparse.csgraph import connected_components
 
 from supplycheck.network.assemble import Assembled
-from supplycheck.network.core import Problem, State, solve
-from supplycheck.network.links import BoolArray
+from supplycheck.network.core import FLOW_TOLERANCE, Problem, State, solve
+from supplycheck.network.links import STEEP, BoolArray
 from supplycheck.network.records import FloatArray, IntArray
 
 FAST_LIMIT: Final = 30
@@ -26,6 +26,10 @@ SURE_LIMIT: Final = 400
 ROUNDS: Final = 40
 VALVE_TOLERANCE: Final = 1e-2
 """By how much a pressure-reducing valve may differ from its condition before it changes state [Pa]."""
+BACKWARDS: Final = -1e-14
+"""Flow at which a one-way link is taken to run backwards [m³/s]; it then holds 0.1 Pa."""
+SLACK_TOLERANCE: Final = 1e-5
+"""Least slack accepted as zero by bracketing [Pa]."""
 HIGHEST_SHIFT: Final = 1e9
 """Highest supply pressure that is tried [Pa]."""
 
@@ -77,46 +81,71 @@ def _sure(problem: Problem, begin: State) -> State:
 
 def _lowest(problem: Problem, begin: State, inner: Solve) -> State:
     """Return the state at the lowest shift whose least slack is zero, by bracketing."""
-    from scipy.optimize import brentq
-
     if problem.groups > 1:
         raise NoStateError("numbers", begin)
-    last: dict[str, State] = {"state": begin}
     bare = replace(problem, floor_rows=problem.floor_rows[:0], floors=problem.floors[:0])
     n = len(problem.outflow)
+    last = begin
 
     def least_slack(shift: float) -> float:
+        nonlocal last
         fixed = problem.fixed + problem.moves * shift
-        old = last["state"]
-        head = old.head.copy()
+        head = last.head.copy()
         head[n:] = fixed
-        state = inner(replace(bare, fixed=fixed), replace(old, head=head, shift=np.zeros(1)))
-        last["state"] = replace(state, shift=np.array([shift]))
+        state = inner(replace(bare, fixed=fixed), replace(last, head=head, shift=np.zeros(1)))
+        last = replace(state, shift=np.array([shift]))
         return float((state.head[problem.floor_rows] - problem.floors).min())
 
-    supply = float((problem.fixed[problem.moves > 0]).max())
-    low = float(problem.floors.max()) - supply
-    step = max(1e5, abs(float(problem.floors.max())) * 0.1)
-    while least_slack(low) > 0:
+    top = float(problem.floors.max())
+    low = top - float((problem.fixed[problem.moves > 0]).max())
+    step = max(1e5, 0.1 * abs(top))
+    at_low = least_slack(low)
+    high, at_high = low, at_low
+    while at_low > 0:
+        high, at_high = low, at_low
         low -= step
         step *= 2
         if step > HIGHEST_SHIFT:
-            raise NoStateError("no lowest supply", last["state"])
-    high = low + step
-    while least_slack(high) < 0:
-        low, step = high, 2 * step
-        high = low + step
+            raise NoStateError("no lowest supply", last)
+        at_low = least_slack(low)
+    while at_high < 0:
+        low, at_low = high, at_high
+        high += step
+        step *= 2
         if step > HIGHEST_SHIFT:
-            raise NoStateError("out of reach", last["state"])
-    shift = brentq(least_slack, low, high, xtol=1e-7, rtol=1e-14, maxiter=200)
-    least_slack(float(shift))
-    return last["state"]
+            raise NoStateError("out of reach", last)
+        at_high = least_slack(high)
+    _root(least_slack, (low, at_low), (high, at_high), SLACK_TOLERANCE)
+    return last
+
+
+def _root(
+    function: Callable[[float], float], low: tuple[float, float], high: tuple[float, float], good: float
+) -> float:
+    """Return where ``function``, not falling, is within ``good`` of zero; (place, value) at both ends.
+
+    False position halving the weight of an end that stays (Illinois), bisection every fourth turn; the
+    last call is at the place returned.
+    """
+    (a, fa), (b, fb) = low, high
+    for turn in range(200):
+        middle = b - fb * (b - a) / (fb - fa) if fb > fa and turn % 4 < 3 else 0.5 * (a + b)
+        value = function(middle)
+        if abs(value) <= good or not a < middle < b:
+            break
+        if value < 0:
+            a, fa, fb = middle, value, 0.5 * fb
+        else:
+            b, fb, fa = middle, value, 0.5 * fa
+    return middle
 
 
 def _closed_exactly(problem: Problem, begin: State, inner: Solve) -> State:
     """Solve, then close one-way links that run backwards, and open those that would run forwards."""
     state = inner(problem, begin)
-    back = problem.one_way & (state.flow < 0)
+    one_way = problem.one_way.copy()
+    one_way[problem.valve_links] = False  # a valve that holds its setting is shut by its state
+    back = one_way & (state.flow < BACKWARDS)
     if not back.any():
         return state
     if problem.closed is not None:
@@ -129,7 +158,7 @@ def _closed_exactly(problem: Problem, begin: State, inner: Solve) -> State:
         reopen = back & (fall > _offset(problem, fall))
         if problem.closed is not None:
             reopen &= ~problem.closed
-        more = problem.one_way & (state.flow < 0)
+        more = one_way & (state.flow < BACKWARDS)
         if not (reopen.any() or more.any()):
             return state
         back = (back & ~reopen) | more
@@ -142,8 +171,8 @@ def _offset(problem: Problem, fall: FloatArray) -> FloatArray:
     return loss + VALVE_TOLERANCE
 
 
-def _floating(problem: Problem, closed: BoolArray) -> IntArray:
-    """Return one free node of every part that no open link joins to a fixed node."""
+def _parts(problem: Problem, closed: BoolArray) -> tuple[IntArray, BoolArray]:
+    """Return the part each node belongs to when ``closed`` links are cut, and which parts are held."""
     n = len(problem.outflow)
     total = n + len(problem.fixed)
     open_ = ~closed
@@ -152,64 +181,101 @@ def _floating(problem: Problem, closed: BoolArray) -> IntArray:
     count, label = connected_components(graph, directed=False)
     held = np.zeros(count, dtype=bool)
     held[label[n:]] = True
-    lost, first = np.unique(label[:n], return_index=True)
+    return np.asarray(label, dtype=np.int64), held
+
+
+def _floating(problem: Problem, closed: BoolArray) -> IntArray:
+    """Return one free node of every part that no open link joins to a fixed node."""
+    label, held = _parts(problem, closed)
+    lost, first = np.unique(label[: len(problem.outflow)], return_index=True)
     return np.asarray(first[~held[lost]], dtype=np.int64)
 
 
-def _with_valves(assembled: Assembled, problem: Problem, begin: State) -> State:
-    """Return the state with every pressure-reducing valve open, holding or shut as it must be."""
-    valves, rows, heads = assembled.valves, assembled.valve_rows, assembled.valve_heads
-    holds, shut = np.zeros(len(valves), dtype=bool), np.zeros(len(valves), dtype=bool)
-    state = replace(begin, extra=np.zeros(0))
-    tried: set[bytes] = set()
-    for _ in range(ROUNDS + 4 * len(valves)):
-        closed = np.zeros(len(problem.start), dtype=bool)
-        closed[valves[shut]] = True
+@dataclass(frozen=True, slots=True, eq=False)
+class _Valves:
+    """The states of the pressure-reducing valves: ``holds`` and ``shut`` (v,); else fully open."""
+
+    assembled: Assembled
+    holds: BoolArray
+    shut: BoolArray
+
+    def put(self, valve: int, word: str) -> _Valves:
+        holds, shut = self.holds.copy(), self.shut.copy()
+        holds[valve], shut[valve] = word == "holds", word == "shut"
+        return replace(self, holds=holds, shut=shut)
+
+    def state(self, problem: Problem, begin: State) -> State:
+        """Return the state with the valves so; ``extra`` (v,) is the loss of those that hold."""
+        made, closed = self.assembled, np.zeros(len(problem.start), dtype=bool)
+        closed[made.valves[self.shut]] = True
         here = replace(
             problem,
-            valve_links=valves[holds],
-            valve_rows=rows[holds],
-            valve_heads=heads[holds],
-            closed=closed if shut.any() else None,
-            ground=_floating(problem, closed) if shut.any() else problem.ground,
+            valve_links=made.valves[self.holds],
+            valve_rows=made.valve_rows[self.holds],
+            valve_heads=made.valve_heads[self.holds],
+            closed=closed if self.shut.any() else None,
+            ground=_floating(problem, closed) if self.shut.any() else problem.ground,
         )
-        extra = np.zeros(int(holds.sum()))
-        state = _closed_exactly(here, replace(state, extra=extra, flow=_still(state.flow, closed)), _either)
-        want_hold, want_shut = _wanted(assembled, problem, state, holds, shut)
-        change = (want_hold != holds) | (want_shut != shut)
-        if not change.any():
-            full = np.zeros(len(valves))
-            full[holds] = state.extra
-            return replace(state, extra=full)
-        key = holds.tobytes() + shut.tobytes()
-        if key in tried:
-            change &= np.arange(len(valves)) == int(np.argmax(change))
-        tried.add(key)
-        holds, shut = np.where(change, want_hold, holds), np.where(change, want_shut, shut)
+        flow = np.where(closed, 0.0, begin.flow)
+        state = _closed_exactly(here, replace(begin, flow=flow, extra=begin.extra[self.holds]), _either)
+        extra = np.zeros(len(made.valves))
+        extra[self.holds] = state.extra
+        return replace(state, extra=extra)
+
+    def fault(self, state: State, valve: int) -> float:
+        """Return by how much [Pa] ``valve`` contradicts its state; 0 where it does not."""
+        made = self.assembled
+        behind, ahead = state.head[made.valve_rows[valve]], state.head[made.problem.start[made.valves[valve]]]
+        setting, flow = made.valve_heads[valve], state.flow[made.valves[valve]]
+        if self.shut[valve]:
+            return max(0.0, min(setting - behind, ahead - behind) - VALVE_TOLERANCE)
+        if self.holds[valve]:
+            nothing = -FLOW_TOLERANCE * float(np.abs(state.flow).max(initial=0.0)) - 1e-15
+            backwards = STEEP * float(nothing - flow)
+            own, _ = made.problem.law(np.maximum(state.flow, 0.0))
+            least = float(own[made.valves[valve]]) - VALVE_TOLERANCE
+            return max(0.0, least - float(state.extra[valve]), backwards)
+        return max(0.0, behind - setting - VALVE_TOLERANCE)
+
+
+def _with_valves(assembled: Assembled, problem: Problem, begin: State) -> State:
+    """Return the state with every pressure-reducing valve open, holding or shut as it must be.
+
+    With the others left as they are a valve's own state is certain: open where the pressure behind it
+    is then at most its setting, shut where it is above the setting even so, holding in between.
+    """
+    count = len(assembled.valves)
+    valves = _Valves(assembled, np.zeros(count, dtype=bool), np.zeros(count, dtype=bool))
+    extra = begin.extra if len(begin.extra) == count else np.zeros(count)
+    state = valves.state(problem, replace(begin, extra=extra))
+    for _ in range(ROUNDS):
+        faults = np.array([valves.fault(state, valve) for valve in range(count)])
+        if not faults.any():
+            return state
+        valves, state = _decide(valves, problem, state, int(np.argmax(faults)))
     raise NoStateError("valves", state)
 
 
-def _still(flow: FloatArray, closed: BoolArray) -> FloatArray:
-    return np.where(closed, 0.0, flow)
-
-
-def _wanted(
-    assembled: Assembled, problem: Problem, state: State, holds: BoolArray, shut: BoolArray
-) -> tuple[BoolArray, BoolArray]:
-    """Return which valves should hold their setting and which should be shut, in this state."""
-    valves, heads = assembled.valves, assembled.valve_heads
-    behind = state.head[assembled.valve_rows]
-    before = state.head[problem.start[valves]]
-    flow = state.flow[valves]
-    extra = np.zeros(len(valves))
-    extra[holds] = state.extra
-    nothing = -1e-9 * max(float(np.abs(state.flow).max(initial=0.0)), 1e-9)
-    above = behind > heads + VALVE_TOLERANCE
-    reopen = shut & (behind < heads - VALVE_TOLERANCE) & (before > behind + VALVE_TOLERANCE)
-    backwards = holds & (flow < nothing)
-    want_shut = (shut & ~reopen) | backwards
-    want_hold = (holds & (extra >= -VALVE_TOLERANCE) & ~backwards) | (
-        ~holds & ~shut & above & (flow >= nothing)
-    )
-    want_hold |= reopen & (before > heads)
-    return want_hold, want_shut
+def _decide(valves: _Valves, problem: Problem, state: State, valve: int) -> tuple[_Valves, State]:
+    """Return the valves with ``valve`` in the state that the others ask of it."""
+    made = valves.assembled
+    wide = valves.put(valve, "open")
+    opened = wide.state(problem, state)
+    if not wide.fault(opened, valve):
+        return wide, opened
+    tight = valves.put(valve, "shut")
+    closed = np.zeros(len(problem.start), dtype=bool)
+    closed[made.valves[tight.shut]] = True
+    label, fed = _parts(problem, closed)
+    if fed[label[made.valve_rows[valve]]]:
+        try:
+            shut = tight.state(problem, state)
+        except NoStateError:
+            pass
+        else:
+            if not tight.fault(shut, valve):
+                return tight, shut
+    held = valves.put(valve, "holds")
+    extra = state.extra.copy()
+    extra[valve] = max(float(opened.head[made.valve_rows[valve]] - made.valve_heads[valve]), 0.0)
+    return held, held.state(problem, replace(opened, extra=extra))

@@ -31,6 +31,7 @@ def whole_solution(
     """Return the :class:`Solution` on every node and pipe of ``network``."""
     links, nodes = network.links, len(network.node_tags)
     flow = reduced.flow(state.flow[: assembled.pipes]) + 0.0
+    flow[links.one_way & (flow < 0)] = 0.0  # rounding: a one-way link is closed exactly before this
     friction, _ = links.friction(flow)
     device, _ = links.device_drop(flow)
     taken_off = np.zeros(nodes)
