@@ -13,7 +13,7 @@ from __future__ import annotations
 
 import datetime as dt
 import math
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Final
 
@@ -22,7 +22,7 @@ from supplycheck.model import Project
 from supplycheck.network.records import Solution
 from supplycheck.supply.hose import hose_parts
 from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margin, rule_words
-from supplycheck.supply.narration import supply_steps
+from supplycheck.supply.narration import demand_step, supply_steps
 from supplycheck.supply.route import CarriedCurve, no_flow_pressure, solved_route
 from supplycheck.supply.sources import NodeSupply
 from supplycheck.supply.words import Step, Value, Words
@@ -174,7 +174,10 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
         sources=shares,
         carried=carried,
         carried_unadjusted=before,
-        supply_steps=supply_steps(supply, main.flow, carried.route, at, demand, margin),
+        supply_steps=(
+            demand_step(_named(flows)),
+            *supply_steps(supply, main.flow, carried.route, at, demand, margin),
+        ),
         margin_steps=_margin_steps(project, by_node, shares, demand, margin, required),
         flow_at_20_psi=supply.unadjusted.flow_at(RATING_PRESSURE),
         adjusted_flow_at_20_psi=supply.curve.flow_at(RATING_PRESSURE),
@@ -240,6 +243,15 @@ def _flows(project: Project, solution: Solution) -> dict[str, float]:
     drawn["sprinklers"] = math.fsum(flow for tag, flow in left.items() if tag in heads)
     drawn["other"] = math.fsum(flow for tag, flow in left.items() if tag not in heads)
     return drawn
+
+
+def _named(flows: Mapping[str, float]) -> dict[str, float]:
+    return {
+        "sprinklers": flows["sprinklers"],
+        "inside hose": flows["inside"],
+        "outside hose": flows["outside"],
+        "other": flows["other"],
+    }
 
 
 def _through(project: Project, solution: Solution, node: str) -> float:

@@ -81,9 +81,11 @@ def _reach(supply: NodeSupply, flow: float) -> float:
 def _supply_lines(supply: NodeSupply, path: Route, reach: float) -> list[CurveLine]:
     alone = path.without_pumps if path.pumps else path
     if supply.tank is not None:
-        lines = [_line(f"tank {supply.tank.tag}", "tank", supply.curve, alone, reach)]
+        lines = [_line(f"{supply.tank.tag}, tank", "tank", supply.curve, alone, reach)]
     else:
-        lines = [_line(f"test {one.name}", "measured", one, alone, reach) for one in supply.measured]
+        lines = [
+            _line(f"{one.name}, as measured", "measured", one, alone, reach) for one in supply.measured
+        ]
         if len(supply.measured) > 1:
             lines.append(_line("low-supply curve", "measured", supply.unadjusted, alone, reach))
         if len(supply.stages) > 1:

@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Mapping
+
 from supplycheck.supply.curve import SupplyCurve
 from supplycheck.supply.route import Route
 from supplycheck.supply.sources import NodeSupply
@@ -28,6 +31,16 @@ def curve_words(curve: SupplyCurve, flow: float) -> Words:
     return Words(text, tuple(values))
 
 
+def demand_step(parts: Mapping[str, float]) -> Step:
+    """Return what is drawn, by what draws it [m³/s], as one sum; parts that draw nothing are left out."""
+    drawn = [(name, flow) for name, flow in parts.items() if abs(flow) > 1e-9]
+    formula = " + ".join(f"{name} {{v{index}}}" for index, (name, _) in enumerate(drawn))
+    values = tuple((f"v{index}", flow, "flow") for index, (_, flow) in enumerate(drawn))
+    return Step(
+        "Demand flow", Words(formula, values), math.fsum(parts.values()), "flow", "each counted once"
+    )
+
+
 def supply_steps(
     supply: NodeSupply, flow: float, path: Route, at: str, demand: float, margin: float
 ) -> tuple[Step, ...]:
@@ -40,16 +53,20 @@ def supply_steps(
     measured = supply.measured_member(flow)
     gauge = measured.lowered(measured.offset)
     if supply.tests:
-        value, title = gauge.pressure_at(flow), f"Test {measured.name} at the demand flow"
+        value, title = gauge.pressure_at(flow), f"Curve of {measured.name} at the demand flow"
         steps.append(Step(title, curve_words(gauge, flow), value, "pressure", "at the gauge"))
         words = Words(
-            "pressure at the gauge + {gain} for the height from the gauge to the node",
-            (("gain", measured.offset, "pressure"),),
+            "{gauge} + {gain}", (("gauge", value, "pressure"), ("gain", measured.offset, "pressure"))
         )
-        steps.append(Step(f"Carried to node {supply.node}", words, value + measured.offset, "pressure"))
+        title, carried = f"Carried to node {supply.node}", value + measured.offset
+        steps.append(Step(title, words, carried, "pressure", "height from the gauge to the node"))
     for stage in supply.stages[0 if supply.tank else 1 :]:
         value = stage.curve.pressure_at(flow)
-        steps.append(Step("Curve compared", stage.words, value, "pressure", "at the demand flow"))
+        steps.append(
+            Step(
+                "Tank" if supply.tank else "Adjusted", stage.words, value, "pressure", "at the demand flow"
+            )
+        )
     if path.pipes:
         words = Words(
             "{supply} − height {height} − friction {friction} − devices {device}",

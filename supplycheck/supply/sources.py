@@ -132,7 +132,7 @@ def off_line(test: FlowTest) -> float:
 
 def _test_notes(tests: Iterable[FlowTest]) -> list[Words]:
     text = (
-        "The readings of flow test {tag} do not lie on one N^1.85 line: they are up to {deviation} from "
+        "The readings of {tag} do not lie on one N^1.85 line: they are up to {deviation} from "
         "the line through static and the largest flow. The curve is straight between the readings; beyond "
         "them it follows the steeper of the last piece and that line."
     )

@@ -150,7 +150,10 @@ def test_margin_before_and_after_the_rule_in_words_and_numbers() -> None:
     assert comparison.rule_source == "county code"
     texts = [step.formula.fill(US.text) for step in (*comparison.supply_steps, *comparison.margin_steps)]
     assert "82.0 psi − (82.0 psi − 54.0 psi) × (510.0 gpm / 956.0 gpm)^1.85" in texts
+    assert "sprinklers 260.0 gpm + outside hose 250.0 gpm" in texts
     assert "10.0% × static 82.0 psi" in texts
+    assert comparison.supply_steps[0].value == pytest.approx(comparison.demand_flow)
+    assert comparison.supply_steps[-1].value == pytest.approx(comparison.available_pressure)
     assert not [text for text in texts if "{" in text]
     assert comparison.margin_steps[0].value == comparison.margin
     assert comparison.margin_steps[-1].value == comparison.after_rule
