@@ -12,10 +12,13 @@ from sample_result import LONG_TAG, MARKUP_TITLE, sample
 from supplycheck.report.build import build_document
 from supplycheck.report.document import Column, Document, Row, Section, Table
 from supplycheck.report.drawing import Box, Label, Line
+from supplycheck.report.figures import plan
 from supplycheck.report.layout import lay_out
 from supplycheck.report.pdf import FontRuler
+from supplycheck.report.sections import rows
 from supplycheck.report.sheet import MARGIN, Sheet
 from supplycheck.results.records import Result
+from supplycheck.units import US
 
 RULER = FontRuler()
 
@@ -199,3 +202,21 @@ def test_the_reviews_lines_are_blank() -> None:
 
 def test_sample_numbers_are_marked_as_invented() -> None:
     assert "INVENTED" in (sample_result.__doc__ or "")
+
+
+def test_of_too_many_rows_the_ones_that_matter_are_printed_and_the_rest_counted(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    monkeypatch.setattr(rows, "MOST_ROWS", 20)
+    result = sample(lines=6, heads=6)
+    words = " ".join(label.text for sheet in pages(result) for label in texts(sheet))
+    left_out = len(result.nodes) - sum(node.in_design_area for node in result.nodes)
+    assert f"{left_out} further nodes are not printed here; nodes.csv holds every one." in words
+    assert f"{len(result.pipes) - 20} further pipes are not printed here" in words
+
+
+def test_a_crowded_plan_still_names_the_design_area() -> None:
+    view = plan.whole_plan(sample(lines=55, heads=50), US, (522.0, 400.0))
+    names = {item.text for item in view.drawing.items if isinstance(item, Label)}
+    assert {"H1.1", "S"} <= names
+    assert view.tags_shown < 100

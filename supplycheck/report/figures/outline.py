@@ -5,11 +5,15 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import Final
 
 from supplycheck.results.records import NodeRow
 
 Point = tuple[float, float]
 Cell = tuple[float, float, float, float]
+
+_REACH: Final = 8.0  # no two neighbouring heads of one area stand farther apart
+_MOST: Final = 400
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,23 +66,43 @@ def cells_of_heads(nodes: Iterable[NodeRow]) -> list[Cell]:
     """
     placed = [n for n in nodes if n.kind == "sprinkler" and n.x is not None and n.y is not None]
     points = [(node.x or 0.0, node.y or 0.0) for node in placed]
+    near = _Near(points)
     cells = []
     for node, (x, y) in zip(placed, points, strict=True):
         if not node.in_design_area:
             continue
         half = math.sqrt(node.area) / 2 if node.area else 1.5
-        across, along = half, half
-        near_x = [abs(px - x) for px, py in points if abs(px - x) > 0.05 and abs(px - x) >= 4 * abs(py - y)]
-        near_y = [abs(py - y) for px, py in points if abs(py - y) > 0.05 and abs(py - y) >= 4 * abs(px - x)]
+        around = near.of(x, y)
+        near_x = [abs(px - x) for px, py in around if abs(px - x) > 0.05 and abs(px - x) >= 4 * abs(py - y)]
+        near_y = [abs(py - y) for px, py in around if abs(py - y) > 0.05 and abs(py - y) >= 4 * abs(px - x)]
         across = min(near_x, default=2 * half) / 2
         along = min(near_y, default=2 * half) / 2
         cells.append((x - across, y - along, x + across, y + along))
     return cells
 
 
+class _Near:
+    """Finds the points within a few metres of a place."""
+
+    def __init__(self, points: list[Point]) -> None:
+        self.boxes: dict[tuple[int, int], list[Point]] = {}
+        for x, y in points:
+            self.boxes.setdefault((math.floor(x / _REACH), math.floor(y / _REACH)), []).append((x, y))
+
+    def of(self, x: float, y: float) -> list[Point]:
+        """Return the points at most ``_REACH`` [m] away, and some that are a little farther."""
+        column, row = math.floor(x / _REACH), math.floor(y / _REACH)
+        return [
+            point
+            for i in (column - 1, column, column + 1)
+            for j in (row - 1, row, row + 1)
+            for point in self.boxes.get((i, j), ())
+        ]
+
+
 def outline_of(cells: list[Cell]) -> list[tuple[Point, Point]]:
-    """Return the edges round the union of ``cells`` as straight pieces."""
-    if not cells:
+    """Return the edges round the union of ``cells`` as straight pieces; none for very many cells."""
+    if not cells or len(cells) > _MOST:
         return []
     xs = _distinct(edge for cell in cells for edge in (cell[0], cell[2]))
     ys = _distinct(edge for cell in cells for edge in (cell[1], cell[3]))

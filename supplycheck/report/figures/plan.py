@@ -15,6 +15,9 @@ from supplycheck.units import UnitSet
 
 Places = dict[str, tuple[float, float]]
 
+CROWDED: Final = 2500
+"""Above so many nodes only the tags of the design area, the supply and hose points are tried."""
+
 _EDGE: Final = 16.0
 _BAR_ROOM: Final = 20.0
 _RAMP: Final = ("#7fb2bd", "#4f94a3", "#2b7787", "#0b4a5a", "#16262e")
@@ -113,8 +116,9 @@ def _view(
     items: list[Item] = [Box(0, _BAR_ROOM, width, height - _BAR_ROOM, PAPER, SLATE, 0.5)]
     items += _area(result, scale, taken)
     strokes = pipe_strokes(result.pipes)
+    crowded = len(inside) > CROWDED
     for pipe in result.pipes:
-        items += _pipe(pipe, places, scale, strokes, taken, enlarged=enlarged)
+        items += _pipe(pipe, places, scale, strokes, None if crowded else taken, enlarged=enlarged)
     size_of = 2.3 if enlarged else max(0.8, min(2.0, 0.16 * scale.factor + 0.5))
     for node in inside:
         items += _symbol(node, scale.at(*places[node.tag]), size_of, taken)
@@ -164,7 +168,7 @@ def _pipe(
     places: Places,
     scale: Scale,
     strokes: dict[str, tuple[float, str]],
-    taken: Taken,
+    taken: Taken | None,
     *,
     enlarged: bool,
 ) -> list[Item]:
@@ -178,6 +182,8 @@ def _pipe(
     width, colour = strokes[pipe.nominal]
     dash = (2.0, 2.0) if pipe.valve == "closed" else ()
     items: list[Item] = [Line((a, b), colour, width, dash)]
+    if taken is None:
+        return items
     taken.take_line(a, b, width / 2 + 0.6)
     long = math.hypot(b[0] - a[0], b[1] - a[1])
     if enlarged and long > 26 and pipe.flow > 0:
@@ -250,7 +256,10 @@ def _tags(
     strong = Label(0, 0, "", 6.4, bold=True)
     items: list[Item] = []
     shown = 0
+    crowded = len(inside) > CROWDED
     for node in sorted(inside, key=rank):
+        if crowded and rank(node) > 1:
+            break
         text = short(node.tag, 70, style.size)
         if enlarged and node.in_design_area:
             text = f"{short(node.tag, 46, style.size)}  {units.number(node.pressure, 'pressure')}"

@@ -2,9 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from typing import Final, TypeVar
+
 from supplycheck.report.document import Block, Column, Paragraph, Row, Section, Table
 from supplycheck.report.show import Show, column, words
 from supplycheck.results.records import NodeRow, PipeRow, Result
+
+MOST_ROWS: Final = 4000
+_Item = TypeVar("_Item")
 
 
 def node_analysis(result: Result) -> Section:
@@ -26,10 +32,23 @@ def node_analysis(result: Result) -> Section:
     ]
     if with_velocity:
         columns.insert(5, column("Velocity pressure", show.s("pressure")))
-    rows = tuple(_node(node, show, with_velocity=with_velocity) for node in result.nodes)
+    nodes = _printed(result.nodes, [n.in_design_area or n.discharge > 0 for n in result.nodes])
+    rows = tuple(_node(node, show, with_velocity=with_velocity) for node in nodes)
     note = "Heads in the design area are in bold. Pressures are gauge pressures in the demand solution."
+    note += _left_out(len(result.nodes) - len(nodes), "nodes", "nodes.csv")
     table = Table("", tuple(columns), rows, note, size=6.6)
     return Section("Node analysis", (table,), fresh=True)
+
+
+def _printed(rows: Sequence[_Item], wanted: Sequence[bool]) -> Sequence[_Item]:
+    """Return all ``rows``, or of too many those that are ``wanted``, up to the most that are printed."""
+    if len(rows) <= MOST_ROWS:
+        return rows
+    return [row for row, keep in zip(rows, wanted, strict=True) if keep][:MOST_ROWS]
+
+
+def _left_out(count: int, what: str, file: str) -> str:
+    return f" {count} further {what} are not printed here; {file} holds every one." if count else ""
 
 
 def _node(node: NodeRow, show: Show, *, with_velocity: bool) -> Row:
@@ -56,7 +75,9 @@ def pipe_information(result: Result) -> Section:
     show = Show.of(result)
     darcy = any(pipe.roughness is not None and pipe.c_factor is None for pipe in result.pipes)
     second = any(pipe.second_law_friction_loss is not None for pipe in result.pipes)
-    rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in result.pipes)
+    pipes = _printed(result.pipes, [pipe.flow > 0 for pipe in result.pipes])
+    rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in pipes)
+    note = _left_out(len(result.pipes) - len(pipes), "pipes", "pipes.csv").strip()
     blocks: list[Block] = [
         Paragraph(
             "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt "
@@ -65,7 +86,7 @@ def pipe_information(result: Result) -> Section:
             "pt start − pt end = pf + pe + pd.",
             "small",
         ),
-        Table("", _pipe_columns(show, darcy=darcy, second=second), rows, size=6.3),
+        Table("", _pipe_columns(show, darcy=darcy, second=second), rows, note, size=6.3),
     ]
     return Section("Pipe information", tuple(blocks), landscape=True, fresh=True)
 
