@@ -174,8 +174,8 @@ def proof(context: CheckContext) -> Finding:
             text = "The area takes in every head of the layout."
         return PROOF.says("ok", text, measured=measured)
     text = "The design area is given; it is not proven to be the most demanding."
-    if context.searched:
-        text = "Only one placement was tried; the area is not proven to be the most demanding."
+    if context.project.criteria.design_area == "search":
+        text = "{measured} placements were tried, not all; the area is not proven to be the most demanding."
     ask = "Is the chosen area accepted, or are other areas (on a grid, shifted both ways) to be shown?"
     return PROOF.says("ask authority", text, measured=measured, remedy=ask)
 

@@ -1,8 +1,8 @@
-"""Rules on pipes: C-factor, bore, equivalent lengths, tees, elevations, velocity."""
+"""Rules on pipes: C-factor, bore, elevations, velocity."""
 
 from __future__ import annotations
 
-from collections import defaultdict
+from dataclasses import dataclass
 from fractions import Fraction
 
 import numpy as np
@@ -11,7 +11,7 @@ from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, pressure, some
 from supplycheck.findings import Finding, Measure, State
-from supplycheck.model import Fitting, Pipe
+from supplycheck.model import Pipe
 from supplycheck.network.records import Solution
 
 C_SYSTEM = About(
@@ -32,18 +32,6 @@ BORE = About(
     "bore of every pipe against its nominal size, and whether its source is known",
     ("ok", "fail", "missing"),
     "reviewers' practice, no source: nominal size in place of the bore is among the commonest errors",
-)
-EQUIVALENT = About(
-    "equivalent lengths corrected",
-    "equivalent lengths from the table against the corrections for C and bore",
-    ("ok", "fail", "not applicable"),
-    "NFPA 13: (C/120)^1.85 and (bore/table bore)^4.87; EN 12845 table 23: C row only",
-)
-TEES = About(
-    "tee where flow turns",
-    "whether each point where flow divides is charged a tee or cross",
-    ("ok", "fail", "not applicable"),
-    "NFPA 13 charging rules (from memory): the leg that turns is charged the tee",
 )
 ELEVATIONS = About(
     "elevations given",
@@ -187,76 +175,6 @@ def bore(context: CheckContext) -> Finding:
     return BORE.says("ok", "Every pipe has an actual bore with its source.")
 
 
-def _expected(context: CheckContext, pipe: Pipe, fitting: Fitting) -> float:
-    factor: float = ((pipe.c_factor or 120.0) / 120.0) ** 1.85
-    reference = context.reference_bores.get(pipe.nominal)
-    if reference and not context.european:
-        factor *= (pipe.bore / reference) ** 4.87
-    return fitting.table_length * fitting.count * factor
-
-
-def equivalent(context: CheckContext) -> Finding:
-    """Within 1 %: the printed C row is rounded (0.713 for 0.714, 1.51 for 1.511).
-
-    Without the table's own bore only the correction for C can be checked.
-    """
-    if context.project.law.family != "hazen-williams":
-        return EQUIVALENT.says("not applicable", "The corrections belong to Hazen-Williams.")
-    read = [
-        (pipe, fitting, fitting.length, _expected(context, pipe, fitting))
-        for pipe in context.project.system.pipes
-        for fitting in pipe.fittings
-        if fitting.table_length > 0 and fitting.origin != "given"
-        if pipe.nominal in context.reference_bores or context.european or pipe.c_factor != 120
-    ]
-    if not read:
-        return EQUIVALENT.says("not applicable", "No equivalent length from the table needs a correction.")
-    low = [one for one in read if _is_low(context, *one)]
-    if low:
-        pipe, fitting, length, due = max(low, key=lambda one: one[3] - one[2])
-        tags = tuple({one[0].tag: 0 for one in low})
-        text = f"{fitting.name} on {pipe.tag} is charged {{measured}}; with C and bore it is {{limit}}."
-        do = "Multiply table lengths by (C/120)^1.85 and the bore ratio to 4.87."
-        measured, limit = Measure(length, "length"), Measure(due, "length")
-        return EQUIVALENT.says("fail", text, measured=measured, limit=limit, tags=tags, remedy=do)
-    return EQUIVALENT.says("ok", "Equivalent lengths are corrected for C and bore.")
-
-
-def _is_low(context: CheckContext, pipe: Pipe, fitting: Fitting, length: float, due: float) -> bool:
-    if pipe.nominal in context.reference_bores or context.european:
-        return length < 0.99 * due
-    plain = fitting.table_length * fitting.count
-    return abs(length - plain) < 1e-6 * plain and due > 1.01 * plain
-
-
-def tees(context: CheckContext) -> Finding:
-    """Where three pipes carry flow, at least one of them turns."""
-    small = limits.ROUND_OFF * context.comparison.demand_flow
-    at: dict[str, list[Pipe]] = defaultdict(list)
-    for pipe in context.project.system.pipes:
-        if abs(context.flow(pipe)) > small:
-            at[pipe.start].append(pipe)
-            at[pipe.end].append(pipe)
-    forks = {tag: pipes for tag, pipes in at.items() if len(pipes) >= 3}
-    if not forks:
-        return TEES.says("not applicable", "The flow divides nowhere.")
-    bare = tuple(tag for tag, pipes in forks.items() if not any(_turns(pipe, tag) for pipe in pipes))
-    if bare:
-        text = f"No tee or cross is charged where the flow divides at {some(bare)}."
-        do = "Charge the leg that turns (branch outlet, riser nipple) the tee of its own size."
-        return TEES.says("fail", text, tags=bare, remedy=do)
-    return TEES.says("ok", "Each point where the flow divides is charged a tee or cross.")
-
-
-def _turns(pipe: Pipe, tag: str) -> bool:
-    words = ("tee", "cross", "outlet", "equivalent")
-    return any(
-        fitting.node in {None, tag}
-        and (fitting.minor_k > 0 or any(word in fitting.name.casefold() for word in words))
-        for fitting in pipe.fittings
-    )
-
-
 def elevations(context: CheckContext) -> Finding:
     """The reader lists an elevation that was not given as an assumption."""
     keys = tuple(
@@ -318,9 +236,19 @@ def _is_valve(pipe: Pipe) -> bool:
     return named or bool(pipe.devices) or pipe.valve == "check"
 
 
-def _fastest(solution: Solution, pipes: list[Pipe]) -> tuple[float, str]:
-    wanted = {pipe.tag for pipe in pipes}
-    rows = [row for row, tag in enumerate(solution.pipe_tags) if tag in wanted]
+@dataclass(frozen=True, slots=True, order=True)
+class _Speed:
+    """A velocity [m/s] over its limit, the velocity, the limit, the pipe, and where it was seen."""
+
+    share: float
+    speed: float
+    limit: float
+    tag: str
+    where: str
+
+
+def _fastest(solution: Solution, tags: set[str]) -> tuple[float, str]:
+    rows = [row for row, tag in enumerate(solution.pipe_tags) if tag in tags]
     if not rows:
         return 0.0, ""
     speeds = np.nan_to_num(np.abs(solution.velocity[rows]))
@@ -330,36 +258,33 @@ def _fastest(solution: Solution, pipes: list[Pipe]) -> tuple[float, str]:
 
 def velocity(context: CheckContext) -> Finding:
     """Demand state and, where it was solved, what really flows: the faster counts."""
-    policy = context.project.criteria.velocity
-    states = [context.solution] + ([context.operating] if context.operating is not None else [])
-    every = list(context.project.system.pipes)
-    speed, tag = max(_fastest(state, every) for state in states)
-    measured = Measure(speed, "velocity")
+    policy, pipes = context.project.criteria.velocity, context.project.system.pipes
+    every, valves = {pipe.tag for pipe in pipes}, {pipe.tag for pipe in pipes if _is_valve(pipe)}
+    states = [("at the demand", context.solution)]
+    if context.operating is not None:
+        states.append(("with what really flows", context.operating))
     if policy.pipe_limit is None and policy.valve_limit is None:
-        text = f"No limit is set; the fastest is {{measured}} in {tag}."
+        speed, tag, when = max((*_fastest(state, every), when) for when, state in states)
+        text = f"No limit is set; the fastest is {{measured}} in {tag}, {when}."
+        measured = Measure(speed, "velocity")
         return VELOCITY.says("not applicable", text, measured=measured, tags=(tag,))
-    source = policy.source or VELOCITY.source
-    valves = [pipe for pipe in every if _is_valve(pipe)]
     groups = (("in", every, policy.pipe_limit), ("through a valve in", valves, policy.valve_limit))
-    seen = [
-        (speed / most, speed, most, f"{word} {tag}", tag)
-        for word, pipes, most in groups
-        if most is not None
-        for speed, tag in (max(_fastest(state, pipes) for state in states),)
-        if tag
-    ]
-    share, speed, most, where, tag = max(
-        seen, default=(0.0, speed, policy.pipe_limit or 0.0, f"in {tag}", tag)
+    worst = max(
+        _Speed(speed / limit, speed, limit, tag, f"{place} {tag}, {when}")
+        for place, tags, limit in groups
+        if limit is not None
+        for when, state in states
+        for speed, tag in (_fastest(state, tags),)
     )
-    state: State = "fail" if share > 1 + limits.ROUND_OFF else "ok"
+    state: State = "fail" if worst.share > 1 + limits.ROUND_OFF else "ok"
     return VELOCITY.says(
         state,
-        f"{{measured}} {where}; {policy.name} allows {{limit}}.",
-        measured=Measure(speed, "velocity"),
-        limit=Measure(most, "velocity"),
-        tags=(tag,),
+        f"{{measured}} {worst.where}; {policy.name} allows {{limit}}.",
+        measured=Measure(worst.speed, "velocity"),
+        limit=Measure(worst.limit, "velocity"),
+        tags=(worst.tag,),
         remedy="Enlarge the pipe or valve." if state == "fail" else "",
-        source=source,
+        source=policy.source or VELOCITY.source,
     )
 
 
@@ -376,8 +301,6 @@ RULES = (
     Rule(C_SYSTEM, dry_steel),
     Rule(C_CATALOGUE, catalogue_c),
     Rule(BORE, bore),
-    Rule(EQUIVALENT, equivalent),
-    Rule(TEES, tees),
     Rule(ELEVATIONS, elevations),
     Rule(RISES, rises),
     Rule(LEVEL, level),

@@ -10,6 +10,7 @@ from supplycheck.checks import (
     balance,
     basis,
     devices,
+    fittings,
     flow_record,
     heads,
     hose,
@@ -32,6 +33,7 @@ RULES: Final[tuple[Rule, ...]] = (
     *flow_record.RULES,
     *devices.RULES,
     *pipes.RULES,
+    *fittings.RULES,
     *balance.RULES,
     *basis.RULES,
 )

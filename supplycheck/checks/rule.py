@@ -4,10 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
-from typing import TypedDict, Unpack
+from typing import Final, TypedDict, Unpack
 
 from supplycheck.checks.context import CheckContext
 from supplycheck.findings import Finding, Measure, State
+
+MOST_TAGS: Final = 50
+"""Nodes or pipes that a finding names, the worst first; more would not be read."""
 
 
 class Parts(TypedDict, total=False):
@@ -44,7 +47,7 @@ class About:
             measured=parts.get("measured"),
             limit=parts.get("limit"),
             source=parts.get("source", self.source),
-            tags=parts.get("tags", ()),
+            tags=parts.get("tags", ())[:MOST_TAGS],
             remedy=parts.get("remedy", ""),
             values=parts.get("values", {}),
         )

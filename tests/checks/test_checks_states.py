@@ -13,7 +13,7 @@ from typing import Any
 
 import numpy as np
 import pytest
-from check_factory import DRY, EN, QUICK, TEE, K, array_with, built
+from check_factory import DRY, EN, OPEN, QUICK, TEE, K, array_with, built
 
 from supplycheck.checks import RULES, PumpRating, run_checks
 from supplycheck.findings import Finding, State
@@ -320,6 +320,7 @@ AREA = [
     Case("most demanding area", "ok", {}, 9),
     Case("most demanding area", "ask authority", {"searched": False, "placements_tried": 1}),
     Case("most demanding area", "ask authority", {"placements_tried": 1}),
+    Case("most demanding area", "ask authority", {"searched": False, "project.criteria.design_area": OPEN}),
     Case("most favourable area", "ok", EN | {"most_favourable_found": True}),
     Case("most favourable area", "missing", EN),
     Case("most favourable area", "not applicable"),
@@ -606,20 +607,37 @@ PIPES = [
         "fail",
         {"project.system.pipes.C1.c_factor": 150.0},
         10 * FOOT,
-        None,
+        10 * FOOT * (150 / 120) ** 1.85,
+        ("C1",),
+    ),
+    Case(
+        "equivalent lengths corrected",
+        "ok",
+        {
+            "project.system.pipes.C1.c_factor": 150.0,
+            "project.system.pipes.C1.fittings": (replace(TEE, length=15.1 * FOOT),),
+        },
+    ),
+    Case(
+        "equivalent lengths corrected",
+        "ask authority",
+        {"project.system.pipes.C1.bore": 2.157 * INCH},
+        10 * FOOT,
+        10 * FOOT * (2.157 / 2.067) ** 4.87,
         ("C1",),
     ),
     Case(
         "equivalent lengths corrected",
         "fail",
-        {"project.system.pipes.C1.bore": 2.157 * INCH},
-        10 * FOOT,
-        10 * FOOT * (2.157 / 2.067) ** 4.87,
+        {"reference_bores": {}, "project.system.pipes.C1.c_factor": 150.0},
     ),
     Case(
         "equivalent lengths corrected",
-        "fail",
-        {"reference_bores": {}, "project.system.pipes.C1.c_factor": 150.0},
+        "not applicable",
+        {
+            "project.system.pipes.*.c_factor": 150.0,
+            "project.system.pipes.*.fittings": (replace(TEE, source="length as written"),),
+        },
     ),
     Case("equivalent lengths corrected", "not applicable", {"project.system.pipes.*.fittings": ()}),
     Case("equivalent lengths corrected", "not applicable", {"project.law": DARCY}),
