@@ -221,40 +221,43 @@ def small_rooms(context: CheckContext) -> Finding:
     return SMALL_ROOMS.says("not applicable", "No small room is dropped from the area.")
 
 
-def quick_response(context: CheckContext) -> Finding:
-    """Every condition in turn; the first broken one is told."""
-    criteria = context.project.criteria
-    used = next((one for one in criteria.modifiers if "quick" in one.name.casefold()), None)
-    if used is None:
-        return QUICK.says("not applicable", "No reduction for quick response is taken.")
+def _broken_condition(context: CheckContext, slow: tuple[str, ...]) -> str:
+    """Return the first condition of the reduction that is broken, empty where none is."""
+    criteria, heads = context.project.criteria, len(context.case.heads)
     height = criteria.ceiling_height
-    measured = Measure(used.factor, "percent")
-    drop_it = "Take the area without this reduction."
-    kinds = {node.tag: context.sprinklers.get(node.sprinkler or "") for node in context.all_heads}
-    slow = tuple(tag for tag, kind in kinds.items() if kind is not None and kind.response == "standard")
-    unsaid = tuple(tag for tag, kind in kinds.items() if kind is None or kind.response is None)
-    broken = {
+    conditions = {
         "EN 12845 has no such reduction": context.european,
         f"the system is {criteria.system}, not wet": criteria.system.casefold() != "wet",
         f"{criteria.hazard} is neither light nor ordinary": context.hazard not in {"light", "ordinary"},
+        "the ceiling is at {height}, above {highest}": height is not None
+        and height > limits.QUICK_CEILING + limits.TYPED_LENGTH,
         f"{some(slow)} are not quick response": bool(slow),
-        "fewer than five heads are in the area": len(context.case.heads) < limits.QUICK_HEADS
-        and len(context.case.heads) < len(context.all_heads),
+        "fewer than five heads are in the area": heads < min(limits.QUICK_HEADS, len(context.all_heads)),
     }
-    for reason, yes in broken.items():
-        if yes:
-            text = f"The area is taken at {{measured}} for quick response, but {reason}."
-            return QUICK.says("fail", text, measured=measured, tags=slow, remedy=drop_it)
+    return next((reason for reason, broken in conditions.items() if broken), "")
+
+
+def quick_response(context: CheckContext) -> Finding:
+    """Every condition in turn; the first broken one is told."""
+    used = next((one for one in context.project.criteria.modifiers if "quick" in one.name.casefold()), None)
+    if used is None:
+        return QUICK.says("not applicable", "No reduction for quick response is taken.")
+    height, measured = context.project.criteria.ceiling_height, Measure(used.factor, "percent")
+    values = {"highest": Measure(limits.QUICK_CEILING, "length")}
+    if height is not None:
+        values["height"] = Measure(height, "length")
+    kinds = {node.tag: context.sprinklers.get(node.sprinkler or "") for node in context.all_heads}
+    slow = tuple(tag for tag, kind in kinds.items() if kind is not None and kind.response == "standard")
+    unsaid = tuple(tag for tag, kind in kinds.items() if kind is None or kind.response is None)
+    reason = _broken_condition(context, slow)
+    if reason:
+        text = f"The area is taken at {{measured}} for quick response, but {reason}."
+        do = "Take the area without this reduction."
+        return QUICK.says("fail", text, measured=measured, tags=slow, remedy=do, values=values)
     if height is None or unsaid:
         what = "the ceiling height" if height is None else f"the response of {some(unsaid)}"
-        ask = f"What is {what}?"
-        return QUICK.says(
-            "missing", f"Not run: {what} is not given.", measured=measured, tags=unsaid, remedy=ask
-        )
-    values = {"height": Measure(height, "length"), "most": Measure(limits.QUICK_CEILING, "length")}
-    if height > limits.QUICK_CEILING + limits.TYPED_LENGTH:
-        text = "The area is taken at {measured} for quick response; the ceiling is {height}, not {most}."
-        return QUICK.says("fail", text, measured=measured, values=values, remedy=drop_it)
+        text = f"Not run: {what} is not given."
+        return QUICK.says("missing", text, measured=measured, tags=unsaid, remedy=f"What is {what}?")
     least = 1 - (55 - 1.5 * max(height / limits.FOOT, 10.0)) / 100
     limit = Measure(least, "percent")
     text = "For quick response at {height} the area is taken at {measured}; not below {limit}."

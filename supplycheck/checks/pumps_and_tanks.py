@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from supplycheck.checks import limits
-from supplycheck.checks.context import CheckContext
+from supplycheck.checks.context import CheckContext, PumpRating
 from supplycheck.checks.rule import About, Rule, pressure, some
 from supplycheck.findings import Finding, Measure
+from supplycheck.model import Device
 
 DURATION = About(
     "duration",
@@ -121,6 +122,30 @@ def _at(curve: tuple[tuple[float, ...], tuple[float, ...]], wanted: float) -> fl
     return None
 
 
+def _pump_fault(pump: Device, rated: PumpRating) -> Finding | None:
+    curve = (pump.flows, pump.values)
+    churn, far = _at(curve, 0.0), _at(curve, limits.PUMP_FLOW * rated.flow)
+    if churn is None or far is None:
+        ask = f"What does pump {pump.tag} give at no flow and at 150 % of rated flow?"
+        text = f"Not run: the curve of {pump.tag} does not reach from no flow to 150 %."
+        return PUMP.says("missing", text, tags=(pump.tag,), remedy=ask)
+    churn, far = churn / rated.pressure, far / rated.pressure
+    if churn > limits.PUMP_CHURN + limits.ROUND_OFF:
+        share, limit, where = churn, limits.PUMP_CHURN, "without flow"
+    elif far < limits.PUMP_PRESSURE - limits.ROUND_OFF:
+        share, limit, where = far, limits.PUMP_PRESSURE, "at 150 % flow"
+    else:
+        return None
+    return PUMP.says(
+        "fail",
+        f"Pump {pump.tag} gives {{measured}} of rated pressure {where}; limit {{limit}}.",
+        measured=Measure(share, "percent"),
+        limit=Measure(limit, "percent"),
+        tags=(pump.tag,),
+        remedy="Check the curve, or choose another pump.",
+    )
+
+
 def pump_curve(context: CheckContext) -> Finding:
     """The curve's own points, joined by straight lines."""
     used = {tag for pipe in context.project.system.pipes for tag in pipe.devices}
@@ -134,36 +159,9 @@ def pump_curve(context: CheckContext) -> Finding:
             "missing", f"Not run: no rated point for {some(unrated)}.", tags=unrated, remedy=ask
         )
     for one in pumps:
-        rated = context.pump_ratings[one.tag]
-        churn = _at((one.flows, one.values), 0.0)
-        far = _at((one.flows, one.values), limits.PUMP_FLOW * rated.flow)
-        if churn is None or far is None:
-            ask = f"What does pump {one.tag} give at no flow and at 150 % of rated flow?"
-            text = f"Not run: the curve of {one.tag} does not reach from no flow to 150 %."
-            return PUMP.says("missing", text, tags=(one.tag,), remedy=ask)
-        for share, limit, bad, word in (
-            (
-                churn / rated.pressure,
-                limits.PUMP_CHURN,
-                churn > limits.PUMP_CHURN * rated.pressure,
-                "without flow",
-            ),
-            (
-                far / rated.pressure,
-                limits.PUMP_PRESSURE,
-                far < limits.PUMP_PRESSURE * rated.pressure,
-                "at 150 % flow",
-            ),
-        ):
-            if bad and abs(share - limit) > limits.ROUND_OFF:
-                return PUMP.says(
-                    "fail",
-                    f"Pump {one.tag} gives {{measured}} of rated pressure {word}; limit {{limit}}.",
-                    measured=Measure(share, "percent"),
-                    limit=Measure(limit, "percent"),
-                    tags=(one.tag,),
-                    remedy="Check the curve, or choose another pump.",
-                )
+        wrong = _pump_fault(one, context.pump_ratings[one.tag])
+        if wrong is not None:
+            return wrong
     tags = tuple(one.tag for one in pumps)
     values = {
         "churn": Measure(limits.PUMP_CHURN, "percent"),

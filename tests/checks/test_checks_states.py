@@ -351,6 +351,12 @@ AREA = [
     Case("small rooms", "not applicable"),
     Case("quick-response reduction", "not applicable"),
     Case("quick-response reduction", "ok", QUICK_TAKEN, 0.675, 0.675),
+    Case(
+        "quick-response reduction",
+        "fail",
+        QUICK_TAKEN
+        | {"project.criteria.ceiling_height": 25 * FOOT, "project.system.sprinklers.A.response": None},
+    ),
     Case("quick-response reduction", "missing", QUICK_TAKEN | {"project.criteria.ceiling_height": None}),
     Case(
         "quick-response reduction", "missing", QUICK_TAKEN | {"project.system.sprinklers.A.response": None}
