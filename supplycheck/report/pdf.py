@@ -7,6 +7,7 @@ random identifier, and the fonts are subset in the order in which letters occur.
 from __future__ import annotations
 
 import io
+from importlib import resources
 from typing import Any, Final
 
 from reportlab.lib.colors import HexColor
@@ -62,9 +63,17 @@ class FontRuler:
         return found * size
 
 
+class _Canvas(Canvas):  # type: ignore[misc]
+    """A canvas on which every text is placed by itself, so that how far it reaches need not be known."""
+
+    def stringWidth(self, *_: object) -> float:  # noqa: N802  (reportlab's own name)
+        return 0.0
+
+
 def _font(name: str, file: str) -> Any:
     """Return a font of its own for one document, so that its subset starts empty."""
-    font = TTFont(name, file)
+    content = resources.files("reportlab").joinpath("fonts", file).read_bytes()
+    font = TTFont(name, io.BytesIO(content))
     pdfmetrics.registerFont(font)
     return font
 
@@ -74,7 +83,7 @@ def pdf_bytes(document: Document) -> bytes:
     ruler = FontRuler()
     sheets = lay_out(document, ruler)
     out = io.BytesIO()
-    canvas = Canvas(out, invariant=1, pageCompression=1, initialFontName=REGULAR)
+    canvas = _Canvas(out, invariant=1, pageCompression=1, initialFontName=REGULAR)
     canvas.setTitle(ruler.clean(document.title))
     canvas.setSubject(ruler.clean(document.subtitle))
     canvas.setAuthor("")

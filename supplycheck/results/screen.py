@@ -15,8 +15,8 @@ LINES: Final = 24
 _LABEL: Final = 12
 
 
-def screen_text(result: Result, files: Sequence[str] = ()) -> str:
-    """Return the one-screen answer; ``files`` are the names of the files that were written.
+def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
+    """Return the one-screen answer; ``files`` are the names of the files or folders that were written.
 
     Every number is the one in ``result.json`` after display rounding. What does not fit is counted,
     never dropped silently.
@@ -25,7 +25,7 @@ def screen_text(result: Result, files: Sequence[str] = ()) -> str:
     title = _wrapped("", result.project.facts.title, 1)
     head = [*title, *_wrapped("", f"{result.verdict.upper()}: {result.verdict_text}", 2), ""]
     body = [line for label, text, most in _entries(result, units) for line in _wrapped(label, text, most)]
-    tail = _files(files)
+    tail = _files([files] if isinstance(files, str) else files)
     room = LINES - len(head) - len(body) - len(tail)
     fails = [f"{one.check}: {finding_text(one, units)}" for one in result.findings if one.state == "fail"]
     questions = list(result.open_questions)

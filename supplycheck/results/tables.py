@@ -236,12 +236,13 @@ def xlsx_bytes(tables: Mapping[str, pd.DataFrame], date: dt.date) -> bytes:
 
     Text cells are stored as text, so that a leading ``=`` is shown and not executed.
     """
+    from openpyxl import Workbook
+
+    book = Workbook(write_only=True)
+    for name, frame in tables.items():
+        _sheet(book, name, frame)
     out = io.BytesIO()
-    with pd.ExcelWriter(out, engine="openpyxl") as writer:
-        for name, frame in tables.items():
-            frame.map(_storable).to_excel(writer, sheet_name=name[:31], index=False)
-        for sheet in writer.book.worksheets:
-            _finish_sheet(sheet)
+    book.save(out)
     return _fixed(out.getvalue(), date)
 
 
@@ -250,25 +251,38 @@ def xlsx_file(result: Result) -> bytes:
     return xlsx_bytes(frames(result), result.project.facts.date)
 
 
-def _storable(cell: Any) -> Any:
-    """Return a text cell without the control characters that the format forbids."""
-    if not isinstance(cell, str):
-        return cell
-    return "".join(c if c in "\t\n\r" or ord(c) >= 32 else f"\\x{ord(c):02x}" for c in cell)[:32767]
+def _sheet(book: Any, name: str, frame: pd.DataFrame) -> None:
+    from openpyxl.cell import WriteOnlyCell
+    from openpyxl.styles import Font
+    from openpyxl.utils import get_column_letter
 
-
-def _finish_sheet(sheet: Any) -> None:
+    sheet = book.create_sheet(name[:31])
     sheet.freeze_panes = "B2"
-    for column in sheet.columns:
-        longest = 0
-        for cell in column:
-            if isinstance(cell.value, str):
-                cell.data_type = "s"
-                cell.quotePrefix = cell.value.startswith(_EXECUTED)
-                longest = max(longest, len(cell.value))
-            elif cell.value is not None:
-                longest = max(longest, 10)
-        sheet.column_dimensions[column[0].column_letter].width = min(max(longest + 2, 9), 48)
+    for place, title in enumerate(frame.columns, start=1):
+        widest = max((len(str(cell)) for cell in frame[title] if isinstance(cell, str)), default=10)
+        letter = get_column_letter(place)
+        sheet.column_dimensions[letter].width = min(max(widest, len(title), 8) + 2, 48)
+    bold = Font(bold=True)
+    head = []
+    for title in frame.columns:
+        cell = WriteOnlyCell(sheet, value=title)
+        cell.font = bold
+        head.append(cell)
+    sheet.append(head)
+
+    def stored(value: Any) -> Any:
+        if not isinstance(value, str):
+            return None if value is None or value != value else value
+        text = visible(value)[:32767]
+        if not text.startswith(_EXECUTED):
+            return text
+        cell = WriteOnlyCell(sheet, value=text)
+        cell.data_type = "s"
+        cell.quotePrefix = True
+        return cell
+
+    for row in frame.itertuples(index=False, name=None):
+        sheet.append([stored(value) for value in row])
 
 
 def _fixed(book: bytes, date: dt.date) -> bytes:
