@@ -86,7 +86,10 @@ def command(**options: Any) -> None:
 
     if options["length"] is None and options["minor_k"] is None and options["equivalent_length"] is None:
         raise click.UsageError("give at least --length; see --help for examples")
-    question = pipe_question.ask(options)
+    try:
+        question = pipe_question.ask(options)
+    except DomainError as error:
+        raise click.UsageError(str(error)) from None
     try:
         result = solve_one_pipe(question.problem)
         next_size = pipe_question.next_size(question, result)

@@ -15,13 +15,14 @@ from __future__ import annotations
 import math
 from collections.abc import Callable
 from dataclasses import replace
+from types import MappingProxyType
 from typing import Final, Literal
 
 from supplycheck.errors import DomainError, NoSolutionError
 from supplycheck.hydraulics.darcy_weisbach import LAMINAR_END, TURBULENT_START, reynolds_number
 from supplycheck.hydraulics.heads import velocity, velocity_pressure
 from supplycheck.hydraulics.numbers import not_negative, positive, within
-from supplycheck.hydraulics.pipe_laws import DarcyWeisbach
+from supplycheck.hydraulics.pipe_laws import DarcyWeisbach, HazenWilliams
 from supplycheck.hydraulics.pipe_problem import OnePipe, OnePipeResult, Regime, Step, Unknown
 from supplycheck.hydraulics.pump import power_from_pressure
 
@@ -29,6 +30,20 @@ SMALLEST_FLOW: Final = 1e-15
 LARGEST_FLOW: Final = 1e6
 SMALLEST_BORE: Final = 1e-5
 LARGEST_BORE: Final = 1e3
+_LARGEST: Final = 1e15
+_LIMITS: Final = MappingProxyType(
+    {
+        "flow": (SMALLEST_FLOW, LARGEST_FLOW),
+        "bore": (SMALLEST_BORE, LARGEST_BORE),
+        "viscosity": (1e-9, 1e9),
+        "efficiency": (1e-6, 1.0),
+        "density": (1e-6, 1e6),
+        "unit weight": (1e-6, 1e9),
+    }
+)
+"""Far beyond any pipe: within them no intermediate number of the search overflows."""
+WATER_LIKE: Final = 1e-6
+"""Kinematic viscosity of water at 20 °C, rounded [m²/s]; from 0 to 100 °C it is 1.8 to 0.3 times this."""
 
 
 def solve(problem: OnePipe) -> OnePipeResult:
@@ -53,26 +68,35 @@ def solve(problem: OnePipe) -> OnePipeResult:
 
 
 def _check(problem: OnePipe) -> None:
-    """Refuse numbers that no pipe has."""
-    not_negative("length", "m", problem.length)
-    not_negative("equivalent length", "m", problem.equivalent_length)
-    not_negative("loss coefficient", "", problem.minor_k)
-    positive("density", "kg/m³", problem.density)
-    positive("unit weight", "Pa/m", problem.unit_weight)
-    for name, unit, value in (("flow", "m³/s", problem.flow), ("bore", "m", problem.bore)):
+    """Refuse numbers that no pipe has, and questions that do not fit together."""
+    for name, unit, value in (
+        ("flow", "m³/s", problem.flow),
+        ("bore", "m", problem.bore),
+        ("viscosity", "Pa·s", problem.viscosity),
+        ("efficiency", "", problem.efficiency),
+        ("density", "kg/m³", problem.density),
+        ("unit weight", "Pa/m", problem.unit_weight),
+    ):
         if value is not None:
             positive(name, unit, value)
+            within(name, unit, value, *_LIMITS[name])
     for name, unit, value in (
+        ("length", "m", problem.length),
+        ("equivalent length", "m", problem.equivalent_length),
+        ("loss coefficient", "", problem.minor_k),
         ("pump pressure", "Pa", problem.pump_pressure),
         ("pump power", "W", problem.pump_power),
     ):
         if value is not None:
             not_negative(name, unit, value)
-    if problem.efficiency is not None:
-        within("efficiency", "", positive("efficiency", "", problem.efficiency), 0.0, 1.0)
-    for name, number in (("rise", problem.rise), ("pressure drop", problem.drop), ("loss", problem.loss)):
-        if number is not None and not math.isfinite(number):
-            raise DomainError(f"{name} must be a finite number; found {number:g}")
+            within(name, unit, value, 0.0, _LARGEST)
+    for name, unit, value in (
+        ("rise", "m", problem.rise),
+        ("pressure drop", "Pa", problem.drop),
+        ("loss", "Pa", problem.loss),
+    ):
+        if value is not None:
+            within(name, unit, value, -_LARGEST, _LARGEST)
     if isinstance(problem.law, DarcyWeisbach) and problem.viscosity is None:
         raise DomainError("Darcy-Weisbach needs the viscosity of the fluid")
     if problem.pump_power is not None and problem.pump_pressure is not None:
@@ -274,6 +298,11 @@ def _remarks(problem: OnePipe, reynolds: float | None, rough: float | None) -> t
         remarks.append("the flow is between laminar and turbulent (Re 2000 to 4000): the loss is uncertain")
     if regime_of(reynolds) in {"laminar", "transition"} and not isinstance(problem.law, DarcyWeisbach):
         remarks.append("the flow is not turbulent: this law does not hold there, use Darcy-Weisbach")
+    thick = (
+        problem.viscosity is not None and not 0.2 < problem.viscosity / problem.density / WATER_LIKE < 2.0
+    )
+    if isinstance(problem.law, HazenWilliams) and thick:
+        remarks.append("Hazen-Williams holds for water: this fluid's viscosity plays no part in the loss")
     if rough is not None and rough > 0.05:
         remarks.append("the relative roughness is above 0.05, where the published chart ends")
     if problem.end == "reservoir" and problem.minor_k < 1:

@@ -8,6 +8,8 @@ from typing import Any
 
 import pytest
 from click.testing import CliRunner, Result
+from hypothesis import given
+from hypothesis import strategies as st
 
 from supplycheck.cli import main
 
@@ -200,6 +202,60 @@ def test_wrong_usage(words: tuple[str, ...], message: str) -> None:
     result = run(*words)
     assert result.exit_code == 2
     assert message in " ".join(result.stderr.split())
+
+
+TEXTS = st.one_of(
+    st.sampled_from(
+        ["0", "1", "2.067", "1e-9", "1e9", "-3", "nan", "inf", "1e400", "", " ", "5 psi", "20 m"]
+    ),
+    st.sampled_from(
+        ["10'-6\"", "1 1/4 in", "1/0", "70%", "6 L/s", "½", "١", "5,000", "2 hp", "60 °F", "0x10"]
+    ),
+    st.text(max_size=8),
+)
+NUMBERS = [
+    *("--flow", "--diameter", "--size", "--material", "--loss", "--start-pressure", "--end-pressure"),
+    *("--length", "--c-factor", "--roughness", "--friction-factor", "--minor-k", "--equivalent-length"),
+    *("--rise", "--pump-head", "--pump-power", "--efficiency", "--temperature", "--density", "--viscosity"),
+    "--system",
+]
+FLAGS = ["--from-reservoir", "--to-reservoir", "--jet", "--steps", "--json"]
+
+
+@given(
+    st.dictionaries(st.sampled_from(NUMBERS), TEXTS, max_size=8),
+    st.sets(st.sampled_from(FLAGS)),
+    st.sampled_from(["us", "metric"]),
+)
+def test_nothing_typed_ends_in_a_traceback(numbers: dict[str, str], flags: set[str], units: str) -> None:
+    words = [f"{name}={text}" for name, text in numbers.items()] + sorted(flags) + ["--units", units]
+    assert run(*words).exit_code in {0, 2, 4}
+
+
+SENSIBLE = {
+    "--flow": "100",
+    "--diameter": "2",
+    "--length": "50",
+    "--c-factor": "120",
+    "--loss": "5",
+    "--start-pressure": "50",
+    "--end-pressure": "20",
+}
+
+
+@given(
+    st.sets(st.sampled_from(sorted(SENSIBLE)), min_size=4),
+    st.dictionaries(st.sampled_from(NUMBERS), TEXTS, max_size=2),
+    st.sets(st.sampled_from(FLAGS)),
+)
+def test_nor_does_one_odd_option_among_good_ones(
+    good: set[str], odd: dict[str, str], flags: set[str]
+) -> None:
+    numbers = {name: SENSIBLE[name] for name in sorted(good)} | odd
+    result = run(*(f"{name}={text}" for name, text in numbers.items()), *sorted(flags))
+    assert result.exit_code in {0, 2, 4}
+    if result.exit_code == 0 and "--json" in flags:
+        assert "NaN" not in result.stdout and "Infinity" not in result.stdout
 
 
 def test_help_names_every_option_once() -> None:
