@@ -54,7 +54,7 @@ def check(project: Project, progress: Progress | None = None) -> Result:
     candidates = demand_cases(project)
     curves = supply_curves(project)
     sources = source_curves(curves)
-    loads = [(load_of(project, case.heads), required_of(case)) for case in candidates.cases]
+    loads = [(load_of(project, case), required_of(case)) for case in candidates.cases]
     summaries = demand_many(network, loads, sources, progress=progress)
     placements = tuple(map(_placement, repeat(project), candidates.cases, summaries))
     governing = min(range(len(placements)), key=lambda row: placements[row].margin)
@@ -82,18 +82,21 @@ def check(project: Project, progress: Progress | None = None) -> Result:
     )
 
 
-def load_of(project: Project, heads: tuple[str, ...]) -> LoadCase:
-    """Return the load with ``heads`` open, the hose drawn where it joins, and all other fixed outflows."""
-    flows: dict[str, float] = dict(hose_loads(project))
-    for node in project.system.nodes:
-        if node.fixed_flow:
-            flows[node.tag] = flows.get(node.tag, 0.0) + node.fixed_flow
-    return LoadCase(heads, MappingProxyType(flows))
+def load_of(project: Project, case: DemandCase) -> LoadCase:
+    """Return what flows in ``case``: its heads and outlets, hose, and all other fixed outflows, each once."""
+    flows: dict[str, float] = dict(hose_loads(project)) if case.with_hose else {}
+    drawn = [(node.tag, node.fixed_flow) for node in project.system.nodes if node.fixed_flow]
+    for tag, flow in (*drawn, *case.flows, *((one.node, one.flow) for one in case.outlets)):
+        flows[tag] = flows.get(tag, 0.0) + flow
+    return LoadCase(case.heads, MappingProxyType(flows), case.closed_pipes)
 
 
 def required_of(case: DemandCase) -> Mapping[str, float]:
-    """Return the pressure [Pa] that ``case`` asks at each of its heads."""
-    return dict(zip(case.heads, case.required_pressure, strict=True))
+    """Return the pressure [Pa] that ``case`` asks at each of its heads and outlets."""
+    return {
+        **dict(zip(case.heads, case.required_pressure, strict=True)),
+        **{outlet.node: outlet.minimum_pressure for outlet in case.outlets},
+    }
 
 
 def _placement(project: Project, case: DemandCase, summary: DemandSummary) -> Placement:

@@ -4,6 +4,7 @@ from supplycheck.model.criteria import (
     AreaModifier,
     Criteria,
     DemandCase,
+    FixedOutlet,
     HoseAllowance,
     VelocityPolicy,
 )
@@ -32,6 +33,7 @@ __all__ = [
     "DemandCase",
     "Device",
     "Fitting",
+    "FixedOutlet",
     "FlowTest",
     "Fluid",
     "FrictionLaw",

@@ -71,12 +71,30 @@ class Criteria:
 
 
 @dataclass(frozen=True, slots=True)
+class FixedOutlet:
+    """An outlet whose flow never floats: a standpipe valve or a hydrant.
+
+    It must give ``flow`` [m³/s] with at least ``minimum_pressure`` [Pa] left at its node; with flow 0 it
+    only asks for the pressure (the highest point of a main, say). ``what`` says what it is.
+    """
+
+    node: str
+    flow: float
+    minimum_pressure: float
+    what: str
+
+
+@dataclass(frozen=True, slots=True)
 class DemandCase:
     """One placement of the design area and what it asks of each head.
 
     ``heads`` are node tags; ``required_flow`` [m³/s] and ``required_pressure`` [Pa] stand in the
     same order (the larger of what density, listing and the general minimum ask); ``required_by`` says
     which of them governs. ``area`` [m²] is the floor area covered by the heads.
+
+    ``outlets`` ask for a fixed flow and a pressure beside the heads; ``flows`` are further fixed
+    outflows [m³/s] by node that ask for nothing; ``closed_pipes`` are shut in this case; ``with_hose``
+    says that the hose allowance flows too. ``duty`` names what the case serves.
     """
 
     label: str
@@ -88,3 +106,8 @@ class DemandCase:
     lines: int
     along_line: int
     note: str = ""
+    outlets: tuple[FixedOutlet, ...] = ()
+    flows: tuple[tuple[str, float], ...] = ()
+    closed_pipes: tuple[str, ...] = ()
+    with_hose: bool = True
+    duty: Literal["sprinklers", "standpipes", "hydrants"] = "sprinklers"
