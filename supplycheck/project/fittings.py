@@ -52,7 +52,7 @@ def parse(text: str, units: UnitSet, place: Place, faults: FaultList) -> list[Wr
             continue
         match = _PART.fullmatch(entry)
         name = match[2].strip() if match else ""
-        if match is None or not name or not re.search(r"[^\W\d_]", name) or match[1] == "0":
+        if match is None or not name[:1].isalnum() or not re.search(r"[^\W\d_]", name) or match[1] == "0":
             faults.add(
                 place,
                 "is not a list of fittings",

@@ -324,4 +324,4 @@ def generate(
     if layout.type != "tree":
         _far_main(builder, ys, distance, tied=layout.type == "loop")
     add_feed(builder, joint, sections, notes, faults)
-    return DraftSystem(tuple(builder.nodes), tuple(builder.pipes))
+    return DraftSystem(tuple(builder.nodes), tuple(builder.pipes), complete=not faults.touched(place))

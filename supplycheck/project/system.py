@@ -95,6 +95,7 @@ class Finisher:
         self.sections, self.kinds, self.devices = sections, kinds, devices
         self.lengths, self.faults = lengths, faults
         self._bores: dict[tuple[str, str], tuple[float, str]] = {}
+        self.sources: dict[str, dict[str, None]] = {}
         self._unknown: dict[tuple[str, str], tuple[NotInCatalogueError, list[DraftPipe]]] = {}
         self._written: dict[str, list[WrittenFitting]] = {}
         table = sections.network or sections.layout
@@ -117,6 +118,7 @@ class Finisher:
             except NotInCatalogueError as caught:
                 self._unknown[key] = (caught, [draft])
                 return math.nan, draft.size
+            self.sources.setdefault(draft.kind, {})[row.source] = None
             self._bores[key] = (row.bore, catalogue.normalise_nominal(row.nominal))
         return self._bores[key]
 
@@ -210,7 +212,7 @@ def _note_inferred(pipes: Sequence[Pipe], notes: Notes) -> None:
 def _note_bores(
     drafts: Sequence[DraftPipe],
     pipes: Sequence[Pipe],
-    kinds: Mapping[str, KindOfPipe],
+    sources: Mapping[str, Mapping[str, None]],
     units: UnitSet,
     notes: Notes,
 ) -> None:
@@ -223,7 +225,7 @@ def _note_bores(
             f"{size}: {units.text(bore, 'size')}"
             for size, bore in sorted(sizes.items(), key=lambda s: s[1])
         )
-        notes.add(f"pipe.{name}: bores", text, "catalogue", kinds[name].record.bore_source)
+        notes.add(f"pipe.{name}: bores", text, "catalogue", "; ".join(sources.get(name, ())))
 
 
 def finish(
@@ -250,7 +252,7 @@ def finish(
     ]
     if not faults:
         _note_inferred(pipes, notes)
-        _note_bores(draft.pipes, pipes, finisher.kinds, UNIT_SETS[finisher.sections.units], notes)
+        _note_bores(draft.pipes, pipes, finisher.sources, UNIT_SETS[finisher.sections.units], notes)
     return System(
         nodes=draft.nodes,
         pipes=tuple(pipes),

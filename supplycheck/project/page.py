@@ -1,0 +1,124 @@
+"""The input page of the documentation, made from the schema: every table, key, unit and default."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from supplycheck.project.describe import descriptions, json_schema, tables
+from supplycheck.project.network_tables import NODE_COLUMNS, PIPE_COLUMNS
+from supplycheck.project.schema import ProjectFile
+from supplycheck.project.schema_parts import Table
+from supplycheck.project.tables import LONGEST_CELL, MOST_ROWS, Column
+from supplycheck.units import METRIC, US
+
+_INTRO = f"""\
+# The project file
+
+This page is made from the schema that reads the file (`supplycheck schema` prints it as JSON Schema,
+from which editors complete keys). A project is a folder with a `project.toml` and, where it uses them,
+tables in CSV or XLSX. `supplycheck new DIR` writes a commented starter.
+
+## How values are written
+
+- **Units.** `units = "us"` or `units = "metric"` at the top of the file holds for every number; a table may
+  carry its own `units`, which also holds for the tables inside it. Any number may instead be a text with a
+  unit: `"80 psi"`, `"5.5 bar"`, `"1000 gpm"`.
+- **Feet, inches, fractions.** Lengths and sizes may be written `"10'-6\\""`, `"10 ft 6 in"`, `"1 1/4 in"`,
+  `"1-1/4"`.
+- **Nominal sizes** are `"1 1/4"`, `2`, `"DN 50"`, `50`; a bare number is in the unit in which the material
+  is sold.
+- **Dates** are written `2026-06-01`, without quotes.
+- **Fittings** are written `2 elbow 90; 1 tee`; one of known length or loss `strainer = 20 ft`,
+  `entrance: k = 0.5`; `none` says that there are none.
+- **Paths** are file names inside the folder of the project; nothing outside it is read.
+- What is left out and follows from the catalogue, from geometry, or is assumed, is listed in the report.
+- All faults of a project are shown at once, each with file, key or row, value found, what is allowed and
+  what to do. An unknown key is a fault.
+
+## Tables of nodes and pipes
+
+CSV (separated by comma, semicolon or tab; UTF-8, with or without byte-order mark) or one sheet of a
+workbook, `"book.xlsx#Sheet"`. The first row holds the names of the columns, in any order and case; a unit
+in brackets behind a name, `Length (ft)`, holds for that column. Tags are texts: `001` stays `001`. A cell
+holds at most {LONGEST_CELL} characters, a table at most {MOST_ROWS} rows.
+"""
+
+
+def _column_table(title: str, columns: tuple[Column, ...]) -> list[str]:
+    lines = [f"### {title}", "", "| column | what it holds | unit: us, metric |", "|---|---|---|"]
+    for column in columns:
+        name = f"`{column.name}`" + (" (needed)" if column.required else "")
+        unit = f"{US.symbol(column.kind)}, {METRIC.symbol(column.kind)}" if column.kind else ""
+        lines.append(f"| {name} | {column.description} | {unit.strip(', ')} |")
+    return [*lines, ""]
+
+
+def _quantity(entry: dict[str, Any]) -> tuple[str, str]:
+    """Return the kind of value of a key and its units."""
+    for option in (entry, *entry.get("anyOf", ())):
+        if "quantity" in option:
+            unit = option.get("unit", {})
+            units = f"{unit.get('us', '')}, {unit.get('metric', '')}".strip(", ")
+            return option["quantity"], units
+    options = [
+        option for option in (entry, *entry.get("anyOf", ())) if "enum" in option or "const" in option
+    ]
+    if options:
+        words = [word for option in options for word in option.get("enum", [option.get("const")])]
+        lists = ["list of text" for option in entry.get("anyOf", ()) if option.get("type") == "array"]
+        return " · ".join([f"`{word}`" for word in words] + lists), ""
+    if "items" in entry:
+        kind, units = _quantity(entry["items"])
+        return f"list of {kind}", units
+    if "$ref" in entry:
+        return "table", ""
+    if "additionalProperties" in entry:
+        return "names and values", ""
+    return {"string": "text", "boolean": "`true` · `false`", "integer": "whole number"}.get(
+        entry.get("type", ""), entry.get("type", "value")
+    ), ""
+
+
+def _default(entry: dict[str, Any], *, needed: bool) -> str:
+    if needed:
+        return "needed"
+    value = entry.get("default")
+    if value is None or value == "" or value == [] or value == {}:
+        return ""
+    return f"`{str(value).lower()}`" if isinstance(value, bool) else f"`{value}`"
+
+
+def _key_table(name: str, table: type[Table], schema: dict[str, Any]) -> list[str]:
+    block = schema if table is ProjectFile else schema["$defs"][table.__name__]
+    needed = set(block.get("required", ()))
+    heading = f"## `[{name}]`" if name else "## Top of the file"
+    intro = " ".join((table.__doc__ or "").split())
+    lines = [
+        heading,
+        "",
+        intro,
+        "",
+        "| key | value | unit: us, metric | default | what it means |",
+        "|---|---|---|---|---|",
+    ]
+    texts = descriptions(table)
+    for key, entry in block["properties"].items():
+        kind, units = _quantity(entry)
+        default = _default(entry, needed=key in needed)
+        lines.append(f"| `{key}` | {kind} | {units} | {default} | {texts[key].replace('|', '·')} |")
+    return [*lines, ""]
+
+
+def input_page() -> str:
+    """Return the page as Markdown."""
+    schema = json_schema()
+    lines = [_INTRO]
+    lines += _column_table("Columns of nodes", NODE_COLUMNS)
+    lines += _column_table("Columns of pipes", PIPE_COLUMNS)
+    seen: set[type[Table]] = set()
+    for name, table in tables():
+        if table in seen:
+            continue
+        seen.add(table)
+        lines += _key_table(name, table, schema)
+    return "\n".join(lines).rstrip() + "\n"
