@@ -10,6 +10,16 @@ import sys
 from dataclasses import dataclass, replace
 from pathlib import Path
 
+from one_pipe_problems import (
+    CENGEL_8_2,
+    FOX_8_5,
+    SQUARE_FOOT_POUND,
+    WHITE_6_6,
+    WHITE_6_7,
+    WHITE_6_9,
+    WHITE_6_11,
+)
+
 from supplycheck.hydraulics import (
     ConstantFactor,
     DarcyWeisbach,
@@ -232,6 +242,38 @@ def problem_rows() -> list[Row]:
     ]
 
 
+def more_problem_rows() -> list[Row]:
+    """More text-book problems, from memory of the books."""
+    cast, oil, flow = (solve_one_pipe(problem) for problem in (WHITE_6_6, WHITE_6_7, WHITE_6_9))
+    second = "Çengel and Cimbala 8-2"
+    size, thin, start = (solve_one_pipe(problem) for problem in (WHITE_6_11, CENGEL_8_2, FOX_8_5))
+    return [
+        Row("White 6.6: f", "0.02", cast.friction_factor, 4, "read off the chart"),
+        Row("White 6.6: head loss, ft", "4.5", cast.loss / WHITE_6_6.unit_weight / FOOT, 2, "from f 0.02"),
+        Row("White 6.6: loss, lbf/ft²", "280", cast.loss / SQUARE_FOOT_POUND, 0, "from 4.5 ft"),
+        Row("White 6.7: f", "0.0225", oil.friction_factor, 5, "read off the chart"),
+        Row("White 6.7: head loss, m", "117", oil.loss / WHITE_6_7.unit_weight, 1),
+        Row("White 6.7: drop of pressure, kPa", "265", oil.drop / 1e3, 1, "from whole metres, 117 − 87"),
+        Row("White 6.9: velocity, m/s", "4.84", flow.velocity, 3),
+        Row("White 6.9: flow, m³/s", "0.342", flow.flow, 4),
+        Row("White 6.9: f", "0.0201", flow.friction_factor, 5),
+        Row("White 6.11: diameter, m", "0.30", size.bore, 4),
+        Row(
+            "Çengel and Cimbala 8-2: Re, laminar", "1803", thin.reynolds or math.nan, 0, "viscosity ±0.05 %"
+        ),
+        Row(f"{second}: f", "0.0355", thin.friction_factor, 5),
+        Row(
+            "Çengel and Cimbala 8-2: loss, lbf/ft²",
+            "930",
+            thin.loss / SQUARE_FOOT_POUND,
+            1,
+            "from f 0.0355",
+        ),
+        Row("Fox and McDonald 8.5: f", "0.0162", start.friction_factor, 5),
+        Row("Fox and McDonald 8.5: pressure at the start, kPa", "153", start.drop / 1e3, 1),
+    ]
+
+
 def page() -> str:
     """Return the page as Markdown."""
     parts = [
@@ -246,8 +288,8 @@ def page() -> str:
         chart_rows(),
         "## Text-book problems of one pipe",
         "Fox and McDonald, *Introduction to Fluid Mechanics*; Çengel and Cimbala, *Fluid Mechanics*; "
-        "White, *Fluid Mechanics* (from memory).",
-        problem_rows(),
+        "White, *Fluid Mechanics*. White, Fox and McDonald 8.5, Çengel and Cimbala 8-2 from memory.",
+        problem_rows() + more_problem_rows(),
     ]
     lines = []
     for part in parts:

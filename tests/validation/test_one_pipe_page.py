@@ -6,10 +6,18 @@ import re
 from pathlib import Path
 
 import pytest
-from one_pipe_page import Row, annex_rows, chart_rows, page, problem_rows, trade_rows
+from one_pipe_page import (
+    Row,
+    annex_rows,
+    chart_rows,
+    more_problem_rows,
+    page,
+    problem_rows,
+    trade_rows,
+)
 
 PAGE = Path(__file__).parents[2] / "docs" / "validation_parts" / "one_pipe.md"
-ROWS = annex_rows() + trade_rows() + chart_rows() + problem_rows()
+ROWS = annex_rows() + trade_rows() + chart_rows() + problem_rows() + more_problem_rows()
 
 # What the sources themselves leave open, beyond half a unit of the printed digit: each named on the page
 OPEN = {
@@ -21,6 +29,12 @@ OPEN = {
     "Fox and McDonald 8.7: flow with f 0.031, gpm": 3.3,  # f of two digits
     "Fox and McDonald 8.7: flow with that f, gpm": 3.3,
     "Çengel and Cimbala 8-4: Re": 150.0,  # d rounded to three digits
+    "White 6.6: head loss, ft": 0.16,  # f of two digits
+    "White 6.6: loss, lbf/ft²": 5.0,  # two digits
+    "White 6.7: f": 0.0003,  # read off the chart
+    "White 6.7: drop of pressure, kPa": 8.9,  # the difference of two heads of whole metres
+    "Çengel and Cimbala 8-2: Re, laminar": 1.4,  # viscosity of four digits
+    "Çengel and Cimbala 8-2: loss, lbf/ft²": 1.9,  # f of three digits
 }
 
 

@@ -2,7 +2,10 @@
 
 .. [1] Fox and McDonald, Introduction to Fluid Mechanics, example 8.7.
 .. [2] Çengel and Cimbala, Fluid Mechanics, examples 8-3, 8-4 and 8-5.
-.. [3] White, Fluid Mechanics, ch. 6, reservoirs joined by a pumped pipe (from memory).
+.. [3] White, Fluid Mechanics, ch. 6, reservoirs joined by a pumped pipe; examples 6.6, 6.7, 6.9, 6.11
+   (from memory).
+
+Fox and McDonald 8.5 and Çengel and Cimbala 8-2 are from memory too.
 """
 
 from __future__ import annotations
@@ -10,6 +13,15 @@ from __future__ import annotations
 import math
 
 import pytest
+from one_pipe_problems import (
+    CENGEL_8_2,
+    FOX_8_5,
+    SQUARE_FOOT_POUND,
+    WHITE_6_6,
+    WHITE_6_7,
+    WHITE_6_9,
+    WHITE_6_11,
+)
 
 from supplycheck.hydraulics import (
     ConstantFactor,
@@ -187,3 +199,60 @@ def test_white_pump_found_back_from_its_power() -> None:
         efficiency=0.7,
     )
     assert solve_one_pipe(again).flow / FOOT**3 == pytest.approx(0.2, rel=1e-9)
+
+
+def test_white_6_6_loss() -> None:
+    """f 0.02, 4.5 ft, 280 lbf/ft²: two digits each; f read off the chart to 0.0005 (2.5 %)."""
+    result = solve_one_pipe(WHITE_6_6)
+    assert result.reynolds == pytest.approx(270_000, rel=0.02)
+    assert result.friction_factor == pytest.approx(0.020, abs=0.0005)
+    assert result.loss / WHITE_6_6.unit_weight / FOOT == pytest.approx(4.5, abs=0.05 + 0.025 * 4.5)
+    assert result.loss / SQUARE_FOOT_POUND == pytest.approx(280, abs=5)
+
+
+def test_white_6_7_loss_and_fall() -> None:
+    """f 0.0225, 117 m; the drop 265 kPa is 900·9.81·(117 − 87), each head to half a metre."""
+    result = solve_one_pipe(WHITE_6_7)
+    assert result.velocity == pytest.approx(6.4, abs=0.05)
+    assert result.friction_factor == pytest.approx(
+        0.0225, rel=0.0125
+    )  # chart: 0.0225 between 0.022 and 0.023
+    assert result.loss / (900 * 9.81) == pytest.approx(117, abs=0.5)
+    assert result.drop == pytest.approx(265_000, abs=900 * 9.81 * (0.5 + 0.5))
+
+
+def test_white_6_9_flow() -> None:
+    """4.84 m/s, 0.342 m³/s, Re 72 600, f 0.0201, each to half a unit of its last digit."""
+    result = solve_one_pipe(WHITE_6_9)
+    assert result.velocity == pytest.approx(4.84, abs=0.005)
+    assert result.flow == pytest.approx(0.342, abs=0.0005)
+    assert result.reynolds == pytest.approx(72_600, abs=50)
+    assert result.friction_factor == pytest.approx(0.0201, abs=0.00005)
+
+
+def test_white_6_11_diameter() -> None:
+    """0.3 m, for a flow of three digits (0.15 %, 0.06 % of the diameter)."""
+    assert solve_one_pipe(WHITE_6_11).bore == pytest.approx(0.300, abs=0.0005)
+
+
+def test_cengel_8_2_laminar() -> None:
+    """Re 1803, f 0.0355, 930 lbf/ft², 14.9 ft, 0.30 W: half a unit of the last digit, and of f in the loss.
+
+    Viscosity has four digits, ±0.05 %; Re 1803 is 1804.0 from the figures printed.
+    """
+    result = solve_one_pipe(CENGEL_8_2)
+    assert result.regime == "laminar"
+    assert result.reynolds == pytest.approx(1803, abs=0.5 + 0.0005 * 1803)
+    assert result.friction_factor == pytest.approx(0.0355, abs=0.00005)
+    assert result.loss / SQUARE_FOOT_POUND == pytest.approx(930, abs=0.5 + 930 * 0.00005 / 0.0355)
+    assert result.loss / CENGEL_8_2.unit_weight / FOOT == pytest.approx(14.9, abs=0.05)
+    assert result.loss * result.flow == pytest.approx(0.30, abs=0.005)
+
+
+def test_fox_8_5_pressure_at_the_start() -> None:
+    """2.26 m/s, Re 1.70e5, f 0.0162, 153 kPa; f to half a digit is 0.3 % of the friction, 0.2 kPa."""
+    result = solve_one_pipe(FOX_8_5)
+    assert result.velocity == pytest.approx(2.26, abs=0.005)
+    assert result.reynolds == pytest.approx(1.70e5, abs=500)
+    assert result.friction_factor == pytest.approx(0.0162, abs=0.00005)
+    assert result.drop / 1e3 == pytest.approx(153, abs=0.5 + 0.2)
