@@ -269,27 +269,10 @@ def _known(name: str, what: str, problem: str, place: Place, sections: Sections,
         )
 
 
-def _head_area(
-    layout: LayoutTable,
-    units: UnitSet,
-    sections: Sections,
-    sprinkler: Sprinkler | None,
-    notes: Notes,
-    faults: FaultList,
-) -> float:
+def _head_area(layout: LayoutTable, units: UnitSet, notes: Notes) -> float:
     area = layout.line_spacing.si(units) * layout.head_spacing.si(units)
-    given = sprinkler.coverage_area if sprinkler else None
-    if given is not None and abs(given - area) > 0.005 * area:
-        faults.add(
-            sections.place(f"sprinkler.{layout.sprinkler}.coverage"),
-            "does not agree with the spacing of the layout",
-            found=units.text(given, "area"),
-            allowed=f"{units.text(area, 'area')}, which is line_spacing × head_spacing",
-            remedy="correct the spacing, or leave coverage out",
-        )
-    notes.add(
-        "layout: area of each head", units.text(area, "area"), "inferred", "line_spacing × head_spacing"
-    )
+    source = "line_spacing × head_spacing"
+    notes.add("layout: area of each head", units.text(area, "area"), "inferred", source)
     return area
 
 
@@ -305,7 +288,7 @@ def generate(
     _check(layout, sections, faults)
     levels = read_levels(layout, units, sections, notes, faults)
     sprinkler = sprinklers.get(layout.sprinkler)
-    area = _head_area(layout, units, sections, sprinkler, notes, faults)
+    area = _head_area(layout, units, notes)
     distance = (
         _distance(layout, units, place, notes, faults) if layout.type != "tree" and layout.far_main else 0.0
     )

@@ -145,12 +145,12 @@ def _from_text(text: str, kind: str) -> Written:
 def read_number(value: object, kind: str, sign: Sign = "positive") -> Written:
     """Read a number or a text of ``kind``; raises :class:`NumberError`.
 
-    >>> read_number("10'-6\\"", "length").si(METRIC)
+    >>> round(read_number("10'-6\\"", "length").si(METRIC), 9)
     3.2004
     >>> read_number("1 1/4", "size").number
     1.25
-    >>> read_number("5.5 bar", "pressure").si(US)
-    550000.0
+    >>> round(read_number("5.5 bar", "pressure").si(US))
+    550000
     """
     spoken = _SPOKEN.get(kind, kind)
     if isinstance(value, str):

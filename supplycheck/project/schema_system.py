@@ -39,9 +39,10 @@ class SprinklerTable(UnitTable):
     maximum_pressure: Pressure | None = None
     """Highest working pressure of the listing."""
     coverage: Annotated[list[Length], Field(min_length=2, max_length=2)] | None = None
-    """Two lengths: spacing along the line and between lines. Their product is the area of each head."""
+    """Two lengths, along the line and between lines: the largest spacing for which the type is listed or
+    used. Their product is the area of a head where a table gives none; in a layout the spacing counts."""
     coverage_area: Area | None = None
-    """Floor area of each head, instead of `coverage`."""
+    """The same as a floor area, instead of `coverage`."""
     response: Literal["standard", "quick"] | None = None
     """Speed of the heat-responsive element."""
     temperature: Temperature | None = None

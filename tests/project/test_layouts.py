@@ -186,8 +186,3 @@ def test_a_grid_that_does_not_fit_together(tmp_path: Path, old: str, new: str, w
     assert old in GRID
     found = [fault.place.where for fault in faults(tmp_path, HEAD + GRID.replace(old, new))]
     assert found == ([] if where is None else [where])
-
-
-def test_coverage_must_agree_with_the_spacing(tmp_path: Path) -> None:
-    text = (HEAD + LAYOUT).replace("k_factor = 5.6", "k_factor = 5.6\ncoverage = [12, 10]")
-    assert [fault.place.where for fault in faults(tmp_path, text)] == ["sprinkler.A.coverage"]
