@@ -10,13 +10,18 @@ from supplycheck.report.build import build_document
 from supplycheck.report.pdf import pdf_bytes
 from supplycheck.results.json import result_json
 from supplycheck.results.records import Result
+from supplycheck.results.tables import csv_text, frames, xlsx_bytes
 
 
 def package_files(result: Result) -> Mapping[str, bytes]:
     """Return name → content of every file of the review package."""
+    tables = frames(result)
     return {
         "result.json": result_json(result).encode(),
         "review.pdf": pdf_bytes(build_document(result)),
+        "nodes.csv": csv_text(tables["nodes"]).encode(),
+        "pipes.csv": csv_text(tables["pipes"]).encode(),
+        "tables.xlsx": xlsx_bytes(tables, result.project.facts.date),
     }
 
 

@@ -24,7 +24,7 @@ from supplycheck.results.display import visible
 REGULAR: Final = "SupplyCheckSans"
 BOLD: Final = "SupplyCheckSans-Bold"
 _STAND_INS: Final = str.maketrans(
-    {"′": "'", "″": '"', "‐": "-", "‑": "-", "‒": "–", "→": ">", "←": "<", "μ": "µ", "⁄": "/", "\u200b": ""}
+    {"′": "'", "″": '"', "‐": "-", "‑": "-", "‒": "–", "→": "»", "←": "«", "μ": "µ", "⁄": "/", "\u200b": ""}
 )
 
 

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from types import MappingProxyType
+from typing import Final
 
 from supplycheck.report.document import Column, Row, Table
 from supplycheck.results.display import value_text
@@ -55,17 +57,26 @@ def words(title: str) -> Column:
     return Column(title, wrap=True)
 
 
-def steps_table(title: str, steps: Iterable[HandStep], show: Show, note: str = "") -> Table:
-    """Return steps as a table: what is worked out, the formula with its numbers, the result."""
+# Decimals of a hand check: as many as its formulas carry, so that each line leads to the next.
+HAND_DECIMALS: Final = MappingProxyType({"pressure": 3, "flow": 2, "gradient": 5})
+
+
+def steps_table(title: str, steps: Iterable[HandStep], show: Show, *, by_hand: bool = False) -> Table:
+    """Return steps as a table: what is worked out, the formula with its numbers, the result.
+
+    ``by_hand`` shows the decimals that a reader needs to go on from one line to the next.
+    """
+    more = HAND_DECIMALS if by_hand else {}
     rows = tuple(
-        Row((step.step, step.formula, show.t(step.value, step.kind)), note=step.note) for step in steps
+        Row((step.step, step.formula, show.t(step.value, step.kind, more.get(step.kind))), note=step.note)
+        for step in steps
     )
     columns = (
         Column("Step", wrap=True, share=0.34),
         Column("Formula and numbers", wrap=True, share=0.5),
         Column("Result", right=True, share=0.16),
     )
-    return Table(title, columns, rows, note, empty="no steps recorded")
+    return Table(title, columns, rows, empty="no steps recorded")
 
 
 def given(text: str) -> str:

@@ -13,6 +13,7 @@ from types import MappingProxyType
 from typing import Final
 
 from supplycheck.findings import Finding, Measure, State
+from supplycheck.results.records import DesignAreaRecord
 from supplycheck.units import UnitSet
 
 STATES: Final[tuple[State, ...]] = ("fail", "missing", "ask authority", "ok", "not applicable")
@@ -106,6 +107,14 @@ def counts_text(findings: Iterable[Finding]) -> str:
     """Return how many findings there are of each state, in words."""
     parts = [f"{number} {STATE_WORDS[state]}" for state, number in counts(findings).items() if number]
     return ", ".join(parts) or "no check was run"
+
+
+def area_text(area: DesignAreaRecord) -> str:
+    """Return in one sentence which heads are in the design area and how it was found."""
+    if area.mode == "given" or not area.tried:
+        return area.statement
+    count = "The only placement" if area.tried == 1 else f"Most demanding of {area.tried} placements tried"
+    return f"{count}: {area.governing.label}."
 
 
 def visible(text: str) -> str:

@@ -6,7 +6,7 @@ import textwrap
 from collections.abc import Sequence
 from typing import Final
 
-from supplycheck.results.display import counts_text, finding_text, visible
+from supplycheck.results.display import area_text, counts_text, finding_text, visible
 from supplycheck.results.records import Result
 from supplycheck.units import UNIT_SETS, UnitSet
 
@@ -25,7 +25,7 @@ def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
     title = _wrapped("", result.project.facts.title, 1)
     head = [*title, *_wrapped("", f"{result.verdict.upper()}: {result.verdict_text}", 2), ""]
     body = [line for label, text, most in _entries(result, units) for line in _wrapped(label, text, most)]
-    tail = _files([files] if isinstance(files, str) else files)
+    tail = _files([files] if isinstance(files, str) else files) if files else []
     room = LINES - len(head) - len(body) - len(tail)
     fails = [f"{one.check}: {finding_text(one, units)}" for one in result.findings if one.state == "fail"]
     questions = list(result.open_questions)
@@ -64,7 +64,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),
         ("Rule", margin.rule, 2),
         ("Governs", result.governs, 2),
-        ("Design area", result.design_area.statement, 2),
+        ("Design area", area_text(result.design_area), 2),
         ("Balance", f"flows within {flow_gap}, pressures within {gap}", 1),
         ("Findings", counts_text(result.findings), 2),
     ]

@@ -7,12 +7,13 @@ from typing import Final
 
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Taken
-from supplycheck.report.figures.outline import Window
+from supplycheck.report.figures.outline import Window, clipped
 from supplycheck.report.figures.plan import Scale, places_of
 from supplycheck.report.theme import CLAY, INK, PAPER, RULE, SLATE, text_width
 from supplycheck.results.records import Placement, Result
 from supplycheck.units import UnitSet
 
+MOST_NUMBERS: Final = 40
 _SHADES: Final = ("#e3eef0", "#b5d3d9", "#7fb2bd", "#3f8797", "#0b4a5a")
 
 
@@ -23,9 +24,10 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
     if len(spots) < 2:
         return None
     nodes = places_of(result)
-    xs = [x for x, _ in nodes.values()] + [one.x or 0.0 for one in spots]
-    ys = [y for _, y in nodes.values()] + [one.y or 0.0 for one in spots]
-    window = Window(min(xs), min(ys), max(xs), max(ys))
+    heads = [nodes[node.tag] for node in result.nodes if node.kind == "sprinkler" and node.tag in nodes]
+    xs = [x for x, _ in heads] + [one.x or 0.0 for one in spots]
+    ys = [y for _, y in heads] + [one.y or 0.0 for one in spots]
+    window = Window(min(xs), min(ys), max(xs), max(ys)).grown(1.5)
     wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
     factor = min((size[0] - 32) / wide, (size[1] - 60) / high)
     height = max(high * factor, 30.0) + 60
@@ -33,8 +35,9 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
     items: list[Item] = [Box(0, 24, size[0], height - 24, PAPER, SLATE, 0.5)]
     for pipe in result.pipes:
         start, end = nodes.get(pipe.start), nodes.get(pipe.end)
-        if start and end and start != end:
-            items.append(Line((scale.at(*start), scale.at(*end)), RULE, 0.4))
+        cut = clipped(start, end, window) if start and end and start != end else None
+        if cut is not None:
+            items.append(Line((scale.at(*cut[0]), scale.at(*cut[1])), RULE, 0.4))
     items += _spots(spots, result, scale, units, (size[0], height))
     items += _key(spots, units, size[0])
     return Drawing(size[0], height, tuple(items), "required pressure by placement of the design area")
@@ -86,7 +89,7 @@ def _spots(
         found = taken.place(x, y, text, 6.6, gap=radius + 3, bold=True)
         if found:
             items.append(Label(found[0], found[1], text, 6.6, found[2], True, INK, 0.0, PAPER))
-    if len(spots) <= 120:
+    if len(spots) <= MOST_NUMBERS:
         for one in spots:
             if one in {area.governing, area.runner_up}:
                 continue

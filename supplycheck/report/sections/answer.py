@@ -8,7 +8,7 @@ from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph
 from supplycheck.report.figures.bars import answer_bars
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, given
-from supplycheck.results.display import counts_text, finding_text
+from supplycheck.results.display import area_text, counts_text, finding_text
 from supplycheck.results.records import Result
 
 MOST_QUESTIONS: Final = 6
@@ -67,7 +67,7 @@ def _facts(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     density = f"{show.t(criteria.density, 'density')} over {show.t(criteria.required_area, 'area')}"
     return (
         ("What governs", result.governs),
-        ("Design area", area.statement),
+        ("Design area", area_text(area)),
         ("Margin rule", result.margin.rule),
         ("Hazard, system", f"{criteria.hazard}, {criteria.system}; {density}"),
         ("Standard, edition", facts.standard),

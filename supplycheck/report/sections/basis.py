@@ -15,7 +15,8 @@ def basis(result: Result) -> Section:
     blocks: list[Block] = [
         Facts(_project_facts(project), columns=2),
         Heading("Criteria"),
-        Facts(_criteria(project.criteria, show)),
+        Facts(_criteria(project.criteria, show), columns=2),
+        Facts(_sources(project.criteria, show)),
         _modifiers(project.criteria),
         steps_table("How the design area was found", result.design_area.steps, show),
         _sprinklers(project.system.sprinklers, show),
@@ -42,12 +43,6 @@ def _project_facts(project: Project) -> tuple[tuple[str, str], ...]:
 
 
 def _criteria(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
-    velocity = criteria.velocity
-    limits = [
-        f"{what} {show.t(limit, 'velocity')}"
-        for what, limit in (("pipe", velocity.pipe_limit), ("valve", velocity.valve_limit))
-        if limit is not None
-    ]
     search = criteria.design_area == "search"
     return (
         ("Hazard", criteria.hazard),
@@ -55,7 +50,7 @@ def _criteria(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
         ("Density", show.t(criteria.density, "density")),
         ("Area before modifiers", show.t(criteria.base_area, "area")),
         ("Area required", show.t(criteria.required_area, "area")),
-        ("Least number of heads", str(criteria.minimum_heads) if criteria.minimum_heads else "no rule"),
+        ("Least number of heads", str(criteria.minimum_heads) if criteria.minimum_heads > 1 else "no rule"),
         ("Shape", f"at least {criteria.shape_factor:g} × √area along the branch lines"),
         ("Design area", "searched over all placements" if search else "heads named in the project"),
         ("Least pressure at a head", show.t(criteria.minimum_pressure, "pressure")),
@@ -66,11 +61,22 @@ def _criteria(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
         ),
         ("Ceiling height", show.t(criteria.ceiling_height, "length")),
         ("Component rating", show.t(criteria.maximum_pressure, "pressure")),
-        ("Velocity limits", f"{velocity.name}: {', '.join(limits) or 'none set'} ({velocity.source})"),
         (
             "Velocity pressure",
             "taken into account" if criteria.velocity_pressure else "not taken into account",
         ),
+    )
+
+
+def _sources(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
+    velocity = criteria.velocity
+    limits = [
+        f"{what} {show.t(limit, 'velocity')}"
+        for what, limit in (("pipe", velocity.pipe_limit), ("valve", velocity.valve_limit))
+        if limit is not None
+    ]
+    return (
+        ("Velocity limits", f"{velocity.name}: {', '.join(limits) or 'none set'} ({velocity.source})"),
         ("Source of the criteria", criteria.source),
     )
 

@@ -53,14 +53,13 @@ CAUTIONS: Final = (
 def assumptions(result: Result) -> Section:
     """Return what was assumed or inferred, then where the other values come from."""
     columns = (
-        Column("Value", wrap=True, share=0.27),
-        Column("Taken as", wrap=True, share=0.22),
-        Column("Origin", wrap=True, share=0.11),
-        Column("Source", wrap=True, share=0.4),
+        Column("Value", wrap=True, share=0.35),
+        Column("Taken as", wrap=True, share=0.5),
+        Column("Origin", wrap=True, share=0.15),
     )
     project = result.project
-    rows = tuple(Row((one.key, one.value, one.origin, one.source)) for one in project.assumptions)
-    origins = tuple(Row((one.key, one.value, one.origin, one.source)) for one in project.origins)
+    rows = tuple(Row((one.key, one.value, one.origin), note=one.source) for one in project.assumptions)
+    origins = tuple(Row((one.key, one.value, one.origin), note=one.source) for one in project.origins)
     blocks: list[Block] = [
         Table(
             "Assumed, inferred or taken from a catalogue without being given",

@@ -19,11 +19,10 @@ def findings(result: Result) -> Section:
     """Return the findings, what needs action first."""
     show = Show.of(result)
     columns = (
-        Column("Check", wrap=True, share=0.17),
-        Column("What was found", wrap=True, share=0.4),
-        Column("Measured", right=True, share=0.11),
-        Column("Limit", right=True, share=0.11),
-        Column("Source", wrap=True, share=0.21),
+        Column("Check", wrap=True, share=0.2),
+        Column("What was found, and by which source", wrap=True, share=0.54),
+        Column("Measured", right=True, share=0.13),
+        Column("Limit", right=True, share=0.13),
     )
     blocks: list[Block] = [
         Paragraph(
@@ -41,11 +40,12 @@ def findings(result: Result) -> Section:
                 continue
             remedy = remedy_text(one, show.units)
             notes = [f"What to do: {remedy}"] if remedy else []
-            notes += [f"At: {tags_text(one.tags, 30)}"] if one.tags else []
+            notes += [f"at {tags_text(one.tags, 30)}"] if one.tags else []
+            notes += [f"source: {one.source}"] if one.source else []
             measured, limit = measure_text(one.measured, show.units), measure_text(one.limit, show.units)
             rows.append(
                 Row(
-                    (one.check, finding_text(one, show.units), measured, limit, one.source),
+                    (one.check, finding_text(one, show.units), measured, limit),
                     note="  ·  ".join(notes),
                 )
             )
@@ -119,7 +119,7 @@ def _scenarios(result: Result, show: Show) -> Table:
                 show.n(row.lowest_pressure, "pressure"),
                 show.n(row.lowest_ratio, "ratio", 2),
                 show.n(row.delivered_density, "density"),
-                "–" if row.over_discharge is None else show.n(row.over_discharge, "ratio", 2),
+                "–" if row.over_discharge is None else show.t(row.over_discharge, "percent", 0),
                 "–" if row.minutes_of_storage is None else f"{row.minutes_of_storage:.0f}",
             ),
             note=row.note,

@@ -115,7 +115,7 @@ def hand_check(result: Result) -> Section:
             "with its numbers, as displayed, and its result."
         ),
         Table("The path", columns, path_rows, note, size=6.6),
-        steps_table("Line by line", result.hand_check, show),
+        steps_table("Line by line", result.hand_check, show, by_hand=True),
     ]
     return Section("Hand check of the governing path", tuple(blocks), fresh=True)
 

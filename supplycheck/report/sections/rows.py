@@ -10,6 +10,7 @@ from supplycheck.report.show import Show, column, words
 from supplycheck.results.records import NodeRow, PipeRow, Result
 
 MOST_ROWS: Final = 4000
+STILL: Final = 1e-9  # m³/s: below this a pipe carries nothing
 _Item = TypeVar("_Item")
 
 
@@ -71,24 +72,62 @@ def _node(node: NodeRow, show: Show, *, with_velocity: bool) -> Row:
 
 
 def pipe_information(result: Result) -> Section:
-    """Return every pipe with what the standard asks a report to carry."""
+    """Return every pipe with what the standard asks a report to carry; those without flow in brief."""
     show = Show.of(result)
     darcy = any(pipe.roughness is not None and pipe.c_factor is None for pipe in result.pipes)
     second = any(pipe.second_law_friction_loss is not None for pipe in result.pipes)
-    pipes = _printed(result.pipes, [pipe.flow > 0 for pipe in result.pipes])
-    rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in pipes)
-    note = _left_out(len(result.pipes) - len(pipes), "pipes", "pipes.csv").strip()
+    flowing = [pipe for pipe in result.pipes if pipe.flow > STILL]
+    still = [pipe for pipe in result.pipes if not pipe.flow > STILL]
+    shown, brief = flowing[:MOST_ROWS], still[: max(MOST_ROWS - len(flowing), 0)]
+    left_out = len(result.pipes) - len(shown) - len(brief)
+    rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in shown)
     blocks: list[Block] = [
         Paragraph(
             "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt "
-            "pressure at "
-            "the start and the end, pe change by elevation, pf friction with fittings, pd devices: "
-            "pt start − pt end = pf + pe + pd.",
+            "pressure at the start and the end, pe change by elevation, pf friction with fittings, pd devices: pt "
+            "start − pt end = pf + pe + pd.",
             "small",
         ),
-        Table("", _pipe_columns(show, darcy=darcy, second=second), rows, note, size=6.3),
+        Table("Pipes with flow", _pipe_columns(show, darcy=darcy, second=second), rows, size=6.3),
     ]
+    if brief:
+        blocks.append(_still_pipes(brief, show))
+    if left_out:
+        blocks.append(Paragraph(_left_out(left_out, "pipes", "pipes.csv").strip()))
     return Section("Pipe information", tuple(blocks), landscape=True, fresh=True)
+
+
+def _still_pipes(pipes: Sequence[PipeRow], show: Show) -> Table:
+    """Return the pipes that carry nothing in this solution, a line each."""
+    columns = (
+        words("From"),
+        words("To"),
+        words("Nominal"),
+        column("Bore", show.s("size")),
+        column("L", show.s("length")),
+        column("F", show.s("length")),
+        column("C or roughness"),
+        column("pt", show.s("pressure")),
+        words("Pipe, role, material, fittings"),
+    )
+    rows = tuple(
+        Row(
+            (
+                pipe.start,
+                pipe.end,
+                pipe.nominal,
+                show.n(pipe.bore, "size"),
+                show.n(pipe.length, "length"),
+                show.n(pipe.equivalent_length, "length"),
+                f"{pipe.c_factor:g}" if pipe.c_factor is not None else show.t(pipe.roughness, "roughness"),
+                show.n(pipe.end_pressure, "pressure"),
+                _pipe_note(pipe),
+            )
+        )
+        for pipe in pipes
+    )
+    note = "pt is the pressure at the second node. Without flow there is no friction."
+    return Table("Pipes without flow in this solution", columns, rows, note, size=6.0)
 
 
 def _pipe_columns(show: Show, *, darcy: bool, second: bool) -> tuple[Column, ...]:

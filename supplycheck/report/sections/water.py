@@ -15,7 +15,7 @@ def water(result: Result, width: float) -> Section:
     supply = result.project.supply
     graph = supply_graph(result.curves, result.points, show.units, (width, 330.0))
     blocks: list[Block] = [
-        Paragraph(result.supply.statement),
+        *([Paragraph(result.supply.statement)] if result.supply.statement.strip() else []),
         Facts(_numbers(result, show), columns=2),
         Figure(
             "Supply and demand",
@@ -115,7 +115,7 @@ def _test(test: FlowTest, show: Show) -> list[Block]:
         column("Pitot", show.s("pressure")),
         column("Pumper factor"),
     )
-    return [Heading(f"{kind} {test.tag}"), Facts(pairs, columns=2), Table("", columns, tuple(rows))]
+    return [Heading(f"{kind}: {test.tag}"), Facts(pairs, columns=2), Table("", columns, tuple(rows))]
 
 
 def _tanks(supply: Supply, show: Show) -> Table:
