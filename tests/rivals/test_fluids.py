@@ -14,6 +14,7 @@ from fluids.core import dP_from_K
 from fluids.friction import Clamond, Colebrook, friction_laminar, one_phase_dP
 from scipy.interpolate import PchipInterpolator
 from scipy.optimize import brentq
+from scipy.special import wrightomega
 
 from supplycheck.hydraulics import (
     Curve,
@@ -39,6 +40,17 @@ def test_turbulent_factor(rough: float) -> None:
         f, _ = friction_factor(reynolds=reynolds, relative_roughness=rough)
         assert f == pytest.approx(Colebrook(reynolds, rough), rel=1e-9)
         assert f == pytest.approx(Clamond(reynolds, rough), rel=1e-8)
+
+
+def test_factor_by_the_general_omega_function() -> None:
+    """The same closed form by scipy's Wright omega function; 1e-14 is some fifty roundings."""
+    c = 2 / math.log(10)
+    re = np.geomspace(4000, 1e12, 2001)
+    for rough in (*ROUGH, 0.5, 0.99):
+        b = 2.51 / re
+        omega = wrightomega(rough / 3.7 / (b * c) - np.log(b * c))
+        f, _ = friction_factor(reynolds=re, relative_roughness=rough)
+        assert f**-0.5 == pytest.approx(-c * np.log(b * c * omega), rel=1e-14)
 
 
 def test_laminar_factor() -> None:
