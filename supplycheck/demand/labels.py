@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from typing import Final
 
@@ -29,6 +30,23 @@ def _origin(line: Line, tags: Sequence[str]) -> str:
     if line.fed[1] and not line.fed[0]:
         return f" from the end at {tags[line.heads[0]]}"
     return f" from {tags[line.heads[0]]}"
+
+
+def _natural(name: str) -> list[tuple[int, str]]:
+    """Sort key by which L9 comes before L10."""
+    return [(int(part), "") if part.isdecimal() else (0, part) for part in re.split(r"([0-9]+)", name)]
+
+
+def _names(first: str, last: str) -> str:
+    """Name one line, or the first and last of several; names that say "line" already keep their own word.
+
+    >>> _names("L7", "L9"), _names("Line 3", "Line 3")
+    ('lines L7–L9', 'Line 3')
+    """
+    both = first if first == last else f"{first}–{last}"
+    if "line" in first.casefold():
+        return both
+    return f"line {both}" if first == last else f"lines {both}"
 
 
 class Labels:
@@ -65,7 +83,9 @@ class Labels:
                 groups.append((span, row.line, row.line))
         parts = []
         for span, first, last in groups:
-            names = f"line {first.name}" if first is last else f"lines {first.name}–{last.name}"
+            if _natural(last.name) < _natural(first.name):
+                first, last = last, first
+            names = _names(first.name, last.name)
             across = f" {first.joint}" if first.joint else ""
             parts.append(f"{names}{across}, {span}{self._counted(first, span)}")
         text = "; ".join(parts)

@@ -30,6 +30,15 @@ def same_level(rise: float, distance: float) -> bool:
     return abs(rise) <= max(STEP_HEIGHT, min(SLOPE * abs(distance), STOREY)) + 1e-9
 
 
+def steps_apart(rise: float) -> int:
+    """Return how many level steps a rise [m] holds: of two neighbours the one with fewer comes first.
+
+    >>> steps_apart(0.5), steps_apart(-1.2)
+    (0, 1)
+    """
+    return int(abs(rise) / STEP_HEIGHT)
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class Line:
     """A branch line, or one side of it.

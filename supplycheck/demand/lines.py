@@ -17,7 +17,7 @@ from typing import Final
 import numpy as np
 
 from supplycheck.demand.heads import FloatArray, Heads
-from supplycheck.demand.line import SAME_ROW, TOUCH, Line, Lines, same_level
+from supplycheck.demand.line import SAME_ROW, TOUCH, Line, Lines, same_level, steps_apart
 from supplycheck.demand.piping import Link, Piping, read_piping
 from supplycheck.errors import DomainError
 from supplycheck.model import System
@@ -259,11 +259,13 @@ def _end_to_end(sides: Sequence[Line]) -> list[tuple[int, int]]:
             line = sides[i]
             end, reach = float(line.along[-1]), TOUCH * float(line.share[-1])
             top = line.heights[-1] - line.heights[-2]
+            near = []
             for other in row[bisect_right(begins, end + 1e-6) : bisect_right(begins, end + reach)]:
-                rise = sides[other].heights[1] - top
-                if same_level(rise, float(sides[other].along[0]) - end):
-                    pairs.append((i, other))
-                    break
+                rise, gap = sides[other].heights[1] - top, float(sides[other].along[0]) - end
+                if same_level(rise, gap):
+                    near.append((steps_apart(rise), gap, other))
+            if near:
+                pairs.append((i, min(near)[2]))
     return pairs
 
 

@@ -16,6 +16,9 @@ IntArray = NDArray[np.int64]
 ROUND = 1e-9
 """Relative slack on lengths and areas: converting units must not ask for one more head."""
 
+LEAST = 1e-6
+"""Runs that lie side by side over less than this [m] do not face each other."""
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Runs:
@@ -74,11 +77,12 @@ class Facing:
     """For each run of one line the run of another that faces it; −1 where none does.
 
     ``first`` and ``last`` differ where two runs lie equally near on either hand (staggered heads): there
-    the run is ``tied``.
+    the run is ``tied``. ``overlap`` [m] is how far they lie side by side, ``distance`` [m] that of the middles.
     """
 
     first: tuple[int, ...]
     last: tuple[int, ...]
+    overlap: tuple[float, ...]
     distance: tuple[float, ...]
     tied: frozenset[int]
 
@@ -100,12 +104,23 @@ def facing(own: Runs, other: Runs) -> Facing:
     first = order[np.where(to_left <= near + tie, left, right)]
     last = order[np.where(to_right <= near + tie, right, left)]
 
-    def beside(chosen: IntArray) -> NDArray[np.bool_]:
-        overlap = np.minimum(own.end, other.end[chosen]) - np.maximum(own.begin, other.begin[chosen])
-        return np.asarray(overlap > 1e-6, dtype=np.bool_)
+    def beside(chosen: IntArray) -> FloatArray:
+        side = np.minimum(own.end, other.end[chosen]) - np.maximum(own.begin, other.begin[chosen])
+        return np.asarray(side, dtype=np.float64)
 
-    first_ok, last_ok = beside(first), beside(last)
-    first = np.where(first_ok, first, np.where(last_ok, last, -1))
-    last = np.where(last_ok, last, first)
-    tied = frozenset(np.flatnonzero(first != last).tolist())
-    return Facing(tuple(first.tolist()), tuple(last.tolist()), tuple(near.tolist()), tied)
+    first_side, last_side = beside(first), beside(last)
+    first = np.where(first_side > LEAST, first, np.where(last_side > LEAST, last, -1))
+    last = np.where(last_side > LEAST, last, first)
+    return Facing(
+        tuple(first.tolist()),
+        tuple(last.tolist()),
+        tuple(np.maximum(first_side, last_side).tolist()),
+        tuple(near.tolist()),
+        frozenset(np.flatnonzero(first != last).tolist()),
+    )
+
+
+def extent(line: Line, low: int, high: int) -> tuple[float, float]:
+    """Return where the run of heads ``low`` up to ``high`` begins and ends along the line [m]."""
+    begin = line.along[low] - line.share[low] / 2
+    return float(begin), float(line.along[high - 1] + line.share[high - 1] / 2)

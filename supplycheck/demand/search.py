@@ -2,7 +2,7 @@
 
 A placement is a group of runs on consecutive lines. The run on the first line reaches 1.2√A along it (or
 is the whole of a shorter line); each further line adds the run that faces the first; the last line adds
-only as many heads as the area still asks, in every position within the width of the group. Both
+only as many heads as the area still asks, in every position that touches the group. Both
 directions across are tried from every run of every line.
 
 Sources: 1.2√A parallel to the lines and whole heads up, NFPA 13 (2007), 11.2.3.1.1 and 22.4.4.1 (from
@@ -24,8 +24,28 @@ from typing import Final, NamedTuple
 import numpy as np
 
 from supplycheck.demand.heads import FloatArray, Heads
-from supplycheck.demand.line import SAME_ROW, SLOPE, STEP_HEIGHT, STOREY, TOUCH, Line, Lines, same_level
-from supplycheck.demand.runs import ROUND, Facing, IntArray, Runs, facing, minimal_runs, runs_of
+from supplycheck.demand.line import (
+    SAME_ROW,
+    SLOPE,
+    STEP_HEIGHT,
+    STOREY,
+    TOUCH,
+    Line,
+    Lines,
+    same_level,
+    steps_apart,
+)
+from supplycheck.demand.runs import (
+    LEAST,
+    ROUND,
+    Facing,
+    IntArray,
+    Runs,
+    extent,
+    facing,
+    minimal_runs,
+    runs_of,
+)
 
 CAP: Final = 200_000
 """Placements after which the search stops and says so."""
@@ -174,21 +194,30 @@ def _height(row: Row) -> float:
 def _next_row(space: _Field, own: int, run: int, group: list[int], last: Row, late: bool) -> Row | None:
     """Return the run in one row of lines that best faces run ``run`` of line ``own``, on its level."""
     best: Row | None = None
-    nearest = math.inf
+    nearest = (math.inf, math.inf, math.inf)
     for other in group:
         line = space.lines[other]
         face = space.facing(own, other)
         chosen = (face.last if late else face.first)[run]
-        if chosen < 0 or face.distance[run] >= nearest:
+        if chosen < 0:
             continue
         row = Row(line, space.runs[other].low[chosen], space.runs[other].high[chosen])
         gap = abs(line.across - last.line.across)
-        if gap > TOUCH * max(line.width, last.line.width) or not same_level(
-            _height(row) - _height(last), gap
-        ):
+        rise = _height(row) - _height(last)
+        if gap > TOUCH * max(line.width, last.line.width) or not same_level(rise, gap):
             continue
-        best, nearest = row, face.distance[run]
+        key = (steps_apart(rise), -round(face.overlap[run], 4), round(face.distance[run], 4))
+        if key == nearest:
+            space.tied[own].add(run)
+        if key < nearest or (late and key == nearest):
+            best, nearest = row, key
     return best
+
+
+def _touches(row: Row, others: Sequence[Row]) -> bool:
+    """Say whether a run lies beside one of ``others`` over some length."""
+    begin, end = extent(*row)
+    return any(min(end, b) - max(begin, a) > LEAST for a, b in (extent(*other) for other in others))
 
 
 def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -> None:
@@ -215,7 +244,9 @@ def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -
         if rule.reached(area + more, count + row.high - row.low):
             sums = [total - base for total in row.line.sums[row.low : row.high + 1]]
             for low, high in minimal_runs(sums, rule.area - area, max(1, rule.heads - count)):
-                bag.add([*rows, Row(row.line, row.low + low, row.low + high)])
+                part = Row(row.line, row.low + low, row.low + high)
+                if _touches(part, (rows[0], rows[-1])):
+                    bag.add([*rows, part])
             return
         rows.append(row)
         area += more
@@ -279,40 +310,41 @@ def _lengthen(lines: Sequence[Line], rule: Rule, bag: _Bag, most: int) -> None:
 class _Ground:
     """Where all heads stand: plan [m], elevation [m], area [m²], how far each touches [m]."""
 
+    tags: tuple[str, ...]
     xy: FloatArray
     z: FloatArray
     area: FloatArray
     reach: FloatArray
 
-    def near(self, row: int) -> tuple[IntArray, FloatArray]:
-        """Return the heads that touch head ``row`` on its level, and their distances [m]."""
+    def near(self, row: int) -> list[tuple[int, float, str, int]]:
+        """Return the heads that touch head ``row`` on its level: steps between, distance [m], tag, row."""
         apart = np.hypot(*(self.xy - self.xy[row]).T)
-        level = (
-            np.abs(self.z - self.z[row])
-            <= np.maximum(STEP_HEIGHT, np.minimum(SLOPE * apart, STOREY)) + 1e-9
-        )
-        rows = np.flatnonzero(level & (apart <= (self.reach + self.reach[row]) / 2))
-        return rows, apart[rows]
+        rise = np.abs(self.z - self.z[row])
+        level = rise <= np.maximum(STEP_HEIGHT, np.minimum(SLOPE * apart, STOREY)) + 1e-9
+        rows = np.flatnonzero(level & (apart <= (self.reach + self.reach[row]) / 2)).tolist()
+        return [
+            (steps_apart(float(rise[i])), max(round(float(apart[i]), 3), 1e-9), self.tags[i], i)
+            for i in rows
+        ]
 
 
 def _gather_near(ground: _Ground, seed: Sequence[int], rule: Rule) -> list[int]:
     """Return ``seed`` and the nearest heads that make up the area, each touching another on its level."""
     chosen: dict[int, None] = {}
     area = 0.0
-    waiting = [(0.0, row) for row in seed]
+    waiting = [(0, 0.0, "", row) for row in seed]
     heapq.heapify(waiting)
     while waiting:
-        apart, row = heapq.heappop(waiting)
+        _, apart, _, row = heapq.heappop(waiting)
         if row in chosen:
             continue
         if apart > 0 and rule.reached(area, len(chosen)):
             break
         chosen[row] = None
         area += float(ground.area[row])
-        rows, distances = ground.near(row)
-        for other, distance in zip(rows.tolist(), distances.tolist(), strict=True):
-            if other not in chosen:
-                heapq.heappush(waiting, (max(distance, 1e-9), other))
+        for other in ground.near(row):
+            if other[3] not in chosen:
+                heapq.heappush(waiting, other)
     return list(chosen)
 
 
@@ -320,9 +352,10 @@ def _leftovers(heads: Heads, lines: Lines, rule: Rule, bag: _Bag) -> None:
     """Give the heads that still stand in no placement one made up with the heads nearest to them."""
     xy = np.array([(node.x, node.y) for node in heads.nodes], dtype=np.float64)
     z = np.array([node.elevation for node in heads.nodes], dtype=np.float64)
-    ground = _Ground(xy, z, heads.area, TOUCH * np.sqrt(heads.area))
+    ground = _Ground(heads.tags, xy, z, heads.area, TOUCH * np.sqrt(heads.area))
+    covered = frozenset(bag.covered)
     for line in lines.sides:
-        missing = [i for i, row in enumerate(line.heads) if row not in bag.covered]
+        missing = [i for i, row in enumerate(line.heads) if row not in covered]
         if not missing:
             continue
         own = Row(line, missing[0], missing[-1] + 1)

@@ -128,7 +128,10 @@ def test_lines_of_unequal_length_equal_every_subset_that_satisfies_the_rules(
                 for i, span in zip(order[:-1], spans[:-1], strict=True)
             )
             last = spans[-1]
-            if middle and last and last[0] <= runs[order[-1]][0] and runs[order[-1]][-1] < last[1]:
+            part = (runs[order[-1]][0], runs[order[-1]][-1] + 1)
+            beside = [base] + [(runs[i][0], runs[i][-1] + 1) for i in order[-2:-1]]
+            touching = any(min(part[1], run[1]) > max(part[0], run[0]) for run in beside)
+            if middle and touching and last and last[0] <= part[0] and part[1] <= last[1]:
                 return True
         return False
 

@@ -266,6 +266,22 @@ def test_labels_name_lines_and_heads_and_differ() -> None:
     assert remote.label == "lines L3–L5, heads 1–4 of 6 from the end at E3.5"
 
 
+def test_labels_list_lines_upwards_and_repeat_no_word() -> None:
+    built = tree([0] * 12, [6] * 12)
+    spoken = replace(
+        built,
+        nodes=tuple(
+            replace(n, branch_line=n.branch_line.replace("L", "line ")) if n.branch_line else n
+            for n in built.nodes
+        ),
+    )
+    labels = {frozenset(case.heads): case.label for case in cases(spoken, base_area=1430 * FT2)}
+    heads = frozenset(f"E{i}.{j}" for i, n in ((11, 4), (10, 4), (9, 3)) for j in range(2, 2 + n))
+    assert labels[heads] == (
+        "line 10–line 11, heads 1–4 of 6 from the end at E10.5; line 9, heads 2–4 of 6 from the end at E9.5"
+    )
+
+
 def test_each_case_carries_what_its_heads_need() -> None:
     built = tree([0] * 5, [6] * 5)
     nodes = tuple(replace(n, area=n.area * 1.1) if n.tag == "E4.5" else n for n in built.nodes)
@@ -304,3 +320,45 @@ def test_steps_tell_the_derivation() -> None:
 def test_what_keeps_candidates_from_being_formed(built, changes, words: str) -> None:
     with pytest.raises(DomainError, match=words):
         cases(built, **changes)
+
+
+def test_heads_above_and_below_a_ceiling_are_two_levels() -> None:
+    # Each point of the line carries a head 1.2 m above it and one at its own height on a drop.
+    flat = tree([0] * 5, [6] * 5)
+    nodes, pipes = list(flat.nodes), list(flat.pipes)
+    for node in flat.nodes:
+        if node.kind == "sprinkler":
+            nodes.append(replace(node, tag="u" + node.tag, elevation=node.elevation + 1.2))
+            pipes.append(pipe(node.tag, "u" + node.tag, "drop", 1.2))
+    found = cases(system(nodes, pipes))
+    assert len(found) == 18
+    assert all(len({tag[0] for tag in case.heads}) == 1 for case in found)
+
+
+def test_a_stub_with_lines_of_another_direction_is_made_up_with_its_neighbours() -> None:
+    # Beyond the last line two heads stand on a line of their own that runs across the others.
+    hall = tree([0] * 5, [6] * 5)
+    top = 4 * 10 * FOOT
+    stub = [head(f"Z.{k}", 20 * FOOT, top + (k + 1) * 10 * FOOT, 130 * FT2, "Z") for k in range(2)]
+    pipes = [pipe("E4.1", "Z.0", "branch line"), pipe("Z.0", "Z.1", "branch line")]
+    found = cases(system([*hall.nodes, *stub], [*hall.pipes, *pipes]))
+    regular = [case for case in found if not any(tag.startswith("Z") for tag in case.heads)]
+    (made_up,) = [case for case in found if any(tag.startswith("Z") for tag in case.heads)]
+    assert len(regular) == 9
+    assert {"Z.0", "Z.1", "E4.1"} <= set(made_up.heads)
+    assert len(made_up.heads) == 12
+    assert made_up.label == "line Z, all heads (Z.0 to Z.1); 10 nearest heads beside it"
+    assert made_up.note == ""
+
+
+def test_a_line_alone_grows_along_itself() -> None:
+    found = cases(tree([0], [20]))
+    assert sets(found) == {frozenset(f"E0.{j}" for j in range(k, k + 12)) for k in range(9)}
+
+
+@pytest.mark.slow
+def test_ten_thousand_heads_are_tried_whole() -> None:
+    # 5 + 5 + 2 heads: 96 runs × 98 groups of lines × 4 places for the two left over × 2 outer lines.
+    found = demand_cases(project(grid(100, 100), criteria(base_area=108.0)))
+    assert found.complete
+    assert len(found.cases) == 96 * 98 * 4 * 2
