@@ -13,9 +13,10 @@ from supplycheck.demand.heads import Heads, all_heads
 from supplycheck.demand.labels import Labels, unique
 from supplycheck.demand.line import Line
 from supplycheck.demand.lines import find_lines
+from supplycheck.demand.placement import Placement, Rule
 from supplycheck.demand.records import Candidates, Step
 from supplycheck.demand.runs import ROUND
-from supplycheck.demand.search import CAP, Placement, Rule, search
+from supplycheck.demand.search import CAP, search
 from supplycheck.errors import DomainError
 from supplycheck.model import Criteria, DemandCase, Project
 

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from typing import Final
 
 from supplycheck.demand.line import Line
-from supplycheck.demand.search import Placement, Row
+from supplycheck.demand.placement import Placement, Row
 
 ALL: Final = "all heads"
 

@@ -77,7 +77,8 @@ class Facing:
     """For each run of one line the run of another that faces it; −1 where none does.
 
     ``first`` and ``last`` differ where two runs lie equally near on either hand (staggered heads): there
-    the run is ``tied``. ``overlap`` [m] is how far they lie side by side, ``distance`` [m] that of the middles.
+    the run is ``tied``. ``overlap`` [m] is how far they lie side by side, ``distance`` [m] how far apart
+    their middles lie along the line.
     """
 
     first: tuple[int, ...]

@@ -15,26 +15,23 @@ one, are tried as well.
 
 from __future__ import annotations
 
-import heapq
 import math
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, field, replace
-from typing import Final, NamedTuple
+from dataclasses import dataclass, replace
+from typing import Final
 
 import numpy as np
 
-from supplycheck.demand.heads import FloatArray, Heads
+from supplycheck.demand.heads import Heads
 from supplycheck.demand.line import (
     SAME_ROW,
-    SLOPE,
-    STEP_HEIGHT,
-    STOREY,
     TOUCH,
     Line,
     Lines,
     same_level,
     steps_apart,
 )
+from supplycheck.demand.placement import Bag, CapReachedError, Placement, Row, Rule
 from supplycheck.demand.runs import (
     LEAST,
     ROUND,
@@ -46,41 +43,10 @@ from supplycheck.demand.runs import (
     minimal_runs,
     runs_of,
 )
+from supplycheck.demand.strays import add_strays
 
 CAP: Final = 200_000
 """Placements after which the search stops and says so."""
-
-
-class Row(NamedTuple):
-    """Heads ``low`` up to, not including, ``high`` of a line."""
-
-    line: Line
-    low: int
-    high: int
-
-
-@dataclass(frozen=True, slots=True)
-class Placement:
-    """One placement: its heads (row numbers), the runs it is made of, heads added singly, a note."""
-
-    heads: tuple[int, ...]
-    rows: tuple[Row, ...]
-    extra: tuple[int, ...] = ()
-    note: str = ""
-
-
-@dataclass(frozen=True, slots=True)
-class Rule:
-    """What a placement must reach: area [m²], length along the lines [m], heads, heads in a run."""
-
-    area: float
-    length: float
-    heads: int
-    run: int = 1
-
-    def reached(self, area: float, heads: int) -> bool:
-        """Say whether ``area`` [m²] with so many heads is enough."""
-        return area >= self.area * (1 - ROUND) and heads >= self.heads
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,33 +55,6 @@ class Found:
 
     placements: tuple[Placement, ...]
     complete: bool
-
-
-class _CapReachedError(Exception):
-    """The search holds as many placements as it may."""
-
-
-@dataclass(slots=True)
-class _Bag:
-    """Placements without duplicates, in the order found, and the heads that stand in any of them."""
-
-    cap: int
-    found: dict[frozenset[int], Placement] = field(default_factory=dict)
-    covered: set[int] = field(default_factory=set)
-
-    def add(self, rows: Sequence[Row]) -> None:
-        heads: list[int] = []
-        for line, low, high in rows:
-            heads += line.heads[low:high]
-        self.put(Placement(tuple(heads), tuple(rows)))
-
-    def put(self, placement: Placement) -> None:
-        key = frozenset(placement.heads)
-        if key not in self.found:
-            if len(self.found) >= self.cap:
-                raise _CapReachedError
-            self.found[key] = placement
-            self.covered.update(key)
 
 
 class _Field:
@@ -220,7 +159,7 @@ def _touches(row: Row, others: Sequence[Row]) -> bool:
     return any(min(end, b) - max(begin, a) > LEAST for a, b in (extent(*other) for other in others))
 
 
-def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -> None:
+def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: Bag) -> None:
     """Add the placements that start with one run and grow to one hand.
 
     Where two runs of a line face the first equally, ``late`` takes the further one.
@@ -253,7 +192,7 @@ def _grow(space: _Field, own: int, run: int, sign: int, late: bool, bag: _Bag) -
         count += row.high - row.low
 
 
-def _fill(space: _Field, bag: _Bag, starts: Iterable[int]) -> None:
+def _fill(space: _Field, bag: Bag, starts: Iterable[int]) -> None:
     """Add every placement that starts on one of the lines ``starts``."""
     for own in starts:
         for run in range(len(space.runs[own])):
@@ -290,7 +229,7 @@ def _can_grow(space: _Field, own: int) -> bool:
     return False
 
 
-def _lengthen(lines: Sequence[Line], rule: Rule, bag: _Bag, most: int) -> None:
+def _lengthen(lines: Sequence[Line], rule: Rule, bag: Bag, most: int) -> None:
     """Let runs grow along the lines for heads that no placement holds: too few lines lie side by side."""
     space = _Field(lines, rule, most)
     starts = [
@@ -304,66 +243,6 @@ def _lengthen(lines: Sequence[Line], rule: Rule, bag: _Bag, most: int) -> None:
             return
         run += 1
         _fill(_Field(lines, replace(rule, run=run), most), bag, starts)
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class _Ground:
-    """Where all heads stand: plan [m], elevation [m], area [m²], how far each touches [m]."""
-
-    tags: tuple[str, ...]
-    xy: FloatArray
-    z: FloatArray
-    area: FloatArray
-    reach: FloatArray
-
-    def near(self, row: int) -> list[tuple[int, float, str, int]]:
-        """Return the heads that touch head ``row`` on its level: steps between, distance [m], tag, row."""
-        apart = np.hypot(*(self.xy - self.xy[row]).T)
-        rise = np.abs(self.z - self.z[row])
-        level = rise <= np.maximum(STEP_HEIGHT, np.minimum(SLOPE * apart, STOREY)) + 1e-9
-        rows = np.flatnonzero(level & (apart <= (self.reach + self.reach[row]) / 2)).tolist()
-        return [
-            (steps_apart(float(rise[i])), max(round(float(apart[i]), 3), 1e-9), self.tags[i], i)
-            for i in rows
-        ]
-
-
-def _gather_near(ground: _Ground, seed: Sequence[int], rule: Rule) -> list[int]:
-    """Return ``seed`` and the nearest heads that make up the area, each touching another on its level."""
-    chosen: dict[int, None] = {}
-    area = 0.0
-    waiting = [(0, 0.0, "", row) for row in seed]
-    heapq.heapify(waiting)
-    while waiting:
-        _, apart, _, row = heapq.heappop(waiting)
-        if row in chosen:
-            continue
-        if apart > 0 and rule.reached(area, len(chosen)):
-            break
-        chosen[row] = None
-        area += float(ground.area[row])
-        for other in ground.near(row):
-            if other[3] not in chosen:
-                heapq.heappush(waiting, other)
-    return list(chosen)
-
-
-def _leftovers(heads: Heads, lines: Lines, rule: Rule, bag: _Bag) -> None:
-    """Give the heads that still stand in no placement one made up with the heads nearest to them."""
-    xy = np.array([(node.x, node.y) for node in heads.nodes], dtype=np.float64)
-    z = np.array([node.elevation for node in heads.nodes], dtype=np.float64)
-    ground = _Ground(heads.tags, xy, z, heads.area, TOUCH * np.sqrt(heads.area))
-    covered = frozenset(bag.covered)
-    for line in lines.sides:
-        missing = [i for i, row in enumerate(line.heads) if row not in covered]
-        if not missing:
-            continue
-        own = Row(line, missing[0], missing[-1] + 1)
-        members = _gather_near(ground, line.heads[own.low : own.high], rule)
-        extra = tuple(members[own.high - own.low :])
-        short = not rule.reached(float(heads.area[members].sum()), len(members))
-        note = "area smaller than the design area: all heads" if short else ""
-        bag.put(Placement(tuple(members), (own,), extra, note))
 
 
 def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int = CAP) -> Found:
@@ -380,7 +259,7 @@ def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int =
     cap
         Number of placements after which the search stops.
     """
-    bag = _Bag(cap)
+    bag = Bag(cap)
     most = max(rule.heads, math.ceil(rule.area / float(heads.area.min())))
     try:
         rules = [rule]
@@ -398,7 +277,7 @@ def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int =
                 _fill(space, bag, starts)
         for chosen in (lines.sides, _spanning(lines, rule, everywhere=True)):
             _lengthen(chosen, rule, bag, most)
-        _leftovers(heads, lines, rule, bag)
-    except _CapReachedError:
+        add_strays(heads, lines, rule, bag)
+    except CapReachedError:
         return Found(tuple(bag.found.values()), complete=False)
     return Found(tuple(bag.found.values()), complete=True)
