@@ -57,14 +57,16 @@ def _section(sheets: Sheets, section: Section, number: int) -> None:
         sheets.y -= 7
     else:
         sheets.sheet.entries.append((section.title, sheets.top))
-    for block in section.blocks:
+    for place, block in enumerate(section.blocks):
+        if isinstance(block, Heading):
+            after = section.blocks[place + 1] if place + 1 < len(section.blocks) else None
+            sheets.need(20 + min(_facts_height(sheets, after), 200) if isinstance(after, Facts) else 48)
         _block(sheets, block)
 
 
 def _block(sheets: Sheets, block: Block) -> None:
     match block:
         case Heading():
-            sheets.need(44)
             sheets.y -= 4
             sheets.text(block.text, 9.4, bold=True, colour=PETROL)
             sheets.y -= 2
@@ -97,32 +99,54 @@ def _paragraph(sheets: Sheets, block: Paragraph) -> None:
     sheets.y -= 3
 
 
-def _facts(sheets: Sheets, block: Facts) -> None:
-    """Labels and values in columns; pairs read down the first column, then down the next."""
-    size, leading = 8.0, 10.8
-    columns = block.columns
+_FACT_SIZE: Final = 8.0
+_FACT_LEADING: Final = 10.8
+_FACT_GAP: Final = 1.6
+
+_Cell = tuple[list[str], list[str]]
+
+
+def _fact_rows(sheets: Sheets, block: Facts) -> tuple[float, list[list[_Cell]]]:
+    """Return the room of the labels and, row by row, the broken lines of each label and value."""
+    size, columns, ruler = _FACT_SIZE, block.columns, sheets.ruler
     share = sheets.room / columns
-    widest = max((sheets.ruler.width(label, size) for label, _ in block.pairs), default=0.0)
-    label_room = min(widest + 10, share * 0.42)
-    if len(block.pairs) <= 8 * columns:
-        sheets.need(len(block.pairs) / columns * (leading + 1.6))
-    for first in range(0, len(block.pairs), columns):
-        group = block.pairs[first : first + columns]
-        labels = [wrap(label, label_room - 6, size, sheets.ruler) for label, _ in group]
-        values = [wrap(value, share - label_room - 10, size, sheets.ruler) for _, value in group]
-        deep = max(len(lines) for lines in labels + values)
-        for place in range(deep):
-            sheets.need(leading)
-            sheets.y -= leading
-            for column, (label, value) in enumerate(zip(labels, values, strict=True)):
-                x = sheets.left + column * share
+    widest = max((ruler.width(label, size) for label, _ in block.pairs), default=0.0)
+    room = min(widest + 10, share * 0.42)
+    cells = [
+        (wrap(label, room - 6, size, ruler), wrap(value, share - room - 10, size, ruler))
+        for label, value in block.pairs
+    ]
+    return room, [cells[first : first + columns] for first in range(0, len(cells), columns)]
+
+
+def _deep(row: list[_Cell]) -> int:
+    return max(len(lines) for cell in row for lines in cell)
+
+
+def _facts_height(sheets: Sheets, block: Facts) -> float:
+    _, rows = _fact_rows(sheets, block)
+    return sum(_deep(row) * _FACT_LEADING + _FACT_GAP for row in rows)
+
+
+def _facts(sheets: Sheets, block: Facts) -> None:
+    """Labels and values in columns, read along the rows."""
+    share = sheets.room / block.columns
+    room, rows = _fact_rows(sheets, block)
+    if len(rows) <= 10:
+        sheets.need(_facts_height(sheets, block))
+    for row in rows:
+        for place in range(_deep(row)):
+            sheets.need(_FACT_LEADING)
+            sheets.y -= _FACT_LEADING
+            for column, (label, value) in enumerate(row):
+                x, y = sheets.left + column * share, sheets.y + 2.6
                 if place < len(label):
-                    sheets.put(Label(x, sheets.y + 2.6, label[place], size, colour=SLATE))
+                    sheets.put(Label(x, y, label[place], _FACT_SIZE, colour=SLATE))
                 if place < len(value):
-                    sheets.put(Label(x + label_room, sheets.y + 2.6, value[place], size))
+                    sheets.put(Label(x + room, y, value[place], _FACT_SIZE))
         y = sheets.y - 0.6
         sheets.put(Line(((sheets.left, y), (sheets.left + sheets.room, y)), RULE, 0.3))
-        sheets.y -= 1.6
+        sheets.y -= _FACT_GAP
     sheets.y -= 6
 
 

@@ -21,19 +21,20 @@ def answer(result: Result, width: float) -> Section:
     blocks: list[Block] = [
         Verdict(result.verdict, result.verdict_text, _tiles(result, show)),
         Figure("", answer_bars(result, show.units, width)),
-        Facts(_facts(result, show)),
+        Facts(_reasons(result)),
+        Facts(_standing(result, show), columns=2),
         *_fails(result, show),
         *_questions(result),
-        Figure(
-            "Supply and demand",
-            supply_graph(result.curves, result.points, show.units, (width, 176.0)),
-            if_room=True,
-        ),
         Paragraph(
             "This page says whether the supply carries the demand as calculated from the inputs listed in "
             "this report. It is a preliminary aid, neither a design nor an approval: a licensed designer "
             "checks and takes responsibility, and the authority having jurisdiction decides.",
             "small",
+        ),
+        Figure(
+            "Supply and demand",
+            supply_graph(result.curves, result.points, show.units, (width, 170.0)),
+            if_room=True,
         ),
     ]
     return Section("The answer", tuple(blocks))
@@ -61,26 +62,27 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
     )
 
 
-def _facts(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
-    project, area = result.project, result.design_area
-    facts, criteria, balance = project.facts, project.criteria, result.balance
-    density = f"{show.t(criteria.density, 'density')} over {show.t(criteria.required_area, 'area')}"
+def _reasons(result: Result) -> tuple[tuple[str, str], ...]:
     return (
         ("What governs", result.governs),
-        ("Design area", area_text(area)),
+        ("Design area", area_text(result.design_area)),
         ("Margin rule", result.margin.rule),
-        ("Hazard, system", f"{criteria.hazard}, {criteria.system}; {density}"),
+        ("Findings", counts_text(result.findings)),
+    )
+
+
+def _standing(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
+    facts, criteria = result.project.facts, result.project.criteria
+    return (
+        ("Hazard, system", f"{criteria.hazard}, {criteria.system}"),
+        (
+            "Density, area",
+            f"{show.t(criteria.density, 'density')} over {show.t(criteria.required_area, 'area')}",
+        ),
         ("Standard, edition", facts.standard),
         ("Authority", given(facts.authority)),
-        ("Stage", facts.stage),
-        ("Findings", counts_text(result.findings)),
-        (
-            "Balance",
-            f"largest flow imbalance {show.small(balance.largest_flow_imbalance, 'flow')}, largest "
-            "pressure "
-            f"imbalance {show.small(balance.largest_pressure_imbalance, 'pressure')}, recomputed from "
-            "the numbers reported",
-        ),
+        ("Stage", given(facts.stage)),
+        ("Designer", given(facts.designer)),
     )
 
 

@@ -17,7 +17,7 @@ def basis(result: Result) -> Section:
         Heading("Criteria"),
         Facts(_criteria(project.criteria, show), columns=2),
         Facts(_sources(project.criteria, show)),
-        _modifiers(project.criteria),
+        *([_modifiers(project.criteria)] if project.criteria.modifiers else []),
         steps_table("How the design area was found", result.design_area.steps, show),
         _sprinklers(project.system.sprinklers, show),
         Heading("Hose, friction law, fluid, units"),
@@ -75,7 +75,9 @@ def _sources(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
         for what, limit in (("pipe", velocity.pipe_limit), ("valve", velocity.valve_limit))
         if limit is not None
     ]
+    none = () if criteria.modifiers else (("Modifiers of the area", "none applies"),)
     return (
+        *none,
         ("Velocity limits", f"{velocity.name}: {', '.join(limits) or 'none set'} ({velocity.source})"),
         ("Source of the criteria", criteria.source),
     )

@@ -20,7 +20,7 @@ def findings(result: Result) -> Section:
     show = Show.of(result)
     columns = (
         Column("Check", wrap=True, share=0.2),
-        Column("What was found, and by which source", wrap=True, share=0.54),
+        Column("What was found", wrap=True, share=0.54),
         Column("Measured", right=True, share=0.13),
         Column("Limit", right=True, share=0.13),
     )

@@ -84,8 +84,8 @@ def pipe_information(result: Result) -> Section:
     blocks: list[Block] = [
         Paragraph(
             "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt "
-            "pressure at the start and the end, pe change by elevation, pf friction with fittings, pd devices: pt "
-            "start − pt end = pf + pe + pd.",
+            "pressure at the start and the end, pe change by elevation, pf friction with fittings, pd "
+            "devices: pt start − pt end = pf + pe + pd.",
             "small",
         ),
         Table("Pipes with flow", _pipe_columns(show, darcy=darcy, second=second), rows, size=6.3),
