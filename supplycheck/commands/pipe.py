@@ -51,6 +51,9 @@ _OPTIONS = (
     _option("--roughness", "Absolute roughness for Darcy-Weisbach (ft, mm)."),
     _option("--friction-factor", "A given Darcy friction factor instead of a roughness."),
     _option("--minor-k", "Sum of the loss coefficients K of fittings, entrance and exit."),
+    _option(
+        "--fittings", 'Fittings of a known size, "2 elbow 90; 1 tee"; lengths from the catalogue.', "TEXT"
+    ),
     _option("--equivalent-length", "Equivalent length of fittings, corrected for C and bore (ft, m)."),
     _option("--rise", "Elevation of the end above the start, may be negative (ft, m)."),
     click.option("--from-reservoir", is_flag=True, help="The start is still water, at 0 unless given."),
@@ -84,7 +87,7 @@ def command(**options: Any) -> None:
     from supplycheck.errors import DomainError, NoSolutionError
     from supplycheck.hydraulics import solve_one_pipe
 
-    if options["length"] is None and options["minor_k"] is None and options["equivalent_length"] is None:
+    if all(options[name] is None for name in ("length", "minor_k", "equivalent_length", "fittings")):
         raise click.UsageError("give at least --length; see --help for examples")
     try:
         question = pipe_question.ask(options)

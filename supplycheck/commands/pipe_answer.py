@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import textwrap
 from typing import Any
 
 from supplycheck.commands.pipe_question import NextSize, Question
@@ -41,6 +42,11 @@ def digits(number: float, significant: int = 4) -> str:
     return text.replace("-", "−", 1) if number < 0 else text
 
 
+def _wrapped(text: str) -> str:
+    """Return a long line in lines of a screen, the further ones indented."""
+    return textwrap.fill(text, 96, subsequent_indent="    ", break_long_words=False)
+
+
 def _order(size: float, significant: int = 4) -> int:
     """Return the power of ten of ``size`` after rounding, so that 9.99999 counts as 10."""
     return int(f"{size:.{significant - 1}e}".partition("e")[2])
@@ -72,9 +78,10 @@ def as_text(
         lines += ["", *_next_lines(question, next_size)]
     if steps:
         lines += ["", *_step_lines(question, result)]
-    lines += ["", *(f"Assumed: {text}" for text in question.assumptions)]
-    lines += [f"Source: {text}" for text in question.sources]
-    lines += [f"Remark: {text}" for text in result.remarks]
+    notes = [f"Assumed: {text}" for text in question.assumptions]
+    notes += [f"Remark: {text}" for text in result.remarks]
+    notes += [f"Source: {text}" for text in question.sources]
+    lines += ["", *(_wrapped(note) for note in notes)]
     return "\n".join(lines).rstrip()
 
 
@@ -123,6 +130,13 @@ def _pipe_lines(question: Question, result: OnePipeResult) -> list[str]:
     rows = _pipe_rows(question, result)
     words = [("fluid", question.fluid_name), ("weight for the rise", question.weight_name)]
     words += [("size", question.size_name)] if question.size_name else []
+    for fitting in question.fittings:
+        text = f"{fitting.count} {fitting.name}, "
+        if fitting.minor_k:
+            text += f"K {fitting.minor_k:g}"
+        else:
+            text += f"equivalent length {_quantity(question.units, fitting.length, 'length')}"
+        words.append(("fittings", text))
     wide = max(len(row[0]) for row in rows + words)
     long = max(len(row[1]) for row in rows)
     lines = [f"  {name:<{wide}}  {value:>{long}} {unit}".rstrip() for name, value, unit in rows]
@@ -195,7 +209,7 @@ def _next_lines(question: Question, size: NextSize | str) -> list[str]:
         f"Next larger size: {size.nominal} {size.material}, inside diameter {bore}",
         f"  there: loss {_quantity(units, size.result.loss, 'pressure')}, "
         f"velocity {_quantity(units, size.result.velocity, 'velocity')}",
-        f"  source: {size.source}",
+        _wrapped(f"  source: {size.source}"),
     ]
 
 
@@ -251,6 +265,15 @@ def as_json(question: Question, result: OnePipeResult, next_size: NextSize | str
         "length": number(problem.length, "length"),
         "equivalent_length": number(problem.equivalent_length, "length"),
         "minor_k": problem.minor_k,
+        "fittings": [
+            {
+                "name": fitting.name,
+                "count": fitting.count,
+                "equivalent_length": number(fitting.length, "length"),
+                "minor_k": fitting.minor_k,
+            }
+            for fitting in question.fittings
+        ],
         "rise": number(problem.rise, "length"),
         "velocity": number(result.velocity, "velocity"),
         "reynolds": result.reynolds,
@@ -309,7 +332,7 @@ def _next_json(size: NextSize | str | None, units: UnitSet) -> dict[str, Any] | 
 def no_solution_text(question: Question, reason: str) -> str:
     """Return why there is no solution, with the balance of pressures that shows it."""
     problem, units = question.problem, question.units
-    lines = [f"No solution: {reason}."]
+    lines = [_wrapped(f"No solution: {reason}.")]
     if problem.loss is None and problem.drop is not None:
         drop = _quantity(units, problem.drop, "pressure")
         rise = _quantity(units, problem.rise * problem.unit_weight, "pressure")

@@ -9,6 +9,7 @@ from typing import Any, Final
 import click
 
 from supplycheck.errors import NotInCatalogueError
+from supplycheck.findings import Place
 from supplycheck.hydraulics import (
     ConstantFactor,
     DarcyWeisbach,
@@ -20,7 +21,7 @@ from supplycheck.hydraulics import (
     water_density,
     water_viscosity,
 )
-from supplycheck.model import HEAD_FORM, HW_METRIC, HW_US
+from supplycheck.model import HEAD_FORM, HW_METRIC, HW_US, Fitting
 from supplycheck.project.quantity import NumberError, Sign, read_number
 from supplycheck.units import BAR, FOOT, GRAVITY, PSI, UNIT_SETS, UnitSet
 
@@ -46,6 +47,7 @@ class Question:
     weight_name: str
     material: str | None
     size_name: str
+    fittings: tuple[Fitting, ...]
     assumptions: tuple[str, ...]
     sources: tuple[str, ...]
 
@@ -110,7 +112,8 @@ def ask(given: Mapping[str, Any]) -> Question:
     density, viscosity, fluid_name, assumptions = _fluid(options, law)
     weight, weight_name = _unit_weight(options, law, density)
     start, end = _ends(options)
-    bore, size_name, bore_origin = _bore(options)
+    bore, nominal, bore_origin = _bore(options)
+    fittings = _fittings(options, nominal, bore, law)
     if options.has("pump_power") and not options.has("efficiency"):
         raise click.UsageError(
             "--pump-power is the power at the shaft: give --efficiency too "
@@ -127,8 +130,10 @@ def ask(given: Mapping[str, Any]) -> Question:
         drop=None if start is None or end is None else start - end,
         loss=options.head("loss", "pressure", weight),
         rise=options.number("rise", "length", "any") or 0.0,
-        minor_k=options.number("minor_k", "ratio", "zero or more") or 0.0,
-        equivalent_length=options.number("equivalent_length", "length", "zero or more") or 0.0,
+        minor_k=(options.number("minor_k", "ratio", "zero or more") or 0.0)
+        + sum(fitting.minor_k for fitting in fittings),
+        equivalent_length=(options.number("equivalent_length", "length", "zero or more") or 0.0)
+        + sum(fitting.length for fitting in fittings),
         start="reservoir" if given["from_reservoir"] else "pipe",
         end="jet" if given["jet"] else "reservoir" if given["to_reservoir"] else "pipe",
         pump_pressure=options.head("pump_head", "length", weight),
@@ -145,9 +150,10 @@ def ask(given: Mapping[str, Any]) -> Question:
         fluid_name=fluid_name,
         weight_name=weight_name,
         material=given["material"],
-        size_name=size_name,
+        size_name=f"{nominal} {given['material']}" if nominal else "",
+        fittings=fittings,
         assumptions=assumptions,
-        sources=origins + bore_origin,
+        sources=origins + bore_origin + tuple(f"{each.name}: {each.source}" for each in fittings),
     )
 
 
@@ -309,7 +315,7 @@ def _efficiency(options: _Options) -> float | None:
 
 
 def _bore(options: _Options) -> tuple[float | None, str, tuple[str, ...]]:
-    """Return the bore [m], the size it came from and its source."""
+    """Return the bore [m], the nominal size it came from and its source."""
     diameter = options.number("diameter", "size")
     if not options.has("size"):
         return diameter, "", ()
@@ -324,7 +330,29 @@ def _bore(options: _Options) -> tuple[float | None, str, tuple[str, ...]]:
         row = catalogue.find_bore(material, options.given["size"])
     except NotInCatalogueError as error:
         raise click.BadParameter(str(error), param_hint="--material, --size") from None
-    return row.bore, f"{row.nominal} {row.material}", (f"size of {row.material}: {row.source}",)
+    return row.bore, row.nominal, (f"size of {row.material}: {row.source}",)
+
+
+def _fittings(options: _Options, nominal: str, bore: float | None, law: PipeLaw) -> tuple[Fitting, ...]:
+    """Return the fittings written as ``2 elbow 90; 1 tee``, with lengths corrected for C and bore."""
+    text = options.given["fittings"]
+    if text is None:
+        return ()
+    if bore is None:
+        raise click.UsageError("--fittings needs the size of the pipe: give --material and --size")
+    from supplycheck.catalogue import ExtraRows
+    from supplycheck.project.faults import FaultList
+    from supplycheck.project.fittings import Lengths, PipeSize, parse
+
+    standard = "NFPA 13" if options.units.name == "us" else "EN 12845"
+    faults, place = FaultList(), Place("--fittings")
+    lengths = Lengths(standard, ExtraRows(), faults)
+    size = PipeSize(nominal, bore, law.c_factor if isinstance(law, HazenWilliams) else None)
+    written = parse(text, options.units, place, faults)
+    charged = [lengths.charge(each, size, "given", place) for each in written]
+    if faults:
+        raise click.UsageError("\n       ".join(str(fault) for fault in faults.all()))
+    return tuple(each for each in charged if each is not None)
 
 
 def next_size(question: Question, result: OnePipeResult) -> NextSize | str | None:

@@ -134,6 +134,25 @@ def test_size_and_c_from_the_catalogue() -> None:
     assert darcy["relative_roughness"] == pytest.approx(1.5e-4 * 12 / 2.067, rel=1e-6)
 
 
+def test_fittings_as_written() -> None:
+    # NFPA 13 equivalent lengths for 2 in: standard elbow 5 ft, tee 10 ft; at C 100 × (100/120)^1.85
+    words = ("--flow", "100", "--length", "50", "--material", "steel schedule 40", "--size", "2")
+    wet = answer(*words, "--system", "wet", "--fittings", "2 elbow 90; 1 tee")
+    dry = answer(*words, "--system", "dry", "--fittings", "2 elbow 90; 1 tee")
+    assert wet["equivalent_length"] == pytest.approx(20, rel=1e-9)
+    assert dry["equivalent_length"] == pytest.approx(20 * (100 / 120) ** 1.85, rel=1e-9)
+    # the loss of a fitting is the same whatever the C of the pipe
+    assert dry["loss"]["equivalent_length"] == pytest.approx(wet["loss"]["equivalent_length"], rel=1e-9)
+    own = answer(*words, "--system", "wet", "--fittings", "strainer = 20 ft; 2 entrance: k = 0.5")
+    assert own["equivalent_length"] == pytest.approx(20, rel=1e-9)
+    assert own["minor_k"] == pytest.approx(1.0, rel=1e-12)
+    text = run(*words, "--system", "wet", "--fittings", "2 elbow 90; 1 tee").output
+    assert re.search(r"fittings +2 elbow 90.*10\.00 ft", text)
+    odd = run(*words, "--system", "wet", "--fittings", "2 elbw 90; 0 tee")
+    assert odd.exit_code == 2
+    assert "elbw 90" in odd.stderr and "0 tee" in odd.stderr
+
+
 def test_assumptions_are_said() -> None:
     assert answer("--flow", "100", "--diameter", "2", *BASE)["assumptions"]
     assert "Assumed: water at" in run("--flow", "100", "--diameter", "2", *BASE).output
@@ -156,6 +175,7 @@ def test_no_solution() -> None:
     result = run(*words)
     assert result.exit_code == 4
     assert "No solution: nothing drives the flow" in result.stderr
+    assert max(map(len, result.stderr.splitlines())) < 100
     # 20 ft × 0.433 psi/ft
     assert "8.660 psi" in result.stderr
     as_json = run(*words, "--json")
@@ -187,6 +207,7 @@ def test_no_solution() -> None:
         (("--flow", "1", "--diameter", "2", "--temperature", "300", *BASE), "0 to 100 °C"),
         (("--flow", "1", "--diameter", "2", "--viscosity", "2", *BASE), "--density as well"),
         (("--flow", "1", "--size", "2", *BASE), "--size needs --material"),
+        (("--flow", "1", "--loss", "2", "--fittings", "1 tee", *BASE), "--fittings needs the size"),
         (("--flow", "1", "--material", "cheese", "--size", "2", *BASE), "cheese"),
         (("--flow", "1", "--loss", "5", "--material", "cheese", *BASE), "cheese"),
         (("--flow", "1", "--material", "steel schedule 40", "--size", "7", *BASE), "no size '7'"),
@@ -217,7 +238,7 @@ NUMBERS = [
     *("--flow", "--diameter", "--size", "--material", "--loss", "--start-pressure", "--end-pressure"),
     *("--length", "--c-factor", "--roughness", "--friction-factor", "--minor-k", "--equivalent-length"),
     *("--rise", "--pump-head", "--pump-power", "--efficiency", "--temperature", "--density", "--viscosity"),
-    "--system",
+    *("--system", "--fittings"),
 ]
 FLAGS = ["--from-reservoir", "--to-reservoir", "--jet", "--steps", "--json"]
 
