@@ -168,6 +168,8 @@ def _law(options: _Options) -> tuple[PipeLaw, str, tuple[str, ...]]:
     if given and wanted not in (None, _COEFFICIENTS[given[0]]):
         other = given[0].replace("_", "-")
         raise click.UsageError(f"--law {wanted} does not go with --{other}")
+    if options.has("system") and (given or wanted == "darcy-weisbach"):
+        raise click.UsageError("--system looks up C for --material; leave it out where C is not looked up")
     number, source = _coefficient(options, given[0] if given else None)
     name = given[0] if given else "roughness" if wanted == "darcy-weisbach" else "c_factor"
     origin = (source,) if source else ()

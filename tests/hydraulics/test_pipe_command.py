@@ -207,6 +207,7 @@ def test_no_solution() -> None:
         (("--flow", "1", "--diameter", "2", "--temperature", "300", *BASE), "0 to 100 °C"),
         (("--flow", "1", "--diameter", "2", "--viscosity", "2", *BASE), "--density as well"),
         (("--flow", "1", "--size", "2", *BASE), "--size needs --material"),
+        (("--flow", "1", "--diameter", "2", "--system", "wet", *BASE), "--system looks up C"),
         (("--flow", "1", "--loss", "2", "--fittings", "1 tee", *BASE), "--fittings needs the size"),
         (("--flow", "1", "--material", "cheese", "--size", "2", *BASE), "cheese"),
         (("--flow", "1", "--loss", "5", "--material", "cheese", *BASE), "cheese"),
