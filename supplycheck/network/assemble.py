@@ -154,8 +154,14 @@ class Assembled:
         return head, known
 
 
-def assemble(links: Links, base: FloatArray, case: Case, feed: Feed, *, demand: bool) -> Assembled:
-    """Return the core's problem for ``case`` on the (reduced) ``links``."""
+def assemble(
+    links: Links, base: FloatArray, case: Case, feed: Feed, *, demand: bool, size: int | None = None
+) -> Assembled:
+    """Return the core's problem for ``case`` on the (reduced) ``links``.
+
+    ``size`` is the number of node rows of each copy where several lie side by side.
+    """
+    size = size or len(base)
     held = feed.rows[feed.fixed]
     used = np.zeros(len(base), dtype=bool)
     for rows in (
@@ -197,7 +203,8 @@ def assemble(links: Links, base: FloatArray, case: Case, feed: Feed, *, demand: 
         floor_rows=floor_rows,
         floors=base[case.floor_rows] + case.floors if demand else np.zeros(0),
         nodal=Nodal(start, end, free),
-        group=np.zeros(free + len(fixed), dtype=np.int64),
+        group=np.concatenate([rows, feed.rows[piped], case.outlets]) // size,
+        groups=len(base) // size,
     )
     guess = _guess(links, case, len(piped), static - base[feed.rows])
     set_laws = [(link, law.setting) for link, law in links.devices if law.setting is not None]

@@ -41,6 +41,8 @@ HEAD_TOLERANCE: Final = 1e-5
 """Largest loss residual and slack of a converged state [Pa]."""
 FLOW_TOLERANCE: Final = 1e-9
 """Largest last step of a flow, as a part of the flow scale."""
+COARSE_HEAD: Final = 0.1
+"""Error of the supply pressure accepted where only the demand is asked [Pa]."""
 MASS_TOLERANCE: Final = 1e-11
 """Largest imbalance of a node, as a part of the flow scale."""
 LEAST_RESPONSE: Final = 1e-9
@@ -128,8 +130,14 @@ def residuals(problem: Problem, state: State) -> tuple[FloatArray, FloatArray, F
     return energy, mass, slope
 
 
-def solve(problem: Problem, state: State, *, limit: int = 40, damped: bool = False) -> State:
-    """Return the converged state, or the last one with ``converged`` false after ``limit`` steps."""
+def solve(
+    problem: Problem, state: State, *, limit: int = 40, damped: bool = False, fine: bool = True
+) -> State:
+    """Return the converged state, or the last one with ``converged`` false after ``limit`` steps.
+
+    Not ``fine``: it is enough that the content still to be gained, for the flow that the supply gives, is
+    below :data:`COARSE_HEAD`; links that carry next to nothing may then be off by far more.
+    """
     energy, mass, slope = residuals(problem, state)
     for count in range(1, limit + 1):
         try:
@@ -153,6 +161,8 @@ def solve(problem: Problem, state: State, *, limit: int = 40, damped: bool = Fal
         moved = length * float(np.abs(step).max(initial=0.0))
         rounding = 1e-13 * float(np.abs(problem.fixed).max(initial=0.0))
         good = worst <= HEAD_TOLERANCE + rounding and moved <= FLOW_TOLERANCE * scale
+        if not fine:
+            good = float((energy * energy / slope).sum()) <= COARSE_HEAD * scale
         good = good or (worst <= ROUGH_HEAD and count == limit)
         if good and lost <= MASS_TOLERANCE * scale and _slack(problem, head) <= HEAD_TOLERANCE + rounding:
             return replace(state, converged=True, energy=worst, mass=lost)

@@ -45,6 +45,14 @@ class NoStateError(Exception):
         self.state = state
 
 
+def find_coarse(assembled: Assembled) -> State:
+    """Return the state of ``assembled`` as far as the demand needs it; raises :class:`NoStateError`."""
+    state = solve(assembled.problem, assembled.start, limit=FAST_LIMIT, fine=False)
+    if not state.converged or bool((assembled.problem.one_way & (state.flow < BACKWARDS)).any()):
+        raise NoStateError("numbers", state)
+    return state
+
+
 def find_state(assembled: Assembled, start: State | None = None) -> State:
     """Return the state of ``assembled``, from ``start`` where one is known.
 
@@ -225,17 +233,20 @@ class _Valves:
     def fault(self, state: State, valve: int) -> float:
         """Return by how much [Pa] ``valve`` contradicts its state; 0 where it does not."""
         made = self.assembled
-        behind, ahead = state.head[made.valve_rows[valve]], state.head[made.problem.start[made.valves[valve]]]
+        behind, ahead = (
+            state.head[made.valve_rows[valve]],
+            state.head[made.problem.start[made.valves[valve]]],
+        )
         setting, flow = made.valve_heads[valve], state.flow[made.valves[valve]]
         if self.shut[valve]:
-            return max(0.0, min(setting - behind, ahead - behind) - VALVE_TOLERANCE)
+            return float(max(0.0, min(setting - behind, ahead - behind) - VALVE_TOLERANCE))
         if self.holds[valve]:
             nothing = -FLOW_TOLERANCE * float(np.abs(state.flow).max(initial=0.0)) - 1e-15
             backwards = STEEP * float(nothing - flow)
             own, _ = made.problem.law(np.maximum(state.flow, 0.0))
             least = float(own[made.valves[valve]]) - VALVE_TOLERANCE
             return max(0.0, least - float(state.extra[valve]), backwards)
-        return max(0.0, behind - setting - VALVE_TOLERANCE)
+        return float(max(0.0, behind - setting - VALVE_TOLERANCE))
 
 
 def _with_valves(assembled: Assembled, problem: Problem, begin: State) -> State:

@@ -13,7 +13,7 @@ All but the devices are odd in the flow and add up exactly in series, which is w
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
 import numpy as np
@@ -114,10 +114,13 @@ class Links:
     def device_drop(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Return the drop of the devices in each link [Pa] and its slope (0 where there are none)."""
         value, slope = np.zeros(len(self)), np.zeros(len(self))
+        places: dict[int, tuple[DeviceLaw, list[int]]] = {}
         for link, law in self.devices:
-            drop, rise = law.drop(flow[link : link + 1])
-            value[link] += drop[0]
-            slope[link] += rise[0]
+            places.setdefault(id(law), (law, []))[1].append(link)
+        for law, rows in places.values():
+            drop, rise = law.drop(flow[rows])
+            np.add.at(value, rows, drop)
+            np.add.at(slope, rows, rise)
         return value, slope
 
     def loss(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -138,6 +141,31 @@ class Links:
         mark = self.one_way.copy()
         mark[[link for link, _ in self.devices]] = True
         return mark
+
+    def copies(self, count: int, index: IntArray, size: int) -> Links:
+        """Return ``count`` copies side by side: node row r of copy i becomes index[r] + i × size."""
+        shift = np.repeat(np.arange(count), len(self))
+        terms = self.terms
+        if terms is not None:
+            step = np.repeat(np.arange(count) * len(self), len(terms.link))
+            terms = replace(
+                terms,
+                link=np.tile(terms.link, count) + step,
+                sort=np.tile(terms.sort, count),
+                length=np.tile(terms.length, count),
+            )
+        return Links(
+            np.tile(index[self.start], count) + shift * size,
+            np.tile(index[self.end], count) + shift * size,
+            np.tile(self.resistance, count),
+            self.exponent,
+            np.tile(self.minor, count),
+            np.tile(self.least, count),
+            np.tile(self.area, count),
+            np.tile(self.one_way, count),
+            tuple((link + i * len(self), law) for i in range(count) for link, law in self.devices),
+            terms,
+        )
 
     def take(self, rows: IntArray) -> Links:
         """Return the links ``rows``, in this order."""

@@ -1,8 +1,14 @@
 """The linear system of the nodes: one symmetric matrix pattern, refilled and factorised many times.
 
-The matrix is A·G·Aᵀ with A the incidence of the links on the free nodes and G their conductances.
-Small systems are dense; larger ones keep one fill-reducing order, found with the first factorisation,
-so that later ones only refill the values.
+The matrix is A·G·Aᵀ with A the incidence of the links on the free nodes and G their conductances: symmetric
+and positive definite. Small systems are dense; long narrow ones (mains with lines between them) are
+brought into a narrow band [1]_ and factorised by Cholesky; the rest keep one fill-reducing order,
+found with the first sparse factorisation, so that later ones only refill the values.
+
+References
+----------
+.. [1] Cuthill, E. and McKee, J. (1969). Reducing the bandwidth of sparse symmetric matrices. Proc. 24th
+   National Conference of the ACM, 157–172.
 """
 
 from __future__ import annotations
@@ -17,6 +23,8 @@ from supplycheck.network.records import FloatArray, IntArray
 
 DENSE_BELOW: Final = 48
 """Number of free nodes below which the matrix is dense."""
+NARROW: Final = 24
+"""Greatest half bandwidth at which the band is quicker than the sparse factorisation."""
 
 Solver = Callable[[FloatArray], FloatArray]
 
@@ -26,48 +34,111 @@ class Nodal:
 
     def __init__(self, start: IntArray, end: IntArray, free: int) -> None:
         self.free = free
-        self._links = len(start)
-        links = np.arange(self._links)
+        links = np.arange(len(start))
         s_free, e_free = start < free, end < free
         both = s_free & e_free
-        self._rows = np.concatenate([start[s_free], end[e_free], start[both], end[both]])
-        self._cols = np.concatenate([start[s_free], end[e_free], end[both], start[both]])
-        self._source = np.concatenate([links[s_free], links[e_free], links[both], links[both]])
-        diagonals = int(s_free.sum() + e_free.sum())
-        self._weight = np.ones(len(self._rows))
-        self._weight[diagonals:] = -1.0
-        self._order: IntArray | None = None
-        self._ordered: Any = None
+        self._diagonals = int(s_free.sum() + e_free.sum())
+        self._rows = np.concatenate([start[s_free], end[e_free], start[both]])
+        self._cols = np.concatenate([start[s_free], end[e_free], end[both]])
+        self._source = np.concatenate([links[s_free], links[e_free], links[both]])
+        self._sign = np.ones(len(self._rows))
+        self._sign[self._diagonals :] = -1.0
+        self._band: _Band | None = None
+        self._sparse: _Sparse | None = None
 
-    def factorise(self, conductance: FloatArray, ground: IntArray | None = None) -> Solver:
-        """Return the solver of the matrix for ``conductance`` (m,); ``ground`` ties floating nodes down."""
-        entries = self._weight * conductance[self._source]
+    def factorise(self, conductance: FloatArray, ground: IntArray) -> Solver:
+        """Return the solver of the matrix for ``conductance`` (m,); ``ground`` ties floating nodes down.
+
+        Raises
+        ------
+        LinAlgError, RuntimeError
+            Where the matrix is singular.
+        """
+        entries = self._sign * conductance[self._source]
+        tie = float(np.median(conductance)) if len(ground) else 0.0
         if self.free < DENSE_BELOW:
-            return self._dense(entries, ground)
-        return self._sparse(entries, ground)
+            return self._dense(entries, ground, tie)
+        if self._sparse is None:
+            self._band = self._band or _Band(self._rows, self._cols, self._diagonals, self.free)
+            if self._band.half <= NARROW:
+                solver = self._band.factorise(entries, ground, tie)
+                if solver is not None:
+                    return solver
+            self._sparse = _Sparse(self._rows, self._cols, self._diagonals, self.free)
+        return self._sparse.factorise(entries, ground, tie)
 
-    def _dense(self, entries: FloatArray, ground: IntArray | None) -> Solver:
+    def _dense(self, entries: FloatArray, ground: IntArray, tie: float) -> Solver:
         n = self.free
-        flat = sums(self._rows * n + self._cols, entries, n * n)
-        matrix = flat.reshape(n, n)
-        if ground is not None and len(ground):
-            matrix[ground, ground] += _tie(entries)
+        half = sums(self._rows * n + self._cols, entries, n * n).reshape(n, n)
+        diagonal = half.diagonal().copy()
+        diagonal[ground] += tie
+        matrix = half + half.T
+        np.fill_diagonal(matrix, diagonal)
         return lambda rhs: np.asarray(np.linalg.solve(matrix, rhs), dtype=np.float64)
 
-    def _sparse(self, entries: FloatArray, ground: IntArray | None) -> Solver:
+
+class _Band:
+    """The upper half of the matrix as a band, in the order of Cuthill and McKee."""
+
+    def __init__(self, rows: IntArray, cols: IntArray, diagonals: int, free: int) -> None:
+        from scipy.sparse import csr_array
+        from scipy.sparse.csgraph import reverse_cuthill_mckee
+
+        r, c = rows[diagonals:], cols[diagonals:]
+        ones = np.ones(2 * len(r), dtype=np.int8)
+        graph = csr_array((ones, (np.concatenate([r, c]), np.concatenate([c, r]))), (free, free))
+        self.order = np.asarray(reverse_cuthill_mckee(graph, symmetric_mode=True), dtype=np.int64)
+        self.place = np.empty(free, dtype=np.int64)
+        self.place[self.order] = np.arange(free)
+        a, b = self.place[rows], self.place[cols]
+        low, high = np.minimum(a, b), np.maximum(a, b)
+        self.half = int((high - low).max(initial=0))
+        self.free = free
+        self._flat = high * (self.half + 1) + self.half + low - high
+
+    def factorise(self, entries: FloatArray, ground: IntArray, tie: float) -> Solver | None:
+        """Return the solver, or ``None`` where rounding spoils the definiteness."""
+        from scipy.linalg.lapack import dpbtrf, dpbtrs
+
+        width = self.half + 1
+        band = sums(self._flat, entries, width * self.free).reshape(self.free, width)
+        band[self.place[ground], self.half] += tie
+        factor, info = dpbtrf(band.T, lower=0, overwrite_ab=1)
+        if info != 0:
+            return None
+
+        def solve(rhs: FloatArray) -> FloatArray:
+            answer, _ = dpbtrs(factor, rhs[self.order], lower=0)
+            return np.asarray(answer[self.place])
+
+        return solve
+
+
+class _Sparse:
+    """The whole matrix in compressed columns, in the order that the first factorisation finds."""
+
+    def __init__(self, rows: IntArray, cols: IntArray, diagonals: int, free: int) -> None:
+        self.free = free
+        self._rows = np.concatenate([rows, cols[diagonals:]])
+        self._cols = np.concatenate([cols, rows[diagonals:]])
+        self._diagonals = diagonals
+        self._order: IntArray | None = None
+        self._pattern = self._columns(np.arange(free))
+
+    def factorise(self, entries: FloatArray, ground: IntArray, tie: float) -> Solver:
         from scipy.sparse.linalg import splu
 
-        options = {"SymmetricMode": True}
-        if self._order is None:
-            plain = self._pattern(np.arange(self.free))
-            self._fill(plain, entries, ground)
-            first = splu(plain[0], permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.0, options=options)
-            self._order = np.asarray(first.perm_c, dtype=np.int64)
-            self._ordered = self._pattern(self._order)
-            return lambda rhs: np.asarray(first.solve(rhs))
-        self._fill(self._ordered, entries, ground)
+        matrix, slot, diagonal = self._pattern
+        whole = np.concatenate([entries, entries[self._diagonals :]])
+        matrix.data[:] = sums(slot, whole, len(matrix.data))
+        matrix.data[diagonal[ground]] += tie
+        how = "MMD_AT_PLUS_A" if self._order is None else "NATURAL"
+        factor = splu(matrix, permc_spec=how, diag_pivot_thresh=0.0, options={"SymmetricMode": True})
         order = self._order
-        factor = splu(self._ordered[0], permc_spec="NATURAL", diag_pivot_thresh=0.0, options=options)
+        if order is None:
+            self._order = np.asarray(factor.perm_c, dtype=np.int64)
+            self._pattern = self._columns(self._order)
+            return lambda rhs: np.asarray(factor.solve(rhs))
 
         def solve(rhs: FloatArray) -> FloatArray:
             moved = np.empty_like(rhs)
@@ -76,25 +147,23 @@ class Nodal:
 
         return solve
 
-    def _pattern(self, order: IntArray) -> tuple[Any, IntArray, IntArray]:
+    def _columns(self, order: IntArray) -> tuple[Any, IntArray, IntArray]:
+        """Return the empty matrix, the slot of each entry and of each diagonal in its values."""
         from scipy.sparse import csc_array
 
         n = self.free
-        rows, cols = order[self._rows], order[self._cols]
-        key, slot = np.unique(cols * n + rows, return_inverse=True)
-        pointers = np.searchsorted(key // n, np.arange(n + 1))
-        matrix = csc_array(
-            (np.zeros(len(key)), (key % n).astype(np.int32), pointers.astype(np.int32)), (n, n)
-        )
-        diagonal = np.searchsorted(key, order * n + order)
-        return matrix, slot, diagonal
-
-    def _fill(self, pattern: Any, entries: FloatArray, ground: IntArray | None) -> None:
-        matrix, slot, diagonal = pattern
-        matrix.data[:] = np.bincount(slot, entries, minlength=len(matrix.data))
-        if ground is not None and len(ground):
-            matrix.data[diagonal[ground]] += _tie(entries)
+        key, slot = _slots(order[self._cols] * n + order[self._rows])
+        pointers = np.searchsorted(key // n, np.arange(n + 1)).astype(np.int32)
+        matrix = csc_array((np.zeros(len(key)), (key % n).astype(np.int32), pointers), (n, n))
+        return matrix, slot, np.searchsorted(key, order * (n + 1))
 
 
-def _tie(entries: FloatArray) -> float:
-    return float(np.median(np.abs(entries)))
+def _slots(key: IntArray) -> tuple[IntArray, IntArray]:
+    """Return the different keys in order, and for each key its place among them."""
+    order = np.argsort(key)
+    ranked = key[order]
+    first = np.ones(len(key), dtype=bool)
+    first[1:] = ranked[1:] != ranked[:-1]
+    slot = np.empty(len(key), dtype=np.int64)
+    slot[order] = np.cumsum(first) - 1
+    return ranked[first], slot

@@ -116,12 +116,13 @@ def _chains(links: Links, inner: BoolArray) -> Reduced:
     ends = np.concatenate([links.start, links.end])
     owner = np.tile(np.arange(count), 2)
     at_inner = np.flatnonzero(inner[ends])
-    pairs = owner[at_inner[np.argsort(ends[at_inner], kind="stable")]].reshape(-1, 2)
+    pairs = owner[at_inner[np.argsort(ends[at_inner])]].reshape(-1, 2)
     graph = csr_array((np.ones(len(pairs), dtype=np.int8), (pairs[:, 0], pairs[:, 1])), (count, count))
     chains, label = connected_components(graph, directed=False)
+    label = label.astype(np.int64)
     # the two outer ends of each chain; a ring of inner nodes has none and carries nothing
     outer = np.flatnonzero(~inner[ends])
-    outer = outer[np.argsort(label[owner[outer]], kind="stable")]
+    outer = outer[np.argsort(label[owner[outer]] * (2 * count) + outer)]
     closed_off = np.bincount(label[owner[outer]], minlength=chains) == 0
     first, last = outer[::2], outer[1::2]
     sign = _directions(links, inner, pairs, owner[first], ends[first])
