@@ -9,6 +9,7 @@ from supplycheck.errors import SupplyCheckError
 from supplycheck.findings import Fault, Place
 
 SHOWN = 60
+MOST_SHOWN = 500
 
 
 class ProjectFaultsError(SupplyCheckError):
@@ -18,7 +19,9 @@ class ProjectFaultsError(SupplyCheckError):
         self.faults = tuple(faults)
         count = len(self.faults)
         head = f"the project has {count} fault{'s' if count != 1 else ''}"
-        super().__init__("\n".join([head, *(f"  {fault}" for fault in self.faults)]))
+        lines = [f"  {fault}" for fault in self.faults[:MOST_SHOWN]]
+        lines += [f"  … and {count - MOST_SHOWN} more"] if count > MOST_SHOWN else []
+        super().__init__("\n".join([head, *lines]))
 
 
 def quoted(value: object) -> str:

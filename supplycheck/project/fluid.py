@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Final
 
 from supplycheck import catalogue
 from supplycheck.errors import DomainError
 from supplycheck.hydraulics.water import water_density, water_viscosity
-from supplycheck.model import Fluid
+from supplycheck.model import Fluid, FrictionLaw
 from supplycheck.project.criteria import Standard
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList
@@ -20,46 +21,56 @@ ROOM: Final = 293.15
 """Temperature [K] at which the properties of water are taken where none is given: 20 °C."""
 
 
-def _water(table: FluidTable | None, units: UnitSet, notes: Notes) -> tuple[float, float, float]:
-    """Return temperature [K], density [kg/m³] and viscosity [Pa·s] of water."""
+def _water(
+    table: FluidTable | None, units: UnitSet, standard: Standard | None, notes: Notes, *, by_viscosity: bool
+) -> Fluid:
+    """Return water; raises :class:`DomainError` outside 0 to 100 °C."""
     given = table.temperature.si(units) if table and table.temperature else None
     temperature = ROOM if given is None else given
     density = float(water_density(temperature=temperature)[0])
     viscosity = float(water_viscosity(temperature=temperature)[0])
-    if given is None:
-        notes.add(
-            "fluid.temperature", units.text(temperature, "temperature"), "assumed", "room temperature"
-        )
-    return temperature, density, viscosity
+    own_density = table.density.si(units) if table and table.density else None
+    own_viscosity = table.viscosity.si(units) if table and table.viscosity else None
+    if given is None and by_viscosity and (own_density is None or own_viscosity is None):
+        text = units.text(temperature, "temperature")
+        notes.add("fluid.temperature", text, "assumed", "room temperature")
+    if own_density is None:
+        row = catalogue.rule("unit weight of water", standard.name if standard else "NFPA 13")
+        text = f"{units.text(row.value, 'gradient')}, as the standard rounds it"
+        notes.add("fluid: unit weight", text, "catalogue", row.source)
+        weight = row.value
+    else:
+        weight = own_density * GRAVITY
+    return Fluid(
+        name="water",
+        density=density if own_density is None else own_density,
+        viscosity=viscosity if own_viscosity is None else own_viscosity,
+        unit_weight=weight,
+        temperature=temperature,
+        source=(table.source if table else "") or "Kell (1975), IAPWS SR6-08",
+    )
 
 
 def read_fluid(
-    sections: Sections, standard: Standard | None, notes: Notes, faults: FaultList
+    sections: Sections,
+    standard: Standard | None,
+    laws: Sequence[FrictionLaw | None],
+    notes: Notes,
+    faults: FaultList,
 ) -> Fluid | None:
     """Return the fluid; ``None`` with faults noted."""
     table = sections.fluid
     units = units_in(table, UNIT_SETS[sections.units]) if table else UNIT_SETS[sections.units]
     name = table.name.strip() if table else "water"
     if name.casefold() == "water":
+        by_viscosity = any(law is not None and law.family == "darcy-weisbach" for law in laws)
         try:
-            temperature, density, viscosity = _water(table, units, notes)
+            return _water(table, units, standard, notes, by_viscosity=by_viscosity)
         except DomainError as caught:
             faults.add(
                 sections.place("fluid.temperature"), str(caught), allowed="0 to 100 °C (32 to 212 °F)"
             )
             return None
-        row = catalogue.rule("unit weight of water", standard.name if standard else "NFPA 13")
-        notes.add(
-            "fluid: unit weight",
-            f"{units.text(row.value, 'gradient')}, as the standard rounds it",
-            "catalogue",
-            row.source,
-        )
-        density = table.density.si(units) if table and table.density else density
-        viscosity = table.viscosity.si(units) if table and table.viscosity else viscosity
-        weight = density * GRAVITY if table and table.density else row.value
-        own = (table.source if table else "") or "Kell (1975), IAPWS SR6-08"
-        return Fluid("water", density, viscosity, weight, temperature, own)
     for key in ("density", "viscosity"):
         if table is not None and getattr(table, key) is None:
             faults.add(

@@ -229,7 +229,7 @@ class _PipeReader:
     def _end(self, row: Row, column: str) -> str | None:
         tag = _tag(row, column, self.faults)
         if tag is not None and tag not in self.nodes:
-            close = near(tag, self.nodes) if len(self.nodes) < 2000 else ""
+            close = near(tag, self.nodes) if len(self.nodes) < 2000 and len(self.faults) < 20 else ""
             self.faults.add(
                 row.place(column),
                 "there is no such node",
@@ -369,6 +369,8 @@ def read_network(
     pipe_reader = _PipeReader(pipe_table, units, sections, by_tag, faults)
     pipes = [pipe for pipe in map(pipe_reader.pipe, pipe_table.rows) if pipe is not None]
     _without_twins([(pipe.tag, pipe.place) for pipe in pipes], "pipe", faults)
+    if "fittings" not in network.model_fields_set:
+        notes.add("network.fittings", "as written", "assumed", "only the fittings in the table count")
     if pipe_reader.from_coordinates:
         notes.add(
             "network.pipes.length",

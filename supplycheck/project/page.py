@@ -35,6 +35,40 @@ tables in CSV or XLSX. `supplycheck new DIR` writes a commented starter.
 - All faults of a project are shown at once, each with file, key or row, value found, what is allowed and
   what to do. An unknown key is a fault.
 
+## What a layout is made of
+
+The cross main runs along y at x = 0, the lines along x; line 1 is the most remote. Other tables name nodes
+and pipes by these tags; a pipe is named by its two nodes from the supply outward, `M2-M1`.
+
+| tag | point |
+|---|---|
+| `L3.4` | head 4 of line 3, counted along x (`FL3.4` on the far main of a loop) |
+| `L3.4T` | the point on the line from which the drop or sprig of that head leaves |
+| `M3`, `N3` | line 3 at the cross main, and at the top of its riser nipple |
+| `FM3`, `FN3` | the same at the far main |
+| `MC` | where a feed main joins between two lines |
+| `TOR`, `BOR` | top and base of the riser |
+| `S` | the supply: always the last point |
+
+## Fittings from geometry
+
+Layouts, and tables with `fittings = "from geometry"`, are charged what follows from the coordinates; each
+fitting is listed as inferred, with its node.
+
+- Where two pipes meet, a turn of 22.5° to 67.5° is a 45° elbow and a sharper one a 90° elbow, charged to
+  the smaller pipe, between equal ones to the one farther from the supply.
+- Where three or more meet, or two and an outlet, it is a tee or cross. Where all water for the point comes
+  through one pipe, each other pipe that does not lead straight on is charged the tee at its own size: the
+  tee on top of a riser nipple goes to the branch lines, that at its bottom to the riser nipple, that of a
+  feed main to the cross main. In a loop, where water may come from more than one side, the straight run is
+  not charged and each leg is charged the tee at its own size.
+- The fitting into which a head screws is not charged, nor a change of size on a straight run.
+- A piece of a layout with its own `fittings` is charged those and nothing from geometry. In a table, those
+  written on a pipe are added to those from geometry.
+
+Equivalent lengths are those of the standard at C 120, times (C/120)^1.85 and, under NFPA 13, times
+(bore / schedule 40 bore)^4.87.
+
 ## Tables of nodes and pipes
 
 CSV (separated by comma, semicolon or tab; UTF-8, with or without byte-order mark) or one sheet of a

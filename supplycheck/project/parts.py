@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 from itertools import pairwise
@@ -216,14 +215,10 @@ def _curve(
     table: DeviceTable, units: UnitSet, place: Place, faults: FaultList
 ) -> tuple[tuple[float, ...], tuple[float, ...]]:
     points = table.curve or []
-    flows = tuple(units.to_si(point[0], "flow") for point in points)
-    values = tuple(units.to_si(point[1], "pressure") for point in points)
-    if any(not math.isfinite(number) or number < 0 for point in points for number in point):
-        faults.add(
-            place,
-            "holds a number that is negative or not finite",
-            allowed="points [flow, pressure] from zero up",
-        )
+    flows = tuple(flow.si(units) for flow, _ in points)
+    values = tuple(pressure.si(units) for _, pressure in points)
+    if points and len(points) < 2:
+        faults.add(place, "has one point", allowed="two points or more; a fixed loss is written loss = …")
     elif any(after <= before for before, after in pairwise(flows)):
         faults.add(
             place, "flows do not rise from point to point", allowed="each flow once, the smallest first"

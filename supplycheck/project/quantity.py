@@ -231,6 +231,44 @@ class Rule:
         }
 
 
+@dataclass(frozen=True, slots=True)
+class _CurveRule:
+    """Reads points ``[flow, pressure]``, each number plain or with its unit."""
+
+    def read(self, value: object) -> list[tuple[Written, Written]]:
+        """Return the points; raises the pydantic error that carries the message."""
+        allowed = "a list of points [flow, pressure], for example [[0, 2], [500, 6]]"
+        if not isinstance(value, list) or not value:
+            raise _custom("is not a curve", value, allowed)
+        points = []
+        for number, point in enumerate(value, start=1):
+            if not isinstance(point, list) or len(point) != 2:
+                raise _custom(f"point {number} is not a pair of numbers", point, allowed)
+            try:
+                flow = read_number(point[0], "flow", "zero or more")
+                pressure = read_number(point[1], "pressure", "zero or more")
+            except NumberError as fault:
+                raise _custom(f"in point {number} a number {fault.problem}", point, fault.allowed) from None
+            points.append((flow, pressure))
+        return points
+
+    def __get_pydantic_core_schema__(self, source: Any, handler: GetCoreSchemaHandler) -> CoreSchema:
+        return core_schema.no_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(
+        self, schema: CoreSchema, handler: GetJsonSchemaHandler
+    ) -> dict[str, Any]:
+        number = {"type": ["number", "string"]}
+        point = {"type": "array", "items": number, "minItems": 2, "maxItems": 2}
+        units = {unit.name: f"[{unit.symbol('flow')}, {unit.symbol('pressure')}]" for unit in (US, METRIC)}
+        return {"type": "array", "items": point, "minItems": 1, "quantity": "points", "unit": units}
+
+
+def _custom(problem: str, value: object, allowed: str) -> PydanticCustomError:
+    context = {"problem": problem, "found": quoted(value), "allowed": allowed, "remedy": ""}
+    return PydanticCustomError("number", "{problem}", context)
+
+
 class _DateRule:
     """Reads a TOML date or a text in ISO form."""
 
@@ -264,6 +302,7 @@ class _DateRule:
 
 
 Date = Annotated[dt.date, _DateRule()]
+LossCurve = Annotated[list[tuple[Written, Written]], _CurveRule()]
 Length = Annotated[Written, Rule("length")]
 LengthOrZero = Annotated[Written, Rule("length", "zero or more")]
 Elevation = Annotated[Written, Rule("length", "any")]

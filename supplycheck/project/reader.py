@@ -77,13 +77,11 @@ def _parse(text: str, name: str, faults: FaultList) -> dict[str, Any] | None:
     return None
 
 
-def _facts(sections: Sections, standard: Standard, notes: Notes) -> ProjectFacts | None:
+def _facts(sections: Sections, standard: Standard) -> ProjectFacts | None:
     table = sections.project
     if table is None:
         return None
     paper = table.paper or ("letter" if sections.units == "us" else "a4")
-    if table.paper is None:
-        notes.add("project.paper", paper, "assumed", "by the units of the project")
     return ProjectFacts(
         title=table.title,
         site=table.site,
@@ -254,8 +252,8 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
         supply = SupplyReader(sections, sections.supply, tags, notes, faults).read()
     hose = _hose(sections, row, supply, tags, notes, faults) if supply else None
     scenarios = _scenarios(sections, tags, faults)
-    fluid = read_fluid(sections, standard, notes, faults)
-    facts = _facts(sections, standard, notes) if standard else None
+    fluid = read_fluid(sections, standard, laws, notes, faults)
+    facts = _facts(sections, standard) if standard else None
     faults.stop()
     if (
         facts is None

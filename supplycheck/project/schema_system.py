@@ -12,6 +12,7 @@ from supplycheck.project.quantity import (
     KFactor,
     Length,
     LengthOrZero,
+    LossCurve,
     Pressure,
     PressureOrZero,
     Ratio,
@@ -87,7 +88,7 @@ class CatalogueFitting(UnitTable):
     nominal: NominalSize
     """Nominal size."""
     length: LengthOrZero
-    """Equivalent length at C 120 and the reference bore."""
+    """Equivalent length at C 120 in pipe of this size; it is corrected for C, not for the bore."""
     source: Text
     """Where the number comes from."""
 
@@ -262,10 +263,7 @@ class DeviceTable(UnitTable):
     """What it is, for the report."""
     kind: Literal["loss", "check valve", "pressure-reducing valve", "pump"] = "loss"
     """What it does."""
-    curve: (
-        Annotated[list[Annotated[list[float], Field(min_length=2, max_length=2)]], Field(min_length=2)]
-        | None
-    ) = None
+    curve: LossCurve | None = None
     """Points `[flow, pressure]` of its loss (of its gain for a pump), by rising flow."""
     loss: PressureOrZero | None = None
     """A fixed loss, where no curve is known."""

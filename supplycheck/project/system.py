@@ -228,6 +228,19 @@ def _note_bores(
         notes.add(f"pipe.{name}: bores", text, "catalogue", "; ".join(sources.get(name, ())))
 
 
+def _note_idle_devices(drafts: Sequence[DraftPipe], finisher: Finisher, faults: FaultList) -> None:
+    """Note devices that stand in no pipe: their loss would be forgotten."""
+    used = {tag for draft in drafts for tag in draft.devices}
+    for tag in finisher.devices:
+        if tag not in used:
+            faults.add(
+                finisher.sections.place(f"device.{tag}"),
+                "the device is in no pipe, so that its loss does not count",
+                allowed="its name in devices of a pipe",
+                remedy="name it where it stands, or take it out",
+            )
+
+
 def finish(
     draft: DraftSystem,
     finisher: Finisher,
@@ -250,6 +263,8 @@ def finish(
         finisher.pipe(pipe, bore, nominal, charges.get(number, ()))
         for number, (pipe, (bore, nominal)) in enumerate(zip(draft.pipes, sizes, strict=True))
     ]
+    if draft.complete:
+        _note_idle_devices(draft.pipes, finisher, faults)
     if not faults:
         _note_inferred(pipes, notes)
         _note_bores(draft.pipes, pipes, finisher.sources, UNIT_SETS[finisher.sections.units], notes)

@@ -22,9 +22,6 @@ k_factor = 5.6
 minimum_pressure = 7
 [pipe.lines]
 material = "steel schedule 40"
-[device.backflow]
-curve = [[0, 2], [500, 6]]
-source = "data sheet"
 [supply.flow_test]
 static = 72
 residual = 60
@@ -35,6 +32,9 @@ gauge_elevation = 0
 rule = "none"
 """
 LAYOUT = """\
+[device.backflow]
+curve = [[0, 2], [500, 6]]
+source = "data sheet"
 [layout]
 lines = 3
 line_spacing = 10

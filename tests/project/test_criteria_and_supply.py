@@ -172,7 +172,7 @@ def test_what_is_not_given_is_listed_with_its_source(tmp_path: Path) -> None:
         "hose.outside_node",
         "supply.compare_at",
         "layout: area of each head",
-        "fluid.temperature",
+        "fluid: unit weight",
     }
     assert all(entry.source and entry.value and entry.origin != "given" for entry in project.assumptions)
 

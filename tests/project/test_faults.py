@@ -73,6 +73,11 @@ FLOW_TEST = "supply.flow_test"
         ('sprinkler = "A"', 'sprinkler = "B"', "layout.sprinkler", "no such sprinkler type", "allowed: A"),
         ("curve = [[0, 2], [500, 6]]\n", "", "device.backflow", "has no loss", "equivalent_length"),
         ("[[0, 2], [500, 6]]", "[[500, 2], [0, 6]]", "device.backflow.curve", "do not rise", ""),
+        ("[[0, 2], [500, 6]]", "[[0, 2]]", "device.backflow.curve", "one point", "loss = "),
+        ("[[0, 2], [500, 6]]", "[[0, 2], [500]]", "device.backflow.curve", "point 2 is not a pair", ""),
+        ("[[0, 2], [500, 6]]", "[[0, 2], [500, nan]]", "device.backflow.curve", "finite", "in point 2"),
+        ("[[0, 2], [500, 6]]", '[["0 psi", 2]]', "device.backflow.curve", "the unit psi", "gpm"),
+        (', devices = ["backflow"]', "", "device.backflow", "in no pipe", "devices"),
         ('source = "data sheet"\n', "", "device.backflow.source", "is missing", ""),
         (
             "bottom_elevation = 1,",
