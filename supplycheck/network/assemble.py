@@ -243,12 +243,9 @@ def _law(links: Links, sources: Sequence[SourceLaw], case: Case) -> Law:
 
 def _guess(links: Links, case: Case, piped: int, static: FloatArray) -> FloatArray:
     """Return a first guess of the flows: a usual velocity in pipes, outlets at what they need."""
-    drive = np.full(len(case.outlets), max(0.3 * float(static.max()), 5e4))
-    needed = dict(zip(case.floor_rows.tolist(), case.floors.tolist(), strict=True))
-    drive = np.array(
-        [max(needed.get(row, p), 1e3) for row, p in zip(case.outlets.tolist(), drive, strict=True)]
-    )
-    out = case.k_factor * np.sqrt(drive)
+    drive = np.full(len(case.outflow), max(0.3 * float(static.max()), 5e4))
+    drive[case.floor_rows] = case.floors
+    out = case.k_factor * np.sqrt(np.maximum(drive[case.outlets], 1e3))
     total = float(out.sum() + case.outflow.sum())
     inflow = np.full(piped, max(total, 1e-4) / max(piped, 1))
     return np.concatenate([np.minimum(links.area * GUESS_VELOCITY, max(total, 1e-5)), inflow, out])

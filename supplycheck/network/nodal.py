@@ -23,7 +23,7 @@ from supplycheck.network.records import FloatArray, IntArray
 
 DENSE_BELOW: Final = 48
 """Number of free nodes below which the matrix is dense."""
-NARROW: Final = 24
+NARROW: Final = 16
 """Greatest half bandwidth at which the band is quicker than the sparse factorisation."""
 
 Solver = Callable[[FloatArray], FloatArray]

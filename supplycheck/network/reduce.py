@@ -16,6 +16,7 @@ References
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Final
 
 import numpy as np
 from scipy.sparse import csr_array
@@ -23,6 +24,9 @@ from scipy.sparse.csgraph import breadth_first_order, connected_components
 
 from supplycheck.network.links import BoolArray, Links, sums
 from supplycheck.network.records import FloatArray, IntArray
+
+FEW: Final = 50
+"""Chains are merged where more than one node in this many lies inside one."""
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -105,7 +109,7 @@ def _merge_chains(whole: Reduced, keep: BoolArray) -> Reduced:
     fixed[links.start[marked]] = True
     fixed[links.end[marked]] = True
     inner = (_degree(links, nodes) == 2) & ~fixed
-    if not inner.any():
+    if int(inner.sum()) * FEW <= len(links):
         return whole
     return whole.then(_chains(links, inner))
 
