@@ -13,6 +13,10 @@ from supplycheck.report.wrapping import Ruler, wrap
 
 PAD: Final = 3.0
 LEAST: Final = 24.0
+TOGETHER: Final = 6
+"""Tables of so few rows are not broken over pages."""
+
+_Laid = tuple[int, Row, list[list[str]], list[str]]
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,23 +40,34 @@ def put_table(sheets: Sheets, table: Table) -> None:
     grid = _grid(table, sheets.room, sheets.ruler)
     head = _header_lines(table.columns, grid, sheets.ruler)
     height = _header_height(head, grid)
-    sheets.need(height + 3.2 * grid.leading + (14 if table.title else 0))
+    laid = [_laid(number, row, grid, sheets.ruler) for number, row in enumerate(table.rows)]
+    rows = sum(_row_height(one, grid) for one in laid) if len(laid) <= TOGETHER else 3.2 * grid.leading
+    sheets.need(height + rows + (14 if table.title else 0))
     _title(sheets, table.title)
     _header(sheets, table.columns, head, grid)
     if not table.rows:
         sheets.text(table.empty, grid.size, colour=SLATE, indent=PAD)
-    for number, row in enumerate(table.rows):
-        lines = [
-            wrap(cell, width - 2 * PAD, grid.size, sheets.ruler, bold=row.strong)
-            for cell, width in zip(row.cells, grid.widths, strict=True)
-        ]
-        notes = wrap(row.note, grid.total - 18, grid.size - 0.4, sheets.ruler) if row.note else []
-        _row(sheets, table, head, grid, (number, row, lines, notes))
+    for one in laid:
+        _row(sheets, table, head, grid, one)
     sheets.put(Line(((sheets.left, sheets.y), (sheets.left + grid.total, sheets.y)), SLATE, 0.6))
     sheets.y -= 4
     if table.note:
         sheets.text(table.note, 6.6, colour=SLATE)
     sheets.y -= 8
+
+
+def _laid(number: int, row: Row, grid: _Grid, ruler: Ruler) -> _Laid:
+    lines = [
+        wrap(cell, width - 2 * PAD, grid.size, ruler, bold=row.strong)
+        for cell, width in zip(row.cells, grid.widths, strict=True)
+    ]
+    notes = wrap(row.note, grid.total - 18, grid.size - 0.4, ruler) if row.note else []
+    return number, row, lines, notes
+
+
+def _row_height(laid: _Laid, grid: _Grid) -> float:
+    _, _, lines, notes = laid
+    return (max(len(cell) for cell in lines) + len(notes)) * grid.leading + 3.4
 
 
 def _title(sheets: Sheets, title: str) -> None:
@@ -166,9 +181,6 @@ def _cell(
     if right:
         return Label(x + width - PAD, y, text, size, "end", bold, colour)
     return Label(x + PAD, y, text, size, "start", bold, colour)
-
-
-_Laid = tuple[int, Row, list[list[str]], list[str]]
 
 
 def _row(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: _Laid) -> None:

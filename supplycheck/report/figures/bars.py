@@ -58,7 +58,8 @@ def pressure_bars(
         y -= _ROW
     at = x(result.supply.available_pressure)
     items.append(Line(((at, bottom), (at, height - 14)), INK, 1.3, (5.0, 2.0)))
-    text = f"available {units.text(result.supply.available_pressure, 'pressure')}"
+    available = units.text(result.supply.available_pressure, "pressure")
+    text = f"available {available} at {short(result.demand.node, 90, 6.6)}"
     half = text_width(text, 6.6) / 2
     items.append(Label(min(at, width - half), height - 10, text, 6.6, "middle", True))
     return Drawing(width, height, (*items, *_key(width)), "pressure needed along the path")

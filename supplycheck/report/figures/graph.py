@@ -88,7 +88,7 @@ def _frame(
     flow = max((q for q, _ in every), default=0.0)
     if flow <= 0:
         return None
-    steps = round_steps(max(p for _, p in every) * 1.06, 10)
+    steps = round_steps(max(p for _, p in every) * 1.06, max(4, round(height / 30)))
     lowest = min(p for _, p in every)
     if lowest < 0:
         step = steps[1]

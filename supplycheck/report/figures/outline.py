@@ -72,13 +72,22 @@ def cells_of_heads(nodes: Iterable[NodeRow]) -> list[Cell]:
         if not node.in_design_area:
             continue
         half = math.sqrt(node.area) / 2 if node.area else 1.5
-        around = near.of(x, y)
-        near_x = [abs(px - x) for px, py in around if abs(px - x) > 0.05 and abs(px - x) >= 4 * abs(py - y)]
-        near_y = [abs(py - y) for px, py in around if abs(py - y) > 0.05 and abs(py - y) >= 4 * abs(px - x)]
-        across = min(near_x, default=2 * half) / 2
-        along = min(near_y, default=2 * half) / 2
-        cells.append((x - across, y - along, x + across, y + along))
+        beside = [(px - x, py - y) for px, py in near.of(x, y)]
+        left, right = _halfway([dx for dx, dy in beside if abs(dx) >= 4 * abs(dy)], half)
+        low, high = _halfway([dy for dx, dy in beside if abs(dy) >= 4 * abs(dx)], half)
+        cells.append((x - left, y - low, x + right, y + high))
     return cells
+
+
+def _halfway(distances: list[float], otherwise: float) -> tuple[float, float]:
+    """Return half the way to the nearest neighbour before and after; one side stands in for the other."""
+    before = min((-one for one in distances if one < -0.05), default=None)
+    after = min((one for one in distances if one > 0.05), default=None)
+    if before is None and after is None:
+        return otherwise, otherwise
+    first = before if before is not None else after
+    last = after if after is not None else before
+    return (first or 0.0) / 2, (last or 0.0) / 2
 
 
 class _Near:

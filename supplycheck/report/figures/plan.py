@@ -33,6 +33,7 @@ class PlanView:
     without_place: tuple[str, ...]
     upright: tuple[str, ...]
     factor: float
+    outside: tuple[str, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,14 +64,27 @@ def has_plan(result: Result) -> bool:
 
 
 def whole_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> PlanView:
-    """Return the plan of everything that has coordinates."""
-    places = places_of(result).values()
-    xs, ys = [x for x, _ in places], [y for _, y in places]
+    """Return the plan of everything that has coordinates.
+
+    Where a long main under ground would make the rest small, it leaves the view at its edge.
+    """
+    places = places_of(result)
+    inner = {tag for pipe in result.pipes if pipe.role != "underground" for tag in (pipe.start, pipe.end)}
+    whole = _round(list(places.values()), result)
+    core = _round([place for tag, place in places.items() if tag in inner], result)
+    window = core if _factor(core, size) > 1.3 * _factor(whole, size) else whole
+    return _view(result, units, window, size, enlarged=False)
+
+
+def _round(points: list[tuple[float, float]], result: Result) -> Window:
+    """Return the window round ``points`` and the design area."""
+    xs, ys = [x for x, _ in points], [y for _, y in points]
     for x0, y0, x1, y1 in cells_of_heads(result.nodes):
         xs += [x0, x1]
         ys += [y0, y1]
-    window = Window(min(xs), min(ys), max(xs), max(ys))
-    return _view(result, units, window, size, enlarged=False)
+    if not xs:
+        return Window(-1e9, -1e9, 1e9, 1e9)
+    return Window(min(xs), min(ys), max(xs), max(ys))
 
 
 def area_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> PlanView | None:
@@ -96,10 +110,16 @@ def _filling(window: Window, size: tuple[float, float]) -> Window:
     return Window(window.x0 - more_x, window.y0 - more_y, window.x1 + more_x, window.y1 + more_y)
 
 
+def _factor(window: Window, size: tuple[float, float]) -> float:
+    """Return the points that a metre takes when ``window`` fills the frame."""
+    wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
+    return min((size[0] - 2 * _EDGE) / wide, (size[1] - 2 * _EDGE - _BAR_ROOM) / high)
+
+
 def _scale(window: Window, size: tuple[float, float]) -> tuple[Scale, float, float]:
     """Return the scale and the width and height that the drawing really takes."""
     wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
-    factor = min((size[0] - 2 * _EDGE) / wide, (size[1] - 2 * _EDGE - _BAR_ROOM) / high)
+    factor = _factor(window, size)
     height = max(high * factor, 24.0) + 2 * _EDGE + _BAR_ROOM
     left = (size[0] - wide * factor) / 2
     bottom = _BAR_ROOM + _EDGE + (height - 2 * _EDGE - _BAR_ROOM - high * factor) / 2
@@ -129,9 +149,10 @@ def _view(
     rings, upright = _upright(result.pipes, places, window, scale)
     items += rings
     missing = tuple(node.tag for node in result.nodes if node.tag not in places)
+    outside = tuple(tag for tag, place in places.items() if not window.holds(*place))
     what = "design area enlarged" if enlarged else "plan of the system"
     return PlanView(
-        Drawing(width, height, tuple(items), what), shown, wanted, missing, upright, scale.factor
+        Drawing(width, height, tuple(items), what), shown, wanted, missing, upright, scale.factor, outside
     )
 
 
@@ -175,7 +196,7 @@ def _pipe(
     start, end = places.get(pipe.start), places.get(pipe.end)
     if start is None or end is None or start == end:
         return []
-    cut = clipped(start, end, scale.window.grown(0.0 if not enlarged else 12.0 / scale.factor))
+    cut = clipped(start, end, scale.window.grown(12.0 / scale.factor))
     if cut is None:
         return []
     a, b = scale.at(*cut[0]), scale.at(*cut[1])

@@ -42,7 +42,11 @@ def answer(result: Result, width: float) -> Section:
 
 def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
     demand, supply, margin = result.demand, result.supply, result.margin
-    hose = f"{show.n(demand.sprinkler_flow, 'flow')} sprinklers + {show.t(demand.hose_flow, 'flow')} hose"
+    hose = "sprinklers, no hose"
+    if demand.hose_flow > 0:
+        hose = (
+            f"{show.n(demand.sprinkler_flow, 'flow')} sprinklers + {show.t(demand.hose_flow, 'flow')} hose"
+        )
     asked = "no rule given" if margin.required is None else show.t(margin.required, "pressure")
     after = "cannot be judged" if margin.after_rule is None else show.signed(margin.after_rule, "pressure")
     return (

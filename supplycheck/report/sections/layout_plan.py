@@ -21,7 +21,8 @@ def plan(result: Result, width: float) -> Section:
     blocks: list[Block] = []
     if has_plan(result):
         whole = whole_plan(result, show.units, (width, 400.0))
-        blocks.append(Figure("Whole system", whole.drawing, _caption(whole)))
+        title = "System, without the far end of the main" if whole.outside else "Whole system"
+        blocks.append(Figure(title, whole.drawing, _caption(whole, outside=True)))
         blocks.append(Figure("Pipe sizes (bore)", size_legend(result.pipes, show.units, width)))
         rest = PLAN_ROOM["a4" if result.project.facts.paper == "a4" else "letter"] - whole.drawing.height
         near = area_plan(result, show.units, (width, rest)) if 175 <= rest <= 330 else None
@@ -42,8 +43,10 @@ def plan(result: Result, width: float) -> Section:
     return Section("Plan and design area", tuple(blocks), fresh=True)
 
 
-def _caption(view: PlanView) -> str:
+def _caption(view: PlanView, *, outside: bool = False) -> str:
     texts = []
+    if outside and view.outside:
+        texts.append(f"Farther along the main, outside this view: {tags_text(view.outside, 8)}.")
     if view.tags_shown < view.tags_wanted:
         texts.append(
             f"{view.tags_shown} of {view.tags_wanted} tags have room here; all are in the node analysis."

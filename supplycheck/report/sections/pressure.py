@@ -80,7 +80,7 @@ def _table(result: Result, path: tuple[PathStep, ...], show: Show) -> Table:
         cells = tuple(show.n(v, "pressure", 2 if show.units.name == "us" else 3) for v in values)
         rows.append(Row(("", "whole path", "", *cells), strong=True))
     available = show.t(result.supply.available_pressure, "pressure")
-    note = f"The supply has {available} available at the demand flow."
+    note = f"At {result.demand.node} the supply has {available} available at the demand flow."
     return Table("Pressure by segment", columns, tuple(rows), note)
 
 
