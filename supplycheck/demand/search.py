@@ -206,6 +206,12 @@ def _is_short(line: Line, rule: Rule) -> bool:
     return float(line.share.sum()) < rule.length * (1 - ROUND)
 
 
+def _needs_all(line: Line, rule: Rule) -> bool:
+    """Say whether a whole line is no more than the area asks: it falls short without one of its ends."""
+    least = min(line.sums[-2], line.sums[-1] - line.sums[1])
+    return not rule.reached(least, len(line) - 1)
+
+
 def _spanning(lines: Lines, rule: Rule, everywhere: bool) -> tuple[Line, ...]:
     """Return the lines, joined with their neighbours in the row where one is too short (or everywhere)."""
     chosen = [
@@ -269,11 +275,7 @@ def search(heads: Heads, lines: Lines, rule: Rule, *, european: bool, cap: int =
             for chosen in (lines.sides, _spanning(lines, each, european)):
                 space = _Field(chosen, each, most)
                 whole = math.isinf(each.length)
-                starts = [
-                    i
-                    for i, line in enumerate(chosen)
-                    if not whole or not rule.reached(line.sums[-2], len(line) - 1)
-                ]
+                starts = [i for i, line in enumerate(chosen) if not whole or _needs_all(line, rule)]
                 _fill(space, bag, starts)
         for chosen in (lines.sides, _spanning(lines, rule, everywhere=True)):
             _lengthen(chosen, rule, bag, most)
