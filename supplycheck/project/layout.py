@@ -22,14 +22,13 @@ from itertools import pairwise
 from supplycheck.findings import Place
 from supplycheck.model import Sprinkler
 from supplycheck.project.drafts import DraftSystem, Notes
-from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.faults import FaultList
+from supplycheck.project.layout_check import MOST_HEADS, check_layout, count_heads
 from supplycheck.project.layout_feed import add_feed
 from supplycheck.project.layout_parts import Builder, read_levels, repeated, units_in
 from supplycheck.project.schema_system import LayoutTable
 from supplycheck.project.sections import Sections
 from supplycheck.units import UNIT_SETS, UnitSet
-
-MOST_HEADS = 200_000
 
 
 @dataclass(frozen=True, slots=True)
@@ -191,84 +190,6 @@ def _distance(layout: LayoutTable, units: UnitSet, place: Place, notes: Notes, f
     return given
 
 
-def _check(layout: LayoutTable, sections: Sections, faults: FaultList) -> None:
-    """Note what does not fit together in the layout."""
-    names = {"layout.branch.pipe": layout.branch.pipe, "layout.cross_main.pipe": layout.cross_main.pipe}
-    for key in ("drop", "riser_nipple", "far_main", "feed_main", "riser", "underground"):
-        piece = getattr(layout, key)
-        if piece is not None:
-            names[f"layout.{key}.pipe"] = piece.pipe
-    for where, name in names.items():
-        _known(name, "pipe", "there is no such kind of pipe", sections.place(where), sections, faults)
-    _known(
-        layout.sprinkler,
-        "sprinkler",
-        "there is no such sprinkler type",
-        sections.place("layout.sprinkler"),
-        sections,
-        faults,
-    )
-    for key in ("feed_main", "riser", "underground"):
-        piece = getattr(layout, key)
-        for device in piece.devices if piece is not None else ():
-            place = sections.place(f"layout.{key}.devices")
-            _known(device, "device", "there is no such device", place, sections, faults)
-    heads = sum(layout.heads) * (2 if layout.type == "loop" else 1)
-    if heads == 0:
-        faults.add(
-            sections.place("layout.heads"), "there are no heads", found="0", allowed="at least one head"
-        )
-    if heads * layout.lines > MOST_HEADS:
-        faults.add(
-            sections.place("layout"),
-            "the layout is too large",
-            found=f"{heads * layout.lines} heads",
-            allowed=f"at most {MOST_HEADS} heads",
-        )
-    if layout.type == "grid" and len(layout.heads) > 1 and min(layout.heads) > 0:
-        faults.add(
-            sections.place("layout.heads"),
-            "a grid has its heads between the mains",
-            found=str(layout.heads),
-            allowed="one number, the heads on each line",
-        )
-    if layout.type == "grid" and len(layout.branch.sizes) > 1:
-        faults.add(
-            sections.place("layout.branch.sizes"),
-            "the lines of a grid have no end head",
-            found=listed(layout.branch.sizes),
-            allowed="one size",
-        )
-    if layout.type == "tree" and layout.far_main is not None:
-        faults.add(
-            sections.place("layout.far_main"),
-            "a tree has no far main",
-            remedy='set type to "loop" or "grid"',
-        )
-    if layout.type != "tree" and layout.far_main is None:
-        faults.add(sections.place("layout.far_main"), f"is missing: a {layout.type} has a far main")
-    if layout.type != "tree" and layout.lines < 2:
-        faults.add(
-            sections.place("layout.lines"),
-            f"a {layout.type} needs two lines",
-            found="1",
-            allowed="2 or more",
-        )
-
-
-def _known(name: str, what: str, problem: str, place: Place, sections: Sections, faults: FaultList) -> None:
-    declared = sections.declared[what]
-    if name not in declared:
-        close = near(name, declared)
-        faults.add(
-            place,
-            problem,
-            found=quoted(name),
-            allowed=listed(sorted(declared)) or f"a table [{what}.NAME]",
-            remedy=f"did you mean {close}?" if close else f"add a table [{what}.{name}]",
-        )
-
-
 def _head_area(layout: LayoutTable, units: UnitSet, notes: Notes) -> float:
     area = layout.line_spacing.si(units) * layout.head_spacing.si(units)
     source = "line_spacing × head_spacing"
@@ -285,14 +206,14 @@ def generate(
         return None
     units = UNIT_SETS[layout.units or sections.units]
     place = sections.place("layout")
-    _check(layout, sections, faults)
+    check_layout(layout, sections, faults)
     levels = read_levels(layout, units, sections, notes, faults)
     sprinkler = sprinklers.get(layout.sprinkler)
     area = _head_area(layout, units, notes)
     distance = (
         _distance(layout, units, place, notes, faults) if layout.type != "tree" and layout.far_main else 0.0
     )
-    if faults.spoiled(place) or sum(layout.heads) * layout.lines > MOST_HEADS:
+    if faults.spoiled(place) or count_heads(layout) > MOST_HEADS:
         return None
     builder = Builder(layout, units, levels, place, sprinkler, area)
     spacing = layout.line_spacing.si(units)

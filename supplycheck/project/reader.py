@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import re
 import tomllib
 from pathlib import Path
@@ -296,6 +297,8 @@ def read_project(path: Path) -> Project:
     path = Path(path)
     if path.is_dir():
         path = path / PROJECT_FILE
+    with contextlib.suppress(OSError, RuntimeError):  # a circle of links: the reading says so
+        path = path.resolve()
     folder = Folder(path.parent, faults)
     text = folder.read_text(path.name, Place(path.name))
     raw = _parse(text, path.name, faults) if text is not None else None

@@ -45,7 +45,7 @@ class Sections:
     """The tables of a project file; ``None`` where a table is absent or beyond use.
 
     ``declared`` holds the names of all sprinkler types, pipe kinds and devices, ``present`` the keys at
-    the top of the file, sound or not.
+    the top of the file, sound or not. ``tests_listed`` says that flow tests are written as a list.
     """
 
     file: str
@@ -64,6 +64,7 @@ class Sections:
     scenarios: tuple[tuple[int, ScenarioTable], ...]
     declared: Mapping[str, frozenset[str]]
     present: frozenset[str]
+    tests_listed: bool
 
     def place(self, where: str) -> Place:
         """Return the place of a key path in the project file."""
@@ -318,6 +319,7 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
     def one(table: type[AnyTable], key: str) -> AnyTable | None:
         return check_table(table, raw[key], key, file, faults) if key in raw else None
 
+    supply = raw.get("supply")
     sprinklers, sprinkler_names = _named(SprinklerTable, raw.get("sprinkler"), "sprinkler", file, faults)
     pipes, pipe_names = _named(PipeTable, raw.get("pipe"), "pipe", file, faults)
     devices, device_names = _named(DeviceTable, raw.get("device"), "device", file, faults)
@@ -338,4 +340,5 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
         scenarios=_scenarios(raw.get("scenario"), file, faults),
         declared={"sprinkler": sprinkler_names, "pipe": pipe_names, "device": device_names},
         present=frozenset(raw),
+        tests_listed=isinstance(supply, dict) and isinstance(supply.get("flow_test"), list),
     )

@@ -77,7 +77,6 @@ class SupplyReader:
         self.sections, self.table, self.tags = sections, table, tags
         self.notes, self.faults = notes, faults
         self.units = units_in(table, UNIT_SETS[sections.units])
-        self.several = len(table.flow_test) > 1
         self.supply_nodes = [node.tag for node in tags.nodes.values() if node.kind == "supply"]
 
     def _fault(
@@ -214,7 +213,7 @@ class SupplyReader:
                 )
 
     def _test(self, number: int, table: FlowTestTable) -> FlowTest:
-        where = f"supply.flow_test[{number}]" if self.several else "supply.flow_test"
+        where = f"supply.flow_test[{number}]" if self.sections.tests_listed else "supply.flow_test"
         units = units_in(table, self.units)
         self._check_drop(table, where, units)
         points = self._points(table, where, units)

@@ -319,3 +319,27 @@ def test_messages_show_control_characters_escaped(tmp_path: Path) -> None:
     fault = only(faults(tmp_path, spoilt("static = 72", 'static = "7\\u001b[31m2"')))
     assert "\x1b" not in str(fault)
     assert "\\x1b" in fault.found
+
+
+def test_faults_of_the_second_test_name_it(tmp_path: Path) -> None:
+    second = "[[supply.flow_test]]\nstatic = 60\nresidual = 70\nflow = 500\n"
+    second += "date = 2026-05-01\ngauge_elevation = 0\n"
+    text = spoilt("[supply.flow_test]", "[[supply.flow_test]]")
+    text = text.replace("[supply.margin]", second + "[supply.margin]")
+    assert only(faults(tmp_path, text)).place.where == "supply.flow_test[2].residual"
+
+
+def test_a_linked_project_file_is_read_where_it_lies(tmp_path: Path) -> None:
+    real, other = tmp_path / "real", tmp_path / "other"
+    real.mkdir()
+    other.mkdir()
+    write(real)
+    (other / "project.toml").symlink_to(real / "project.toml")
+    assert len(read_project(other / "project.toml").system.nodes) == 4
+
+
+def test_a_circle_of_links_is_a_fault(tmp_path: Path) -> None:
+    (tmp_path / "a.toml").symlink_to(tmp_path / "b.toml")
+    (tmp_path / "b.toml").symlink_to(tmp_path / "a.toml")
+    with pytest.raises(ProjectFaultsError):
+        read_project(tmp_path / "a.toml")
