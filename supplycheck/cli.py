@@ -11,8 +11,23 @@ COMMANDS = {
     "new": "Write a commented starter project that passes as it stands.",
     "pipe": "Solve one pipe: loss, flow or diameter.",
     "flowtest": "Reduce a hydrant flow test.",
+    "hydrants": "Screen a file of hydrant tests: flow, class, quality, requirement.",
     "schema": "Print the JSON Schema of the project file.",
 }
+
+
+_OWN_FAULT = """\
+No result: the program itself failed, which is a fault of supplycheck and not of your project.
+  {what}
+  Please report it with the project file; until then, do not rely on older output for this project."""
+
+
+def _where(error: Exception) -> str:
+    """Return what failed and in which module and line."""
+    import traceback
+
+    last = traceback.extract_tb(error.__traceback__)[-1]
+    return f"{type(error).__name__}: {error} (in {last.name}, {last.filename}:{last.lineno})"
 
 
 class _Verbs(click.Group):
@@ -29,6 +44,16 @@ class _Verbs(click.Group):
         module = importlib.import_module(f"supplycheck.commands.{cmd_name}")
         command: click.Command = module.command
         return command
+
+    def invoke(self, ctx: click.Context) -> object:
+        """Run the verb; a fault of our own ends in a plain message and code 4, never in code 1."""
+        try:
+            return super().invoke(ctx)
+        except (click.exceptions.Exit, click.Abort, click.ClickException):
+            raise
+        except Exception as error:  # noqa: BLE001 - code 1 of a crash would read as "not adequate"
+            click.echo(_OWN_FAULT.format(what=_where(error)), err=True)
+            ctx.exit(4)
 
     def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
         """Write the list of verbs without importing any of them."""
