@@ -23,17 +23,15 @@ from supplycheck.results.display import visible
 
 REGULAR: Final = "SupplyCheckSans"
 BOLD: Final = "SupplyCheckSans-Bold"
-_STAND_INS: Final = str.maketrans(
-    {"′": "'", "″": '"', "‐": "-", "‑": "-", "‒": "–", "→": "»", "←": "«", "μ": "µ", "⁄": "/", "\u200b": ""}
-)
+_STAND_INS: Final = str.maketrans({"\u00b5": "μ", "\u200b": "", "\ufeff": ""})
 
 
 class FontRuler:
-    """Measures in Bitstream Vera Sans, which reportlab carries and the file embeds."""
+    """Measures in DejaVu Sans: Latin, Greek and Cyrillic letters and the signs of the trade."""
 
     def __init__(self) -> None:
-        self.regular = _font(REGULAR, "Vera.ttf").face
-        self.bold = _font(BOLD, "VeraBd.ttf").face
+        self.regular = _font(REGULAR, "DejaVuSans-subset.ttf").face
+        self.bold = _font(BOLD, "DejaVuSans-Bold-subset.ttf").face
         self._clean: dict[str, str] = {}
         self._widths: dict[tuple[str, bool], float] = {}
 
@@ -72,7 +70,7 @@ class _Canvas(Canvas):  # type: ignore[misc]
 
 def _font(name: str, file: str) -> Any:
     """Return a font of its own for one document, so that its subset starts empty."""
-    content = resources.files("reportlab").joinpath("fonts", file).read_bytes()
+    content = resources.files("supplycheck.report").joinpath("fonts", file).read_bytes()
     font = TTFont(name, io.BytesIO(content))
     pdfmetrics.registerFont(font)
     return font

@@ -22,7 +22,7 @@ PLUM: Final = "#6b4a7d"
 
 VERDICT_COLOURS: Final = MappingProxyType({"adequate": PETROL, "not adequate": CLAY, "undetermined": SLATE})
 
-# Advance widths of the letters space to tilde in thousandths of the size (Bitstream Vera Sans), for
+# Advance widths of the letters space to tilde in thousandths of the size (DejaVu Sans), for
 # figures that must know how long a label is before a writer draws it.
 _WIDTHS: Final = (
     318, 401, 460, 838, 636, 950, 780, 275, 390, 390, 500, 838, 318, 361, 318, 337,

@@ -55,10 +55,14 @@ def test_markup_and_control_characters_print_as_typed() -> None:
 def test_signs_outside_the_font_are_written_out_and_never_dropped() -> None:
     ruler = FontRuler()
     assert ruler.clean("½ ² ³ √ ≥ ≤ − × ° ≈") == "½ ² ³ √ ≥ ≤ − × ° ≈"
-    assert ruler.clean("ψ 中") == r"\u03c8 \u4e2d"
+    for text in ("Łódź", "Ждановичи", "Αθήνα", "5′-6″ → ⅛ ε μ", "Příbor", "Győr", "İzmir"):
+        assert ruler.clean(text) == text
+    assert ruler.clean("\u00b5") == "μ"
+    assert ruler.clean("中") == r"\u4e2d"
     assert ruler.clean("\ud800") == r"\ud800"
     assert ruler.clean("safe\u202eevil") == r"safe\u202eevil"
     assert pdf_bytes(build_document(sample(title="\ud800 中文 \x00")))
+    assert "Łódź, Αθήνα" in read(sample(title="Łódź, Αθήνα"))[0]
 
 
 @pytest.mark.parametrize(("paper", "size"), [("letter", (612.0, 792.0)), ("a4", (595.276, 841.89))])
