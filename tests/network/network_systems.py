@@ -8,7 +8,18 @@ from typing import Any
 
 import numpy as np
 
-from supplycheck.model import DARCY, HW_METRIC, HW_US, Device, Fitting, Fluid, FrictionLaw, Node, Pipe, System
+from supplycheck.model import (
+    DARCY,
+    HW_METRIC,
+    HW_US,
+    Device,
+    Fitting,
+    Fluid,
+    FrictionLaw,
+    Node,
+    Pipe,
+    System,
+)
 from supplycheck.network import LoadCase, Network, SourceCurve, build_network
 from supplycheck.units import BAR, FOOT, GPM, INCH, LPM, PSI
 
@@ -30,7 +41,9 @@ def pipe(tag: str, start: str, end: str, length: float, bore: float, **more: Any
     return Pipe(tag, start, end, length, bore, **settings)
 
 
-def us_pipe(tag: str, start: str, end: str, feet: float, inches: float, extra_feet: float = 0.0, **more: Any) -> Pipe:
+def us_pipe(
+    tag: str, start: str, end: str, feet: float, inches: float, extra_feet: float = 0.0, **more: Any
+) -> Pipe:
     """Pipe in feet and inches with ``extra_feet`` of equivalent length."""
     fittings = ()
     if extra_feet:
@@ -52,7 +65,9 @@ def random_system(rng: np.random.Generator, kind: str, size: int, *, heads: floa
     count = 1 + max(max(edge) for edge in edges)
     nodes = [node("S", float(rng.uniform(-2, 2)))]
     for row in range(1, count):
-        k_factor = float(rng.choice([57.0, 80.0, 115.0, 160.0])) * K_METRIC if rng.random() < heads else None
+        k_factor = (
+            float(rng.choice([57.0, 80.0, 115.0, 160.0])) * K_METRIC if rng.random() < heads else None
+        )
         nodes.append(node(f"n{row}", float(rng.uniform(0, 8)), k_factor))
     pipes = [_random_pipe(rng, nodes, row, a, b) for row, (a, b) in enumerate(edges)]
     return system(nodes, pipes)
@@ -100,13 +115,17 @@ def _grid_edges(rng: np.random.Generator, size: int) -> list[tuple[int, int]]:
     return edges
 
 
-def random_load(rng: np.random.Generator, made: System, most: int = 12) -> tuple[LoadCase, dict[str, float]]:
+def random_load(
+    rng: np.random.Generator, made: System, most: int = 12
+) -> tuple[LoadCase, dict[str, float]]:
     """Return a random load case on ``made`` and a required pressure at each open outlet."""
     outlets = [n.tag for n in made.nodes if n.k_factor is not None]
     count = min(len(outlets), int(rng.integers(1, most + 1)))
     chosen = [outlets[i] for i in rng.choice(len(outlets), count, replace=False)] if outlets else []
     others = [n.tag for n in made.nodes[1:]]
-    flows = {str(rng.choice(others)): float(rng.uniform(0, 20e-3))} if rng.random() < 0.5 or not chosen else {}
+    flows = (
+        {str(rng.choice(others)): float(rng.uniform(0, 20e-3))} if rng.random() < 0.5 or not chosen else {}
+    )
     required = {tag: float(rng.uniform(0.35e5, 2e5)) for tag in chosen} or {next(iter(flows)): 1e5}
     return LoadCase(tuple(chosen), flows), required
 
