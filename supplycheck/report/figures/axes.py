@@ -29,6 +29,11 @@ def round_steps(top: float, most: int) -> list[float]:
     return [step * place for place in range(math.ceil(top / step - 1e-9) + 1)]
 
 
+def finite(value: float | None) -> float:
+    """Return ``value``, or 0 where there is none or it is not finite: a figure must still be drawn."""
+    return value if value is not None and math.isfinite(value) else 0.0
+
+
 def plain(number: float) -> str:
     """Return a gridline's number without a trailing zero, thousands as digits.
 

@@ -6,7 +6,7 @@ from collections.abc import Callable
 from typing import Final
 
 from supplycheck.report.drawing import Box, Drawing, Item, Label, Line
-from supplycheck.report.figures.axes import plain, round_steps, short
+from supplycheck.report.figures.axes import finite, plain, round_steps, short
 from supplycheck.report.theme import CLAY, INK, LAGOON, MIST, PETROL, RULE, SAND, SLATE, text_width
 from supplycheck.results.records import PathStep, Result
 from supplycheck.units import UnitSet
@@ -33,14 +33,14 @@ def pressure_bars(
     """Return bars for ``path``; ``first`` is the place of its first segment in the whole path."""
     rows = len(path) + (1 if first == 0 else 0)
     height = rows * _ROW + 52
-    every = [value for step in result.path for value in (step.pressure_start, step.pressure_end)]
-    top = max([*every, result.supply.available_pressure], default=0.0)
+    every = [finite(value) for step in result.path for value in (step.pressure_start, step.pressure_end)]
+    top = max([*every, finite(result.supply.available_pressure)], default=0.0)
     steps = round_steps(units.from_si(top, "pressure") * 1.02, 8)
     right = width - _ENDS
     scale = (right - _NAMES) / steps[-1]
 
     def x(pressure: float) -> float:
-        return _NAMES + scale * max(units.from_si(pressure, "pressure"), 0.0)
+        return _NAMES + scale * max(units.from_si(finite(pressure), "pressure"), 0.0)
 
     bottom = 30.0
     items: list[Item] = []
@@ -75,13 +75,13 @@ def _head_row(step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
 
 
 def _step_row(number: int, step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
-    parts = (step.friction, step.fitting_friction, step.elevation, step.device)
+    parts = [finite(one) for one in (step.friction, step.fitting_friction, step.elevation, step.device)]
     name = f"{number}  {short(step.start, 58, 6.6)} to {short(step.end, 58, 6.6)}"
     items: list[Item] = [
         Label(0, y + 3.5, name, 6.6),
         Label(_NAMES - 8, y + 3.5, short(step.nominal, 34, 6.6), 6.6, "end", colour=SLATE),
     ]
-    at = step.pressure_start
+    at = finite(step.pressure_start)
     reach = x(at)
     for (_, colour), part in zip(_PARTS[1:], parts, strict=True):
         start, end = sorted((x(at), x(at + part)))
@@ -113,11 +113,12 @@ def _key(width: float) -> list[Item]:
 def answer_bars(result: Result, units: UnitSet, width: float) -> Drawing:
     """Return two bars: the pressure needed, with what the margin rule adds, and the one available."""
     demand, supply, margin = result.demand, result.supply, result.margin
-    need = demand.pressure + (margin.required or 0.0)
-    most = max(need, supply.available_pressure, supply.static_at_comparison, 1.0)
+    need = finite(demand.pressure) + finite(margin.required)
+    available = finite(supply.available_pressure)
+    most = max(need, available, finite(supply.static_at_comparison), 1.0)
     left, right = 82.0, width - 130.0
     scale = (right - left) / most
-    x = [left + scale * max(value, 0.0) for value in (demand.pressure, need, supply.available_pressure)]
+    x = [left + scale * max(value, 0.0) for value in (finite(demand.pressure), need, available)]
     items: list[Item] = [
         Label(0, 29, "needed", 7.4, colour=SLATE),
         Box(left, 25, x[0] - left, 12, CLAY),

@@ -14,7 +14,7 @@ from supplycheck.units import UnitSet
 
 EXPONENT: Final = 1.85
 _LEFT: Final = 40.0
-_BOTTOM: Final = 62.0
+_BOTTOM: Final = 53.0
 
 # style: (colour, width, dash)
 _CURVES: Final[dict[str, tuple[str, float, tuple[float, ...]]]] = {
@@ -221,7 +221,7 @@ def _mark(style: str, x: float, y: float) -> list[Item]:
 
 def _legend(curves: tuple[CurvePoints, ...], width: float) -> list[Item]:
     items: list[Item] = []
-    x, y = _LEFT, 22.0
+    x, y = _LEFT, 13.0
     entries = [(curve.name, *_CURVES[curve.style]) for curve in curves]
     if any(curve.extrapolated_from is not None for curve in curves):
         entries.append(("beyond the tested flow", INK, 1.2, _FAR_DASH))

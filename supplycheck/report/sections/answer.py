@@ -33,7 +33,7 @@ def answer(result: Result, width: float) -> Section:
         ),
         Figure(
             "Supply and demand",
-            supply_graph(result.curves, result.points, show.units, (width, 170.0)),
+            supply_graph(result.curves, result.points, show.units, (width, 158.0)),
             if_room=True,
         ),
     ]

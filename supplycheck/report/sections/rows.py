@@ -90,6 +90,10 @@ def pipe_information(result: Result) -> Section:
         ),
         Table("Pipes with flow", _pipe_columns(show, darcy=darcy, second=second), rows, size=6.3),
     ]
+    if second and result.project.second_law is not None:
+        blocks.insert(
+            1, Paragraph(f"The second law, beside it: {result.project.second_law.name}.", "small")
+        )
     if brief:
         blocks.append(_still_pipes(brief, show))
     if left_out:
