@@ -71,6 +71,12 @@ DRY_FACTOR: Final = 1.3
 PUMP_CHURN, PUMP_FLOW, PUMP_PRESSURE = 1.40, 1.5, 0.65
 """NFPA 20: churn at most 140 %, at least 65 % of rated pressure at 150 % of rated flow (Huggins)."""
 
+SUCTION_MAIN, SUCTION_TANK = 0.0, -3 * PSI
+"""NFPA 20: at 150 % of rated flow no less than 0 psi at the suction, −3 psi from a tank at its level."""
+
+REFILL, REFILL_CURTAILED = 48 * 3600.0, 24 * 3600.0
+"""UFC practice (2006): refilled within 48 h, or 24 h where operations would be curtailed meanwhile."""
+
 ROUND_OFF: Final = 1e-6
 """Relative tolerance for what the solver meets exactly: a hundred times its own 1e-8, and a thousandth of
 the last digit printed, so that a figure met on the nose is never failed for round-off."""

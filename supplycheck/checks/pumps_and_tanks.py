@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext, PumpRating
-from supplycheck.checks.rule import About, Rule, pressure, some
+from supplycheck.checks.rule import About, Rule, some
 from supplycheck.findings import Finding, Measure
-from supplycheck.model import Device
+from supplycheck.model import Device, Tank
 
 DURATION = About(
     "duration",
@@ -17,16 +17,15 @@ DURATION = About(
 STORAGE = About(
     "storage",
     "usable volume of each tank and its refill against demand times duration",
-    ("ok", "fail", "missing", "not applicable"),
+    ("ok", "fail", "ask authority", "missing", "not applicable"),
     "demand times duration (UFC practice 2006)",
     weight=3,
 )
-SUCTION = About(
-    "pump suction",
-    "pressure at the inlet of each pump at the demand flow, which must not fall below zero",
-    ("ok", "fail", "not applicable"),
-    "NFPA 20: no less than 0 psi at the inlet (published guidance)",
-    weight=3,
+REFILL = About(
+    "tank refill",
+    "time in which the refill fills each empty tank",
+    ("ok", "ask authority", "missing", "not applicable"),
+    "UFC practice (2006): within 48 h, or 24 h where operations would be curtailed",
 )
 PUMP = About(
     "pump curve",
@@ -88,30 +87,50 @@ def storage(context: CheckContext) -> Finding:
     )
     tags = tuple(tank.tag for tank in tanks)
     text = f"{some(tags)} with refill gives {{measured}}; {{time}} of demand takes {{limit}}."
+    runs = _drawn(context, tanks) * seconds
+    if held >= need * (1 - limits.ROUND_OFF) and held < runs * (1 - limits.ROUND_OFF):
+        text = f"{some(tags)} gives {{measured}}, enough for the demand; what really runs takes {{limit}}."
+        ask = f"Must {some(tags)} last for the flow that really runs, or for the demand alone?"
+        limit = Measure(runs, "volume")
+        return STORAGE.says("ask authority", text, measured=measured, limit=limit, tags=tags, remedy=ask)
     if held >= need * (1 - limits.ROUND_OFF):
         return STORAGE.says("ok", text, measured=measured, limit=limit, values=values, tags=tags)
     do = "Enlarge the tank or its refill."
     return STORAGE.says("fail", text, measured=measured, limit=limit, values=values, tags=tags, remedy=do)
 
 
-def suction(context: CheckContext) -> Finding:
-    """Lowest inlet pressure of all pumps in the demand state."""
-    inlets = {
-        tag: pipe.start
-        for pipe in context.project.system.pipes
-        for tag in pipe.devices
-        if context.devices[tag].kind == "pump"
-    }
-    if not inlets:
-        return SUCTION.says("not applicable", "There is no pump.")
-    tag = min(inlets, key=lambda one: context.pressure(inlets[one]))
-    value = context.pressure(inlets[tag])
-    measured, limit = pressure(value), pressure(0.0)
-    text = f"Pump {tag} takes in at {{measured}} at {inlets[tag]} at the demand flow."
-    if value < 0:
-        do = "Lower the flow or the loss before the pump; it must not draw the main into suction."
-        return SUCTION.says("fail", text, measured=measured, limit=limit, tags=(tag,), remedy=do)
-    return SUCTION.says("ok", text, measured=measured, limit=limit, tags=(tag,))
+def _drawn(context: CheckContext, tanks: list[Tank]) -> float:
+    """Return what really runs out of ``tanks`` [m³/s]; 0 where that was not solved."""
+    solution = context.operating
+    if solution is None:
+        return 0.0
+    nodes = {tank.node for tank in tanks}
+    flows = zip(solution.source_tags, solution.source_flow.tolist(), strict=True)
+    return float(sum(flow for tag, flow in flows if tag in nodes))
+
+
+def refill(context: CheckContext) -> Finding:
+    """The slowest tank; one without refill or volume leaves a question."""
+    tanks = [tank for tank in context.project.supply.tanks if tank.kind != "reservoir"]
+    if not tanks:
+        return REFILL.says("not applicable", "No tank feeds this system.")
+    unsaid = tuple(tank.tag for tank in tanks if tank.refill <= 0 or tank.volume is None)
+    if unsaid:
+        text = f"Not run: volume or refill of {some(unsaid)} is not given."
+        ask = f"Within what time, and from what, is {some(unsaid)} filled again?"
+        return REFILL.says("missing", text, tags=unsaid, remedy=ask)
+    times = {tank.tag: (tank.volume or 0.0) / tank.refill for tank in tanks}
+    tag = max(times, key=lambda one: times[one])
+    values = {"curtailed": Measure(limits.REFILL_CURTAILED, "time")}
+    measured, limit = Measure(times[tag], "time"), Measure(limits.REFILL, "time")
+    text = f"{tag} is full again {{measured}} after it ran empty; {{limit}} is usual"
+    if times[tag] > limits.REFILL * (1 + limits.ROUND_OFF):
+        ask = f"Is a refill of {tag} in more than 48 h accepted?"
+        return REFILL.says(
+            "ask authority", f"{text}.", measured=measured, limit=limit, tags=(tag,), remedy=ask
+        )
+    text += ", {curtailed} where work would stop."
+    return REFILL.says("ok", text, measured=measured, limit=limit, tags=(tag,), values=values)
 
 
 def _at(curve: tuple[tuple[float, ...], tuple[float, ...]], wanted: float) -> float | None:
@@ -125,7 +144,8 @@ def _at(curve: tuple[tuple[float, ...], tuple[float, ...]], wanted: float) -> fl
 def _pump_fault(pump: Device, rated: PumpRating) -> Finding | None:
     curve = (pump.flows, pump.values)
     churn, far = _at(curve, 0.0), _at(curve, limits.PUMP_FLOW * rated.flow)
-    if churn is None or far is None:
+    at_rated = _at(curve, rated.flow)
+    if churn is None or far is None or at_rated is None:
         ask = f"What does pump {pump.tag} give at no flow and at 150 % of rated flow?"
         text = f"Not run: the curve of {pump.tag} does not reach from no flow to 150 %."
         return PUMP.says("missing", text, tags=(pump.tag,), remedy=ask)
@@ -134,6 +154,8 @@ def _pump_fault(pump: Device, rated: PumpRating) -> Finding | None:
         share, limit, where = churn, limits.PUMP_CHURN, "without flow"
     elif far < limits.PUMP_PRESSURE - limits.ROUND_OFF:
         share, limit, where = far, limits.PUMP_PRESSURE, "at 150 % flow"
+    elif at_rated < rated.pressure * (1 - limits.ROUND_OFF):
+        share, limit, where = at_rated / rated.pressure, 1.0, "at rated flow"
     else:
         return None
     return PUMP.says(
@@ -174,6 +196,6 @@ def pump_curve(context: CheckContext) -> Finding:
 RULES = (
     Rule(DURATION, duration),
     Rule(STORAGE, storage),
-    Rule(SUCTION, suction),
+    Rule(REFILL, refill),
     Rule(PUMP, pump_curve),
 )

@@ -19,7 +19,7 @@ from supplycheck.model.supply import (
     Tank,
     TestPoint,
 )
-from supplycheck.model.system import Device, Fitting, Node, Pipe, PipeKind, Sprinkler, System
+from supplycheck.model.system import Device, Fitting, Node, Pipe, PipeKind, PumpData, Sprinkler, System
 
 __all__ = [
     "DARCY",
@@ -46,6 +46,7 @@ __all__ = [
     "PipeKind",
     "Project",
     "ProjectFacts",
+    "PumpData",
     "Scenario",
     "Sprinkler",
     "Supply",

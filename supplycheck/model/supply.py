@@ -12,7 +12,11 @@ from supplycheck.model.system import Origin
 
 @dataclass(frozen=True, slots=True)
 class Outlet:
-    """A flowing hydrant outlet: diameter [m], coefficient [-], pitot [Pa], pumper factor [-]."""
+    """A flowing hydrant outlet: diameter [m], coefficient [-], pitot [Pa], pumper factor [-].
+
+    ``kind`` says through what it flowed, empty where that is not told. The coefficient of a diffuser is
+    that of its maker and may stand for a K-factor.
+    """
 
     diameter: float
     coefficient: float
@@ -21,6 +25,7 @@ class Outlet:
     shape: str = ""
     origin: Origin = "given"
     hydrant: str = ""
+    kind: Literal["", "hose outlet", "pumper outlet", "diffuser"] = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +69,11 @@ class FlowTest:
 
 @dataclass(frozen=True, slots=True)
 class Tank:
-    """A tank or reservoir at a node: water level [m, same datum], usable volume and refill [m³, m³/s]."""
+    """A tank or reservoir at a node: water level [m, same datum], usable volume and refill [m³, m³/s].
+
+    The supply counts from ``low_level`` [m], to which the volume draws the water down, where it is told;
+    the highest pressure without flow then stands from ``water_level``.
+    """
 
     tag: str
     node: str
@@ -73,6 +82,12 @@ class Tank:
     refill: float = 0.0
     kind: Literal["gravity", "suction", "break", "reservoir"] = "gravity"
     place: Place | None = None
+    low_level: float | None = None
+
+    @property
+    def lowest_level(self) -> float:
+        """The level [m] from which the supply is counted."""
+        return self.water_level if self.low_level is None else self.low_level
 
 
 @dataclass(frozen=True, slots=True)

@@ -92,12 +92,33 @@ class Node:
 
 
 @dataclass(frozen=True, slots=True)
+class PumpData:
+    """What is told of the fire pumps that stand behind one device of kind ``pump``.
+
+    ``rated_flow`` [m³/s] and ``rated_pressure`` [Pa] are those of the whole set at the speed at which it
+    runs, ``None`` where they are not told. ``speed_ratio`` is that speed over the one of the curve;
+    ``from_limits`` says that the curve is the weakest one which the pump standard allows for the rating.
+    ``test_flows``/``test_losses`` [m³/s, Pa] are the loss from the pump to the end of its test header.
+    """
+
+    rated_flow: float | None = None
+    rated_pressure: float | None = None
+    count: int = 1
+    arrangement: Literal["single", "parallel", "series"] = "single"
+    speed_ratio: float = 1.0
+    from_limits: bool = False
+    test_flows: tuple[float, ...] = ()
+    test_losses: tuple[float, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
 class Device:
     """A device in a pipe: its pressure loss [Pa] against flow [m³/s], or what it does.
 
     ``flows``/``values`` are the points of the loss curve (kind ``loss``) or of the pressure gain
     curve (kind ``pump``); one point with flow 0 is a fixed loss. ``setting`` [Pa] is the outlet
-    pressure of a pressure-reducing valve. ``one_way`` stops reverse flow.
+    pressure of a pressure-reducing valve. ``one_way`` stops reverse flow. ``pump`` holds what is told of
+    the pumps behind a pump device; its curve is that of the whole set.
     """
 
     tag: str
@@ -109,6 +130,7 @@ class Device:
     one_way: bool = False
     title: str = ""
     place: Place | None = None
+    pump: PumpData | None = None
 
     @property
     def is_fixed_loss(self) -> bool:

@@ -14,6 +14,7 @@ from supplycheck.model import Device, FrictionLaw, PipeKind, Sprinkler
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.layout_parts import units_in
+from supplycheck.project.pumps import PUMP_KEYS, PumpReader
 from supplycheck.project.schema_system import DeviceTable, PipeTable, SprinklerTable
 from supplycheck.project.sections import Sections
 from supplycheck.units import UNIT_SETS, UnitSet
@@ -237,10 +238,17 @@ def _device(
     ways = [key for key in ("curve", "loss", "equivalent_length") if getattr(table, key) is not None]
     if len(ways) > 1:
         faults.add(place, "its loss is given more than once", found=listed(ways), allowed="one of them")
-    if not ways and table.kind != "pressure-reducing valve" and not faults.touched(place):
+    if not ways and table.kind in ("loss", "check valve") and not faults.touched(place):
         faults.add(place, "has no loss", allowed="one of curve, loss, equivalent_length")
     if table.kind == "pump" and ways and ways != ["curve"]:
-        faults.add(place, "a pump has no curve", found=listed(ways), allowed="curve")
+        faults.add(place, "a pump has no loss", found=listed(ways), allowed="the curve of its gain")
+    for key in PUMP_KEYS:
+        if table.kind != "pump" and getattr(table, key) not in (None, False, 1):
+            faults.add(
+                sections.place(f"device.{tag}.{key}"),
+                f"a {table.kind} is no pump",
+                remedy="take the key out",
+            )
     if table.kind == "pressure-reducing valve" and table.setting is None:
         faults.add(
             sections.place(f"device.{tag}.setting"),
@@ -269,6 +277,10 @@ def _device(
                 allowed="curve, loss",
             )
         return DeviceOrLength(None, length, table.title or tag, table.source)
+    pump = None
+    if table.kind == "pump":
+        curve, pump = PumpReader(tag, table, units, sections, notes, faults).read((flows, values))
+        flows, values = curve.flows, curve.values
     device = Device(
         tag=tag,
         kind=table.kind,
@@ -279,6 +291,7 @@ def _device(
         one_way=table.kind == "check valve",
         title=table.title,
         place=place,
+        pump=pump,
     )
     return DeviceOrLength(device, None, table.title or tag, table.source)
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import math
 import re
 import tomllib
 from pathlib import Path
@@ -248,12 +249,13 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
         criteria, row = CriteriaReader(sections, sections.criteria, standard, notes, faults).read()
     if system is not None:
         _check_area(sections, criteria, system, tags, faults)
+    fluid = read_fluid(sections, standard, laws, notes, faults)
+    weight = fluid.unit_weight if fluid is not None else math.nan
     supply = None
     if sections.supply is not None:
-        supply = SupplyReader(sections, sections.supply, tags, notes, faults).read()
+        supply = SupplyReader(sections, sections.supply, tags, notes, faults, weight).read()
     hose = _hose(sections, row, supply, tags, notes, faults) if supply else None
     scenarios = _scenarios(sections, tags, faults)
-    fluid = read_fluid(sections, standard, laws, notes, faults)
     facts = _facts(sections, standard) if standard else None
     faults.stop()
     if (

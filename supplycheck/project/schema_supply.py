@@ -11,6 +11,7 @@ from supplycheck.project.quantity import (
     Elevation,
     Flow,
     FlowOrZero,
+    KFactor,
     Percent,
     Pressure,
     PressureOrZero,
@@ -37,6 +38,10 @@ class OutletTable(UnitTable):
     """Factor for a large (pumper) outlet. Default: 1 for outlets under 4 in; needed above."""
     hydrant: Text = ""
     """The hydrant it is on."""
+    kind: Literal["hose outlet", "pumper outlet", "diffuser"] | None = None
+    """What it flowed through. Default: `pumper outlet` from 4 in up, otherwise `hose outlet`."""
+    k_factor: KFactor | None = None
+    """K-factor of a diffuser by its maker: flow per root of its reading, instead of `coefficient`."""
 
 
 class TestPointTable(UnitTable):
@@ -57,8 +62,8 @@ class FlowTestTable(UnitTable):
 
     tag: Name | None = None
     """Name of the test. Default: `test 1`, `test 2` …"""
-    static: Pressure
-    """Static pressure at the gauge before water flows."""
+    static: Pressure | None = None
+    """Static pressure at the gauge before water flows. Needed, or `hgl_high`."""
     residual: PressureOrZero | None = None
     """Residual pressure at the gauge while water flows."""
     flow: Flow | None = None
@@ -67,10 +72,15 @@ class FlowTestTable(UnitTable):
     """Outlets that flowed at `residual`."""
     points: list[TestPointTable] = Field(default_factory=list)
     """Several readings of one test, instead of `residual`."""
+    hgl_high: Elevation | None = None
+    """Elevation of the hydraulic grade line without flow by the model of a utility, instead of `static`."""
+    hgl_low: Elevation | None = None
+    """Elevation of the hydraulic grade line at `flow` by the model of a utility, instead of `residual`."""
     date: Date
     """Day of the test."""
-    gauge_elevation: Elevation
-    """Elevation of the gauge, from the same datum as the system."""
+    gauge_elevation: Elevation | None = None
+    """Elevation of the gauge, from the same datum as the system. Needed, except with hydraulic grade
+    lines."""
     node: Name | None = None
     """Node at which the test applies. Default: `node` of the supply."""
     time: Text = ""
@@ -107,7 +117,9 @@ class TankTable(UnitTable):
     node: Name
     """Node at which it feeds the system."""
     water_level: Elevation
-    """Lowest water level that counts, from the same datum as the system."""
+    """Water level, from the same datum as the system; the lowest that counts without `low_level`."""
+    low_level: Elevation | None = None
+    """Level to which the usable volume draws the water down: the supply is then counted from it."""
     volume: Volume | None = None
     """Usable volume."""
     refill: FlowOrZero | None = None

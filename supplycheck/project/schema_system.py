@@ -9,6 +9,7 @@ from pydantic import Field
 from supplycheck.project.quantity import (
     Area,
     Elevation,
+    Flow,
     KFactor,
     Length,
     LengthOrZero,
@@ -271,5 +272,29 @@ class DeviceTable(UnitTable):
     """Equivalent length at C 120 in pipe of the size in which it stands, instead of a loss."""
     setting: Pressure | None = None
     """Outlet pressure of a pressure-reducing valve."""
+    rated_flow: Flow | None = None
+    """Rated flow of one pump."""
+    rated_pressure: Pressure | None = None
+    """Rated net pressure of one pump. A rating bounds a curve, it gives none."""
+    churn_pressure: Pressure | None = None
+    """Net pressure of one pump at no flow, with `pressure_at_150`, instead of `curve`."""
+    pressure_at_150: Pressure | None = None
+    """Net pressure of one pump at 150 % of its rated flow."""
+    curve_from_limits: bool = False
+    """Before a pump is chosen: take the weakest curve that the pump standard allows for the rating (140 %
+    at no flow, 65 % at 150 % flow). Printed as an assumption."""
+    speed: Ratio | None = None
+    """Speed at which the pump runs; curve and rating are turned to it by the affinity laws."""
+    rated_speed: Ratio | None = None
+    """Speed for which curve and rating are given."""
+    count: Annotated[int, Field(ge=1, le=20)] = 1
+    """Like pumps that run together; curve and rating are those of one."""
+    arrangement: Literal["parallel", "series"] | None = None
+    """How several pumps stand. Needed with `count` of 2 or more."""
+    test_header: (
+        Annotated[list[Annotated[list[float], Field(min_length=2, max_length=2)]], Field(min_length=2)]
+        | None
+    ) = None
+    """Points `[flow, loss]` of the way from the pump to the end of its test header."""
     source: Text
     """Where the figures come from: maker, data sheet, date."""

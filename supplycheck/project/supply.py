@@ -6,11 +6,12 @@ import math
 
 from supplycheck import catalogue
 from supplycheck.errors import DomainError, NotInCatalogueError
-from supplycheck.hydraulics.discharge import pitot_discharge
+from supplycheck.hydraulics.discharge import PITOT, pitot_discharge
 from supplycheck.model import Adjustment, FlowTest, Outlet, Supply, System, Tank, TestPoint
 from supplycheck.model.system import Origin
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.grade import GradeReader
 from supplycheck.project.layout_parts import units_in
 from supplycheck.project.margin import read_margin
 from supplycheck.project.schema_supply import (
@@ -72,10 +73,17 @@ class SupplyReader:
     """Assembles the supply of one project."""
 
     def __init__(
-        self, sections: Sections, table: SupplyTable, tags: TagCheck, notes: Notes, faults: FaultList
+        self,
+        sections: Sections,
+        table: SupplyTable,
+        tags: TagCheck,
+        notes: Notes,
+        faults: FaultList,
+        unit_weight: float,
     ) -> None:
         self.sections, self.table, self.tags = sections, table, tags
         self.notes, self.faults = notes, faults
+        self.grade = GradeReader(sections.file, unit_weight, notes, faults)
         self.units = units_in(table, UNIT_SETS[sections.units])
         self.supply_nodes = [node.tag for node in tags.nodes.values() if node.kind == "supply"]
 
@@ -107,11 +115,14 @@ class SupplyReader:
     def _outlet(self, table: OutletTable, where: str, units: UnitSet) -> Outlet | None:
         units = units_in(table, units)
         diameter, pitot = table.diameter.si(units), table.pitot.si(units)
+        if table.kind == "diffuser" or table.k_factor is not None:
+            return self._diffuser(table, where, units)
         coefficient, origin = self._coefficient(table, where)
         if not (math.isfinite(diameter) and math.isfinite(pitot)):
             return None
         factor = table.pumper_factor.number if table.pumper_factor else 1.0
-        if table.pumper_factor is None and diameter >= PUMPER_SIZE * (1 - 1e-9):
+        large = diameter >= PUMPER_SIZE * (1 - 1e-9) and table.kind != "hose outlet"
+        if table.pumper_factor is None and (large or table.kind == "pumper outlet"):
             try:
                 row = catalogue.pumper_factor(pitot)
             except DomainError as caught:
@@ -131,7 +142,31 @@ class SupplyReader:
                 )
         if coefficient is None:
             return None
-        return Outlet(diameter, coefficient, pitot, factor, table.shape, origin, table.hydrant)
+        kind = table.kind or ""
+        return Outlet(diameter, coefficient, pitot, factor, table.shape, origin, table.hydrant, kind)
+
+    def _diffuser(self, table: OutletTable, where: str, units: UnitSet) -> Outlet | None:
+        """Return a diffuser by its maker's figure, told as a coefficient of its opening."""
+        if table.kind != "diffuser":
+            self._fault(
+                f"{where}.k_factor", "is for a diffuser", allowed='kind = "diffuser", or a coefficient'
+            )
+        if table.shape or table.pumper_factor:
+            key = "shape" if table.shape else "pumper_factor"
+            self._fault(f"{where}.{key}", "a diffuser does not use it", remedy="take it out")
+        if (table.k_factor is None) == (table.coefficient is None):
+            self._fault(
+                f"{where}.k_factor",
+                "a diffuser needs the figure of its maker",
+                allowed="k_factor or coefficient, one of them",
+            )
+            return None
+        diameter, pitot = table.diameter.si(units), table.pitot.si(units)
+        if table.coefficient is not None:
+            coefficient = table.coefficient.number
+        elif table.k_factor is not None:
+            coefficient = table.k_factor.si(units) / (PITOT * diameter**2)
+        return Outlet(diameter, coefficient, pitot, 1.0, "", "given", table.hydrant, "diffuser")
 
     def _coefficient(self, table: OutletTable, where: str) -> tuple[float | None, Origin]:
         if table.coefficient is not None:
@@ -197,7 +232,7 @@ class SupplyReader:
         return tuple(sorted((point for point in found if point is not None), key=lambda point: point.flow))
 
     def _check_drop(self, table: FlowTestTable, where: str, units: UnitSet) -> None:
-        static = table.static.si(units)
+        static = table.static.si(units) if table.static else math.nan
         readings = [(f"{where}.residual", table.residual, units)] + [
             (f"{where}.points[{number}].residual", point.residual, units_in(point, units))
             for number, point in enumerate(table.points, start=1)
@@ -215,15 +250,21 @@ class SupplyReader:
     def _test(self, number: int, table: FlowTestTable) -> FlowTest:
         where = f"supply.flow_test[{number}]" if self.sections.tests_listed else "supply.flow_test"
         units = units_in(table, self.units)
+        node = self._node(table.node, f"{where}.node")
+        at = self.tags.nodes.get(node)
+        table = self.grade.read(table, where, units, None if at is None else at.elevation)
+        static, gauge = table.static, table.gauge_elevation
+        if static is None or gauge is None:  # the grade reader has filled both
+            raise AssertionError
         self._check_drop(table, where, units)
         points = self._points(table, where, units)
         return FlowTest(
             tag=table.tag or f"test {number}",
-            node=self._node(table.node, f"{where}.node"),
+            node=node,
             date=table.date,
-            static=table.static.si(units),
+            static=static.si(units),
             points=points,
-            gauge_elevation=table.gauge_elevation.si(units),
+            gauge_elevation=gauge.si(units),
             time=table.time,
             static_hydrant=table.static_hydrant,
             flow_hydrant=table.flow_hydrant,
@@ -242,14 +283,28 @@ class SupplyReader:
     def _tank(self, number: int, table: TankTable) -> Tank:
         where = f"supply.tank[{number}]"
         units = units_in(table, self.units)
+        level = table.water_level.si(units)
+        low = table.low_level.si(units) if table.low_level else None
+        if low is not None and low > level:
+            self._fault(
+                f"{where}.low_level",
+                "lies above the water level",
+                found=units.text(low, "length"),
+                allowed=f"at most {units.text(level, 'length')}",
+            )
+        if low is None and table.kind in ("suction", "break"):
+            self.notes.add(
+                f"{where}.low_level", units.text(level, "length"), "assumed", "water_level is the lowest"
+            )
         return Tank(
             tag=table.tag,
             node=self._node(table.node, f"{where}.node"),
-            water_level=table.water_level.si(units),
+            water_level=level,
             volume=table.volume.si(units) if table.volume else None,
             refill=table.refill.si(units) if table.refill else 0.0,
             kind=table.kind,
             place=self.sections.place(where),
+            low_level=low,
         )
 
     def _adjustments(self) -> tuple[Adjustment, ...]:

@@ -142,7 +142,7 @@ def _demand_line(project: Project, solution: Solution, comparison: Comparison) -
 def _test_points(supply: NodeSupply, path: Route) -> list[MarkedPoint]:
     alone = path.without_pumps if path.pumps else path
     points = []
-    for test, curve in zip(supply.tests, supply.measured, strict=True):
+    for test, curve in zip(supply.tests, supply.measured, strict=False):  # a tank has no readings
         readings = [(f"{test.tag} static", 0.0, test.static)]
         readings += [(f"{test.tag} residual", one.flow, one.residual) for one in test.points]
         points += [

@@ -168,17 +168,21 @@ def _from_tests(
 
 
 def _from_tank(tank: Tank, elevation: float, unit_weight: float) -> NodeSupply:
-    curve = constant_curve(tank.tag, tank.node, unit_weight * (tank.water_level - elevation))
+    def at(level: float) -> SupplyCurve:
+        return constant_curve(tank.tag, tank.node, unit_weight * (level - elevation))
+
+    curve, full = at(tank.lowest_level), at(tank.water_level)
     words = Words(
-        "{kind} tank {tag}: water level {level}, node at {elevation}",
+        "{kind} {tag}: water level {level}, node at {elevation}",
         (
-            ("kind", tank.kind, ""),
+            ("kind", "reservoir" if tank.kind == "reservoir" else f"{tank.kind} tank", ""),
             ("tag", tank.tag, ""),
-            ("level", tank.water_level, "length"),
+            ("level", tank.lowest_level, "length"),
             ("elevation", elevation, "length"),
         ),
     )
-    return NodeSupply(tank.node, (), tank, (curve,), (curve,), (Stage(words, curve),))
+    measured = (curve,) if full == curve else (curve, full)
+    return NodeSupply(tank.node, (), tank, measured, (curve,), (Stage(words, curve),))
 
 
 def _checked(supply: Supply, elevations: Mapping[str, float]) -> None:

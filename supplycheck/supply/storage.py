@@ -9,6 +9,7 @@ References
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from supplycheck.errors import DomainError
@@ -113,3 +114,79 @@ def tank_time(
         spare_volume=tank.volume - max(needs) if tank.volume is not None and needs else None,
         refill_time=tank.volume / tank.refill if tank.volume is not None and tank.refill > 0.0 else None,
     )
+
+
+@dataclass(frozen=True, slots=True)
+class TankLine:
+    """What is left [m³] in a tank against time [s]: ``name`` says at which flow."""
+
+    name: str
+    flow: float
+    times: tuple[float, ...]
+    volumes: tuple[float, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class TankAnswer:
+    """One tank of a project: its times, its levels [m], the refill credit [m³] and its time line.
+
+    ``credit`` is what the refill brings while the supply must last (``None`` where no duration is given).
+    """
+
+    kind: str
+    node: str
+    water_level: float
+    low_level: float | None
+    credit: float | None
+    time: TankTime
+    lines: tuple[TankLine, ...]
+
+
+def tank_answers(
+    tanks: Sequence[Tank],
+    duration: float | None,
+    nominal: Mapping[str, float],
+    actual: Mapping[str, float],
+) -> tuple[TankAnswer, ...]:
+    """Return every tank against what is drawn from its node; flows [m³/s] by node, ``duration`` [s].
+
+    Raises :class:`DomainError` for a volume of 0.
+    """
+    found = []
+    for tank in tanks:
+        flows = (max(nominal[tank.node], 0.0), max(actual[tank.node], 0.0))
+        time = tank_time(tank, nominal_flow=flows[0], duration=duration, actual_flow=flows[1])
+        names = ("at the demand", "with the flow that really runs")
+        end = _end(duration, time)
+        lines = [_line(name, tank, flow, end) for name, flow in zip(names, flows, strict=True) if end]
+        found.append(
+            TankAnswer(
+                kind=tank.kind,
+                node=tank.node,
+                water_level=tank.water_level,
+                low_level=tank.low_level,
+                credit=None if duration is None else tank.refill * duration,
+                time=time,
+                lines=tuple(line for line in lines if line is not None),
+            )
+        )
+    return tuple(found)
+
+
+def _end(duration: float | None, time: TankTime) -> float | None:
+    """Return how far the time line runs [s]: past the duration and past the last finite emptying."""
+    ends = [
+        value
+        for value in (duration, time.lasts, time.actual_lasts)
+        if value is not None and math.isfinite(value)
+    ]
+    return max(ends) if ends else None
+
+
+def _line(name: str, tank: Tank, flow: float, end: float) -> TankLine | None:
+    if tank.volume is None:
+        return None
+    net = max(flow - tank.refill, 0.0)
+    empty = tank.volume / net if net > 0.0 else math.inf
+    times = (0.0, end) if empty >= end else (0.0, empty)
+    return TankLine(name, flow, times, tuple(max(tank.volume - net * time, 0.0) for time in times))
