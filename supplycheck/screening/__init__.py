@@ -1,0 +1,1 @@
+"""Screening of many hydrant tests: streamed rows in, results, rejects, map and report out."""
