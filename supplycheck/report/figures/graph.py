@@ -193,7 +193,9 @@ def _marks(marks: list[_Mark], frame: _Frame, units: UnitSet, taken: Taken) -> l
         flow_text = f"{flow:.{units.unit('flow').decimals}f} {units.symbol('flow')}"
         pressure_text = f"{pressure:.{units.unit('pressure').decimals}f} {units.symbol('pressure')}"
         text = f"{name}: {flow_text}, {pressure_text}".replace("-", "−")
-        found = taken.place(x, y, text, 6.6, gap=6.0, reach="far", down=style.startswith("demand"))
+        found = taken.place(
+            x, y, text, 6.6, gap=6.0, reach="far", down=_is_below(flow, pressure, marks, frame)
+        )
         if found is None:
             left_out.append(text)
         else:
@@ -205,6 +207,12 @@ def _marks(marks: list[_Mark], frame: _Frame, units: UnitSet, taken: Taken) -> l
     for place, text in enumerate(left_out):
         items.append(Label(_LEFT + 6, _BOTTOM + 6 + place * 8, text, 6.2, behind="#ffffff"))
     return items
+
+
+def _is_below(flow: float, pressure: float, marks: list[_Mark], frame: _Frame) -> bool:
+    """True where another mark stands over this one, so that its label had better go down."""
+    x = frame.x(flow)
+    return any(abs(frame.x(q) - x) < 70 and p > pressure for _, _, q, p in marks)
 
 
 def _mark(style: str, x: float, y: float) -> list[Item]:
