@@ -23,6 +23,7 @@ from supplycheck.units import BAR, UNIT_SETS, UnitSet
 
 StandardName = Literal["NFPA 13", "EN 12845"]
 EN_COMPONENT_PRESSURE = 12 * BAR
+NO_HAZARD = "none"
 _DRY_LIKE = ("dry", "double interlock preaction")
 
 
@@ -158,7 +159,7 @@ class CriteriaReader:
             )
         return density
 
-    def _quick_response(self, row: HazardRow) -> AreaModifier | None:
+    def _quick_response(self, row: HazardRow | None) -> AreaModifier | None:
         table = self.table
         if not table.quick_response:
             return None
@@ -167,11 +168,12 @@ class CriteriaReader:
                 "quick_response", "EN 12845 knows no reduction for quick response", remedy="set it to false"
             )
             return None
-        if table.system != "wet" or not row.name.startswith(("light", "ordinary")):
+        allowed = row is None or row.name.startswith(("light", "ordinary"))
+        if table.system != "wet" or not allowed:
             self._fault(
                 "quick_response",
                 "the reduction is not allowed here",
-                found=f"{table.system} system, {row.name}",
+                found=f"{table.system} system, {row.name if row else table.hazard}",
                 allowed="wet systems in light and ordinary hazard",
                 remedy="set it to false",
             )
@@ -299,9 +301,16 @@ class CriteriaReader:
         return row.maximum_coverage, row.maximum_spacing
 
     def read(self) -> tuple[Criteria | None, HazardRow | None]:
-        """Return the criteria and the row of the hazard class; ``None`` with faults noted."""
+        """Return the criteria and the row of the hazard class; ``None`` with faults noted.
+
+        With the hazard ``none`` there is no row, and the criteria say that there are no sprinklers.
+        """
+        if self.table.hazard.casefold() == NO_HAZARD:
+            return self._without_sprinklers(), None
         row = self._hazard()
         if row is None:
+            self._quick_response(None)
+            self._slope()
             return None, None
         table = self.table
         density, area = self._density_and_area(row)
@@ -343,6 +352,30 @@ class CriteriaReader:
             ceiling_height=table.ceiling_height.si(self.units) if table.ceiling_height else None,
         )
         return criteria, row
+
+    def _without_sprinklers(self) -> Criteria:
+        table = self.table
+        return Criteria(
+            standard=self.standard.name,
+            edition=self.standard.edition,
+            hazard="no sprinklers",
+            density=0.0,
+            base_area=0.0,
+            modifiers=(),
+            required_area=0.0,
+            minimum_heads=0,
+            shape_factor=1.0,
+            design_area=(),
+            system=table.system,
+            minimum_pressure=0.0,
+            duration=table.duration.si(self.units) if table.duration else None,
+            maximum_coverage=None,
+            maximum_spacing=None,
+            velocity=self._velocity(),
+            maximum_pressure=self._maximum_pressure(),
+            velocity_pressure=False,
+            source="no sprinklers in the project",
+        )
 
     def _shape(self) -> float:
         if self.standard.name == "NFPA 13":

@@ -138,7 +138,6 @@ class KindReader:
                 self.sections.place(f"pipe.{name}.roughness"),
                 str(caught),
                 found=f"material {quoted(table.material)}",
-                remedy="give roughness",
             )
             return None, ""
         text = units.text(row.value, "roughness")

@@ -9,7 +9,7 @@ from __future__ import annotations
 import copy
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from typing import Any, Final, TypeVar
+from typing import Any, Final, TypeVar, get_args, get_origin
 
 from pydantic import ValidationError
 
@@ -23,6 +23,7 @@ from supplycheck.project.schema import (
     FluidTable,
     ProjectFile,
 )
+from supplycheck.project.schema_duty import FireFlowTable, HydrantTable, StandpipeTable
 from supplycheck.project.schema_parts import LONGEST_TAG, Table
 from supplycheck.project.schema_supply import HoseTable, ScenarioTable, SupplyTable
 from supplycheck.project.schema_system import (
@@ -38,6 +39,14 @@ AnyTable = TypeVar("AnyTable", bound=Table)
 Loc = Sequence[str | int]
 
 _REQUIRED: Final = ("project", "criteria", "supply")
+_DUTIES: Final = ("standpipe", "fire_flow", "hydrant")
+
+
+class AnyName(frozenset[str]):
+    """Names of which some could not be read: every name is taken to be among them."""
+
+    def __contains__(self, name: object) -> bool:
+        return True
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,6 +71,9 @@ class Sections:
     pipes: Mapping[str, PipeTable]
     devices: Mapping[str, DeviceTable]
     scenarios: tuple[tuple[int, ScenarioTable], ...]
+    standpipe: StandpipeTable | None
+    fire_flow: FireFlowTable | None
+    hydrants: tuple[tuple[int, HydrantTable], ...]
     declared: Mapping[str, frozenset[str]]
     present: frozenset[str]
     tests_listed: bool
@@ -166,7 +178,7 @@ def _note(
             remedy=context["remedy"],
         )
     elif kind in ("literal_error", "enum"):
-        expected = str(context["expected"]).replace("'", '"')
+        expected = str(context["expected"]).replace("'", '"') + _or_else(table, steps)
         close = near(value, str(context["expected"]).split("'")[1::2]) if isinstance(value, str) else ""
         faults.add(
             place,
@@ -183,7 +195,7 @@ def _note(
         faults.add(place, "is out of range", found=quoted(value), allowed=f"{context[key]} {words}")
     elif kind in ("too_short", "too_long"):
         low, high = context.get("min_length"), context.get("max_length")
-        allowed = f"at least {low} entries" if low is not None else f"at most {high} entries"
+        allowed = f"{low} or more" if low is not None else f"{high} or fewer"
         faults.add(
             place,
             "has a wrong number of entries",
@@ -193,6 +205,16 @@ def _note(
     else:
         message = str(error["msg"])
         faults.add(place, message[:1].lower() + message[1:], found=quoted(value))
+
+
+def _or_else(table: type[Table], steps: Sequence[str | int]) -> str:
+    """Return what a key may hold beside its words: a list or a table."""
+    field = _table_at(table, steps[:-1]).model_fields.get(str(steps[-1])) if steps else None
+    if field is None:
+        return ""
+    if any(get_origin(part) is list for part in get_args(field.annotation)):
+        return ", or a list of tags in square brackets"
+    return ", or a table of keys" if describe.table_in(field.annotation) else ""
 
 
 def _is_noise(error: Mapping[str, Any], raw: object) -> bool:
@@ -248,7 +270,7 @@ def _named(
         return {}, frozenset()
     if not isinstance(raw, dict):
         faults.add(Place(file, base), "is not a table", found=quoted(raw), allowed=f"tables [{base}.NAME]")
-        return {}, frozenset()
+        return {}, AnyName()
     found: dict[str, AnyTable] = {}
     for name, value in raw.items():
         place = Place(file, f"{base}.{name}")
@@ -271,25 +293,29 @@ def _named(
             checked = check_table(table, value, f"{base}.{name}", file, faults)
             if checked is not None:
                 found[name] = checked
-    return found, frozenset(raw)
+    flat = not all(isinstance(value, dict) for value in raw.values())
+    return found, AnyName(raw) if flat else frozenset(raw)
 
 
-def _scenarios(raw: object, file: str, faults: FaultList) -> tuple[tuple[int, ScenarioTable], ...]:
+def _listed(
+    table: type[AnyTable], raw: object, base: str, file: str, faults: FaultList
+) -> tuple[tuple[int, AnyTable], ...]:
+    """Return the checked tables of a list ``[[base]]`` with their numbers, from 1."""
     if raw is None:
         return ()
     if not isinstance(raw, list):
         faults.add(
-            Place(file, "scenario"),
+            Place(file, base),
             "is not a list of tables",
             found=quoted(raw),
-            allowed="[[scenario]] tables",
+            allowed=f"[[{base}]] tables",
         )
         return ()
     checked = [
-        (number, check_table(ScenarioTable, value, f"scenario[{number}]", file, faults))
+        (number, check_table(table, value, f"{base}[{number}]", file, faults))
         for number, value in enumerate(raw, start=1)
     ]
-    return tuple((number, table) for number, table in checked if table is not None)
+    return tuple((number, one) for number, one in checked if one is not None)
 
 
 def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Sections:
@@ -313,7 +339,7 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
             allowed='"us" or "metric"',
         )
     for key in _REQUIRED:
-        if key not in raw:
+        if key not in raw and not (key == "criteria" and any(duty in raw for duty in _DUTIES)):
             faults.add(Place(file, key), "the table is missing", remedy=f"add a table [{key}]")
 
     def one(table: type[AnyTable], key: str) -> AnyTable | None:
@@ -337,7 +363,10 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
         sprinklers=sprinklers,
         pipes=pipes,
         devices=devices,
-        scenarios=_scenarios(raw.get("scenario"), file, faults),
+        scenarios=_listed(ScenarioTable, raw.get("scenario"), "scenario", file, faults),
+        standpipe=one(StandpipeTable, "standpipe"),
+        fire_flow=one(FireFlowTable, "fire_flow"),
+        hydrants=_listed(HydrantTable, raw.get("hydrant"), "hydrant", file, faults),
         declared={"sprinkler": sprinkler_names, "pipe": pipe_names, "device": device_names},
         present=frozenset(raw),
         tests_listed=isinstance(supply, dict) and isinstance(supply.get("flow_test"), list),

@@ -54,7 +54,7 @@ FLOW_TEST = "supply.flow_test"
         ("head_spacing = 13", "head_spacing = -13", "layout.head_spacing", "is negative", "-13"),
         ("head_spacing = 13", "head_spacing = 0", "layout.head_spacing", "is zero", "above zero"),
         ("heads = [2, 2]", "heads = [0, 0]", "layout.heads", "no heads", "at least one"),
-        ("heads = [2, 2]", "heads = [2, 2, 2]", "layout.heads", "number of entries", "at most 2"),
+        ("heads = [2, 2]", "heads = [2, 2, 2]", "layout.heads", "number of entries", "2 or fewer"),
         ("lines = 3", "lines = 0", "layout.lines", "out of range", "1 or more"),
         ("lines = 3", "lines = 3.5", "layout.lines", "whole number", "3.5"),
         ('"2"]', '"2 3/8"]', "layout.cross_main.sizes", "is not a size of steel", "2 1/2"),
@@ -343,3 +343,30 @@ def test_a_circle_of_links_is_a_fault(tmp_path: Path) -> None:
     (tmp_path / "b.toml").symlink_to(tmp_path / "a.toml")
     with pytest.raises(ProjectFaultsError):
         read_project(tmp_path / "a.toml")
+
+
+def test_flat_keys_of_a_named_table_are_explained_once(tmp_path: Path) -> None:
+    fault = only(faults(tmp_path, spoilt("[pipe.lines]", "[pipe]")))
+    assert "[pipe.NAME]" in fault.remedy
+
+
+def test_a_wrong_hazard_hides_no_other_criterion(tmp_path: Path) -> None:
+    text = spoilt("NFPA 13 (2022)", "EN 12845 (2015)").replace("hazard group 1", "hazard group 9")
+    text = text.replace('"wet"', '"wet"\nquick_response = true\nslope_over_1_in_6 = true')
+    assert {fault.place.where for fault in faults(tmp_path, text)} == {
+        "criteria.hazard",
+        "criteria.quick_response",
+        "criteria.slope_over_1_in_6",
+    }
+
+
+@pytest.mark.parametrize(
+    ("line", "hint"),
+    [
+        ("design_area = 5", "a list of tags"),
+        ('design_area = "serch"', 'did you mean "search"?'),
+        ("velocity_limit = 5", "a table of keys"),
+    ],
+)
+def test_a_choice_names_all_its_forms(tmp_path: Path, line: str, hint: str) -> None:
+    assert hint in str(only(faults(tmp_path, spoilt('"wet"', f'"wet"\n{line}'))))
