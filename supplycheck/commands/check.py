@@ -24,7 +24,7 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
 
 
 @click.command()
-@click.argument("project", type=click.Path(path_type=Path))
+@click.argument("projects", metavar="PROJECT...", nargs=-1, required=True, type=click.Path(path_type=Path))
 @click.option(
     "--out",
     type=click.Path(path_type=Path, file_okay=False),
@@ -32,12 +32,26 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
 )
 @click.option("--json", "as_json", is_flag=True, help="Print result.json instead of the screen answer.")
 @click.option("--no-files", is_flag=True, help="Write no files; only print the answer.")
-def command(project: Path, out: Path | None, as_json: bool, no_files: bool) -> None:
+@click.option(
+    "--jobs",
+    type=click.IntRange(1, 64),
+    default=1,
+    show_default=True,
+    help="Projects checked at a time, where there are several.",
+)
+def command(projects: tuple[Path, ...], out: Path | None, as_json: bool, no_files: bool, jobs: int) -> None:
     """Check the system in PROJECT (a project.toml, or its folder) against its water supply.
 
     Writes result.json, review.pdf, nodes.csv, pipes.csv and tables.xlsx.
+
+    Several PROJECTs, or a folder that holds project folders, are checked one by one, each in a process of
+    its own: one line each, a table portfolio.csv, and the highest exit code of them all.
     """
-    sys.exit(run(project, out, as_json=as_json, no_files=no_files))
+    from supplycheck.commands.portfolio import is_portfolio, run_portfolio
+
+    if is_portfolio(projects):
+        sys.exit(run_portfolio(projects, out, jobs=jobs, as_json=as_json, no_files=no_files))
+    sys.exit(run(projects[0], out, as_json=as_json, no_files=no_files))
 
 
 def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> int:
