@@ -159,28 +159,31 @@ def _header(
     for column, width, (lines, unit) in zip(columns, grid.widths, head, strict=True):
         y = sheets.y + 3.5 + (grid.leading if has_units else 0.0)
         for line in reversed(lines):
-            items.append(_cell(x, y, width, line, grid.size, column.right, True))
+            items.append(_cell(x, y, width, line, _Style(grid.size, column.right, bold=True)))
             y += grid.leading
         if unit:
-            items.append(_cell(x, sheets.y + 3.5, width, unit, grid.size, column.right, False, SLATE))
+            items.append(
+                _cell(x, sheets.y + 3.5, width, unit, _Style(grid.size, column.right, colour=SLATE))
+            )
         x += width
     items.append(Line(((sheets.left, sheets.y), (x, sheets.y)), SLATE, 0.8))
     sheets.put(*items)
 
 
-def _cell(
-    x: float,
-    y: float,
-    width: float,
-    text: str,
-    size: float,
-    right: bool,
-    bold: bool,
-    colour: str = INK,
-) -> Label:
-    if right:
-        return Label(x + width - PAD, y, text, size, "end", bold, colour)
-    return Label(x + PAD, y, text, size, "start", bold, colour)
+@dataclass(frozen=True, slots=True)
+class _Style:
+    """How the text of a cell is written."""
+
+    size: float
+    right: bool
+    bold: bool = False
+    colour: str = INK
+
+
+def _cell(left: float, y: float, width: float, text: str, style: _Style) -> Label:
+    if style.right:
+        return Label(left + width - PAD, y, text, style.size, "end", style.bold, style.colour)
+    return Label(left + PAD, y, text, style.size, "start", style.bold, style.colour)
 
 
 def _row(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: _Laid) -> None:
@@ -216,10 +219,11 @@ def _part(
     items: list[Item] = []
     x = sheets.left
     for column, width, cell in zip(columns, grid.widths, lines, strict=True):
+        style = _Style(grid.size, column.right, row.strong)
         for place, line in enumerate(cell[start : start + taken]):
             y = top - (place + 1) * grid.leading + grid.size * 0.12
             if line:
-                items.append(_cell(x, y, width, line, grid.size, column.right, row.strong))
+                items.append(_cell(x, y, width, line, style))
         x += width
     for place, line in enumerate(notes):
         at = deep + place - start

@@ -16,7 +16,7 @@ import pandas as pd
 
 from supplycheck.findings import Finding
 from supplycheck.results.display import finding_text, in_order, measure_text, remedy_text, visible
-from supplycheck.results.json import Plain
+from supplycheck.results.json_rows import Plain
 from supplycheck.results.records import NodeRow, PathStep, PipeRow, Placement, Result, ScenarioRow
 from supplycheck.units import UNIT_SETS, UnitSet
 

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import Final
 
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
-from supplycheck.report.figures.axes import Taken, plain, put_label, round_steps, short
+from supplycheck.report.figures.axes import Reach, Taken, plain, put_label, round_steps, short
 from supplycheck.report.figures.outline import Window, cells_of_heads, clipped, outline_of
 from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, SAND, SLATE, text_width
 from supplycheck.results.records import NodeRow, PipeRow, Result
@@ -51,6 +51,22 @@ class Scale:
             self.left + (x - self.window.x0) * self.factor,
             self.bottom + (y - self.window.y0) * self.factor,
         )
+
+
+@dataclass(frozen=True, slots=True)
+class _Ground:
+    """What everything on one plan is drawn with."""
+
+    scale: Scale
+    places: Places
+    taken: Taken
+    units: UnitSet
+    enlarged: bool
+    crowded: bool
+
+    def of(self, tag: str) -> tuple[float, float]:
+        """Return where node ``tag`` stands on the drawing."""
+        return self.scale.at(*self.places[tag])
 
 
 def places_of(result: Result) -> Places:
@@ -136,13 +152,13 @@ def _view(
     items: list[Item] = [Box(0, _BAR_ROOM, width, height - _BAR_ROOM, PAPER, SLATE, 0.5)]
     items += _area(result, scale, taken)
     strokes = pipe_strokes(result.pipes)
-    crowded = len(inside) > CROWDED
+    ground = _Ground(scale, places, taken, units, enlarged, len(inside) > CROWDED)
     for pipe in result.pipes:
-        items += _pipe(pipe, places, scale, strokes, None if crowded else taken, enlarged=enlarged)
+        items += _pipe(pipe, ground, strokes)
     size_of = 2.3 if enlarged else max(0.8, min(2.0, 0.16 * scale.factor + 0.5))
     for node in inside:
-        items += _symbol(node, scale.at(*places[node.tag]), size_of, taken)
-    tags, shown, wanted = _tags(result, inside, places, scale, units, taken, enlarged=enlarged)
+        items += _symbol(node, ground.of(node.tag), size_of, taken)
+    tags, shown, wanted = _tags(result, inside, ground)
     items += tags
     items += _scale_bar(scale, units, width)
     items += _legend(width)
@@ -184,15 +200,8 @@ def pipe_strokes(pipes: tuple[PipeRow, ...]) -> dict[str, tuple[float, str]]:
     }
 
 
-def _pipe(
-    pipe: PipeRow,
-    places: Places,
-    scale: Scale,
-    strokes: dict[str, tuple[float, str]],
-    taken: Taken | None,
-    *,
-    enlarged: bool,
-) -> list[Item]:
+def _pipe(pipe: PipeRow, ground: _Ground, strokes: dict[str, tuple[float, str]]) -> list[Item]:
+    places, scale, taken = ground.places, ground.scale, ground.taken
     start, end = places.get(pipe.start), places.get(pipe.end)
     if start is None or end is None or start == end:
         return []
@@ -203,11 +212,11 @@ def _pipe(
     width, colour = strokes[pipe.nominal]
     dash = (2.0, 2.0) if pipe.valve == "closed" else ()
     items: list[Item] = [Line((a, b), colour, width, dash)]
-    if taken is None:
+    if ground.crowded:
         return items
     taken.take_line(a, b, width / 2 + 0.6)
     long = math.hypot(b[0] - a[0], b[1] - a[1])
-    if enlarged and long > 26 and pipe.flow > 0:
+    if ground.enlarged and long > 26 and pipe.flow > 0:
         middle = ((a[0] + b[0]) / 2, (a[1] + b[1]) / 2)
         taken.take((middle[0] - 3.5, middle[1] - 3.0, middle[0] + 3.5, middle[1] + 3.0))
         items.append(_arrow(a, b, long))
@@ -255,16 +264,7 @@ def _symbol(node: NodeRow, at: tuple[float, float], size: float, taken: Taken) -
     return [Box(x - half, y - half, 2 * half, 2 * half, SAND, INK, 0.6)]
 
 
-def _tags(
-    result: Result,
-    inside: list[NodeRow],
-    places: Places,
-    scale: Scale,
-    units: UnitSet,
-    taken: Taken,
-    *,
-    enlarged: bool,
-) -> tuple[list[Item], int, int]:
+def _tags(result: Result, inside: list[NodeRow], ground: _Ground) -> tuple[list[Item], int, int]:
     """Return the tags that fit, the most wanted first, and how many were placed and wanted."""
 
     def rank(node: NodeRow) -> int:
@@ -273,22 +273,20 @@ def _tags(
             return 0
         return 1 if node.in_design_area else 3 if node.kind == "sprinkler" else 2
 
+    enlarged, units = ground.enlarged, ground.units
     style = Label(0, 0, "", 5.8 if enlarged else 5.2)
     strong = Label(0, 0, "", 6.4, bold=True)
     items: list[Item] = []
     shown = 0
-    crowded = len(inside) > CROWDED
     for node in sorted(inside, key=rank):
-        if crowded and rank(node) > 1:
+        if ground.crowded and rank(node) > 1:
             break
         text = short(node.tag, 70, style.size)
         if enlarged and node.in_design_area:
             text = f"{short(node.tag, 46, style.size)}  {units.number(node.pressure, 'pressure')}"
-        at = scale.at(*places[node.tag])
         first = rank(node) == 0
-        label = put_label(
-            taken, at, text, strong if first else style, "around" if first or enlarged else "beside"
-        )
+        reach: Reach = "around" if first or enlarged else "beside"
+        label = put_label(ground.taken, ground.of(node.tag), text, strong if first else style, reach)
         if label is not None:
             items.append(label)
             shown += 1
