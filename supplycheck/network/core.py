@@ -41,8 +41,8 @@ HEAD_TOLERANCE: Final = 1e-5
 """Largest loss residual and slack of a converged state [Pa]."""
 FLOW_TOLERANCE: Final = 1e-9
 """Largest last step of a flow, as a part of the flow scale."""
-COARSE_HEAD: Final = 0.1
-"""Error of the supply pressure accepted where only the demand is asked [Pa]."""
+COARSE_HEAD: Final = 2.0
+"""Last step of the shift accepted where only the demand is asked [Pa]; the error left is far smaller."""
 MASS_TOLERANCE: Final = 1e-11
 """Largest imbalance of a node, as a part of the flow scale."""
 LEAST_RESPONSE: Final = 1e-9
@@ -135,11 +135,12 @@ def solve(
 ) -> State:
     """Return the converged state, or the last one with ``converged`` false after ``limit`` steps.
 
-    Not ``fine``: it is enough that the content still to be gained, for the flow that the supply gives, is
-    below :data:`COARSE_HEAD`; links that carry next to nothing may then be off by far more.
+    Not ``fine``: it is enough that the last step moved no shift by more than :data:`COARSE_HEAD`, and that
+    the content still to be gained is small; links that carry next to nothing may then be off by more.
     """
     energy, mass, slope = residuals(problem, state)
     for count in range(1, limit + 1):
+        before = state.shift
         try:
             step, shift, extra, head = _step(problem, state, energy, mass, slope)
         except (np.linalg.LinAlgError, RuntimeError):  # a singular matrix, dense or sparse
@@ -162,7 +163,8 @@ def solve(
         rounding = 1e-13 * float(np.abs(problem.fixed).max(initial=0.0))
         good = worst <= HEAD_TOLERANCE + rounding and moved <= FLOW_TOLERANCE * scale
         if not fine:
-            good = float((energy * energy / slope).sum()) <= COARSE_HEAD * scale
+            turn = float(np.abs(shift - before).max())
+            good = turn <= COARSE_HEAD and float((energy * energy / slope).sum()) <= COARSE_HEAD * scale
         good = good or (worst <= ROUGH_HEAD and count == limit)
         if good and lost <= MASS_TOLERANCE * scale and _slack(problem, head) <= HEAD_TOLERANCE + rounding:
             return replace(state, converged=True, energy=worst, mass=lost)

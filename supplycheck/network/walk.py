@@ -23,6 +23,8 @@ from supplycheck.network.assemble import Case, read_case
 from supplycheck.network.records import LoadCase
 
 SWEEPS = 200
+DRY = 1.0
+"""Pressure below which a side branch is taken to run dry [Pa]."""
 BALANCE = 1e-12
 """Largest difference of pressure left at a junction, as a part of that pressure."""
 
@@ -95,9 +97,13 @@ def walk_back(network: Network, load: LoadCase, required: Mapping[str, float], s
     remote = max(heads, key=lambda row: needed[row] + network.base[row] + 1e-9 * tree.depth[row])
     for _ in range(len(heads) + 1):
         walk = _Balance(network, case, tree, remote, needed[remote])
-        pressures = walk.settle()
+        balanced, pressures = walk.settle(), walk.pressures
         worst = min(heads, key=lambda row: pressures[row] - needed[row])
-        if pressures[worst] >= needed[worst] - 1e-9 * max(needed[worst], 1.0) or worst == remote:
+        met = pressures[worst] >= needed[worst] - 1e-9 * max(needed[worst], 1.0)
+        if worst == remote and not balanced:
+            raise NoSolutionError("the side branches did not balance")
+        if worst == remote or (balanced and met):
+            walk.check_wet()
             return walk.report()
         remote = worst
     raise NoSolutionError("the walk back found no head that governs")
@@ -191,8 +197,8 @@ class _Balance:
             paths.append(_Path(nodes, start))
         return paths
 
-    def settle(self) -> dict[int, float]:
-        """Balance all side branches; return the pressure at every node walked."""
+    def settle(self) -> bool:
+        """Balance all side branches; return whether they did, with the pressures at every node walked."""
         for self.sweeps in range(1, SWEEPS + 1):
             for path in reversed(self.paths):
                 self._walk(path)
@@ -203,8 +209,16 @@ class _Balance:
                 worst = max(worst, abs(miss) / max(abs(wanted), 1.0))
                 self._aim(path, miss)
             if worst <= BALANCE:
-                return self.pressures
-        raise NoSolutionError("the side branches did not balance")
+                return True
+            if any(path.pressure < DRY for path in self.paths):
+                break  # its head would run dry: it is more remote than the one the walk began at
+        return False
+
+    def check_wet(self) -> None:
+        """Raise :class:`NoSolutionError` where an open head has no pressure."""
+        dry = [self.network.node_tags[row] for row in self.k if self.pressures[row] <= 0]
+        if dry:
+            raise NoSolutionError(f"on the walk back these heads run dry: {', '.join(dry)}")
 
     def _aim(self, path: _Path, miss: float) -> None:
         """Set the start pressure at which the branch should arrive at the wanted pressure."""
@@ -219,12 +233,14 @@ class _Balance:
 
     def _added(self, node: int, pressure: float) -> tuple[float, float | None]:
         """Return the flow that joins at ``node`` and the equivalent K of side branches there."""
-        if pressure <= 0:
-            tag = self.network.node_tags[node]
-            raise NoSolutionError(f"the pressure at {tag} falls to zero on the walk back")
-        flow = self.fixed[node] + self.k.get(node, 0.0) * math.sqrt(pressure)
-        side = sum(path.flow / math.sqrt(path.arrives) for path in self.joins.get(node, ()))
-        return flow + side * math.sqrt(pressure), side or None
+        own = self.fixed[node] + self.k.get(node, 0.0) * math.sqrt(max(pressure, 0.0))
+        joining = self.joins.get(node, ())
+        if not joining:
+            return own, None
+        if pressure <= 0 or any(path.arrives <= 0 for path in joining):
+            return own + sum(path.flow for path in joining), None  # no K-factor without a pressure
+        side = sum(path.flow / math.sqrt(path.arrives) for path in joining)
+        return own + side * math.sqrt(pressure), side
 
     def _walk(self, path: _Path) -> list[WalkStep]:
         """Walk one path; record node pressures, where it arrives and with what flow."""
