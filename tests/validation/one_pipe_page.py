@@ -1,14 +1,9 @@
-"""Computed beside printed: the laws and one-pipe problems against published figures.
-
-Run ``python tests/validation/one_pipe_page.py docs/validation_parts/one_pipe.md`` to write the page.
-"""
+"""Computed beside printed: the laws and one-pipe problems against published figures."""
 
 from __future__ import annotations
 
 import math
-import sys
 from dataclasses import dataclass, replace
-from pathlib import Path
 
 from one_pipe_problems import (
     CENGEL_8_2,
@@ -272,34 +267,3 @@ def more_problem_rows() -> list[Row]:
         Row("Fox and McDonald 8.5: f", "0.0162", start.friction_factor, 5),
         Row("Fox and McDonald 8.5: pressure at the start, kPa", "153", start.drop / 1e3, 1),
     ]
-
-
-def page() -> str:
-    """Return the page as Markdown."""
-    parts = [
-        "## Friction losses of a published calculation",
-        "NFPA 13 annex sample calculation, Group I, 1500 ft² (from memory; its rows reproduce each other).",
-        annex_rows(),
-        "## Figures of the trade",
-        "NFPA 13 and 291, EN 12845 and handbooks (from memory unless the remark names more).",
-        trade_rows(),
-        "## Friction factors",
-        "Exact Colebrook factor.",
-        chart_rows(),
-        "## Text-book problems of one pipe",
-        "Fox and McDonald, *Introduction to Fluid Mechanics*; Çengel and Cimbala, *Fluid Mechanics*; "
-        "White, *Fluid Mechanics*. White, Fox and McDonald 8.5, Çengel and Cimbala 8-2 from memory.",
-        problem_rows() + more_problem_rows(),
-    ]
-    lines = []
-    for part in parts:
-        if isinstance(part, str):
-            lines += [part, ""]
-        else:
-            lines += ["| figure | printed | computed | remark |", "|---|---|---|---|"]
-            lines += [*(row.line for row in part), ""]
-    return "\n".join(lines)
-
-
-if __name__ == "__main__":
-    Path(sys.argv[1]).write_text(page(), encoding="utf-8")
