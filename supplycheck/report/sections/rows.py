@@ -37,7 +37,7 @@ def node_analysis(result: Result) -> Section:
     rows = tuple(_node(node, show, with_velocity=with_velocity) for node in nodes)
     note = "Heads in the design area are in bold. Pressures are gauge pressures in the demand solution."
     note += _left_out(len(result.nodes) - len(nodes), "nodes", "nodes.csv")
-    table = Table("", tuple(columns), rows, note, size=6.6)
+    table = Table("Nodes", tuple(columns), rows, note, size=6.6)
     return Section("Node analysis", (table,), fresh=True)
 
 
