@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+import math
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, replace
 from importlib.metadata import version as installed
 from itertools import repeat
 from pathlib import Path
@@ -10,14 +12,17 @@ from types import MappingProxyType
 from typing import Final
 
 from supplycheck import __version__, catalogue
-from supplycheck.checks import CheckContext, ClassFigures, ComparisonFacts, run_checks
+from supplycheck.checks import CheckContext, ClassFigures, ComparisonFacts, PumpRating, run_checks
 from supplycheck.demand import Candidates, demand_cases
-from supplycheck.errors import NotInCatalogueError
+from supplycheck.duties import DutyResult, Ground, solve_duties, without_hose
+from supplycheck.errors import DomainError, NotInCatalogueError
+from supplycheck.loads import load_of, required_of
 from supplycheck.model import DemandCase, Project
 from supplycheck.network import (
     DemandSummary,
-    LoadCase,
+    Network,
     Solution,
+    SourceCurve,
     build_network,
     demand_many,
     solve_demand,
@@ -27,9 +32,22 @@ from supplycheck.project import read_project
 from supplycheck.results.assemble import Stages, assemble
 from supplycheck.results.records import Placement, Result
 from supplycheck.scenarios import scenario_rows
-from supplycheck.supply import Comparison, compare, curve_points, hose_loads, source_curves, supply_curves
+from supplycheck.supply import (
+    Comparison,
+    NodeSupply,
+    compare,
+    curve_points,
+    source_curves,
+    supply_curves,
+)
+from supplycheck.supply.needed import needed_pump
+from supplycheck.supply.pumping import PumpAnswer, pump_answers
+from supplycheck.supply.pumping import Stages as SourceStages
+from supplycheck.supply.storage import TankAnswer, tank_answers
 
 Progress = Callable[[int, int], None]
+Spots = Mapping[str, tuple[float | None, float | None]]
+NO_SPRINKLERS: Final = Candidates((), (), "No sprinkler is part of this project.", "given")
 LIBRARIES: Final = ("numpy", "scipy", "pandas", "reportlab", "pydantic", "click", "openpyxl")
 
 
@@ -51,88 +69,128 @@ def check_project(path: Path, progress: Progress | None = None) -> Result:
 def check(project: Project, progress: Progress | None = None) -> Result:
     """Return the result for ``project``; raises :class:`NotConvergedError`."""
     network = build_network(project.system, law=project.law, fluid=project.fluid)
-    candidates = demand_cases(project)
+    candidates = demand_cases(project) if project.criteria.has_sprinklers else NO_SPRINKLERS
     curves = supply_curves(project)
     sources = source_curves(curves)
+    field = _Field(project, network, curves, sources)
     loads = [(load_of(project, case), required_of(case)) for case in candidates.cases]
-    summaries = demand_many(network, loads, sources, progress=progress)
-    placements = tuple(map(_placement, repeat(project), candidates.cases, summaries))
-    governing = min(range(len(placements)), key=lambda row: placements[row].margin)
-    case = candidates.cases[governing]
-    load, required = loads[governing]
     policy = project.criteria.velocity_pressure
-    solution = solve_demand(network, load, required, sources, velocity_pressure=policy)
-    comparison = compare(project, solution, curves)
-    operating = solve_operating(network, load, sources, velocity_pressure=policy)
-    context = _context(project, candidates, case, solution, operating, comparison)
+    summaries = demand_many(network, loads, sources, progress, velocity_pressure=policy) if loads else []
+    spots = {node.tag: (node.x, node.y) for node in project.system.nodes}
+    placements = tuple(map(_placement, candidates.cases, summaries, repeat(spots)))
+    hardest = min(range(len(placements)), key=lambda row: placements[row].margin, default=None)
+    sprinklers = None if hardest is None else candidates.cases[hardest]
+    duties = solve_duties(Ground(project, network, curves, sources, _hydrant_rank), sprinklers)
+    governing = field.solve(_governing(sprinklers, placements, duties))
+    own = governing if governing.case is sprinklers or sprinklers is None else field.solve(sprinklers)
+    drawn = without_hose(project, governing.case)
+    case, solution, comparison = governing.case, governing.solution, governing.comparison
+    operating = governing.operating
+    known = SourceStages(drawn, network, case, solution, operating, comparison, curves)
+    pumps = pump_answers(known)
+    needed = needed_pump(drawn, solution, comparison, curves, pumps, _pump_sizes(project))
+    context = _context(project, candidates, governing)
+    context = replace(context, pumps=pumps, needed_pump=needed, pump_ratings=_ratings(pumps))
+    context = replace(context, duties=duties.answer)
+    findings = run_checks(context, None if own is governing else _context(project, candidates, own))
     return assemble(
         Stages(
             project=project,
             candidates=candidates,
-            placements=placements,
+            placements=placements or (_placement(case, duties.summary, spots),),
             case=case,
             solution=solution,
             comparison=comparison,
-            graph=curve_points(project, solution, curves, comparison),
-            scenarios=scenario_rows(project, network, case, sources, operating),
-            findings=run_checks(context),
+            graph=curve_points(drawn, solution, curves, comparison),
+            scenarios=scenario_rows(project, network, own.case, sources, own.operating),
+            findings=findings,
             version=__version__,
             library_versions=MappingProxyType({name: installed(name) for name in LIBRARIES}),
+            pumps=pumps,
+            tanks=_tanks(project, solution, operating),
+            needed_pump=needed,
+            duties=duties.answer,
         )
     )
 
 
-def load_of(project: Project, case: DemandCase) -> LoadCase:
-    """Return what flows in ``case``: its heads and outlets, hose, and all other fixed outflows, each once."""
-    flows: dict[str, float] = dict(hose_loads(project)) if case.with_hose else {}
-    drawn = [(node.tag, node.fixed_flow) for node in project.system.nodes if node.fixed_flow]
-    for tag, flow in (*drawn, *case.flows, *((one.node, one.flow) for one in case.outlets)):
-        flows[tag] = flows.get(tag, 0.0) + flow
-    return LoadCase(case.heads, MappingProxyType(flows), case.closed_pipes)
+@dataclass(frozen=True, slots=True, eq=False)
+class _Solved:
+    """One case in full: the demand state, what really flows, and both sides compared."""
+
+    case: DemandCase
+    solution: Solution
+    operating: Solution
+    comparison: Comparison
 
 
-def required_of(case: DemandCase) -> Mapping[str, float]:
-    """Return the pressure [Pa] that ``case`` asks at each of its heads and outlets."""
-    return {
-        **dict(zip(case.heads, case.required_pressure, strict=True)),
-        **{outlet.node: outlet.minimum_pressure for outlet in case.outlets},
-    }
+@dataclass(frozen=True, slots=True, eq=False)
+class _Field:
+    """What a case is solved on."""
+
+    project: Project
+    network: Network
+    curves: Sequence[NodeSupply]
+    sources: Sequence[SourceCurve]
+
+    def solve(self, case: DemandCase) -> _Solved:
+        """Return ``case`` in full."""
+        load, policy = load_of(self.project, case), self.project.criteria.velocity_pressure
+        required, sources = required_of(case), self.sources
+        solution = solve_demand(self.network, load, required, sources, velocity_pressure=policy)
+        operating = solve_operating(self.network, load, sources, velocity_pressure=policy)
+        comparison = compare(without_hose(self.project, case), solution, self.curves)
+        return _Solved(case, solution, operating, comparison)
 
 
-def _placement(project: Project, case: DemandCase, summary: DemandSummary) -> Placement:
-    inside = set(case.heads)
-    spots = [
-        (node.x, node.y)
-        for node in project.system.nodes
-        if node.tag in inside and node.x is not None and node.y is not None
-    ]
-    centre = [sum(axis) / len(spots) for axis in zip(*spots, strict=True)] if spots else [None, None]
+def _governing(
+    sprinklers: DemandCase | None, placements: Sequence[Placement], duties: DutyResult
+) -> DemandCase:
+    """Return the case that leaves the least margin: of the sprinklers, or of another duty."""
+    least = min((one.margin for one in placements), default=math.inf)
+    harder = duties.summary is not None and duties.summary.shift < least
+    if duties.hardest is not None and (harder or sprinklers is None):
+        return duties.hardest
+    if sprinklers is None:
+        raise DomainError(
+            "there is nothing to judge: the project has no sprinklers, and no case of its standpipes or "
+            "hydrants counts; name one in counts"
+        )
+    return sprinklers
+
+
+def _hydrant_rank(flow: float) -> tuple[str, str, str]:
+    row = catalogue.hydrant_class(flow)
+    return row.name, row.colour, row.source
+
+
+def _placement(case: DemandCase, summary: DemandSummary | None, spots: Spots) -> Placement:
+    tags = (*case.heads, *(outlet.node for outlet in case.outlets))
+    xs = [x for x, _ in map(spots.__getitem__, tags) if x is not None]
+    ys = [y for _, y in map(spots.__getitem__, tags) if y is not None]
     return Placement(
         label=case.label,
         heads=case.heads,
-        required_pressure=summary.source_pressure,
-        flow=summary.total_flow,
-        margin=summary.shift,
+        required_pressure=summary.source_pressure if summary else math.nan,
+        flow=summary.total_flow if summary else math.nan,
+        margin=summary.shift if summary else math.nan,
         area=case.area,
-        x=centre[0],
-        y=centre[1],
+        x=sum(xs) / len(xs) if xs else None,
+        y=sum(ys) / len(ys) if ys else None,
     )
 
 
 def _context(
     project: Project,
     candidates: Candidates,
-    case: DemandCase,
-    solution: Solution,
-    operating: Solution,
-    comparison: Comparison,
+    solved: _Solved,
 ) -> CheckContext:
     return CheckContext(
         project=project,
-        case=case,
-        solution=solution,
-        comparison=_facts(comparison),
-        operating=operating,
+        case=solved.case,
+        solution=solved.solution,
+        comparison=_facts(solved.comparison),
+        operating=solved.operating,
         searched=candidates.mode == "search" and candidates.complete,
         placements_tried=len(candidates.cases),
         most_favourable_found=candidates.mode == "search" and candidates.complete,
@@ -158,6 +216,29 @@ def _facts(comparison: Comparison) -> ComparisonFacts:
         main_pressure_at_demand=main.available,
         margin_rule=comparison.rule.template,
     )
+
+
+def _ratings(pumps: Sequence[PumpAnswer]) -> Mapping[str, PumpRating]:
+    return {
+        pump.tag: PumpRating(pump.rating.flow, pump.rating.pressure)
+        for pump in pumps
+        if pump.rating is not None
+    }
+
+
+def _pump_sizes(project: Project) -> tuple[float, ...]:
+    """Return the rated flows [m³/s] in which pumps are made; none are standard under EN 12845."""
+    if project.criteria.standard != "NFPA 13":
+        return ()
+    return tuple(row.value for row in catalogue.pump_ratings())
+
+
+def _tanks(project: Project, solution: Solution, operating: Solution) -> tuple[TankAnswer, ...]:
+    nominal, actual = (
+        dict(zip(state.source_tags, state.source_flow.tolist(), strict=True))
+        for state in (solution, operating)
+    )
+    return tank_answers(project.supply.tanks, project.criteria.duration, nominal, actual)
 
 
 def _class_figures(project: Project) -> ClassFigures | None:

@@ -25,9 +25,11 @@ ALLOWED: dict[str, set[str]] = {
     "results": {"checks", "supply", "demand", "network", "model", "hydraulics"} | BASE,
     "report": {"results", "model"} | BASE,
     "scenarios": {"results", "supply", "network", "model", "errors"},
+    "loads": {"supply", "network", "model"},
+    "duties": {"loads", "demand", "supply", "network", "model", "errors"},
     "screening": {"project", "catalogue", "model", "hydraulics", "supply", "results", "report"} | BASE,
     "check": {"project", "scenarios", "catalogue", "model", "hydraulics", "network", "demand", "supply"}
-    | {"checks", "results", "report"}
+    | {"checks", "results", "report", "loads", "duties"}
     | BASE,
 }
 EVERYTHING = set(ALLOWED) | {"commands"}

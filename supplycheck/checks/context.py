@@ -7,7 +7,10 @@ from dataclasses import dataclass, field
 from types import MappingProxyType
 
 from supplycheck.model import DemandCase, Device, Node, Pipe, PipeKind, Project, Sprinkler
+from supplycheck.model.duty import DutyAnswer
 from supplycheck.network.records import Solution
+from supplycheck.supply.needed import NeededPump
+from supplycheck.supply.pumping import PumpAnswer
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,7 +70,9 @@ class CheckContext:
     tried, ``placements_tried`` how many; ``most_favourable_found`` that the area of the greatest flow is
     known too. ``catalogue_c`` is the catalogue's C-factor by the name of the pipe kind for the system at
     hand; ``reference_bores`` [m] by nominal size is the pipe for which the table of equivalent lengths is
-    printed. ``no_flow`` [Pa] by node is the pressure with every outlet shut where it was solved.
+    printed. ``no_flow`` [Pa] by node is the pressure with every outlet shut where it was solved. ``pumps``
+    are the facts of every pump, ``needed_pump`` the one that would close a gap. ``duties`` is what was
+    found for standpipes and hydrants.
     """
 
     project: Project
@@ -83,6 +88,9 @@ class CheckContext:
     reference_bores: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
     no_flow: Mapping[str, float] | None = None
     pump_ratings: Mapping[str, PumpRating] = field(default_factory=lambda: MappingProxyType({}))
+    pumps: tuple[PumpAnswer, ...] = ()
+    needed_pump: NeededPump | None = None
+    duties: DutyAnswer = field(default_factory=DutyAnswer)
     nodes: Mapping[str, Node] = field(init=False)
     kinds: Mapping[str, PipeKind] = field(init=False)
     sprinklers: Mapping[str, Sprinkler] = field(init=False)

@@ -6,15 +6,18 @@ from collections.abc import Iterable
 from typing import Final
 
 from supplycheck.checks import (
+    accuracy,
     area,
     balance,
     basis,
     devices,
+    duties,
     fittings,
     flow_record,
     heads,
     hose,
     pipes,
+    pumps,
     pumps_and_tanks,
     readings,
     water_supply,
@@ -26,10 +29,13 @@ from supplycheck.findings import Finding, State
 RULES: Final[tuple[Rule, ...]] = (
     *water_supply.RULES,
     *pumps_and_tanks.RULES,
+    *pumps.RULES,
     *area.RULES,
     *heads.RULES,
+    *duties.RULES,
     *hose.RULES,
     *readings.RULES,
+    *accuracy.RULES,
     *flow_record.RULES,
     *devices.RULES,
     *pipes.RULES,
@@ -39,19 +45,27 @@ RULES: Final[tuple[Rule, ...]] = (
 )
 """All rules; what weighs most stands first."""
 
+NO_SPRINKLERS: Final = "No sprinkler is part of the demand."
 DISPLAY_ORDER: Final[tuple[State, ...]] = ("fail", "ask authority", "missing", "ok", "not applicable")
 
 
-def run_checks(context: CheckContext) -> tuple[Finding, ...]:
+def run_checks(context: CheckContext, sprinklers: CheckContext | None = None) -> tuple[Finding, ...]:
     """Return what every rule finds, in display order; no rule is left out.
 
-    Where no sprinkler is open, the rules on heads and on the design area are not applicable.
+    ``sprinklers`` is the context of the hardest case of the sprinklers where another duty governs: the
+    rules on heads, design area and hose look there. Where no sprinkler is open they are not applicable.
     """
-    without = {rule.about.name for rule in (*area.RULES, *heads.RULES)} if not context.case.heads else set()
+    own = context if sprinklers is None else sprinklers
+    on_sprinklers = {rule.about.name for rule in (*area.RULES, *heads.RULES)}
+    on_hose = {rule.about.name for rule in hose.RULES}
+    none_there = not context.project.criteria.has_sprinklers
+    without = on_sprinklers if not own.case.heads else set()
+    if none_there:
+        without = on_sprinklers | on_hose | {basis.OCCUPANCY.name}
     return in_display_order(
-        rule.about.says("not applicable", "No sprinkler is part of the demand.")
+        rule.about.says("not applicable", NO_SPRINKLERS)
         if rule.about.name in without
-        else rule.run(context)
+        else rule.run(own if rule.about.name in on_sprinklers | on_hose else context)
         for rule in RULES
     )
 

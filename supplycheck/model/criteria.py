@@ -69,6 +69,11 @@ class Criteria:
     source: str
     ceiling_height: float | None = None
 
+    @property
+    def has_sprinklers(self) -> bool:
+        """False where the project has no sprinklers: its density and area are then zero."""
+        return self.density > 0
+
 
 @dataclass(frozen=True, slots=True)
 class FixedOutlet:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from supplycheck.findings import Place
 from supplycheck.model.criteria import Criteria, HoseAllowance
+from supplycheck.model.duty import HydrantDuty, StandpipeDuty
 from supplycheck.model.fluid import Fluid, FrictionLaw
 from supplycheck.model.supply import Supply
 from supplycheck.model.system import Origin, System
@@ -82,3 +83,5 @@ class Project:
     assumptions: tuple[Assumption, ...]
     files: tuple[InputFile, ...]
     origins: tuple[Assumption, ...] = ()
+    standpipes: StandpipeDuty | None = None
+    hydrants: HydrantDuty | None = None

@@ -25,6 +25,7 @@ from supplycheck.model import (
 from supplycheck.model.system import Origin
 from supplycheck.project.criteria import CriteriaReader, Standard, read_laws, read_standard
 from supplycheck.project.drafts import DraftSystem, Notes
+from supplycheck.project.duties import NO_HOSE, criteria_table, read_duties, with_duration
 from supplycheck.project.faults import FaultList, quoted
 from supplycheck.project.files import Folder
 from supplycheck.project.fittings import Lengths
@@ -245,16 +246,22 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
     system = _system(sections, folder, laws, standard, notes, faults)
     tags = TagCheck(system, sections, faults)
     criteria, row = None, None
-    if sections.criteria is not None and standard is not None:
-        criteria, row = CriteriaReader(sections, sections.criteria, standard, notes, faults).read()
-    if system is not None:
+    table = criteria_table(sections, system, faults)
+    if table is not None and standard is not None:
+        criteria, row = CriteriaReader(sections, table, standard, notes, faults).read()
+    duties = read_duties(sections, system, tags, notes, faults)
+    if system is not None and (criteria is None or criteria.has_sprinklers):
         _check_area(sections, criteria, system, tags, faults)
     fluid = read_fluid(sections, standard, laws, notes, faults)
     weight = fluid.unit_weight if fluid is not None else math.nan
     supply = None
     if sections.supply is not None:
         supply = SupplyReader(sections, sections.supply, tags, notes, faults, weight).read()
-    hose = _hose(sections, row, supply, tags, notes, faults) if supply else None
+    hose = None
+    if criteria is not None and not criteria.has_sprinklers and sections.hose is None:
+        hose = NO_HOSE
+    elif supply is not None:
+        hose = _hose(sections, row, supply, tags, notes, faults)
     scenarios = _scenarios(sections, tags, faults)
     facts = _facts(sections, standard) if standard else None
     faults.stop()
@@ -272,7 +279,7 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
     return Project(
         facts=facts,
         units=sections.units,
-        criteria=criteria,
+        criteria=with_duration(criteria, duties),
         system=system,
         supply=supply,
         hose=hose,
@@ -282,6 +289,8 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
         scenarios=scenarios,
         assumptions=tuple(notes.entries),
         files=folder.files(),
+        standpipes=duties.standpipes,
+        hydrants=duties.hydrants,
     )
 
 

@@ -18,6 +18,7 @@ from supplycheck.project.quantity import (
     Velocity,
     Viscosity,
 )
+from supplycheck.project.schema_duty import FireFlowTable, HydrantTable, StandpipeTable
 from supplycheck.project.schema_parts import LawName, Name, Table, Text, UnitsName, UnitTable
 from supplycheck.project.schema_supply import HoseTable, ScenarioTable, SupplyTable
 from supplycheck.project.schema_system import (
@@ -72,7 +73,7 @@ class CriteriaTable(UnitTable):
     """Design criteria. What is not given comes from the hazard class of the standard."""
 
     hazard: Name
-    """Hazard class, for example `ordinary hazard group 2`."""
+    """Hazard class, for example `ordinary hazard group 2`; `none` where there are no sprinklers."""
     system: Literal["wet", "dry", "preaction", "double interlock preaction", "deluge"]
     """Kind of system."""
     density: Density | None = None
@@ -128,8 +129,8 @@ class ProjectFile(Table):
     mm/min)."""
     project: FactsTable
     """Facts for the title block."""
-    criteria: CriteriaTable
-    """Design criteria."""
+    criteria: CriteriaTable | None = None
+    """Design criteria. Needed with sprinklers."""
     fluid: FluidTable | None = None
     """Fluid. Default: water."""
     sprinkler: Annotated[dict[str, SprinklerTable], Field(default_factory=dict)]
@@ -148,5 +149,11 @@ class ProjectFile(Table):
     """Supply."""
     hose: HoseTable | None = None
     """Hose allowance. Default: from the hazard class."""
+    standpipe: StandpipeTable | None = None
+    """Standpipes."""
+    fire_flow: FireFlowTable | None = None
+    """Fire flow of private hydrants."""
+    hydrant: Annotated[list[HydrantTable], Field(default_factory=list)]
+    """Private hydrants, `[[hydrant]]`. They need `fire_flow`."""
     scenario: Annotated[list[ScenarioTable], Field(default_factory=list)]
     """Scenarios, `[[scenario]]`."""

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from typing import Literal
-
 from pydantic import Field
 
+from supplycheck.model.duty import HydrantKind, StandpipeKind
 from supplycheck.project.quantity import (
     Area,
     Duration,
@@ -73,9 +72,7 @@ class StandpipeTable(UnitTable):
     """Node of the fire department connection."""
     added_flows: dict[str, FlowOrZero] = Field(default_factory=dict)
     """Further outflows by node at the same time, such as sprinklers of a partly sprinklered building."""
-    counts: list[Literal["risers", "horizontal", "with sprinklers"]] = Field(
-        default_factory=lambda: ["risers", "horizontal"]
-    )
+    counts: list[StandpipeKind] = Field(default=["risers", "horizontal"])
     """Kinds of case on which the verdict rests; the others are listed beside them."""
     source: Text = ""
     """Where own values come from."""
@@ -112,9 +109,7 @@ class FireFlowTable(UnitTable):
     """Pipes that may be shut, one at a time."""
     maximum_day: dict[str, FlowOrZero] = Field(default_factory=dict)
     """Outflows by node on the day of greatest use."""
-    counts: list[Literal["hydrants", "maximum day", "with sprinklers", "valve shut"]] = Field(
-        default_factory=lambda: ["hydrants", "maximum day"]
-    )
+    counts: list[HydrantKind] = Field(default=["hydrants", "maximum day"])
     """Kinds of case on which the verdict rests; the others are listed beside them."""
     source: Text = ""
     """Where own values come from."""

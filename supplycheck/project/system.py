@@ -231,6 +231,7 @@ def _note_bores(
 def _note_idle_devices(drafts: Sequence[DraftPipe], finisher: Finisher, faults: FaultList) -> None:
     """Note devices that stand in no pipe: their loss would be forgotten."""
     used = {tag for draft in drafts for tag in draft.devices}
+    used |= {table.device for _, table in finisher.sections.hydrants if table.device is not None}
     for tag in finisher.devices:
         if tag not in used:
             faults.add(

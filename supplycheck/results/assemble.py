@@ -4,13 +4,14 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from supplycheck.checks import open_questions
 from supplycheck.demand import Candidates
 from supplycheck.demand import Step as AreaStep
 from supplycheck.findings import Finding
 from supplycheck.model import DemandCase, Project
+from supplycheck.model.duty import DutyAnswer
 from supplycheck.network import Solution
 from supplycheck.results.balance import balance_of
 from supplycheck.results.display import value_text
@@ -22,15 +23,19 @@ from supplycheck.results.records import (
     GraphPoint,
     HandStep,
     MarginRecord,
+    NeededPump,
     NodeRow,
     Placement,
+    PumpAnswer,
+    PumpRecord,
     Result,
     ScenarioRow,
     SupplyRecord,
+    TankRecord,
     Verdict,
 )
 from supplycheck.results.rows import node_rows, pipe_rows
-from supplycheck.supply import Comparison, GraphData
+from supplycheck.supply import Comparison, CurveLine, GraphData, MarkedPoint
 from supplycheck.supply import Step as SupplyStep
 from supplycheck.units import UNIT_SETS
 
@@ -52,6 +57,10 @@ class Stages:
     findings: tuple[Finding, ...]
     version: str
     library_versions: Mapping[str, str]
+    pumps: tuple[PumpAnswer, ...] = ()
+    tanks: tuple[TankRecord, ...] = ()
+    needed_pump: NeededPump | None = None
+    duties: DutyAnswer = field(default_factory=DutyAnswer)
 
 
 def assemble(stages: Stages) -> Result:
@@ -83,18 +92,27 @@ def assemble(stages: Stages) -> Result:
         pipes=pipes,
         path=path,
         hand_check=hand_check(project, nodes, path),
-        curves=tuple(
-            CurvePoints(line.name, line.style, line.flows, line.pressures, line.extrapolated_from)
-            for line in stages.graph.lines
-        ),
-        points=tuple(
-            GraphPoint(point.name, point.style, point.flow, point.pressure) for point in stages.graph.points
-        ),
+        curves=_lines(stages.graph.lines),
+        points=_points(stages.graph.points),
         scenarios=stages.scenarios,
         findings=stages.findings,
         open_questions=open_questions(stages.findings),
         library_versions=stages.library_versions,
+        pumps=tuple(PumpRecord(one, _lines(one.lines), _points(one.points)) for one in stages.pumps),
+        tanks=stages.tanks,
+        needed_pump=stages.needed_pump,
+        duties=stages.duties,
     )
+
+
+def _lines(lines: Iterable[CurveLine]) -> tuple[CurvePoints, ...]:
+    return tuple(
+        CurvePoints(one.name, one.style, one.flows, one.pressures, one.extrapolated_from) for one in lines
+    )
+
+
+def _points(points: Iterable[MarkedPoint]) -> tuple[GraphPoint, ...]:
+    return tuple(GraphPoint(one.name, one.style, one.flow, one.pressure) for one in points)
 
 
 def _verdict(comparison: Comparison) -> Verdict:
@@ -126,6 +144,8 @@ def _verdict_text(verdict: Verdict, comparison: Comparison, show: Show) -> str:
 def _governs(nodes: tuple[NodeRow, ...], governing: str, case: DemandCase, show: Show) -> str:
     head = next(node for node in nodes if node.tag == governing)
     needs = f"{show(head.discharge, 'flow')} at {show(head.pressure, 'pressure')}"
+    if governing not in case.heads:
+        return f"{head.required_by} ({needs}) in {case.label}"
     return f"head {head.tag} ({needs}, set by {head.required_by}) in {case.label}"
 
 
@@ -142,6 +162,7 @@ def _demand(
         heads=len(case.heads),
         governing_head=solution.governing,
         governing_by=head.required_by,
+        outlet_flow=comparison.other_flow,
     )
 
 

@@ -83,7 +83,11 @@ def hand_check(
 
 
 def _head_line(head: NodeRow, units: UnitSet) -> HandStep:
-    k_factor = head.k_factor or 0.0
+    if not head.k_factor:
+        needed = units.text(head.required_pressure, "pressure")
+        formula = f"P = {units.text(head.pressure, 'pressure', 3)}, needed {needed}; Q is fixed"
+        return HandStep(head.tag, formula, head.discharge, "flow", f"set by {head.required_by}")
+    k_factor = head.k_factor
     pressure = head.pressure - (head.velocity_pressure or 0.0)
     what = "Pn = Pt − Pv" if head.velocity_pressure else "P"
     formula = (

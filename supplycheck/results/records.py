@@ -13,7 +13,16 @@ from typing import Literal
 
 from supplycheck.findings import Finding
 from supplycheck.model import Project
+from supplycheck.model.duty import DutyAnswer
 from supplycheck.model.system import Fitting
+from supplycheck.supply.needed import NeededPump as NeededPump
+from supplycheck.supply.pumping import PumpAnswer as PumpAnswer
+from supplycheck.supply.pumping import PumpState as PumpState
+from supplycheck.supply.storage import TankAnswer
+from supplycheck.supply.storage import TankLine as TankLine
+
+TankRecord = TankAnswer
+"""A tank or reservoir: what it must hold, how long it lasts, its time line."""
 
 Verdict = Literal["adequate", "not adequate", "undetermined"]
 
@@ -178,7 +187,7 @@ class DesignAreaRecord:
 
 @dataclass(frozen=True, slots=True)
 class DemandRecord:
-    """The demand at the point of comparison."""
+    """The demand at the point of comparison; ``outlet_flow`` is neither sprinklers nor hose."""
 
     node: str
     flow: float
@@ -188,6 +197,7 @@ class DemandRecord:
     heads: int
     governing_head: str
     governing_by: str
+    outlet_flow: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -256,6 +266,15 @@ class ScenarioRow:
 
 
 @dataclass(frozen=True, slots=True)
+class PumpRecord:
+    """A fire pump: its facts in every state, and the lines and points of the graph at the pump."""
+
+    facts: PumpAnswer
+    curves: tuple[CurvePoints, ...]
+    points: tuple[GraphPoint, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class Result:
     """The complete answer for one project."""
 
@@ -279,3 +298,7 @@ class Result:
     findings: tuple[Finding, ...]
     open_questions: tuple[str, ...]
     library_versions: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
+    pumps: tuple[PumpRecord, ...] = ()
+    tanks: tuple[TankRecord, ...] = ()
+    needed_pump: NeededPump | None = None
+    duties: DutyAnswer = field(default_factory=DutyAnswer)

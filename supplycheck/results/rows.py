@@ -17,7 +17,7 @@ from supplycheck.results.records import NodeRow, PipeRow
 
 @dataclass(frozen=True, slots=True)
 class _Required:
-    """What the demand case asks of one head."""
+    """What the demand case asks of one head or outlet."""
 
     flow: float
     pressure: float
@@ -25,9 +25,11 @@ class _Required:
 
 
 def requirements(case: DemandCase) -> Mapping[str, _Required]:
-    """Return what ``case`` asks of each of its heads, by node tag."""
+    """Return what ``case`` asks of each of its heads and outlets, by node tag."""
     columns = zip(case.heads, case.required_flow, case.required_pressure, case.required_by, strict=True)
-    return {tag: _Required(flow, pressure, by) for tag, flow, pressure, by in columns}
+    heads = {tag: _Required(flow, pressure, by) for tag, flow, pressure, by in columns}
+    outlets = {one.node: _Required(one.flow, one.minimum_pressure, one.what) for one in case.outlets}
+    return {**heads, **outlets}
 
 
 def k_factor_of(project: Project, node: Node) -> float | None:
@@ -39,7 +41,7 @@ def k_factor_of(project: Project, node: Node) -> float | None:
 
 def node_rows(project: Project, case: DemandCase, solution: Solution) -> tuple[NodeRow, ...]:
     """Return one row for each node, in the order of the project."""
-    asked = requirements(case)
+    asked, inside = requirements(case), set(case.heads)
     rows = []
     for index, node in enumerate(project.system.nodes):
         required = asked.get(node.tag)
@@ -59,9 +61,9 @@ def node_rows(project: Project, case: DemandCase, solution: Solution) -> tuple[N
                 area=node.area,
                 branch_line=node.branch_line,
                 sprinkler=node.sprinkler,
-                in_design_area=required is not None,
+                in_design_area=node.tag in inside,
                 velocity_pressure=(
-                    float(solution.velocity_pressure[index])
+                    float(solution.outlet_velocity_pressure[index])
                     if project.criteria.velocity_pressure and required
                     else None
                 ),
