@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -64,13 +64,10 @@ def read_case(network: Network, load: LoadCase, required: Mapping[str, float] | 
         is negative or not finite, or nothing is asked.
     """
     required = required or {}
-    lost = [
-        tag for tag in (*load.open_outlets, *load.fixed_flows, *required) if tag not in network.node_rows
-    ]
-    lost += [tag for tag in load.closed_pipes if tag not in network.pipe_rows]
-    if lost:
-        raise _input_error("the load case names nodes or pipes that do not exist", lost, "correct the tags")
-    outlets = np.array([network.node_rows[tag] for tag in dict.fromkeys(load.open_outlets)], dtype=np.int64)
+    outlets = _rows(network.node_rows, dict.fromkeys(load.open_outlets))
+    drawn = _rows(network.node_rows, load.fixed_flows)
+    floor_rows = _rows(network.node_rows, required)
+    closed = _rows(network.pipe_rows, load.closed_pipes)
     k_factor = network.k_factor[outlets]
     if not (k_factor > 0).all():
         bare = [network.node_tags[row] for row in outlets[~(k_factor > 0)]]
@@ -78,23 +75,32 @@ def read_case(network: Network, load: LoadCase, required: Mapping[str, float] | 
             "open outlets have no K-factor", bare, "give their sprinkler type or their own K"
         )
     outflow = np.zeros(len(network.node_tags))
-    for tag, flow in load.fixed_flows.items():
+    for row, (tag, flow) in zip(drawn.tolist(), load.fixed_flows.items(), strict=True):
         if not (flow >= 0 and math.isfinite(flow)):
             raise _input_error(f"fixed outflow of {flow} m³/s", [tag], "give a flow of zero or more")
-        outflow[network.node_rows[tag]] += flow
+        outflow[row] += flow
     shut = network.closed
-    if load.closed_pipes:
+    if len(closed):
         shut = shut.copy()
-        shut[[network.pipe_rows[tag] for tag in load.closed_pipes]] = True
+        shut[closed] = True
     return Case(
         outlets=outlets,
         k_factor=k_factor,
         offset=np.zeros(len(outlets)),
         outflow=outflow,
         shut=shut,
-        floor_rows=np.array([network.node_rows[tag] for tag in required], dtype=np.int64),
+        floor_rows=floor_rows,
         floors=np.array(list(required.values()), dtype=np.float64),
     )
+
+
+def _rows(known: Mapping[str, int], tags: Iterable[str]) -> IntArray:
+    tags = tuple(tags)
+    rows = list(map(known.get, tags))
+    if None in rows:
+        lost = [tag for tag in tags if tag not in known]
+        raise _input_error("the load case names nodes or pipes that do not exist", lost, "correct the tags")
+    return np.array(rows, dtype=np.int64)
 
 
 def read_feed(network: Network, sources: Sequence[SourceCurve], *, demand: bool) -> Feed:

@@ -30,11 +30,13 @@ def check_structure(network: Network, links: Links, case: Case, feed: Feed) -> N
         With cause ``"structure"`` where one cannot, ``"input"`` where two unequal fixed pressures
         are joined by pipes without resistance.
     """
-    asked = np.unique(np.concatenate([case.outlets, case.floor_rows, np.flatnonzero(case.outflow)]))
+    asked = np.flatnonzero(case.keep())
     nodes = len(network.node_tags)
     graph = csr_array((np.ones(len(links), dtype=np.int8), (links.start, links.end)), (nodes, nodes))
-    _, label = connected_components(graph, directed=False)
-    lost = asked[~np.isin(label[asked], label[feed.rows])]
+    parts, label = connected_components(graph, directed=False)
+    fed = np.zeros(parts, dtype=bool)
+    fed[label[feed.rows]] = True
+    lost = asked[~fed[label[asked]]]
     if len(lost):
         raise _error(
             "structure",

@@ -150,7 +150,7 @@ def _notes(
         for row, inflow in zip(feed.rows.tolist(), supplied.tolist(), strict=True)
         if inflow < 0
     ]
-    dry = [nodes[row] for row in case.outlets.tolist() if pressure[row] <= 0]
+    dry = [nodes[row] for row in case.outlets[pressure[case.outlets] <= 0].tolist()]
     if dry:
         notes.append(f"open outlets that run dry: {', '.join(dry)}")
     regulating = {
