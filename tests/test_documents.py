@@ -43,3 +43,10 @@ def test_links_between_documents_lead_somewhere() -> None:
         for target in re.findall(r"\]\(([^)#\s]+)\)", page.read_text(encoding="utf-8")):
             if "://" not in target:
                 assert (page.parent / target).exists(), f"{page.name}: {target}"
+
+
+@pytest.mark.parametrize("page", PAGES[1:], ids=[page.name for page in PAGES[1:]])
+def test_every_page_has_a_line_in_the_index(page: Path) -> None:
+    index = (ROOT / "docs" / "index.md").read_text(encoding="utf-8")
+    lines = [line for line in index.splitlines() if f"]({page.name})" in line]
+    assert len(lines) == (page.name != "index.md"), "one line a page in docs/index.md"
