@@ -294,7 +294,7 @@ class _Reader:
         tested = supply.curve.tested_flow - drawn
         carried = max(tested, 0.0) if tested < end else None
         both = tuple(low + gain for low, gain in zip(below, gains, strict=True))
-        style: Literal["tank", "adjusted"] = "tank" if supply.tank is not None else "adjusted"
+        style: Literal["tank", "measured"] = "tank" if supply.tank is not None else "measured"
         name = f"{supply.tank.tag} at the suction" if supply.tank is not None else "main at the suction"
         return (
             CurveLine(name, style, kept, below, carried),
