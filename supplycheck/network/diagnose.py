@@ -32,7 +32,7 @@ def check_structure(network: Network, links: Links, case: Case, feed: Feed) -> N
     """
     asked = np.flatnonzero(case.keep())
     nodes = len(network.node_tags)
-    graph = csr_array((np.ones(len(links), dtype=np.int8), (links.start, links.end)), (nodes, nodes))
+    graph = csr_array((np.ones(len(links)), (links.start, links.end)), (nodes, nodes))
     parts, label = connected_components(graph, directed=False)
     fed = np.zeros(parts, dtype=bool)
     fed[label[feed.rows]] = True
@@ -63,7 +63,7 @@ def _check_one_way(network: Network, links: Links, asked: IntArray, sources: Int
     both = ~links.one_way
     rows = np.concatenate([links.start, links.end[both], np.full(len(sources), nodes)])
     cols = np.concatenate([links.end, links.start[both], sources])
-    graph = csr_array((np.ones(len(rows), dtype=np.int8), (rows, cols)), (nodes + 1, nodes + 1))
+    graph = csr_array((np.ones(len(rows)), (rows, cols)), (nodes + 1, nodes + 1))
     reached = breadth_first_order(graph, nodes, return_predecessors=False)
     lost = asked[~np.isin(asked, reached)]
     if len(lost):
@@ -85,9 +85,7 @@ def _check_short_circuit(network: Network, links: Links, feed: Feed) -> None:
     if not bare.any():
         return
     nodes = len(network.node_tags)
-    graph = csr_array(
-        (np.ones(int(bare.sum()), dtype=np.int8), (links.start[bare], links.end[bare])), (nodes, nodes)
-    )
+    graph = csr_array((np.ones(int(bare.sum())), (links.start[bare], links.end[bare])), (nodes, nodes))
     _, label = connected_components(graph, directed=False)
     rows = feed.rows[feed.fixed]
     head = np.array([law.static for law, held in zip(feed.laws, feed.fixed, strict=True) if held])
@@ -115,7 +113,7 @@ def check_reached(network: Network, case: Case, pressure: FloatArray) -> tuple[s
     if not len(lost):
         return ()
     links, nodes = network.links, len(network.node_tags)
-    graph = csr_array((np.ones(len(links), dtype=np.int8), (links.start, links.end)), (nodes, nodes))
+    graph = csr_array((np.ones(len(links)), (links.start, links.end)), (nodes, nodes))
     _, label = connected_components(graph, directed=False)
     fed = np.unique(label[np.isfinite(pressure)])
     never = lost[~np.isin(label[lost], fed)]

@@ -185,7 +185,7 @@ def _parts(problem: Problem, closed: BoolArray) -> tuple[IntArray, BoolArray]:
     total = n + len(problem.fixed)
     open_ = ~closed
     rows, cols = problem.start[open_], problem.end[open_]
-    graph = csr_array((np.ones(len(rows), dtype=np.int8), (rows, cols)), (total, total))
+    graph = csr_array((np.ones(len(rows)), (rows, cols)), (total, total))
     count, label = connected_components(graph, directed=False)
     held = np.zeros(count, dtype=bool)
     held[label[n:]] = True

@@ -85,7 +85,7 @@ class _Band:
         from scipy.sparse.csgraph import reverse_cuthill_mckee
 
         r, c = rows[diagonals:], cols[diagonals:]
-        ones = np.ones(2 * len(r), dtype=np.int8)
+        ones = np.ones(2 * len(r))
         graph = csr_array((ones, (np.concatenate([r, c]), np.concatenate([c, r]))), (free, free))
         self.order = np.asarray(reverse_cuthill_mckee(graph, symmetric_mode=True), dtype=np.int64)
         self.place = np.empty(free, dtype=np.int64)

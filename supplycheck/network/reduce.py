@@ -121,7 +121,7 @@ def _chains(links: Links, inner: BoolArray) -> Reduced:
     owner = np.tile(np.arange(count), 2)
     at_inner = np.flatnonzero(inner[ends])
     pairs = owner[at_inner[np.argsort(ends[at_inner])]].reshape(-1, 2)
-    graph = csr_array((np.ones(len(pairs), dtype=np.int8), (pairs[:, 0], pairs[:, 1])), (count, count))
+    graph = csr_array((np.ones(len(pairs)), (pairs[:, 0], pairs[:, 1])), (count, count))
     chains, label = connected_components(graph, directed=False)
     label = label.astype(np.int64)
     # the two outer ends of each chain; a ring of inner nodes has none and carries nothing
@@ -166,7 +166,7 @@ def _directions(
     count = len(links)
     rows = np.concatenate([pairs[:, 0], np.full(len(first_link), count)])
     cols = np.concatenate([pairs[:, 1], first_link])
-    graph = csr_array((np.ones(len(rows), dtype=np.int8), (rows, cols)), (count + 1, count + 1))
+    graph = csr_array((np.ones(len(rows)), (rows, cols)), (count + 1, count + 1))
     _, before = breadth_first_order(graph, count, directed=False, return_predecessors=True)
     before = before[:count].astype(np.int64)
     entry = np.full(count, -1)

@@ -27,7 +27,7 @@ def spread_heads(links: Links, head: FloatArray, known: BoolArray, loss: FloatAr
     unknown = ~(known[links.start] & known[links.end])
     rows = np.concatenate([links.start[unknown], np.full(len(roots), nodes)])
     cols = np.concatenate([links.end[unknown], roots])
-    graph = csr_array((np.ones(len(rows), dtype=np.int8), (rows, cols)), (nodes + 1, nodes + 1))
+    graph = csr_array((np.ones(len(rows)), (rows, cols)), (nodes + 1, nodes + 1))
     reached, before = breadth_first_order(graph, nodes, directed=False, return_predecessors=True)
     parent = before[:nodes].astype(np.int64)
     grown = (parent >= 0) & (parent < nodes)

@@ -1,6 +1,6 @@
 """Many demand cases of one network: the reduction is shared, and cases are solved side by side.
 
-What no case asks about is reduced once; the cases are halved again and again, each half reduced further
+What no case asks about is reduced once; the cases are divided again and again, each part reduced further
 for what it asks, until few are left. Those few are laid side by side as separate copies and solved as
 one system with a shift for each copy.
 """
@@ -24,6 +24,9 @@ from supplycheck.network.solve import solve_demand
 
 SIDE_BY_SIDE: Final = 20
 """Most cases solved as one system."""
+
+BRANCHES: Final = 5
+"""Parts into which too many cases are divided."""
 
 Progress = Callable[[int, int], None]
 Question = tuple[LoadCase, Mapping[str, float]]
@@ -64,7 +67,7 @@ def demand_many(
         together.setdefault(tuple(sorted(load.closed_pipes)), []).append(number)
     for numbers in together.values():
         shut = read_case(network, cases[numbers[0]][0], cases[numbers[0]][1]).shut
-        search.halve(network.links, shut, numbers)
+        search.split(network.links, shut, numbers)
     return search.answers()
 
 
@@ -112,17 +115,18 @@ class _Search:
             )
             self.report()
 
-    def halve(self, links: Links, shut: BoolArray | None, numbers: Sequence[int]) -> None:
-        """Reduce ``links`` to what the cases ``numbers`` ask; solve them, or each half of them so."""
+    def split(self, links: Links, shut: BoolArray | None, numbers: Sequence[int]) -> None:
+        """Reduce ``links`` to what the cases ``numbers`` ask; solve them, or each part of them so."""
         keep = np.zeros(len(self.network.node_tags), dtype=bool)
         keep[self.feed.rows] = True
         for number in numbers:
             keep[self.asked[number]] = True
         reduced = reduce_links(links, keep, shut).links
         if len(numbers) > SIDE_BY_SIDE:
-            middle = -(-len(numbers) // SIDE_BY_SIDE) // 2 * SIDE_BY_SIDE
-            self.halve(reduced, None, numbers[:middle])
-            self.halve(reduced, None, numbers[middle:])
+            leaves = -(-len(numbers) // SIDE_BY_SIDE)
+            step = -(-leaves // BRANCHES) * SIDE_BY_SIDE
+            for first in range(0, len(numbers), step):
+                self.split(reduced, None, numbers[first : first + step])
             return
         self.side_by_side(reduced, numbers)
         self.report()
