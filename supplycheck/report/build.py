@@ -8,10 +8,12 @@ from supplycheck.report.document import Document, Section
 from supplycheck.report.sections.answer import answer
 from supplycheck.report.sections.basis import basis
 from supplycheck.report.sections.closing import assumptions, cautions, echo
+from supplycheck.report.sections.duties import duties
 from supplycheck.report.sections.judged import findings, flows
 from supplycheck.report.sections.layout_plan import plan
 from supplycheck.report.sections.pressure import hand_check, pressure
 from supplycheck.report.sections.rows import node_analysis, pipe_information
+from supplycheck.report.sections.sources import sources
 from supplycheck.report.sections.water import water
 from supplycheck.results.records import Result
 
@@ -28,6 +30,8 @@ def build_document(result: Result) -> Document:
         answer(result, width),
         basis(result),
         water(result, width),
+        *_if_any(sources(result, width)),
+        *_if_any(duties(result)),
         plan(result, width),
         pressure(result, width),
         node_analysis(result),
@@ -49,3 +53,7 @@ def build_document(result: Result) -> Document:
         producer=f"supplycheck {result.version}",
         sections=sections,
     )
+
+
+def _if_any(section: Section | None) -> tuple[Section, ...]:
+    return () if section is None else (section,)
