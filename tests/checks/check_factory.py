@@ -197,6 +197,8 @@ FLOW_TEST = FlowTest(
     conducted_by="Mill Road Waterworks",
     witnessed_by="fire marshal",
     main="8 in, Mill Road",
+    gauge_range=200 * PSI,
+    gauge_accuracy=0.01,
     gauge_calibrated=dt.date(2026, 2, 1),
     outlet_diameter_measured=True,
 )

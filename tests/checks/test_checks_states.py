@@ -14,6 +14,7 @@ from typing import Any
 import numpy as np
 import pytest
 from check_factory import DRY, EN, OPEN, QUICK, TEE, K, array_with, built
+from pump_factory import NEEDED, OPTION, STATES, pumps, state, with_state
 
 from supplycheck.checks import RULES, PumpRating, run_checks
 from supplycheck.findings import Finding, State
@@ -28,6 +29,7 @@ from supplycheck.model import (
     Tank,
     TestPoint,
 )
+from supplycheck.network.records import Solution
 from supplycheck.units import FOOT, GPM, INCH, PSI
 
 BY_NAME = {rule.about.name: rule for rule in RULES}
@@ -70,6 +72,26 @@ WITH_REDUCER = {
     "project.system.devices": lambda old: (*old, REDUCER),
     "project.system.pipes.R.devices": ("reducer",),
 }
+RESERVOIR = replace(TANK, kind="reservoir")
+
+
+def tank_filled(refill: float) -> dict[str, Any]:
+    return NO_TEST | {"project.supply.tanks": (replace(TANK, refill=refill),)}
+
+
+def drawing(gpm: float) -> Any:
+    def change(old: Solution) -> Solution:
+        return replace(old, source_tags=("S",), source_flow=np.array([gpm * GPM]))
+
+    return change
+
+
+BARELY = NO_TEST | {
+    "project.supply.tanks": (replace(TANK, volume=420 * 60 * 231 * INCH**3),),
+    "comparison.demand_flow": 420 * GPM,
+    "operating": drawing(500)(built({}).solution),
+}
+DRAWN_DOWN = with_state(2, state("150 % of rated flow", 750, 15, 70, 19))
 DRY_SYSTEM = {"project.criteria.system": "dry"}
 QUICK_TAKEN = {
     "project.criteria.modifiers": (QUICK,),
@@ -86,8 +108,14 @@ def residual(psi: float, gpm: float = 1060) -> dict[str, Any]:
     return {TEST0 + "points": (TestPoint(psi * PSI, gpm * GPM),)}
 
 
+def several(*readings: tuple[float, float]) -> dict[str, Any]:
+    return {TEST0 + "points": tuple(TestPoint(psi * PSI, gpm * GPM) for psi, gpm in readings)}
+
+
 PUMPER = Outlet(4 * INCH, 0.9, 10 * PSI, 0.83)
 BUTT = Outlet(2.5 * INCH, 0.9, 20 * PSI)
+
+OFF = 80 - 22 * (500 / 1060) ** 1.85 - 72  # NFPA 291: P = Ps − (Ps − Pr)(Q/Qt)^1.85
 
 SUPPLY = [
     Case("margin", "ok", {}, 9 * PSI, 5 * PSI, ("S",)),
@@ -193,15 +221,76 @@ SUPPLY = [
         tags=("tank",),
     ),
     Case("storage", "missing", {"project.supply.tanks": (TANK,)}, tags=("tank",)),
+    Case("storage", "ask authority", BARELY, 420 * 60 * 231 * INCH**3, 500 * 60 * 231 * INCH**3, ("tank",)),
+    Case("tank refill", "not applicable"),
+    Case("tank refill", "not applicable", NO_TEST | {"project.supply.tanks": (RESERVOIR,)}),
+    Case("tank refill", "missing", TANK_ONLY, tags=("tank",)),
+    Case("tank refill", "ok", tank_filled(14 * GPM), 40000 / 14 * 60, 48 * 3600, ("tank",)),
+    Case("tank refill", "ask authority", tank_filled(13 * GPM), 40000 / 13 * 60, 48 * 3600, ("tank",)),
     Case("pump suction", "not applicable"),
-    Case("pump suction", "ok", WITH_PUMP, 30 * PSI, 0.0, ("pump",)),
+    Case("pump suction", "not applicable", pumps(states=())),
+    Case("pump suction", "ok", pumps(), 30 * PSI, 0.0, ("pump",)),
+    Case("pump suction", "fail", with_state(2, state("150 % of rated flow", 750, -1, 70)), -1 * PSI, 0.0),
+    Case("pump suction", "fail", with_state(0, state("demand", 420, -2, 104)), -2 * PSI, 0.0),
     Case(
         "pump suction",
+        "ok",
+        with_state(2, state("150 % of rated flow", 750, -2.9, 70), from_tank=True),
+        -2.9 * PSI,
+        -3 * PSI,
+    ),
+    Case("pump suction", "missing", pumps(rating=None, states=STATES[:2]), tags=("pump",)),
+    Case("main at the greatest pump flow", "not applicable"),
+    Case("main at the greatest pump flow", "not applicable", pumps(from_tank=True)),
+    Case("main at the greatest pump flow", "ok", pumps(), 36 * PSI, 20 * PSI, ("pump",)),
+    Case("main at the greatest pump flow", "missing", pumps(rating=None, states=STATES[:2])),
+    Case("main at the greatest pump flow", "missing", pumps(states=STATES[:2])),
+    Case("main at the greatest pump flow", "fail", DRAWN_DOWN, 19 * PSI, 20 * PSI),
+    Case(
+        "main at the greatest pump flow",
+        "ask authority",
+        DRAWN_DOWN | {"project.supply.main_floor_pressure": None},
+        19 * PSI,
+        20 * PSI,
+    ),
+    Case("pump pressure without flow", "not applicable"),
+    Case("pump pressure without flow", "ok", pumps(), 170 * PSI, 175 * PSI, ("pump",)),
+    Case(
+        "pump pressure without flow",
         "fail",
-        WITH_PUMP | {"solution": lambda old: array_with(old, "pressure", "B", -1 * PSI)},
-        -1 * PSI,
-        0.0,
-        ("pump",),
+        pumps(highest_discharge=176 * PSI) | {"project.criteria.maximum_pressure": 175 * PSI},
+        176 * PSI,
+        175 * PSI,
+    ),
+    Case(
+        "pump pressure without flow",
+        "ask authority",
+        pumps(highest_discharge=176 * PSI) | {"project.criteria.maximum_pressure": None},
+    ),
+    Case("demand on the pump", "not applicable"),
+    Case("demand on the pump", "ok", pumps(), 420 / 500, 1.5, ("pump",)),
+    Case("demand on the pump", "fail", with_state(0, state("demand", 751, 30, 70)), 751 / 500, 1.5),
+    Case(
+        "demand on the pump",
+        "ask authority",
+        with_state(1, state("actual supply", 760, 30, 69)),
+        760 / 500,
+        1.5,
+    ),
+    Case("demand on the pump", "missing", pumps(rating=None), tags=("pump",)),
+    Case("pump curve from limits", "not applicable"),
+    Case("pump curve from limits", "ok", pumps()),
+    Case("pump curve from limits", "ask authority", pumps(from_limits=True), tags=("pump",)),
+    Case("pump that would be needed", "not applicable"),
+    Case("pump that would be needed", "ask authority", {"needed_pump": NEEDED}, None, 20 * PSI, ("S",)),
+    Case(
+        "pump that would be needed",
+        "ask authority",
+        {
+            "needed_pump": replace(
+                NEEDED, instead_of="pump", options=(replace(OPTION, suction_holds=False),)
+            )
+        },
     ),
     Case("pump curve", "not applicable"),
     Case("pump curve", "missing", WITH_PUMP, tags=("pump",)),
@@ -219,6 +308,13 @@ SUPPLY = [
         WITH_PUMP | {"pump_ratings": {"pump": PumpRating(500 * GPM, 110 * PSI)}},
         70 / 110,
         0.65,
+    ),
+    Case(
+        "pump curve",
+        "fail",
+        WITH_PUMP | {"pump_ratings": {"pump": PumpRating(500 * GPM, 105 * PSI)}},
+        100 / 105,
+        1.0,
     ),
     Case("pump curve", "missing", WITH_PUMP | {"pump_ratings": {"pump": PumpRating(600 * GPM, 100 * PSI)}}),
 ]
@@ -249,6 +345,21 @@ TESTS = [
     Case("outlet diameter", "missing", residual(58)),
     Case("outlet diameter", "ask authority", {TEST0 + "outlet_diameter_measured": False}),
     Case("outlet diameter", "not applicable", MODEL),
+    Case("test points on one line", "not applicable"),
+    Case("test points on one line", "not applicable", MODEL | several((58, 1060), (70, 500))),
+    Case("test points on one line", "ok", several((58, 1060), (74.55, 500)), tags=("T-1",)),
+    Case("test points on one line", "ask authority", several((58, 1060), (72, 500)), OFF * PSI),
+    Case("gauge error against the drop", "not applicable", NO_TEST),
+    Case("gauge error against the drop", "not applicable", MODEL),
+    Case("gauge error against the drop", "ok", {}, 2 * PSI),
+    Case("gauge error against the drop", "missing", {TEST0 + "gauge_accuracy": None}, tags=("T-1",)),
+    Case(
+        "gauge error against the drop",
+        "fail",
+        {TEST0 + "gauge_accuracy": 0.03} | residual(74, 1060),
+        6 * PSI,
+    ),
+    Case("gauge error against the drop", "ask authority", {"comparison.margin": 1.9 * PSI}, 2 * PSI),
     Case("pumper outlet factor", "not applicable"),
     Case("pumper outlet factor", "ok", outlets(PUMPER), 0.83),
     Case("pumper outlet factor", "fail", outlets(replace(PUMPER, pumper_factor=1.0)), 1.0, None, ("T-1",)),
