@@ -19,7 +19,7 @@ BLOCKS = re.findall(
 
 @pytest.mark.parametrize(("command", "shown"), BLOCKS, ids=[str(n) for n in range(len(BLOCKS))])
 def test_command_prints_what_the_page_shows(command: str, shown: str) -> None:
-    words = shlex.split(command.replace("\\\n", " "))
+    words = shlex.split(command.replace("\\\n", " "), comments=True)
     assert words[0] == "supplycheck"
     result = CliRunner().invoke(main, words[1:])
     expected = 4 if shown.startswith("No solution") else 0
