@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import datetime as dt
 import io
-import zipfile
 from collections.abc import Mapping
 from typing import Any, Final
 
@@ -21,7 +20,7 @@ from supplycheck.results.records import NodeRow, PathStep, PipeRow, Placement, R
 from supplycheck.units import UNIT_SETS, UnitSet
 
 _EXECUTED: Final = ("=", "+", "-", "@", "\t", "\r", "\n")
-_ZIP_TIME: Final = (1980, 1, 1, 0, 0, 0)
+_LONGEST: Final = 32767  # characters that a cell of a workbook holds
 
 Cell = str | float | int | None
 Record = dict[str, Cell]
@@ -236,14 +235,15 @@ def xlsx_bytes(tables: Mapping[str, pd.DataFrame], date: dt.date) -> bytes:
 
     Text cells are stored as text, so that a leading ``=`` is shown and not executed.
     """
-    from openpyxl import Workbook
+    from xlsxwriter import Workbook
 
-    book = Workbook(write_only=True)
-    for name, frame in tables.items():
-        _sheet(book, name, frame)
     out = io.BytesIO()
-    book.save(out)
-    return _fixed(out.getvalue(), date)
+    with Workbook(out, {"in_memory": True}) as book:
+        book.set_properties({"created": dt.datetime(date.year, date.month, date.day)})
+        formats = book.add_format({"bold": True}), book.add_format({"quote_prefix": True})
+        for name, frame in tables.items():
+            _sheet(book.add_worksheet(name[:31]), frame, *formats)
+    return out.getvalue()
 
 
 def xlsx_file(result: Result) -> bytes:
@@ -251,61 +251,16 @@ def xlsx_file(result: Result) -> bytes:
     return xlsx_bytes(frames(result), result.project.facts.date)
 
 
-def _sheet(book: Any, name: str, frame: pd.DataFrame) -> None:
-    from openpyxl.cell import WriteOnlyCell
-    from openpyxl.styles import Font
-    from openpyxl.utils import get_column_letter
-
-    sheet = book.create_sheet(name[:31])
-    sheet.freeze_panes = "B2"
-    for place, title in enumerate(frame.columns, start=1):
-        widest = max((len(str(cell)) for cell in frame[title] if isinstance(cell, str)), default=10)
-        letter = get_column_letter(place)
-        sheet.column_dimensions[letter].width = min(max(widest, len(title), 8) + 2, 48)
-    bold = Font(bold=True)
-    head = []
-    for title in frame.columns:
-        cell = WriteOnlyCell(sheet, value=title)
-        cell.font = bold
-        head.append(cell)
-    sheet.append(head)
-
-    def stored(value: Any) -> Any:
-        if not isinstance(value, str):
-            return None if value is None or value != value else value
-        text = visible(value)[:32767]
-        if not text.startswith(_EXECUTED):
-            return text
-        cell = WriteOnlyCell(sheet, value=text)
-        cell.data_type = "s"
-        cell.quotePrefix = True
-        return cell
-
-    for row in frame.itertuples(index=False, name=None):
-        sheet.append([stored(value) for value in row])
-
-
-def _fixed(book: bytes, date: dt.date) -> bytes:
-    """Return the workbook with every clock in it set to ``date``."""
-    stamp = f"{date.isoformat()}T00:00:00Z"
-    out = io.BytesIO()
-    with zipfile.ZipFile(io.BytesIO(book)) as old, zipfile.ZipFile(out, "w", zipfile.ZIP_DEFLATED) as new:
-        for name in sorted(old.namelist(), key=lambda one: (one != "[Content_Types].xml", one)):
-            content = old.read(name)
-            if name == "docProps/core.xml":
-                content = _stamped(content.decode("utf-8"), stamp).encode("utf-8")
-            info = zipfile.ZipInfo(name, _ZIP_TIME)
-            info.compress_type = zipfile.ZIP_DEFLATED
-            new.writestr(info, content)
-    return out.getvalue()
-
-
-def _stamped(text: str, stamp: str) -> str:
-    for tag in ("created", "modified"):
-        start = text.find(f"<dcterms:{tag}")
-        if start < 0:
-            continue
-        first = text.index(">", start) + 1
-        last = text.index(f"</dcterms:{tag}>", first)
-        text = text[:first] + stamp + text[last:]
-    return text
+def _sheet(sheet: Any, frame: pd.DataFrame, bold: Any, quoted: Any) -> None:
+    sheet.freeze_panes(1, 1)
+    for column, title in enumerate(frame.columns):
+        cells = frame[title].tolist()
+        widest = max((len(cell) for cell in cells if isinstance(cell, str)), default=10)
+        sheet.set_column(column, column, min(max(widest, len(title), 8) + 2, 48))
+        sheet.write_string(0, column, title, bold)
+        for row, cell in enumerate(cells, start=1):
+            if isinstance(cell, str):
+                text = visible(cell)[:_LONGEST]
+                sheet.write_string(row, column, text, quoted if text.startswith(_EXECUTED) else None)
+            elif cell is not None and cell == cell:
+                sheet.write_number(row, column, cell)
