@@ -50,3 +50,13 @@ def test_every_page_has_a_line_in_the_index(page: Path) -> None:
     index = (ROOT / "docs" / "index.md").read_text(encoding="utf-8")
     lines = [line for line in index.splitlines() if f"]({page.name})" in line]
     assert len(lines) == (page.name != "index.md"), "one line a page in docs/index.md"
+
+
+def test_every_fixed_section_of_the_report_is_described() -> None:
+    page = (ROOT / "docs" / "report.md").read_text(encoding="utf-8")
+    folder = ROOT / "supplycheck" / "report" / "sections"
+    code = "".join(path.read_text(encoding="utf-8") for path in sorted(folder.glob("*.py")))
+    titles = re.findall(r'\bSection\(\s*"(\w[^"]+)"', code)
+    assert len(titles) > 10
+    for title in titles:
+        assert f"**{title}" in page, title
