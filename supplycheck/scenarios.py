@@ -23,11 +23,12 @@ def scenario_rows(
     sources: Sequence[SourceCurve],
     operating: Solution,
 ) -> tuple[ScenarioRow, ...]:
-    """Return the design area on the actual supply, then each scenario of the project.
+    """Return the design area (or the governing case) on the actual supply, then each scenario.
 
     A scenario that has no solution keeps its row, with the reason in its note.
     """
-    first = _row(project, DESIGN_AREA, operating, case, case.heads, "")
+    name = DESIGN_AREA if case.heads else f"{case.label}, actual supply"
+    first = _row(project, name, operating, case, case.heads, "")
     named = (_solve(project, network, case, sources, scenario) for scenario in project.scenarios)
     return (first, *named)
 

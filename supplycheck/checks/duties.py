@@ -114,7 +114,7 @@ def number(context: CheckContext) -> Finding:
 def _tightest(rows: list[DutyRow]) -> tuple[DutyRow, OutletState] | None:
     """Return the case and outlet with the least pressure to spare with the supply as it is."""
     pairs = [(row, outlet) for row in rows for outlet in row.outlets]
-    return min(pairs, key=lambda pair: pair[1].pressure - pair[1].required, default=None)
+    return min(pairs, key=lambda pair: pair[1].spare, default=None)
 
 
 def _rows(context: CheckContext, duty: str, *, counts: bool) -> list[DutyRow]:

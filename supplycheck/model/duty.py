@@ -142,6 +142,11 @@ class OutletState:
     pressure: float
     required: float
 
+    @property
+    def spare(self) -> float:
+        """What is left at the node beyond what it needs [Pa]."""
+        return self.pressure - self.required
+
 
 @dataclass(frozen=True, slots=True)
 class DutyRow:

@@ -13,7 +13,8 @@ from types import MappingProxyType
 from typing import Final
 
 from supplycheck.findings import Finding, Measure, State
-from supplycheck.results.records import DesignAreaRecord
+from supplycheck.model.duty import DutyAnswer
+from supplycheck.results.records import DemandRecord, DesignAreaRecord
 from supplycheck.units import UnitSet
 
 STATES: Final[tuple[State, ...]] = ("fail", "missing", "ask authority", "ok", "not applicable")
@@ -115,6 +116,21 @@ def area_text(area: DesignAreaRecord) -> str:
         return area.statement
     count = "The only placement" if area.tried == 1 else f"Most demanding of {area.tried} placements tried"
     return f"{count}: {area.governing.label}."
+
+
+def demand_parts(demand: DemandRecord, units: UnitSet) -> str:
+    """Return what the demand flow is made of, in words and numbers."""
+    parts = [(demand.sprinkler_flow, "sprinklers"), (demand.hose_flow, "hose")]
+    if demand.outlet_flow > 0:
+        parts = [(flow, what) for flow, what in parts if flow > 0] + [(demand.outlet_flow, "at outlets")]
+    return " + ".join(f"{units.number(flow, 'flow')} {what}" for flow, what in parts)
+
+
+def duties_text(duties: DutyAnswer) -> str:
+    """Return in one sentence how many cases of hydrants and standpipes were solved and count."""
+    counted = sum(row.counts for row in duties.rows)
+    names = " and ".join(dict.fromkeys(row.duty for row in duties.rows))
+    return f"{len(duties.rows)} of {names} side by side in the report, {counted} count for the verdict."
 
 
 def visible(text: str) -> str:

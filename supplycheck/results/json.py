@@ -8,57 +8,26 @@ new ``schema``.
 from __future__ import annotations
 
 import json
-import math
-from collections.abc import Iterable, Mapping
-from typing import Any, Final
+from typing import Final
 
-from supplycheck.findings import Finding, Measure
-from supplycheck.model import Assumption
-from supplycheck.results.display import finding_text, remedy_text
-from supplycheck.results.records import (
-    DesignAreaRecord,
-    HandStep,
-    NodeRow,
-    PathStep,
-    PipeRow,
-    Placement,
-    Result,
-    ScenarioRow,
+from supplycheck.model import Assumption, FlowTest
+from supplycheck.results.json_duties import duties_record
+from supplycheck.results.json_rows import (
+    Plain,
+    Record,
+    finding_record,
+    node_record,
+    path_record,
+    pipe_record,
+    scenario_record,
+    step_records,
 )
+from supplycheck.results.json_sources import needed_record, pump_record, tank_record
+from supplycheck.results.records import DesignAreaRecord, Placement, Result
 from supplycheck.results.totals import path_totals
-from supplycheck.units import UNIT_SETS, UnitSet
+from supplycheck.units import UNIT_SETS
 
 SCHEMA: Final = "supplycheck/result/1"
-
-Record = dict[str, Any]
-
-
-class Plain:
-    """Turns SI values into plain numbers of one unit set."""
-
-    def __init__(self, units: UnitSet) -> None:
-        self.units = units
-
-    def __call__(self, value: float | None, kind: str) -> float | None:
-        """Return ``value`` [SI] in the unit of ``kind``; ``None`` where it is not finite."""
-        if value is None or not math.isfinite(value):
-            return None
-        number = self.units.from_si(value, kind) if kind in self.units.units else float(value)
-        return number if number else 0.0
-
-    def record(self, fields: Mapping[str, tuple[float | None, str]]) -> Record:
-        """Return (value, kind) pairs as numbers."""
-        return {name: self(value, kind) for name, (value, kind) in fields.items()}
-
-    def measure(self, measure: Measure | None) -> float | None:
-        """Return the number of ``measure``."""
-        return None if measure is None else self(measure.value, measure.kind)
-
-    def unit(self, measure: Measure | None) -> str | None:
-        """Return the unit symbol of ``measure``."""
-        if measure is None:
-            return None
-        return self.units.symbol(measure.kind) if measure.kind in self.units.units else ""
 
 
 def result_json(result: Result) -> str:
@@ -92,12 +61,16 @@ def result_record(result: Result) -> Record:
         "supply": _supply(result, plain),
         "margin": _margin(result, plain),
         "design_area": _design_area(result.design_area, plain),
-        "nodes": [_node(row, plain) for row in result.nodes],
-        "pipes": [_pipe(row, plain) for row in result.pipes],
-        "path": [_path_step(step, plain) for step in result.path],
+        "nodes": [node_record(row, plain) for row in result.nodes],
+        "pipes": [pipe_record(row, plain) for row in result.pipes],
+        "path": [path_record(step, plain) for step in result.path],
         "path_totals": _path_totals(result, plain),
-        "hand_check": _steps(result.hand_check, plain),
-        "scenarios": [_scenario(row, plain) for row in result.scenarios],
+        "hand_check": step_records(result.hand_check, plain),
+        "scenarios": [scenario_record(row, plain) for row in result.scenarios],
+        "pumps": [pump_record(pump, plain) for pump in result.pumps],
+        "needed_pump": needed_record(result.needed_pump, plain),
+        "tanks": [tank_record(tank, plain) for tank in result.tanks],
+        "duties": duties_record(result.duties, plain),
         "balance": _balance(result, plain),
         "findings": [finding_record(finding, units) for finding in result.findings],
         "open_questions": list(result.open_questions),
@@ -117,6 +90,7 @@ def _demand(result: Result, plain: Plain) -> Record:
             "pressure": (demand.pressure, "pressure"),
             "sprinkler_flow": (demand.sprinkler_flow, "flow"),
             "hose_flow": (demand.hose_flow, "flow"),
+            "outlet_flow": (demand.outlet_flow, "flow"),
         }
     )
     return {
@@ -165,14 +139,14 @@ def _supply(result: Result, plain: Plain) -> Record:
     return {
         **numbers,
         "statement": supply.statement,
-        "steps": _steps(supply.steps, plain),
+        "steps": step_records(supply.steps, plain),
         "tests": [_test(test, plain) for test in result.project.supply.tests],
         "curves": curves,
         "points": points,
     }
 
 
-def _test(test: Any, plain: Plain) -> Record:
+def _test(test: FlowTest, plain: Plain) -> Record:
     points = [
         {
             "residual": plain(point.residual, "pressure"),
@@ -212,7 +186,7 @@ def _margin(result: Result, plain: Plain) -> Record:
         **numbers,
         "rule": margin.rule,
         "source": margin.source,
-        "steps": _steps(margin.steps, plain),
+        "steps": step_records(margin.steps, plain),
     }
 
 
@@ -240,130 +214,7 @@ def _design_area(area: DesignAreaRecord, plain: Plain) -> Record:
         "runner_up": placement(area.runner_up),
         "most_favourable": placement(area.most_favourable),
         "placements": [placement(one) for one in area.placements],
-        "steps": _steps(area.steps, plain),
-    }
-
-
-def _steps(steps: Iterable[HandStep], plain: Plain) -> list[Record]:
-    return [
-        {
-            "step": step.step,
-            "formula": step.formula,
-            "value": plain(step.value, step.kind),
-            "unit": plain.unit(Measure(step.value, step.kind)),
-            "note": step.note,
-        }
-        for step in steps
-    ]
-
-
-def _node(row: NodeRow, plain: Plain) -> Record:
-    numbers = plain.record(
-        {
-            "x": (row.x, "length"),
-            "y": (row.y, "length"),
-            "elevation": (row.elevation, "length"),
-            "pressure": (row.pressure, "pressure"),
-            "discharge": (row.discharge, "flow"),
-            "k_factor": (row.k_factor, "k_factor"),
-            "required_discharge": (row.required_discharge, "flow"),
-            "required_pressure": (row.required_pressure, "pressure"),
-            "area": (row.area, "area"),
-            "velocity_pressure": (row.velocity_pressure, "pressure"),
-        }
-    )
-    return {
-        "tag": row.tag,
-        "kind": row.kind,
-        **numbers,
-        "required_by": row.required_by,
-        "branch_line": row.branch_line,
-        "sprinkler": row.sprinkler,
-        "in_design_area": row.in_design_area,
-        "note": row.note,
-    }
-
-
-def _pipe(row: PipeRow, plain: Plain) -> Record:
-    numbers = plain.record(
-        {
-            "flow": (row.flow, "flow"),
-            "flow_added": (row.flow_added, "flow"),
-            "velocity": (row.velocity, "velocity"),
-            "bore": (row.bore, "size"),
-            "c_factor": (row.c_factor, "ratio"),
-            "roughness": (row.roughness, "roughness"),
-            "friction_factor": (row.friction_factor, "ratio"),
-            "reynolds": (row.reynolds, "ratio"),
-            "length": (row.length, "length"),
-            "equivalent_length": (row.equivalent_length, "length"),
-            "total_length": (row.total_length, "length"),
-            "friction_gradient": (row.friction_gradient, "gradient"),
-            "friction_loss": (row.friction_loss, "pressure"),
-            "elevation_loss": (row.elevation_loss, "pressure"),
-            "device_loss": (row.device_loss, "pressure"),
-            "second_law_friction_loss": (row.second_law_friction_loss, "pressure"),
-            "start_pressure": (row.start_pressure, "pressure"),
-            "end_pressure": (row.end_pressure, "pressure"),
-        }
-    )
-    fittings = [
-        {
-            "name": one.name,
-            "count": one.count,
-            "length": plain(one.length, "length"),
-            "table_length": plain(one.table_length, "length"),
-            "minor_k": plain(one.minor_k, "ratio"),
-            "origin": one.origin,
-            "source": one.source,
-        }
-        for one in row.fittings
-    ]
-    return {
-        "tag": row.tag,
-        "from": row.start,
-        "to": row.end,
-        "role": row.role,
-        **numbers,
-        "nominal": row.nominal,
-        "material": row.material,
-        "fittings": fittings,
-        "fittings_text": row.fittings_text,
-        "devices": list(row.devices),
-        "valve": row.valve,
-        "note": row.note,
-    }
-
-
-def _path_step(step: PathStep, plain: Plain) -> Record:
-    numbers = plain.record(
-        {
-            "bore": (step.bore, "size"),
-            "c_factor": (step.c_factor, "ratio"),
-            "friction_factor": (step.friction_factor, "ratio"),
-            "flow_added": (step.flow_added, "flow"),
-            "flow": (step.flow, "flow"),
-            "length": (step.length, "length"),
-            "equivalent_length": (step.equivalent_length, "length"),
-            "total_length": (step.total_length, "length"),
-            "friction_gradient": (step.friction_gradient, "gradient"),
-            "pressure_start": (step.pressure_start, "pressure"),
-            "friction": (step.friction, "pressure"),
-            "fitting_friction": (step.fitting_friction, "pressure"),
-            "elevation": (step.elevation, "pressure"),
-            "device": (step.device, "pressure"),
-            "pressure_end": (step.pressure_end, "pressure"),
-            "k_at_start": (step.k_at_start, "k_factor"),
-        }
-    )
-    return {
-        "from": step.start,
-        "to": step.end,
-        "pipe": step.pipe,
-        "nominal": step.nominal,
-        **numbers,
-        "fittings_text": step.fittings_text,
-        "note": step.note,
+        "steps": step_records(area.steps, plain),
     }
 
 
@@ -373,33 +224,6 @@ def _path_totals(result: Result, plain: Plain) -> Record | None:
         return None
     names = ("head", "friction", "fittings", "elevation", "devices", "supply")
     return {name: plain(getattr(totals, name), "pressure") for name in names}
-
-
-def _scenario(row: ScenarioRow, plain: Plain) -> Record:
-    numbers = plain.record(
-        {
-            "total_flow": (row.total_flow, "flow"),
-            "supply_pressure": (row.supply_pressure, "pressure"),
-            "sprinkler_flow": (row.sprinkler_flow, "flow"),
-            "lowest_pressure": (row.lowest_pressure, "pressure"),
-            "lowest_ratio": (row.lowest_ratio, "ratio"),
-            "delivered_density": (row.delivered_density, "density"),
-            "over_discharge": (row.over_discharge, "ratio"),
-            "minutes_of_storage": (row.minutes_of_storage, "plain"),
-        }
-    )
-    heads = [
-        {"tag": tag, "flow": plain(flow, "flow"), "pressure": plain(pressure, "pressure")}
-        for tag, flow, pressure in row.head_flows
-    ]
-    return {
-        "name": row.name,
-        "heads_open": row.heads_open,
-        "lowest_head": row.lowest_head,
-        **numbers,
-        "note": row.note,
-        "heads": heads,
-    }
 
 
 def _balance(result: Result, plain: Plain) -> Record:
@@ -416,23 +240,6 @@ def _balance(result: Result, plain: Plain) -> Record:
         "flow_node": balance.flow_node,
         "pressure_pipe": balance.pressure_pipe,
         "iterations": balance.iterations,
-    }
-
-
-def finding_record(finding: Finding, units: UnitSet) -> Record:
-    """Return ``finding`` as plain values, its text filled in with the numbers of ``units``."""
-    plain = Plain(units)
-    return {
-        "check": finding.check,
-        "state": finding.state,
-        "measured": plain.measure(finding.measured),
-        "measured_unit": plain.unit(finding.measured),
-        "limit": plain.measure(finding.limit),
-        "limit_unit": plain.unit(finding.limit),
-        "source": finding.source,
-        "text": finding_text(finding, units),
-        "tags": list(finding.tags),
-        "remedy": remedy_text(finding, units),
     }
 
 

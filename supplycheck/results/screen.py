@@ -6,7 +6,14 @@ import textwrap
 from collections.abc import Sequence
 from typing import Final
 
-from supplycheck.results.display import area_text, counts_text, finding_text, visible
+from supplycheck.results.display import (
+    area_text,
+    counts_text,
+    demand_parts,
+    duties_text,
+    finding_text,
+    visible,
+)
 from supplycheck.results.records import Result
 from supplycheck.units import UNIT_SETS, UnitSet
 
@@ -38,10 +45,7 @@ def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
 def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
     """Return label, text and the most lines that the text may take."""
     demand, supply, margin, balance = result.demand, result.supply, result.margin, result.balance
-    parts = " + ".join(
-        f"{units.number(flow, 'flow')} {what}"
-        for flow, what in ((demand.sprinkler_flow, "sprinklers"), (demand.hose_flow, "hose"))
-    )
+    parts = demand_parts(demand, units)
     residual = ""
     if supply.residual is not None and supply.test_flow is not None:
         residual = f", residual {_t(units, supply.residual)} at {_t(units, supply.test_flow, 'flow')}"
@@ -64,10 +68,17 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),
         ("Rule", margin.rule, 2),
         ("Governs", result.governs, 2),
-        ("Design area", area_text(result.design_area), 2),
+        *_asked(result),
         ("Balance", f"flows within {flow_gap}, pressures within {gap}", 1),
         ("Findings", counts_text(result.findings), 2),
     ]
+
+
+def _asked(result: Result) -> list[tuple[str, str, int]]:
+    """Return the design area, where there are sprinklers, and the cases of other duties."""
+    sprinklers = result.project.criteria.has_sprinklers
+    lines = [("Design area", area_text(result.design_area), 2)] if sprinklers else []
+    return lines + ([("Cases", duties_text(result.duties), 2)] if result.duties.rows else [])
 
 
 def _t(units: UnitSet, value: float, kind: str = "pressure") -> str:

@@ -8,7 +8,7 @@ from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph
 from supplycheck.report.figures.bars import answer_bars
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, given
-from supplycheck.results.display import area_text, counts_text, finding_text
+from supplycheck.results.display import area_text, counts_text, demand_parts, duties_text, finding_text
 from supplycheck.results.records import Result
 
 MOST_QUESTIONS: Final = 6
@@ -47,6 +47,8 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
         hose = (
             f"{show.n(demand.sprinkler_flow, 'flow')} sprinklers + {show.t(demand.hose_flow, 'flow')} hose"
         )
+    if demand.outlet_flow > 0:
+        hose = demand_parts(demand, show.units)
     asked = "no rule given" if margin.required is None else show.t(margin.required, "pressure")
     after = "cannot be judged" if margin.after_rule is None else show.signed(margin.after_rule, "pressure")
     return (
@@ -69,20 +71,29 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
 def _reasons(result: Result) -> tuple[tuple[str, str], ...]:
     return (
         ("What governs", result.governs),
-        ("Design area", area_text(result.design_area)),
+        *_asked(result),
         ("Margin rule", result.margin.rule),
         ("Findings", counts_text(result.findings)),
     )
 
 
+def _asked(result: Result) -> list[tuple[str, str]]:
+    sprinklers = result.project.criteria.has_sprinklers
+    lines = [("Design area", area_text(result.design_area))] if sprinklers else []
+    return lines + ([("Cases", duties_text(result.duties))] if result.duties.rows else [])
+
+
 def _standing(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     facts, criteria = result.project.facts, result.project.criteria
-    return (
+    hazard = [
         ("Hazard, system", f"{criteria.hazard}, {criteria.system}"),
         (
             "Density, area",
             f"{show.t(criteria.density, 'density')} over {show.t(criteria.required_area, 'area')}",
         ),
+    ]
+    return (
+        *(hazard if criteria.has_sprinklers else [("Sprinklers", "none in this project")]),
         ("Standard, edition", facts.standard),
         ("Authority", given(facts.authority)),
         ("Stage", given(facts.stage)),

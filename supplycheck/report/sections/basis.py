@@ -15,15 +15,44 @@ def basis(result: Result) -> Section:
     blocks: list[Block] = [
         Facts(_project_facts(project), columns=2),
         Heading("Criteria"),
+        *_design(result, show),
+        Heading("Hose, friction law, fluid, units"),
+        Facts(_law_facts(project, show)),
+    ]
+    return Section("Basis of design", tuple(blocks), fresh=True)
+
+
+def _design(result: Result, show: Show) -> list[Block]:
+    """Return the criteria of the sprinklers, or the few that hold without sprinklers."""
+    project = result.project
+    if not project.criteria.has_sprinklers:
+        return [Facts(_without_sprinklers(project.criteria, show))]
+    return [
         Facts(_criteria(project.criteria, show), columns=2),
         Facts(_sources(project.criteria, show)),
         *([_modifiers(project.criteria)] if project.criteria.modifiers else []),
         steps_table("How the design area was found", result.design_area.steps, show),
         _sprinklers(project.system.sprinklers, show),
-        Heading("Hose, friction law, fluid, units"),
-        Facts(_law_facts(project, show)),
     ]
-    return Section("Basis of design", tuple(blocks), fresh=True)
+
+
+def _without_sprinklers(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
+    return (
+        ("Sprinklers", "none in this project; what is asked stands under hydrants and standpipes"),
+        ("Duration", show.t(criteria.duration, "time")),
+        ("Component rating", show.t(criteria.maximum_pressure, "pressure")),
+        ("Velocity limits", _velocity(criteria, show)),
+    )
+
+
+def _velocity(criteria: Criteria, show: Show) -> str:
+    velocity = criteria.velocity
+    limits = [
+        f"{what} {show.t(limit, 'velocity')}"
+        for what, limit in (("pipe", velocity.pipe_limit), ("valve", velocity.valve_limit))
+        if limit is not None
+    ]
+    return f"{velocity.name}: {', '.join(limits) or 'none set'} ({velocity.source})"
 
 
 def _project_facts(project: Project) -> tuple[tuple[str, str], ...]:
@@ -69,16 +98,10 @@ def _criteria(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
 
 
 def _sources(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
-    velocity = criteria.velocity
-    limits = [
-        f"{what} {show.t(limit, 'velocity')}"
-        for what, limit in (("pipe", velocity.pipe_limit), ("valve", velocity.valve_limit))
-        if limit is not None
-    ]
     none = () if criteria.modifiers else (("Modifiers of the area", "none applies"),)
     return (
         *none,
-        ("Velocity limits", f"{velocity.name}: {', '.join(limits) or 'none set'} ({velocity.source})"),
+        ("Velocity limits", _velocity(criteria, show)),
         ("Source of the criteria", criteria.source),
     )
 

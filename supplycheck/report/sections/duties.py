@@ -1,0 +1,301 @@
+"""Hydrants and standpipes: every case beside the others, a sheet for each hydrant, every hose outlet."""
+
+from __future__ import annotations
+
+from supplycheck.model.duty import DutyRow, HydrantDuty, HydrantRow, OutletState, StandpipeDuty
+from supplycheck.report.document import Block, Column, Facts, Heading, Paragraph, Row, Section, Table
+from supplycheck.report.show import Show, column, words
+from supplycheck.results.records import Result
+
+
+def duties(result: Result) -> Section | None:
+    """Return the section on hydrants and standpipes, ``None`` where the project has neither."""
+    project, show = result.project, Show.of(result)
+    if project.hydrants is None and project.standpipes is None:
+        return None
+    blocks: list[Block] = [_cases(result, show)]
+    if project.hydrants is not None:
+        blocks += _hydrants(result, project.hydrants, show)
+    if project.standpipes is not None:
+        blocks += _standpipes(result, project.standpipes, show)
+    names = ["hydrants"] if project.hydrants is not None else []
+    names += ["standpipes"] if project.standpipes is not None else []
+    return Section(" and ".join(names).capitalize(), tuple(blocks), fresh=True)
+
+
+def _spare(row: DutyRow) -> OutletState | None:
+    return min(row.outlets, key=lambda one: one.spare, default=None)
+
+
+def _cases(result: Result, show: Show) -> Table:
+    columns = (
+        Column("Case", wrap=True, share=0.3),
+        Column("Verdict rests on it", wrap=True, share=0.09),
+        Column("Flow", show.s("flow"), right=True, share=0.09),
+        Column("Needed at the supply", show.s("pressure"), right=True, share=0.1),
+        Column("Margin", show.s("pressure"), right=True, share=0.09),
+        Column("Least to spare at", wrap=True, share=0.15),
+        Column("Left there", show.s("pressure"), right=True, share=0.09),
+        Column("Asked there", show.s("pressure"), right=True, share=0.09),
+    )
+    rows = [_case(row, show, strong=_governs(result, row.label)) for row in result.duties.rows]
+    if result.project.criteria.has_sprinklers:
+        rows.insert(0, _sprinklers(result, show))
+    note = (
+        "Every case is solved on the network; flows at outlets are fixed. Needed and margin are at the "
+        "supply at the flow of the case; left and asked are at the outlet with the supply as it is. The "
+        "case that governs is in bold."
+    )
+    return Table("Cases side by side", columns, tuple(rows), note, empty="no case was solved", size=6.6)
+
+
+def _governs(result: Result, label: str) -> bool:
+    return result.governs.endswith(f" in {label}")
+
+
+def _sprinklers(result: Result, show: Show) -> Row:
+    hardest = result.design_area.governing
+    return Row(
+        (
+            f"sprinklers: {hardest.label}",
+            "yes",
+            show.n(hardest.flow, "flow"),
+            show.n(hardest.required_pressure, "pressure"),
+            show.n(hardest.margin, "pressure"),
+            "",
+            "",
+            "",
+        ),
+        strong=_governs(result, hardest.label),
+    )
+
+
+def _case(row: DutyRow, show: Show, *, strong: bool) -> Row:
+    spare = _spare(row)
+    notes = [row.note] if row.note else []
+    notes += [f"hardest of {row.tried} choices of further standpipes"] if row.tried > 1 else []
+    return Row(
+        (
+            row.label,
+            "yes" if row.counts else "no, listed",
+            show.n(row.flow, "flow"),
+            show.n(row.required_pressure, "pressure"),
+            show.n(row.margin, "pressure"),
+            spare.node if spare else row.governing,
+            show.n(spare.pressure if spare else None, "pressure"),
+            show.n(spare.required if spare else None, "pressure"),
+        ),
+        note="; ".join(notes),
+        strong=strong,
+    )
+
+
+def _drawn(flows: tuple[tuple[str, float], ...], show: Show) -> str:
+    return ", ".join(f"{show.t(flow, 'flow')} at {node}" for node, flow in flows) or "nothing"
+
+
+def _fire_flow(duty: HydrantDuty, show: Show) -> Facts:
+    asked = duty.fire_flow
+    pairs = [
+        ("Required fire flow", show.t(asked.flow, "flow")),
+        ("Duration", show.t(asked.duration, "time")),
+        (
+            "Shared by",
+            f"{duty.at_once} hydrants at once, at most {show.t(duty.greatest_each, 'flow')} each",
+        ),
+        ("Pressure kept", show.t(duty.residual, "pressure")),
+        ("Highest point of the main", duty.highest_point or "not named"),
+        ("Maximum-day demand", _drawn(duty.maximum_day, show)),
+        ("Pipes that may be shut", ", ".join(duty.valves) or "none named"),
+        ("Source", asked.source),
+    ]
+    if asked.table_flow is not None:
+        area = show.t(asked.area, "area")
+        pairs.insert(1, ("Looked up for", f"{asked.construction}, {area}, {asked.edition}"))
+        floor = "" if asked.floor is None else f", not below {show.t(asked.floor, 'flow')}"
+        taken = f"{show.t(asked.table_flow, 'flow')} less {show.t(asked.reduction, 'percent')}{floor}"
+        pairs.insert(2, ("Table, reduction for sprinklers", taken))
+    return Facts(tuple(pairs), columns=2)
+
+
+def _hydrants(result: Result, duty: HydrantDuty, show: Show) -> list[Block]:
+    columns = (
+        words("Hydrant"),
+        words("Node"),
+        column("Without flow", show.s("pressure")),
+        column("Asked alone", show.s("flow")),
+        column("Left then", show.s("pressure")),
+        column("Greatest flow", show.s("flow")),
+        column("On maximum day", show.s("flow")),
+        words("Limited by"),
+        words("Class, colour"),
+    )
+    rows = tuple(
+        Row(
+            (
+                row.tag,
+                row.node,
+                show.n(row.static, "pressure"),
+                show.n(row.alone, "flow"),
+                show.n(row.residual_alone, "pressure"),
+                show.n(row.greatest_flow, "flow"),
+                show.n(row.greatest_on_maximum_day, "flow"),
+                row.limited_by,
+                f"{row.rank}, {row.colour}" if row.rank else "–",
+            ),
+            note=row.note,
+        )
+        for row in result.duties.hydrants
+    )
+    note = (
+        f"The greatest flow leaves {show.t(duty.residual, 'pressure')} at the hydrant, after its lateral "
+        "and body, and at the highest point of the main. Class and colour by that flow (NFPA 291)."
+    )
+    blocks: list[Block] = [
+        Heading("Fire flow"),
+        _fire_flow(duty, show),
+        Table("Each hydrant by itself", columns, rows, note, size=6.6),
+    ]
+    for row in result.duties.hydrants:
+        blocks += _sheet(result, row, show)
+    return blocks
+
+
+def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
+    """Return the sheet of one hydrant: where it stands, what it gives, every case in which it flows."""
+    node = next(one for one in result.nodes if one.tag == hydrant.node)
+    pairs = (
+        ("Stands", hydrant.location or "not described"),
+        ("Node, elevation", f"{hydrant.node}, {show.t(node.elevation, 'length')}"),
+        ("Pressure without flow", show.t(hydrant.static, "pressure")),
+        ("Share of the fire flow", show.t(hydrant.share, "flow")),
+        (
+            "Asked alone",
+            f"{show.t(hydrant.alone, 'flow')}, {show.t(hydrant.residual_alone, 'pressure')} left",
+        ),
+        ("Loss given for lateral and body", show.t(hydrant.device_loss, "pressure")),
+        ("Greatest flow", show.t(hydrant.greatest_flow, "flow")),
+        ("Class by NFPA 291", f"{hydrant.rank}, {hydrant.colour}" if hydrant.rank else "–"),
+    )
+    flowing = [
+        (row.label, one)
+        for row in result.duties.rows
+        for one in row.outlets
+        if row.duty == "hydrants" and one.node == hydrant.node and one.flow > 0
+    ]
+    rows = tuple(
+        Row(
+            (
+                label,
+                show.n(one.flow, "flow"),
+                show.n(one.pressure, "pressure"),
+                show.n(one.required, "pressure"),
+                show.n(one.spare, "pressure"),
+            )
+        )
+        for label, one in flowing
+    )
+    columns = (
+        Column("Case", wrap=True, share=0.48),
+        Column("Flow", show.s("flow"), right=True, share=0.13),
+        Column("Left", show.s("pressure"), right=True, share=0.13),
+        Column("Asked", show.s("pressure"), right=True, share=0.13),
+        Column("To spare", show.s("pressure"), right=True, share=0.13),
+    )
+    return [
+        Heading(f"Hydrant {hydrant.tag}"),
+        Facts(pairs, columns=2),
+        Table("", columns, rows, empty="it flows in no case that was solved", size=6.6),
+    ]
+
+
+def _standpipes(result: Result, duty: StandpipeDuty, show: Show) -> list[Block]:
+    protection = "sprinklered throughout" if duty.sprinklered else "not sprinklered throughout"
+    pairs = (
+        ("Building", protection),
+        ("Flow of an outlet", show.t(duty.outlet_flow, "flow")),
+        ("Greatest total", show.t(duty.greatest_flow, "flow")),
+        ("Regulating device above", show.t(duty.regulating_pressure, "pressure")),
+        ("Drawn at the same time", _drawn(duty.added_flows, show)),
+        ("Source", duty.source),
+    )
+    return [
+        Heading("Standpipes"),
+        Facts(pairs, columns=2),
+        *_connection(result, show),
+        _outlets(result, show),
+        *_devices(duty, show),
+    ]
+
+
+def _connection(result: Result, show: Show) -> list[Block]:
+    row = result.duties.connection
+    if row is None:
+        return [Paragraph("No fire department connection is named in the project.")]
+    if row.note.startswith("no solution"):
+        return [Paragraph(f"Fire department connection at {row.node}: {row.note}.")]
+    text = (
+        f"Fire department connection at {row.node}: {show.t(row.pressure, 'pressure')} must be fed there "
+        f"to give {show.t(row.flow, 'flow')} with no other supply running ({row.case}; {row.governing} "
+        "governs)."
+    )
+    return [Paragraph(text + (f" {row.note[:1].upper()}{row.note[1:]}." if row.note else ""))]
+
+
+def _outlets(result: Result, show: Show) -> Table:
+    unit = show.s("pressure")
+    columns = (
+        words("Standpipe"),
+        words("Outlet"),
+        column("Size", show.s("size")),
+        column("Required", unit),
+        column("Needed at the node", unit),
+        column("Lowest while flowing", unit),
+        column("At no flow", unit),
+        words("Regulating device"),
+        column("Behind it", unit),
+        words("Above the limit"),
+    )
+    rows = tuple(
+        Row(
+            (
+                row.riser,
+                row.node,
+                show.n(row.size, "size", 1),
+                show.n(row.required, "pressure"),
+                show.n(row.needed_at_node, "pressure"),
+                show.n(row.lowest_flowing, "pressure"),
+                show.n(row.no_flow, "pressure"),
+                row.device or "none",
+                show.n(row.after_device, "pressure"),
+                "yes" if row.over_limit else "no",
+            ),
+            strong=row.over_limit,
+        )
+        for row in result.duties.standpipes
+    )
+    note = (
+        "Needed at the node is what leaves the required pressure behind a regulating device. At no flow: "
+        "the highest measured supply with pumps at churn. A dash stands where an outlet does not flow in "
+        "the cases shown, or where a device has no figure."
+    )
+    return Table("Every hose outlet", columns, rows, note, size=6.6)
+
+
+def _devices(duty: StandpipeDuty, show: Show) -> list[Block]:
+    unit = show.s("pressure")
+    blocks: list[Block] = []
+    for device in duty.devices:
+        pairs = [
+            *(("flowing", *pair) for pair in zip(device.inlet, device.outlet, strict=True)),
+            *(("no flow", *pair) for pair in zip(device.static_inlet, device.static_outlet, strict=True)),
+        ]
+        rows = tuple(
+            Row((state, show.n(inlet, "pressure"), show.n(left, "pressure")))
+            for state, inlet, left in pairs
+        )
+        columns = (words("State"), column("Inlet", unit), column("Outlet", unit))
+        blocks.append(
+            Table(f"Regulating device {device.tag}", columns, rows, f"Source: {device.source}", size=6.6)
+        )
+    return blocks
