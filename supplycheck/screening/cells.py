@@ -172,17 +172,18 @@ def _frame(rows: Sequence[bytes], layout: Layout) -> pd.DataFrame:
         frame = pd.read_csv(
             io.BytesIO(b"\n".join(rows) + b"\n"),
             header=None,
-            names=list(places),
+            names=[str(at) for at in places],
             index_col=False,
             sep=layout.delimiter,
             lineterminator="\n",
-            dtype={at: object for at in places if at not in numeric},
+            dtype={str(at): object for at in places if at not in numeric},
             keep_default_na=False,
-            na_values={at: [""] for at in numeric},
+            na_values={str(at): [""] for at in numeric},
             skip_blank_lines=False,
             low_memory=False,
             encoding="utf-8",
         )
+        frame.columns = pd.Index(places)
     except (ValueError, pd.errors.ParserError):
         frame = pd.DataFrame()
     if len(frame) == len(rows):

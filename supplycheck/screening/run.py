@@ -194,7 +194,9 @@ def _open(stack: ExitStack, held: Path, layout: Layout, question: Question) -> _
             f'{{"type":"FeatureCollection","units":{json.dumps(head)},"coordinates":{json.dumps(about)},'
         )
         place.write(f'{start}"features":['.encode())
-    return _Files(held, results, rejects, place, Workbook(held / WORKBOOK, heads), notes=notes)
+    workbook = Workbook(held / WORKBOOK, heads)
+    stack.callback(workbook.abandon)
+    return _Files(held, results, rejects, place, workbook, notes=notes)
 
 
 def _close(files: _Files) -> tuple[str, ...]:

@@ -21,7 +21,7 @@ def verdict(answer: Screening) -> str:
         return "No required flow was given: hydrants are classed, none is judged."
     parts = [f"{short:,} of {met + short:,} hydrants do not give their required flow at {at}."]
     if not short:
-        parts = [f"All {met:,} hydrants that were judged give their required flow at {at}."]
+        parts = [f"Every hydrant that was judged ({met:,}) gives its required flow at {at}."]
     if statistics.by_met[NOT_ASKED]:
         parts.append(f"Without a required flow: {statistics.by_met[NOT_ASKED]:,}.")
     if statistics.rejected:

@@ -9,6 +9,7 @@ from __future__ import annotations
 import zipfile
 from collections.abc import Iterable
 from concurrent.futures import Future, ThreadPoolExecutor
+from contextlib import suppress
 from pathlib import Path
 from typing import IO, Final
 from xml.sax.saxutils import escape
@@ -45,6 +46,7 @@ _PARTS: Final = {
     '<cellXfs count="3"><xf numFmtId="0" fontId="0" fillId="0" borderId="0" xfId="0"/>'
     '<xf numFmtId="0" fontId="1" fillId="0" borderId="0" xfId="0" applyFont="1"/>'
     '<xf numFmtId="49" fontId="0" fillId="0" borderId="0" xfId="0" quotePrefix="1"/></cellXfs>'
+    '<cellStyles count="1"><cellStyle name="Normal" xfId="0" builtinId="0"/></cellStyles>'
     "</styleSheet>",
 }
 
@@ -80,12 +82,21 @@ class Workbook:
             self._packed.result()
 
     def close(self) -> None:
-        """Finish the file."""
+        """Finish the file; nothing happens where it is finished already."""
+        if self._sheet.closed:
+            return
         self._wait()
         self._packer.shutdown()
         self._sheet.write(b"</sheetData></worksheet>")
         self._sheet.close()
         self._zip.close()
+
+    def abandon(self) -> None:
+        """Let go of an unfinished file, which is of no use; nothing happens where it is finished."""
+        self._packer.shutdown()
+        with suppress(OSError):
+            self._sheet.close()
+            self._zip.close()
 
 
 def number_cells(texts: list[str]) -> list[str]:
