@@ -17,13 +17,16 @@ from supplycheck.model.system import Device
 from supplycheck.network.records import FloatArray, SourceCurve
 
 _BEYOND: Final = 1e-9
+LEAST_CHORD: Final = 0.3
+"""Part of the chord that serves as the slope of a curve that dips."""
 
 
 @dataclass(frozen=True, slots=True)
 class DeviceLaw:
     """Pressure drop [Pa] of one device against the flow [m³/s] in its own direction.
 
-    ``sign`` is −1 for a pump (its curve is a gain). A loss that does not vanish at zero flow is
+    ``sign`` is −1 for a pump (its curve is a gain); ``dips`` tells that the loss falls with the flow
+    somewhere, as that of many backflow preventers does. A loss that does not vanish at zero flow is
     brought to zero below :data:`supplycheck.hydraulics.KNEE`; above it the curve is exact.
     """
 
@@ -32,6 +35,7 @@ class DeviceLaw:
     sign: float
     one_way: bool
     setting: float | None
+    dips: bool = False
 
     @classmethod
     def of(cls, device: Device) -> DeviceLaw:
@@ -53,10 +57,15 @@ class DeviceLaw:
             raise DomainError(f"pressure-reducing valve {device.tag}: no setting is given")
         setting = device.setting if device.kind == "pressure-reducing valve" else None
         one_way = device.one_way or device.kind != "loss"
-        return cls(device.tag, curve, -1.0 if pump else 1.0, one_way, setting)
+        dips = not pump and curve is not None and bool(np.any(np.diff(curve.values) < 0))
+        return cls(device.tag, curve, -1.0 if pump else 1.0, one_way, setting, dips)
 
     def drop(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return the pressure drop [Pa] and its derivative; odd in the flow unless it is a pump."""
+        """Return the pressure drop [Pa] and its derivative; odd in the flow unless it is a pump.
+
+        Where a curve dips the derivative is replaced by a part of the chord to the origin, which is
+        always positive: the iteration then comes to rest more slowly, at the same place.
+        """
         if self.curve is None:
             return np.zeros_like(flow), np.zeros_like(flow)
         if self.sign < 0:
@@ -70,6 +79,8 @@ class DeviceLaw:
             x = np.minimum(size / KNEE, 1.0)
             ramp, rise = x * (1.5 - 0.5 * x * x), (1.5 - 1.5 * x * x) / KNEE
             value, slope = value * ramp, slope * ramp + value * rise
+        if self.dips:
+            slope = np.maximum(slope, LEAST_CHORD * value / np.maximum(size, KNEE))
         return np.copysign(value, flow) if np.all(value >= 0) else value * np.sign(flow), slope
 
     def beyond(self, flow: float) -> bool:
