@@ -19,6 +19,8 @@ EXPECTED = {
     "office-floor": "adequate",
     "short-workshop": "not adequate",
     "spreadsheet-store": "adequate",
+    "boosted-warehouse": "adequate",
+    "tank-and-pump": "adequate",
 }
 KEYS = {
     "demand": {"flow", "pressure", "node", "sprinkler_flow", "hose_flow"},

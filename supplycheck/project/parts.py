@@ -218,7 +218,8 @@ def _curve(
     flows = tuple(flow.si(units) for flow, _ in points)
     values = tuple(pressure.si(units) for _, pressure in points)
     if points and len(points) < 2:
-        faults.add(place, "has one point", allowed="two points or more; a fixed loss is written loss = …")
+        fixed = "" if table.kind == "pump" else "; a fixed loss is written loss = …"
+        faults.add(place, "has one point", allowed=f"two points or more{fixed}")
     elif any(after <= before for before, after in pairwise(flows)):
         faults.add(
             place, "flows do not rise from point to point", allowed="each flow once, the smallest first"

@@ -10,11 +10,13 @@ from supplycheck.check import check_project
 
 ROOT = Path(__file__).parents[2]
 ADEQUATE = (
+    "boosted-warehouse",
     "gridded-cold-store",
     "looped-workshop",
     "office-floor",
     "parcel-depot",
     "spreadsheet-store",
+    "tank-and-pump",
     "two-supply-campus",
 )
 
