@@ -18,6 +18,8 @@ SHADES: Final = (PETROL, LAGOON, SAND, CLAY)
 """One colour a class, from the best; the radius of a dot tells the class as well."""
 _RADII: Final = (2.0, 2.4, 2.9, 3.4)
 MOST_NAMED: Final = 60
+MOST_DOTS: Final = 300
+"""Dots that stand in full size and with names; more are drawn smaller."""
 
 
 def histogram(answer: Screening, width: float) -> Drawing:
@@ -87,15 +89,17 @@ def hydrant_map(answer: Screening, width: float, height: float) -> Drawing | Non
 
     items: list[Item] = [Box(0, 24, width, deep, MIST, SLATE, 0.5)]
     taken = Taken(2, 26, width - 2, 24 + deep - 2)
+    scale = min(1.0, max(0.45, math.sqrt(MOST_DOTS / len(spots))))
     for one in spots:
         x, y = at(one)
-        radius = _RADII[one.grade]
+        radius = _RADII[one.grade] * scale
         taken.take((x - radius, y - radius, x + radius, y + radius))
         if one.met == NOT_MET:
-            items.append(Dot(x, y, radius + 1.9, None, INK, 0.9))
-        items.append(Dot(x, y, radius, SHADES[one.grade], INK, 0.35))
+            items.append(Dot(x, y, radius + 1.9 * scale, None, INK, 0.9 * scale))
+        items.append(Dot(x, y, radius, SHADES[one.grade], INK, 0.35 * scale))
     items += _bar(answer, factor, shrink, deep, taken)
-    items += _names(spots, at, taken)
+    if len(spots) <= MOST_DOTS:
+        items += _names(spots, at, taken)
     items += _key(width)
     return Drawing(width, 24 + deep, tuple(items), "map of the hydrants, north up")
 

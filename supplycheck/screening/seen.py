@@ -20,7 +20,7 @@ MOST_HELD: Final = 2_000_000
 class SeenPairs:
     """Remembers 64-bit keys with the row that brought them first.
 
-    Two different pairs share a key by chance about once in 3 million files of ten million rows.
+    Two different pairs share a key by chance about once in 370,000 files of ten million rows.
     """
 
     def __init__(self, folder: Path, most_held: int = MOST_HELD) -> None:
