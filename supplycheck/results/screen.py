@@ -46,9 +46,10 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
     """Return label, text and the most lines that the text may take."""
     demand, supply, margin, balance = result.demand, result.supply, result.margin, result.balance
     parts = demand_parts(demand, units)
-    residual = ""
+    read = "tank"
     if supply.residual is not None and supply.test_flow is not None:
-        residual = f", residual {_t(units, supply.residual)} at {_t(units, supply.test_flow, 'flow')}"
+        residual = f"residual {_t(units, supply.residual)} at {_t(units, supply.test_flow, 'flow')}"
+        read = f"test: static {_t(units, supply.static)}, {residual}"
     asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
     after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
     flow_gap = f"{units.from_si(balance.largest_flow_imbalance, 'flow'):.0e} {units.symbol('flow')}"
@@ -61,8 +62,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ),
         (
             "Available",
-            f"{_t(units, supply.available_pressure)} at that flow (test: static "
-            f"{_t(units, supply.static)}{residual})",
+            f"{_t(units, supply.available_pressure)} at that flow ({read})",
             2,
         ),
         ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),

@@ -101,7 +101,9 @@ def _pump_line(path: Route, reach: float) -> CurveLine:
     """Return what the pumps on the route add at each flow of the source."""
     flows = tuple(reach * index / _SAMPLES for index in range(_SAMPLES + 1))
     gains = tuple(path.without_pumps.loss_at(flow) - path.loss_at(flow) for flow in flows)
-    return CurveLine("pump", "pump", flows, gains)
+    whole = all(math.isclose(own, path.flow, rel_tol=1e-9) for _, own, sign in path.curves if sign < 0)
+    name = "pump" if whole else "pump, at its share of the flow"
+    return CurveLine(name, "pump", flows, gains)
 
 
 def _line(name: str, style: LineStyle, curve: SupplyCurve, path: Route, reach: float) -> CurveLine:

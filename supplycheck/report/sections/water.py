@@ -42,15 +42,20 @@ def water(result: Result, width: float) -> Section:
 def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     supply, demand = result.supply, result.demand
     ratio = supply.tested_range_ratio
-    return (
-        ("Static", show.t(supply.static, "pressure")),
-        ("Residual", f"{show.t(supply.residual, 'pressure')} at {show.t(supply.test_flow, 'flow')}"),
+    common = (
         ("Compared at", demand.node),
         ("Static there", show.t(supply.static_at_comparison, "pressure")),
         ("Demand there", f"{show.t(demand.pressure, 'pressure')} at {show.t(demand.flow, 'flow')}"),
         ("Available there", show.t(supply.available_pressure, "pressure")),
         ("Before adjustments", show.t(supply.unadjusted_pressure, "pressure")),
         ("Flow at the demand pressure", show.t(supply.available_flow, "flow")),
+    )
+    if supply.residual is None:  # a tank gives most: there is no reading
+        return common
+    return (
+        ("Static", show.t(supply.static, "pressure")),
+        ("Residual", f"{show.t(supply.residual, 'pressure')} at {show.t(supply.test_flow, 'flow')}"),
+        *common,
         ("Flow at 20 psi (1.38 bar)", f"{show.t(supply.flow_at_20_psi, 'flow')} at the test"),
         ("Demand / tested flow", "–" if ratio is None else f"{ratio:.2f}"),
     )
@@ -99,7 +104,7 @@ def _test(test: FlowTest, show: Show) -> list[Block]:
                     "",
                     "",
                     show.n(outlet.diameter, "size"),
-                    f"{outlet.coefficient:.2f} ({outlet.shape or outlet.origin})",
+                    f"{outlet.coefficient:.2f} ({outlet.kind or outlet.shape or outlet.origin})",
                     show.n(outlet.pitot, "pressure"),
                     f"{outlet.pumper_factor:.2f}",
                 )
@@ -124,6 +129,7 @@ def _tanks(supply: Supply, show: Show) -> Table:
         words("Kind"),
         words("Node"),
         column("Water level", show.s("length")),
+        column("Lowest level", show.s("length")),
         column("Volume", show.s("volume")),
         column("Refill", show.s("flow")),
     )
@@ -134,6 +140,7 @@ def _tanks(supply: Supply, show: Show) -> Table:
                 tank.kind,
                 tank.node,
                 show.n(tank.water_level, "length"),
+                show.n(tank.low_level, "length"),
                 show.n(tank.volume, "volume"),
                 show.n(tank.refill, "flow"),
             )
