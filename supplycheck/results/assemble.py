@@ -163,6 +163,7 @@ def _demand(
         governing_head=solution.governing,
         governing_by=head.required_by,
         outlet_flow=comparison.other_flow,
+        governing_is_head=solution.governing in case.heads,
     )
 
 

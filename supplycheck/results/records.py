@@ -198,6 +198,12 @@ class DemandRecord:
     governing_head: str
     governing_by: str
     outlet_flow: float = 0.0
+    governing_is_head: bool = True
+
+    @property
+    def governing_name(self) -> str:
+        """The governing head or outlet as a label."""
+        return f"head {self.governing_head}" if self.governing_is_head else self.governing_head
 
 
 @dataclass(frozen=True, slots=True)

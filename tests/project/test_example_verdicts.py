@@ -17,7 +17,9 @@ ADEQUATE = (
     "parcel-depot",
     "spreadsheet-store",
     "tank-and-pump",
+    "tower-standpipe",
     "two-supply-campus",
+    "yard-main",
 )
 
 

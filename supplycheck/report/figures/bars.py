@@ -19,7 +19,7 @@ Scale = Callable[[float], float]
 
 # what, colour; the lightness falls in this order too
 _PARTS: Final = (
-    ("required at the head", MIST),
+    ("required at the outlet", MIST),
     ("friction in pipe", PETROL),
     ("fittings", LAGOON),
     ("elevation", SAND),
@@ -51,7 +51,7 @@ def pressure_bars(
     items.append(Label(right + 6, bottom - 9, units.symbol("pressure"), 6.4, colour=SLATE))
     y = height - 18 - _ROW
     if first == 0 and path:
-        items += _head_row(path[0], x, y, units)
+        items += _head_row(result.demand.governing_name, path[0], x, y, units)
         y -= _ROW
     for number, step in enumerate(path, start=first + 1):
         items += _step_row(number, step, x, y, units)
@@ -65,10 +65,10 @@ def pressure_bars(
     return Drawing(width, height, (*items, *_key(width)), "pressure needed along the path")
 
 
-def _head_row(step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
+def _head_row(name: str, step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
     left, end = x(0.0), x(step.pressure_start)
     return [
-        Label(0, y + 3.5, short(f"head {step.start}", _NAMES - 10, 6.8), 6.8, bold=True),
+        Label(0, y + 3.5, short(name, _NAMES - 10, 6.8), 6.8, bold=True),
         Box(left, y + 2, end - left, _ROW - 5, MIST, INK, 0.5),
         Label(end + 4, y + 3.5, units.text(step.pressure_start, "pressure"), 6.6, behind="#ffffff"),
     ]

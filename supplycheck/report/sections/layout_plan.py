@@ -39,7 +39,8 @@ def plan(result: Result, width: float) -> Section:
                 "every pipe with its end nodes; give x and y in the node table to have the plan drawn."
             )
         )
-    blocks += _placements(result, show, width)
+    if result.project.criteria.has_sprinklers:
+        blocks += _placements(result, show, width)
     return Section("Plan and design area", tuple(blocks), fresh=True)
 
 

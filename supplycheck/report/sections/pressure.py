@@ -26,7 +26,7 @@ def pressure(result: Result, width: float) -> Section:
     blocks: list[Block] = []
     for first in range(0, len(path), ROWS):
         part = path[first : first + ROWS]
-        title = f"From head {path[0].start} to {path[-1].end}"
+        title = f"From {result.demand.governing_name} to {path[-1].end}"
         title += f", segments {first + 1} to {first + len(part)}" if len(path) > ROWS else ""
         blocks.append(Figure(title, pressure_bars(part, first, result, show.units, width)))
     blocks.append(_table(result, path, show))
