@@ -54,6 +54,7 @@ class TestFile:
     size: int = 0
     title: bytes = b""
     delimiter: str = ","
+    cells: int = 0
     hash: hashlib._Hash = field(default_factory=hashlib.sha256)
 
     def rows(self) -> Iterator[tuple[list[bytes], bool, int]]:
@@ -76,11 +77,11 @@ class TestFile:
                         rest = b""
                     continue
                 lines = _lines(rest[:cut])
-                rows, held = _joined(lines, self.delimiter, last=False)
+                rows, held = _joined(lines, self.delimiter, self.cells, last=False)
                 rest = (b"\n".join(held) + b"\n" if held else b"") + rest[cut:]
                 yield rows, False, end
         if rest:
-            rows, _ = _joined(_lines(rest), self.delimiter, last=True)
+            rows, _ = _joined(_lines(rest), self.delimiter, self.cells, last=True)
             yield rows, not rest.endswith(b"\n"), end
 
     @property
@@ -119,6 +120,8 @@ class TestFile:
             )
         head = data.split(b"\n", 1)[0]
         self.delimiter = max(",;\t", key=lambda sign: head.count(sign.encode()))
+        text = head.decode("utf-8", "replace")
+        self.cells = len(next(csv.reader([text.rstrip("\r")], delimiter=self.delimiter), []))
         return data
 
 
@@ -141,7 +144,19 @@ def _is_open(line: bytes, delimiter: str) -> bool:
     return False
 
 
-def _joined(lines: list[bytes], delimiter: str, *, last: bool) -> tuple[list[bytes], list[bytes]]:
+def _is_whole(row: bytes, delimiter: str, cells: int) -> bool:
+    """Return whether lines joined make a row of its ``cells``: a stray quote must not swallow rows."""
+    text = row.decode("utf-8", "replace")
+    try:
+        (found,) = csv.reader([text], delimiter=delimiter, strict=True)
+    except (csv.Error, ValueError):
+        return False
+    return len(found) == cells
+
+
+def _joined(
+    lines: list[bytes], delimiter: str, cells: int, *, last: bool
+) -> tuple[list[bytes], list[bytes]]:
     """Return rows, lines of one quoted cell joined, and the lines held back for the next block."""
     odd = [place for place, line in enumerate(lines) if b'"' in line and line.count(b'"') % 2]
     if not odd:
@@ -156,9 +171,10 @@ def _joined(lines: list[bytes], delimiter: str, *, last: bool) -> tuple[list[byt
             rows += lines[done:place]
             return rows, lines[place:]
         if close is not None:
-            rows += lines[done:place]
-            rows.append(b"\n".join(lines[place : close + 1]))
-            done = close + 1
+            whole = b"\n".join(lines[place : close + 1])
+            if _is_whole(whole, delimiter, cells):
+                rows += [*lines[done:place], whole]
+                done = close + 1
     return rows + lines[done:], []
 
 

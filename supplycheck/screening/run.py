@@ -134,6 +134,8 @@ def screen(
         names = _close(files)
         for name in names:
             (held / name).replace(folder / name)
+        for name in {WORKBOOK, MAP, REPORT}.difference(names):  # of an earlier screening, now untrue
+            (folder / name).unlink(missing_ok=True)
     return Screening(
         path.name,
         source.digest,
