@@ -10,7 +10,7 @@ from types import MappingProxyType
 import numpy as np
 
 from supplycheck.errors import NotConvergedError
-from supplycheck.hydraulics import hazen_williams_resistance, minor_loss
+from supplycheck.hydraulics import hazen_williams_resistance, minor_loss, reynolds_number
 from supplycheck.model.fluid import Fluid, FrictionLaw
 from supplycheck.model.system import Device, Pipe, System
 from supplycheck.network.curves import DeviceLaw
@@ -131,14 +131,17 @@ def _friction(
         return gradient * length, None
     _need(pipes, np.isfinite(roughness), "roughness")
     sorts, sort = np.unique(np.column_stack([bore, roughness]), axis=0, return_inverse=True)
+    sort_bore, sort_roughness = sorts[:, 0], sorts[:, 1]
+    by_flow, _ = reynolds_number(
+        flow=np.ones(len(sorts)), bore=sort_bore, density=fluid.density, viscosity=fluid.viscosity
+    )
     terms = Terms(
         link=np.arange(len(pipes)),
         sort=sort.reshape(-1),
         length=length,
-        bore=np.ascontiguousarray(sorts[:, 0]),
-        roughness=np.ascontiguousarray(sorts[:, 1]),
-        density=fluid.density,
-        viscosity=fluid.viscosity,
+        relative=sort_roughness / sort_bore,
+        by_flow=by_flow,
+        scale=fluid.viscosity**2 / (2 * fluid.density * sort_bore**3),
     )
     return np.zeros(len(pipes)), terms
 

@@ -19,7 +19,7 @@ from typing import Final
 import numpy as np
 from numpy.typing import NDArray
 
-from supplycheck.hydraulics import darcy_weisbach_gradient, smooth_power
+from supplycheck.hydraulics import friction_group, smooth_power
 from supplycheck.network.curves import DeviceLaw
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -39,38 +39,38 @@ def sums(row: IntArray, value: FloatArray, count: int) -> FloatArray:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Terms:
-    """Darcy-Weisbach terms: (t,) each ``length`` [m] of pipe sort ``sort`` on ``link``."""
+    """Darcy-Weisbach terms: (t,) each ``length`` [m] of pipe sort ``sort`` on ``link``.
+
+    For each sort (s,): ``relative`` roughness [-], Reynolds number for each flow ``by_flow`` [s/m³],
+    and ``scale`` [Pa/m], the loss for each metre where f·Re² is 1.
+    """
 
     link: IntArray
     sort: IntArray
     length: FloatArray
-    bore: FloatArray
-    roughness: FloatArray
-    density: float
-    viscosity: float
+    relative: FloatArray
+    by_flow: FloatArray
+    scale: FloatArray
 
     def loss(self, flow: FloatArray, count: int) -> tuple[FloatArray, FloatArray]:
         """Return loss [Pa] and slope on each of ``count`` links carrying ``flow``."""
-        value, slope = darcy_weisbach_gradient(
-            flow=flow[self.link],
-            bore=self.bore[self.sort],
-            roughness=self.roughness[self.sort],
-            density=self.density,
-            viscosity=self.viscosity,
+        here = flow[self.link]
+        by_flow = self.by_flow[self.sort]
+        group, rise = friction_group(
+            reynolds=by_flow * np.abs(here), relative_roughness=self.relative[self.sort]
         )
-        total = sums(self.link, value * self.length, count)
-        return total, sums(self.link, slope * self.length, count)
+        weight = self.scale[self.sort] * self.length
+        total = sums(self.link, np.copysign(weight * group, here), count)
+        return total, sums(self.link, weight * by_flow * rise, count)
 
     def merged(self, to: IntArray) -> Terms:
         """Return the terms with link ``i`` become part of link ``to[i]`` (negative: dropped)."""
         target = to[self.link]
         kept = target >= 0
-        sorts = len(self.bore)
+        sorts = len(self.scale)
         key, index = np.unique(target[kept] * sorts + self.sort[kept], return_inverse=True)
         length = sums(index, self.length[kept], len(key))
-        return Terms(
-            key // sorts, key % sorts, length, self.bore, self.roughness, self.density, self.viscosity
-        )
+        return replace(self, link=key // sorts, sort=key % sorts, length=length)
 
 
 @dataclass(frozen=True, slots=True, eq=False)

@@ -294,8 +294,8 @@ class _Balance:
                 flow=flow,
                 bore=float(self.network.bore[pipe]),
                 roughness=float(self.network.roughness[pipe]),
-                density=links.terms.density,
-                viscosity=links.terms.viscosity,
+                density=self.network.fluid.density,
+                viscosity=self.network.fluid.viscosity,
             )
             friction += gradient * float(links.terms.length[pipe])
         device = 0.0

@@ -9,7 +9,7 @@ import pytest
 from network_systems import WATER_US, network, node, pipe, supply, system, us_pipe
 
 from supplycheck.errors import DomainError, NotConvergedError
-from supplycheck.hydraulics import smooth_power
+from supplycheck.hydraulics import darcy_weisbach_gradient, smooth_power
 from supplycheck.model import Device
 from supplycheck.network import LoadCase, solve_demand, solve_operating
 from supplycheck.network.curves import DeviceLaw, SourceLaw
@@ -162,3 +162,19 @@ def test_open_outlet_needs_a_k_factor_and_known_tags() -> None:
         solve_operating(made, LoadCase((), {"A": float("nan")}), [supply()])
     with pytest.raises(NotConvergedError, match="no pressure is required"):
         solve_demand(made, LoadCase((), {"A": 0.01}), {}, [supply()])
+
+
+def test_darcy_pipes_lose_what_the_law_says() -> None:
+    made = network(
+        system([node("S"), node("A")], [pipe("p", "S", "A", 10.0, 0.05), pipe("q", "A", "S", 3.0, 0.1)]),
+        "darcy",
+    )
+    for flow in (1e-9, 2e-5, 9e-5, 2e-3, -0.04):
+        expected = [
+            length
+            * darcy_weisbach_gradient(
+                flow=flow, bore=bore, roughness=5e-5, density=WATER_US.density, viscosity=WATER_US.viscosity
+            )[0]
+            for length, bore in ((10.0, 0.05), (3.0, 0.1))
+        ]
+        assert made.links.friction(np.full(2, flow))[0] == pytest.approx(expected, rel=1e-13)
