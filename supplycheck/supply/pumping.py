@@ -310,13 +310,13 @@ class _Reader:
             if overload is not None:
                 points.append(MarkedPoint("150 %", "test", rating.overload_flow, overload))
         for state in states:
+            if state.discharge is None or state.net is None:  # beyond the end of the curve
+                continue
             if state.name == "demand":
-                solution = self.stages.solution
-                asked = self._suction(solution, state.flow) + (state.net or 0.0)
+                asked = self._suction(self.stages.solution, state.flow) + state.net
                 points.append(MarkedPoint("demand", "demand", state.flow, asked))
-                if state.discharge is not None:
-                    points.append(MarkedPoint("available", "available", state.flow, state.discharge))
-            elif state.name == "actual supply" and state.discharge is not None:
+                points.append(MarkedPoint("available", "available", state.flow, state.discharge))
+            elif state.name == "actual supply":
                 points.append(MarkedPoint("operating", "operating", state.flow, state.discharge))
         return tuple(points)
 

@@ -21,7 +21,7 @@ def answer(result: Result, width: float) -> Section:
     blocks: list[Block] = [
         Verdict(result.verdict, result.verdict_text, _tiles(result, show)),
         Figure("", answer_bars(result, show.units, width)),
-        Facts(_reasons(result)),
+        Facts(_reasons(result, show)),
         Facts(_standing(result, show), columns=2),
         *_fails(result, show),
         *_questions(result),
@@ -68,11 +68,12 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
     )
 
 
-def _reasons(result: Result) -> tuple[tuple[str, str], ...]:
+def _reasons(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     return (
         ("What governs", result.governs),
         *_asked(result),
         ("Margin rule", result.margin.rule),
+        *_pump(result, show),
         ("Findings", counts_text(result.findings)),
     )
 
@@ -99,6 +100,19 @@ def _standing(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Stage", given(facts.stage)),
         ("Designer", given(facts.designer)),
     )
+
+
+def _pump(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
+    """Return the pump that would close the gap, where the supply falls short."""
+    needed = result.needed_pump
+    if needed is None or not needed.options:
+        return ()
+    one = next((option for option in needed.options if option.suction_holds), needed.options[0])
+    where = f"in place of {needed.instead_of}" if needed.instead_of else f"behind {needed.node}"
+    rating = f"{show.t(one.rating.flow, 'flow')} at {show.t(one.rating.pressure, 'pressure')}"
+    left = show.t(one.suction_at_overload, "pressure")
+    text = f"rated {rating}, {where}; {left} left at its suction at 150 % of the flow"
+    return (("A pump that would do", text),)
 
 
 def _fails(result: Result, show: Show) -> list[Block]:
