@@ -12,7 +12,7 @@ import numpy as np
 import pytest
 from fluids.core import dP_from_K
 from fluids.friction import Clamond, Colebrook, friction_laminar, one_phase_dP
-from scipy.interpolate import PchipInterpolator
+from scipy.interpolate import make_interp_spline
 from scipy.optimize import brentq
 from scipy.special import wrightomega
 
@@ -145,18 +145,19 @@ def test_flow_without_iteration() -> None:
 
 
 def test_curve_against_scipy() -> None:
-    """The monotone curve written out here is scipy's PCHIP."""
+    """Straight lines between the points, as scipy draws them with a spline of degree one."""
     rng = np.random.default_rng(20)
     for count in (2, 3, 4, 9):
         for falling in (False, True):
             x = np.cumsum(rng.uniform(0.1, 3, count))
             y = np.cumsum(rng.uniform(0, 5, count))
             y = y[::-1].copy() if falling else y
-            rival = PchipInterpolator(x, y)
+            rival = make_interp_spline(x, y, k=1)
             places = np.linspace(x[0], x[-1], 201)
             value, slope = Curve(tuple(x), tuple(y)).at(places)
             assert value == pytest.approx(rival(places), rel=1e-12, abs=1e-12)
-            assert slope == pytest.approx(rival.derivative()(places), rel=1e-10, abs=1e-10)
+            off = ~np.isin(places, x)  # at a point two slopes meet
+            assert slope[off] == pytest.approx(rival.derivative()(places[off]), rel=1e-10, abs=1e-10)
     hill = (np.array([0.0, 1, 2, 3]), np.array([0.0, 2, 1, 1]))
     value, _ = Curve(tuple(hill[0]), tuple(hill[1])).at(np.linspace(0, 3, 50))
-    assert value == pytest.approx(PchipInterpolator(*hill)(np.linspace(0, 3, 50)), rel=1e-12, abs=1e-12)
+    assert value == pytest.approx(np.interp(np.linspace(0, 3, 50), *hill), rel=1e-12, abs=1e-12)
