@@ -90,7 +90,9 @@ def _front(answer: Screening, width: float) -> Section:
     )
     blocks: list[Block] = [Verdict(word, verdict(answer), tiles)]
     if statistics.done:
-        text = "Bars coloured by class; the last one holds all above. Dashed: limits of the classes."
+        text = (
+            "Bars coloured by the class of their lower end; the last holds all above. Dashed: class limits."
+        )
         blocks.append(Figure("Flow at 20 psi", histogram(answer, width), text))
     blocks.append(_classes(answer))
     return Section("Answer", tuple(blocks))
