@@ -63,7 +63,7 @@ def gauge_error(context: CheckContext) -> Finding:
     share = Measure(off / drop(worst), "percent")
     values |= {"drop": pressure(drop(worst)), "share": share}
     said = f"The gauge of {named(worst.tag)} may be off by {{measured}}"
-    if off >= drop(worst):
+    if off >= drop(worst) * (1 - limits.ROUND_OFF):
         text, do = f"{said}, no less than the drop of {{drop}}.", "Have the main tested with a finer gauge."
         return GAUGE_ERROR.says("fail", text, measured=measured, tags=tags, values=values, remedy=do)
     if 0.0 <= context.comparison.margin < off:

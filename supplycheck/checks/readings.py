@@ -123,7 +123,7 @@ def pitot(context: CheckContext) -> Finding:
     read = [
         (test, outlet)
         for test, outlet in outlets_of(field_tests(context))
-        if low <= outlet.diameter <= high
+        if low <= outlet.diameter <= high and outlet.kind != "diffuser"
     ]
     if not read:
         return PITOT.says("not applicable", "No 2½ in outlet with a pitot reading.")
@@ -182,6 +182,7 @@ def pumper(context: CheckContext) -> Finding:
         (test, outlet)
         for test, outlet in outlets_of(field_tests(context))
         if outlet.diameter >= limits.PUMPER_DIAMETER * (1 - limits.ROUND_OFF)
+        and outlet.kind in ("", "pumper outlet")
     ]
     if not large:
         return PUMPER.says("not applicable", "No outlet of 4 in or more was flowed.")

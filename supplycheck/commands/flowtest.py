@@ -51,6 +51,9 @@ class Answer:
     help="Factor for outlets of 4 in and more that carry none: a number, or 'table' for the published one.",
 )
 @click.option(
+    "--gauge", help="Full scale and accuracy of the gauge: '200 psi, 1' (per cent of full scale)."
+)
+@click.option(
     "--units",
     type=click.Choice(["us", "metric"]),
     default="us",
@@ -174,6 +177,11 @@ def _remarks(
         if fact.state != "within":
             text = f"The pitot reading {reading} of {fact.outlet.hydrant} is {fact.state} the preferred"
             remarks.append(f"{text} {limit} (NFPA 291).")
+    if facts.gauge_error is not None:
+        error = units.text(facts.gauge_error, "pressure")
+        share = facts.gauge_error / facts.drop
+        text = f"The gauge may be off by {error}, {100 * share:.0f} % of the drop"
+        remarks.append(text + (": the test proves no curve." if share > 1 - 1e-9 else "."))
     if facts.deviation > READING:
         away = units.text(facts.deviation, "pressure")
         text = (

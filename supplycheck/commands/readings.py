@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from supplycheck.supply import OutletFlow
     from supplycheck.units import UnitSet
 
-OUTLET_FORM = "diameter, coefficient or shape, pitot reading[, pumper factor]"
+OUTLET_FORM = "diameter, coefficient or shape (k 160: a diffuser), pitot reading[, pumper factor]"
 
 
 def refuse(option: str, value: str, problem: str, allowed: str, remedy: str = "") -> NoReturn:
@@ -63,6 +63,8 @@ def read_outlet(text: str, number: int, factor: str | None, units: UnitSet) -> O
         refuse("outlet", text, f"has {len(parts)} parts between commas", OUTLET_FORM, remedy)
     diameter = read_si("outlet", parts[0], "size", units, text)
     pitot = read_si("outlet", parts[2], "pressure", units, text)
+    if parts[1][:2].casefold() == "k ":
+        return _diffuser(text, parts, number, units)
     shape = ""
     if parts[1][:1].isdigit() or parts[1][:1] in {".", "-", "−", "+"}:
         coefficient = read_si("outlet", parts[1], "ratio", units, text)
@@ -82,6 +84,31 @@ def read_outlet(text: str, number: int, factor: str | None, units: UnitSet) -> O
     if diameter < LARGE_OUTLET:
         return outlet
     return replace(outlet, pumper_factor=_pumper_factor(text, pitot, factor, units))
+
+
+def _diffuser(text: str, parts: list[str], number: int, units: UnitSet) -> Outlet:
+    """Return a diffuser by the K-factor of its maker, told as a coefficient of its opening."""
+    from supplycheck.hydraulics.discharge import PITOT
+    from supplycheck.model import Outlet
+
+    if len(parts) == 4:
+        refuse(
+            "outlet", text, "is a diffuser with a pumper factor", "diameter, k and its K-factor, reading"
+        )
+    diameter = read_si("outlet", parts[0], "size", units, text)
+    k_factor = read_si("outlet", parts[1][2:], "k_factor", units, text)
+    pitot = read_si("outlet", parts[2], "pressure", units, text)
+    coefficient = k_factor / (PITOT * diameter**2)
+    return Outlet(diameter, coefficient, pitot, hydrant=f"diffuser {number}", kind="diffuser")
+
+
+def read_gauge(text: str, units: UnitSet) -> tuple[float, float]:
+    """Return full scale [Pa] and accuracy [-] of a gauge written as ``200 psi, 1``; a usage error else."""
+    parts = [part.strip() for part in text.split(",")]
+    if len(parts) != 2:
+        refuse("gauge", text, f"has {len(parts)} parts between commas", "full scale, accuracy in per cent")
+    accuracy = read_si("gauge", parts[1], "percent", units, text)
+    return read_si("gauge", parts[0], "pressure", units, text), accuracy
 
 
 def _pumper_factor(text: str, pitot: float, factor: str | None, units: UnitSet) -> float:
@@ -134,4 +161,8 @@ def read_flow_test(given: dict[str, Any], units: UnitSet) -> tuple[FlowTest, tup
         pressure = read_si("point", parts[0], "pressure", units, text)
         points.append(TestPoint(pressure, read_si("point", parts[1], "flow", units, text)))
     day = read_day("date", given["date"]) if given["date"] else dt.date.min
-    return FlowTest("of the readings", "gauge", day, static, tuple(points), 0.0), each
+    test = FlowTest("of the readings", "gauge", day, static, tuple(points), 0.0)
+    if given["gauge"]:
+        scale, accuracy = read_gauge(given["gauge"], units)
+        test = replace(test, gauge_range=scale, gauge_accuracy=accuracy)
+    return test, each

@@ -127,9 +127,13 @@ def flow_test_facts(test: FlowTest, when: dt.date, demand_flow: float | None = N
         drop_share=drop_share(test),
         tested_flow=curve.tested_flow,
         age=age_of(test, when),
-        pitots=tuple(pitot_fact(outlet) for outlet in outlets),
+        pitots=tuple(pitot_fact(outlet) for outlet in outlets if outlet.kind != "diffuser"),
         pumper_outlets_without_factor=tuple(
-            outlet for outlet in outlets if outlet.diameter >= LARGE_OUTLET and outlet.pumper_factor == 1.0
+            outlet
+            for outlet in outlets
+            if outlet.diameter >= LARGE_OUTLET
+            and outlet.pumper_factor == 1.0
+            and outlet.kind in ("", "pumper outlet")
         ),
         same_hydrant=bool(named)
         and test.static_hydrant.strip().casefold() == test.flow_hydrant.strip().casefold(),

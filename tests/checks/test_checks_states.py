@@ -113,6 +113,7 @@ def several(*readings: tuple[float, float]) -> dict[str, Any]:
 
 
 PUMPER = Outlet(4 * INCH, 0.9, 10 * PSI, 0.83)
+DIFFUSER = Outlet(4 * INCH, 0.35, 40 * PSI, kind="diffuser")
 BUTT = Outlet(2.5 * INCH, 0.9, 20 * PSI)
 
 OFF = 80 - 22 * (500 / 1060) ** 1.85 - 72  # NFPA 291: P = Ps − (Ps − Pr)(Q/Qt)^1.85
@@ -361,6 +362,8 @@ TESTS = [
     ),
     Case("gauge error against the drop", "ask authority", {"comparison.margin": 1.9 * PSI}, 2 * PSI),
     Case("pumper outlet factor", "not applicable"),
+    Case("pumper outlet factor", "not applicable", outlets(DIFFUSER)),
+    Case("pitot readings", "not applicable", outlets(replace(DIFFUSER, diameter=2.5 * INCH))),
     Case("pumper outlet factor", "ok", outlets(PUMPER), 0.83),
     Case("pumper outlet factor", "fail", outlets(replace(PUMPER, pumper_factor=1.0)), 1.0, None, ("T-1",)),
     Case("pumper outlet factor", "ask authority", outlets(replace(PUMPER, pumper_factor=0.9)), 0.9, 0.83),

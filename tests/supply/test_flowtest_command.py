@@ -111,3 +111,29 @@ def test_bad_values_have_clear_messages(arguments: tuple[str, ...], code: int, m
     assert message in result.output
     assert "Traceback" not in result.output
     assert result.exception is None or isinstance(result.exception, SystemExit)
+
+
+def test_a_diffuser_by_its_k_factor_and_the_error_of_the_gauge() -> None:
+    """Q = K√p: 160√16 = 640 gpm; 1 % of 200 psi is 2 psi, 6 % of 33 psi."""
+    result = run(*PRESSURES, "--outlet", "2.5 in, k 160, 16 psi", "--gauge", "200 psi, 1", "--json")
+    answer = json.loads(result.output)
+    assert answer["flow"] == pytest.approx(640.0, rel=1e-9)
+    shown = run(*PRESSURES, "--outlet", "2.5 in, k 160, 40 psi", "--gauge", "200 psi, 1").output
+    assert "Diffuser 1" in shown and "preferred" not in shown
+    assert "may be off by 2.0 psi, 6 % of the drop." in shown
+    coarse = run("--static", "50", "--residual", "44", "--flow", "900", "--gauge", "300, 2").output
+    assert "6.0 psi, 100 % of the drop: the test proves no curve" in coarse
+
+
+@pytest.mark.parametrize(
+    ("arguments", "says"),
+    [
+        (("--outlet", "2.5, k 160, 16, 0.9"), "is a diffuser with a pumper factor"),
+        (("--outlet", "2.5, k 0, 16"), "is zero"),
+        (("--flow", "600", "--gauge", "200 psi"), "has 1 parts"),
+        (("--flow", "600", "--gauge", "200 psi, one"), "cannot be read"),
+    ],
+)
+def test_diffusers_and_gauges_that_cannot_be_read(arguments: tuple[str, ...], says: str) -> None:
+    result = run(*PRESSURES, *arguments)
+    assert result.exit_code == 2 and says in " ".join(result.output.split())
