@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from types import MappingProxyType
@@ -87,10 +88,15 @@ class Solution:
 
 @dataclass(frozen=True, slots=True)
 class DemandSummary:
-    """The short answer of one demand case in a search: source pressure [Pa], flow [m³/s], shift [Pa]."""
+    """The short answer of one demand case in a search.
+
+    ``source_pressure`` [Pa] at the first source, ``total_flow`` [m³/s], ``shift`` [Pa] as in
+    :class:`Solution`; ``pressure_at`` [Pa] is at the node that was asked about (else at the first source).
+    """
 
     source_pressure: float
     total_flow: float
     shift: float
     governing: str
     iterations: int
+    pressure_at: float = math.nan

@@ -119,3 +119,19 @@ def test_many_cases_equal_each_on_its_own(law: str, sources: list[SourceCurve]) 
         assert summary.total_flow == pytest.approx(alone.source_flow.sum(), rel=1e-5)
         assert summary.shift == pytest.approx(alone.shift, abs=1.0)
         assert summary.governing == alone.governing
+        assert summary.pressure_at == pytest.approx(alone.pressure[alone.node(sources[0].node)], abs=1.0)
+
+
+def test_pressure_at_the_node_that_is_asked_about() -> None:
+    """Also where the node lies in a chain or a dead end that the reduction would take away."""
+    rng = np.random.default_rng(8)
+    made_system = random_system(rng, "grid", 60, heads=0.5)
+    made = network(made_system)
+    tags = [n.tag for n in made_system.nodes if n.k_factor is not None]
+    cases = [(LoadCase(tuple(tags[i : i + 3])), dict.fromkeys(tags[i : i + 3], 1e5)) for i in range(8)]
+    for at in ("n7", "n31", "n40"):
+        for (load, required), summary in zip(
+            cases, demand_many(made, cases, [supply()], at=at), strict=True
+        ):
+            alone = solve_demand(made, load, required, [supply()])
+            assert summary.pressure_at == pytest.approx(alone.pressure[alone.node(at)], abs=1.0)
