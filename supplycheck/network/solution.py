@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -17,29 +18,53 @@ from supplycheck.network.reduce import Reduced
 from supplycheck.network.restore import spread_heads
 
 
-def whole_solution(
-    network: Network,
-    case: Case,
-    feed: Feed,
-    sources: Sequence[SourceCurve],
-    reduced: Reduced,
-    assembled: Assembled,
-    state: State,
-    *,
-    demand: bool,
-) -> Solution:
-    """Return the :class:`Solution` on every node and pipe of ``network``."""
+@dataclass(frozen=True, slots=True, eq=False)
+class Found:
+    """A solved case: what was asked, the reduced network it was solved on, and its state."""
+
+    network: Network
+    case: Case
+    feed: Feed
+    reduced: Reduced
+    assembled: Assembled
+    state: State
+
+    def pipe_flow(self) -> FloatArray:
+        """Return the flow in every pipe of the original [m³/s]."""
+        return self.reduced.flow(self.state.flow[: self.assembled.pipes])
+
+    def heads(self, loss: FloatArray) -> FloatArray:
+        """Return the head at every node [Pa] (NaN where cut off), given the loss in every pipe."""
+        links, rows = self.network.links, np.flatnonzero(~self.case.shut)
+        head, known = self.assembled.heads(self.state, len(self.network.node_tags))
+        if len(rows) == len(links):
+            return spread_heads(links, head, known, loss)
+        return spread_heads(links.take(rows), head, known, loss[rows])
+
+    def requirement(self, supplied: FloatArray, pressure: FloatArray) -> tuple[float, str]:
+        """Return the shift of the supplies [Pa] and the governing node."""
+        rows = self.case.floor_rows
+        governing = self.network.node_tags[rows[int(np.argmin(pressure[rows] - self.case.floors))]]
+        if len(self.feed.laws) > 1:
+            return -float(self.state.shift[0]), governing
+        law = self.feed.laws[0]
+        fall, _ = law.fall(supplied)
+        return float(law.static - fall[0] - pressure[self.feed.rows[0]]), governing
+
+
+def whole_solution(found: Found, sources: Sequence[SourceCurve], *, demand: bool) -> Solution:
+    """Return the :class:`Solution` on every node and pipe of the original network."""
+    network, case, feed, state = found.network, found.case, found.feed, found.state
     links, nodes = network.links, len(network.node_tags)
-    flow = reduced.flow(state.flow[: assembled.pipes]) + 0.0
+    flow = found.pipe_flow() + 0.0
     flow[links.one_way & (flow < 0)] = 0.0  # rounding: a one-way link is closed exactly before this
     friction, _ = links.friction(flow)
     device, _ = links.device_drop(flow)
     taken_off = np.zeros(nodes)
     taken_off[case.outlets] = case.offset
-    head, known = assembled.heads(state, nodes)
-    head = _all_heads(network, case, head, known, friction + device)
+    head = found.heads(friction + device)
     out = case.outflow.copy()
-    np.add.at(out, case.outlets, assembled.outlet_flow(state))
+    np.add.at(out, case.outlets, found.assembled.outlet_flow(state))
     leaving = np.bincount(links.start, flow, minlength=nodes) - np.bincount(
         links.end, flow, minlength=nodes
     )
@@ -58,12 +83,7 @@ def whole_solution(
     rise = np.where(case.shut, np.nan, rise)
     velocity = flow / links.area
     reynolds, factor = _numbers(network, flow)
-    shift, governing = np.nan, ""
-    if demand:
-        shift = _shift(feed, state, supplied, source_pressure)
-        governing = network.node_tags[
-            case.floor_rows[int(np.argmin(pressure[case.floor_rows] - case.floors))]
-        ]
+    shift, governing = found.requirement(supplied, pressure) if demand else (np.nan, "")
     return Solution(
         node_tags=network.node_tags,
         pipe_tags=network.pipe_tags,
@@ -85,7 +105,7 @@ def whole_solution(
         iterations=state.iterations,
         mass_residual=float(np.abs(leaving + out - at_source).max()),
         energy_residual=float(np.abs(energy[live]).max(initial=0.0)),
-        notes=_notes(network, case, feed, flow, supplied, device, pressure),
+        notes=_notes(found, flow, supplied, device, pressure),
         out_of_range=tuple(
             (network.pipe_tags[link], law.tag, float(flow[link]))
             for link, law in links.devices
@@ -93,23 +113,6 @@ def whole_solution(
         ),
         outlet_velocity_pressure=taken_off,
     )
-
-
-def _all_heads(
-    network: Network, case: Case, head: FloatArray, known: BoolArray, loss: FloatArray
-) -> FloatArray:
-    links = network.links
-    rows = np.flatnonzero(~case.shut)
-    if len(rows) == len(links):
-        return spread_heads(links, head, known, loss)
-    return spread_heads(links.take(rows), head, known, loss[rows])
-
-
-def _shift(feed: Feed, state: State, supplied: FloatArray, pressure: FloatArray) -> float:
-    if len(feed.laws) > 1:
-        return -float(state.shift[0])
-    fall, _ = feed.laws[0].fall(supplied)
-    return float(feed.laws[0].static - fall[0] - pressure[0])
 
 
 def _numbers(network: Network, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -135,15 +138,10 @@ def _holding(network: Network, flow: FloatArray) -> BoolArray:
 
 
 def _notes(
-    network: Network,
-    case: Case,
-    feed: Feed,
-    flow: FloatArray,
-    supplied: FloatArray,
-    device: FloatArray,
-    pressure: FloatArray,
+    found: Found, flow: FloatArray, supplied: FloatArray, device: FloatArray, pressure: FloatArray
 ) -> tuple[str, ...]:
     """Return what a reader should know about the state, one sentence each."""
+    network, case, feed = found.network, found.case, found.feed
     links, pipes, nodes = network.links, network.pipe_tags, network.node_tags
     notes = [
         f"water runs into the supply at {nodes[row]}: another one is stronger"

@@ -14,12 +14,18 @@ from supplycheck.network.assemble import Assembled, Case, Feed, assemble, read_c
 from supplycheck.network.core import State
 from supplycheck.network.diagnose import check_reached, check_structure, explain
 from supplycheck.network.find import NoStateError, find_state
-from supplycheck.network.records import FloatArray, LoadCase, Solution, SourceCurve
+from supplycheck.network.records import FloatArray, IntArray, LoadCase, Solution, SourceCurve
 from supplycheck.network.reduce import Reduced, reduce_links
-from supplycheck.network.solution import whole_solution
+from supplycheck.network.solution import Found, whole_solution
 
 TURNS: Final = 100
 """Most rounds in which velocity pressures are brought up to date."""
+HIGHEST_VELOCITY_PRESSURE: Final = 1e9
+"""Velocity pressure at which the search is given up [Pa]."""
+FULL_TURNS: Final = 10
+"""Rounds after which velocity pressures go only half of the way, against swinging."""
+FREE_TURNS: Final = 20
+"""Rounds in which the pipe that feeds an outlet may change."""
 VELOCITY_TOLERANCE: Final = 1e-6
 """Largest change of a velocity pressure in the last round [Pa]."""
 
@@ -98,26 +104,45 @@ def _solve(
     reduced = reduce_links(network.links, keep, case.shut)
     check_structure(network, reduced.links, case, feed)
     assembled = assemble(reduced.links, network.base, case, feed, demand=demand)
-    state = _find(network, reduced, assembled, None)
-    turns = 0
-    while normal:
-        offset = _velocity_pressures(network, case, reduced.flow(state.flow[: assembled.pipes]))
-        turns += 1
-        if float(np.abs(offset - case.offset).max(initial=0.0)) <= VELOCITY_TOLERANCE:
-            break
-        if turns > TURNS:
-            raise NotConvergedError(
-                "the velocity pressures did not settle",
-                cause="numbers",
-                tags=tuple(network.node_tags[row] for row in case.outlets),
-                remedy="use total pressure, or larger pipes at the outlets",
-            )
-        case = _with_offset(case, offset)
-        assembled = assemble(reduced.links, network.base, case, feed, demand=demand)
-        state = _find(network, reduced, assembled, state)
-    solution = whole_solution(network, case, feed, sources, reduced, assembled, state, demand=demand)
+    found = Found(network, case, feed, reduced, assembled, _find(network, reduced, assembled, None))
+    if normal and len(case.outlets):
+        found = _with_normal_pressure(found, demand=demand)
+    solution = whole_solution(found, sources, demand=demand)
     notes = check_reached(network, case, solution.pressure)
     return replace(solution, notes=(*solution.notes, *notes)) if notes else solution
+
+
+def _with_normal_pressure(found: Found, *, demand: bool) -> Found:
+    """Return the state in which outlets discharge by normal pressure, by bringing it up to date in turns.
+
+    Where heads are fed from both sides the pipe that feeds one may change for ever; it is therefore kept
+    as it is after :data:`FREE_TURNS`.
+    """
+    network, case = found.network, found.case
+    feeding, offset = np.zeros(0, dtype=np.int64), case.offset
+    for turn in range(TURNS):
+        flow = found.pipe_flow()
+        if turn < FREE_TURNS:
+            feeding = _feeding_pipes(network, case, flow)
+        speed = np.where(feeding >= 0, flow[feeding] / network.links.area[feeding], 0.0)
+        offset = 0.5 * network.fluid.density * speed**2
+        if float(np.abs(offset - case.offset).max(initial=0.0)) <= VELOCITY_TOLERANCE:
+            return found
+        if float(offset.max()) > HIGHEST_VELOCITY_PRESSURE:
+            break
+        if turn >= FULL_TURNS:
+            offset = 0.5 * (offset + case.offset)
+        case = _with_offset(case, offset)
+        assembled = assemble(found.reduced.links, network.base, case, found.feed, demand=demand)
+        state = _find(network, found.reduced, assembled, found.state)
+        found = replace(found, case=case, assembled=assembled, state=state)
+    worst = np.argsort(-offset)[:5]
+    raise NotConvergedError(
+        "the velocity pressures did not settle: at some outlets they rise as fast as the pressure",
+        cause="input",
+        tags=tuple(network.node_tags[row] for row in case.outlets[worst]),
+        remedy="use total pressure, or larger pipes at these outlets",
+    )
 
 
 def _find(network: Network, reduced: Reduced, assembled: Assembled, start: State | None) -> State:
@@ -136,17 +161,14 @@ def _with_offset(case: Case, offset: FloatArray) -> Case:
     return replace(case, offset=offset, floors=case.floors + raised)
 
 
-def _velocity_pressures(network: Network, case: Case, flow: FloatArray) -> FloatArray:
-    """Return the velocity pressure of the pipe feeding each open outlet; 0 at the end of a line [Pa]."""
+def _feeding_pipes(network: Network, case: Case, flow: FloatArray) -> IntArray:
+    """Return the pipe with the largest flow into each open outlet; −1 at the end of a line."""
     links, nodes = network.links, len(network.node_tags)
     moving = np.flatnonzero(np.abs(flow) > 0)
     into = np.where(flow[moving] > 0, links.end[moving], links.start[moving])
     out_of = np.where(flow[moving] > 0, links.start[moving], links.end[moving])
     onward = np.bincount(out_of, minlength=nodes) > 0
-    size = np.abs(flow[moving])
-    order = np.argsort(size, kind="stable")
+    order = np.argsort(np.abs(flow[moving]), kind="stable")
     feeding = np.full(nodes, -1)
     feeding[into[order]] = moving[order]
-    pipe = feeding[case.outlets]
-    speed = np.where(pipe >= 0, flow[pipe] / links.area[pipe], 0.0)
-    return np.where(onward[case.outlets], 0.5 * network.fluid.density * speed**2, 0.0)
+    return np.where(onward[case.outlets], feeding[case.outlets], -1)

@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 from network_systems import K_US, network, node, random_system, supply, system, us_pipe
 
+from supplycheck.errors import NotConvergedError
 from supplycheck.network import LoadCase, SourceCurve, demand_many, solve_demand, solve_operating
 from supplycheck.units import GPM, PSI
 
@@ -135,3 +136,27 @@ def test_pressure_at_the_node_that_is_asked_about() -> None:
         ):
             alone = solve_demand(made, load, required, [supply()])
             assert summary.pressure_at == pytest.approx(alone.pressure[alone.node(at)], abs=1.0)
+
+
+def test_normal_pressure_that_no_supply_can_give_is_said_so() -> None:
+    """K 25.2 heads on a ½ in line: the velocity pressure rises faster than the pressure."""
+    big = 25.2 * K_US
+    made = network(
+        system(
+            [node("S"), node("A", 0.0, big), node("B", 0.0, big)],
+            [us_pipe("SA", "S", "A", 1, 0.622), us_pipe("AB", "A", "B", 1, 0.622)],
+        )
+    )
+    with pytest.raises(NotConvergedError, match="velocity pressures") as caught:
+        solve_demand(made, LoadCase(("A", "B")), {"A": 1e5, "B": 1e5}, [supply()], velocity_pressure=True)
+    assert "A" in caught.value.tags
+
+
+def test_many_cases_with_normal_pressure() -> None:
+    made = campus()
+    cases = [(LoadCase((tag,)), {tag: 1e5}) for tag in HEADS]
+    for summary, (load, required) in zip(
+        demand_many(made, cases, TWO, velocity_pressure=True), cases, strict=True
+    ):
+        alone = solve_demand(made, load, required, TWO, velocity_pressure=True)
+        assert summary.shift == pytest.approx(alone.shift, rel=1e-12)
