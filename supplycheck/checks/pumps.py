@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, pressure
@@ -130,12 +132,13 @@ def main(context: CheckContext) -> Finding:
 
 def discharge(context: CheckContext) -> Finding:
     """The highest of all pumps."""
-    if not context.pumps:
-        return DISCHARGE.says("not applicable", _NONE)
+    fed = [pump for pump in context.pumps if math.isfinite(pump.highest_discharge)]
+    if not fed:
+        return DISCHARGE.says("not applicable", "No pump is fed." if context.pumps else _NONE)
     criteria = context.project.criteria
     given = criteria.maximum_pressure
     limit = limits.COMPONENT_RATING[criteria.standard] if given is None else given
-    pump = max(context.pumps, key=lambda one: one.highest_discharge)
+    pump = max(fed, key=lambda one: one.highest_discharge)
     measured, allowed, tags = pressure(pump.highest_discharge), pressure(limit), (pump.tag,)
     values = {"churn": pressure(pump.churn), "static": pressure(pump.highest_suction)}
     text = f"{pump.tag}: churn {{churn}} on {{static}} is {{measured}} without flow; components "

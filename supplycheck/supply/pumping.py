@@ -25,6 +25,8 @@ from supplycheck.supply.sources import NodeSupply, source_curves
 
 StateName = Literal["demand", "actual supply", "150 % of rated flow"]
 _SAMPLES: Final = 24
+_TURNS: Final = 20
+_CLOSE: Final = 1e-6
 _AT_REST: Final = 1e-9
 """Flow [m³/s] below which a pump is taken to stand still."""
 
@@ -236,20 +238,36 @@ class _Reader:
         return tuple(state for state in states if state is not None)
 
     def _overload(self) -> Solution | None:
-        """Return the state with 150 % of the rated flow drawn behind the pump and nothing else."""
+        """Return the state in which this pump gives 150 % of its rated flow, drawn behind it.
+
+        Where others feed the same node (a second pump, a tank) more is drawn until it does; ``None`` where
+        the supply cannot give it.
+        """
         if self.rating is None:
             return None
-        drawn = {self.pipe.end: self.rating.overload_flow}
-        load = LoadCase((), drawn, self.stages.case.closed_pipes)
-        try:
-            return solve_operating(self.stages.network, load, source_curves(self.stages.curves))
-        except (NotConvergedError, DomainError):
-            return None
+        wanted = drawn = self.rating.overload_flow
+        sources, closed = source_curves(self.stages.curves), self.stages.case.closed_pipes
+        for _ in range(_TURNS):
+            load = LoadCase((), {self.pipe.end: drawn}, closed)
+            try:
+                solution = solve_operating(self.stages.network, load, sources)
+            except (NotConvergedError, DomainError):
+                return None
+            flow = self._flow(solution)
+            if abs(flow - wanted) <= _CLOSE * wanted:
+                return solution
+            if not flow > _AT_REST:
+                return None
+            drawn *= min(max(wanted / flow, 0.5), 4.0)
+        return None
+
+    def _flow(self, solution: Solution) -> float:
+        return float(solution.pipe_flow[solution.pipe_tags.index(self.pipe.tag)])
 
     def _state(
         self, name: StateName, solution: Solution, supply: NodeSupply, more: float
     ) -> PumpState | None:
-        flow = float(solution.pipe_flow[solution.pipe_tags.index(self.pipe.tag)])
+        flow = self._flow(solution)
         if not flow > _AT_REST:
             return None
         suction, net = self._suction(solution, flow) + more, self._net(flow)

@@ -14,6 +14,7 @@ from typing import Any
 import numpy as np
 import pytest
 from check_factory import DRY, EN, OPEN, QUICK, TEE, K, array_with, built
+from duty_factory import DUTY_CASES
 from pump_factory import NEEDED, OPTION, STATES, pumps, state, with_state
 
 from supplycheck.checks import RULES, PumpRating, run_checks
@@ -255,6 +256,7 @@ SUPPLY = [
         20 * PSI,
     ),
     Case("pump pressure without flow", "not applicable"),
+    Case("pump pressure without flow", "not applicable", pumps(highest_discharge=math.nan)),
     Case("pump pressure without flow", "ok", pumps(), 170 * PSI, 175 * PSI, ("pump",)),
     Case(
         "pump pressure without flow",
@@ -874,7 +876,9 @@ BASIS = [
     Case("outside this calculation", "not applicable"),
 ]
 
-CASES = SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS
+DUTIES = [Case(*one) for one in DUTY_CASES]
+
+CASES = SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS + DUTIES
 
 
 def name_of(case: Case) -> str:

@@ -39,12 +39,21 @@ class Chain:
     hose: float
     rule: str
     pump: bool
+    tank: bool = False
 
     def text(self, datum: float, at: str) -> str:
         gauge = self.heights[0] + 3 + datum
         pump = (
             '[device.pump]\nkind = "pump"\nsource = "made up"\nrated_flow = 300\nrated_pressure = 30\n'
             "churn_pressure = 36\npressure_at_150 = 21\n"
+        )
+        test = (
+            f"[supply.flow_test]\nstatic = {self.static}\nresidual = {self.static - self.drop}\n"
+            f"flow = 900\ndate = 2026-06-01\ngauge_elevation = {gauge}"
+        )
+        tank = (
+            f'[[supply.tank]]\ntag = "T"\nnode = "HYD"\nwater_level = {gauge + 2.3 * self.static}\n'
+            f"low_level = {gauge + 2.3 * self.static - self.drop}"
         )
         return f"""\
 units = "us"
@@ -74,12 +83,7 @@ pipes = "pipes.csv"
 [supply]
 node = "HYD"
 compare_at = "{at}"
-[supply.flow_test]
-static = {self.static}
-residual = {self.static - self.drop}
-flow = 900
-date = 2026-06-01
-gauge_elevation = {gauge}
+{tank if self.tank else test}
 [supply.margin]
 {self.rule}
 [hose]
@@ -125,6 +129,7 @@ CHAINS = st.builds(
     hose=st.sampled_from((0.0, 100.0, 250.0)),
     rule=st.sampled_from(RULES),
     pump=st.booleans(),
+    tank=st.booleans(),
 )
 
 

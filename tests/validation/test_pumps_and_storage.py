@@ -203,6 +203,37 @@ def chosen(flow: float, pressure: float) -> str:
     return f"rated_flow = {flow}\nrated_pressure = {pressure}\ncurve_from_limits = true"
 
 
+def test_two_pumps_side_by_side_in_pipes_of_their_own(tmp_path: Path) -> None:
+    """Both run: when one gives 150 % of 500 gpm so does the other, and the main gives 1500 gpm."""
+    half = RATED.replace("1000", "500")
+    second = '\n[device.second]\nkind = "pump"\nsource = "made up"\n' + half
+    (tmp_path / "project.toml").write_text(
+        PROJECT.format(k_factor=10, minimum=100, pump=half + second, supply=CITY, hose=0), encoding="utf-8"
+    )
+    (tmp_path / "nodes.csv").write_text(NODES, encoding="utf-8")
+    pipes = PIPES.replace("from,to,", "tag,from,to,").replace("\nS,", "\nP,S,").replace("\nD,", "\nR,D,")
+    pipes = pipes.replace("\nB,D,0.01,wide,11.938,none,pump", "\nQ,B,D,0.01,wide,11.938,none,pump")
+    pipes += "T,B,D,0.01,wide,11.938,none,second\n"
+    (tmp_path / "pipes.csv").write_text(pipes, encoding="utf-8")
+    both = check_project(tmp_path).pumps
+    assert [pump.facts.tag for pump in both] == ["pump", "second"]
+    for pump in both:
+        state = pump.facts.state("150 % of rated flow")
+        assert state is not None
+        assert state.flow / GPM == pytest.approx(750, rel=2e-6)
+        assert state.suction / PSI == pytest.approx(37.1, abs=0.05)
+
+
+def test_a_pump_that_the_main_cannot_feed(tmp_path: Path) -> None:
+    """A pump of 5000 gpm on this main: 150 % would need −949 psi, which is told, not hidden."""
+    pump = RATED.replace("1000", "5000")
+    facts = checked(tmp_path, pump=pump).pumps[0].facts
+    state = facts.state("150 % of rated flow")
+    assert state is not None
+    assert state.suction / PSI == pytest.approx(90 - 25 * 7.5**1.85, rel=1e-3)
+    assert finding(checked(tmp_path, pump=pump), "pump suction").state == "fail"
+
+
 def white(gain: float) -> tuple[float, float]:
     """Return flow [ft³/s] and power given to the water [hp] with a pump that adds ``gain`` [ft]."""
     density = 1.94 * POUND * GRAVITY / FOOT / FOOT**3  # slug/ft³
