@@ -22,7 +22,7 @@ from supplycheck.network.records import DemandSummary, IntArray, LoadCase, Sourc
 from supplycheck.network.reduce import reduce_links
 from supplycheck.network.solve import solve_demand
 
-SIDE_BY_SIDE: Final = 20
+SIDE_BY_SIDE: Final = 25
 """Most cases solved as one system."""
 
 BRANCHES: Final = 5
