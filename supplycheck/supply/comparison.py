@@ -63,7 +63,7 @@ class Comparison:
     available less the demand pressure; ``required`` what the rule asks (``None``: no rule given) and
     ``after_rule`` what is left. ``static`` and ``highest_static`` are the no-flow pressures at ``node`` on
     the compared curve and on the highest measured one. ``principal`` is the source that gives most; the
-    flows at 20 psi are read at its node, on the lowest measured and on the compared curve.
+    flows at 20 psi are read at its gauge, on the lowest measured and on the adjusted curve.
     """
 
     node: str
@@ -179,8 +179,8 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
             *supply_steps(supply, main.flow, carried.route, at, demand, margin),
         ),
         margin_steps=_margin_steps(project, by_node, shares, demand, margin, required),
-        flow_at_20_psi=supply.unadjusted.flow_at(RATING_PRESSURE),
-        adjusted_flow_at_20_psi=supply.curve.flow_at(RATING_PRESSURE),
+        flow_at_20_psi=supply.rated_flow(RATING_PRESSURE),
+        adjusted_flow_at_20_psi=supply.rated_flow(RATING_PRESSURE, adjusted=True),
         notes=supply.notes + _range_notes(shares, carried),
     )
 

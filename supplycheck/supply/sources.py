@@ -68,6 +68,15 @@ class NodeSupply:
                 return test
         raise KeyError(tag)
 
+    def rated_flow(self, pressure: float, *, adjusted: bool = False) -> float | None:
+        """Return the flow [m³/s] at which ``pressure`` [Pa] is left at the gauge, the least of the tests.
+
+        A tank is read at its node. ``None`` where no curve falls so far.
+        """
+        curves = self.adjusted if adjusted else self.measured
+        flows = [flow for one in curves if (flow := one.flow_at(pressure + one.offset)) is not None]
+        return min(flows, default=None)
+
     def adjusted_member(self, flow: float) -> SupplyCurve:
         """Return the adjusted curve of the test or tank that governs at ``flow`` [m³/s]."""
         return self._member(self.adjusted, flow)

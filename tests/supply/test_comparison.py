@@ -248,3 +248,22 @@ def test_only_a_demand_solution_can_be_compared() -> None:
         compare(project, replace(solution, shift=float("nan")), curves)
     with pytest.raises(DomainError, match="point of comparison X"):
         compare(replace(project, supply=replace(project.supply, compare_at="X")), solution, curves)
+
+
+def test_flow_at_20_psi_is_read_at_the_gauge() -> None:
+    """NFPA 291: Qr = Qf (hr/hf)^0.54 with the drops as read at the gauge, whatever the height of the node.
+
+    82 psi static, 54 psi at 956 gpm: 956 × (62/28)^0.54 = 1469 gpm. The curve uses 1/1.85, the handbook 0.54
+    (0.1 % apart in the exponent): 5e-4 covers (62/28)^(1/1.85 − 0.54) = 1.00043.
+    """
+    by_hand = 956 * (62 / 28) ** 0.54
+    for gauge in (3.0, -5.0, 60.0):
+        rated = compared(Chain(tests=(flow_test(gauge=gauge),))).flow_at_20_psi
+        assert rated is not None and rated / GPM == pytest.approx(by_hand, rel=5e-4)
+    adjusted = compared(Chain(adjustments=(Adjustment("low supply", pressure=10 * PSI),)))
+    assert adjusted.flow_at_20_psi is not None and adjusted.adjusted_flow_at_20_psi is not None
+    assert adjusted.flow_at_20_psi / GPM == pytest.approx(by_hand, rel=5e-4)
+    assert adjusted.adjusted_flow_at_20_psi / GPM == pytest.approx(956 * (52 / 28) ** 0.54, rel=5e-4)
+    poorer = flow_test("U", static=70.0, residual=45.0, flow=700.0, gauge=12.0)
+    lower = compared(Chain(tests=(flow_test(), poorer))).flow_at_20_psi
+    assert lower is not None and lower / GPM == pytest.approx(700 * (50 / 25) ** 0.54, rel=5e-4)
