@@ -31,7 +31,7 @@ def build_document(result: Result) -> Document:
         basis(result),
         water(result, width),
         *_if_any(sources(result, width)),
-        *_if_any(duties(result)),
+        *_if_any(duties(result, width)),
         plan(result, width),
         pressure(result, width),
         node_analysis(result),

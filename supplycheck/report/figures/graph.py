@@ -192,7 +192,8 @@ def _marks(marks: list[_Mark], frame: _Frame, units: UnitSet, taken: Taken) -> l
         items += _mark(style, x, y)
         flow_text = f"{flow:.{units.unit('flow').decimals}f} {units.symbol('flow')}"
         pressure_text = f"{pressure:.{units.unit('pressure').decimals}f} {units.symbol('pressure')}"
-        text = f"{name}: {flow_text}, {pressure_text}".replace("-", "−")
+        numbers = f"{flow_text}, {pressure_text}".replace("-", "−")
+        text = f"{name}: {numbers}"
         found = taken.place(
             x, y, text, 6.6, gap=6.0, reach="far", down=_is_below(flow, pressure, marks, frame)
         )

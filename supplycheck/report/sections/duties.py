@@ -2,18 +2,31 @@
 
 from __future__ import annotations
 
+import math
+
 from supplycheck.model.duty import DutyRow, HydrantDuty, HydrantRow, OutletState, StandpipeDuty
-from supplycheck.report.document import Block, Column, Facts, Heading, Paragraph, Row, Section, Table
+from supplycheck.report.document import (
+    Block,
+    Column,
+    Facts,
+    Figure,
+    Heading,
+    Paragraph,
+    Row,
+    Section,
+    Table,
+)
+from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, column, words
-from supplycheck.results.records import Result
+from supplycheck.results.records import GraphPoint, Result
 
 
-def duties(result: Result) -> Section | None:
+def duties(result: Result, width: float) -> Section | None:
     """Return the section on hydrants and standpipes, ``None`` where the project has neither."""
     project, show = result.project, Show.of(result)
     if project.hydrants is None and project.standpipes is None:
         return None
-    blocks: list[Block] = [_cases(result, show)]
+    blocks: list[Block] = [_cases(result, show), *_graph(result, show, width)]
     if project.hydrants is not None:
         blocks += _hydrants(result, project.hydrants, show)
     if project.standpipes is not None:
@@ -47,6 +60,27 @@ def _cases(result: Result, show: Show) -> Table:
         "case that governs is in bold."
     )
     return Table("Cases side by side", columns, tuple(rows), note, empty="no case was solved", size=6.6)
+
+
+def _graph(result: Result, show: Show, width: float) -> list[Block]:
+    """Return the supply with the hardest case of each kind, where both are told at the same node."""
+    sources = {test.node for test in result.project.supply.tests}
+    sources |= {tank.node for tank in result.project.supply.tanks}
+    if sources != {result.demand.node}:
+        return []
+    hardest: dict[tuple[str, str], DutyRow] = {}
+    for row in result.duties.rows:
+        before = hardest.get((row.duty, row.kind))
+        if math.isfinite(row.margin) and (before is None or row.margin < before.margin):
+            hardest[row.duty, row.kind] = row
+    points = [GraphPoint(row.label, "demand", row.flow, row.required_pressure) for row in hardest.values()]
+    curves = tuple(curve for curve in result.curves if curve.style != "demand")
+    tested = tuple(point for point in result.points if point.style == "test")
+    if result.project.criteria.has_sprinklers:
+        area = result.design_area.governing
+        points.append(GraphPoint(area.label, "demand with hose", area.flow, area.required_pressure))
+    drawing = supply_graph(curves, (*tested, *points), show.units, (width, 250.0))
+    return [Figure("Supply and the hardest case of each kind", drawing)]
 
 
 def _governs(result: Result, label: str) -> bool:
@@ -113,7 +147,8 @@ def _fire_flow(duty: HydrantDuty, show: Show) -> Facts:
         area = show.t(asked.area, "area")
         pairs.insert(1, ("Looked up for", f"{asked.construction}, {area}, {asked.edition}"))
         floor = "" if asked.floor is None else f", not below {show.t(asked.floor, 'flow')}"
-        taken = f"{show.t(asked.table_flow, 'flow')} less {show.t(asked.reduction, 'percent')}{floor}"
+        taken = f"{show.t(asked.table_flow, 'flow')}, "
+        taken += f"less {show.t(asked.reduction, 'percent')}{floor}" if asked.reduction else "none"
         pairs.insert(2, ("Table, reduction for sprinklers", taken))
     return Facts(tuple(pairs), columns=2)
 
@@ -164,6 +199,9 @@ def _hydrants(result: Result, duty: HydrantDuty, show: Show) -> list[Block]:
 def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
     """Return the sheet of one hydrant: where it stands, what it gives, every case in which it flows."""
     node = next(one for one in result.nodes if one.tag == hydrant.node)
+    duty = result.project.hydrants
+    given = {one.tag: one.device for one in duty.hydrants}[hydrant.tag] if duty else None
+    loss = f"{show.t(hydrant.device_loss, 'pressure')} alone" if given else "as drawn in the network"
     pairs = (
         ("Stands", hydrant.location or "not described"),
         ("Node, elevation", f"{hydrant.node}, {show.t(node.elevation, 'length')}"),
@@ -173,7 +211,7 @@ def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
             "Asked alone",
             f"{show.t(hydrant.alone, 'flow')}, {show.t(hydrant.residual_alone, 'pressure')} left",
         ),
-        ("Loss given for lateral and body", show.t(hydrant.device_loss, "pressure")),
+        ("Loss of lateral and body", loss),
         ("Greatest flow", show.t(hydrant.greatest_flow, "flow")),
         ("Class by NFPA 291", f"{hydrant.rank}, {hydrant.colour}" if hydrant.rank else "–"),
     )
@@ -205,7 +243,13 @@ def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
     return [
         Heading(f"Hydrant {hydrant.tag}"),
         Facts(pairs, columns=2),
-        Table("", columns, rows, empty="it flows in no case that was solved", size=6.6),
+        Table(
+            f"Cases with hydrant {hydrant.tag}",
+            columns,
+            rows,
+            empty="it flows in no case that was solved",
+            size=6.6,
+        ),
     ]
 
 

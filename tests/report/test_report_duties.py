@@ -1,0 +1,156 @@
+"""The pages on hydrants and standpipes: every number on them stands in ``result.json``."""
+
+from __future__ import annotations
+
+import json
+import re
+from functools import cache
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+from supplycheck.check import check_project
+from supplycheck.report.build import build_document
+from supplycheck.report.document import Facts, Figure, Heading, Paragraph, Section, Table
+from supplycheck.report.drawing import Label
+from supplycheck.report.sections.duties import duties
+from supplycheck.results.json import result_json
+from supplycheck.results.records import Result
+from supplycheck.results.screen import screen_text
+
+EXAMPLES = Path(__file__).parents[2] / "examples"
+YARD, TOWER = "yard-main", "tower-standpipe"
+
+
+@cache
+def result_of(name: str) -> Result:
+    return check_project(EXAMPLES / name)
+
+
+def section_of(name: str) -> Section:
+    found = duties(result_of(name), 500.0)
+    assert found is not None
+    return found
+
+
+def record_of(name: str) -> dict[str, Any]:
+    found: dict[str, Any] = json.loads(result_json(result_of(name)))
+    return found
+
+
+def tables_of(name: str) -> dict[str, Table]:
+    return {block.title: block for block in section_of(name).blocks if isinstance(block, Table)}
+
+
+def test_only_where_there_are_hydrants_or_standpipes() -> None:
+    assert duties(result_of("office-floor"), 500.0) is None
+    assert section_of(YARD).title == "Hydrants"
+    assert section_of(TOWER).title == "Standpipes"
+    titles = [section.title for section in build_document(result_of(YARD)).sections]
+    assert titles.index("Hydrants") < titles.index("Plan and design area")
+
+
+def test_every_case_stands_in_the_table_with_the_numbers_of_the_record() -> None:
+    for name in (YARD, TOWER):
+        cases = record_of(name)["duties"]["cases"]
+        rows = tables_of(name)["Cases side by side"].rows
+        assert [row.cells[0] for row in rows] == [case["label"] for case in cases]
+        for row, case in zip(rows, cases, strict=True):
+            printed = [text.replace("−", "-") for text in row.cells[2:5]]
+            wanted = [case["flow"], case["required_pressure"], case["margin"]]
+            assert printed == [f"{number:.1f}" for number in wanted]
+            least = min(case["outlets"], key=lambda one: one["spare"])
+            assert row.cells[5:] == (
+                least["node"],
+                f"{least['pressure']:.1f}".replace("-", "−"),
+                f"{least['required']:.1f}",
+            )
+        assert sum(row.strong for row in rows) == 1
+
+
+def test_the_governing_case_is_the_hardest_that_counts() -> None:
+    for name in (YARD, TOWER):
+        found = record_of(name)
+        hardest = min(
+            (case for case in found["duties"]["cases"] if case["counts"]), key=lambda case: case["margin"]
+        )
+        assert found["governs"].endswith(f" in {hardest['label']}")
+        assert found["margin"]["pressure"] == pytest.approx(hardest["margin"], rel=1e-6)
+        assert found["demand"]["flow"] == pytest.approx(hardest["flow"], rel=1e-9)
+        assert found["demand"]["outlet_flow"] == pytest.approx(hardest["flow"], rel=1e-9)
+
+
+def test_a_sheet_for_each_hydrant() -> None:
+    headings = [block.text for block in section_of(YARD).blocks if isinstance(block, Heading)]
+    assert headings == ["Fire flow", "Hydrant A", "Hydrant B", "Hydrant C"]
+    cases = record_of(YARD)["duties"]["cases"]
+    for tag in "ABC":
+        rows = tables_of(YARD)[f"Cases with hydrant {tag}"].rows
+        flowing = [
+            case["label"]
+            for case in cases
+            if any(one["node"] == f"H{tag}" and one["flow"] > 0 for one in case["outlets"])
+        ]
+        assert [row.cells[0] for row in rows] == flowing
+
+
+def test_each_hydrant_by_itself() -> None:
+    rows = tables_of(YARD)["Each hydrant by itself"].rows
+    for row, hydrant in zip(rows, record_of(YARD)["duties"]["hydrants"], strict=True):
+        numbers = ("static", "alone", "residual_alone", "greatest_flow", "greatest_flow_on_maximum_day")
+        assert row.cells[2:7] == tuple(f"{hydrant[name]:.1f}" for name in numbers)
+        assert row.cells[8] == f"{hydrant['class']}, {hydrant['colour']}"
+
+
+def test_more_demand_elsewhere_never_lets_a_hydrant_give_more() -> None:
+    for hydrant in record_of(YARD)["duties"]["hydrants"]:
+        assert hydrant["greatest_flow_on_maximum_day"] < hydrant["greatest_flow"]
+
+
+def test_the_graph_marks_the_hardest_case_of_each_kind() -> None:
+    (figure,) = [block for block in section_of(YARD).blocks if isinstance(block, Figure)]
+    texts = [item.text for item in figure.drawing.items if isinstance(item, Label)]
+    for kind in ("hydrants", "maximum day", "valve shut"):
+        cases = [case for case in record_of(YARD)["duties"]["cases"] if case["kind"] == kind]
+        hardest = min(cases, key=lambda case: case["margin"])
+        assert any(text.startswith(f"{hardest['label']}: ") for text in texts), texts
+
+
+def test_every_outlet_of_the_standpipes() -> None:
+    found = record_of(TOWER)["duties"]
+    rows = tables_of(TOWER)["Every hose outlet"].rows
+    assert len(rows) == len(found["standpipe_outlets"]) == 50
+    for row, outlet in zip(rows, found["standpipe_outlets"], strict=True):
+        assert row.cells[1] == outlet["node"]
+        assert row.cells[6] == f"{outlet['no_flow']:.1f}"
+        assert (row.cells[7] == "none") == (outlet["device"] == "")
+        assert row.strong == outlet["over_limit"]
+
+
+def test_the_connection_is_told_in_words_and_numbers() -> None:
+    fed = record_of(TOWER)["duties"]["fire_department_connection"]
+    (text,) = [block.text for block in section_of(TOWER).blocks if isinstance(block, Paragraph)]
+    assert f"at {fed['node']}: {fed['pressure']:.1f} psi" in text
+    assert f"{fed['flow']:.1f} gpm" in text and fed["case"] in text
+
+
+def test_where_the_fire_flow_comes_from() -> None:
+    facts = next(block for block in section_of(YARD).blocks if isinstance(block, Facts))
+    pairs = dict(facts.pairs)
+    assert pairs["Required fire flow"] == "2000.0 gpm"
+    assert "IIB" in pairs["Looked up for"] and "IFC (2021)" in pairs["Looked up for"]
+
+
+def test_screen_names_the_cases() -> None:
+    text = screen_text(result_of(YARD), "")
+    assert re.search(r"^Cases +18 of hydrants side by side in the report, 6 count", text, re.MULTILINE)
+    assert "at outlets" in text and "Design area" not in text
+    assert len(text.splitlines()) <= 24
+
+
+def test_basis_without_sprinklers_prints_no_density() -> None:
+    document = build_document(result_of(YARD))
+    basis = next(section for section in document.sections if section.title == "Basis of design")
+    labels = [pair[0] for block in basis.blocks if isinstance(block, Facts) for pair in block.pairs]
+    assert "Density" not in labels and "Sprinklers" in labels
