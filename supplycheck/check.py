@@ -3,34 +3,33 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from importlib.metadata import version as installed
-from itertools import repeat
 from pathlib import Path
 from types import MappingProxyType
 from typing import Final
 
 from supplycheck import __version__, catalogue
-from supplycheck.checks import CheckContext, ClassFigures, ComparisonFacts, PumpRating, run_checks
+from supplycheck.checks import CheckContext, PumpRating, run_checks
+from supplycheck.context import catalogue_c, class_figures, comparison_facts, reference_bores
 from supplycheck.demand import Candidates, demand_cases
 from supplycheck.duties import DutyResult, Ground, solve_duties, without_hose
-from supplycheck.errors import DomainError, NotInCatalogueError
+from supplycheck.errors import DomainError
 from supplycheck.loads import load_of, required_of
 from supplycheck.model import DemandCase, Project
 from supplycheck.network import (
-    DemandSummary,
     Network,
     Solution,
     SourceCurve,
     build_network,
-    demand_many,
     solve_demand,
     solve_operating,
 )
+from supplycheck.placements import Progress, only, try_all
 from supplycheck.project import read_project
-from supplycheck.results.assemble import Stages, assemble
-from supplycheck.results.records import Placement, Result
+from supplycheck.results.assemble import Stages, Tried, assemble
+from supplycheck.results.records import Result
 from supplycheck.scenarios import scenario_rows
 from supplycheck.supply import (
     Comparison,
@@ -45,8 +44,6 @@ from supplycheck.supply.pumping import PumpAnswer, pump_answers
 from supplycheck.supply.pumping import Stages as SourceStages
 from supplycheck.supply.storage import TankAnswer, tank_answers
 
-Progress = Callable[[int, int], None]
-Spots = Mapping[str, tuple[float | None, float | None]]
 NO_SPRINKLERS: Final = Candidates((), (), "No sprinkler is part of this project.", "given")
 LIBRARIES: Final = ("numpy", "scipy", "pandas", "reportlab", "pydantic", "click", "openpyxl")
 
@@ -73,15 +70,10 @@ def check(project: Project, progress: Progress | None = None) -> Result:
     curves = supply_curves(project)
     sources = source_curves(curves)
     field = _Field(project, network, curves, sources)
-    loads = [(load_of(project, case), required_of(case)) for case in candidates.cases]
-    policy = project.criteria.velocity_pressure
-    summaries = demand_many(network, loads, sources, progress, velocity_pressure=policy) if loads else []
-    spots = {node.tag: (node.x, node.y) for node in project.system.nodes}
-    placements = tuple(map(_placement, candidates.cases, summaries, repeat(spots)))
-    hardest = min(range(len(placements)), key=lambda row: placements[row].margin, default=None)
-    sprinklers = None if hardest is None else candidates.cases[hardest]
+    tried = try_all(project, network, candidates, sources, progress)
+    sprinklers = None if tried.hardest is None else candidates.cases[tried.hardest]
     duties = solve_duties(Ground(project, network, curves, sources, _hydrant_rank), sprinklers)
-    governing = field.solve(_governing(sprinklers, placements, duties))
+    governing = field.solve(_governing(sprinklers, tried, duties))
     own = governing if governing.case is sprinklers or sprinklers is None else field.solve(sprinklers)
     drawn = without_hose(project, governing.case)
     case, solution, comparison = governing.case, governing.solution, governing.comparison
@@ -89,15 +81,18 @@ def check(project: Project, progress: Progress | None = None) -> Result:
     known = SourceStages(drawn, network, case, solution, operating, comparison, curves)
     pumps = pump_answers(known)
     needed = needed_pump(drawn, solution, comparison, curves, pumps, _pump_sizes(project))
-    context = _context(project, candidates, governing)
+    favourable = tried.favourable is not None
+    context = _context(project, candidates, governing, favourable)
     context = replace(context, pumps=pumps, needed_pump=needed, pump_ratings=_ratings(pumps))
     context = replace(context, duties=duties.answer)
-    findings = run_checks(context, None if own is governing else _context(project, candidates, own))
+    findings = run_checks(
+        context, None if own is governing else _context(project, candidates, own, favourable)
+    )
     return assemble(
         Stages(
             project=project,
             candidates=candidates,
-            placements=placements or (_placement(case, duties.summary, spots),),
+            tried=tried if tried.placements else only(case, duties.summary, project),
             case=case,
             solution=solution,
             comparison=comparison,
@@ -143,11 +138,9 @@ class _Field:
         return _Solved(case, solution, operating, comparison)
 
 
-def _governing(
-    sprinklers: DemandCase | None, placements: Sequence[Placement], duties: DutyResult
-) -> DemandCase:
+def _governing(sprinklers: DemandCase | None, tried: Tried, duties: DutyResult) -> DemandCase:
     """Return the case that leaves the least margin: of the sprinklers, or of another duty."""
-    least = min((one.margin for one in placements), default=math.inf)
+    least = min((one.margin for one in tried.placements), default=math.inf)
     harder = duties.summary is not None and duties.summary.shift < least
     if duties.hardest is not None and (harder or sprinklers is None):
         return duties.hardest
@@ -164,57 +157,19 @@ def _hydrant_rank(flow: float) -> tuple[str, str, str]:
     return row.name, row.colour, row.source
 
 
-def _placement(case: DemandCase, summary: DemandSummary | None, spots: Spots) -> Placement:
-    tags = (*case.heads, *(outlet.node for outlet in case.outlets))
-    xs = [x for x, _ in map(spots.__getitem__, tags) if x is not None]
-    ys = [y for _, y in map(spots.__getitem__, tags) if y is not None]
-    return Placement(
-        label=case.label,
-        heads=case.heads,
-        required_pressure=summary.source_pressure if summary else math.nan,
-        flow=summary.total_flow if summary else math.nan,
-        margin=summary.shift if summary else math.nan,
-        area=case.area,
-        x=sum(xs) / len(xs) if xs else None,
-        y=sum(ys) / len(ys) if ys else None,
-    )
-
-
-def _context(
-    project: Project,
-    candidates: Candidates,
-    solved: _Solved,
-) -> CheckContext:
+def _context(project: Project, candidates: Candidates, solved: _Solved, favourable: bool) -> CheckContext:
     return CheckContext(
         project=project,
         case=solved.case,
         solution=solved.solution,
-        comparison=_facts(solved.comparison),
+        comparison=comparison_facts(solved.comparison),
         operating=solved.operating,
         searched=candidates.mode == "search" and candidates.complete,
         placements_tried=len(candidates.cases),
-        most_favourable_found=candidates.mode == "search" and candidates.complete,
-        class_figures=_class_figures(project),
-        catalogue_c=_catalogue_c(project),
-        reference_bores=_reference_bores(project),
-    )
-
-
-def _facts(comparison: Comparison) -> ComparisonFacts:
-    main = comparison.main_source
-    return ComparisonFacts(
-        node=comparison.node,
-        demand_flow=comparison.demand_flow,
-        demand_pressure=comparison.demand_pressure,
-        sprinkler_flow=comparison.sprinkler_flow,
-        hose_flow=comparison.hose_flow,
-        available_pressure=comparison.available_pressure,
-        margin=comparison.margin,
-        required=comparison.required,
-        static_at_compare=comparison.highest_static,
-        tested_flow_ratio=main.tested_ratio,
-        main_pressure_at_demand=main.available,
-        margin_rule=comparison.rule.template,
+        most_favourable_found=favourable,
+        class_figures=class_figures(project),
+        catalogue_c=catalogue_c(project),
+        reference_bores=reference_bores(project),
     )
 
 
@@ -239,35 +194,3 @@ def _tanks(project: Project, solution: Solution, operating: Solution) -> tuple[T
         for state in (solution, operating)
     )
     return tank_answers(project.supply.tanks, project.criteria.duration, nominal, actual)
-
-
-def _class_figures(project: Project) -> ClassFigures | None:
-    criteria = project.criteria
-    try:
-        row = catalogue.hazard_class(criteria.hazard, criteria.standard, criteria.edition)
-    except NotInCatalogueError:
-        return None
-    return ClassFigures(
-        density=row.density,
-        area=row.area,
-        hose=row.hose_outside,
-        duration=row.duration_min,
-        source=row.source,
-    )
-
-
-def _catalogue_c(project: Project) -> Mapping[str, float]:
-    found: dict[str, float] = {}
-    criteria = project.criteria
-    for kind in project.system.pipe_kinds:
-        try:
-            found[kind.name] = catalogue.c_factor(kind.material, criteria.system, criteria.standard).value
-        except NotInCatalogueError:
-            continue
-    return found
-
-
-def _reference_bores(project: Project) -> Mapping[str, float]:
-    if project.criteria.standard != "NFPA 13":
-        return {}
-    return {row.nominal: row.bore for row in catalogue.bores("steel schedule 40")}

@@ -27,9 +27,11 @@ ALLOWED: dict[str, set[str]] = {
     "scenarios": {"results", "supply", "network", "model", "errors"},
     "loads": {"supply", "network", "model"},
     "duties": {"loads", "demand", "supply", "network", "model", "errors"},
+    "placements": {"loads", "results", "demand", "network", "model"},
+    "context": {"catalogue", "checks", "supply", "model", "errors"},
     "screening": {"project", "catalogue", "model", "hydraulics", "supply", "results", "report"} | BASE,
     "check": {"project", "scenarios", "catalogue", "model", "hydraulics", "network", "demand", "supply"}
-    | {"checks", "results", "report", "loads", "duties"}
+    | {"checks", "results", "report", "loads", "duties", "placements", "context"}
     | BASE,
 }
 EVERYTHING = set(ALLOWED) | {"commands"}

@@ -185,7 +185,7 @@ def favourable(context: CheckContext) -> Finding:
     if not context.european:
         return FAVOURABLE.says("not applicable", "Asked by EN 12845 only.")
     if context.most_favourable_found:
-        return FAVOURABLE.says("ok", "The area of the greatest flow was found too.")
+        return FAVOURABLE.says("ok", "The area through which most water really flows was found too.")
     ask = "Which area gives the greatest flow, and what does it need?"
     return FAVOURABLE.says("missing", "Not run: the area of the greatest flow was not sought.", remedy=ask)
 

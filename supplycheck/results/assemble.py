@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
+from typing import Final
 
 from supplycheck.checks import open_questions
 from supplycheck.demand import Candidates
@@ -20,6 +20,7 @@ from supplycheck.results.records import (
     CurvePoints,
     DemandRecord,
     DesignAreaRecord,
+    Favourable,
     GraphPoint,
     HandStep,
     MarginRecord,
@@ -41,6 +42,24 @@ from supplycheck.units import UNIT_SETS
 
 Show = Callable[[float, str], str]
 
+TIE: Final = 10.0
+"""Margins [Pa] closer than this count as equal (0.0015 psi); the search itself is good to 1 Pa."""
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Tried:
+    """All placements in their order; ``hardest`` and ``runner_up`` are rows of them.
+
+    Placements that leave the same margin as the hardest (mirror images, say) are counted in ``equal``;
+    the runner-up is the next one that differs.
+    """
+
+    placements: tuple[Placement, ...]
+    hardest: int | None
+    runner_up: int | None
+    equal: int
+    favourable: Favourable | None
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Stages:
@@ -48,7 +67,7 @@ class Stages:
 
     project: Project
     candidates: Candidates
-    placements: tuple[Placement, ...]
+    tried: Tried
     case: DemandCase
     solution: Solution
     comparison: Comparison
@@ -76,12 +95,12 @@ def assemble(stages: Stages) -> Result:
     path = path_to_supply(nodes, pipes, solution.governing, solution.source_tags)
     drawn = dict(zip(solution.source_tags, solution.source_flow.tolist(), strict=True))
     balance = balance_of(project, nodes, pipes, drawn, solution.iterations)
-    verdict = _verdict(comparison)
+    verdict = _verdict(comparison, solution)
     return Result(
         project=project,
         version=stages.version,
         verdict=verdict,
-        verdict_text=_verdict_text(verdict, comparison, show),
+        verdict_text=_verdict_text(verdict, comparison, solution, show),
         governs=_governs(nodes, solution.governing, stages.case, show),
         demand=_demand(comparison, nodes, solution, stages.case),
         supply=_supply(comparison, show),
@@ -91,7 +110,7 @@ def assemble(stages: Stages) -> Result:
         nodes=nodes,
         pipes=pipes,
         path=path,
-        hand_check=hand_check(project, nodes, path),
+        hand_check=hand_check(project, nodes, pipes, path),
         curves=_lines(stages.graph.lines),
         points=_points(stages.graph.points),
         scenarios=stages.scenarios,
@@ -115,7 +134,9 @@ def _points(points: Iterable[MarkedPoint]) -> tuple[GraphPoint, ...]:
     return tuple(GraphPoint(one.name, one.style, one.flow, one.pressure) for one in points)
 
 
-def _verdict(comparison: Comparison) -> Verdict:
+def _verdict(comparison: Comparison, solution: Solution) -> Verdict:
+    if solution.out_of_range:
+        return "undetermined"
     if comparison.margin < 0:
         return "not adequate"
     if comparison.after_rule is None:
@@ -123,7 +144,13 @@ def _verdict(comparison: Comparison) -> Verdict:
     return "adequate" if comparison.after_rule >= 0 else "not adequate"
 
 
-def _verdict_text(verdict: Verdict, comparison: Comparison, show: Show) -> str:
+def _verdict_text(verdict: Verdict, comparison: Comparison, solution: Solution, show: Show) -> str:
+    if solution.out_of_range:
+        pipe, tag, flow = solution.out_of_range[0]
+        return (
+            f"No verdict: {show(abs(flow), 'flow')} pass device {tag} in pipe {pipe}, beyond its loss "
+            "curve. Enter its curve up to that flow; the numbers shown carry its last line on."
+        )
     margin = show(abs(comparison.margin), "pressure")
     if comparison.margin < 0:
         return f"The supply falls short of the demand by {margin}."
@@ -207,37 +234,43 @@ def _area_steps(steps: Sequence[AreaStep], show: Show) -> tuple[HandStep, ...]:
 
 
 def _design_area(stages: Stages, show: Show) -> DesignAreaRecord:
-    candidates, placements = stages.candidates, stages.placements
-    order = sorted(placements, key=lambda one: one.margin)
-    governing = order[0]
-    favourable = max(placements, key=lambda one: one.flow) if len(placements) > 1 else None
+    candidates, tried = stages.candidates, stages.tried
+    placements = tried.placements
+    governing = placements[tried.hardest or 0]
     return DesignAreaRecord(
         mode=candidates.mode,
         steps=_area_steps(candidates.steps, show),
         placements=placements,
         governing=governing,
-        runner_up=order[1] if len(order) > 1 else None,
-        most_favourable=favourable,
+        runner_up=None if tried.runner_up is None else placements[tried.runner_up],
+        most_favourable=tried.favourable,
         tried=len(placements),
-        statement=_search_statement(candidates, order, show),
+        statement=_search_statement(candidates, tried, governing, show),
+        equal=tried.equal,
     )
 
 
-def _search_statement(candidates: Candidates, order: list[Placement], show: Show) -> str:
-    if candidates.mode == "given" or len(order) < 2:
+def _search_statement(candidates: Candidates, tried: Tried, governing: Placement, show: Show) -> str:
+    if candidates.mode == "given" or len(tried.placements) < 2:
         return candidates.statement
-    hardest = max(order, key=lambda one: one.required_pressure)
+    hardest = max(tried.placements, key=lambda one: one.required_pressure)
     text = (
-        f"{candidates.statement} All {len(order)} placements were solved; {order[0].label} leaves the "
-        f"least margin, {show(order[0].margin, 'pressure')}."
+        f"{candidates.statement} All {len(tried.placements)} placements were solved; {governing.label} "
+        f"leaves the least margin, {show(governing.margin, 'pressure')}."
     )
-    if hardest.required_pressure > order[0].required_pressure and not math.isclose(
-        hardest.required_pressure, order[0].required_pressure, rel_tol=1e-9
-    ):
+    if tried.equal:
+        text += f" {tried.equal} more, such as its mirror images, ask the same."
+    if hardest.required_pressure > governing.required_pressure + TIE:
         text += (
             f" {hardest.label} needs more pressure, {show(hardest.required_pressure, 'pressure')}, but "
             "less flow, at which the supply has more to give."
         )
     else:
         text += " No other placement needs more pressure."
+    if tried.favourable is not None:
+        best = tried.favourable
+        text += (
+            f" Most favourable, of the {best.solved} that resist least: {best.label}, through which "
+            f"{show(best.flow, 'flow')} really flows at {show(best.pressure, 'pressure')}."
+        )
     return text

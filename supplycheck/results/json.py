@@ -23,7 +23,7 @@ from supplycheck.results.json_rows import (
     step_records,
 )
 from supplycheck.results.json_sources import needed_record, pump_record, tank_record
-from supplycheck.results.records import DesignAreaRecord, Placement, Result
+from supplycheck.results.records import DesignAreaRecord, Favourable, Placement, Result
 from supplycheck.results.totals import path_totals
 from supplycheck.units import UNIT_SETS
 
@@ -212,10 +212,18 @@ def _design_area(area: DesignAreaRecord, plain: Plain) -> Record:
         "tried": area.tried,
         "governing": placement(area.governing),
         "runner_up": placement(area.runner_up),
-        "most_favourable": placement(area.most_favourable),
+        "equal_to_governing": area.equal,
+        "most_favourable": _favourable(area.most_favourable, plain),
         "placements": [placement(one) for one in area.placements],
         "steps": step_records(area.steps, plain),
     }
+
+
+def _favourable(best: Favourable | None, plain: Plain) -> Record | None:
+    if best is None:
+        return None
+    numbers = plain.record({"flow": (best.flow, "flow"), "pressure": (best.pressure, "pressure")})
+    return {"label": best.label, **numbers, "heads": list(best.heads), "solved": best.solved}
 
 
 def _path_totals(result: Result, plain: Plain) -> Record | None:

@@ -123,13 +123,17 @@ class PathStep:
 
 @dataclass(frozen=True, slots=True)
 class HandStep:
-    """One line of the hand-check: a formula with its numbers already filled in and its result."""
+    """One line of the hand-check: a formula with its numbers already filled in and its result.
+
+    ``decimals`` is how many the result is printed with, ``None`` for the usual number of its kind.
+    """
 
     step: str
     formula: str
     value: float
     kind: str
     note: str = ""
+    decimals: int | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -172,17 +176,37 @@ class Placement:
 
 
 @dataclass(frozen=True, slots=True)
+class Favourable:
+    """The area through which most water flows on the actual supply.
+
+    ``flow`` [m³/s] in all and ``pressure`` [Pa] at the point of comparison then; ``solved`` counts the
+    placements that were solved to find it, those that resist least.
+    """
+
+    label: str
+    heads: tuple[str, ...]
+    flow: float
+    pressure: float
+    solved: int
+
+
+@dataclass(frozen=True, slots=True)
 class DesignAreaRecord:
-    """How the design area was found. Steps are (text, value, kind) and print in order."""
+    """How the design area was found. Steps are (text, value, kind) and print in order.
+
+    ``equal`` counts placements that ask the same as the governing one, mirror images mostly;
+    ``runner_up`` is the next one that differs.
+    """
 
     mode: Literal["given", "search"]
     steps: tuple[HandStep, ...]
     placements: tuple[Placement, ...]
     governing: Placement
     runner_up: Placement | None
-    most_favourable: Placement | None
+    most_favourable: Favourable | None
     tried: int
     statement: str
+    equal: int = 0
 
 
 @dataclass(frozen=True, slots=True)

@@ -17,6 +17,7 @@ from supplycheck.findings import Finding
 from supplycheck.results.display import finding_text, in_order, measure_text, remedy_text, visible
 from supplycheck.results.json_rows import Plain
 from supplycheck.results.records import NodeRow, PathStep, PipeRow, Placement, Result, ScenarioRow
+from supplycheck.results.tables_duties import duty_tables
 from supplycheck.units import UNIT_SETS, UnitSet
 
 _EXECUTED: Final = ("=", "+", "-", "@", "\t", "\r", "\n")
@@ -39,7 +40,7 @@ class _Columns:
 
 def frames(result: Result) -> dict[str, pd.DataFrame]:
     """Return every table of ``result`` by name: nodes, pipes, sprinklers (of the design area), path,
-    placements, scenarios, findings.
+    placements, scenarios, findings; of hydrants and standpipes where the project has some.
     """
     units = UNIT_SETS[result.project.units]
     make = _Columns(units)
@@ -51,6 +52,7 @@ def frames(result: Result) -> dict[str, pd.DataFrame]:
         "path": _frame([_step(number, row, make) for number, row in enumerate(result.path, start=1)]),
         "placements": _frame([_placement(one, result, make) for one in result.design_area.placements]),
         "scenarios": _frame([_scenario(row, make) for row in result.scenarios]),
+        **{name: _frame(rows) for name, rows in duty_tables(result.duties, make).items()},
         "findings": _frame([_finding(one, units) for one in in_order(result.findings)]),
     }
 
@@ -160,13 +162,13 @@ def _step(number: int, row: PathStep, make: _Columns) -> Record:
 def _placement(one: Placement, result: Result, make: _Columns) -> Record:
     area = result.design_area
     named = {
-        "governing": area.governing,
-        "runner-up": area.runner_up,
-        "most favourable": area.most_favourable,
+        "governing": area.governing.heads,
+        "runner-up": area.runner_up.heads if area.runner_up else (),
+        "most favourable": area.most_favourable.heads if area.most_favourable else (),
     }
     return {
         "placement": one.label,
-        "place": ", ".join(word for word, chosen in named.items() if chosen == one),
+        "place": ", ".join(word for word, heads in named.items() if heads == one.heads),
         **make("required_pressure", one.required_pressure, "pressure"),
         **make("flow", one.flow, "flow"),
         **make("margin", one.margin, "pressure"),

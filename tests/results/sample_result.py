@@ -40,6 +40,7 @@ from supplycheck.results.records import (
     CurvePoints,
     DemandRecord,
     DesignAreaRecord,
+    Favourable,
     GraphPoint,
     HandStep,
     MarginRecord,
@@ -502,7 +503,9 @@ def sample(
             spots,
             spots[0],
             spots[1] if len(spots) > 1 else None,
-            spots[-1],
+            Favourable(
+                spots[-1].label, spots[-1].heads, 1.2 * spots[-1].flow, spots[-1].required_pressure, 9
+            ),
             len(spots),
             f"Searched: {len(spots)} placements tried, {spots[0].label} needs the most pressure.",
         ),

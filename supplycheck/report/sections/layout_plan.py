@@ -10,7 +10,7 @@ from supplycheck.report.figures.placements import placement_map
 from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, size_legend, whole_plan
 from supplycheck.report.show import Show, column, words
 from supplycheck.results.display import tags_text
-from supplycheck.results.records import Placement, Result
+from supplycheck.results.records import Favourable, Placement, Result
 
 PLAN_ROOM: Final = MappingProxyType({"letter": 515.0, "a4": 562.0})
 
@@ -76,12 +76,10 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
                 f"{area.tried} placements tried; each dot stands at the centre of its heads.",
             )
         )
-    chosen = [
-        ("governing", area.governing),
-        ("runner-up", area.runner_up),
-        ("most favourable", area.most_favourable),
-    ]
+    chosen = [("governing", area.governing), ("runner-up", area.runner_up)]
     rows = tuple(_row(word, one, show) for word, one in chosen if one is not None)
+    if area.most_favourable is not None:
+        rows = (*rows, _favourable_row(area.most_favourable, show))
     columns = (
         words("Placement"),
         words("Label"),
@@ -94,6 +92,13 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
     )
     blocks.append(Table("Placements compared", columns, rows, area.statement))
     return blocks
+
+
+def _favourable_row(best: Favourable, show: Show) -> Row:
+    """What really flows there; no demand is compared, so those columns stay empty."""
+    flow, count = show.n(best.flow, "flow"), str(len(best.heads))
+    tags = tags_text(best.heads, 40)
+    return Row(("most favourable", best.label, "–", f"{flow} really", "–", "–", count, tags))
 
 
 def _row(word: str, one: Placement, show: Show) -> Row:
