@@ -17,7 +17,7 @@ from supplycheck.network.links import STEEP, BoolArray, Links
 from supplycheck.network.nodal import Nodal
 from supplycheck.network.records import FloatArray, IntArray, LoadCase, SourceCurve
 
-GUESS_VELOCITY = 1.5
+GUESS_VELOCITY = 0.3
 """Velocity of the first guess in every pipe [m/s]."""
 
 
