@@ -41,6 +41,8 @@ from supplycheck.supply.route import no_flow_pressure
 
 LARGEST_FLOW: Final = 100.0
 """Flow [m³/s] beyond which a hydrant is said to have no limit here."""
+MOST_ROWS: Final = 80
+"""Hydrant cases that are listed one by one."""
 FLOW_TOLERANCE: Final = 1e-10
 """Width [m³/s] to which the greatest flow of a hydrant is bracketed."""
 
@@ -155,11 +157,19 @@ def _reached(project: Project, sources: Iterable[str], shut: Iterable[str]) -> s
 def _hardest_of_each(
     solved: Sequence[tuple[DutyCase, DemandSummary]],
 ) -> list[tuple[DutyCase, DemandSummary, int]]:
-    """Return the hardest case of each most remote riser, and every case of the hydrants."""
+    """Return the hardest case of each most remote riser, and the cases of the hydrants.
+
+    Of more than :data:`MOST_ROWS` hydrant cases the hardest group of each kind and shut valve is kept.
+    """
+    many = sum(one.case.duty == "hydrants" for one, _ in solved) > MOST_ROWS
     groups: dict[tuple[str, ...], list[tuple[DutyCase, DemandSummary]]] = {}
     for one, summary in solved:
-        standpipes = one.case.duty == "standpipes"
-        members = one.members[:1] if standpipes else (*one.members, *one.case.closed_pipes)
+        if one.case.duty == "standpipes":
+            members = one.members[:1]
+        elif many and len(one.members) > 1:
+            members = (str(len(one.members)), *one.case.closed_pipes)
+        else:
+            members = (*one.members, *one.case.closed_pipes)
         groups.setdefault((one.case.duty, one.kind, *members), []).append((one, summary))
     return [(*min(group, key=lambda pair: pair[1].shift), len(group)) for group in groups.values() if group]
 
