@@ -7,6 +7,7 @@ from pathlib import Path
 import pytest
 from project_texts import LAYOUT_PROJECT, faults, read
 
+from supplycheck.check import check_project
 from supplycheck.model import Device, FlowTest, Project
 from supplycheck.units import FOOT, GALLON, GPM, INCH, LPM, PSI
 
@@ -180,6 +181,17 @@ def test_faults_of_tests(tmp_path: Path, keys: str, where: str, says: str) -> No
     found = faults(tmp_path, with_test(keys))
     place = f"supply.flow_test.{where}"
     assert [one for one in found if one.place.where.startswith(place) and says in str(one)], found
+
+
+def test_grade_lines_carry_a_project_and_are_asked_about(tmp_path: Path) -> None:
+    """130 ft above the datum at 900 gpm: the curve of the project passes through 134 ft above node S."""
+    read(tmp_path, with_test(HGL))
+    result = check_project(tmp_path)
+    assert result.supply.static == pytest.approx(174 * 0.433 * PSI)
+    assert result.supply.residual == pytest.approx(134 * 0.433 * PSI)
+    asked = {one.check: one.state for one in result.findings}
+    assert asked["modelled supply"] == "ask authority"
+    assert asked["gauge error against the drop"] == "not applicable"
 
 
 def outlet(keys: str) -> str:
