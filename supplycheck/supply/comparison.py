@@ -22,7 +22,13 @@ from supplycheck.model import Project
 from supplycheck.network.records import Solution
 from supplycheck.supply.hose import hose_parts
 from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margin, rule_words
-from supplycheck.supply.narration import demand_step, supply_steps
+from supplycheck.supply.narration import (
+    arrival_steps,
+    demand_step,
+    left_over_step,
+    sharing_step,
+    source_steps,
+)
 from supplycheck.supply.route import CarriedCurve, no_flow_pressure, solved_route
 from supplycheck.supply.sources import NodeSupply
 from supplycheck.supply.words import Step, Value, Words
@@ -176,12 +182,13 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
         carried_unadjusted=before,
         supply_steps=(
             demand_step(_named(flows)),
-            *supply_steps(supply, main.flow, carried.route, at, demand, margin),
+            *_source_steps(project, by_node, shares),
+            *arrival_steps(supply, max(main.flow, 0.0), carried.route, at, demand, margin),
         ),
         margin_steps=_margin_steps(project, by_node, shares, demand, margin, required),
         flow_at_20_psi=supply.rated_flow(RATING_PRESSURE),
         adjusted_flow_at_20_psi=supply.rated_flow(RATING_PRESSURE, adjusted=True),
-        notes=supply.notes + _range_notes(shares, carried),
+        notes=_sharing_notes(shares) + _own_notes(by_node, shares) + _range_notes(shares, carried),
     )
 
 
@@ -269,6 +276,34 @@ def _through(project: Project, solution: Solution, node: str) -> float:
     return flow
 
 
+def _source_steps(
+    project: Project, by_node: Mapping[str, NodeSupply], shares: Sequence[SourceShare]
+) -> tuple[Step, ...]:
+    """Return how the pressure at each source follows from its test or tank, at its own flow."""
+    several = len(shares) > 1
+    steps = [sharing_step([(share.node, share.flow) for share in shares])] if several else []
+    for share in shares:
+        flow = max(share.flow, 0.0)
+        steps += source_steps(by_node[share.node], flow, project.units, RATING_PRESSURE)
+        steps += [left_over_step(share.node, share.available, share.demand_pressure)] if several else []
+    return tuple(steps)
+
+
+def _sharing_notes(shares: Sequence[SourceShare]) -> tuple[Words, ...]:
+    if len(shares) < 2:
+        return ()
+    text = (
+        "{count} sources feed the demand together ({nodes}). The margin is the pressure by which all "
+        "their curves can be lowered alike until nothing is left over; each source is read at its own flow."
+    )
+    values = (("count", str(len(shares)), ""), ("nodes", ", ".join(one.node for one in shares), ""))
+    return (Words(text, values),)
+
+
+def _own_notes(by_node: Mapping[str, NodeSupply], shares: Sequence[SourceShare]) -> tuple[Words, ...]:
+    return tuple(note for share in shares for note in by_node[share.node].notes)
+
+
 def _margin_steps(
     project: Project,
     by_node: dict[str, NodeSupply],
@@ -278,7 +313,9 @@ def _margin_steps(
     required: float | None,
 ) -> tuple[Step, ...]:
     available = (("available", demand + margin, "pressure"), ("demand", demand, "pressure"))
-    steps = [Step("Margin before the rule", Words("{available} − {demand}", available), margin, "pressure")]
+    alike = "all supplies lowered alike" if len(shares) > 1 else ""
+    words = Words("{available} − {demand}", available)
+    steps = [Step("Margin before the rule", words, margin, "pressure", alike)]
     if required is None:
         return tuple(steps)
     strictest = _strictest(shares)

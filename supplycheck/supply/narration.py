@@ -3,12 +3,22 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
+from typing import Final
 
+from supplycheck.hydraulics import pitot_discharge
+from supplycheck.model import FlowTest
 from supplycheck.supply.curve import SupplyCurve
+from supplycheck.supply.outlets import outlet_flow
 from supplycheck.supply.route import Route
 from supplycheck.supply.sources import NodeSupply
 from supplycheck.supply.words import Step, Words
+
+_FORMS: Final = {
+    "us": (231 * 0.0254**3 / 60, 0.0254, 0.45359237 * 9.80665 / 0.0254**2, "gpm, in and psi"),
+    "metric": (1e-3 / 60, 1e-3, 1e5, "L/min, mm and bar"),
+}
+"""Units [SI] of flow, diameter and pitot in which the law of an outlet is printed, and their names."""
 
 
 def curve_words(curve: SupplyCurve, flow: float) -> Words:
@@ -41,15 +51,92 @@ def demand_step(parts: Mapping[str, float]) -> Step:
     )
 
 
-def supply_steps(
-    supply: NodeSupply, flow: float, path: Route, at: str, demand: float, margin: float
-) -> tuple[Step, ...]:
-    """Return the steps from the test as read to the pressure available at node ``at``.
+def pitot_steps(test: FlowTest, units: str) -> tuple[Step, ...]:
+    """Return how each outlet's flow follows from its pitot reading, and their sum where several flowed.
 
-    ``flow`` [m³/s] is what the source gives, ``demand`` and ``margin`` [Pa] stand at ``at``.
+    ``units`` ("us" or "metric") chooses the form of the law whose factor is printed.
     """
+    flow_unit, diameter_unit, pitot_unit, named = _FORMS[units]
+    law, _ = pitot_discharge(pitot=pitot_unit, diameter=diameter_unit, coefficient=1.0)
+    factor = f"{float(law) / flow_unit:.4g}"
+    note = f"NFPA 291, in {named}"
     steps = []
-    available = supply.curve.pressure_at(flow)
+    for point in test.points:
+        for number, outlet in enumerate(point.outlets, 1):
+            values = (
+                ("c", outlet.coefficient, "ratio"),
+                ("d", outlet.diameter, "size"),
+                ("p", outlet.pitot, "pressure"),
+                ("f", outlet.pumper_factor, "ratio"),
+            )
+            text = factor + " × {c} × ({d})² × √({p})"
+            text += " × {f}" if outlet.pumper_factor != 1.0 else ""
+            name = f"outlet {number}" + (f" of {outlet.hydrant}" if outlet.hydrant else "")
+            flow = outlet_flow(outlet).flow
+            steps.append(Step(f"{test.tag}: flow of {name}", Words(text, values), flow, "flow", note))
+        if len(point.outlets) > 1:
+            flows = [outlet_flow(outlet).flow for outlet in point.outlets]
+            words = Words(
+                " + ".join(f"{{v{index}}}" for index in range(len(flows))),
+                tuple((f"v{index}", flow, "flow") for index, flow in enumerate(flows)),
+            )
+            steps.append(Step(f"{test.tag}: flow of the test", words, math.fsum(flows), "flow"))
+    return tuple(steps)
+
+
+def rating_steps(supply: NodeSupply, pressure: float) -> tuple[Step, ...]:
+    """Return the flow at ``pressure`` [Pa] at the gauge: as measured, and adjusted where that differs.
+
+    A tank has no such flow; neither has a curve that never falls so far.
+    """
+    if supply.tank is not None:
+        return ()
+    steps = []
+    sides = (("as measured", supply.measured), ("adjusted", supply.adjusted))
+    for name, curves in sides if len(supply.stages) > 1 else sides[:1]:
+        at_gauge = [curve.lowered(curve.offset) for curve in curves]
+        flows = [(flow, one) for one in at_gauge if (flow := one.flow_at(pressure)) is not None]
+        if not flows:
+            continue
+        flow, curve = min(flows, key=lambda found: found[0])
+        steps.append(
+            Step(
+                f"Flow of {curve.name} at 20 psi (1.38 bar), {name}",
+                _projection(curve, pressure),
+                flow,
+                "flow",
+                "at the gauge",
+            )
+        )
+    return tuple(steps)
+
+
+def _projection(curve: SupplyCurve, pressure: float) -> Words:
+    values = [("s", curve.pressures[0], "pressure"), ("f", pressure, "pressure")]
+    if len(curve.flows) != 2:
+        return Words("where its curve, at the gauge, falls to {f}", tuple(values))
+    values += [("q", curve.flows[1], "flow"), ("r", curve.pressures[1], "pressure")]
+    return Words("{q} × (({s} − {f}) / ({s} − {r}))^(1/1.85)", tuple(values))
+
+
+def sharing_step(shares: Sequence[tuple[str, float]]) -> Step:
+    """Return what each of several sources gives [m³/s], as one sum."""
+    text = " + ".join(f"{node} {{v{index}}}" for index, (node, _) in enumerate(shares))
+    values = tuple((f"v{index}", flow, "flow") for index, (_, flow) in enumerate(shares))
+    total = math.fsum(flow for _, flow in shares)
+    return Step(
+        "Given by the sources", Words(text, values), total, "flow", "each on its own curve, at its own flow"
+    )
+
+
+def source_steps(supply: NodeSupply, flow: float, units: str, rating: float) -> tuple[Step, ...]:
+    """Return the steps from the test as read to the pressure at the node of the source.
+
+    ``flow`` [m³/s] is what the source gives; ``rating`` [Pa] the pressure at which a main is rated.
+    """
+    test = supply.test_at(flow)
+    steps = [] if test is None else [*pitot_steps(test, units)]
+    steps += rating_steps(supply, rating)
     measured = supply.measured_member(flow)
     gauge = measured.lowered(measured.offset)
     if supply.tests:
@@ -62,11 +149,29 @@ def supply_steps(
         steps.append(Step(title, words, carried, "pressure", "height from the gauge to the node"))
     for stage in supply.stages[0 if supply.tank else 1 :]:
         value = stage.curve.pressure_at(flow)
-        steps.append(
-            Step(
-                "Tank" if supply.tank else "Adjusted", stage.words, value, "pressure", "at the demand flow"
-            )
-        )
+        title = "Tank" if supply.tank else "Adjusted"
+        steps.append(Step(title, stage.words, value, "pressure", "at the demand flow"))
+    return tuple(steps)
+
+
+def left_over_step(node: str, available: float, demand: float) -> Step:
+    """Return what one of several sources has left [Pa] at its own node."""
+    words = Words(
+        "{available} − {demand}", (("available", available, "pressure"), ("demand", demand, "pressure"))
+    )
+    title, note = f"Left over at {node}", "the same at every source that gives water"
+    return Step(title, words, available - demand, "pressure", note)
+
+
+def arrival_steps(
+    supply: NodeSupply, flow: float, path: Route, at: str, demand: float, margin: float
+) -> tuple[Step, ...]:
+    """Return the steps from the node of the source to the pressure available at node ``at``.
+
+    ``flow`` [m³/s] is what the source gives, ``demand`` and ``margin`` [Pa] stand at ``at``.
+    """
+    steps = []
+    available = supply.curve.pressure_at(flow)
     if path.pipes:
         words = Words(
             "{supply} − height {height} − friction {friction} − devices {device}",

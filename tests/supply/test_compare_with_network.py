@@ -73,6 +73,16 @@ def test_two_supplies_share_one_margin() -> None:
         assert share.flow > 0.0
         assert share.available - share.demand_pressure == pytest.approx(solution.shift, abs=1.0)
     assert comparison.demand_flow == pytest.approx(510 * GPM, rel=1e-6)
+    # Steps tell the share of each, its curve at its own flow, and that all are lowered alike.
+    steps = {step.step: step for step in comparison.supply_steps}
+    assert steps["Given by the sources"].value == pytest.approx(510 * GPM, rel=1e-6)
+    by_node = {share.node: share for share in comparison.sources}
+    weaker = 75 - 21 * (by_node["X"].flow / (956 * GPM)) ** 1.85  # 75 psi static, 54 psi at 956 gpm
+    assert steps["Curve of W at the demand flow"].value == pytest.approx(weaker * PSI, rel=1e-9)
+    for node in ("S", "X"):
+        assert steps[f"Left over at {node}"].value == pytest.approx(solution.shift, abs=1.0)
+    assert any("lowered alike" in note.template for note in comparison.notes)
+    assert comparison.margin_steps[0].note == "all supplies lowered alike"
     # Lowering both tests by the margin leaves nothing to spare.
     low = Adjustment("low supply", pressure=comparison.margin)
     lowered = replace(project, supply=replace(project.supply, adjustments=(low,)))

@@ -12,9 +12,10 @@ from supply_systems import UNIT_WEIGHT, Chain, flow_test, friction, solve
 
 from supplycheck.errors import DomainError
 from supplycheck.hydraulics import Curve
-from supplycheck.model import Adjustment, Device, MarginRule
+from supplycheck.model import Adjustment, Device, MarginRule, Outlet, TestPoint
 from supplycheck.supply import Comparison, compare, curve_points, hose_loads
-from supplycheck.units import FOOT, GPM, PSI, US
+from supplycheck.supply.narration import pitot_steps
+from supplycheck.units import FOOT, GPM, INCH, PSI, US
 
 
 def compared(chain: Chain) -> Comparison:
@@ -267,3 +268,31 @@ def test_flow_at_20_psi_is_read_at_the_gauge() -> None:
     poorer = flow_test("U", static=70.0, residual=45.0, flow=700.0, gauge=12.0)
     lower = compared(Chain(tests=(flow_test(), poorer))).flow_at_20_psi
     assert lower is not None and lower / GPM == pytest.approx(700 * (50 / 25) ** 0.54, rel=5e-4)
+
+
+def test_the_pitot_law_is_told_with_its_numbers() -> None:
+    """NFPA 291: Q = 29.84 c d² √p; 29.84 × 0.9 × 6.25 × √27 = 872.2 gpm, by hand to the last digit.
+
+    In L/min, mm and bar its factor is 0.6668 (29.84 × 3.785412 / 25.4² / √0.0689476, by hand).
+    """
+    flow = 29.84 * 0.9 * 6.25 * 27**0.5
+    outlet = Outlet(2.5 * INCH, 0.9, 27 * PSI, hydrant="C-12")
+    pumper = Outlet(4.0 * INCH, 0.9, 10 * PSI, 0.83)
+    both = flow + 29.84 * 0.9 * 16 * 10**0.5 * 0.83
+    test = replace(flow_test(), points=(TestPoint(54 * PSI, both * GPM, (outlet, pumper)),))
+    steps = {step.step: step for step in compared(Chain(tests=(test,))).supply_steps}
+    first = steps["T: flow of outlet 1 of C-12"]
+    assert first.formula.fill(US.text) == "29.84 × 0.900 × (2.500 in)² × √(27.0 psi)"
+    assert first.value / GPM == pytest.approx(872.2, abs=0.05)
+    second = steps["T: flow of outlet 2"]
+    assert second.formula.fill(US.text) == "29.84 × 0.900 × (4.000 in)² × √(10.0 psi) × 0.830"
+    assert steps["T: flow of the test"].value / GPM == pytest.approx(both, rel=1e-9)
+    metric = pitot_steps(test, "metric")[0]
+    assert metric.formula.template.startswith("0.6668 × ") and metric.value == first.value
+
+
+def test_a_test_without_outlets_has_no_pitot_step_and_a_tank_no_rating() -> None:
+    assert pitot_steps(flow_test(), "us") == ()
+    titles = [step.step for step in compared(Chain()).supply_steps]
+    assert "Flow of T at 20 psi (1.38 bar), as measured" in titles
+    assert not [title for title in titles if title.endswith("adjusted")]
