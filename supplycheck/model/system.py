@@ -55,7 +55,8 @@ class Fitting:
 
     ``table_length`` [m] is one fitting as the table prints it (C 120, reference bore);
     ``length`` [m] is all ``count`` of them after the C and bore corrections; ``minor_k`` [-] is the
-    loss coefficient of all of them where it is given instead of a length.
+    loss coefficient of all of them where it is given instead of a length. ``c_multiplier`` and
+    ``bore_factor`` [-] are the corrections: length = count × table length × both.
     """
 
     name: str
@@ -66,6 +67,8 @@ class Fitting:
     origin: Origin
     source: str
     node: str | None = None
+    c_multiplier: float = 1.0
+    bore_factor: float = 1.0
 
 
 @dataclass(frozen=True, slots=True)

@@ -87,23 +87,25 @@ class Lengths:
     def __init__(self, standard: str, extra: catalogue.ExtraRows, faults: FaultList) -> None:
         self.standard, self.extra, self.faults = standard, extra, faults
         self._rows: dict[tuple[str, str], catalogue.FittingRow | NotInCatalogueError] = {}
-        self._factors: dict[tuple[float | None, float, float | None, float], float] = {}
+        self._factors: dict[tuple[float | None, float, float | None, float], tuple[float, float]] = {}
 
-    def _factor(self, size: PipeSize, reference_c: float, reference_bore: float | None) -> float:
-        """Return the product of both corrections."""
+    def _factor(
+        self, size: PipeSize, reference_c: float, reference_bore: float | None
+    ) -> tuple[float, float]:
+        """Return the corrections for C and for the bore."""
         key = (size.c_factor, size.bore, reference_bore, reference_c)
         if key not in self._factors:
-            factor = 1.0
+            of_c = of_bore = 1.0
             if size.c_factor is not None:
-                factor *= c_multiplier(c_factor=size.c_factor, reference_c=reference_c)
+                of_c = c_multiplier(c_factor=size.c_factor, reference_c=reference_c)
             if reference_bore is not None:
-                factor *= bore_factor(bore=size.bore, reference_bore=reference_bore)
-            self._factors[key] = factor
+                of_bore = bore_factor(bore=size.bore, reference_bore=reference_bore)
+            self._factors[key] = (of_c, of_bore)
         return self._factors[key]
 
     def c_only(self, size: PipeSize) -> float:
         """Return the correction for C alone, for a length that holds for this size."""
-        return self._factor(size, REFERENCE_C, None)
+        return self._factor(size, REFERENCE_C, None)[0]
 
     def _row(self, name: str, nominal: str) -> catalogue.FittingRow | NotInCatalogueError:
         """Return the catalogue row, or the error that there is none."""
@@ -163,7 +165,6 @@ class Lengths:
         if isinstance(row, NotInCatalogueError):
             self._note(row, written.name, size.nominal, place)
             return None
-        factor = self._factor(size, row.reference_c, row.reference_bore)
-        return Fitting(
-            row.name, count, row.length, row.length * count * factor, 0.0, origin, row.source, node
-        )
+        of_c, of_bore = self._factor(size, row.reference_c, row.reference_bore)
+        length = row.length * count * (of_c * of_bore)
+        return Fitting(row.name, count, row.length, length, 0.0, origin, row.source, node, of_c, of_bore)

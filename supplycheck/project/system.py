@@ -161,9 +161,9 @@ class Finisher:
         for tag in draft.devices:
             device = self.devices.get(tag)
             if device is not None and device.equivalent_length is not None:
-                length = device.equivalent_length * self.lengths.c_only(size)
+                given, of_c = device.equivalent_length, self.lengths.c_only(size)
                 found.append(
-                    Fitting(device.title, 1, device.equivalent_length, length, 0.0, "given", device.source)
+                    Fitting(device.title, 1, given, given * of_c, 0.0, "given", device.source, None, of_c)
                 )
         return [fitting for fitting in found if fitting is not None]
 

@@ -57,18 +57,15 @@ def words(title: str) -> Column:
     return Column(title, wrap=True)
 
 
-# Decimals of a hand check: as many as its formulas carry, so that each line leads to the next.
-HAND_DECIMALS: Final = MappingProxyType({"pressure": 3, "flow": 2, "gradient": 5})
+# Decimals of steps where a step does not say its own: pressures close to a hundredth of a psi.
+STEP_DECIMALS: Final = MappingProxyType({"us": {"pressure": 2}, "metric": {"pressure": 3}})
 
 
-def steps_table(title: str, steps: Iterable[HandStep], show: Show, *, by_hand: bool = False) -> Table:
-    """Return steps as a table: what is worked out, the formula with its numbers, the result.
-
-    ``by_hand`` shows the decimals that a reader needs to go on from one line to the next.
-    """
-    more = HAND_DECIMALS if by_hand else {}
+def steps_table(title: str, steps: Iterable[HandStep], show: Show) -> Table:
+    """Return steps as a table: what is worked out, the formula with its numbers, the result."""
+    usual = STEP_DECIMALS[show.units.name]
     rows = tuple(
-        Row((step.step, step.formula, show.t(step.value, step.kind, more.get(step.kind))), note=step.note)
+        Row((step.step, step.formula, _step_result(step, show, usual.get(step.kind))), note=step.note)
         for step in steps
     )
     columns = (
@@ -77,6 +74,10 @@ def steps_table(title: str, steps: Iterable[HandStep], show: Show, *, by_hand: b
         Column("Result", right=True, share=0.16),
     )
     return Table(title, columns, rows, empty="no steps recorded")
+
+
+def _step_result(step: HandStep, show: Show, usual: int | None) -> str:
+    return show.t(step.value, step.kind, usual if step.decimals is None else step.decimals)
 
 
 def given(text: str) -> str:

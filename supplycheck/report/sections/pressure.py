@@ -93,7 +93,7 @@ def hand_check(result: Result) -> Section:
         words("From – to"),
         words("Size"),
         column("Bore", show.s("size")),
-        column("Added", show.s("flow")),
+        column("Flow added", show.s("flow")),
         column("Flow", show.s("flow")),
         column("L", show.s("length")),
         column("F", show.s("length")),
@@ -104,18 +104,18 @@ def hand_check(result: Result) -> Section:
         column("At end", show.s("pressure")),
     )
     note = (
-        "L is the pipe, F the fittings as equivalent length, T both. The head's flow is K × "
-        "√pressure; where a "
-        "branch joins, its flow at the pressure of the junction is added."
+        "L is the pipe, F the fittings as equivalent length (see the table of fittings), T both. A flow "
+        "added below zero is what another way round carries to that node."
     )
     blocks: list[Block] = [
         Paragraph(
             "The governing path can be followed from here with a pocket calculator: each line holds "
-            "the formula "
-            "with its numbers, as displayed, and its result."
+            "the formula with its numbers and its result; a flow that joins or splits has a line of its "
+            "own before it is counted. Nothing is rounded inside the calculation, so that a line worked "
+            "from the printed numbers may differ in the last digit."
         ),
         Table("The path", columns, path_rows, note, size=6.6),
-        steps_table("Line by line", result.hand_check, show, by_hand=True),
+        steps_table("Line by line", result.hand_check, show),
     ]
     return Section("Hand check of the governing path", tuple(blocks), fresh=True)
 
