@@ -1,4 +1,7 @@
-"""The whole gate, one command: style, types, tests and doctests."""
+"""The whole gate, one command: style, types, tests and doctests.
+
+Sweeps marked slow are left out; each has an unmarked sample. `python -m pytest -m slow` runs them.
+"""
 
 from __future__ import annotations
 
@@ -10,7 +13,7 @@ STEPS = (
     ("ruff", "check", "."),
     ("ruff", "format", "--check", "."),
     ("mypy",),
-    ("pytest",),
+    ("pytest", "-m", "not slow"),
 )
 
 
