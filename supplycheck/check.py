@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from importlib.metadata import version as installed
@@ -14,7 +13,7 @@ from supplycheck import __version__, catalogue
 from supplycheck.checks import CheckContext, PumpRating, run_checks
 from supplycheck.context import catalogue_c, class_figures, comparison_facts, reference_bores
 from supplycheck.demand import Candidates, demand_cases
-from supplycheck.duties import DutyResult, Ground, solve_duties, without_hose
+from supplycheck.duties import Ground, solve_duties, without_hose
 from supplycheck.errors import DomainError
 from supplycheck.loads import load_of, required_of
 from supplycheck.model import DemandCase, Project
@@ -28,7 +27,7 @@ from supplycheck.network import (
 )
 from supplycheck.placements import Progress, only, try_all
 from supplycheck.project import read_project
-from supplycheck.results.assemble import Stages, Tried, assemble
+from supplycheck.results.assemble import Stages, assemble
 from supplycheck.results.records import Result
 from supplycheck.scenarios import scenario_rows
 from supplycheck.supply import (
@@ -73,8 +72,10 @@ def check(project: Project, progress: Progress | None = None) -> Result:
     tried = try_all(project, network, candidates, sources, progress)
     sprinklers = None if tried.hardest is None else candidates.cases[tried.hardest]
     duties = solve_duties(Ground(project, network, curves, sources, _hydrant_rank), sprinklers)
-    governing = field.solve(_governing(sprinklers, tried, duties))
-    own = governing if governing.case is sprinklers or sprinklers is None else field.solve(sprinklers)
+    solved = [field.solve(one) for one in ([] if sprinklers is None else [sprinklers])]
+    solved += [field.solve(one) for one, _ in duties.candidates]
+    governing = _governing(solved)
+    own = governing if sprinklers is None else solved[0]
     drawn = without_hose(project, governing.case)
     case, solution, comparison = governing.case, governing.solution, governing.comparison
     operating = governing.operating
@@ -92,7 +93,7 @@ def check(project: Project, progress: Progress | None = None) -> Result:
         Stages(
             project=project,
             candidates=candidates,
-            tried=tried if tried.placements else only(case, duties.summary, project),
+            tried=tried if tried.placements else only(case, dict(duties.candidates)[case], project),
             case=case,
             solution=solution,
             comparison=comparison,
@@ -138,18 +139,22 @@ class _Field:
         return _Solved(case, solution, operating, comparison)
 
 
-def _governing(sprinklers: DemandCase | None, tried: Tried, duties: DutyResult) -> DemandCase:
-    """Return the case that leaves the least margin: of the sprinklers, or of another duty."""
-    least = min((one.margin for one in tried.placements), default=math.inf)
-    harder = duties.summary is not None and duties.summary.shift < least
-    if duties.hardest is not None and (harder or sprinklers is None):
-        return duties.hardest
-    if sprinklers is None:
+def _governing(solved: Sequence[_Solved]) -> _Solved:
+    """Return the case that leaves least after the margin rule: of the sprinklers, or of another duty.
+
+    Raises :class:`DomainError` where there is none.
+    """
+    if not solved:
         raise DomainError(
             "there is nothing to judge: the project has no sprinklers, and no case of its standpipes or "
             "hydrants counts; name one in counts"
         )
-    return sprinklers
+
+    def left(one: _Solved) -> float:
+        after = one.comparison.after_rule
+        return one.comparison.margin if after is None else after
+
+    return min(solved, key=left)
 
 
 def _hydrant_rank(flow: float) -> tuple[str, str, str]:

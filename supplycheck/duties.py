@@ -67,12 +67,10 @@ class Ground:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class DutyResult:
-    """The rows, and the hardest case on which the verdict rests with its summary (``None``: no case)."""
+    """The rows, and of the cases on which the verdict rests the hardest of each duty, kind and flow."""
 
     answer: DutyAnswer
-    hardest: DemandCase | None = None
-    summary: DemandSummary | None = None
-    tried: int = 0
+    candidates: tuple[tuple[DemandCase, DemandSummary], ...] = ()
 
 
 def solve_duties(ground: Ground, sprinklers: DemandCase | None) -> DutyResult:
@@ -98,8 +96,6 @@ def solve_duties(ground: Ground, sprinklers: DemandCase | None) -> DutyResult:
     solved, cut = _solve(ground, cases)
     rows = [_row(ground, *worst) for worst in _hardest_of_each(solved)]
     rows += [_cut_row(one, tags) for one, tags in cut]
-    counted = [(one.case, summary) for one, summary in solved if one.counts]
-    case, summary = min(counted, key=lambda pair: pair[1].shift, default=(None, None))
     states = tuple(rows)
     answer = DutyAnswer(
         rows=states,
@@ -107,7 +103,23 @@ def solve_duties(ground: Ground, sprinklers: DemandCase | None) -> DutyResult:
         standpipes=tuple(_standpipe_rows(ground, project.standpipes, states)) if project.standpipes else (),
         connection=_connection(ground, [one for one, _ in solved]),
     )
-    return DutyResult(answer, case, summary, len(solved))
+    return DutyResult(answer, _candidates(solved))
+
+
+def _candidates(
+    solved: Sequence[tuple[DutyCase, DemandSummary]],
+) -> tuple[tuple[DemandCase, DemandSummary], ...]:
+    """Return the hardest of the cases that count for each duty, kind and flow.
+
+    At one flow the case that needs most pressure has the least margin before and after any margin rule; at
+    different flows the rule may ask so much more of one that it is short where another is not.
+    """
+    hardest: dict[tuple[str, str, float], tuple[DemandCase, DemandSummary]] = {}
+    for one, summary in solved:
+        key = (one.case.duty, one.kind, round(summary.total_flow, 9))
+        if one.counts and (key not in hardest or summary.shift < hardest[key][1].shift):
+            hardest[key] = (one.case, summary)
+    return tuple(hardest.values())
 
 
 def _solve(
@@ -129,7 +141,9 @@ def _solve(
             open_cases.append(one)
     policy = ground.project.criteria.velocity_pressure
     questions = [(load_of(ground.project, one.case), required_of(one.case)) for one in open_cases]
-    summaries = demand_many(ground.network, questions, ground.sources, velocity_pressure=policy)
+    node = ground.project.supply.compare_at
+    at = node if all(node in tags for tags in reached.values()) else None
+    summaries = demand_many(ground.network, questions, ground.sources, velocity_pressure=policy, at=at)
     return list(zip(open_cases, summaries, strict=True)), cut
 
 
@@ -190,7 +204,7 @@ def _row(ground: Ground, one: DutyCase, summary: DemandSummary, tried: int) -> D
         label=case.label,
         counts=one.counts,
         flow=summary.total_flow,
-        required_pressure=summary.source_pressure,
+        required_pressure=summary.pressure_at,
         margin=summary.shift,
         governing=summary.governing,
         governing_by=by.get(summary.governing, ""),

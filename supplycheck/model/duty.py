@@ -152,10 +152,10 @@ class OutletState:
 class DutyRow:
     """One demand case beside the others; flows [m³/s], pressures [Pa].
 
-    ``required_pressure`` is at the supply, ``margin`` what the supply has more there at ``flow``; NaN
-    where the case has no solution, which ``note`` explains. ``counts`` says whether the verdict rests on
-    it, ``tried`` how many cases of the same sort this one is the hardest of. ``outlets`` is the state
-    with the supply as it is.
+    ``required_pressure`` is at the point of comparison (at the first source where a shut valve cuts that
+    off), ``margin`` what the supply has more there at ``flow``; NaN where the case has no solution, which
+    ``note`` explains. ``counts`` says whether the verdict rests on it, ``tried`` how many cases of the same
+    sort this one is the hardest of. ``outlets`` is the state with the supply as it is.
     """
 
     duty: str

@@ -18,6 +18,7 @@ from supplycheck.report.sections.duties import duties
 from supplycheck.results.json import result_json
 from supplycheck.results.records import Result
 from supplycheck.results.screen import screen_text
+from supplycheck.results.tables import frames
 
 EXAMPLES = Path(__file__).parents[2] / "examples"
 YARD, TOWER = "yard-main", "tower-standpipe"
@@ -154,3 +155,16 @@ def test_basis_without_sprinklers_prints_no_density() -> None:
     basis = next(section for section in document.sections if section.title == "Basis of design")
     labels = [pair[0] for block in basis.blocks if isinstance(block, Facts) for pair in block.pairs]
     assert "Density" not in labels and "Sprinklers" in labels
+
+
+def test_tables_hold_every_case_outlet_and_hydrant() -> None:
+    tables = frames(result_of(YARD))
+    found = record_of(YARD)["duties"]
+    assert list(tables["cases"]["case"]) == [case["label"] for case in found["cases"]]
+    assert list(tables["cases"]["margin [psi]"]) == [case["margin"] for case in found["cases"]]
+    assert len(tables["case_outlets"]) == sum(len(case["outlets"]) for case in found["cases"])
+    assert list(tables["hydrants"]["greatest_flow [gpm]"]) == [
+        one["greatest_flow"] for one in found["hydrants"]
+    ]
+    assert "hose_outlets" not in tables and len(frames(result_of(TOWER))["hose_outlets"]) == 50
+    assert "cases" not in frames(result_of("office-floor"))

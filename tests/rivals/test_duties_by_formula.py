@@ -196,3 +196,56 @@ def test_sprinklers_and_hydrant_at_once(tmp_path: Path) -> None:
     assert own.required_pressure / PSI == pytest.approx(for_head + common * 15**N, rel=1e-4)
     states = {one.check: one.state for one in result.findings}
     assert states["density at every head"] == "ok" and states["hose counted once"] == "ok"
+
+
+def test_of_very_many_cases_the_hardest_of_each_kind_are_listed(tmp_path: Path) -> None:
+    """14 hydrants on one tee, 91 pairs: every one alone, and of the pairs the hardest with their number."""
+    names = [f"Y{number:02d}" for number in range(14)]
+    nodes = [*NODES[:2], *(f"{name},{8 + place},hydrant" for place, name in enumerate(names))]
+    pipes = [PIPES[0], *(f"to {name},T,{name},30,6" for name in names)]
+    text = DUTY.split("valves")[0] + "".join(
+        f'[[hydrant]]\ntag = "{name}"\nnode = "{name}"\n' for name in names
+    )
+    result = check_project(written(tmp_path, text, nodes, pipes, test=supply(STATIC, RESIDUAL, TESTED)))
+    rows = result.duties.rows
+    assert len(rows) == 14 + 1
+    pair = rows[-1]
+    assert pair.tried == 91 and "Y13" in pair.label  # the highest of all hydrants is in the hardest pair
+    needed = 20 + 21 * RISE + COMMON * 1000**N + pipe(30, "6") * 500**N
+    assert pair.required_pressure / PSI == pytest.approx(needed, rel=1e-4)
+
+
+def test_the_case_that_is_short_of_the_margin_rule_governs(tmp_path: Path) -> None:
+    """Under 8 % of the demand pressure, sprinklers at high pressure are short where a hydrant is not.
+
+    The hydrant leaves less before the rule, but the rule asks less of it: the sprinklers must govern.
+    """
+    nodes = ["S,0,supply", "T,5,junction", "A,33,hydrant", "H,130,sprinkler,K"]
+    pipes = ["common,S,T,150,8,,,underground", "lateral,T,A,30,8", "branch,T,H,140,1"]
+    text = SPRINKLERS.replace("flow = 600", "flow = 1900").replace("outside = 100", "outside = 0")
+    text = text.replace('"hydrants", "with sprinklers"', '"hydrants"')
+    rule = 'rule = "of demand"\npercent = 8\nsource = "invented"'
+    test = supply(80, 60, 1375).replace('rule = "none"', rule)
+    branch = 4.52 * 140 / (120**N * 1.049**4.87)
+    sprinklers = (15 / 5.6) ** 2 + branch * 15**N + 130 * RISE + pipe(150, "8") * 15**N
+    yard = 20 + 33 * RISE + pipe(180, "8") * 1900**N
+    resistance = 20 / 1375**N
+    before = {"sprinklers": 80 - resistance * 15**N - sprinklers, "yard": 80 - resistance * 1900**N - yard}
+    after = {"sprinklers": before["sprinklers"] - 0.08 * sprinklers, "yard": before["yard"] - 0.08 * yard}
+    assert 0 < before["yard"] < before["sprinklers"]
+    assert after["sprinklers"] < 0 < after["yard"]
+    result = check_project(written(tmp_path, text, nodes, pipes, test=test))
+    assert result.verdict == "not adequate"
+    assert result.demand.governing_head == "H"
+    assert result.margin.after_rule is not None
+    assert result.margin.after_rule / PSI == pytest.approx(after["sprinklers"], abs=0.02)
+
+
+def test_needed_pressure_is_told_where_it_is_compared(tmp_path: Path) -> None:
+    """At T, 5 ft up and behind the common pipe, instead of at the supply node."""
+    test = '[supply]\ncompare_at = "T"\n' + supply(STATIC, RESIDUAL, TESTED)
+    result = check_project(written(tmp_path, DUTY, NODES, PIPES, test=test))
+    row = row_of(result, "hydrants A + B")
+    assert row.required_pressure / PSI == pytest.approx(20 + 15 * RISE + RING * 500**N, rel=1e-4)
+    day = row_of(result, "hydrants A + B, at maximum-day demand")
+    assert result.demand.pressure == pytest.approx(day.required_pressure, rel=1e-6)

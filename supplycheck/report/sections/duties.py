@@ -45,7 +45,7 @@ def _cases(result: Result, show: Show) -> Table:
         Column("Case", wrap=True, share=0.3),
         Column("Verdict rests on it", wrap=True, share=0.09),
         Column("Flow", show.s("flow"), right=True, share=0.09),
-        Column("Needed at the supply", show.s("pressure"), right=True, share=0.1),
+        Column(f"Needed at {result.demand.node}", show.s("pressure"), right=True, share=0.1),
         Column("Margin", show.s("pressure"), right=True, share=0.09),
         Column("Least to spare at", wrap=True, share=0.15),
         Column("Left there", show.s("pressure"), right=True, share=0.09),
@@ -55,9 +55,9 @@ def _cases(result: Result, show: Show) -> Table:
     if result.project.criteria.has_sprinklers:
         rows.insert(0, _sprinklers(result, show))
     note = (
-        "Every case is solved on the network; flows at outlets are fixed. Needed and margin are at the "
-        "supply at the flow of the case; left and asked are at the outlet with the supply as it is. The "
-        "case that governs is in bold."
+        "Every case is solved on the network; flows at outlets are fixed. Needed and margin are at "
+        f"{result.demand.node} at the flow of the case; left and asked are at the outlet with the supply "
+        "as it is. The case that governs is in bold."
     )
     return Table("Cases side by side", columns, tuple(rows), note, empty="no case was solved", size=6.6)
 
@@ -107,7 +107,7 @@ def _sprinklers(result: Result, show: Show) -> Row:
 def _case(row: DutyRow, show: Show, *, strong: bool) -> Row:
     spare = _spare(row)
     notes = [row.note] if row.note else []
-    notes += [f"hardest of {row.tried} choices of further standpipes"] if row.tried > 1 else []
+    notes += [f"hardest of {row.tried} choices"] if row.tried > 1 else []
     return Row(
         (
             row.label,
