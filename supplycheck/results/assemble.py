@@ -35,7 +35,7 @@ from supplycheck.results.records import (
     TankRecord,
     Verdict,
 )
-from supplycheck.results.rows import node_rows, pipe_rows
+from supplycheck.results.rows import fitting_rows, node_rows, pipe_rows
 from supplycheck.supply import Comparison, CurveLine, GraphData, MarkedPoint
 from supplycheck.supply import Step as SupplyStep
 from supplycheck.units import UNIT_SETS
@@ -121,6 +121,7 @@ def assemble(stages: Stages) -> Result:
         tanks=stages.tanks,
         needed_pump=stages.needed_pump,
         duties=stages.duties,
+        fittings=fitting_rows(project),
     )
 
 

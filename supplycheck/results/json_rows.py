@@ -8,7 +8,7 @@ from typing import Any
 
 from supplycheck.findings import Finding, Measure
 from supplycheck.results.display import finding_text, remedy_text
-from supplycheck.results.records import HandStep, NodeRow, PathStep, PipeRow, ScenarioRow
+from supplycheck.results.records import FittingRow, HandStep, NodeRow, PathStep, PipeRow, ScenarioRow
 from supplycheck.units import UnitSet
 
 Record = dict[str, Any]
@@ -133,6 +133,29 @@ def pipe_record(row: PipeRow, plain: Plain) -> Record:
         "devices": list(row.devices),
         "valve": row.valve,
         "note": row.note,
+    }
+
+
+def fitting_record(row: FittingRow, plain: Plain) -> Record:
+    """Return how one equivalent length comes about."""
+    numbers = plain.record(
+        {
+            "bore": (row.bore, "size"),
+            "c_factor": (row.c_factor, "ratio"),
+            "table_length": (row.table_length, "length"),
+            "c_multiplier": (row.c_multiplier, "ratio"),
+            "bore_factor": (row.bore_factor, "ratio"),
+            "length": (row.length, "length"),
+            "minor_k": (row.minor_k, "ratio"),
+        }
+    )
+    return {
+        "name": row.name,
+        "nominal": row.nominal,
+        "pipe_kind": row.pipe_kind,
+        "count": row.count,
+        **numbers,
+        "source": row.source,
     }
 
 

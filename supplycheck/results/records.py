@@ -90,6 +90,28 @@ class PipeRow:
 
 
 @dataclass(frozen=True, slots=True)
+class FittingRow:
+    """How the equivalent length of one kind of fitting in one kind and size of pipe comes about.
+
+    ``length`` [m] of one fitting = ``table_length`` [m] × ``c_multiplier`` × ``bore_factor``; ``minor_k``
+    [-] of one fitting where a loss coefficient is given instead; ``count`` is how many the system has.
+    """
+
+    name: str
+    nominal: str
+    pipe_kind: str
+    bore: float
+    c_factor: float | None
+    table_length: float
+    c_multiplier: float
+    bore_factor: float
+    length: float
+    minor_k: float
+    count: int
+    source: str
+
+
+@dataclass(frozen=True, slots=True)
 class PathStep:
     """One segment of the walk from the remote head to the supply.
 
@@ -332,3 +354,4 @@ class Result:
     tanks: tuple[TankRecord, ...] = ()
     needed_pump: NeededPump | None = None
     duties: DutyAnswer = field(default_factory=DutyAnswer)
+    fittings: tuple[FittingRow, ...] = ()

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -12,7 +12,7 @@ from supplycheck.model import DemandCase, Fluid, FrictionLaw, Node, Pipe, PipeKi
 from supplycheck.model.system import Fitting
 from supplycheck.network import Solution
 from supplycheck.network.records import FloatArray
-from supplycheck.results.records import NodeRow, PipeRow
+from supplycheck.results.records import FittingRow, NodeRow, PipeRow
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,6 +79,30 @@ def fittings_text(fittings: tuple[Fitting, ...]) -> str:
         mark = " (inferred)" if fitting.origin == "inferred" else ""
         words.append(f"{fitting.count} × {fitting.name}{mark}")
     return ", ".join(words)
+
+
+def fitting_rows(project: Project) -> tuple[FittingRow, ...]:
+    """Return one row for each distinct fitting, nominal size, kind of pipe, bore and C, smallest first."""
+    counts: dict[FittingRow, int] = {}
+    for pipe in project.system.pipes:
+        for fitting in pipe.fittings:
+            row = FittingRow(
+                name=fitting.name,
+                nominal=pipe.nominal,
+                pipe_kind=pipe.kind,
+                bore=pipe.bore,
+                c_factor=pipe.c_factor,
+                table_length=fitting.table_length,
+                c_multiplier=fitting.c_multiplier,
+                bore_factor=fitting.bore_factor,
+                length=fitting.table_length * (fitting.c_multiplier * fitting.bore_factor),
+                minor_k=fitting.minor_k / fitting.count if fitting.count else 0.0,
+                count=0,
+                source=fitting.source,
+            )
+            counts[row] = counts.get(row, 0) + fitting.count
+    rows = [replace(row, count=count) for row, count in counts.items()]
+    return tuple(sorted(rows, key=lambda row: (row.name, row.bore, row.pipe_kind, row.c_factor or 0.0)))
 
 
 def pipe_rows(project: Project, solution: Solution) -> tuple[PipeRow, ...]:

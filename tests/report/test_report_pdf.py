@@ -113,9 +113,9 @@ def test_numbers_are_those_of_the_result_file(units: str) -> None:
             rf"(?<!\S){re.escape(node['tag'])} (?:sprinkler A|junction|supply|hydrant) ([^A-Za-z]*)", text
         )
         assert row, node["tag"]
-        assert shown(node["pressure"], decimals) in row.group(1).split()
+        assert shown(node["pressure"], decimals + 2) in row.group(1).split()
         if node["discharge"]:
-            assert shown(node["discharge"], 1) in row.group(1).split()
+            assert shown(node["discharge"], 2) in row.group(1).split()
     for pipe in record["pipes"]:
         row = re.search(rf"{pipe['from']} {pipe['to']} (.*?) {pipe['tag']}", text)
         assert row, pipe["tag"]

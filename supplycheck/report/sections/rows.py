@@ -5,8 +5,10 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Final, TypeVar
 
+from supplycheck.model import Device
 from supplycheck.report.document import Block, Column, Paragraph, Row, Section, Table
 from supplycheck.report.show import Show, column, words
+from supplycheck.results.hand import Pen
 from supplycheck.results.records import NodeRow, PipeRow, Result
 
 MOST_ROWS: Final = 4000
@@ -98,7 +100,83 @@ def pipe_information(result: Result) -> Section:
         blocks.append(_still_pipes(brief, show))
     if left_out:
         blocks.append(Paragraph(_left_out(left_out, "pipes", "pipes.csv").strip()))
+    blocks.append(_fittings(result, show))
+    if result.project.system.devices:
+        blocks.append(_devices(result, show))
     return Section("Pipe information", tuple(blocks), landscape=True, fresh=True)
+
+
+def _fittings(result: Result, show: Show) -> Table:
+    """Return how each equivalent length comes about, a line for each fitting, size, pipe and C."""
+    columns = (
+        words("Fitting"),
+        words("Nominal"),
+        words("Pipe"),
+        column("Bore", show.s("size")),
+        column("C"),
+        column("Table length", show.s("length")),
+        column("× for C"),
+        column("× for bore"),
+        column("= length", show.s("length")),
+        column("Number"),
+        words("Source"),
+    )
+    rows = tuple(
+        Row(
+            (
+                one.name,
+                one.nominal,
+                one.pipe_kind,
+                show.n(one.bore, "size"),
+                "–" if one.c_factor is None else f"{one.c_factor:g}",
+                show.n(one.table_length, "length") if not one.minor_k else f"K = {one.minor_k:g}",
+                f"{one.c_multiplier:.4f}",
+                f"{one.bore_factor:.4f}",
+                show.n(one.length, "length"),
+                str(one.count),
+                one.source,
+            )
+        )
+        for one in result.fittings
+    )
+    note = (
+        "Length of one fitting: that of the table, times (C / 120)^1.85, times (bore / bore of the table's "
+        "pipe)^4.87 where the standard corrects for it. 1.0000 where a correction does not apply."
+    )
+    return Table("Equivalent lengths", columns, rows, note, empty="no fittings", size=6.0)
+
+
+def _devices(result: Result, show: Show) -> Table:
+    """Return every device with the points of its curve as given."""
+    columns = (
+        words("Device"),
+        words("Title"),
+        words("Kind"),
+        words(f"Points, {show.s('flow')}: {show.s('pressure')}"),
+        words("Source"),
+    )
+    rows = tuple(
+        Row((one.tag, one.title, one.kind, _points(one, show), one.source))
+        for one in result.project.system.devices
+    )
+    note = (
+        "Between two points the loss is read on the straight line that joins them; for a pump the points "
+        "are the pressure that it adds."
+    )
+    return Table("Devices", columns, rows, note, size=6.0)
+
+
+def _points(device: Device, show: Show) -> str:
+    pen = Pen(show.units)
+    points = [
+        f"{pen.exact(flow, 'flow')}: {pen.exact(value, 'pressure')}"
+        for flow, value in zip(device.flows, device.values, strict=True)
+    ]
+    if device.is_fixed_loss:
+        points = [f"{show.t(device.values[0], 'pressure')} at every flow"]
+    if device.setting is not None:
+        points.append(f"set to {show.t(device.setting, 'pressure')}")
+    return "; ".join(points) or "none"
 
 
 def _still_pipes(pipes: Sequence[PipeRow], show: Show) -> Table:
