@@ -198,6 +198,21 @@ def test_the_pump_that_would_be_needed(tmp_path: Path) -> None:
     assert again.verdict == "adequate" and again.margin.pressure >= 0 and again.needed_pump is None
 
 
+def test_without_standard_sizes_the_pump_is_rated_at_the_demand(tmp_path: Path) -> None:
+    """EN 12845 has no list of sizes: rated at the demand flow, at exactly the pressure that is missing."""
+    weak = "curve = [[0, 10], [500, 10], [600, 10]]\nrated_flow = 400\nrated_pressure = 10"
+    checked(tmp_path, k_factor=30, minimum=130, pump=weak)
+    text = (tmp_path / "project.toml").read_text(encoding="utf-8")
+    text = text.replace("NFPA 13 (2022)", "EN 12845 (2015)").replace("hazard group 1", "hazard 1")
+    (tmp_path / "project.toml").write_text(text, encoding="utf-8")
+    needed = check_project(tmp_path).needed_pump
+    assert needed is not None and len(needed.options) == 1
+    option = needed.options[0]
+    assert option.rating.flow == pytest.approx(needed.flow)
+    assert option.rating.pressure == pytest.approx(needed.net)
+    assert option.demand_share == pytest.approx(1.0)
+
+
 def chosen(flow: float, pressure: float) -> str:
     """Return a pump exactly at the limits of its rating, the weakest that may be delivered."""
     return f"rated_flow = {flow}\nrated_pressure = {pressure}\ncurve_from_limits = true"
