@@ -18,7 +18,7 @@ from supplycheck.model.duty import Hydrant, HydrantDuty
 MOST: Final = 300
 """Groups of hydrants of one size that are tried."""
 
-LossOf = Callable[[Hydrant, float], float]
+LossOf = Callable[[Hydrant, float], tuple[float, bool]]
 
 
 def hydrant_cases(
@@ -32,8 +32,9 @@ def hydrant_cases(
     """
     by_tag = {device.tag: device for device in devices}
 
-    def loss(hydrant: Hydrant, flow: float) -> float:
-        return device_loss(by_tag.get(hydrant.device or ""), flow)
+    def loss(hydrant: Hydrant, flow: float) -> tuple[float, bool]:
+        device = by_tag.get(hydrant.device or "")
+        return device_loss(device, flow), in_range(device, flow)
 
     found = [_case(duty, group, loss) for size in _sizes(duty) for group in _groups(duty, size)]
     full = list(_groups(duty, duty.at_once))
@@ -96,7 +97,11 @@ def _case(
     sprinklers: DemandCase | None = None,
 ) -> DutyCase:
     flow = flow_of_each(duty, len(group))
-    outlets = [outlet_of(duty, hydrant, flow, loss(hydrant, flow)) for hydrant in group]
+    losses = [loss(hydrant, flow) for hydrant in group]
+    outlets = [outlet_of(duty, one, flow, lost) for one, (lost, _) in zip(group, losses, strict=True)]
+    notes = [f"sprinklers: {sprinklers.label}"] if sprinklers else []
+    if not all(inside for _, inside in losses):
+        notes.append("the loss of a hydrant is carried on beyond its curve")
     tags = tuple(hydrant.tag for hydrant in group)
     label = f"hydrants {' + '.join(tags)}" if len(tags) > 1 else f"hydrant {tags[0]} alone"
     label += {"valve shut": f", {valve} shut", "hydrants": ""}.get(kind, f", {kind}")
@@ -108,7 +113,7 @@ def _case(
         sprinklers=sprinklers,
         flows=duty.maximum_day if kind == "maximum day" else (),
         closed_pipes=(valve,) if valve else (),
-        note=f"sprinklers: {sprinklers.label}" if sprinklers else "",
+        note="; ".join(notes),
     )
     counts = kind in duty.counts and len(group) == duty.at_once
     return DutyCase(case, kind, counts, tags)

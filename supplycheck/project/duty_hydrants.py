@@ -59,6 +59,7 @@ class HydrantReader(DutyReader):
                 f"at least {self.base.text(fire_flow.flow / at_once, 'flow')}",
                 "raise it, or hydrants_at_once",
             )
+        self._check_curves(hydrants, system, min(fire_flow.flow / at_once, each))
         self._note_counts(table, sprinklers=sprinklers)
         asked = catalogue.hydrant_spacing(fire_flow.flow)
         name = ("fire_flow.residual", "pressure")
@@ -92,6 +93,21 @@ class HydrantReader(DutyReader):
                     or "a table [device.NAME] with curve or loss",
                 )
         return Hydrant(table.tag, table.node, table.device, table.location, self.sheet.place(where))
+
+    def _check_curves(
+        self, hydrants: Sequence[tuple[int, HydrantTable]], system: System | None, share: float
+    ) -> None:
+        """Note devices whose curve ends before the ``share`` of a hydrant [m³/s]."""
+        known = {device.tag: device for device in system.devices} if system else {}
+        for number, table in hydrants:
+            device = known.get(table.device or "")
+            if device is not None and len(device.flows) > 1 and share > device.flows[-1] * (1 + 1e-9):
+                self.fault(
+                    f"hydrant[{number}].device",
+                    f"the curve of {device.tag} ends before the share of this hydrant in the fire flow",
+                    self.base.text(device.flows[-1], "flow"),
+                    f"a curve up to {self.base.text(share, 'flow')}",
+                )
 
     def _note_counts(self, table: FireFlowTable, *, sprinklers: bool) -> None:
         if "counts" in table.model_fields_set:

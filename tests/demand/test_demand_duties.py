@@ -214,3 +214,10 @@ def test_a_hydrant_at_the_highest_point_asks_once() -> None:
     (outlet,) = one.case.outlets
     assert outlet.what == "hydrant A and the highest point of the main"
     assert outlet.minimum_pressure == pytest.approx(28 * PSI)
+
+
+def test_a_loss_beyond_the_curve_of_a_hydrant_is_said() -> None:
+    """The curve ends at 1000 gpm: a hydrant alone at 2000 is beyond it, two at 1000 each are not."""
+    notes = {one.members: one.case.note for one in hydrant_cases(hydrants(2, 2), (BODY,))}
+    assert "beyond its curve" in notes["A",] and "beyond its curve" in notes["B",]
+    assert notes["A", "B"] == ""

@@ -141,6 +141,7 @@ def test_small_outlets_need_65_psi(tmp_path: Path) -> None:
     assert outlet.required_pressure == pytest.approx(65 * PSI)
 
 
+BODY = '[device.body]\ncurve = [[0, 0], [900, 3]]\nsource = "maker"\n'
 REGULATOR = '[[standpipe.regulating]]\ntag = "R"\noutlets = ["A"]\nsource = "maker"\nflowing = {}\n'
 
 FAULTS = {
@@ -162,6 +163,10 @@ FAULTS = {
     "unknown device": (
         FLOW + HYDRANTS.replace('node = "A"', 'node = "A"\ndevice = "X"'),
         "hydrant[1].device: is not a device with a loss",
+    ),
+    "curve too short": (
+        FLOW + HYDRANTS.replace('node = "A"', 'node = "A"\ndevice = "body"') + BODY,
+        "hydrant[1].device: the curve of body ends before the share of this hydrant in the fire flow",
     ),
     "too many at once": (
         FLOW + "hydrants_at_once = 4\n" + HYDRANTS,
