@@ -26,12 +26,13 @@ ALLOWED: dict[str, set[str]] = {
     "report": {"results", "model"} | BASE,
     "scenarios": {"results", "supply", "network", "model", "errors"},
     "loads": {"supply", "network", "model"},
-    "duties": {"loads", "demand", "supply", "network", "model", "errors"},
+    "greatest_flow": {"demand", "supply", "network", "model", "errors"},
+    "duties": {"greatest_flow", "loads", "demand", "supply", "network", "model", "errors"},
     "placements": {"loads", "results", "demand", "network", "model"},
     "context": {"catalogue", "checks", "supply", "model", "errors"},
     "screening": {"project", "catalogue", "model", "hydraulics", "supply", "results", "report"} | BASE,
     "check": {"project", "scenarios", "catalogue", "model", "hydraulics", "network", "demand", "supply"}
-    | {"checks", "results", "report", "loads", "duties", "placements", "context"}
+    | {"checks", "results", "report", "loads", "duties", "greatest_flow", "placements", "context"}
     | BASE,
 }
 EVERYTHING = set(ALLOWED) | {"commands"}
