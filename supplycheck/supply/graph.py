@@ -7,14 +7,15 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
+from supplycheck.errors import DomainError
 from supplycheck.model import Project
 from supplycheck.network.records import Solution
-from supplycheck.supply.comparison import Comparison
+from supplycheck.supply.comparison import Comparison, SourceShare
 from supplycheck.supply.curve import EXPONENT, SupplyCurve
-from supplycheck.supply.route import CarriedCurve, Route
+from supplycheck.supply.route import CarriedCurve, Route, solved_route
 from supplycheck.supply.sources import NodeSupply
 
 LineStyle = Literal["measured", "adjusted", "demand", "combined", "tank", "pump"]
@@ -62,15 +63,58 @@ def curve_points(
     The supply lines are those of the principal source, carried to the point of comparison with the losses
     of the demand solution; where pumps stand on the way, the supply is shown without them, then the pumps
     by themselves, then both together as far as the curves go. Test points are carried like the lines.
+    Where several sources give water, every line and point stands at the flow of its own source, and the
+    lines of the others follow: at the point of comparison, or at their own node where their water cannot
+    come there.
     """
-    supply = next(one for one in curves if one.node == comparison.principal)
-    share = comparison.main_source
-    reach = _reach(supply, share.flow)
-    path = comparison.carried.route
-    lines = _supply_lines(supply, path, reach)
-    demand = _demand_line(project, solution, comparison)
+    by_node = {one.node: one for one in curves}
+    supply, path = by_node[comparison.principal], comparison.carried.route
+    lines = _supply_lines(supply, path, _reach(supply, comparison.main_source.flow))
     points = [*_test_points(supply, path), *_demand_points(comparison)]
-    return GraphData((*lines, demand), tuple(points))
+    for share in comparison.sources:
+        if share.node != comparison.principal:
+            more = _of_another(project, solution, comparison, share, by_node[share.node])
+            lines, points = [*lines, *more.lines], [*points, *more.points]
+    return GraphData((*lines, _demand_line(project, solution, comparison)), tuple(points))
+
+
+def _of_another(
+    project: Project, solution: Solution, comparison: Comparison, share: SourceShare, supply: NodeSupply
+) -> GraphData:
+    """Return lines and points of a source that is not the principal one."""
+    way, demanded, at = _way(project, solution, comparison, share)
+    place = f" at {at}" + (f", {share.node}" if share.node != at else "")
+    lines = _supply_lines(supply, way, _reach(supply, share.flow))
+    points = [*_test_points(supply, way), *_share_points(share, demanded, comparison.margin, place)]
+    return GraphData(tuple(replace(line, name=line.name + place) for line in lines), tuple(points))
+
+
+def _way(
+    project: Project, solution: Solution, comparison: Comparison, share: SourceShare
+) -> tuple[Route, float, str]:
+    """Return the route of another source, the demand [Pa] at its end, and the node of that end.
+
+    It ends at the point of comparison where water of this source can come there, else at its own node.
+    """
+    at, exponent = comparison.node, project.law.flow_exponent
+    try:
+        if share.flow > 0.0:
+            way = solved_route(project.system, solution, share.node, at, share.flow, exponent)
+            return way, comparison.demand_pressure, at
+    except DomainError:
+        pass
+    own = Route((), max(share.flow, 0.0), 0.0, 0.0, 0.0, 0.0, (), exponent)
+    return own, share.demand_pressure, share.node
+
+
+def _share_points(share: SourceShare, demanded: float, margin: float, place: str) -> list[MarkedPoint]:
+    """Return what one of several sources is asked for and what it has, at its own flow."""
+    if share.flow <= 0.0:
+        return []
+    return [
+        MarkedPoint(f"demand{place}", "demand with hose", share.flow, demanded),
+        MarkedPoint(f"available{place}", "available", share.flow, demanded + margin),
+    ]
 
 
 def _reach(supply: NodeSupply, flow: float) -> float:
@@ -132,12 +176,15 @@ def _demand_line(project: Project, solution: Solution, comparison: Comparison) -
     """Return the system's demand: from its height at no flow to the demand, then on by the hose."""
     levels = {node.tag: node.elevation for node in project.system.nodes}
     height = levels.get(solution.governing, levels[comparison.node]) - levels[comparison.node]
-    flow = comparison.demand_flow - comparison.hose_flow
+    several = len(comparison.sources) > 1
+    given = comparison.main_source.flow if several else comparison.demand_flow
+    hose = 0.0 if several else comparison.hose_flow
+    flow = given - hose
     start, end = project.fluid.unit_weight * height, comparison.demand_pressure
     flows: tuple[float, ...] = (0.0, flow)
     pressures: tuple[float, ...] = (start, end)
-    if comparison.hose_flow > 0.0:
-        flows, pressures = (*flows, comparison.demand_flow), (*pressures, end)
+    if hose > 0.0:
+        flows, pressures = (*flows, given), (*pressures, end)
     return CurveLine("demand", "demand", flows, pressures)
 
 
@@ -156,6 +203,10 @@ def _test_points(supply: NodeSupply, path: Route) -> list[MarkedPoint]:
 
 def _demand_points(comparison: Comparison) -> list[MarkedPoint]:
     pressure, total = comparison.demand_pressure, comparison.demand_flow
+    if len(comparison.sources) > 1:
+        main = comparison.main_source
+        place = f" at {comparison.node}" + (f", {main.node}" if main.node != comparison.node else "")
+        return _share_points(main, pressure, comparison.margin, place)
     points = [MarkedPoint("demand", "demand", total - comparison.hose_flow, pressure)]
     if comparison.hose_flow > 0.0:
         points.append(MarkedPoint("demand with hose", "demand with hose", total, pressure))

@@ -103,14 +103,16 @@ def route(
 ) -> tuple[tuple[Pipe, int], ...]:
     """Return the pipes from ``start`` to ``end`` with the fewest segments, each with its sense (±1).
 
+    No check valve is passed against its direction.
     Raises :class:`DomainError` where no open pipe leads there.
     """
     beside: dict[str, list[tuple[Pipe, str, int]]] = {}
+    held = {one.tag for one in system.devices if one.one_way or one.kind == "check valve"}
     for pipe in system.pipes:
         if pipe.valve == "closed" or pipe.tag in closed:
             continue
         beside.setdefault(pipe.start, []).append((pipe, pipe.end, 1))
-        if pipe.valve != "check":
+        if pipe.valve != "check" and held.isdisjoint(pipe.devices):
             beside.setdefault(pipe.end, []).append((pipe, pipe.start, -1))
     came: dict[str, tuple[Pipe, str, int]] = {}
     queue, seen = deque([start]), {start}

@@ -9,9 +9,11 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from supply_systems import Chain, flow_test, project_of, solve
 
-from supplycheck.model import Adjustment, MarginRule, Pipe, Project
+from supplycheck.errors import DomainError
+from supplycheck.model import Adjustment, Device, MarginRule, Pipe, Project
 from supplycheck.network import LoadCase, Solution, build_network, solve_demand
-from supplycheck.supply import compare, hose_loads, source_curves, supply_curves
+from supplycheck.supply import compare, curve_points, hose_loads, source_curves, supply_curves
+from supplycheck.supply.route import route
 from supplycheck.units import FOOT, GPM, INCH, PSI
 
 
@@ -110,3 +112,33 @@ def test_the_margin_stays_when_datum_or_place_moves(
     # The solver stops within its own tolerance: 2 Pa is 0.0003 psi.
     assert second.margin == pytest.approx(first.margin, abs=2.0)
     assert second.required == pytest.approx(first.required, abs=2.0)
+
+
+def test_every_source_has_its_lines_and_points_at_its_own_flow() -> None:
+    """A check valve in the first lead-in keeps the second source from its test node."""
+    project = two_supplies(Chain(compare_at="S"))
+    pipes = tuple(
+        replace(pipe, valve="check") if pipe.tag == "U" else pipe for pipe in project.system.pipes
+    )
+    project = replace(project, system=replace(project.system, pipes=pipes))
+    solution, curves = solved(project, 30 * PSI), supply_curves(project)
+    comparison = compare(project, solution, curves)
+    graph = curve_points(project, solution, curves, comparison)
+    assert {line.name for line in graph.lines} == {"T, as measured", "W, as measured at X", "demand"}
+    marked = {point.name: point for point in graph.points}
+    for share in comparison.sources:
+        available, demand = marked[f"available at {share.node}"], marked[f"demand at {share.node}"]
+        assert available.flow == demand.flow == share.flow
+        # The marker lies on the curve of its own source, within the solver's tolerance.
+        assert available.pressure == pytest.approx(share.available, abs=1.0)
+        assert available.pressure - demand.pressure == pytest.approx(comparison.margin, rel=1e-9)
+    demand_line = next(line for line in graph.lines if line.style == "demand")
+    assert demand_line.flows[-1] == comparison.main_source.flow
+
+
+def test_no_route_passes_a_check_valve_backwards() -> None:
+    valve = Device("backflow", "check valve", (0.0, 500 * GPM), (0.0, 9 * PSI), "maker")
+    system = project_of(Chain(device=valve)).system
+    assert [pipe.tag for pipe, _ in route(system, "S", "B")] == ["U"]
+    with pytest.raises(DomainError, match="no open pipe leads"):
+        route(system, "B", "S")

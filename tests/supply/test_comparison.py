@@ -254,8 +254,8 @@ def test_only_a_demand_solution_can_be_compared() -> None:
 def test_flow_at_20_psi_is_read_at_the_gauge() -> None:
     """NFPA 291: Qr = Qf (hr/hf)^0.54 with the drops as read at the gauge, whatever the height of the node.
 
-    82 psi static, 54 psi at 956 gpm: 956 × (62/28)^0.54 = 1469 gpm. The curve uses 1/1.85, the handbook 0.54
-    (0.1 % apart in the exponent): 5e-4 covers (62/28)^(1/1.85 − 0.54) = 1.00043.
+    82 psi static, 54 psi at 956 gpm: 956 × (62/28)^0.54 = 1469 gpm. The curve uses 1/1.85, the handbook
+    0.54 (0.1 % apart in the exponent): 5e-4 covers (62/28)^(1/1.85 − 0.54) = 1.00043.
     """
     by_hand = 956 * (62 / 28) ** 0.54
     for gauge in (3.0, -5.0, 60.0):
