@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from importlib.metadata import version as installed
@@ -10,7 +11,7 @@ from types import MappingProxyType
 from typing import Final
 
 from supplycheck import __version__, catalogue
-from supplycheck.checks import CheckContext, PumpRating, run_checks
+from supplycheck.checks import CheckContext, PumpRating, ScenarioFacts, run_checks
 from supplycheck.context import catalogue_c, class_figures, comparison_facts, reference_bores
 from supplycheck.demand import Candidates, demand_cases
 from supplycheck.duties import Ground, solve_duties, without_hose
@@ -28,7 +29,7 @@ from supplycheck.network import (
 from supplycheck.placements import Progress, only, try_all
 from supplycheck.project import read_project
 from supplycheck.results.assemble import Stages, assemble
-from supplycheck.results.records import Result
+from supplycheck.results.records import Result, ScenarioRow
 from supplycheck.scenarios import scenario_rows
 from supplycheck.supply import (
     Comparison,
@@ -85,10 +86,11 @@ def check(project: Project, progress: Progress | None = None) -> Result:
     favourable = tried.favourable is not None
     context = _context(project, candidates, governing, favourable)
     context = replace(context, pumps=pumps, needed_pump=needed, pump_ratings=_ratings(pumps))
-    context = replace(context, duties=duties.answer)
-    findings = run_checks(
-        context, None if own is governing else _context(project, candidates, own, favourable)
-    )
+    rows = scenario_rows(project, network, own.case, sources, own.operating)
+    facts = scenario_facts(own.case, rows)
+    context = replace(context, duties=duties.answer, scenarios=facts)
+    heads = None if own is governing else _context(project, candidates, own, favourable)
+    findings = run_checks(context, None if heads is None else replace(heads, scenarios=facts))
     return assemble(
         Stages(
             project=project,
@@ -98,7 +100,7 @@ def check(project: Project, progress: Progress | None = None) -> Result:
             solution=solution,
             comparison=comparison,
             graph=curve_points(drawn, solution, curves, comparison),
-            scenarios=scenario_rows(project, network, own.case, sources, own.operating),
+            scenarios=rows,
             findings=findings,
             version=__version__,
             library_versions=MappingProxyType({name: installed(name) for name in LIBRARIES}),
@@ -160,6 +162,18 @@ def _governing(solved: Sequence[_Solved]) -> _Solved:
 def _hydrant_rank(flow: float) -> tuple[str, str, str]:
     row = catalogue.hydrant_class(flow)
     return row.name, row.colour, row.source
+
+
+def scenario_facts(case: DemandCase, rows: Sequence[ScenarioRow]) -> tuple[ScenarioFacts, ...]:
+    """Return what the project's scenarios, all rows but the first, leave the heads of ``case``."""
+    asked = dict(zip(case.heads, case.required_flow, strict=True))
+    found = []
+    for row in rows[1:]:
+        shares = [(flow / asked[tag], tag) for tag, flow, _ in row.head_flows if asked.get(tag, 0.0) > 0.0]
+        share, head = min(shares, default=(None, ""))
+        solved = math.isfinite(row.total_flow)
+        found.append(ScenarioFacts(row.name, head, share, row.note, solved))
+    return tuple(found)
 
 
 def _context(project: Project, candidates: Candidates, solved: _Solved, favourable: bool) -> CheckContext:

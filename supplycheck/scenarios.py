@@ -49,7 +49,9 @@ def _solve(
     try:
         solution = solve_operating(network, load, sources, velocity_pressure=policy)
     except NotConvergedError as error:
-        return _empty(scenario.name, len(heads), f"no solution: {error}; {error.remedy}")
+        told = str(error)
+        told += "" if error.remedy in told else f"; {error.remedy}"
+        return _empty(scenario.name, len(heads), f"no solution: {told}")
     return _row(project, scenario.name, solution, case, heads, _what(scenario))
 
 

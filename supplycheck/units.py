@@ -58,6 +58,8 @@ _ALL: Final = (
     Unit("mbar", "pressure", 100.0, 0),
     Unit("kPa", "pressure", 1e3, 1, spellings=("kpa",)),
     Unit("Pa", "pressure", 1.0, 0, spellings=("pa",)),
+    Unit("psi imbalance", "imbalance", PSI, 3),
+    Unit("mbar imbalance", "imbalance", 100.0, 1),
     Unit("ft", "length", FOOT, 2, spellings=("feet", "foot", "'")),
     Unit("m", "length", 1.0, 2, spellings=("metre", "meter")),
     Unit("in", "size", INCH, 3, spellings=("inch", "inches", '"', "″")),
@@ -93,6 +95,7 @@ _ALL: Final = (
     Unit("", "ratio", 1.0, 3),
     Unit("%", "percent", 0.01, 1),
     Unit("years", "age", 1.0, 2),
+    Unit("months", "months", 1 / 12, 1),
 )
 
 
@@ -125,7 +128,7 @@ class UnitSet:
 
     def symbol(self, kind: str) -> str:
         """Return the printed symbol of the unit of ``kind`` (empty for a ratio)."""
-        return self.units[kind].symbol.removesuffix(" roughness")
+        return self.units[kind].symbol.removesuffix(" roughness").removesuffix(" imbalance")
 
     def number(self, value: float | None, kind: str, decimals: int | None = None) -> str:
         """Return ``value`` [SI] as displayed text without its unit; a dash for ``None``.
@@ -162,11 +165,13 @@ def _unit_set(name: str, symbols: str) -> UnitSet:
 
 US: Final = _unit_set(
     "us",
-    "gpm|psi|ft|in|ft²|gpm/ft²|ft/s|gpm/psi½|psi/ft|gal|lb/ft³|cP|°F|hp|min|ft roughness||%|years",
+    "gpm|psi|ft|in|ft²|gpm/ft²|ft/s|gpm/psi½|psi/ft|gal|lb/ft³|cP|°F|hp"
+    "|min|ft roughness||%|years|months|psi imbalance",
 )
 METRIC: Final = _unit_set(
     "metric",
-    "L/min|bar|m|mm|m²|mm/min|m/s|L/min/bar½|mbar/m|m³|kg/m³|cP|°C|kW|min|mm roughness||%|years",
+    "L/min|bar|m|mm|m²|mm/min|m/s|L/min/bar½|mbar/m|m³|kg/m³|cP|°C|kW"
+    "|min|mm roughness||%|years|months|mbar imbalance",
 )
 UNIT_SETS: Final = MappingProxyType({"us": US, "metric": METRIC})
 

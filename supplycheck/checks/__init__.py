@@ -1,6 +1,12 @@
 """The checks: one small pure function a rule, from a frozen context to a finding."""
 
-from supplycheck.checks.context import CheckContext, ClassFigures, ComparisonFacts, PumpRating
+from supplycheck.checks.context import (
+    CheckContext,
+    ClassFigures,
+    ComparisonFacts,
+    PumpRating,
+    ScenarioFacts,
+)
 from supplycheck.checks.registry import RULES, in_display_order, open_questions, run_checks
 from supplycheck.checks.rule import About, Rule
 
@@ -12,6 +18,7 @@ __all__ = [
     "ComparisonFacts",
     "PumpRating",
     "Rule",
+    "ScenarioFacts",
     "in_display_order",
     "open_questions",
     "run_checks",

@@ -6,7 +6,7 @@ from collections import defaultdict
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
-from supplycheck.checks.rule import About, Rule, flow, pressure
+from supplycheck.checks.rule import About, Rule, flow
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import FrictionLaw, Pipe
 
@@ -66,16 +66,17 @@ def pressures(context: CheckContext) -> Finding:
     tag = max(gaps, key=lambda one: gaps[one], default="")
     most = gaps.get(tag, 0.0)
     limit = limits.BALANCE_EN if context.european else limits.BALANCE_NFPA
-    figure = "1 mbar" if context.european else "{limit}"
     where = f", in {tag}" if tag else ""
-    return _judged(PRESSURE, pressure(most), pressure(limit), f"pressure{where}", figure, tag)
+    return _judged(
+        PRESSURE, Measure(most, "imbalance"), Measure(limit, "imbalance"), f"pressure{where}", tag
+    )
 
 
-def _judged(about: About, most: Measure, limit: Measure, what: str, figure: str, tag: str) -> Finding:
+def _judged(about: About, most: Measure, limit: Measure, what: str, tag: str) -> Finding:
     """The share is told, because the limit is about the last digit that is printed."""
     state: State = "ok" if most.value <= limit.value else "fail"
     values = {"share": Measure(most.value / limit.value, "percent")}
-    text = f"Largest disagreement of {what}: {{share}} of the {figure} allowed."
+    text = f"Largest disagreement of {what}: {{share}} of the {{limit}} allowed."
     do = "Do not use these results: the calculation contradicts itself." if state == "fail" else ""
     tags = (tag,) if tag else ()
     return about.says(state, text, measured=most, limit=limit, tags=tags, values=values, remedy=do)
@@ -95,7 +96,7 @@ def mass(context: CheckContext) -> Finding:
         net[pipe.end] += amount
     worst = max(net, key=lambda tag: abs(net[tag]))
     off, limit = abs(net[worst]), limits.BALANCE_FLOW_EN if context.european else limits.BALANCE_FLOW_NFPA
-    return _judged(MASS, flow(off), flow(limit), f"flow, at {worst}", "{limit}", worst)
+    return _judged(MASS, flow(off), flow(limit), f"flow, at {worst}", worst)
 
 
 RULES = (Rule(PRESSURE, pressures), Rule(MASS, mass))

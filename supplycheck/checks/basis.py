@@ -6,6 +6,7 @@ import re
 
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, count, some
+from supplycheck.checks.wording import in_words
 from supplycheck.findings import Finding
 
 EDITION = About(
@@ -22,14 +23,21 @@ AUTHORITY = About(
 )
 OCCUPANCY = About(
     "occupancy behind the hazard",
-    "whether the occupancy for which the hazard class is chosen is described",
-    ("ok", "missing"),
+    "whether the occupancy is described for which the hazard class is chosen; a person compares the two",
+    ("missing", "ask authority"),
     "NFPA 13, hydraulic data report: hazard description; a class too low is the commonest real error",
     weight=3,
 )
+DESIGNER = About(
+    "designer",
+    "whether somebody is named who takes responsibility for the design",
+    ("ok", "missing"),
+    "NFPA 13, hydraulic data report: name of the contractor or designer",
+    weight=1,
+)
 PLAN = About(
-    "every node on the plan",
-    "whether every node has its place in plan",
+    "coordinates of every node",
+    "whether every node has coordinates in plan; whether the figure shows it is not looked at",
     ("ok", "missing"),
     "NFPA 13, hydraulic data report: reference points on the plan",
     weight=1,
@@ -95,7 +103,20 @@ def occupancy(context: CheckContext) -> Finding:
         ask = f"What is done and stored in the building, how high, that {hazard} covers it?"
         return OCCUPANCY.says("missing", "Not run: no occupancy is described.", remedy=ask)
     short = told if len(told) <= _LONGEST else f"{told[:_LONGEST].rstrip()}…"
-    return OCCUPANCY.says("ok", f"{hazard[:1].upper()}{hazard[1:]} is chosen for: {short}.")
+    text = f"{hazard[:1].upper()}{hazard[1:]} is chosen (not judged here) for: {short}."
+    ask = f"Does {hazard} cover this occupancy: {short}?"
+    if context.european and context.hazard == "light":
+        ask += " Does every room keep to the size and fire resistance that light hazard asks?"
+    return OCCUPANCY.says("ask authority", text, remedy=ask)
+
+
+def designer(context: CheckContext) -> Finding:
+    """The name as typed."""
+    name = context.project.facts.designer.strip()
+    if not name:
+        ask = "Who takes responsibility for the design?"
+        return DESIGNER.says("missing", "Not run: no designer is named.", remedy=ask)
+    return DESIGNER.says("ok", f"Designed by {name}.")
 
 
 def plan(context: CheckContext) -> Finding:
@@ -103,9 +124,9 @@ def plan(context: CheckContext) -> Finding:
     bare = tuple(node.tag for node in context.project.system.nodes if node.x is None or node.y is None)
     if bare:
         ask = f"Where in plan do {some(bare)} lie?"
-        text = f"Not run: {len(bare)} nodes have no place in plan: {some(bare)}."
+        text = f"Not run: {len(bare)} nodes have no coordinates: {some(bare)}."
         return PLAN.says("missing", text, tags=bare, remedy=ask)
-    return PLAN.says("ok", "Every node has its place in plan.")
+    return PLAN.says("ok", "Every node has coordinates; whether the plan shows it is not looked at.")
 
 
 def friction(context: CheckContext) -> Finding:
@@ -168,9 +189,9 @@ def assumed(context: CheckContext) -> Finding:
     ]
     if not notes:
         return ASSUMED.says("ok", "No value is assumed.", measured=count(0))
-    told = some((f"{note.key} = {note.value}" for note in notes), show=3)
-    text = f"{{measured}} assumed: {told}."
-    ask = f"Are the assumed values right: {told}?"
+    told = [in_words(note.key, note.value) for note in notes]
+    text = f"{{measured}} assumed: {some(told, show=2)}."
+    ask = f"Are these assumed values right: {'; '.join(told)}?"
     keys = tuple(note.key for note in notes)
     return ASSUMED.says("ask authority", text, measured=count(len(keys)), tags=keys, remedy=ask)
 
@@ -185,6 +206,7 @@ def outside(context: CheckContext) -> Finding:
 RULES = (
     Rule(EDITION, edition),
     Rule(AUTHORITY, authority),
+    Rule(DESIGNER, designer),
     Rule(OCCUPANCY, occupancy),
     Rule(PLAN, plan),
     Rule(FRICTION, friction),

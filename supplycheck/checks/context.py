@@ -61,6 +61,21 @@ class PumpRating:
     pressure: float
 
 
+@dataclass(frozen=True, slots=True)
+class ScenarioFacts:
+    """What one scenario of the project leaves the heads of the design area.
+
+    ``share`` is the least discharge of a head over what it needs, at ``head``; ``None`` where no head of
+    the area is open in the scenario. ``note`` says what is shut, or why there is no solution.
+    """
+
+    name: str
+    head: str
+    share: float | None
+    note: str = ""
+    solved: bool = True
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class CheckContext:
     """Everything that a rule may look at.
@@ -72,7 +87,7 @@ class CheckContext:
     hand; ``reference_bores`` [m] by nominal size is the pipe for which the table of equivalent lengths is
     printed. ``no_flow`` [Pa] by node is the pressure with every outlet shut where it was solved. ``pumps``
     are the facts of every pump, ``needed_pump`` the one that would close a gap. ``duties`` is what was
-    found for standpipes and hydrants.
+    found for standpipes and hydrants, ``scenarios`` what each scenario of the project leaves the heads.
     """
 
     project: Project
@@ -91,6 +106,7 @@ class CheckContext:
     pumps: tuple[PumpAnswer, ...] = ()
     needed_pump: NeededPump | None = None
     duties: DutyAnswer = field(default_factory=DutyAnswer)
+    scenarios: tuple[ScenarioFacts, ...] = ()
     nodes: Mapping[str, Node] = field(init=False)
     kinds: Mapping[str, PipeKind] = field(init=False)
     sprinklers: Mapping[str, Sprinkler] = field(init=False)

@@ -57,11 +57,15 @@ def on_path(context: CheckContext) -> Finding:
 
 def fixed(context: CheckContext) -> Finding:
     """The largest fixed loss is shown."""
-    devices = {device.tag: device for _, device, _ in _flowing(context) if device.kind == "loss"}
+    devices = {
+        device.tag: device
+        for _, device, _ in _flowing(context)
+        if device.kind in ("loss", "check valve") and device.flows
+    }
     if not devices:
         return FIXED.says("not applicable", "No flow passes a device with a loss.")
     guessed = sorted(
-        (device for device in devices.values() if device.is_fixed_loss), key=lambda one: -one.values[0]
+        (device for device in devices.values() if len(device.flows) == 1), key=lambda one: -one.values[0]
     )
     if not guessed:
         return FIXED.says("ok", "Each device takes its loss from a curve.", tags=tuple(devices))

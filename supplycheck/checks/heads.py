@@ -156,7 +156,8 @@ def discharge(context: CheckContext) -> Finding:
         text = f"{worst.tag} is reported at {{measured}}; K√p of its pressure is {{limit}}."
         do = "Do not use these results: the calculation contradicts itself."
         return DISCHARGE.says("fail", text, measured=measured, limit=limit, tags=(worst.tag,), remedy=do)
-    return DISCHARGE.says("ok", "Every head discharges K√p.", measured=measured, limit=limit)
+    text = f"Every head discharges K√p; farthest off is {worst.tag}: {{measured}} against {{limit}}."
+    return DISCHARGE.says("ok", text, measured=measured, limit=limit, tags=(worst.tag,))
 
 
 def _widest(about: About, covered: dict[str, tuple[float, float]], whose: str) -> Finding:

@@ -15,7 +15,7 @@ DURATION = About(
     "duration of the hazard class in the adopted standard",
 )
 STORAGE = About(
-    "storage",
+    "water storage",
     "usable volume of each tank and its refill against demand times duration",
     ("ok", "fail", "ask authority", "missing", "not applicable"),
     "demand times duration (UFC practice 2006)",

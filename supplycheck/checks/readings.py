@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import datetime as dt
+
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.flow_test_common import NO_TEST, age, field_tests, last_day, no_reading, outlets_of
@@ -46,6 +48,10 @@ PUMPER = About(
 )
 
 
+def _months(first: dt.date, last: dt.date) -> Measure:
+    return Measure(age(first, last).value, "months")
+
+
 def age_of_test(context: CheckContext) -> Finding:
     """The clock runs from the test to the submittal; the oldest test counts."""
     supply = context.project.supply
@@ -54,15 +60,15 @@ def age_of_test(context: CheckContext) -> Finding:
     oldest = min(supply.tests, key=lambda test: test.date)
     tags = (oldest.tag,)
     months = supply.maximum_test_age_months
-    limit = None if months is None else Measure(months / 12, "age")
+    limit = None if months is None else Measure(months / 12, "months")
     submittal = supply.submittal_date
     if submittal is None:
-        old = age(oldest.date, context.project.facts.date)
+        old = _months(oldest.date, context.project.facts.date)
         said = f"{named(oldest.tag, start=True)} is {{measured}} old at the project's date."
         text = f"Not run: no submittal date. {said}"
         ask = "On which date are the documents submitted?"
         return TEST_AGE.says("missing", text, measured=old, limit=limit, tags=tags, remedy=ask)
-    old = age(oldest.date, submittal)
+    old = _months(oldest.date, submittal)
     newest = max(supply.tests, key=lambda test: test.date)
     if newest.date > submittal:
         text = (

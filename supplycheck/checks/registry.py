@@ -20,6 +20,8 @@ from supplycheck.checks import (
     pumps,
     pumps_and_tanks,
     readings,
+    scenarios,
+    standing,
     water_supply,
 )
 from supplycheck.checks.context import CheckContext
@@ -28,10 +30,12 @@ from supplycheck.findings import Finding, State
 
 RULES: Final[tuple[Rule, ...]] = (
     *water_supply.RULES,
+    *standing.RULES,
     *pumps_and_tanks.RULES,
     *pumps.RULES,
     *area.RULES,
     *heads.RULES,
+    *scenarios.RULES,
     *duties.RULES,
     *hose.RULES,
     *readings.RULES,
@@ -56,7 +60,7 @@ def run_checks(context: CheckContext, sprinklers: CheckContext | None = None) ->
     rules on heads, design area and hose look there. Where no sprinkler is open they are not applicable.
     """
     own = context if sprinklers is None else sprinklers
-    on_sprinklers = {rule.about.name for rule in (*area.RULES, *heads.RULES)}
+    on_sprinklers = {rule.about.name for rule in (*area.RULES, *heads.RULES, *scenarios.RULES)}
     on_hose = {rule.about.name for rule in hose.RULES}
     none_there = not context.project.criteria.has_sprinklers
     without = on_sprinklers if not own.case.heads else set()

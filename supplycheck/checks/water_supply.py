@@ -1,12 +1,14 @@
-"""Rules on supply against demand: tested range, adjustments, pressures with and without flow, margin."""
+"""Rules on supply against demand: tested range, adjustments, pressure left in the main, margin."""
 
 from __future__ import annotations
+
+from dataclasses import dataclass
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, named, pressure, some
 from supplycheck.findings import Finding, Measure, State
-from supplycheck.model import Pipe
+from supplycheck.model import FlowTest
 
 RANGE = About(
     "demand within the tested flow",
@@ -26,19 +28,6 @@ ADJUSTMENT = About(
     "whether the measured curve is lowered to the worst supply of day and year",
     ("ok", "ask authority", "not applicable"),
     "reviewers' practice, no source",
-)
-NO_FLOW = About(
-    "pressure without flow",
-    "static pressure at every node against the rating of the components",
-    ("ok", "fail", "ask authority"),
-    "NFPA 13: 175 psi; EN 12845: 12 bar (both from memory), or the rating given",
-    weight=3,
-)
-SPRINKLER_MAXIMUM = About(
-    "maximum sprinkler pressure",
-    "static pressure at every sprinkler against the maximum that its type states",
-    ("ok", "fail", "not applicable"),
-    "listing of the sprinkler",
 )
 FLOOR = About(
     "pressure left in the main",
@@ -62,29 +51,59 @@ MARGIN = About(
 )
 
 
-def tested_ratio(context: CheckContext) -> float | None:
-    """Return demand over the largest flow of the least test, ``None`` without a test."""
-    if context.comparison.tested_flow_ratio is not None:
-        return context.comparison.tested_flow_ratio
-    flows = [
-        max((point.flow for point in test.points), default=0.0) for test in context.project.supply.tests
-    ]
-    if not flows or min(flows) <= 0:
-        return None
-    return context.comparison.demand_flow / min(flows)
+@dataclass(frozen=True, slots=True)
+class Share:
+    """What one source with flow tests gives [m³/s], and that over the largest flow of its least test."""
+
+    node: str
+    tests: tuple[FlowTest, ...]
+    flow: float
+    ratio: float | None
+
+
+def tested_shares(context: CheckContext) -> tuple[Share, ...]:
+    """Return every source with flow tests at its own flow; a single source gives the whole demand."""
+    facts, solution = context.comparison, context.solution
+    by_node: dict[str, tuple[FlowTest, ...]] = {}
+    for test in context.project.supply.tests:
+        by_node[test.node] = (*by_node.get(test.node, ()), test)
+    given = {
+        tag: max(float(amount), 0.0)
+        for tag, amount in zip(solution.source_tags, solution.source_flow, strict=True)
+    }
+    principal = max(given, key=lambda tag: given[tag], default="")
+    shares = []
+    for node, tests in by_node.items():
+        amount = given.get(node, 0.0) if len(given) > 1 else facts.demand_flow
+        least = min(max((point.flow for point in test.points), default=0.0) for test in tests)
+        ratio = amount / least if least > 0 else None
+        if facts.tested_flow_ratio is not None and (len(given) < 2 or node == principal):
+            ratio = facts.tested_flow_ratio
+        shares.append(Share(node, tests, amount, ratio))
+    return tuple(shares)
 
 
 def tested_range(context: CheckContext) -> Finding:
-    """Ratio of demand to tested flow."""
-    if not context.project.supply.tests:
+    """Ratio of what each source gives to its tested flow; the greatest is told."""
+    tests = context.project.supply.tests
+    if not tests:
         return RANGE.says("not applicable", "No flow test feeds this system.")
-    ratio = tested_ratio(context)
-    tags = tuple(test.tag for test in context.project.supply.tests)
-    if ratio is None:
+    shares = tested_shares(context)
+    unread = [test.tag for share in shares if share.ratio is None for test in share.tests]
+    if unread:
+        tags = tuple(unread)
         ask = f"What was the largest flow of {named(*tags)}?"
         return RANGE.says("missing", "Not run: the test has no point with flow.", tags=tags, remedy=ask)
-    one, values = Measure(1.0, "percent"), {"demand": flow(context.comparison.demand_flow)}
-    text = "The demand of {demand} is {measured} of the tested flow"
+    worst = max(shares, key=lambda share: share.ratio or 0.0)
+    ratio = worst.ratio or 0.0
+    one, values = Measure(1.0, "percent"), {"demand": flow(worst.flow)}
+    who = (
+        "The demand of {demand}"
+        if len(context.solution.source_tags) < 2
+        else (f"What {worst.node} gives of the demand, {{demand}},")
+    )
+    tags = tuple(test.tag for test in (tests if len(shares) == 1 else worst.tests))
+    text = f"{who} is {{measured}} of the tested flow"
     measured = Measure(ratio, "percent")
     if ratio <= 1 + limits.ROUND_OFF:
         return RANGE.says("ok", f"{text}.", measured=measured, limit=one, values=values, tags=tags)
@@ -102,27 +121,35 @@ def tested_range(context: CheckContext) -> Finding:
 
 def small_drop(context: CheckContext) -> Finding:
     """Pressure inside the range is robust; flow carried on from a small drop is not."""
-    ratio = tested_ratio(context)
-    tests = [test for test in context.project.supply.tests if test.points and test.static > 0]
-    if ratio is None or not tests:
+    readable = [
+        (share, [test for test in share.tests if test.points and test.static > 0])
+        for share in tested_shares(context)
+        if share.ratio is not None
+    ]
+    if not any(tests for _, tests in readable):
         return SMALL_DROP.says("not applicable", "No flow test with a point to carry on from.")
-    if ratio <= 1 + limits.ROUND_OFF:
+    beyond = [(one, test) for one, tests in readable for test in tests if _is_beyond(one)]
+    if not beyond:
         return SMALL_DROP.says("not applicable", "The demand lies within the tested flow.")
 
-    def share(static: float, residuals: list[float]) -> float:
-        return 1 - min(residuals) / static
+    def drop(test: FlowTest) -> float:
+        return 1 - min(point.residual for point in test.points) / test.static
 
-    shares = {test.tag: share(test.static, [point.residual for point in test.points]) for test in tests}
-    tag = min(shares, key=lambda one: shares[one])
-    measured, limit = Measure(shares[tag], "percent"), Measure(limits.DROP_NOW, "percent")
-    values = {"ratio": Measure(ratio, "percent")}
+    share, test = min(beyond, key=lambda one: drop(one[1]))
+    tag, least = test.tag, drop(test)
+    measured, limit = Measure(least, "percent"), Measure(limits.DROP_NOW, "percent")
+    values = {"ratio": Measure(share.ratio or 0.0, "percent")}
     text = f"The curve of {named(tag)} is carried on to {{ratio}} of its flow from a drop of {{measured}}"
-    if shares[tag] < limits.DROP_NOW * (1 - limits.ROUND_OFF):
+    if least < limits.DROP_NOW * (1 - limits.ROUND_OFF):
         do = "Have the main tested at the demand flow: the extrapolated pressure is not reliable."
         return SMALL_DROP.says(
             "fail", f"{text}.", measured=measured, limit=limit, values=values, tags=(tag,), remedy=do
         )
     return SMALL_DROP.says("ok", f"{text}.", measured=measured, limit=limit, values=values, tags=(tag,))
+
+
+def _is_beyond(share: Share) -> bool:
+    return share.ratio is not None and share.ratio > 1 + limits.ROUND_OFF
 
 
 def adjustment(context: CheckContext) -> Finding:
@@ -142,95 +169,6 @@ def adjustment(context: CheckContext) -> Finding:
     else:
         text, measured = "The measured curve is lowered by {measured}.", pressure(first.pressure)
     return ADJUSTMENT.says("ok", text, measured=measured)
-
-
-def no_flow_pressures(context: CheckContext) -> dict[str, float]:
-    """Return the pressure [Pa] at each node without flow, walked from the point of comparison.
-
-    A pump adds its churn, a pressure-reducing valve holds its setting; shut pipes are not passed.
-    """
-    if context.no_flow is not None:
-        return dict(context.no_flow)
-    weight, found = context.project.fluid.unit_weight, {}
-    joined: dict[str, list[Pipe]] = {tag: [] for tag in context.nodes}
-    for pipe in context.project.system.pipes:
-        if pipe.valve != "closed":
-            joined[pipe.start].append(pipe)
-            joined[pipe.end].append(pipe)
-    found[context.comparison.node] = context.comparison.static_at_compare
-    row = [context.comparison.node]
-    for here in row:
-        for pipe in joined[here]:
-            there = pipe.end if pipe.start == here else pipe.start
-            if there not in found:
-                beyond = _past_devices(context, pipe, found[here], onward=pipe.start == here)
-                rise = context.nodes[there].elevation - context.nodes[here].elevation
-                found[there] = beyond - weight * rise
-                row.append(there)
-    return found
-
-
-def _past_devices(context: CheckContext, pipe: Pipe, value: float, *, onward: bool) -> float:
-    for tag in pipe.devices if onward else reversed(pipe.devices):
-        device = context.devices[tag]
-        if device.kind == "pump":
-            value += max(device.values, default=0.0) * (1 if onward else -1)
-        elif device.kind == "pressure-reducing valve" and device.setting is not None and onward:
-            value = min(value, device.setting)
-    return value
-
-
-def no_flow(context: CheckContext) -> Finding:
-    """The lowest node usually stands highest in pressure."""
-    criteria = context.project.criteria
-    given = criteria.maximum_pressure
-    limit = limits.COMPONENT_RATING[criteria.standard] if given is None else given
-    pressures = no_flow_pressures(context)
-    worst = max(pressures, key=lambda tag: pressures[tag])
-    over = [tag for tag, value in pressures.items() if value > limit * (1 + limits.ROUND_OFF)]
-    measured, allowed = pressure(pressures[worst]), pressure(limit)
-    text = f"Without flow {{measured}} stands at {worst}; components "
-    if not over:
-        return NO_FLOW.says(
-            "ok", f"{text}stand {{limit}}.", measured=measured, limit=allowed, tags=(worst,)
-        )
-    tags = tuple(sorted(over, key=lambda tag: -pressures[tag]))
-    if given is None:
-        ask = f"What pressure are the components at {some(tags)} rated for?"
-        return NO_FLOW.says(
-            "ask authority",
-            f"{text}usually stand {{limit}}.",
-            measured=measured,
-            limit=allowed,
-            tags=tags,
-            remedy=ask,
-        )
-    do = "Use components of a higher rating there, or a pressure-reducing valve."
-    return NO_FLOW.says(
-        "fail", f"{text}stand {{limit}}.", measured=measured, limit=allowed, tags=tags, remedy=do
-    )
-
-
-def sprinkler_maximum(context: CheckContext) -> Finding:
-    """Only types that state a maximum of their own."""
-    standing = no_flow_pressures(context)
-    most = {tag: one.maximum_pressure for tag, one in context.sprinklers.items()}
-    heads = [
-        (node.tag, limit)
-        for node in context.all_heads
-        if node.sprinkler and (limit := most.get(node.sprinkler)) is not None and node.tag in standing
-    ]
-    if not heads:
-        return SPRINKLER_MAXIMUM.says("not applicable", "No sprinkler type states a maximum of its own.")
-    tag, limit = max(heads, key=lambda one: standing[one[0]] / one[1])
-    over = tuple(one for one, most_ in heads if standing[one] > most_ * (1 + limits.ROUND_OFF))
-    state: State = "fail" if over else "ok"
-    do = "Use a sprinkler listed for that pressure, or reduce it." if over else ""
-    text = f"Without flow {{measured}} stands at sprinkler {tag}; its type is listed to {{limit}}."
-    measured, allowed = pressure(standing[tag]), pressure(limit)
-    return SPRINKLER_MAXIMUM.says(
-        state, text, measured=measured, limit=allowed, tags=over or (tag,), remedy=do
-    )
 
 
 def floor(context: CheckContext) -> Finding:
@@ -334,6 +272,4 @@ RULES = (
     Rule(ADJUSTMENT, adjustment),
     Rule(FLOOR, floor),
     Rule(CARRIED, carried),
-    Rule(NO_FLOW, no_flow),
-    Rule(SPRINKLER_MAXIMUM, sprinkler_maximum),
 )

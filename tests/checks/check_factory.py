@@ -270,6 +270,7 @@ def sound() -> CheckContext:
             "NFPA 13 (2022)",
             "county",
             occupancy="sorting of parcels",
+            designer="Ann Reyes",
         ),
         units="us",
         criteria=criteria,

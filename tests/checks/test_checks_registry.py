@@ -68,10 +68,11 @@ def test_open_questions_are_precise_and_weighty_first() -> None:
         }
     )
     asked = open_questions(run_checks(context))
-    assert "margin" in asked[0]
-    assert "low-supply" in asked[1]
-    assert asked[2] == "At what hour was test T-1 run?"
-    assert len(asked) == 3
+    assert asked[0].startswith("Does ") and asked[0].endswith("cover this occupancy: sorting of parcels?")
+    assert "margin" in asked[1]
+    assert "low-supply" in asked[2]
+    assert asked[3] == "At what hour was test T-1 run?"
+    assert len(asked) == 4
 
 
 def test_open_questions_are_asked_once_and_failures_ask_none() -> None:

@@ -17,7 +17,8 @@ from check_factory import DRY, EN, OPEN, QUICK, TEE, K, array_with, built
 from duty_factory import DUTY_CASES
 from pump_factory import NEEDED, OPTION, STATES, pumps, state, with_state
 
-from supplycheck.checks import RULES, PumpRating, run_checks
+from supplycheck.checks import RULES, PumpRating, ScenarioFacts, run_checks
+from supplycheck.checks.standing import no_flow_pressures
 from supplycheck.findings import Finding, State
 from supplycheck.model import (
     DARCY,
@@ -31,7 +32,8 @@ from supplycheck.model import (
     TestPoint,
 )
 from supplycheck.network.records import Solution
-from supplycheck.units import FOOT, GPM, INCH, PSI
+from supplycheck.results.display import finding_text
+from supplycheck.units import FOOT, GPM, INCH, METRIC, PSI, US
 
 BY_NAME = {rule.about.name: rule for rule in RULES}
 FIELD = re.compile(r"\{(\w+)\}")
@@ -74,6 +76,13 @@ WITH_REDUCER = {
     "project.system.pipes.R.devices": ("reducer",),
 }
 RESERVOIR = replace(TANK, kind="reservoir")
+
+FAR_SHUT = ScenarioFacts("far main shut", "H7", 1.13, "shut: F1")
+SHORT = replace(FAR_SHUT, name="cross main shut", share=0.57)
+NONE_THERE = ScenarioFacts("both shut", "", None, "no solution", solved=False)
+CHECK_VALVE = Device(
+    "backflow", "check valve", (0.0, 1000 * GPM), (2 * PSI, 8 * PSI), "maker", one_way=True
+)
 
 
 def tank_filled(refill: float) -> dict[str, Any]:
@@ -209,21 +218,28 @@ SUPPLY = [
     Case("duration", "ok", {}, 3600.0),
     Case("duration", "fail", {"project.criteria.duration": 1800.0}, 1800.0, 3600.0),
     Case("duration", "missing", {"project.criteria.duration": None}),
-    Case("storage", "not applicable"),
-    Case("storage", "ok", TANK_ONLY),
+    Case("water storage", "not applicable"),
+    Case("water storage", "ok", TANK_ONLY),
     Case(
-        "storage",
+        "water storage",
         "fail",
         TANK_ONLY | {"project.supply.tanks": (replace(TANK, volume=30000 * 231 * INCH**3),)},
     ),
     Case(
-        "storage",
+        "water storage",
         "missing",
         TANK_ONLY | {"project.supply.tanks": (replace(TANK, volume=None),)},
         tags=("tank",),
     ),
-    Case("storage", "missing", {"project.supply.tanks": (TANK,)}, tags=("tank",)),
-    Case("storage", "ask authority", BARELY, 420 * 60 * 231 * INCH**3, 500 * 60 * 231 * INCH**3, ("tank",)),
+    Case("water storage", "missing", {"project.supply.tanks": (TANK,)}, tags=("tank",)),
+    Case(
+        "water storage",
+        "ask authority",
+        BARELY,
+        420 * 60 * 231 * INCH**3,
+        500 * 60 * 231 * INCH**3,
+        ("tank",),
+    ),
     Case("tank refill", "not applicable"),
     Case("tank refill", "not applicable", NO_TEST | {"project.supply.tanks": (RESERVOIR,)}),
     Case("tank refill", "missing", TANK_ONLY, tags=("tank",)),
@@ -674,6 +690,9 @@ DEVICES = [
     Case("devices on the way", "ask authority", NO_DEVICE),
     Case("device loss at actual flow", "ok", {}, tags=("backflow",)),
     Case("device loss at actual flow", "ask authority", FIXED_LOSS, 5 * PSI, None, ("backflow",)),
+    Case(
+        "device loss at actual flow", "ok", {"project.system.devices": (CHECK_VALVE,)}, tags=("backflow",)
+    ),
     Case("device loss at actual flow", "not applicable", NO_DEVICE),
     Case("device curve range", "ok", {}, None, 1000 * GPM),
     Case(
@@ -859,10 +878,12 @@ BASIS = [
     ),
     Case("authority", "ok"),
     Case("authority", "missing", {"project.facts.authority": " "}),
-    Case("occupancy behind the hazard", "ok"),
+    Case("occupancy behind the hazard", "ask authority"),
+    Case("designer", "ok"),
+    Case("designer", "missing", {"project.facts.designer": " "}),
     Case("occupancy behind the hazard", "missing", {"project.facts.occupancy": " "}),
-    Case("every node on the plan", "ok"),
-    Case("every node on the plan", "missing", {"project.system.nodes.B.x": None}, tags=("B",)),
+    Case("coordinates of every node", "ok"),
+    Case("coordinates of every node", "missing", {"project.system.nodes.B.x": None}, tags=("B",)),
     Case("friction formula", "ok"),
     Case("friction formula", "ask authority", {"project.law": DARCY}),
     Case("friction formula", "ask authority", {"project.fluid.name": "propylene glycol 40 %"}),
@@ -874,6 +895,11 @@ BASIS = [
     Case("assumed values", "ok", {}, 0),
     Case("assumed values", "ask authority", {"project.assumptions": GUESS_GAUGE + GUESS_ELEVATION}, 2),
     Case("outside this calculation", "not applicable"),
+    Case("scenarios", "not applicable"),
+    Case("scenarios", "not applicable", {"scenarios": (ScenarioFacts("hydrants only", "", None),)}),
+    Case("scenarios", "ok", {"scenarios": (FAR_SHUT, replace(FAR_SHUT, share=1.02))}, 1.02, 1.0, ("H7",)),
+    Case("scenarios", "ask authority", {"scenarios": (SHORT, FAR_SHUT)}, 0.57, 1.0, ("H7",)),
+    Case("scenarios", "ask authority", {"scenarios": (FAR_SHUT, NONE_THERE)}, tags=("both shut",)),
 ]
 
 DUTIES = [Case(*one) for one in DUTY_CASES]
@@ -921,7 +947,93 @@ def test_every_state_of_every_rule_is_tried() -> None:
 
 
 def test_sound_project_leaves_nothing_open() -> None:
-    assert {one.state for one in run_checks(built({}))} == {"ok", "not applicable"}
+    """All but the class itself, which only a person can judge."""
+    found = run_checks(built({}))
+    assert {one.state for one in found} == {"ok", "not applicable", "ask authority"}
+    assert [one.check for one in found if one.state == "ask authority"] == ["occupancy behind the hazard"]
+
+
+def test_questions_speak_the_words_of_the_trade_and_leave_none_out() -> None:
+    notes = (
+        Assumption("criteria.velocity_limit", "off", "assumed", "practice"),
+        Assumption("criteria.maximum_pressure", "175.0 psi", "assumed", "practice"),
+        Assumption("supply.compare_at", "S", "assumed", "the supply node"),
+        Assumption("hose.outside_node", "{0}", "assumed", "the supply node"),
+    )
+    asked = BY_NAME["assumed values"].run(built({"project.assumptions": notes})).remedy
+    assert asked == (
+        "Are these assumed values right: no velocity limit; components rated 175.0 psi; "
+        "demand and supply compared at S; outside hose drawn at {0}?"
+    )
+
+
+def test_age_and_imbalance_are_told_in_the_units_of_their_rules() -> None:
+    """172 days are 5.7 months of 30.4 days; EN 12845 allows 1 mbar."""
+    found = BY_NAME["test age"].run(built({}))
+    assert (
+        finding_text(found, US) == "Test T-1 is 5.7 months old at submittal; up to 12.0 months is allowed."
+    )
+    balance = BY_NAME["pressure balance"].run(built(EN))
+    assert balance.limit is not None and METRIC.text(balance.limit.value, balance.limit.kind) == "1.0 mbar"
+    assert US.text(0.5 * PSI, balance.limit.kind) == "0.500 psi"
+
+
+def test_discharge_from_pressure_names_a_head() -> None:
+    found = BY_NAME["discharge from pressure"].run(built({}))
+    assert found.tags and found.tags[0] in OPEN and found.tags[0] in found.text
+
+
+def test_english_light_hazard_is_asked_with_its_conditions() -> None:
+    """EN 12845 (from memory): offices are light hazard only in limited, fire-resisting rooms."""
+    change = EN | {"project.criteria.hazard": "light hazard", "project.facts.occupancy": "offices"}
+    asked = BY_NAME["occupancy behind the hazard"].run(built(change)).remedy
+    assert (
+        asked.startswith("Does light hazard cover this occupancy: offices?") and "fire resistance" in asked
+    )
+
+
+def two_sources() -> dict[str, Any]:
+    """A second, weaker main at W feeds T through a check valve; it gives 100 gpm, S the rest."""
+    keeper = Device("keeper", "check valve", (0.0, 1000 * GPM), (0.0, PSI), "maker", one_way=True)
+
+    def nodes(old: Any) -> Any:
+        return (*old, replace(next(one for one in old if one.tag == "S"), tag="W", elevation=4 * FOOT))
+
+    def pipes(old: Any) -> Any:
+        lead = next(one for one in old if one.tag == "U")
+        return (*old, replace(lead, tag="V", start="W", end="B", devices=("keeper",)))
+
+    def more(state: Solution) -> Solution:
+        total = float(state.source_flow[0])
+        return replace(
+            state,
+            source_tags=("S", "W"),
+            source_flow=np.array([total - 100 * GPM, 100 * GPM]),
+            source_pressure=np.array([float(state.source_pressure[0])] * 2),
+        )
+
+    def tests(old: Any) -> Any:
+        weak = replace(old[0], tag="T-2", node="W", static=60 * PSI, gauge_elevation=4 * FOOT)
+        return (*old, replace(weak, points=(TestPoint(50 * PSI, 125 * GPM),)))
+
+    return {
+        "project.system.devices": lambda old: (*old, keeper),
+        "project.system.nodes": nodes,
+        "project.system.pipes": pipes,
+        "project.supply.tests": tests,
+        "solution": more,
+    }
+
+
+def test_each_of_several_sources_has_its_own_static_and_its_own_share() -> None:
+    """No water of S passes the check valve: W stands at its own 60 psi. 100 of 125 gpm tested is 80 %."""
+    context = built(two_sources())
+    standing = no_flow_pressures(context)
+    assert standing["W"] == pytest.approx(60 * PSI)
+    assert standing["S"] == pytest.approx(80 * PSI)
+    found = BY_NAME["demand within the tested flow"].run(context)
+    assert found.measured is not None and found.measured.value == pytest.approx(0.8)
+    assert found.tags == ("T-2",) and found.values["demand"].value == pytest.approx(100 * GPM)
 
 
 def test_sound_project_balances_to_the_printed_form() -> None:
