@@ -12,6 +12,7 @@ _WORDS: Final = (
     (r"criteria: (.+)", "{0} {value}"),
     (r"fluid\.temperature", "fluid at {value}"),
     (r"network\.fittings", "fittings {value}"),
+    (r"fittings: (.+)", "{0} read as {value}"),
     (r"hose\.outside", "outside hose {value}"),
     (r"hose\.outside_node", "outside hose drawn at {value}"),
     (r"supply\.compare_at", "demand and supply compared at {value}"),

@@ -21,6 +21,7 @@ from supplycheck.project.quantity import NumberError, read_number
 from supplycheck.units import UnitSet
 
 _PART: Final = re.compile(r"(?:(\d{1,4})\s*(?:[x×]\s*)?(?=\D))?\s*(.+?)\s*(?:[:=]\s*(.+))?", re.IGNORECASE)
+_SWING: Final = "swing check valve"
 _NONE: Final = ("none", "-", "–", "0")
 
 
@@ -82,10 +83,14 @@ def _own_value(
 
 
 class Lengths:
-    """Equivalent lengths under one standard; each (fitting, size) is looked up once."""
+    """Equivalent lengths under one standard; each (fitting, size) is looked up once.
+
+    ``read_as_swing`` collects valves written without their type where the standard prints two.
+    """
 
     def __init__(self, standard: str, extra: catalogue.ExtraRows, faults: FaultList) -> None:
         self.standard, self.extra, self.faults = standard, extra, faults
+        self.read_as_swing: dict[str, None] = {}
         self._rows: dict[tuple[str, str], catalogue.FittingRow | NotInCatalogueError] = {}
         self._factors: dict[tuple[float | None, float, float | None, float], tuple[float, float]] = {}
 
@@ -165,6 +170,8 @@ class Lengths:
         if isinstance(row, NotInCatalogueError):
             self._note(row, written.name, size.nominal, place)
             return None
+        if row.name == _SWING and self.standard.startswith("EN") and "swing" not in written.name.casefold():
+            self.read_as_swing[written.name] = None
         of_c, of_bore = self._factor(size, row.reference_c, row.reference_bore)
         length = row.length * count * (of_c * of_bore)
         return Fitting(row.name, count, row.length, length, 0.0, origin, row.source, node, of_c, of_bore)

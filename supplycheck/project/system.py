@@ -268,6 +268,9 @@ def finish(
         _note_idle_devices(draft.pipes, finisher, faults)
     if not faults:
         _note_inferred(pipes, notes)
+        for name in finisher.lengths.read_as_swing:
+            source = "CEA 4001 table G2: a valve of the mushroom type counts about five times as long"
+            notes.add(f"fittings: {name}", "swing type", "assumed", source)
         _note_bores(draft.pipes, pipes, finisher.sources, UNIT_SETS[finisher.sections.units], notes)
     return System(
         nodes=draft.nodes,

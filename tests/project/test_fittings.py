@@ -9,6 +9,7 @@ from project_texts import HEAD, NETWORK, faults, read
 
 from supplycheck.findings import Place
 from supplycheck.model import Pipe, Project
+from supplycheck.project import read_project
 from supplycheck.project.faults import FaultList
 from supplycheck.project.fittings import WrittenFitting, parse
 from supplycheck.units import FOOT, US
@@ -170,3 +171,18 @@ def test_geometry_needs_coordinates(tmp_path: Path) -> None:
     found = faults(tmp_path, GEOMETRY, nodes, "from,to,length,kind,size\nS,A,10,lines,2\nA,H,10,lines,2\n")
     assert len(found) == 1
     assert "direction of a pipe is not known" in found[0].problem
+
+
+@pytest.mark.parametrize(
+    ("written", "told"),
+    [("1 alarm valve", ["alarm valve"]), ("1 alarm valve swing", []), ("1 mushroom check valve", [])],
+)
+def test_a_valve_without_its_type_is_an_assumption(tmp_path: Path, written: str, told: list[str]) -> None:
+    """CEA 4001 table G2, same as EN 12845 table 23: DN 100 swinging type 5.07 m, mushroom type 25 m."""
+    text = Path(__file__).parents[2].joinpath("examples", "office-floor", "project.toml").read_text("utf-8")
+    assert "1 alarm valve" in text
+    path = tmp_path / "project.toml"
+    path.write_text(text.replace("1 alarm valve", written), encoding="utf-8")
+    notes = [note for note in read_project(path).assumptions if note.key.startswith("fittings: ")]
+    assert [note.key for note in notes] == [f"fittings: {name}" for name in told]
+    assert all((note.value, note.origin) == ("swing type", "assumed") for note in notes)
