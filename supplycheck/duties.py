@@ -76,6 +76,11 @@ def solve_duties(ground: Ground, sprinklers: DemandCase | None) -> DutyResult:
     return DutyResult(answer, _candidates(solved))
 
 
+def _left(summary: DemandSummary) -> float:
+    """Return the margin [Pa] without round-off, so that of like cases the first listed is kept."""
+    return round(summary.shift, 2)
+
+
 def _candidates(
     solved: Sequence[tuple[DutyCase, DemandSummary]],
 ) -> tuple[tuple[DemandCase, DemandSummary], ...]:
@@ -87,7 +92,7 @@ def _candidates(
     hardest: dict[tuple[str, str, float], tuple[DemandCase, DemandSummary]] = {}
     for one, summary in solved:
         key = (one.case.duty, one.kind, round(summary.total_flow, 9))
-        if one.counts and (key not in hardest or summary.shift < hardest[key][1].shift):
+        if one.counts and (key not in hardest or _left(summary) < _left(hardest[key][1])):
             hardest[key] = (one.case, summary)
     return tuple(hardest.values())
 
@@ -155,7 +160,9 @@ def _hardest_of_each(
         else:
             members = (*one.members, *one.case.closed_pipes)
         groups.setdefault((one.case.duty, one.kind, *members), []).append((one, summary))
-    return [(*min(group, key=lambda pair: pair[1].shift), len(group)) for group in groups.values() if group]
+    return [
+        (*min(group, key=lambda pair: _left(pair[1])), len(group)) for group in groups.values() if group
+    ]
 
 
 def _row(ground: Ground, one: DutyCase, summary: DemandSummary, tried: int) -> DutyRow:
@@ -270,7 +277,7 @@ def _connection(ground: Ground, cases: Sequence[DutyCase]) -> ConnectionRow | No
     except NotConvergedError as error:
         nothing = math.nan
         return ConnectionRow(duty.connection, nothing, nothing, "", "", f"no solution: {error}")
-    place = max(range(len(answers)), key=lambda row: answers[row].source_pressure)
+    place = max(range(len(answers)), key=lambda row: round(answers[row].source_pressure, 2))
     return ConnectionRow(
         node=duty.connection,
         pressure=answers[place].source_pressure,

@@ -73,10 +73,10 @@ def test_every_case_stands_in_the_table_with_the_numbers_of_the_record() -> None
 def test_the_governing_case_is_the_hardest_that_counts() -> None:
     for name in (YARD, TOWER):
         found = record_of(name)
-        hardest = min(
-            (case for case in found["duties"]["cases"] if case["counts"]), key=lambda case: case["margin"]
-        )
-        assert found["governs"].endswith(f" in {hardest['label']}")
+        counted = [case for case in found["duties"]["cases"] if case["counts"]]
+        (hardest,) = [case for case in counted if found["governs"].endswith(f" in {case['label']}")]
+        # two standpipes of the tower stand alike: a millionth of a psi is round-off
+        assert hardest["margin"] <= min(case["margin"] for case in counted) + 1e-6
         assert found["margin"]["pressure"] == pytest.approx(hardest["margin"], rel=1e-6)
         assert found["demand"]["flow"] == pytest.approx(hardest["flow"], rel=1e-9)
         assert found["demand"]["outlet_flow"] == pytest.approx(hardest["flow"], rel=1e-9)
