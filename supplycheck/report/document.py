@@ -94,9 +94,10 @@ class Tile:
 
 @dataclass(frozen=True, slots=True)
 class Verdict:
-    """The answer in one look: the word, the sentence, the large numbers."""
+    """The answer in one look: the title (``word`` gives its colour), the sentence, the large numbers."""
 
     word: Literal["adequate", "not adequate", "undetermined"]
+    title: str
     sentence: str
     tiles: tuple[Tile, ...]
 

@@ -30,7 +30,7 @@ h2 {{ color: {PETROL}; border-bottom: 2px solid {PETROL}; margin-top: 2.2em; }}
 h3, caption {{ color: {PETROL}; font-weight: bold; font-size: 1em; text-align: left; padding: .4em 0; }}
 .quiet, footer {{ color: {SLATE}; font-size: .85em; }}
 .verdict {{ color: #fff; padding: .8em 1.1em; margin-top: 1em; }}
-.verdict strong {{ font-size: 1.7em; display: block; text-transform: uppercase; }}
+.verdict strong {{ font-size: 1.7em; display: block; }}
 .tiles {{ display: flex; flex-wrap: wrap; background: {MIST}; }}
 .tiles div {{ flex: 1 1 11em; padding: .7em 1.1em; }}
 .tiles b {{ display: block; font-size: 1.5em; }}
@@ -118,7 +118,7 @@ def _verdict(block: Verdict) -> str:
     )
     colour = VERDICT_COLOURS[block.word]
     return (
-        f'<div class="verdict" style="background:{colour}"><strong>{_safe(block.word)}</strong>'
+        f'<div class="verdict" style="background:{colour}"><strong>{_safe(block.title)}</strong>'
         f'{_safe(block.sentence)}</div><div class="tiles">{tiles}</div>'
     )
 

@@ -176,7 +176,7 @@ def _verdict(sheets: Sheets, block: Verdict) -> None:
     sheets.y -= height
     x, y = sheets.left, sheets.y
     items: list[Item] = [Box(x, y, sheets.room, height, fill=colour)]
-    items.append(_label(x + 14, y + height - 26, block.word.upper(), 20.0, colour=PAPER, bold=True))
+    items.append(_label(x + 14, y + height - 26, block.title, 16.0, colour=PAPER, bold=True))
     for place, line in enumerate(sentence):
         items.append(_label(x + 14, y + height - 42 - place * 12.2, line, 8.8, colour=PAPER))
     if block.word == "not adequate":

@@ -3,11 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from types import MappingProxyType
-from typing import Final
 
 from supplycheck.report.document import Column, Row, Table
-from supplycheck.results.display import value_text
+from supplycheck.results.display import nominal_text, residual_text, step_text, value_text
 from supplycheck.results.records import HandStep, Result
 from supplycheck.units import UNIT_SETS, UnitSet
 
@@ -42,9 +40,13 @@ class Show:
         """Return the symbol of the unit."""
         return self.units.symbol(kind)
 
+    def nominal(self, nominal: str) -> str:
+        """Return a nominal size that cannot be misread, ``DN 100`` or ``4 in`` in a metric project."""
+        return nominal_text(nominal, self.units)
+
     def small(self, value: float, kind: str) -> str:
-        """Return a residual of the calculation as a power of ten with its unit."""
-        return f"{self.units.from_si(value, kind):.1e}".replace("e-0", "e-") + f" {self.s(kind)}"
+        """Return a residual of the calculation with its unit."""
+        return residual_text(value, kind, self.units)
 
 
 def column(title: str, unit: str = "") -> Column:
@@ -57,17 +59,9 @@ def words(title: str) -> Column:
     return Column(title, wrap=True)
 
 
-# Decimals of steps where a step does not say its own: pressures close to a hundredth of a psi.
-STEP_DECIMALS: Final = MappingProxyType({"us": {"pressure": 2}, "metric": {"pressure": 3}})
-
-
 def steps_table(title: str, steps: Iterable[HandStep], show: Show) -> Table:
     """Return steps as a table: what is worked out, the formula with its numbers, the result."""
-    usual = STEP_DECIMALS[show.units.name]
-    rows = tuple(
-        Row((step.step, step.formula, _step_result(step, show, usual.get(step.kind))), note=step.note)
-        for step in steps
-    )
+    rows = tuple(Row((step.step, step.formula, _step_result(step, show)), note=step.note) for step in steps)
     columns = (
         Column("Step", wrap=True, share=0.34),
         Column("Formula and numbers", wrap=True, share=0.5),
@@ -76,8 +70,10 @@ def steps_table(title: str, steps: Iterable[HandStep], show: Show) -> Table:
     return Table(title, columns, rows, empty="no steps recorded")
 
 
-def _step_result(step: HandStep, show: Show, usual: int | None) -> str:
-    return show.t(step.value, step.kind, usual if step.decimals is None else step.decimals)
+def _step_result(step: HandStep, show: Show) -> str:
+    if step.decimals is None:
+        return step_text(step.value, step.kind, show.units)
+    return show.t(step.value, step.kind, step.decimals)
 
 
 def given(text: str) -> str:

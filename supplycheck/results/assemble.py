@@ -14,7 +14,7 @@ from supplycheck.model import DemandCase, Project
 from supplycheck.model.duty import DutyAnswer
 from supplycheck.network import Solution
 from supplycheck.results.balance import balance_of
-from supplycheck.results.display import value_text
+from supplycheck.results.display import step_text, value_text
 from supplycheck.results.path import hand_check, path_to_supply
 from supplycheck.results.records import (
     CurvePoints,
@@ -90,6 +90,9 @@ def assemble(stages: Stages) -> Result:
     def show(value: float, kind: str) -> str:
         return value_text(value, kind, units)
 
+    def fine(value: float, kind: str) -> str:
+        return step_text(value, kind, units)
+
     nodes = node_rows(project, stages.case, solution)
     pipes = pipe_rows(project, solution)
     path = path_to_supply(nodes, pipes, solution.governing, solution.source_tags)
@@ -103,8 +106,8 @@ def assemble(stages: Stages) -> Result:
         verdict_text=_verdict_text(verdict, comparison, solution, show),
         governs=_governs(nodes, solution.governing, stages.case, show),
         demand=_demand(comparison, nodes, solution, stages.case),
-        supply=_supply(comparison, show),
-        margin=_margin(comparison, show),
+        supply=_supply(comparison, show, fine),
+        margin=_margin(comparison, show, fine),
         balance=balance,
         design_area=_design_area(stages, show),
         nodes=nodes,
@@ -195,7 +198,7 @@ def _demand(
     )
 
 
-def _supply(comparison: Comparison, show: Show) -> SupplyRecord:
+def _supply(comparison: Comparison, show: Show, fine: Show) -> SupplyRecord:
     main = comparison.main_source
     static = main.test_static if main.test_static is not None else comparison.static
     return SupplyRecord(
@@ -208,18 +211,18 @@ def _supply(comparison: Comparison, show: Show) -> SupplyRecord:
         flow_at_20_psi=comparison.flow_at_20_psi,
         static_at_comparison=comparison.static,
         tested_range_ratio=main.tested_ratio,
-        steps=_filled(comparison.supply_steps, show),
+        steps=_filled(comparison.supply_steps, fine),
         statement=" ".join(note.fill(show) for note in comparison.notes),
     )
 
 
-def _margin(comparison: Comparison, show: Show) -> MarginRecord:
+def _margin(comparison: Comparison, show: Show, fine: Show) -> MarginRecord:
     return MarginRecord(
         pressure=comparison.margin,
         required=comparison.required,
         after_rule=comparison.after_rule,
         rule=comparison.rule.fill(show),
-        steps=_filled(comparison.margin_steps, show),
+        steps=_filled(comparison.margin_steps, fine),
         source=comparison.rule_source,
     )
 

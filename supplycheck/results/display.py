@@ -14,11 +14,25 @@ from typing import Final
 
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model.duty import DutyAnswer
-from supplycheck.results.records import DemandRecord, DesignAreaRecord
+from supplycheck.results.records import DemandRecord, DesignAreaRecord, Result
 from supplycheck.units import UnitSet
 
 STATES: Final[tuple[State, ...]] = ("fail", "missing", "ask authority", "ok", "not applicable")
 """The states of a finding in the order in which they are shown: what needs action first."""
+
+VERDICT_TITLES: Final = MappingProxyType(
+    {
+        "adequate": "Supply adequate – for the values entered",
+        "not adequate": "Supply not adequate – for the values entered",
+        "undetermined": "Undetermined – for the values entered",
+    }
+)
+"""The verdict in a line: it holds for the input, it is no approval."""
+
+STEP_DECIMALS: Final = MappingProxyType({"us": 2, "metric": 3})
+"""Decimals of a pressure in steps, so that their sums close."""
+
+SMALLEST_DN: Final = 15
 
 STATE_TITLES: Final = MappingProxyType(
     {
@@ -63,10 +77,69 @@ def value_text(value: float | None, kind: str, units: UnitSet) -> str:
     if value is None:
         return "–"
     if kind in units.units:
-        return units.text(value, kind)
+        return _never_nothing(value, kind, units) or units.text(value, kind)
     if not math.isfinite(value):
         return "–"
     return f"{value:.6g}".replace("-", "−")
+
+
+def _never_nothing(value: float, kind: str, units: UnitSet) -> str:
+    """Return ``< 0.001 psi`` for a value that is not zero but would print as zero, else nothing."""
+    shown = units.number(value, kind)
+    if value <= 0 or not math.isfinite(value) or any(digit in shown for digit in "123456789"):
+        return ""
+    least = 10.0 ** -units.unit(kind).decimals
+    return f"< {least:.{units.unit(kind).decimals}f} {units.symbol(kind)}".rstrip()
+
+
+def residual_text(value: float, kind: str, units: UnitSet) -> str:
+    """Return what is left over in the calculation, to three decimals, ``< 0.001`` below them.
+
+    >>> from supplycheck.units import US
+    >>> residual_text(1e-12, "pressure", US)
+    '< 0.001 psi'
+    """
+    number = units.from_si(value, kind)
+    shown = "< 0.001" if 0 <= number < 0.0005 else f"{number:.3f}"
+    return f"{shown} {units.symbol(kind)}"
+
+
+def step_text(value: float | None, kind: str, units: UnitSet) -> str:
+    """Return ``value`` as :func:`value_text`, pressures with the decimals that steps need to close."""
+    if value is None or kind != "pressure":
+        return value_text(value, kind, units)
+    return units.text(value, kind, STEP_DECIMALS[units.name])
+
+
+def nominal_text(nominal: str, units: UnitSet) -> str:
+    """Return a nominal size so that it cannot be misread: ``DN 100``, ``4 in`` in metric projects.
+
+    >>> from supplycheck.units import METRIC, US
+    >>> nominal_text("100", METRIC), nominal_text("4", METRIC), nominal_text("4", US)
+    ('DN 100', '4 in', '4')
+    """
+    if units.name != "metric" or not re.fullmatch(r"[\d. /]+", nominal):
+        return nominal
+    return f"DN {nominal}" if nominal.isdigit() and int(nominal) >= SMALLEST_DN else f"{nominal} in"
+
+
+def passing(result: Result) -> float:
+    """Return the flow [m³/s] that passes the point of comparison in the demand solution."""
+    node = result.demand.node
+    arriving = sum(pipe.flow for pipe in result.pipes if pipe.end == node)
+    leaving = sum(pipe.flow for pipe in result.pipes if pipe.start == node)
+    drawn = sum(row.discharge for row in result.nodes if row.tag == node)
+    return max(arriving, leaving + drawn)
+
+
+def demand_text(result: Result, units: UnitSet) -> str:
+    """Return the flow of the demand in words: how much in all, and how much of it passes the node."""
+    demand = result.demand
+    text = f"{units.text(demand.flow, 'flow')} in all"
+    here = passing(result)
+    if here and abs(here - demand.flow) > 1e-6 * demand.flow:
+        text += f", of which {units.text(here, 'flow')} pass {demand.node}"
+    return text
 
 
 def fill(text: str, finding: Finding, units: UnitSet) -> str:

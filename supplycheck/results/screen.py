@@ -7,11 +7,14 @@ from collections.abc import Sequence
 from typing import Final
 
 from supplycheck.results.display import (
+    VERDICT_TITLES,
     area_text,
     counts_text,
     demand_parts,
+    demand_text,
     duties_text,
     finding_text,
+    residual_text,
     visible,
 )
 from supplycheck.results.records import Result
@@ -30,7 +33,7 @@ def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
     """
     units = UNIT_SETS[result.project.units]
     title = _wrapped("", result.project.facts.title, 1)
-    head = [*title, *_wrapped("", f"{result.verdict.upper()}: {result.verdict_text}", 2), ""]
+    head = [*title, *_wrapped("", f"{_headline(result)}: {result.verdict_text}", 2), ""]
     body = [line for label, text, most in _entries(result, units) for line in _wrapped(label, text, most)]
     tail = _files([files] if isinstance(files, str) else files) if files else []
     room = LINES - len(head) - len(body) - len(tail)
@@ -52,12 +55,12 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         read = f"test: static {_t(units, supply.static)}, {residual}"
     asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
     after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
-    flow_gap = f"{units.from_si(balance.largest_flow_imbalance, 'flow'):.0e} {units.symbol('flow')}"
-    gap = f"{units.from_si(balance.largest_pressure_imbalance, 'pressure'):.0e} {units.symbol('pressure')}"
+    flow_gap = residual_text(balance.largest_flow_imbalance, "flow", units)
+    gap = residual_text(balance.largest_pressure_imbalance, "pressure", units)
     return [
         (
             "Demand",
-            f"{_t(units, demand.pressure)} at {_t(units, demand.flow, 'flow')} at {demand.node} ({parts})",
+            f"{_t(units, demand.pressure)} at {demand.node}, {demand_text(result, units)} ({parts})",
             2,
         ),
         (
@@ -69,9 +72,14 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ("Rule", margin.rule, 2),
         ("Governs", result.governs, 2),
         *_asked(result),
-        ("Balance", f"flows within {flow_gap}, pressures within {gap}", 1),
+        ("Balance", f"flows disagree by {flow_gap}, pressures by {gap}", 1),
         ("Findings", counts_text(result.findings), 2),
     ]
+
+
+def _headline(result: Result) -> str:
+    word, _, rest = VERDICT_TITLES[result.verdict].partition(" – ")
+    return f"{word.upper()} ({rest})"
 
 
 def _asked(result: Result) -> list[tuple[str, str, int]]:

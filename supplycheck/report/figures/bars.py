@@ -8,6 +8,7 @@ from typing import Final
 from supplycheck.report.drawing import Box, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import finite, plain, round_steps, short
 from supplycheck.report.theme import CLAY, INK, LAGOON, MIST, PETROL, RULE, SAND, SLATE, text_width
+from supplycheck.results.display import nominal_text
 from supplycheck.results.records import PathStep, Result
 from supplycheck.units import UnitSet
 
@@ -79,7 +80,9 @@ def _step_row(number: int, step: PathStep, x: Scale, y: float, units: UnitSet) -
     name = f"{number}  {short(step.start, 58, 6.6)} to {short(step.end, 58, 6.6)}"
     items: list[Item] = [
         Label(0, y + 3.5, name, 6.6),
-        Label(_NAMES - 8, y + 3.5, short(step.nominal, 34, 6.6), 6.6, "end", colour=SLATE),
+        Label(
+            _NAMES - 8, y + 3.5, short(nominal_text(step.nominal, units), 34, 6.6), 6.6, "end", colour=SLATE
+        ),
     ]
     at = finite(step.pressure_start)
     reach = x(at)

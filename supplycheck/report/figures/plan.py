@@ -10,6 +10,7 @@ from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Reach, Taken, plain, put_label, round_steps, short
 from supplycheck.report.figures.outline import Window, cells_of_heads, clipped, outline_of
 from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, SAND, SLATE, text_width
+from supplycheck.results.display import nominal_text
 from supplycheck.results.records import NodeRow, PipeRow, Result
 from supplycheck.units import UnitSet
 
@@ -343,7 +344,8 @@ def size_legend(pipes: tuple[PipeRow, ...], units: UnitSet, width: float) -> Dra
     placed: list[tuple[float, int, str, str]] = []
     for nominal in strokes:
         bores = sorted({pipe.bore for pipe in pipes if pipe.nominal == nominal})
-        text = f"{short(nominal, 120, 6.6)} ({' / '.join(units.text(bore, 'size') for bore in bores[:3])})"
+        inside = " / ".join(units.text(bore, "size") for bore in bores[:3])
+        text = f"{short(nominal_text(nominal, units), 120, 6.6)} ({inside})"
         wide = 32 + text_width(text, 6.6)
         if x + wide > width and x > 0:
             x, rows = 0.0, rows + 1

@@ -8,7 +8,15 @@ from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph
 from supplycheck.report.figures.bars import answer_bars
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, given
-from supplycheck.results.display import area_text, counts_text, demand_parts, duties_text, finding_text
+from supplycheck.results.display import (
+    VERDICT_TITLES,
+    area_text,
+    counts_text,
+    demand_parts,
+    demand_text,
+    duties_text,
+    finding_text,
+)
 from supplycheck.results.records import Result
 
 MOST_QUESTIONS: Final = 6
@@ -19,7 +27,7 @@ def answer(result: Result, width: float) -> Section:
     """Return the first page."""
     show = Show.of(result)
     blocks: list[Block] = [
-        Verdict(result.verdict, result.verdict_text, _tiles(result, show)),
+        Verdict(result.verdict, VERDICT_TITLES[result.verdict], result.verdict_text, _tiles(result, show)),
         Figure("", answer_bars(result, show.units, width)),
         Facts(_reasons(result, show)),
         Facts(_standing(result, show), columns=2),
@@ -55,15 +63,19 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
         Tile(
             "Demand",
             show.t(demand.pressure, "pressure"),
-            f"at {show.t(demand.flow, 'flow')} ({hose}), at {demand.node}",
+            f"at {demand.node}; {demand_text(result, show.units)} ({hose})",
         ),
         Tile(
             "Available",
             show.t(supply.available_pressure, "pressure"),
-            f"at {show.t(demand.flow, 'flow')}; static there "
+            f"at {demand.node} at that flow; static there "
             f"{show.t(supply.static_at_comparison, 'pressure')}",
         ),
-        Tile("Margin before the rule", show.signed(margin.pressure, "pressure"), "available − demand"),
+        Tile(
+            "Margin before the rule",
+            show.signed(margin.pressure, "pressure"),
+            "available − demand, before rounding",
+        ),
         Tile("Left after the rule", after, f"the rule asks {asked}"),
     )
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from supplycheck.model import Criteria, Project, Sprinkler
-from supplycheck.report.document import Block, Facts, Heading, Row, Section, Table
+from supplycheck.report.document import Block, Facts, Heading, Paragraph, Row, Section, Table
 from supplycheck.report.show import Show, column, given, steps_table, words
 from supplycheck.results.records import Result
 
@@ -32,8 +32,21 @@ def _design(result: Result, show: Show) -> list[Block]:
         Facts(_sources(project.criteria, show)),
         *([_modifiers(project.criteria)] if project.criteria.modifiers else []),
         steps_table("How the design area was found", result.design_area.steps, show),
+        *_search(result),
         _sprinklers(project.system.sprinklers, show),
     ]
+
+
+def _search(result: Result) -> list[Block]:
+    """Return what was tried beyond the shape of the steps, and what governs."""
+    area = result.design_area
+    if area.mode == "given" or area.tried < 2:
+        return []
+    text = (
+        "The steps give the number of heads and the shape to start from. "
+        f"{area.statement} Governing, with {len(area.governing.heads)} heads: {area.governing.label}."
+    )
+    return [Paragraph(text)]
 
 
 def _without_sprinklers(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
@@ -141,6 +154,10 @@ def _sprinklers(sprinklers: tuple[Sprinkler, ...], show: Show) -> Table:
     return Table("Sprinklers", columns, rows, empty="no sprinkler type in the project")
 
 
+def _hose(flow: float, node: str | None, show: Show) -> str:
+    return f"{show.t(flow, 'flow')} at {node or 'no node given'}" if flow > 0 else "none"
+
+
 def _law_facts(project: Project, show: Show) -> tuple[tuple[str, str], ...]:
     hose, law, second, fluid = project.hose, project.law, project.second_law, project.fluid
     unit_names = ", ".join(
@@ -149,8 +166,8 @@ def _law_facts(project: Project, show: Show) -> tuple[tuple[str, str], ...]:
     )
     weight = show.t(fluid.unit_weight, "gradient")
     pairs = [
-        ("Hose inside", f"{show.t(hose.inside, 'flow')} at {hose.inside_node or 'no node given'}"),
-        ("Hose outside", f"{show.t(hose.outside, 'flow')} at {hose.outside_node or 'no node given'}"),
+        ("Hose inside", _hose(hose.inside, hose.inside_node, show)),
+        ("Hose outside", _hose(hose.outside, hose.outside_node, show)),
         ("Source of the hose", f"{hose.source} ({hose.origin})"),
         ("Friction law", f"{law.name} ({law.source})"),
         (

@@ -84,9 +84,8 @@ def flows(result: Result) -> Section:
     blocks += [
         Heading("Balance"),
         Paragraph(
-            "Recomputed from the node and pipe rows of this report: the flows at every node, and the "
-            "pressures "
-            "along every pipe."
+            "Recomputed from the unrounded numbers of result.json: the flows at every node, and the "
+            "pressures along every pipe."
         ),
         Facts(pairs),
     ]

@@ -127,7 +127,7 @@ def _hand_row(number: int, step: PathStep, show: Show) -> Row:
         (
             str(number),
             f"{step.start} – {step.end}",
-            step.nominal,
+            show.nominal(step.nominal),
             show.n(step.bore, "size"),
             show.n(step.flow_added, "flow"),
             show.n(step.flow, "flow"),

@@ -27,8 +27,8 @@ def node_analysis(result: Result) -> Section:
         column("K-factor", show.s("k_factor")),
         column("Pressure", show.s("pressure")),
         column("Discharge", show.s("flow")),
-        column("Required", show.s("flow")),
-        column("Required", show.s("pressure")),
+        column("Required flow", show.s("flow")),
+        column("Required pressure", show.s("pressure")),
         words("Required by"),
         column("Area", show.s("area")),
         words("Branch line"),
@@ -125,7 +125,7 @@ def _fittings(result: Result, show: Show) -> Table:
         Row(
             (
                 one.name,
-                one.nominal,
+                show.nominal(one.nominal),
                 one.pipe_kind,
                 show.n(one.bore, "size"),
                 "–" if one.c_factor is None else f"{one.c_factor:g}",
@@ -197,7 +197,7 @@ def _still_pipes(pipes: Sequence[PipeRow], show: Show) -> Table:
             (
                 pipe.start,
                 pipe.end,
-                pipe.nominal,
+                show.nominal(pipe.nominal),
                 show.n(pipe.bore, "size"),
                 show.n(pipe.length, "length"),
                 show.n(pipe.equivalent_length, "length"),
@@ -250,7 +250,7 @@ def _pipe(pipe: PipeRow, show: Show, *, darcy: bool, second: bool) -> Row:
         pipe.end,
         show.n(pipe.flow_added, "flow"),
         show.n(pipe.flow, "flow"),
-        pipe.nominal,
+        show.nominal(pipe.nominal),
         show.n(pipe.bore, "size"),
         show.n(pipe.length, "length"),
         show.n(pipe.equivalent_length, "length"),

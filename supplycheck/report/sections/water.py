@@ -6,6 +6,7 @@ from supplycheck.model import FlowTest, Supply
 from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph, Row, Section, Table
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, column, given, steps_table, words
+from supplycheck.results.display import demand_text
 from supplycheck.results.records import Result
 
 
@@ -35,6 +36,11 @@ def water(result: Result, width: float) -> Section:
         Heading("Margin"),
         Paragraph(result.margin.rule + (f" ({result.margin.source})" if result.margin.source else "")),
         steps_table("The margin, step by step", result.margin.steps, show),
+        Paragraph(
+            "Nothing is rounded inside the calculation: a sum of printed numbers may differ from its "
+            "printed result by one in the last digit.",
+            "small",
+        ),
     ]
     return Section("Water supply analysis", tuple(blocks), fresh=True)
 
@@ -45,10 +51,13 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     common = (
         ("Compared at", demand.node),
         ("Static there", show.t(supply.static_at_comparison, "pressure")),
-        ("Demand there", f"{show.t(demand.pressure, 'pressure')} at {show.t(demand.flow, 'flow')}"),
+        ("Demand there", f"{show.t(demand.pressure, 'pressure')}; {demand_text(result, show.units)}"),
         ("Available there", show.t(supply.available_pressure, "pressure")),
         ("Before adjustments", show.t(supply.unadjusted_pressure, "pressure")),
-        ("Flow at the demand pressure", show.t(supply.available_flow, "flow")),
+        (
+            "Flow at the demand pressure",
+            show.t(supply.available_flow, "flow") if supply.available_flow else "none",
+        ),
     )
     if supply.residual is None:  # a tank gives most: there is no reading
         return common

@@ -1,0 +1,97 @@
+"""Words and digits that a reviewer stumbled over: what passes where, sums that close, no bare zeros."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from pathlib import Path
+
+import pytest
+from sample_result import sample
+
+from supplycheck.check import check_project
+from supplycheck.report.build import build_document
+from supplycheck.report.document import Facts, Paragraph, Table, Verdict
+from supplycheck.report.sections.basis import basis
+from supplycheck.report.sections.judged import flows
+from supplycheck.report.sections.rows import node_analysis
+from supplycheck.report.sections.water import water
+from supplycheck.results.display import demand_text, passing, residual_text, value_text
+from supplycheck.results.screen import screen_text
+from supplycheck.units import BAR, METRIC, PSI, UNIT_SETS, US
+
+FOLDER = Path(__file__).parents[2] / "examples"
+
+
+def test_the_demand_says_how_much_of_it_passes_the_point_of_comparison() -> None:
+    """The street hose of the store leaves at the hydrant, before BASE: 150 gpm never get there."""
+    result = check_project(FOLDER / "spreadsheet-store" / "project.toml")
+    assert result.demand.node == "BASE"
+    street = US.to_si(150.0, "flow")
+    assert passing(result) == pytest.approx(result.demand.flow - street, rel=1e-9)
+    here = US.text(result.demand.flow - street, "flow")
+    assert f"gpm in all, of which {here} pass BASE" in demand_text(result, US)
+    assert f"pass {result.demand.node}" in screen_text(result)
+
+
+def test_where_all_passes_nothing_is_added() -> None:
+    result = check_project(FOLDER / "parcel-depot" / "project.toml")
+    assert demand_text(result, US) == f"{US.text(result.demand.flow, 'flow')} in all"
+
+
+@pytest.mark.parametrize("name", ["parcel-depot", "office-floor", "spreadsheet-store"])
+def test_the_margin_closes_in_its_steps(name: str) -> None:
+    """available − demand as printed gives the margin as printed, within one unit of the last digit."""
+    result = check_project(FOLDER / name / "project.toml")
+    units = UNIT_SETS[result.project.units]
+    tables = [one for one in water(result, 500.0).blocks if isinstance(one, Table)]
+    rows = next(one for one in tables if one.title == "The margin, step by step").rows
+    places = {"us": 2, "metric": 3}[units.name]
+    least = f"{result.margin.pressure / {'us': PSI, 'metric': BAR}[units.name]:.{places}f}"
+    assert any(row.cells[2].startswith(least) for row in rows)
+
+
+def test_what_is_not_zero_never_prints_as_zero() -> None:
+    assert value_text(1e-9 * PSI, "pressure", US) == "< 0.1 psi"
+    assert value_text(100.0, "pressure", METRIC) == "< 0.01 bar"
+    assert value_text(0.0, "pressure", US) == "0.0 psi"
+    assert residual_text(3e-15 * PSI, "pressure", US) == "< 0.001 psi"
+    assert residual_text(0.02 * PSI, "pressure", US) == "0.020 psi"
+
+
+def test_the_balance_is_told_of_unrounded_numbers() -> None:
+    words = " ".join(one.text for one in flows(sample()).blocks if isinstance(one, Paragraph))
+    assert "unrounded numbers of result.json" in words
+
+
+def test_the_verdict_does_not_read_like_a_stamp() -> None:
+    blocks = build_document(sample()).sections[0].blocks
+    verdict = next(one for one in blocks if isinstance(one, Verdict))
+    assert verdict.title == "Supply adequate – for the values entered"
+
+
+def test_no_heading_of_the_node_table_stands_twice() -> None:
+    table = next(one for one in node_analysis(sample()).blocks if isinstance(one, Table))
+    titles = [column.title for column in table.columns]
+    assert len(set(titles)) == len(titles)
+
+
+def test_hose_that_does_not_flow_is_none() -> None:
+    result = sample()
+    project = replace(result.project, hose=replace(result.project.hose, inside=0.0, inside_node=None))
+    blocks = basis(replace(result, project=project)).blocks
+    pairs = dict(pair for one in blocks if isinstance(one, Facts) for pair in one.pairs)
+    assert pairs["Hose inside"] == "none"
+
+
+def test_nominal_sizes_of_a_metric_project_are_named() -> None:
+    """EN 10255 names its sizes DN; a street main in inches must not read as DN 4."""
+    result = check_project(FOLDER / "office-floor" / "project.toml")
+    sizes = [
+        row.cells[2]
+        for section in build_document(result).sections
+        for one in section.blocks
+        if isinstance(one, Table) and one.title == "The path"
+        for row in one.rows
+    ]
+    assert sizes[0] == "DN 25"
+    assert all(size.startswith("DN ") or size.endswith(" in") for size in sizes)
