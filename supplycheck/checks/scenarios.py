@@ -19,7 +19,7 @@ def scenarios(context: CheckContext) -> Finding:
     """The scenario with the least share is told; one without a solution comes first."""
     unsolved = tuple(one.name for one in context.scenarios if not one.solved)
     if unsolved:
-        text = f"No solution for {some(unsolved)}: with the supply as it is the heads cannot be fed."
+        text = f"No solution for {some(unsolved)}; the table of scenarios says why."
         ask = f"Must the system still carry the design area in {some(unsolved)}?"
         return SCENARIOS.says("ask authority", text, tags=unsolved, remedy=ask)
     told = [(one.share, one) for one in context.scenarios if one.share is not None]

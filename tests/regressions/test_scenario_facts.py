@@ -1,0 +1,65 @@
+"""Scenarios that leave heads short or have no solution are told once, with the head that is worst off."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+
+import supplycheck.check as pipeline
+from supplycheck.check import check, scenario_facts
+from supplycheck.errors import NotConvergedError
+from supplycheck.project import read_project
+from supplycheck.results.records import Result
+
+EXAMPLES = Path(__file__).parents[2] / "examples"
+
+
+@pytest.fixture(scope="module")
+def shut_line() -> Result:
+    return check(read_project(EXAMPLES / "spreadsheet-store" / "project.toml"))
+
+
+@pytest.fixture(scope="module")
+def campus() -> Result:
+    return check(read_project(EXAMPLES / "two-supply-campus" / "project.toml"))
+
+
+def test_a_failure_tells_its_remedy_once(shut_line: Result) -> None:
+    note = shut_line.scenarios[1].note
+    assert note.startswith("no solution: ")
+    assert note.count("open the shut pipe") == 1
+
+
+def test_a_remedy_that_the_message_lacks_is_added(monkeypatch: pytest.MonkeyPatch) -> None:
+    def fail(*args: object, **names: object) -> None:
+        raise NotConvergedError("stuck", cause="numbers", tags=(), remedy="give larger pipes")
+
+    project = read_project(EXAMPLES / "two-supply-campus" / "project.toml")
+    rows = vars(pipeline)["scenario_rows"]
+    monkeypatch.setitem(rows.__globals__, "solve_operating", fail)
+    row = check(project).scenarios[1]
+    assert row.note == "no solution: stuck; give larger pipes"
+
+
+def test_a_scenario_without_solution_is_a_question(shut_line: Result) -> None:
+    found = next(one for one in shut_line.findings if one.check == "scenarios")
+    assert found.state == "ask authority" and "one line shut" in found.remedy
+
+
+def test_the_worst_head_is_the_least_share_of_its_own_need(campus: Result) -> None:
+    """Recomputed from the rows: what really flows at each head over what that head needs."""
+    needs = {node.tag: node.required_discharge for node in campus.nodes if node.in_design_area}
+    found = next(one for one in campus.findings if one.check == "scenarios")
+    row = campus.scenarios[1]
+    shares = {tag: flow / need for tag, flow, _ in row.head_flows if (need := needs[tag])}
+    worst = min(shares, key=lambda tag: shares[tag])
+    assert found.measured is not None and found.measured.value == pytest.approx(shares[worst], rel=1e-9)
+    assert found.tags == (worst,) and row.name in found.text
+
+
+def test_the_design_area_itself_is_no_scenario(campus: Result) -> None:
+    from supplycheck.demand import demand_cases
+
+    case = demand_cases(campus.project).cases[0]
+    assert [one.name for one in scenario_facts(case, campus.scenarios)] == ["Mill Lane shut"]
