@@ -11,12 +11,15 @@ from types import MappingProxyType
 from typing import Final
 
 from supplycheck import __version__, catalogue
+from supplycheck.cases.duties import solve_duties, without_hose
+from supplycheck.cases.greatest_flow import Ground
+from supplycheck.cases.loads import load_of, required_of
+from supplycheck.cases.placements import Progress, only, try_all
+from supplycheck.cases.scenarios import scenario_rows
 from supplycheck.checks import CheckContext, PumpRating, ScenarioFacts, run_checks
 from supplycheck.context import catalogue_c, class_figures, comparison_facts, reference_bores
 from supplycheck.demand import Candidates, demand_cases
-from supplycheck.duties import Ground, solve_duties, without_hose
 from supplycheck.errors import DomainError
-from supplycheck.loads import load_of, required_of
 from supplycheck.model import DemandCase, Project
 from supplycheck.network import (
     Network,
@@ -26,11 +29,9 @@ from supplycheck.network import (
     solve_demand,
     solve_operating,
 )
-from supplycheck.placements import Progress, only, try_all
 from supplycheck.project import read_project
 from supplycheck.results.assemble import Stages, assemble
 from supplycheck.results.records import Result, ScenarioRow
-from supplycheck.scenarios import scenario_rows
 from supplycheck.supply import (
     Comparison,
     NodeSupply,

@@ -24,15 +24,11 @@ ALLOWED: dict[str, set[str]] = {
     "checks": {"model", "hydraulics", "network", "supply", "findings"},
     "results": {"checks", "supply", "demand", "network", "model", "hydraulics"} | BASE,
     "report": {"results", "model"} | BASE,
-    "scenarios": {"results", "supply", "network", "model", "errors"},
-    "loads": {"supply", "network", "model"},
-    "greatest_flow": {"demand", "supply", "network", "model", "errors"},
-    "duties": {"greatest_flow", "loads", "demand", "supply", "network", "model", "errors"},
-    "placements": {"loads", "results", "demand", "network", "model"},
+    "cases": {"results", "supply", "demand", "network", "model", "hydraulics", "errors"},
     "context": {"catalogue", "checks", "supply", "model", "errors"},
     "screening": {"project", "catalogue", "model", "hydraulics", "supply", "results", "report"} | BASE,
-    "check": {"project", "scenarios", "catalogue", "model", "hydraulics", "network", "demand", "supply"}
-    | {"checks", "results", "report", "loads", "duties", "greatest_flow", "placements", "context"}
+    "check": {"project", "cases", "context", "catalogue", "model", "network", "demand", "supply"}
+    | {"checks", "results"}
     | BASE,
 }
 EVERYTHING = set(ALLOWED) | {"commands"}

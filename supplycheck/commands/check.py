@@ -11,8 +11,8 @@ from typing import TYPE_CHECKING, Final
 import click
 
 if TYPE_CHECKING:
+    from supplycheck.cases.placements import Progress
     from supplycheck.errors import NotConvergedError
-    from supplycheck.placements import Progress
     from supplycheck.project import ProjectFaultsError
 
 ADEQUATE: Final = 0

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from types import MappingProxyType
 from typing import Final, Literal
 
 from supplycheck import __version__
@@ -39,6 +40,14 @@ CAUTIONS: Final = (
     "A rejected row is a hydrant about which nothing is known, and a check that was not run is not a pass.",
     "Flow hydrants only with the utility's permission; keep the main above 20 psi (1.4 bar), open fully, "
     "close slowly, mind traffic and where the water goes.",
+)
+
+_TITLES: Final = MappingProxyType(
+    {
+        "adequate": "Required flow met",
+        "not adequate": "Required flow not met everywhere",
+        "undetermined": "Screened, nothing judged",
+    }
 )
 
 
@@ -88,7 +97,7 @@ def _front(answer: Screening, width: float) -> Section:
         ),
         Tile("Quality findings", f"{tested}", f"kinds of {len(MARKS)}; counts below"),
     )
-    blocks: list[Block] = [Verdict(word, verdict(answer), tiles)]
+    blocks: list[Block] = [Verdict(word, _TITLES[word], verdict(answer), tiles)]
     if statistics.done:
         text = (
             "Bars coloured by the class of their lower end; the last holds all above. Dashed: class limits."

@@ -8,8 +8,8 @@ from typing import Final
 
 import numpy as np
 
+from supplycheck.cases.loads import load_of, required_of
 from supplycheck.demand import Candidates
-from supplycheck.loads import load_of, required_of
 from supplycheck.model import DemandCase, Project
 from supplycheck.network import DemandSummary, Network, SourceCurve, demand_many, solve_operating
 from supplycheck.results.assemble import TIE, Tried

@@ -8,12 +8,12 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 from typing import Final
 
+from supplycheck.cases.greatest_flow import Ground, at_rest, hydrant_rows
+from supplycheck.cases.loads import load_of, required_of
 from supplycheck.demand.duties import DutyCase
 from supplycheck.demand.hydrants import hydrant_cases
 from supplycheck.demand.standpipes import is_complete, left_by, needed_at_node, standpipe_cases
 from supplycheck.errors import NotConvergedError
-from supplycheck.greatest_flow import Ground, at_rest, hydrant_rows
-from supplycheck.loads import load_of, required_of
 from supplycheck.model import DemandCase, Project
 from supplycheck.model.duty import (
     ConnectionRow,

@@ -1,0 +1,1 @@
+"""Demand cases solved on the network: placements, duties, scenarios, and what each asks of it."""
