@@ -9,6 +9,7 @@ from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, named, pressure, some
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import FlowTest
+from supplycheck.supply import supply_curves
 
 RANGE = About(
     "demand within the tested flow",
@@ -171,24 +172,39 @@ def adjustment(context: CheckContext) -> Finding:
     return ADJUSTMENT.says("ok", text, measured=measured)
 
 
+def left_in_main(context: CheckContext) -> tuple[float | None, str]:
+    """Return the least pressure [Pa] left in a main, and where of several sources it stands."""
+    solution, project = context.solution, context.project
+    given = dict(zip(solution.source_tags, solution.source_flow.tolist(), strict=True))
+    if len(given) < 2 or not given.keys() <= context.nodes.keys():
+        return context.comparison.main_pressure_at_demand, ""
+    left = [
+        (one.curve.pressure_at(max(given[one.node], 0.0)), f" at {one.node}")
+        for one in supply_curves(project)
+        if one.tests and one.node in given
+    ]
+    return min(left, default=(None, ""))
+
+
 def floor(context: CheckContext) -> Finding:
     """The floor of the project; where none is given, 20 psi by practice."""
     if not context.project.supply.tests:
         return FLOOR.says("not applicable", "No street main feeds this system.")
-    left, given = context.comparison.main_pressure_at_demand, context.project.supply.main_floor_pressure
+    left, where = left_in_main(context)
+    given = context.project.supply.main_floor_pressure
     limit = limits.MAIN_FLOOR if given is None else given
     if left is None:
         ask = "What is the pressure in the main at the demand flow?"
         return FLOOR.says("missing", "Not run: the pressure left in the main is not known.", remedy=ask)
     measured, allowed = pressure(left), pressure(limit)
     if left >= limit - limits.ROUND_OFF * abs(limit):
-        text = "{measured} is left in the main at the demand flow; the floor is {limit}."
+        text = f"{{measured}} is left in the main{where} at the demand flow; the floor is {{limit}}."
         return FLOOR.says("ok", text, measured=measured, limit=allowed)
     if given is None:
-        text = "Only {measured} is left in the main at the demand flow; {limit} is usual."
+        text = f"Only {{measured}} is left in the main{where} at the demand flow; {{limit}} is usual."
         ask = "How much pressure must stay in the main at the demand flow?"
         return FLOOR.says("ask authority", text, measured=measured, limit=allowed, remedy=ask)
-    text = "Only {measured} is left in the main at the demand flow; the floor is {limit}."
+    text = f"Only {{measured}} is left in the main{where} at the demand flow; the floor is {{limit}}."
     do = "Lower the demand or use a second supply: a main must not be drawn below its floor."
     return FLOOR.says("fail", text, measured=measured, limit=allowed, remedy=do)
 

@@ -1036,6 +1036,13 @@ def test_each_of_several_sources_has_its_own_static_and_its_own_share() -> None:
     assert found.tags == ("T-2",) and found.values["demand"].value == pytest.approx(100 * GPM)
 
 
+def test_the_main_with_least_pressure_left_is_told() -> None:
+    """W by hand: 60 − 10 (100/125)^1.85 psi, less the 5 psi by which the project lowers its tests."""
+    found = BY_NAME["pressure left in the main"].run(built(two_sources()))
+    assert found.measured is not None and "at W" in found.text
+    assert found.measured.value == pytest.approx((60 - 10 * 0.8**1.85 - 5) * PSI)
+
+
 def test_sound_project_balances_to_the_printed_form() -> None:
     """The walk uses the printed 4.52 form; the record's coefficient is that number by exact factors."""
     context = built({})
