@@ -142,10 +142,15 @@ def short(text: str, room: float, size: float) -> str:
 
 
 def put_label(
-    taken: Taken, point: tuple[float, float], text: str, style: Label, reach: Reach = "around"
+    taken: Taken,
+    point: tuple[float, float],
+    text: str,
+    style: Label,
+    reach: Reach = "around",
+    gap: float = 5.5,
 ) -> Label | None:
-    """Return ``style`` with ``text`` placed beside ``point``, or ``None`` where it does not fit."""
-    found = taken.place(*point, text, style.size, gap=5.5, bold=style.bold, reach=reach)
+    """Return ``style`` with ``text`` placed ``gap`` beside ``point``, or ``None`` where it does not fit."""
+    found = taken.place(*point, text, style.size, gap=gap, bold=style.bold, reach=reach)
     if found is None:
         return None
     x, y, anchor = found

@@ -57,13 +57,40 @@ def pressure_bars(
     for number, step in enumerate(path, start=first + 1):
         items += _step_row(number, step, x, y, units)
         y -= _ROW
-    at = x(result.supply.available_pressure)
-    items.append(Line(((at, bottom), (at, height - 14)), INK, 1.3, (5.0, 2.0)))
-    available = units.text(result.supply.available_pressure, "pressure")
-    text = f"available {available} at {short(result.demand.node, 90, 6.6)}"
-    half = text_width(text, 6.6) / 2
-    items.append(Label(min(at, width - half), height - 10, text, 6.6, "middle", True))
+    items += _available(path, first, result, units, x(result.supply.available_pressure), (width, height))
     return Drawing(width, height, (*items, *_key(width)), "pressure needed along the path")
+
+
+def _available(
+    path: tuple[PathStep, ...],
+    first: int,
+    result: Result,
+    units: UnitSet,
+    at: float,
+    size: tuple[float, float],
+) -> list[Item]:
+    """Return the line of what is available, down to the segment that ends at the point of comparison."""
+    width, height = size
+    node = result.demand.node
+    ends = [step.end for step in result.path]
+    last = ends.index(node) if node in ends else len(ends) - 1
+    if last < first:
+        return []
+    whole = last >= first + len(path) - 1
+    rows = last - first + (2 if first == 0 else 1)
+    bottom = 30.0 if whole else height - 18 - rows * _ROW
+    available = units.text(result.supply.available_pressure, "pressure")
+    text = f"available {available} at {short(node, 90, 6.6)}"
+    half = text_width(text, 6.6, bold=True) / 2
+    items: list[Item] = [
+        Line(((at, bottom), (at, height - 14)), INK, 1.3, (5.0, 2.0)),
+        Label(min(at, width - half), height - 10, text, 6.6, "middle", True),
+    ]
+    if not whole:
+        items.append(Line(((0, bottom), (width, bottom)), INK, 0.6, (1.5, 1.5)))
+        told = short(f"dotted: {node}, where both are compared", max(at - half - 6, 60.0), 6.0)
+        items.append(Label(0, height - 10, told, 6.0, colour=SLATE))
+    return items
 
 
 def _head_row(name: str, step: PathStep, x: Scale, y: float, units: UnitSet) -> list[Item]:
@@ -109,7 +136,7 @@ def _key(width: float) -> list[Item]:
         items.append(Label(x + 13, 4.2, name, 6.8))
         x += 26 + text_width(name, 6.8)
     items.append(Line(((x, 7), (x + 16, 7)), INK, 1.3, (5.0, 2.0)))
-    items.append(Label(min(x + 20, width), 4.2, "available at the demand", 6.8))
+    items.append(Label(min(x + 20, width), 4.2, "available at the demand flow", 6.8))
     return items
 
 

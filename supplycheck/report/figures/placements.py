@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from itertools import pairwise
 from typing import Final
 
@@ -14,6 +15,7 @@ from supplycheck.results.records import Placement, Result
 from supplycheck.units import UnitSet
 
 MOST_NUMBERS: Final = 40
+_AROUND: Final = 4.0  # m
 _SHADES: Final = ("#e3eef0", "#b5d3d9", "#7fb2bd", "#3f8797", "#0b4a5a")
 
 
@@ -25,9 +27,7 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
         return None
     nodes = places_of(result)
     heads = [nodes[node.tag] for node in result.nodes if node.kind == "sprinkler" and node.tag in nodes]
-    xs = [x for x, _ in heads] + [one.x or 0.0 for one in spots]
-    ys = [y for _, y in heads] + [one.y or 0.0 for one in spots]
-    window = Window(min(xs), min(ys), max(xs), max(ys)).grown(1.5)
+    window = _window(heads, spots)
     wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
     factor = min((size[0] - 32) / wide, (size[1] - 60) / high)
     height = max(high * factor, 30.0) + 60
@@ -41,6 +41,19 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
     items += _spots(spots, result, scale, units, (size[0], height))
     items += _key(spots, units, size[0])
     return Drawing(size[0], height, tuple(items), "required pressure by placement of the design area")
+
+
+def _window(heads: list[tuple[float, float]], spots: list[Placement]) -> Window:
+    """Return the part to draw: the spots and what lies round them, not farther than the heads reach."""
+    xs, ys = [one.x or 0.0 for one in spots], [one.y or 0.0 for one in spots]
+    round_about = max(_AROUND, 0.3 * max(max(xs) - min(xs), max(ys) - min(ys)))
+    all_x, all_y = xs + [x for x, _ in heads], ys + [y for _, y in heads]
+    return Window(
+        max(min(xs) - round_about, min(all_x)),
+        max(min(ys) - round_about, min(all_y)),
+        min(max(xs) + round_about, max(all_x)),
+        min(max(ys) + round_about, max(all_y)),
+    ).grown(1.5)
 
 
 def _classes(spots: list[Placement]) -> list[float]:
@@ -76,19 +89,25 @@ def _spots(
         x, y = scale.at(one.x or 0.0, one.y or 0.0)
         taken.take((x - radius, y - radius, x + radius, y + radius))
         items.append(Dot(x, y, radius, _SHADES[_shade(one.required_pressure, bounds)], INK, 0.4))
-    named = [(area.governing, "governing"), (area.runner_up, "runner-up")]
-    for chosen, word in named:
-        if chosen is None or chosen.x is None or chosen.y is None:
+    chosen = [(area.governing, "governing", radius + 3.2), (area.runner_up, "runner-up", radius + 2.2)]
+    rings: list[Item] = []
+    named: list[tuple[float, float, float, str]] = []
+    for spot, word, reach in chosen:
+        if spot is None or spot.x is None or spot.y is None:
             continue
-        x, y = scale.at(chosen.x, chosen.y)
-        if word == "governing":
-            items.append(Dot(x, y, radius + 2.6, None, CLAY, 1.6))
-        else:
-            items.append(Dot(x, y, radius + 2.2, None, INK, 0.9))
-        text = f"{word} {units.text(chosen.required_pressure, 'pressure')}"
-        found = taken.place(x, y, text, 6.6, gap=radius + 3, bold=True)
+        x, y = scale.at(spot.x, spot.y)
+        taken.take((x - reach - 1, y - reach - 1, x + reach + 1, y + reach + 1))
+        if not any(math.hypot(x - other[0], y - other[1]) < reach + other[2] for other in named):
+            rings.append(Dot(x, y, reach, None, PAPER, 3.0))
+            rings.append(Dot(x, y, reach, None, CLAY if word == "governing" else INK, 1.8))
+        named.append((x, y, reach, f"{word} {units.text(spot.required_pressure, 'pressure')}"))
+    labels: list[Item] = []
+    for x, y, reach, text in named:
+        found = taken.place(x, y, text, 6.6, gap=reach + 2.5, bold=True, reach="far")
         if found:
-            items.append(Label(found[0], found[1], text, 6.6, found[2], True, INK, 0.0, PAPER))
+            near = found[1] + (5.0 if found[1] < y else 0.0)
+            labels.append(Line(((x, y + (reach if near > y else -reach)), (found[0], near)), INK, 0.4))
+            labels.append(Label(found[0], found[1], text, 6.6, found[2], True, INK, 0.0, PAPER))
     if len(spots) <= MOST_NUMBERS:
         for one in spots:
             if one in {area.governing, area.runner_up}:
@@ -97,8 +116,8 @@ def _spots(
             text = units.number(one.required_pressure, "pressure")
             found = taken.place(x, y, text, 5.6, gap=radius + 2.0, reach="beside")
             if found:
-                items.append(Label(found[0], found[1], text, 5.6, found[2], colour=SLATE))
-    return items
+                labels.append(Label(found[0], found[1], text, 5.6, found[2], colour=SLATE))
+    return [*items, *labels, *rings]
 
 
 def _key(spots: list[Placement], units: UnitSet, width: float) -> list[Item]:

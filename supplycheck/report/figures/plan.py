@@ -35,6 +35,7 @@ class PlanView:
     upright: tuple[str, ...]
     factor: float
     outside: tuple[str, ...]
+    window: Window
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,6 +65,7 @@ class _Ground:
     units: UnitSet
     enlarged: bool
     crowded: bool
+    size: float
 
     def of(self, tag: str) -> tuple[float, float]:
         """Return where node ``tag`` stands on the drawing."""
@@ -153,10 +155,10 @@ def _view(
     items: list[Item] = [Box(0, _BAR_ROOM, width, height - _BAR_ROOM, PAPER, SLATE, 0.5)]
     items += _area(result, scale, taken)
     strokes = pipe_strokes(result.pipes)
-    ground = _Ground(scale, places, taken, units, enlarged, len(inside) > CROWDED)
+    size_of = 2.3 if enlarged else max(0.8, min(2.0, 0.16 * scale.factor + 0.5))
+    ground = _Ground(scale, places, taken, units, enlarged, len(inside) > CROWDED, size_of)
     for pipe in result.pipes:
         items += _pipe(pipe, ground, strokes)
-    size_of = 2.3 if enlarged else max(0.8, min(2.0, 0.16 * scale.factor + 0.5))
     for node in inside:
         items += _symbol(node, ground.of(node.tag), size_of, taken)
     tags, shown, wanted = _tags(result, inside, ground)
@@ -169,7 +171,14 @@ def _view(
     outside = tuple(tag for tag, place in places.items() if not window.holds(*place))
     what = "design area enlarged" if enlarged else "plan of the system"
     return PlanView(
-        Drawing(width, height, tuple(items), what), shown, wanted, missing, upright, scale.factor, outside
+        Drawing(width, height, tuple(items), what),
+        shown,
+        wanted,
+        missing,
+        upright,
+        scale.factor,
+        outside,
+        window,
     )
 
 
@@ -249,11 +258,17 @@ def _arrow(a: tuple[float, float], b: tuple[float, float], long: float) -> Line:
     return Line((tip, left, right), PAPER, 0.4, (), INK)
 
 
+def _reach_of(node: NodeRow, size: float) -> float:
+    """Return how far the symbol of ``node`` reaches from its place [points]."""
+    more = {"junction": 0.2, "sprinkler": 0.4, "supply": 2.4}.get(node.kind, 1.4)
+    return size + more
+
+
 def _symbol(node: NodeRow, at: tuple[float, float], size: float, taken: Taken) -> list[Item]:
     x, y = at
     if node.kind == "junction":
         return [Dot(x, y, size * 0.45, INK)]
-    reach = size + 0.8
+    reach = _reach_of(node, size)
     taken.take((x - reach, y - reach, x + reach, y + reach))
     if node.kind == "sprinkler":
         fill = CLAY if node.in_design_area else PAPER
@@ -287,11 +302,23 @@ def _tags(result: Result, inside: list[NodeRow], ground: _Ground) -> tuple[list[
             text = f"{short(node.tag, 46, style.size)}  {units.number(node.pressure, 'pressure')}"
         first = rank(node) == 0
         reach: Reach = "around" if first or enlarged else "beside"
-        label = put_label(ground.taken, ground.of(node.tag), text, strong if first else style, reach)
+        at = ground.of(node.tag)
+        gap = _reach_of(node, ground.size) + 1.4
+        label = put_label(ground.taken, at, text, strong if first else style, reach, gap)
         if label is not None:
+            items += _leader(label, at, gap)
             items.append(label)
             shown += 1
     return items, shown, len(inside)
+
+
+def _leader(label: Label, at: tuple[float, float], gap: float) -> list[Item]:
+    """Return a thin line from a label that had to stand apart to its symbol."""
+    x, y = at
+    near = label.y + label.size * (0.75 if label.y < y else 0.0)
+    if abs(label.x - x) <= 1.5 * gap and abs(near - y) <= 2 * gap:
+        return []
+    return [Line(((x, y), (label.x, near)), SLATE, 0.3)]
 
 
 def _scale_bar(scale: Scale, units: UnitSet, width: float) -> list[Item]:

@@ -6,6 +6,7 @@ from types import MappingProxyType
 from typing import Final
 
 from supplycheck.report.document import Block, Figure, Paragraph, Row, Section, Table
+from supplycheck.report.figures.key_plan import key_plan
 from supplycheck.report.figures.placements import placement_map
 from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, size_legend, whole_plan
 from supplycheck.report.show import Show, column, words
@@ -23,6 +24,9 @@ def plan(result: Result, width: float) -> Section:
         whole = whole_plan(result, show.units, (width, 400.0))
         title = "System, without the far end of the main" if whole.outside else "Whole system"
         blocks.append(Figure(title, whole.drawing, _caption(whole, outside=True)))
+        if whole.outside:
+            drawing = key_plan(result, show.units, whole.window, (width, 150.0))
+            blocks.append(Figure("Key plan, with the far end of the main", drawing))
         blocks.append(Figure("Pipe sizes (bore)", size_legend(result.pipes, show.units, width)))
         rest = PLAN_ROOM["a4" if result.project.facts.paper == "a4" else "letter"] - whole.drawing.height
         near = area_plan(result, show.units, (width, rest)) if 175 <= rest <= 330 else None
