@@ -232,7 +232,7 @@ def _flow_lines(ground: _Ground, tag: str, below: str, above: str, flow: float |
         flow -= sum(pipe.flow for pipe in ground.entering[tag])
         name, note = f"at {tag}", "all that is drawn from this supply"
     else:
-        name, note = f"at {tag}", "carried from here on"
+        name, note = f"at {tag}", ""
     return [*lines, pen.step(name, f"Q = {signed_sum(pen.flow(first), parts)}", flow, "flow", note)]
 
 
@@ -338,7 +338,7 @@ def _gradient_line(ground: _Ground, step: PathStep, gradient: float, name: str) 
             f"pf = {law_constant(law, units)} × {flow}^{power} / "
             f"({step.c_factor or 0:g}^{power} × {bore}^{law.bore_exponent:g})"
         )
-        note = "loss per length"
+        note = ""
     digits = _gradient_digits(pen, step, gradient)
     decimals = significant_decimals(units.from_si(gradient, "gradient"), digits)
     return HandStep(name, formula, gradient, "gradient", note, decimals)

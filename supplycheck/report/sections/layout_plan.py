@@ -31,7 +31,7 @@ def plan(result: Result, width: float) -> Section:
         rest = PLAN_ROOM["a4" if result.project.facts.paper == "a4" else "letter"] - whole.drawing.height
         near = area_plan(result, show.units, (width, rest)) if 175 <= rest <= 330 else None
         if near is None or near.factor < 1.4 * whole.factor:
-            near = area_plan(result, show.units, (width, 300.0))
+            near = area_plan(result, show.units, (width, 258.0))
         if near is not None:
             unit = show.s("pressure")
             text = f"Behind the tag of a head: its pressure in {unit}. Arrows point the way of the flow. "
@@ -71,7 +71,7 @@ def _caption(view: PlanView, *, outside: bool = False) -> str:
 def _placements(result: Result, show: Show, width: float) -> list[Block]:
     area = result.design_area
     blocks: list[Block] = []
-    drawn = placement_map(result, show.units, (width, 250.0))
+    drawn = placement_map(result, show.units, (width, 205.0))
     if drawn is not None:
         blocks.append(
             Figure(
@@ -94,7 +94,8 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
         column("Heads"),
         words("Tags"),
     )
-    blocks.append(Table("Placements compared", columns, rows, area.statement))
+    note = "How they were found: basis of design." if area.mode == "search" else area.statement
+    blocks.append(Table("Placements compared", columns, rows, note))
     return blocks
 
 

@@ -112,7 +112,9 @@ def hand_check(result: Result) -> Section:
             "The governing path can be followed from here with a pocket calculator: each line holds "
             "the formula with its numbers and its result; a flow that joins or splits has a line of its "
             "own before it is counted. Nothing is rounded inside the calculation, so that a line worked "
-            "from the printed numbers may differ in the last digit."
+            "from the printed numbers may differ in the last digit. q flow of an outlet, Q flow in a pipe, "
+            "pf loss per length, Pf friction, Pe height, Pd devices, P pressure; Q at a node is what is "
+            "carried on from there."
         ),
         Table("The path", columns, path_rows, note, size=6.6),
         steps_table("Line by line", result.hand_check, show),
