@@ -2,13 +2,74 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 
 from supplycheck import catalogue
-from supplycheck.checks import ClassFigures, ComparisonFacts
+from supplycheck.cases.ground import Solved
+from supplycheck.checks import CheckContext, ClassFigures, ComparisonFacts, PumpRating, ScenarioFacts
+from supplycheck.demand import Candidates
 from supplycheck.errors import NotInCatalogueError
-from supplycheck.model import Project
+from supplycheck.model import DemandCase, Project
+from supplycheck.model.duty import DutyAnswer
+from supplycheck.results.assemble import Tried
+from supplycheck.results.records import ScenarioRow
 from supplycheck.supply import Comparison
+from supplycheck.supply.needed import NeededPump
+from supplycheck.supply.pumping import PumpAnswer
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class CheckGrounds:
+    """What was worked out for the whole project, whichever case the checks look at."""
+
+    project: Project
+    candidates: Candidates
+    tried: Tried
+    pumps: tuple[PumpAnswer, ...]
+    needed_pump: NeededPump | None
+    duties: DutyAnswer
+    scenarios: tuple[ScenarioRow, ...]
+
+
+def check_context(grounds: CheckGrounds, solved: Solved) -> CheckContext:
+    """Return everything that the rules may look at for one solved case."""
+    project, complete = grounds.project, grounds.candidates.complete
+    return CheckContext(
+        project=project,
+        case=solved.case,
+        solution=solved.solution,
+        comparison=comparison_facts(solved.comparison),
+        operating=solved.operating,
+        searched=grounds.candidates.mode == "search" and complete,
+        placements_tried=len(grounds.candidates.cases),
+        most_favourable_found=grounds.tried.favourable is not None,
+        class_figures=class_figures(project),
+        catalogue_c=catalogue_c(project),
+        reference_bores=reference_bores(project),
+        pump_ratings={
+            pump.tag: PumpRating(pump.rating.flow, pump.rating.pressure)
+            for pump in grounds.pumps
+            if pump.rating is not None
+        },
+        pumps=grounds.pumps,
+        needed_pump=grounds.needed_pump,
+        duties=grounds.duties,
+        scenarios=scenario_facts(solved.case, grounds.scenarios),
+    )
+
+
+def scenario_facts(case: DemandCase, rows: Sequence[ScenarioRow]) -> tuple[ScenarioFacts, ...]:
+    """Return what the project's scenarios, all rows but the first, leave the heads of ``case``."""
+    asked = dict(zip(case.heads, case.required_flow, strict=True))
+    found = []
+    for row in rows[1:]:
+        shares = [(flow / asked[tag], tag) for tag, flow, _ in row.head_flows if asked.get(tag, 0.0) > 0.0]
+        share, head = min(shares, default=(None, ""))
+        solved = math.isfinite(row.total_flow)
+        found.append(ScenarioFacts(row.name, head, share, row.note, solved))
+    return tuple(found)
 
 
 def comparison_facts(comparison: Comparison) -> ComparisonFacts:

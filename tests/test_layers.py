@@ -25,7 +25,7 @@ ALLOWED: dict[str, set[str]] = {
     "results": {"checks", "supply", "demand", "network", "model", "hydraulics"} | BASE,
     "report": {"results", "model"} | BASE,
     "cases": {"results", "supply", "demand", "network", "model", "hydraulics", "errors"},
-    "context": {"catalogue", "checks", "supply", "model", "errors"},
+    "context": {"catalogue", "cases", "checks", "results", "demand", "supply", "model", "errors"},
     "screening": {"project", "catalogue", "model", "hydraulics", "supply", "results", "report"} | BASE,
     "check": {"project", "cases", "context", "catalogue", "model", "network", "demand", "supply"}
     | {"checks", "results"}

@@ -5,10 +5,11 @@ from __future__ import annotations
 import math
 from collections import deque
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import Final
 
-from supplycheck.cases.greatest_flow import Ground, at_rest, hydrant_rows
+from supplycheck.cases.greatest_flow import at_rest, hydrant_rows
+from supplycheck.cases.ground import Ground
 from supplycheck.cases.loads import load_of, required_of
 from supplycheck.demand.duties import DutyCase
 from supplycheck.demand.hydrants import hydrant_cases
@@ -286,10 +287,3 @@ def _connection(ground: Ground, cases: Sequence[DutyCase]) -> ConnectionRow | No
         governing=answers[place].governing,
         note="" if is_complete(duty) else "not every choice of further standpipes was tried",
     )
-
-
-def without_hose(project: Project, case: DemandCase) -> Project:
-    """Return ``project`` without its hose allowance where ``case`` does not draw it."""
-    if case.with_hose:
-        return project
-    return replace(project, hose=replace(project.hose, inside=0.0, outside=0.0))

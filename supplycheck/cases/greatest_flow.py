@@ -3,40 +3,21 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Iterable, Mapping
 from typing import Final
 
+from supplycheck.cases.ground import Ground
 from supplycheck.demand.hydrants import device_loss, flow_of_each, highest_point, in_range
 from supplycheck.errors import DomainError, NotConvergedError
 from supplycheck.model import Device, Project
 from supplycheck.model.duty import Hydrant, HydrantDuty, HydrantRow
-from supplycheck.network import LoadCase, Network, Solution, SourceCurve, solve_operating
-from supplycheck.supply import NodeSupply
+from supplycheck.network import LoadCase
 from supplycheck.supply.route import no_flow_pressure
 
 LARGEST_FLOW: Final = 100.0
 """Flow [m³/s] beyond which a hydrant is said to have no limit here."""
 FLOW_TOLERANCE: Final = 1e-10
 """Width [m³/s] to which the greatest flow of a hydrant is bracketed."""
-
-RankOf = Callable[[float], tuple[str, str, str]]
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class Ground:
-    """What every case is solved on; ``rank_of`` tells class, colour and source of a flow [m³/s]."""
-
-    project: Project
-    network: Network
-    curves: Sequence[NodeSupply]
-    sources: Sequence[SourceCurve]
-    rank_of: RankOf
-
-    def operating(self, load: LoadCase) -> Solution:
-        """Return what really flows under ``load``."""
-        policy = self.project.criteria.velocity_pressure
-        return solve_operating(self.network, load, self.sources, velocity_pressure=policy)
 
 
 def at_rest(ground: Ground, node: str, *, highest: bool) -> float:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 from types import MappingProxyType
 
 from supplycheck.model import DemandCase, Project
@@ -25,3 +26,10 @@ def required_of(case: DemandCase) -> Mapping[str, float]:
         **dict(zip(case.heads, case.required_pressure, strict=True)),
         **{outlet.node: outlet.minimum_pressure for outlet in case.outlets},
     }
+
+
+def without_hose(project: Project, case: DemandCase) -> Project:
+    """Return ``project`` without its hose allowance where ``case`` does not draw it."""
+    if case.with_hose:
+        return project
+    return replace(project, hose=replace(project.hose, inside=0.0, outside=0.0))

@@ -42,6 +42,9 @@ from supplycheck.units import UNIT_SETS
 
 Show = Callable[[float, str], str]
 
+STORAGE: Final = "water storage"
+"""The check whose failure means that the supply does not carry the demand for its duration."""
+
 TIE: Final = 10.0
 """Margins [Pa] closer than this count as equal (0.0015 psi); the search itself is good to 1 Pa."""
 
@@ -98,12 +101,14 @@ def assemble(stages: Stages) -> Result:
     path = path_to_supply(nodes, pipes, solution.governing, solution.source_tags)
     drawn = dict(zip(solution.source_tags, solution.source_flow.tolist(), strict=True))
     balance = balance_of(project, nodes, pipes, drawn, solution.iterations)
-    verdict = _verdict(comparison, solution)
+    fails = [one.check for one in stages.findings if one.state == "fail"]
+    verdict = _verdict(comparison, solution, fails)
+    words = _verdict_text(verdict, comparison, solution, show)
     return Result(
         project=project,
         version=stages.version,
         verdict=verdict,
-        verdict_text=_verdict_text(verdict, comparison, solution, show),
+        verdict_text=_with_fails(words, verdict, fails),
         governs=_governs(nodes, solution.governing, stages.case, show),
         demand=_demand(comparison, nodes, solution, stages.case),
         supply=_supply(comparison, show, fine),
@@ -138,14 +143,21 @@ def _points(points: Iterable[MarkedPoint]) -> tuple[GraphPoint, ...]:
     return tuple(GraphPoint(one.name, one.style, one.flow, one.pressure) for one in points)
 
 
-def _verdict(comparison: Comparison, solution: Solution) -> Verdict:
+def _verdict(comparison: Comparison, solution: Solution, fails: Sequence[str]) -> Verdict:
     if solution.out_of_range:
         return "undetermined"
-    if comparison.margin < 0:
+    if comparison.margin < 0 or STORAGE in fails:
         return "not adequate"
     if comparison.after_rule is None:
         return "undetermined"
     return "adequate" if comparison.after_rule >= 0 else "not adequate"
+
+
+def _with_fails(text: str, verdict: Verdict, fails: Sequence[str]) -> str:
+    """Return the verdict in words with what is outside a limit beside it, so that nobody reads past it."""
+    if verdict != "adequate" or not fails:
+        return text
+    return f"{text} But outside a limit: {', '.join(fails)}; read that first."
 
 
 def _verdict_text(verdict: Verdict, comparison: Comparison, solution: Solution, show: Show) -> str:
@@ -158,6 +170,8 @@ def _verdict_text(verdict: Verdict, comparison: Comparison, solution: Solution, 
     margin = show(abs(comparison.margin), "pressure")
     if comparison.margin < 0:
         return f"The supply falls short of the demand by {margin}."
+    if verdict == "not adequate" and (comparison.after_rule or 0.0) >= 0:
+        return f"The pressure suffices, with {margin} to spare, but the stored water does not last."
     if comparison.required is None or comparison.after_rule is None:
         return (
             f"The supply carries the demand with {margin} to spare, but no margin rule is given: "

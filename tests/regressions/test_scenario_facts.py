@@ -7,7 +7,8 @@ from pathlib import Path
 import pytest
 
 import supplycheck.check as pipeline
-from supplycheck.check import check, scenario_facts
+from supplycheck.check import check
+from supplycheck.context import scenario_facts
 from supplycheck.errors import NotConvergedError
 from supplycheck.project import read_project
 from supplycheck.results.records import Result
