@@ -20,6 +20,7 @@ NOT_ADEQUATE: Final = 1
 WRONG_USAGE: Final = 2
 PROJECT_FAULTS: Final = 3
 NOT_CONVERGED: Final = 4
+PACKAGE_FILES: Final = ("result.json", "review.pdf", "nodes.csv", "pipes.csv", "tables.xlsx")
 PATIENCE: Final = 1.0  # seconds before a progress bar appears
 
 
@@ -64,6 +65,14 @@ def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> in
     from supplycheck.results.screen import screen_text
 
     path = project / "project.toml" if project.is_dir() else project
+    folder = out or path.parent / "review"
+    spoiled = None if no_files else _own_file(path, folder)
+    if spoiled is not None:
+        option = "--out" if out else "review package"
+        raise click.UsageError(
+            f"{option}: {spoiled} there is a file of the project, which would be overwritten; choose "
+            "another folder with --out."
+        )
     try:
         with _Bar() as progress:
             result = check_project(path, progress)
@@ -76,7 +85,6 @@ def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> in
     except DomainError as error:
         _one_fault(str(error), as_json)
         return PROJECT_FAULTS
-    folder = out or path.parent / "review"
     if not no_files:
         try:
             write_files(folder, package_files(result))
@@ -88,6 +96,17 @@ def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> in
     else:
         click.echo(screen_text(result, "" if no_files else str(folder)))
     return ADEQUATE if result.verdict == "adequate" else NOT_ADEQUATE
+
+
+def _own_file(path: Path, folder: Path) -> str | None:
+    """Return the file of the package that would overwrite a file which the project at ``path`` reads."""
+    from supplycheck.project.files import files_named
+
+    own = [file for file in files_named(path) if file.exists()]
+    for target in (folder / name for name in PACKAGE_FILES):
+        if target.exists() and any(target.samefile(file) for file in own):
+            return target.name
+    return None
 
 
 class _Bar:
@@ -128,14 +147,27 @@ def _faults(error: ProjectFaultsError, as_json: bool) -> None:
         ]
         click.echo(json.dumps({"error": "project faults", "faults": rows}, indent=2, ensure_ascii=False))
         return
+    from supplycheck.project.faults import MOST_SHOWN, grouped
+
     count = len(error.faults)
     click.echo(f"The project has {count} fault{'s' if count > 1 else ''}; nothing was written.", err=True)
-    for fault in error.faults:
+    groups = grouped(error.faults)
+    for group in groups[:MOST_SHOWN]:
+        fault = group.fault
         click.echo(f"\n{fault.place}", err=True)
         click.echo(f"  {fault.problem}", err=True)
-        for name, text in (("found", fault.found), ("allowed", fault.allowed), ("do", fault.remedy)):
+        told = (
+            ("found", fault.found),
+            ("allowed", fault.allowed),
+            ("do", fault.remedy),
+            ("also in", group.also),
+        )
+        for name, text in told:
             if text:
                 click.echo(f"  {name + ':':<9}{text}", err=True)
+    if len(groups) > MOST_SHOWN:
+        more = sum(1 + len(group.rows) for group in groups[MOST_SHOWN:])
+        click.echo(f"\n… and {more} more faults; --json prints all of them.", err=True)
 
 
 def _not_converged(error: NotConvergedError, as_json: bool) -> None:

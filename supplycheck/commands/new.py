@@ -8,18 +8,20 @@ import click
 
 
 @click.command(name="new")
-@click.argument("directory", type=click.Path(path_type=Path, file_okay=False))
-def command(directory: Path) -> None:
+@click.argument("directory", type=click.Path(file_okay=False))
+def command(directory: str) -> None:
     """Write a commented starter project into DIRECTORY; it passes as it stands.
 
     An existing project is never overwritten.
     """
     from importlib.resources import files
 
-    target = directory / "project.toml"
+    if not directory.strip():
+        raise click.UsageError("DIRECTORY is empty; name the folder of the new project ('.' for this one).")
+    target = Path(directory) / "project.toml"
     text = files("supplycheck.project").joinpath("starter.toml").read_text(encoding="utf-8")
     try:
-        directory.mkdir(parents=True, exist_ok=True)
+        target.parent.mkdir(parents=True, exist_ok=True)
         with target.open("x", encoding="utf-8", newline="\n") as file:
             file.write(text)
     except FileExistsError:

@@ -13,10 +13,20 @@ from supplycheck import catalogue
 from supplycheck.catalogue import HazardRow
 from supplycheck.catalogue.tables import split_standard
 from supplycheck.errors import DomainError, NotInCatalogueError
-from supplycheck.model import DARCY, HW_METRIC, HW_US, AreaModifier, Criteria, FrictionLaw, VelocityPolicy
+from supplycheck.model import (
+    DARCY,
+    HEAD_FORM,
+    HW_METRIC,
+    HW_US,
+    AreaModifier,
+    Criteria,
+    FrictionLaw,
+    VelocityPolicy,
+)
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList, listed, quoted
 from supplycheck.project.layout_parts import units_in
+from supplycheck.project.plausible import check_density
 from supplycheck.project.schema import CriteriaTable, VelocityTable
 from supplycheck.project.sections import Sections
 from supplycheck.units import BAR, UNIT_SETS, UnitSet
@@ -65,17 +75,24 @@ def read_laws(
     """Return the friction law and the second one; Hazen-Williams in the form of the standard."""
     table = sections.criteria
     hazen = HW_METRIC if standard is not None and standard.name == "EN 12845" else HW_US
-    by_name = {"hazen-williams": hazen, "darcy-weisbach": DARCY}
+    by_name = {
+        "hazen-williams": hazen,
+        "darcy-weisbach": DARCY,
+        "hazen-williams 4.52 us": HW_US,
+        "hazen-williams 6.05e5 metric": HW_METRIC,
+        "hazen-williams 10.67 head": HEAD_FORM,
+    }
     if table is None:
         return hazen, None
-    if table.second_law == table.friction_law:
+    law, second = by_name[table.friction_law], by_name[table.second_law] if table.second_law else None
+    if second == law:
         faults.add(
             sections.place("criteria.second_law"),
             "is the same as friction_law",
             found=quoted(table.second_law),
             remedy="take the key out",
         )
-    return by_name[table.friction_law], by_name[table.second_law] if table.second_law else None
+    return law, second
 
 
 class CriteriaReader:
@@ -119,6 +136,9 @@ class CriteriaReader:
         table, units = self.table, self.units
         density = table.density.si(units) if table.density else None
         area = table.area.si(units) if table.area else None
+        place = self.sections.place("criteria.density")
+        written = table.density.units(units) if table.density else units
+        check_density(density, written, place, self.faults)
         if area is None:
             area = row.area
             if area is None:
@@ -148,8 +168,15 @@ class CriteriaReader:
             return math.nan
         try:
             density = row.density_at(area) if row.points else math.nan
-        except DomainError as caught:
-            self._fault("density", str(caught), allowed="the density that belongs to the area")
+        except DomainError:
+            low, high = (self.units.text(row.points[end].area, "area") for end in (0, -1))
+            self._fault(
+                "area",
+                f"{row.standard} prints no density of {row.name} for this area",
+                found=self.units.text(area, "area"),
+                allowed=low if low == high else f"{low} to {high}",
+                remedy="correct the area, or give the density that belongs to it",
+            )
             return math.nan
         if math.isfinite(density):
             self.notes.add("criteria.density", self.units.text(density, "density"), "catalogue", row.source)

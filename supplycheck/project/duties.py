@@ -13,7 +13,7 @@ from supplycheck.project.duty_standpipes import StandpipeReader
 from supplycheck.project.faults import FaultList
 from supplycheck.project.schema import CriteriaTable
 from supplycheck.project.sections import Sections
-from supplycheck.project.supply import TagCheck
+from supplycheck.project.tags import TagCheck
 
 NO_HOSE = HoseAllowance(0.0, None, 0.0, None, "no sprinklers: hoses are fed by the outlets", "given")
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from typing import Protocol
 
 from supplycheck.findings import Place
@@ -35,8 +35,8 @@ class Tags(Protocol):
         """Note a node that does not exist."""
         ...
 
-    def pipe(self, tag: str, where: str) -> None:
-        """Note a pipe that does not exist."""
+    def pipes_named(self, tags: Sequence[str], where: str) -> None:
+        """Note the pipes that do not exist."""
         ...
 
 

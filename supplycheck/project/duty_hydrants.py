@@ -39,8 +39,7 @@ class HydrantReader(DutyReader):
         if not found:
             self.fault("hydrant", "there is no hydrant", allowed="at least one table [[hydrant]]")
         fire_flow = self._fire_flow(table, units)
-        for tag in table.valves:
-            self.tags.pipe(tag, "fire_flow.valves")
+        self.tags.pipes_named(table.valves, "fire_flow.valves")
         self.once(table.valves, "fire_flow.valves", "pipe")
         maximum_day = self.flows(table.maximum_day, "fire_flow.maximum_day", units)
         if fire_flow is None or not found:

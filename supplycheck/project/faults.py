@@ -3,13 +3,19 @@
 from __future__ import annotations
 
 import difflib
+import re
 from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
 
 from supplycheck.errors import SupplyCheckError
 from supplycheck.findings import Fault, Place
 
 SHOWN = 60
-MOST_SHOWN = 500
+MOST_SHOWN = 40
+"""Faults told on the screen; more would not be read."""
+ROWS_SHOWN = 8
+MOST_ALIKE = 4
+_ROW = re.compile(r"row (\d+)(?:, column (.*))?", re.DOTALL)
 
 
 class ProjectFaultsError(SupplyCheckError):
@@ -19,8 +25,12 @@ class ProjectFaultsError(SupplyCheckError):
         self.faults = tuple(faults)
         count = len(self.faults)
         head = f"the project has {count} fault{'s' if count != 1 else ''}"
-        lines = [f"  {fault}" for fault in self.faults[:MOST_SHOWN]]
-        lines += [f"  … and {count - MOST_SHOWN} more"] if count > MOST_SHOWN else []
+        groups = grouped(self.faults)
+        lines = [
+            f"  {group.fault}" + (f"; also in {group.also}" if group.also else "")
+            for group in groups[:MOST_SHOWN]
+        ]
+        lines += [f"  … and {len(groups) - MOST_SHOWN} more"] if len(groups) > MOST_SHOWN else []
         super().__init__("\n".join([head, *lines]))
 
 
@@ -66,6 +76,51 @@ def listed(words: Iterable[str], limit: int = 12) -> str:
     words = list(words)
     more = len(words) - limit
     return ", ".join(words[:limit]) + (f" and {more} more" if more > 0 else "")
+
+
+@dataclass(frozen=True, slots=True)
+class FaultGroup:
+    """A fault, and the numbers of the further rows of its table that have the same."""
+
+    fault: Fault
+    rows: tuple[int, ...] = ()
+
+    @property
+    def also(self) -> str:
+        """Return the further rows in words, empty without any.
+
+        >>> FaultGroup(Fault(Place("a.csv", "row 3"), "is empty"), tuple(range(4, 20))).also
+        '16 more rows: 4, 5, 6, 7, 8, 9, 10, 11 …'
+        """
+        if not self.rows:
+            return ""
+        told = ", ".join(map(str, self.rows[:ROWS_SHOWN])) + (" …" if len(self.rows) > ROWS_SHOWN else "")
+        return f"{len(self.rows)} more row{'s' if len(self.rows) > 1 else ''}: {told}"
+
+
+def grouped(faults: Iterable[Fault]) -> list[FaultGroup]:
+    """Return ``faults`` with those of one kind in one column of a table taken together.
+
+    Alike are those with the same problem and value; with the same problem alone where there are many.
+    """
+    buckets: dict[tuple[object, ...], list[tuple[int, Fault]]] = {}
+    for order, fault in enumerate(faults):
+        row = _ROW.fullmatch(fault.place.where)
+        key: tuple[object, ...] = (order,)
+        if row:
+            key = (fault.place.file, row[2] or "", fault.problem)
+        buckets.setdefault(key, []).append((order, fault))
+    found: list[tuple[int, FaultGroup]] = []
+    for bucket in buckets.values():
+        alike: dict[object, list[tuple[int, Fault]]] = {}
+        for order, fault in bucket:
+            same = None if len(bucket) > MOST_ALIKE else (fault.found, fault.allowed, fault.remedy)
+            alike.setdefault(same, []).append((order, fault))
+        for members in alike.values():
+            order, first = members[0]
+            rows = [_ROW.fullmatch(fault.place.where) for _, fault in members[1:]]
+            found.append((order, FaultGroup(first, tuple(int(row[1]) for row in rows if row))))
+    return [group for _, group in sorted(found, key=lambda one: one[0])]
 
 
 class FaultList:

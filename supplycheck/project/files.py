@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import contextlib
 import hashlib
+import tomllib
 from pathlib import Path, PurePosixPath, PureWindowsPath
 from typing import Final
 
@@ -27,6 +29,19 @@ def decode(data: bytes, name: str, faults: FaultList) -> str | None:
         byte = f"byte 0x{data[caught.start]:02x}"
         faults.add(Place(name, f"line {line}"), "is not UTF-8", found=byte, allowed="UTF-8", remedy=remedy)
         return None
+
+
+def files_named(path: Path) -> tuple[Path, ...]:
+    """Return the project file ``path`` and the tables that it names, whether or not they can be read."""
+    with contextlib.suppress(OSError, RuntimeError):
+        path = path.resolve()
+    try:
+        network = tomllib.loads(path.read_bytes().decode("utf-8-sig")).get("network", {})
+    except (OSError, ValueError, RecursionError):
+        return (path,)
+    names = network.values() if isinstance(network, dict) else ()
+    tables = [name.partition("#")[0] for name in names if isinstance(name, str)]
+    return (path, *(path.parent / name for name in tables if "\0" not in name))
 
 
 class Folder:

@@ -20,7 +20,8 @@ from supplycheck.project.faults import FaultList, listed, quoted
 from supplycheck.project.quantity import NumberError, read_number
 from supplycheck.units import UnitSet
 
-_PART: Final = re.compile(r"(?:(\d{1,4})\s*(?:[x×]\s*)?(?=\D))?\s*(.+?)\s*(?:[:=]\s*(.+))?", re.IGNORECASE)
+_PART: Final = re.compile(r"(?:(\d+)\s*(?:[x×]\s*)?(?=\D))?\s*(.+?)\s*(?:[:=]\s*(.+))?", re.IGNORECASE)
+MOST_DIGITS: Final = 4
 _SWING: Final = "swing check valve"
 _NONE: Final = ("none", "-", "–", "0")
 
@@ -59,6 +60,14 @@ def parse(text: str, units: UnitSet, place: Place, faults: FaultList) -> list[Wr
                 "is not a list of fittings",
                 found=quoted(entry),
                 allowed="a number and a name, with ; between them: 2 elbow 90; 1 tee",
+            )
+            continue
+        if match[1] and not len(match[1]) <= MOST_DIGITS:
+            faults.add(
+                place,
+                "the number of fittings is out of range",
+                found=quoted(entry),
+                allowed=f"1 to {10**MOST_DIGITS - 1}",
             )
             continue
         length, minor_k = _own_value(match[3], entry, units, place, faults) if match[3] else (None, None)

@@ -23,7 +23,7 @@ from supplycheck.findings import Place
 from supplycheck.model import Sprinkler
 from supplycheck.project.drafts import DraftSystem, Notes
 from supplycheck.project.faults import FaultList
-from supplycheck.project.layout_check import MOST_HEADS, check_layout, count_heads
+from supplycheck.project.layout_check import MOST_HEADS, check_layout, count_heads, elevations_agree
 from supplycheck.project.layout_feed import add_feed
 from supplycheck.project.layout_parts import Builder, read_levels, repeated, units_in
 from supplycheck.project.schema_system import LayoutTable
@@ -206,7 +206,9 @@ def generate(
         return None
     units = UNIT_SETS[layout.units or sections.units]
     place = sections.place("layout")
-    check_layout(layout, sections, faults)
+    check_layout(layout, units, sections, faults)
+    if not elevations_agree(layout, units, sections, faults):
+        return None
     levels = read_levels(layout, units, sections, notes, faults)
     sprinkler = sprinklers.get(layout.sprinkler)
     area = _head_area(layout, units, notes)

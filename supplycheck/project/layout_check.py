@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
+import math
+import statistics
 from typing import Final
 
 from supplycheck.findings import Place
 from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.layout_parts import units_in
+from supplycheck.project.plausible import FARTHEST_HEAD, check_spacing
 from supplycheck.project.schema_system import LayoutTable
 from supplycheck.project.sections import Sections
+from supplycheck.units import UnitSet
 
 MOST_HEADS: Final = 200_000
 _PIECES: Final = (
@@ -95,9 +100,43 @@ def _check_grid(layout: LayoutTable, sections: Sections, faults: FaultList) -> N
         )
 
 
-def check_layout(layout: LayoutTable, sections: Sections, faults: FaultList) -> None:
+def _check_spacing(layout: LayoutTable, units: UnitSet, sections: Sections, faults: FaultList) -> None:
+    for key in ("line_spacing", "head_spacing"):
+        written = getattr(layout, key)
+        place = sections.place(f"layout.{key}")
+        check_spacing(written.si(units), written.units(units), place, faults)
+
+
+def elevations_agree(layout: LayoutTable, units: UnitSet, sections: Sections, faults: FaultList) -> bool:
+    """Return whether the elevations of ``layout`` lie within one building; the odd one out is noted."""
+    told = [("head_elevation", layout.head_elevation.si(units))]
+    for key in _PIECES:
+        piece = getattr(layout, key)
+        for name in ("elevation", "bottom_elevation"):
+            written = getattr(piece, name, None)
+            if written is not None:
+                told.append((f"{key}.{name}", written.si(units_in(piece, units))))
+    levels = [level for _, level in told if math.isfinite(level)]
+    if not levels or max(levels) - min(levels) <= FARTHEST_HEAD.si(units):
+        return True
+    middle = statistics.median(levels)
+    where, level = max(told, key=lambda one: abs(one[1] - middle) if math.isfinite(one[1]) else -1.0)
+    others = [one for one in levels if one != level]
+    faults.add(
+        sections.place(f"layout.{where}"),
+        "lies too far from the other elevations",
+        found=f"{units.text(level, 'length')}; the others are "
+        f"{units.text(min(others), 'length')} to {units.text(max(others), 'length')}",
+        allowed=f"at most {FARTHEST_HEAD.text(units)} apart",
+        remedy="check the decimal point: all elevations count from the same datum",
+    )
+    return False
+
+
+def check_layout(layout: LayoutTable, units: UnitSet, sections: Sections, faults: FaultList) -> None:
     """Note what does not fit together in ``layout``."""
     _check_names(layout, sections, faults)
+    _check_spacing(layout, units, sections, faults)
     _check_counts(layout, sections, faults)
     if layout.type == "grid":
         _check_grid(layout, sections, faults)

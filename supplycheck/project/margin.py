@@ -66,12 +66,18 @@ def _bands(
             faults.add(
                 sections.place(f"{place}.below"),
                 "the last band has a limit, so that no rule counts above it",
+                found=units_in(band, units).text(limit, "pressure"),
                 remedy="add a band without below",
             )
         elif not last and band.below is None:
             faults.add(sections.place(f"{place}.below"), "is missing: only the last band has no limit")
         elif limit <= before:
-            faults.add(sections.place(f"{place}.below"), "the limits do not rise from band to band")
+            faults.add(
+                sections.place(f"{place}.below"),
+                "the limits do not rise from band to band",
+                found=units_in(band, units).text(limit, "pressure"),
+                allowed=f"more than {units_in(band, units).text(before, 'pressure')}, the limit before it",
+            )
         before = limit
         rule = _rule(band, place, sections, units, faults, band=True)
         found.append((limit, rule))

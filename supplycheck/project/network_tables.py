@@ -12,6 +12,7 @@ from supplycheck.model.system import NodeKind, PipeRole
 from supplycheck.project.drafts import DraftPipe, DraftSystem, Notes
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.files import Folder
+from supplycheck.project.plausible import check_k_factor
 from supplycheck.project.schema_parts import LONGEST_TAG
 from supplycheck.project.sections import Sections
 from supplycheck.project.tables import Column, Row, RowTable, read_table
@@ -81,12 +82,12 @@ def _tag(row: Row, column: str, faults: FaultList) -> str | None:
     if not text:
         faults.add(row.place(column), "is empty", allowed="a tag")
         return None
-    if len(text) > LONGEST_TAG or not text.isprintable():
+    if len(text) > LONGEST_TAG or not text.isprintable() or ";" in text:
         faults.add(
             row.place(column),
             "is not a usable tag",
             found=quoted(text),
-            allowed=f"at most {LONGEST_TAG} characters, none of them a control character",
+            allowed=f"at most {LONGEST_TAG} characters, none of them a ; or a control character",
         )
         return None
     return text
@@ -139,6 +140,8 @@ class _NodeReader:
             return None
         if kind == "sprinkler":
             k_factor, area = self._head(row, tag, sprinkler, k_factor, area)
+        elif row.get("kind"):
+            self._no_head(row, kind)
         if flow and kind in ("junction", "sprinkler", "supply"):
             faults.add(
                 row.place("flow"),
@@ -164,12 +167,28 @@ class _NodeReader:
             place=row.place(),
         )
 
+    def _no_head(self, row: Row, kind: str) -> None:
+        """Note what only a sprinkler has at a node of another ``kind``."""
+        columns = ("sprinkler", "k_factor") if kind in ("supply", "junction", "hose") else ("sprinkler",)
+        for column in columns:
+            if row.get(column):
+                self.faults.add(
+                    row.place(column),
+                    f"a {kind} is no sprinkler",
+                    found=quoted(row.get(column)),
+                    allowed="an empty cell, or kind sprinkler",
+                    remedy="set the kind of this node, or leave the cell empty",
+                )
+
     def _head(
         self, row: Row, tag: str, sprinkler: str | None, k_factor: float | None, area: float | None
     ) -> tuple[float | None, float | None]:
         """Return K-factor and area of a head, from its type where the row gives none."""
         kind = self.sprinklers.get(sprinkler) if sprinkler else None
-        unread = sprinkler is not None and kind is None
+        unread = sprinkler is not None and (kind is None or math.isnan(kind.k_factor))
+        if k_factor is not None:
+            unit = self.table.unit_set("k_factor", self.units)
+            check_k_factor(k_factor, unit, row.place("k_factor"), self.faults)
         if k_factor is None and kind is not None and math.isfinite(kind.k_factor):
             k_factor = kind.k_factor
         if k_factor is None and not unread:
@@ -359,8 +378,11 @@ def read_network(
     before = len(faults)
     node_table = read_table(folder, network.nodes, sections.place("network.nodes"), NODE_COLUMNS, faults)
     pipe_table = read_table(folder, network.pipes, sections.place("network.pipes"), PIPE_COLUMNS, faults)
-    if node_table is None or pipe_table is None:
+    if node_table is None or pipe_table is None or not (node_table.whole and pipe_table.whole):
         return None
+    for table, key in ((node_table, "nodes"), (pipe_table, "pipes")):
+        if table.comma_read:
+            notes.add(f"network.{key}", "decimal commas", "inferred", "cells are separated by semicolons")
     complete = len(faults) == before
     node_reader = _NodeReader(node_table, units, sections, sprinklers, faults)
     nodes = [node for node in map(node_reader.node, node_table.rows) if node is not None]

@@ -6,6 +6,7 @@ from typing import Any
 
 from supplycheck.project.describe import descriptions, json_schema, tables
 from supplycheck.project.network_tables import NODE_COLUMNS, PIPE_COLUMNS
+from supplycheck.project.plausible import LIMITS
 from supplycheck.project.schema import ProjectFile
 from supplycheck.project.schema_parts import Table
 from supplycheck.project.tables import LONGEST_CELL, MOST_ROWS, Column
@@ -73,9 +74,26 @@ Equivalent lengths are those of the standard at C 120, times (C/120)^1.85 and, u
 
 CSV (separated by comma, semicolon or tab; UTF-8, with or without byte-order mark) or one sheet of a
 workbook, `"book.xlsx#Sheet"`. The first row holds the names of the columns, in any order and case; a unit
-in brackets behind a name, `Length (ft)`, holds for that column. Tags are texts: `001` stays `001`. A cell
-holds at most {LONGEST_CELL} characters, a table at most {MOST_ROWS} rows.
+in brackets behind a name, `Length (ft)`, holds for that column. Tags are texts: `001` stays `001`, and hold
+no `;`. A cell holds at most {LONGEST_CELL} characters, a table at most {MOST_ROWS} rows.
+
+Where semicolons separate the cells, a comma in a number is the decimal comma, `10,5`, and never separates
+thousands; this is then listed in the report. In all other files decimals are written with a point. No
+formula of a workbook is run: its stored result counts. A formula without one and merged cells are faults.
 """
+
+
+def _limit_table() -> list[str]:
+    lines = [
+        "## What no project has",
+        "",
+        "A number outside these limits is a slip of the decimal point, of a unit or a datum, and a fault.",
+        "The limits lie far outside what is built (common practice, no source); metric ones in brackets.",
+        "",
+        "| value | limit |",
+        "|---|---|",
+    ]
+    return [*lines, *(f"| {name} | {limit} |" for name, limit in LIMITS), ""]
 
 
 def _column_table(title: str, columns: tuple[Column, ...]) -> list[str]:
@@ -149,6 +167,7 @@ def input_page() -> str:
     lines = [_INTRO]
     lines += _column_table("Columns of nodes", NODE_COLUMNS)
     lines += _column_table("Columns of pipes", PIPE_COLUMNS)
+    lines += _limit_table()
     seen: set[type[Table]] = set()
     for name, table in tables():
         if table in seen:

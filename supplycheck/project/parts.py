@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 
@@ -14,6 +14,7 @@ from supplycheck.model import Device, FrictionLaw, PipeKind, Sprinkler
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.layout_parts import units_in
+from supplycheck.project.plausible import LARGEST_DIP, check_k_factor
 from supplycheck.project.pumps import PUMP_KEYS, PumpReader
 from supplycheck.project.schema_system import DeviceTable, PipeTable, SprinklerTable
 from supplycheck.project.sections import Sections
@@ -77,7 +78,10 @@ def read_sprinklers(sections: Sections, notes: Notes, faults: FaultList) -> dict
                 "coverage and coverage_area are both given",
                 allowed="one of them",
             )
-        found[tag] = _sprinkler(tag, table, units_in(table, around), notes)
+        units = units_in(table, around)
+        found[tag] = _sprinkler(tag, table, units, notes)
+        place = sections.place(f"sprinkler.{tag}.k_factor")
+        check_k_factor(found[tag].k_factor, table.k_factor.units(units), place, faults)
     return found
 
 
@@ -222,13 +226,50 @@ def _curve(
         faults.add(place, "has one point", allowed=f"two points or more{fixed}")
     elif any(after <= before for before, after in pairwise(flows)):
         faults.add(
-            place, "flows do not rise from point to point", allowed="each flow once, the smallest first"
+            place,
+            "flows do not rise from point to point",
+            found=_told(flows, "flow", units),
+            allowed="each flow once, the smallest first",
         )
     elif table.kind == "pump" and any(after > before for before, after in pairwise(values)):
         faults.add(
-            place, "the pressure of a pump rises with the flow", allowed="a pressure that falls or stays"
+            place,
+            "the pressure of a pump rises with the flow",
+            found=_told(values, "pressure", units),
+            allowed="a pressure that falls or stays",
         )
+    elif table.kind != "pump":
+        _check_loss(values, units, place, faults)
     return flows, values
+
+
+def _told(numbers: Sequence[float], kind: str, units: UnitSet) -> str:
+    """Return the numbers of a curve [SI] in a row."""
+    return f"{', '.join(units.number(number, kind) for number in numbers)} {units.symbol(kind)}"
+
+
+def _check_loss(values: Sequence[float], units: UnitSet, place: Place, faults: FaultList) -> None:
+    """Note a curve without any loss, and one whose loss falls by more than a valve's opening explains."""
+    if values and not any(values):
+        faults.add(
+            place,
+            "the loss is zero at every point",
+            found=_told(values, "pressure", units),
+            allowed="the losses of the maker",
+            remedy="a device without loss is written loss = 0",
+        )
+    highest = 0.0
+    for value in values:
+        if value < (1 - LARGEST_DIP) * highest * (1 - 1e-9):
+            faults.add(
+                place,
+                "the loss falls while the flow rises",
+                found=_told(values, "pressure", units),
+                allowed=f"no fall by more than {LARGEST_DIP:.0%} of the highest loss before it",
+                remedy="check the points against the sheet of the maker",
+            )
+            return
+        highest = max(highest, value)
 
 
 def _device(

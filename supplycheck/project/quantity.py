@@ -73,6 +73,15 @@ class Written:
         unit = self.unit if self.unit is not None else units.unit(self.kind)
         return unit.to_si(self.number)
 
+    def units(self, units: UnitSet) -> UnitSet:
+        """Return the unit set to whose unit the number is written, ``units`` for a bare number.
+
+        >>> Written(8.0, "k_factor", find_unit("gpm/psi½")).units(METRIC).name
+        'us'
+        """
+        sets = (units, METRIC if units is US else US)
+        return next((one for one in sets if self.unit == one.units.get(self.kind)), units)
+
     def text(self, units: UnitSet) -> str:
         """Return the number with its unit, as it was written."""
         unit = self.unit if self.unit is not None else units.unit(self.kind)

@@ -35,8 +35,9 @@ from supplycheck.project.layout_parts import units_in
 from supplycheck.project.network_tables import read_network
 from supplycheck.project.parts import KindReader, kinds_by_name, read_devices, read_extra, read_sprinklers
 from supplycheck.project.sections import Sections, read_sections
-from supplycheck.project.supply import SupplyReader, TagCheck
+from supplycheck.project.supply import SupplyReader
 from supplycheck.project.system import Finisher, finish
+from supplycheck.project.tags import TagCheck
 from supplycheck.units import UNIT_SETS
 
 PROJECT_FILE: Final = "project.toml"
@@ -60,11 +61,18 @@ def _parse(text: str, name: str, faults: FaultList) -> dict[str, Any] | None:
             r"(.*?)\s*\(at (?:line (\d+), column (\d+)|end of document)\)", str(caught), re.DOTALL
         )
         problem = match[1] if match else str(caught)
+        twice = re.fullmatch(r"Cannot declare \((.*)\) twice", problem)
         where = f"line {match[2]}, column {match[3]}" if match and match[2] else "end of the file"
         lines = text.splitlines()
         line = (
             lines[int(match[2]) - 1].strip() if match and match[2] and int(match[2]) <= len(lines) else ""
         )
+        if twice or problem == "Cannot overwrite a value":
+            keys = re.findall(r"'([^']*)'", twice[1]) if twice else []
+            what = f"[{'.'.join(keys)}]" if twice else "a key"
+            remedy = "keep one of them" + ("; a list of them is written [[…]]" if twice else "")
+            faults.add(Place(name, where), f"{what} stands twice", found=quoted(line), remedy=remedy)
+            return None
         faults.add(
             Place(name, where),
             f"is not TOML: {problem[:1].lower()}{problem[1:]}",
@@ -155,10 +163,15 @@ def _scenarios(sections: Sections, tags: TagCheck, faults: FaultList) -> tuple[S
                 allowed="every name once",
             )
         heads = None if table.heads == "design area" else tuple(table.heads)
-        for tag in heads or ():
-            tags.head(tag, f"{where}.heads")
-        for tag in table.closed_pipes:
-            tags.pipe(tag, f"{where}.closed_pipes")
+        if heads == () and not table.flows:
+            faults.add(
+                sections.place(f"{where}.heads"),
+                "is empty, and nothing else flows",
+                found="[]",
+                allowed='"design area", the tags of at least one sprinkler, or flows',
+            )
+        tags.heads(heads or (), f"{where}.heads")
+        tags.pipes_named(table.closed_pipes, f"{where}.closed_pipes")
         for tag in table.flows:
             tags.node(tag, f"{where}.flows")
         flows = tuple((tag, flow.si(units)) for tag, flow in table.flows.items())
@@ -190,8 +203,7 @@ def _check_area(
             found="[]",
             allowed='"search", or the tags of at least one sprinkler',
         )
-    for tag in area:
-        tags.head(tag, where)
+    tags.heads(area, where)
     for tag in sorted({tag for tag in area if area.count(tag) > 1}):
         faults.add(
             sections.place(where), "a sprinkler stands twice", found=quoted(tag), allowed="every tag once"
@@ -294,6 +306,18 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
     )
 
 
+def _check_there(path: Path, faults: FaultList) -> None:
+    """Raise :class:`ProjectFaultsError` where there is no project at ``path`` at all."""
+    folder, file = (path.parent, path) if path.name == PROJECT_FILE else (path, path / PROJECT_FILE)
+    remedy = f"`supplycheck new {folder}` makes one"
+    if path.is_dir() and not file.exists() and not file.is_symlink():
+        faults.add(Place(str(path)), f"there is no {PROJECT_FILE} in this folder", remedy=remedy)
+    elif not path.exists() and not path.is_symlink():
+        where = "" if path.suffix and path.name != PROJECT_FILE else remedy
+        faults.add(Place(str(path)), "there is no such folder or project file", remedy=where)
+    faults.stop()
+
+
 def read_project(path: Path) -> Project:
     """Return the project whose file, or whose folder with a ``project.toml``, is ``path``.
 
@@ -306,6 +330,7 @@ def read_project(path: Path) -> Project:
     """
     faults = FaultList()
     path = Path(path)
+    _check_there(path, faults)
     if path.is_dir():
         path = path / PROJECT_FILE
     with contextlib.suppress(OSError, RuntimeError):  # a circle of links: the reading says so

@@ -95,7 +95,9 @@ class CriteriaTable(UnitTable):
     slope_over_1_in_6: bool = False
     """The ceiling slopes by more than 1 in 6: the area grows by 30 per cent."""
     friction_law: LawName = "hazen-williams"
-    """Friction law; Hazen-Williams is used in the form that the standard prints."""
+    """Friction law. `hazen-williams` alone is the form that the standard prints; a longer name is that
+    published form: 4.52 with 1.85 and 4.87 (psi/ft), 6.05e5 with the same (bar/m), 10.67 with 1.852 and
+    4.871 (m/m). The head form takes water at 9.81 kPa/m, heights too."""
     second_law: LawName | None = None
     """A second friction law, printed side by side."""
     velocity_pressure: bool = False

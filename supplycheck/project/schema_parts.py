@@ -10,7 +10,13 @@ from pydantic_core import PydanticCustomError
 from supplycheck.project.faults import quoted
 
 UnitsName = Literal["us", "metric"]
-LawName = Literal["hazen-williams", "darcy-weisbach"]
+LawName = Literal[
+    "hazen-williams",
+    "darcy-weisbach",
+    "hazen-williams 4.52 us",
+    "hazen-williams 6.05e5 metric",
+    "hazen-williams 10.67 head",
+]
 LONGEST_TEXT = 10_000
 LONGEST_TAG = 80
 

@@ -35,7 +35,8 @@ class OutletTable(UnitTable):
     shape: Text = ""
     """Shape of the outlet as the catalogue names it, instead of `coefficient`."""
     pumper_factor: Ratio | None = None
-    """Factor for a large (pumper) outlet. Default: 1 for outlets under 4 in; needed above."""
+    """Factor for a large (pumper) outlet. Default: 1 under 4 in; from 4 in up, and for a `pumper outlet`,
+    the published one by the pitot reading, which is then listed. A large `hose outlet` needs it."""
     hydrant: Text = ""
     """The hydrant it is on."""
     kind: Literal["hose outlet", "pumper outlet", "diffuser"] | None = None

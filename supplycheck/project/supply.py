@@ -2,71 +2,32 @@
 
 from __future__ import annotations
 
+import datetime as dt
 import math
 
-from supplycheck import catalogue
-from supplycheck.errors import DomainError, NotInCatalogueError
-from supplycheck.hydraulics.discharge import PITOT, pitot_discharge
-from supplycheck.model import Adjustment, FlowTest, Outlet, Supply, System, Tank, TestPoint
-from supplycheck.model.system import Origin
+from supplycheck.model import Adjustment, FlowTest, Supply, Tank, TestPoint
 from supplycheck.project.drafts import Notes
-from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.faults import FaultList, listed, quoted
 from supplycheck.project.grade import GradeReader
 from supplycheck.project.layout_parts import units_in
 from supplycheck.project.margin import read_margin
+from supplycheck.project.outlets import OutletReader, discharge
+from supplycheck.project.plausible import (
+    FARTHEST_GAUGE,
+    FARTHEST_WATER,
+    check_height,
+    check_static,
+    check_test_date,
+)
 from supplycheck.project.schema_supply import (
     FlowTestTable,
-    OutletTable,
     SupplyTable,
     TankTable,
     TestPointTable,
 )
 from supplycheck.project.sections import Sections
-from supplycheck.units import INCH, UNIT_SETS, UnitSet
-
-PUMPER_SIZE = 4 * INCH
-"""Outlets from this diameter [m] up are pumper outlets, whose stream is not full."""
-
-
-class TagCheck:
-    """Knows the tags of a system and notes those that do not exist."""
-
-    def __init__(self, system: System | None, sections: Sections, faults: FaultList) -> None:
-        self.nodes = {node.tag: node for node in system.nodes} if system else {}
-        self.pipes = {pipe.tag for pipe in system.pipes} if system else set()
-        self.known, self.sections, self.faults = system is not None, sections, faults
-
-    def _missing(self, tag: str, where: str, what: str, known: dict[str, object] | set[str]) -> None:
-        close = near(tag, known) if len(known) < 5000 else ""
-        self.faults.add(
-            self.sections.place(where),
-            f"there is no such {what}",
-            found=quoted(tag),
-            allowed=f"a tag of a {what} of the system",
-            remedy=f"did you mean {close}?" if close else "",
-        )
-
-    def node(self, tag: str, where: str) -> None:
-        """Note a node that does not exist."""
-        if self.known and tag not in self.nodes:
-            self._missing(tag, where, "node", dict(self.nodes))
-
-    def head(self, tag: str, where: str) -> None:
-        """Note a node that does not exist or is no sprinkler."""
-        self.node(tag, where)
-        node = self.nodes.get(tag)
-        if node is not None and node.kind != "sprinkler":
-            self.faults.add(
-                self.sections.place(where),
-                "is not a sprinkler",
-                found=f"{tag}, a {node.kind}",
-                allowed="a sprinkler",
-            )
-
-    def pipe(self, tag: str, where: str) -> None:
-        """Note a pipe that does not exist."""
-        if self.known and tag not in self.pipes:
-            self._missing(tag, where, "pipe", self.pipes)
+from supplycheck.project.tags import TagCheck
+from supplycheck.units import UNIT_SETS, UnitSet
 
 
 class SupplyReader:
@@ -83,6 +44,7 @@ class SupplyReader:
     ) -> None:
         self.sections, self.table, self.tags = sections, table, tags
         self.notes, self.faults = notes, faults
+        self.outlets = OutletReader(sections, notes, faults)
         self.grade = GradeReader(sections.file, unit_weight, notes, faults)
         self.units = units_in(table, UNIT_SETS[sections.units])
         self.supply_nodes = [node.tag for node in tags.nodes.values() if node.kind == "supply"]
@@ -112,83 +74,6 @@ class SupplyReader:
             )
         return self.supply_nodes[0] if self.supply_nodes else ""
 
-    def _outlet(self, table: OutletTable, where: str, units: UnitSet) -> Outlet | None:
-        units = units_in(table, units)
-        diameter, pitot = table.diameter.si(units), table.pitot.si(units)
-        if table.kind == "diffuser" or table.k_factor is not None:
-            return self._diffuser(table, where, units)
-        coefficient, origin = self._coefficient(table, where)
-        if not (math.isfinite(diameter) and math.isfinite(pitot)):
-            return None
-        factor = table.pumper_factor.number if table.pumper_factor else 1.0
-        large = diameter >= PUMPER_SIZE * (1 - 1e-9) and table.kind != "hose outlet"
-        if table.pumper_factor is None and (large or table.kind == "pumper outlet"):
-            try:
-                row = catalogue.pumper_factor(pitot)
-            except DomainError as caught:
-                self._fault(
-                    f"{where}.pumper_factor", f"is missing: {caught}", allowed="a factor above 0, at most 1"
-                )
-                return None
-            factor = row.value
-            self.notes.add(f"{where}.pumper_factor", f"{factor:g}", "catalogue", row.source)
-        for key, value in (("coefficient", coefficient), ("pumper_factor", factor)):
-            if value is not None and value > 1:
-                self._fault(
-                    f"{where}.{key}",
-                    "is above 1",
-                    found=f"{value:g}",
-                    allowed="a number above 0, at most 1",
-                )
-        if coefficient is None:
-            return None
-        kind = table.kind or ""
-        return Outlet(diameter, coefficient, pitot, factor, table.shape, origin, table.hydrant, kind)
-
-    def _diffuser(self, table: OutletTable, where: str, units: UnitSet) -> Outlet | None:
-        """Return a diffuser by its maker's figure, told as a coefficient of its opening."""
-        if table.kind != "diffuser":
-            self._fault(
-                f"{where}.k_factor", "is for a diffuser", allowed='kind = "diffuser", or a coefficient'
-            )
-        if table.shape or table.pumper_factor:
-            key = "shape" if table.shape else "pumper_factor"
-            self._fault(f"{where}.{key}", "a diffuser does not use it", remedy="take it out")
-        if (table.k_factor is None) == (table.coefficient is None):
-            self._fault(
-                f"{where}.k_factor",
-                "a diffuser needs the figure of its maker",
-                allowed="k_factor or coefficient, one of them",
-            )
-            return None
-        diameter, pitot = table.diameter.si(units), table.pitot.si(units)
-        if table.coefficient is not None:
-            coefficient = table.coefficient.number
-        elif table.k_factor is not None:
-            coefficient = table.k_factor.si(units) / (PITOT * diameter**2)
-        return Outlet(diameter, coefficient, pitot, 1.0, "", "given", table.hydrant, "diffuser")
-
-    def _coefficient(self, table: OutletTable, where: str) -> tuple[float | None, Origin]:
-        if table.coefficient is not None:
-            return table.coefficient.number, "given"
-        shapes = listed(catalogue.outlet_shapes())
-        if not table.shape:
-            self._fault(f"{where}.coefficient", "is missing", allowed=f"a coefficient, or shape: {shapes}")
-            return None, "given"
-        try:
-            row = catalogue.outlet_coefficient(table.shape)
-        except NotInCatalogueError:
-            self._fault(
-                f"{where}.shape",
-                "is not a shape of the catalogue",
-                found=quoted(table.shape),
-                allowed=shapes,
-                remedy="or give coefficient",
-            )
-            return None, "given"
-        self.notes.add(f"{where}.coefficient", f"{row.value:g}, {table.shape}", "catalogue", row.source)
-        return row.value, "catalogue"
-
     def _point(self, table: TestPointTable | FlowTestTable, where: str, units: UnitSet) -> TestPoint | None:
         units = units_in(table, units)
         if table.residual is None:
@@ -202,12 +87,12 @@ class SupplyReader:
             )
             return None
         outlets = [
-            self._outlet(outlet, f"{where}.outlets[{number}]", units)
+            self.outlets.read(outlet, f"{where}.outlets[{number}]", units)
             for number, outlet in enumerate(table.outlets, start=1)
         ]
         sound = tuple(outlet for outlet in outlets if outlet is not None)
         flow = (
-            table.flow.si(units) if table.flow is not None else sum(_discharge(outlet) for outlet in sound)
+            table.flow.si(units) if table.flow is not None else sum(discharge(outlet) for outlet in sound)
         )
         return TestPoint(table.residual.si(units), flow, sound)
 
@@ -247,6 +132,47 @@ class SupplyReader:
                     remedy="check whether static and residual are exchanged",
                 )
 
+    def _check_pitots(self, table: FlowTestTable, where: str, units: UnitSet) -> None:
+        """Note pitot readings above the static pressure: no stream is stronger than the main at rest."""
+        static = table.static.si(units) if table.static else math.nan
+        lists = [(where, table.outlets, units)] + [
+            (f"{where}.points[{number}]", point.outlets, units_in(point, units))
+            for number, point in enumerate(table.points, start=1)
+        ]
+        for base, outlets, local in lists:
+            for number, outlet in enumerate(outlets, start=1):
+                pitot = outlet.pitot.si(units_in(outlet, local))
+                if pitot > static:
+                    self._fault(
+                        f"{base}.outlets[{number}].pitot",
+                        "is above the static pressure",
+                        found=units.text(pitot, "pressure"),
+                        allowed=f"at most the static of {units.text(static, 'pressure')}",
+                        remedy="check the readings, the decimal point and the units",
+                    )
+
+    def _check_plausible(
+        self, table: FlowTestTable, where: str, units: UnitSet, elevation: float | None
+    ) -> None:
+        """Note a static, a gauge or a date that no test has; ``elevation`` [m] is that of its node."""
+        place = self.sections.place
+        key = "static" if table.hgl_high is None else "hgl_high"
+        if table.static is not None:
+            check_static(table.static.si(units), units, place(f"{where}.{key}"), self.faults)
+        if table.gauge_elevation is not None and elevation is not None:
+            height = table.gauge_elevation.si(units) - elevation
+            gauge = place(f"{where}.gauge_elevation")
+            check_height(height, FARTHEST_GAUGE, "its node", units, gauge, self.faults)
+        check_test_date(table.date, self._latest(), place(f"{where}.date"), self.faults)
+
+    def _latest(self) -> dt.date | None:
+        """Return the later of the date of the project and the day of submittal, where both can be read."""
+        facts, days = self.sections.project, [self.table.submittal_date]
+        keys = ("project", "project.date", "supply.submittal_date")
+        if facts is None or any(self.faults.sealed(self.sections.place(key)) for key in keys):
+            return None
+        return max(day for day in (facts.date, *days) if day is not None)
+
     def _test(self, number: int, table: FlowTestTable) -> FlowTest:
         where = f"supply.flow_test[{number}]" if self.sections.tests_listed else "supply.flow_test"
         units = units_in(table, self.units)
@@ -257,6 +183,8 @@ class SupplyReader:
         if static is None or gauge is None:  # the grade reader has filled both
             raise AssertionError
         self._check_drop(table, where, units)
+        self._check_pitots(table, where, units)
+        self._check_plausible(table, where, units, None if at is None else at.elevation)
         points = self._points(table, where, units)
         return FlowTest(
             tag=table.tag or f"test {number}",
@@ -284,6 +212,11 @@ class SupplyReader:
         where = f"supply.tank[{number}]"
         units = units_in(table, self.units)
         level = table.water_level.si(units)
+        node = self._node(table.node, f"{where}.node")
+        at = self.tags.nodes.get(node)
+        if at is not None:
+            height, place = level - at.elevation, self.sections.place(f"{where}.water_level")
+            check_height(height, FARTHEST_WATER, "its node", units, place, self.faults)
         low = table.low_level.si(units) if table.low_level else None
         if low is not None and low > level:
             self._fault(
@@ -298,7 +231,7 @@ class SupplyReader:
             )
         return Tank(
             tag=table.tag,
-            node=self._node(table.node, f"{where}.node"),
+            node=node,
             water_level=level,
             volume=table.volume.si(units) if table.volume else None,
             refill=table.refill.si(units) if table.refill else 0.0,
@@ -381,9 +314,3 @@ class SupplyReader:
         tag = self.table.node or (self.supply_nodes[0] if self.supply_nodes else "")
         self.notes.add("supply.compare_at", tag, "assumed", "the supply node")
         return tag
-
-
-def _discharge(outlet: Outlet) -> float:
-    """Return the flow of an outlet [m³/s] by the pitot law, its pumper factor included."""
-    flow, _ = pitot_discharge(coefficient=outlet.coefficient, diameter=outlet.diameter, pitot=outlet.pitot)
-    return float(flow) * outlet.pumper_factor

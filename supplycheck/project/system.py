@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections import Counter
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 
 from supplycheck import catalogue
 from supplycheck.errors import NotInCatalogueError
@@ -20,10 +20,79 @@ from supplycheck.project.sections import Sections
 from supplycheck.units import UNIT_SETS, UnitSet
 
 
-def check_connections(
-    nodes: Sequence[Node], pipes: Sequence[DraftPipe], place: Place, faults: FaultList
+def _note_islands(
+    groups: Sequence[Sequence[int]], nodes: Sequence[Node], place: Place, faults: FaultList
 ) -> None:
-    """Note a missing supply, nodes that no pipe joins to it, and valves that cut nodes off."""
+    """Note the nodes that nothing joins, all in one fault, and each part that hangs together by itself."""
+    alone = [group[0] for group in groups if len(group) == 1]
+    parts = [list(group) for group in groups if len(group) > 1]
+    for group in ([alone] if alone else []) + parts:
+        tags = [nodes[number].tag for number in group]
+        if group is not alone:
+            problem = "a part of the system is not joined to the supply"
+        elif len(alone) == 1:
+            problem = f"the node {tags[0]} is not joined to anything"
+        else:
+            problem = f"{len(alone)} nodes are not joined to anything"
+        faults.add(
+            nodes[group[0]].place or place,
+            problem,
+            found=f"{len(group)} nodes: {listed(tags)}" if len(group) > 1 else "",
+            allowed="a way through pipes from every node to a supply node",
+            remedy="add the missing pipe, or take the nodes out",
+        )
+
+
+def _reached(
+    nodes: Sequence[Node], pipes: Sequence[DraftPipe], one_way: Collection[str]
+) -> tuple[set[str], list[DraftPipe]]:
+    """Return the nodes that water can reach, and the one-way pipes that end there but begin elsewhere."""
+    onward: dict[str, list[str]] = {node.tag: [] for node in nodes}
+    valved = []
+    for pipe in pipes:
+        if pipe.valve == "closed":
+            continue
+        onward[pipe.start].append(pipe.end)
+        if pipe.valve == "check" or any(tag in one_way for tag in pipe.devices):
+            valved.append(pipe)
+        else:
+            onward[pipe.end].append(pipe.start)
+    ring = [node.tag for node in nodes if node.kind == "supply"]
+    reached = set(ring)
+    while ring:
+        ring = [tag for tag in dict.fromkeys(t for one in ring for t in onward[one]) if tag not in reached]
+        reached.update(ring)
+    return reached, [pipe for pipe in valved if pipe.end in reached and pipe.start not in reached]
+
+
+def _check_one_way(
+    nodes: Sequence[Node], pipes: Sequence[DraftPipe], one_way: Collection[str], faults: FaultList
+) -> None:
+    """Note check valves against which water would have to flow to reach an outlet."""
+    reached, against = _reached(nodes, pipes, one_way)
+    outlets = ("sprinkler", "hydrant", "outlet")
+    dry = [node.tag for node in nodes if node.kind in outlets and node.tag not in reached]
+    if dry and against:
+        faults.add(
+            against[0].place,
+            f"the check valve in {against[0].tag} points the wrong way: no water passes beyond it",
+            found=f"{len(dry)} sprinklers or outlets: {listed(dry)}",
+            allowed="flow from the first node of the pipe to the second only",
+            remedy="exchange the two nodes of this pipe",
+        )
+
+
+def check_connections(
+    nodes: Sequence[Node],
+    pipes: Sequence[DraftPipe],
+    place: Place,
+    faults: FaultList,
+    one_way: Collection[str] = (),
+) -> None:
+    """Note a missing supply, nodes that no pipe joins to it, and valves that cut nodes off.
+
+    ``one_way`` are the tags of the devices that let no water back.
+    """
     roots = [number for number, node in enumerate(nodes) if node.kind == "supply"]
     if not roots:
         faults.add(
@@ -36,22 +105,8 @@ def check_connections(
     index = {node.tag: number for number, node in enumerate(nodes)}
     ends = [(index[pipe.start], index[pipe.end]) for pipe in pipes]
     groups = islands(len(nodes), ends, tree_from(len(nodes), ends, roots).order)
-    for group in groups:
-        tags = [nodes[number].tag for number in group]
-        first = nodes[group[0]].place or place
-        where = (
-            "is not joined to anything"
-            if len(group) == 1
-            else "a part of the system is not joined to the supply"
-        )
-        faults.add(
-            first,
-            f"the node {tags[0]} {where}" if len(group) == 1 else where,
-            found=f"{len(group)} nodes: {listed(tags)}" if len(group) > 1 else "",
-            allowed="a way through pipes from every node to a supply node",
-            remedy="add the missing pipe, or take the nodes out",
-        )
     if groups:
+        _note_islands(groups, nodes, place, faults)
         return
     opened = [end for end, pipe in zip(ends, pipes, strict=True) if pipe.valve != "closed"]
     cut = [
@@ -60,7 +115,9 @@ def check_connections(
         if rank < 0
     ]
     heads = [node.tag for node in cut if node.kind == "sprinkler"]
-    if heads:
+    if not heads:
+        _check_one_way(nodes, pipes, one_way, faults)
+    else:
         shut = [pipe for pipe in pipes if pipe.valve == "closed"]
         faults.add(
             shut[0].place,
@@ -69,6 +126,11 @@ def check_connections(
             allowed="an open way to every sprinkler",
             remedy="open the valve here, and close it in a scenario (closed_pipes)",
         )
+
+
+def _coordinates(node: Node) -> tuple[float, ...]:
+    """Return what is given of the place of a node; NaN where it could not be read."""
+    return tuple(number for number in (node.x, node.y, node.elevation) if number is not None)
 
 
 def _cell(draft: DraftPipe, key: str) -> Place:
@@ -252,11 +314,13 @@ def finish(
     """Return the finished system. With faults noted it is not fit for use."""
     place = finisher.sections.place("layout" if finisher.sections.layout else "network.nodes")
     if draft.complete:
-        check_connections(draft.nodes, draft.pipes, place, faults)
+        one_way = {tag for tag, one in finisher.devices.items() if one.device and one.device.one_way}
+        check_connections(draft.nodes, draft.pipes, place, faults, one_way)
     sizes = [finisher.size(pipe) for pipe in draft.pipes]
     finisher.note_unknown_sizes()
     charges: dict[int, list[tuple[str, str]]] = {}
-    if draft.complete and any(pipe.infer for pipe in draft.pipes):
+    known = all(math.isfinite(number) for node in draft.nodes for number in _coordinates(node))
+    if draft.complete and known and any(pipe.infer for pipe in draft.pipes):
         safe = [bore if math.isfinite(bore) else 0.0 for bore, _ in sizes]
         for charge in infer(draft.nodes, draft.pipes, safe, faults):
             charges.setdefault(charge.pipe, []).append((charge.fitting, charge.node))

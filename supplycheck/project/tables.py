@@ -4,20 +4,24 @@ from __future__ import annotations
 
 import csv
 import io
+import itertools
 import math
 import re
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
-from typing import Any, Final
+from typing import Final
 
 from supplycheck.findings import Place
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.files import Folder
 from supplycheck.project.quantity import LARGEST, NumberError, Sign, read_number
-from supplycheck.units import Unit, UnitSet, find_unit
+from supplycheck.project.workbook import MERGED, UNSTORED, sheet_rows
+from supplycheck.units import METRIC, US, Unit, UnitSet, find_unit
 
 LONGEST_CELL: Final = 10_000
 MOST_ROWS: Final = 1_000_000
+_COMMA: Final = re.compile(r"[+\-−]?\d*,\d+(?:[^\d,.][^,.]*)?")
+"""A number with a decimal comma, and perhaps a unit behind it; thousands are never separated."""
 _WITH_UNIT: Final = re.compile(r"(.*?)\s*[(\[]([^)\]]+)[)\]]\s*")
 
 
@@ -50,12 +54,24 @@ class Row:
 
 @dataclass(frozen=True, slots=True)
 class RowTable:
-    """A table as read: its rows and the unit that a heading states for a column."""
+    """A table as read: its rows and the unit that a heading states for a column.
+
+    A table is not ``whole`` where it could not be read to its end; its rows then say nothing about what is
+    missing. ``decimal_comma`` says that numbers may be written `10,5`, ``comma_read`` that some are.
+    """
 
     file: str
     columns: frozenset[str]
     rows: tuple[Row, ...]
     units: Mapping[str, Unit]
+    whole: bool = True
+    decimal_comma: bool = False
+    comma_read: bool = False
+
+    def unit_set(self, column: str, default: UnitSet) -> UnitSet:
+        """Return the unit set to which the unit of ``column`` belongs: ``default`` without one."""
+        unit = self.units.get(column)
+        return next((one for one in (US, METRIC) if unit and one.units.get(unit.kind) == unit), default)
 
     def number(
         self, row: Row, column: str, kind: str, default: UnitSet, faults: FaultList, sign: Sign = "positive"
@@ -64,6 +80,8 @@ class RowTable:
         text = row.cells.get(column, "")
         if not text:
             return None
+        if self.decimal_comma and _COMMA.fullmatch(text):
+            text = text.replace(",", ".")
         unit = self.units.get(column) or default.unit(kind)
         try:
             value = float(text)
@@ -88,75 +106,52 @@ class RowTable:
 
 
 def _csv_rows(text: str, name: str, faults: FaultList) -> Iterator[tuple[int, list[str]]]:
-    head = text.split("\n", 1)[0]
-    delimiter = max(",;\t", key=head.count)
-    reader = csv.reader(io.StringIO(text, newline=""), delimiter=delimiter, strict=True)
-    number = 0
+    reader = csv.reader(io.StringIO(text, newline=""), delimiter=_delimiter(text), strict=True)
+    number = line = 0
     try:
         for cells in reader:
-            number += 1
+            number, line = number + 1, reader.line_num
             yield number, cells
     except csv.Error as caught:
         too_long = "field limit" in str(caught)
+        begins = next(itertools.islice(io.StringIO(text), line, None), "").rstrip("\r\n")
+        long = f"more than {csv.field_size_limit()} characters"
         faults.add(
             Place(name, f"row {number + 1}"),
             "a cell is too long" if too_long else f"cannot be read as CSV ({caught})",
-            found=f"more than {csv.field_size_limit()} characters" if too_long else "",
-            allowed=f"at most {LONGEST_CELL} characters in a cell" if too_long else "",
-            remedy="look for a quote that is opened and not closed",
+            found=long if too_long else quoted(begins),
+            allowed=f"at most {LONGEST_CELL} characters in a cell" if too_long else "quotes in pairs",
+            remedy="look for a quote that is opened and not closed, here or in a row above",
         )
 
 
-def _cell_text(value: Any) -> str:
-    """Return a spreadsheet cell as the text that the sheet shows for it."""
-    if value is None:
-        return ""
-    if isinstance(value, bool):
-        return "true" if value else "false"
-    if isinstance(value, float) and value.is_integer() and abs(value) < 1e15:
-        return str(int(value))
-    return str(value)
+def _delimiter(text: str) -> str:
+    """Return what separates the cells: of comma, semicolon and tab the one met most in the first line."""
+    head = text.split("\n", 1)[0]
+    return max(",;\t", key=head.count)
 
 
-def _xlsx_rows(
-    data: bytes, name: str, sheet: str, place: Place, faults: FaultList
-) -> Iterator[tuple[int, list[str]]]:
-    import warnings
-    import zipfile
-
-    import openpyxl
-
-    try:
-        with warnings.catch_warnings():
-            warnings.simplefilter("ignore")  # styles and extensions that the reader does not need
-            book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=True)
-    except (zipfile.BadZipFile, KeyError, ValueError, OSError, TypeError, SyntaxError, EOFError):
-        faults.add(
-            place,
-            "cannot be read as XLSX",
-            found=quoted(name),
-            allowed="a workbook saved as .xlsx, not protected by a password",
-            remedy="open it in the spreadsheet program and save it again, or export the sheet as CSV",
-        )
-        return
-    names = list(book.sheetnames)
-    if sheet and sheet not in names:
-        close = near(sheet, names)
-        faults.add(
-            place,
-            "the workbook has no such sheet",
-            found=quoted(sheet),
-            allowed=listed(names),
-            remedy=f'did you mean "{close}"?' if close else "",
-        )
-        return
-    try:
-        for number, cells in enumerate(book[sheet or names[0]].iter_rows(values_only=True), start=1):
-            yield number, [_cell_text(cell) for cell in cells]
-    except (zipfile.BadZipFile, KeyError, ValueError, OSError, TypeError, SyntaxError, EOFError) as caught:
-        faults.add(place, f"the sheet cannot be read ({type(caught).__name__})", found=quoted(name))
-    finally:
-        book.close()
+def _note_marks(cells: list[str], place: Place, names: list[str], faults: FaultList) -> list[str]:
+    """Return the ``cells`` of a row without their marks, each noted that stands in a named column."""
+    for position, text in enumerate(cells):
+        column = names[position] if position < len(names) else ""
+        if text == UNSTORED and column:
+            faults.add(
+                Place(place.file, f"{place.where}, column {column}"),
+                "holds a formula without a stored result",
+                allowed="a value, or a formula with its result",
+                remedy="open it in the spreadsheet program and save it",
+            )
+        elif text.startswith(MERGED) and column:
+            merged = text.removeprefix(MERGED)
+            faults.add(
+                Place(place.file, f"cells {merged}"),
+                "cells are merged",
+                found=merged,
+                allowed="a cell for each value",
+                remedy="unmerge them and fill in every cell",
+            )
+    return ["" if text == UNSTORED or text.startswith(MERGED) else text for text in cells]
 
 
 def _heading(cell: str) -> tuple[str, str]:
@@ -220,6 +215,8 @@ def _body(
         if number > MOST_ROWS:
             faults.add(Place(name), "the table is too long", allowed=f"at most {MOST_ROWS} rows")
             return
+        if any(cell.startswith("\0") for cell in cells):
+            cells = _note_marks(cells, Place(name, f"row {number}"), names, faults)
         if not any(cells):
             continue
         texts = [cell.strip() for cell in cells]
@@ -251,16 +248,27 @@ def read_table(
     """Return the table ``name`` (``book.xlsx#Sheet`` for a sheet); ``None`` with faults noted."""
     by_name = {column.name: column for column in columns}
     before = len(faults)
-    file, _, sheet = name.partition("#")
+    file, mark, sheet = name.partition("#")
+    comma = False
     if file.casefold().endswith(".xlsx"):
         data = folder.read(file, place)
         if data is None:
             return None
-        raw = _xlsx_rows(data, file, sheet.strip(), place, faults)
+        raw = sheet_rows(data, file, sheet.strip(), place, faults)
     elif file.casefold().endswith((".csv", ".txt", ".tsv")):
+        if mark:
+            faults.add(
+                place,
+                "names a sheet of a text file, which has none",
+                found=quoted(name),
+                allowed="a sheet of a workbook, book.xlsx#Sheet",
+                remedy=f"write {quoted(file)} alone",
+            )
+            return None
         text = folder.read_text(file, place)
         if text is None:
             return None
+        comma = _delimiter(text) == ";"
         raw = _csv_rows(text, file, faults)
     else:
         faults.add(
@@ -274,11 +282,23 @@ def read_table(
                 place, "the table is empty", found=quoted(name), allowed="a heading row and rows below it"
             )
         return None
-    names, units = _headings(head[1], head[0], name, by_name, faults)
+    numbered = [str(number) for number, _ in enumerate(head[1], start=1)]
+    cells = _note_marks(head[1], Place(name, f"row {head[0]}"), numbered, faults)
+    names, units = _headings(cells, head[0], name, by_name, faults)
     if any(column.required and column.name not in names for column in columns):
         return None
+    headed = len(faults)
     rows = tuple(_body(raw, name, names, faults))
     if not rows and len(faults) == before:
         faults.add(place, "the table has no rows", found=quoted(name), allowed="rows below the heading row")
         return None
-    return RowTable(name, frozenset(filter(None, names)), rows, units)
+    numbers = [key for key in names if key and by_name[key].kind]
+    return RowTable(
+        name,
+        frozenset(filter(None, names)),
+        rows,
+        units,
+        whole=len(faults) == headed,
+        decimal_comma=comma,
+        comma_read=comma and any(_COMMA.fullmatch(row.get(key)) for row in rows for key in numbers),
+    )

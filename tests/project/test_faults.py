@@ -250,7 +250,7 @@ def test_utf_16_is_named(tmp_path: Path) -> None:
 def test_missing_project_file(tmp_path: Path) -> None:
     with pytest.raises(ProjectFaultsError) as caught:
         read_project(tmp_path / "nothing.toml")
-    assert "does not exist" in str(caught.value)
+    assert "there is no such folder or project file" in str(caught.value)
 
 
 def test_missing_table_names_those_there_are(tmp_path: Path) -> None:

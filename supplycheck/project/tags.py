@@ -1,0 +1,67 @@
+"""The tags of a system, and what of those named elsewhere does not exist."""
+
+from __future__ import annotations
+
+from collections.abc import Collection, Sequence
+
+from supplycheck.model import System
+from supplycheck.project.faults import FaultList, listed, near, quoted
+from supplycheck.project.sections import Sections
+
+
+class TagCheck:
+    """Knows the tags of a system and notes those that do not exist."""
+
+    def __init__(self, system: System | None, sections: Sections, faults: FaultList) -> None:
+        self.nodes = {node.tag: node for node in system.nodes} if system else {}
+        self.pipes = {pipe.tag for pipe in system.pipes} if system else set()
+        self.known, self.sections, self.faults = system is not None, sections, faults
+
+    def _missing(self, tag: str, where: str, what: str, known: Collection[str]) -> None:
+        close = near(tag, known) if len(known) < 5000 else ""
+        self.faults.add(
+            self.sections.place(where),
+            f"there is no such {what}",
+            found=quoted(tag),
+            allowed=f"a tag of a {what} of the system",
+            remedy=f"did you mean {close}?" if close else "",
+        )
+
+    def node(self, tag: str, where: str) -> None:
+        """Note a node that does not exist."""
+        if self.known and tag not in self.nodes:
+            self._missing(tag, where, "node", self.nodes)
+
+    def heads(self, tags: Sequence[str], where: str) -> None:
+        """Note the nodes that do not exist and those that are no sprinklers, all of them at once."""
+        if not self.known:
+            return
+        self._all_missing([tag for tag in tags if tag not in self.nodes], where, "node", self.nodes)
+        others = [
+            f"{tag}, a {self.nodes[tag].kind}"
+            for tag in tags
+            if tag in self.nodes and self.nodes[tag].kind != "sprinkler"
+        ]
+        if others:
+            self.faults.add(
+                self.sections.place(where),
+                "is not a sprinkler" if len(others) == 1 else f"{len(others)} nodes are not sprinklers",
+                found=listed(others) if len(others) == 1 else "; ".join(others[:12]),
+                allowed="tags of sprinklers",
+            )
+
+    def pipes_named(self, tags: Sequence[str], where: str) -> None:
+        """Note the pipes that do not exist, all of them at once."""
+        if self.known:
+            self._all_missing([tag for tag in tags if tag not in self.pipes], where, "pipe", self.pipes)
+
+    def _all_missing(self, tags: list[str], where: str, what: str, known: Collection[str]) -> None:
+        if len(tags) == 1:
+            self._missing(tags[0], where, what, known)
+        elif tags:
+            self.faults.add(
+                self.sections.place(where),
+                f"there are no such {what}s",
+                found=listed([quoted(tag) for tag in tags]),
+                allowed=f"tags of {what}s of the system",
+            )
