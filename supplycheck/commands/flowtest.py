@@ -95,6 +95,7 @@ def _answer(given: dict[str, Any], units: UnitSet) -> Answer:
 
     test, each = read_flow_test(given, units)
     _check_residuals(test, units)
+    _check_readings(test, units)
     curve = gauge_curve(test)
     submittal = read_day("submittal", given["submittal"]) if given["submittal"] else None
     pressures = [read_si("at-pressure", text, "pressure", units) for text in given["at_pressures"]]
@@ -128,6 +129,25 @@ def _check_residuals(test: FlowTest, units: UnitSet) -> None:
             raise DomainError(
                 f"the residual {residual} is not below the static {static}; allowed: a residual below the "
                 "static. Check that the two are not swapped and that water was flowing."
+            )
+
+
+def _check_readings(test: FlowTest, units: UnitSet) -> None:
+    """Refuse readings that no hydrant gives; raises :class:`DomainError`."""
+    from supplycheck.errors import DomainError
+    from supplycheck.project.plausible import HIGHEST_STATIC
+
+    if test.static > HIGHEST_STATIC.si(units) * (1 + 1e-9):
+        raise DomainError(
+            f"the static {units.text(test.static, 'pressure')} is too high for a water main; allowed: at most "
+            f"{HIGHEST_STATIC.text(units)}. Check the decimal point and the units."
+        )
+    for outlet in (outlet for point in test.points for outlet in point.outlets):
+        if outlet.pitot > test.static:
+            pitot, static = (units.text(value, "pressure") for value in (outlet.pitot, test.static))
+            raise DomainError(
+                f"the pitot reading {pitot} of {outlet.hydrant} is above the static {static}; allowed: at most "
+                "the static. Check the readings and the decimal point."
             )
 
 

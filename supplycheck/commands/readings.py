@@ -51,10 +51,13 @@ def read_day(option: str, text: str) -> dt.date:
 def read_outlet(text: str, number: int, factor: str | None, units: UnitSet) -> Outlet:
     """Return the outlet written as :data:`OUTLET_FORM`; a usage error otherwise.
 
+    Raises :class:`DomainError` for a diameter that no outlet has.
+
     ``factor`` is the pumper factor (a number or ``table``) for a large outlet that carries none.
     """
-    from supplycheck.errors import NotInCatalogueError
+    from supplycheck.errors import DomainError, NotInCatalogueError
     from supplycheck.model import Outlet
+    from supplycheck.project.plausible import LARGEST_OUTLET
     from supplycheck.supply.quality import LARGE_OUTLET
 
     parts = [part.strip() for part in text.split(",")]
@@ -62,6 +65,11 @@ def read_outlet(text: str, number: int, factor: str | None, units: UnitSet) -> O
         remedy = "write decimals with a point" if len(parts) > 4 else ""
         refuse("outlet", text, f"has {len(parts)} parts between commas", OUTLET_FORM, remedy)
     diameter = read_si("outlet", parts[0], "size", units, text)
+    if diameter > LARGEST_OUTLET.si(units) * (1 + 1e-9):
+        raise DomainError(
+            f"outlet {number} of {units.text(diameter, 'size')} is larger than any outlet of a hydrant; "
+            f"allowed: at most {LARGEST_OUTLET.text(units)}. Check the decimal point."
+        )
     pitot = read_si("outlet", parts[2], "pressure", units, text)
     if parts[1][:2].casefold() == "k ":
         return _diffuser(text, parts, number, units)
