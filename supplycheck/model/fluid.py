@@ -59,10 +59,12 @@ HW_METRIC: Final = FrictionLaw(
     4.87,
     "BS EN 12845:2004, 13.2.1",
 )
+HEAD_FORM_WEIGHT: Final = 9810.0
+"""Unit weight [Pa/m] that turns the metres of the head form into pressure."""
 HEAD_FORM: Final = FrictionLaw(
     "hazen-williams",
     "Hazen-Williams, 10.67 Q^1.852 / (C^1.852 D^4.871) m/m",
-    10.67 * 9810.0,
+    10.67 * HEAD_FORM_WEIGHT,
     1.852,
     4.871,
     "water-works head form; several secondary sources, unit weight 9.81 kPa/m",

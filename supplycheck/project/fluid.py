@@ -8,7 +8,8 @@ from typing import Final
 from supplycheck import catalogue
 from supplycheck.errors import DomainError
 from supplycheck.hydraulics.water import water_density, water_viscosity
-from supplycheck.model import Fluid, FrictionLaw
+from supplycheck.model import HEAD_FORM, Fluid, FrictionLaw
+from supplycheck.model.fluid import HEAD_FORM_WEIGHT
 from supplycheck.project.criteria import Standard
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList
@@ -21,8 +22,24 @@ ROOM: Final = 293.15
 """Temperature [K] at which the properties of water are taken where none is given: 20 °C."""
 
 
+def _weight(law: FrictionLaw | None, units: UnitSet, standard: Standard | None, notes: Notes) -> float:
+    """Return the unit weight of water [Pa/m]: that of the friction law, or as the standard rounds it."""
+    if law is not None and law == HEAD_FORM:
+        text = f"{units.text(HEAD_FORM_WEIGHT, 'gradient')} (9.81 kPa/m), in friction and in heights"
+        notes.add("fluid: unit weight", text, "assumed", f"goes with the friction law; {law.source}")
+        return HEAD_FORM_WEIGHT
+    row = catalogue.rule("unit weight of water", standard.name if standard else "NFPA 13")
+    text = f"{units.text(row.value, 'gradient')}, as the standard rounds it"
+    notes.add("fluid: unit weight", text, "catalogue", row.source)
+    return row.value
+
+
 def _water(
-    table: FluidTable | None, units: UnitSet, standard: Standard | None, notes: Notes, *, by_viscosity: bool
+    table: FluidTable | None,
+    units: UnitSet,
+    standard: Standard | None,
+    laws: Sequence[FrictionLaw | None],
+    notes: Notes,
 ) -> Fluid:
     """Return water; raises :class:`DomainError` outside 0 to 100 °C."""
     given = table.temperature.si(units) if table and table.temperature else None
@@ -31,14 +48,12 @@ def _water(
     viscosity = float(water_viscosity(temperature=temperature)[0])
     own_density = table.density.si(units) if table and table.density else None
     own_viscosity = table.viscosity.si(units) if table and table.viscosity else None
+    by_viscosity = any(law is not None and law.family == "darcy-weisbach" for law in laws)
     if given is None and by_viscosity and (own_density is None or own_viscosity is None):
         text = units.text(temperature, "temperature")
         notes.add("fluid.temperature", text, "assumed", "room temperature")
     if own_density is None:
-        row = catalogue.rule("unit weight of water", standard.name if standard else "NFPA 13")
-        text = f"{units.text(row.value, 'gradient')}, as the standard rounds it"
-        notes.add("fluid: unit weight", text, "catalogue", row.source)
-        weight = row.value
+        weight = _weight(laws[0] if laws else None, units, standard, notes)
     else:
         weight = own_density * GRAVITY
     return Fluid(
@@ -63,9 +78,8 @@ def read_fluid(
     units = units_in(table, UNIT_SETS[sections.units]) if table else UNIT_SETS[sections.units]
     name = table.name.strip() if table else "water"
     if name.casefold() == "water":
-        by_viscosity = any(law is not None and law.family == "darcy-weisbach" for law in laws)
         try:
-            return _water(table, units, standard, notes, by_viscosity=by_viscosity)
+            return _water(table, units, standard, laws, notes)
         except DomainError as caught:
             faults.add(
                 sections.place("fluid.temperature"), str(caught), allowed="0 to 100 °C (32 to 212 °F)"

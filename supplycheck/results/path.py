@@ -333,12 +333,13 @@ def _gradient_line(ground: _Ground, step: PathStep, gradient: float, name: str) 
         )
         note = "f ρ v² / (2 d); f by Colebrook"
     else:
-        power = f"{law.flow_exponent:g}"
+        power, constant = f"{law.flow_exponent:g}", law_constant(law, units)
         formula = (
-            f"pf = {law_constant(law, units)} × {flow}^{power} / "
+            f"pf = {constant} × {flow}^{power} / "
             f"({step.c_factor or 0:g}^{power} × {bore}^{law.bore_exponent:g})"
         )
-        note = ""
+        printed = constant.partition("e")[0] in law.name
+        note = "" if printed else f"{law.name}, its constant turned into these units"
     digits = _gradient_digits(pen, step, gradient)
     decimals = significant_decimals(units.from_si(gradient, "gradient"), digits)
     return HandStep(name, formula, gradient, "gradient", note, decimals)

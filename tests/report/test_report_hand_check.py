@@ -58,6 +58,10 @@ CHANGED = {
         {"[criteria]": 'friction_law = "darcy-weisbach"', "[pipe.street]": "roughness = 0.0004"},
     ),
     "metric, Darcy-Weisbach": ("office-floor", {"[criteria]": 'friction_law = "darcy-weisbach"'}),
+    "head form": ("parcel-depot", {"[criteria]": 'friction_law = "hazen-williams 10.67 head"'}),
+    "metric, head form": ("office-floor", {"[criteria]": 'friction_law = "hazen-williams 10.67 head"'}),
+    "US form in metric": ("office-floor", {"[criteria]": 'friction_law = "hazen-williams 4.52 us"'}),
+    "metric form in US": ("parcel-depot", {"[criteria]": 'friction_law = "hazen-williams 6.05e5 metric"'}),
     "velocity pressure": ("parcel-depot", {"[criteria]": "velocity_pressure = true"}),
 }
 
