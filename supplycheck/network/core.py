@@ -49,6 +49,8 @@ LEAST_RESPONSE: Final = 1e-9
 """Least rise of a head for a rise of the supply that is believed [-]."""
 SEARCH_PART: Final = 0.5
 """Part of the first slope of the content that a damped step may leave."""
+NEXT_PART: Final = 0.1
+"""Part of :data:`FLOW_TOLERANCE` that the bound of the next step may reach where the last was larger."""
 HIGHEST_FLOW: Final = 1e9
 """Step of a flow at which the iteration is given up [m³/s]."""
 ROUGH_HEAD: Final = 1e-3
@@ -112,22 +114,56 @@ def first_state(problem: Problem, flow: FloatArray) -> State:
 
 def residuals(problem: Problem, state: State) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Return energy residual (m,), mass residual (n,) and the slope of each loss (m,)."""
+    loss, slope = _losses(problem, state)
+    energy, mass = _residuals(problem, state.head, state.flow, loss)
+    return energy, mass, slope
+
+
+def _losses(problem: Problem, state: State) -> tuple[FloatArray, FloatArray]:
+    """Return the loss of every link and a slope above zero."""
     loss, slope = problem.law(state.flow)
     if len(problem.valve_links):
         loss[problem.valve_links] = state.extra
         slope[problem.valve_links] = np.median(slope)
-    falling = slope <= 0  # a device whose loss falls with the flow: the chord serves instead
-    if falling.any():
+    if slope.min(initial=1.0) <= 0:  # a device whose loss falls with the flow: the chord serves instead
+        falling = slope <= 0
         size = np.maximum(np.abs(state.flow[falling]), 1e-9)
         slope[falling] = np.maximum(np.abs(loss[falling]) / size, 1.0)
-    energy = state.head[problem.start] - state.head[problem.end] - loss
-    n, nodes = len(problem.outflow), len(state.head)
-    leaving = np.bincount(problem.start, state.flow, minlength=nodes)
-    leaving -= np.bincount(problem.end, state.flow, minlength=nodes)
-    mass = -(leaving[:n] + problem.outflow)
+    return loss, slope
+
+
+def _residuals(
+    problem: Problem, head: FloatArray, flow: FloatArray, loss: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    energy = head[problem.start] - head[problem.end] - loss
+    mass = -(_leaving(problem, flow) + problem.outflow)
     if problem.closed is not None:
         energy[problem.closed] = 0.0
-    return energy, mass, slope
+    return energy, mass
+
+
+def _leaving(problem: Problem, flow: FloatArray) -> FloatArray:
+    """Return what leaves every free node (n,) through links with ``flow``."""
+    n = len(problem.outflow)
+    nodes = n + len(problem.fixed)
+    leaving = np.bincount(problem.start, flow, minlength=nodes)
+    leaving -= np.bincount(problem.end, flow, minlength=nodes)
+    return np.asarray(leaving[:n])
+
+
+def _opening(problem: Problem, state: State) -> tuple[State, FloatArray, FloatArray, FloatArray]:
+    """Return the state without flow and its residuals, with each law a straight line to its guessed flow.
+
+    The first step then shares the flow by resistance, whichever way the links are drawn. A law without
+    such a line (a pump, a valve that holds its setting) keeps its own slope at the guess.
+    """
+    loss, slope = _losses(problem, state)
+    lined = (loss > 0) & (state.flow > 0)
+    lined[problem.valve_links] = False
+    np.divide(loss, state.flow, out=slope, where=lined)
+    flow = np.where(lined, 0.0, state.flow)
+    energy, mass = _residuals(problem, state.head, flow, np.where(lined, 0.0, loss))
+    return replace(state, flow=flow), energy, mass, slope
 
 
 def solve(
@@ -138,7 +174,10 @@ def solve(
     Not ``fine``: it is enough that the last step moved no shift by more than :data:`COARSE_HEAD`, and that
     the content still to be gained is small; links that carry next to nothing may then be off by more.
     """
-    energy, mass, slope = residuals(problem, state)
+    if state.iterations:
+        energy, mass, slope = residuals(problem, state)
+    else:
+        state, energy, mass, slope = _opening(problem, state)
     for count in range(1, limit + 1):
         before = state.shift
         try:
@@ -161,7 +200,9 @@ def solve(
         scale = _scale(flow)
         moved = length * float(np.abs(step).max(initial=0.0))
         rounding = 1e-13 * float(np.abs(problem.fixed).max(initial=0.0))
-        good = worst <= HEAD_TOLERANCE + rounding and moved <= FLOW_TOLERANCE * scale
+        good = worst <= HEAD_TOLERANCE + rounding
+        if good and moved > FLOW_TOLERANCE * scale:
+            good = _next_step(problem, energy, slope) <= NEXT_PART * FLOW_TOLERANCE * scale
         if not fine:
             turn = float(np.abs(shift - before).max())
             good = turn <= COARSE_HEAD and float((energy * energy / slope).sum()) <= COARSE_HEAD * scale
@@ -174,6 +215,17 @@ def solve(
         energy=float(np.abs(energy).max(initial=0.0)),
         mass=float(np.abs(mass).max(initial=0.0)),
     )
+
+
+def _next_step(problem: Problem, energy: FloatArray, slope: FloatArray) -> float:
+    """Return a bound of the next step of any flow [m³/s] where every node is in balance.
+
+    With all sources fixed that step is the projection of energy/slope on the flows in balance, in the norm
+    weighted by the slopes, so Σ slope·step² ≤ Σ energy²/slope.
+    """
+    if len(problem.floor_rows) or len(problem.valve_links):
+        return np.inf
+    return float(np.sqrt((energy * energy / slope).sum() / slope.min()))
 
 
 def _scale(flow: FloatArray) -> float:
@@ -222,9 +274,7 @@ def _step(
         drive.append(pull)
     rhs = np.empty((n, len(drive)))
     for column, push in enumerate(drive):
-        leaving = np.bincount(problem.start, push, minlength=nodes)
-        leaving -= np.bincount(problem.end, push, minlength=nodes)
-        rhs[:, column] = -leaving[:n]
+        rhs[:, column] = -_leaving(problem, push)
     rhs[:, 0] += mass
     answer = np.zeros((nodes, len(drive)))
     answer[:n] = problem.nodal.factorise(conductance, problem.ground)(rhs)

@@ -6,13 +6,14 @@ from collections.abc import Sequence
 
 import numpy as np
 from scipy.sparse import csr_array
-from scipy.sparse.csgraph import breadth_first_order, connected_components
+from scipy.sparse.csgraph import breadth_first_order
 
 from supplycheck.errors import NotConvergedError
 from supplycheck.network.arrays import Network
 from supplycheck.network.assemble import Assembled, Case, Feed
 from supplycheck.network.core import residuals
 from supplycheck.network.find import NoStateError
+from supplycheck.network.graphs import parts_of
 from supplycheck.network.links import Links
 from supplycheck.network.records import FloatArray, IntArray
 from supplycheck.network.reduce import Reduced
@@ -32,8 +33,7 @@ def check_structure(network: Network, links: Links, case: Case, feed: Feed) -> N
     """
     asked = np.flatnonzero(case.keep())
     nodes = len(network.node_tags)
-    graph = csr_array((np.ones(len(links)), (links.start, links.end)), (nodes, nodes))
-    parts, label = connected_components(graph, directed=False)
+    parts, label = parts_of(links.start, links.end, nodes)
     fed = np.zeros(parts, dtype=bool)
     fed[label[feed.rows]] = True
     lost = asked[~fed[label[asked]]]
@@ -85,8 +85,7 @@ def _check_short_circuit(network: Network, links: Links, feed: Feed) -> None:
     if not bare.any():
         return
     nodes = len(network.node_tags)
-    graph = csr_array((np.ones(int(bare.sum())), (links.start[bare], links.end[bare])), (nodes, nodes))
-    _, label = connected_components(graph, directed=False)
+    _, label = parts_of(links.start[bare], links.end[bare], nodes)
     rows = feed.rows[feed.fixed]
     head = np.array([law.static for law, held in zip(feed.laws, feed.fixed, strict=True) if held])
     head = head + network.base[rows]
@@ -113,8 +112,7 @@ def check_reached(network: Network, case: Case, pressure: FloatArray) -> tuple[s
     if not len(lost):
         return ()
     links, nodes = network.links, len(network.node_tags)
-    graph = csr_array((np.ones(len(links)), (links.start, links.end)), (nodes, nodes))
-    _, label = connected_components(graph, directed=False)
+    _, label = parts_of(links.start, links.end, nodes)
     fed = np.unique(label[np.isfinite(pressure)])
     never = lost[~np.isin(label[lost], fed)]
     if len(never):

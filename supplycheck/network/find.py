@@ -13,11 +13,10 @@ from dataclasses import dataclass, replace
 from typing import Final
 
 import numpy as np
-from scipy.sparse import csr_array
-from scipy.sparse.csgraph import connected_components
 
 from supplycheck.network.assemble import Assembled
 from supplycheck.network.core import FLOW_TOLERANCE, Problem, State, solve
+from supplycheck.network.graphs import parts_of
 from supplycheck.network.links import STEEP, BoolArray
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -185,11 +184,10 @@ def _parts(problem: Problem, closed: BoolArray) -> tuple[IntArray, BoolArray]:
     total = n + len(problem.fixed)
     open_ = ~closed
     rows, cols = problem.start[open_], problem.end[open_]
-    graph = csr_array((np.ones(len(rows)), (rows, cols)), (total, total))
-    count, label = connected_components(graph, directed=False)
+    count, label = parts_of(rows, cols, total)
     held = np.zeros(count, dtype=bool)
     held[label[n:]] = True
-    return np.asarray(label, dtype=np.int64), held
+    return label, held
 
 
 def _floating(problem: Problem, closed: BoolArray) -> IntArray:

@@ -18,13 +18,15 @@ from typing import Any, Final
 
 import numpy as np
 
+from supplycheck.network.graphs import two_way_graph
 from supplycheck.network.links import sums
 from supplycheck.network.records import FloatArray, IntArray
 
 DENSE_BELOW: Final = 48
 """Number of free nodes below which the matrix is dense."""
-NARROW: Final = 16
-"""Greatest half bandwidth at which the band is quicker than the sparse factorisation."""
+NARROW: Final = 64
+"""Greatest half bandwidth at which the band is quicker than the sparse factorisation. Beyond it the blocks
+of LAPACK are large enough for OpenBLAS to share among threads, which costs many times what it brings."""
 
 Solver = Callable[[FloatArray], FloatArray]
 
@@ -78,15 +80,16 @@ class Nodal:
 
 
 class _Band:
-    """The upper half of the matrix as a band, in the order of Cuthill and McKee."""
+    """The lower half of the matrix as a band, in the order of Cuthill and McKee.
+
+    In the lower half the columns are contiguous, as the rank-one updates of the factorisation want them;
+    with the upper half OpenBLAS starts its threads for each, which makes it up to ten times slower.
+    """
 
     def __init__(self, rows: IntArray, cols: IntArray, diagonals: int, free: int) -> None:
-        from scipy.sparse import csr_array
         from scipy.sparse.csgraph import reverse_cuthill_mckee
 
-        r, c = rows[diagonals:], cols[diagonals:]
-        ones = np.ones(2 * len(r))
-        graph = csr_array((ones, (np.concatenate([r, c]), np.concatenate([c, r]))), (free, free))
+        graph = two_way_graph(rows[diagonals:], cols[diagonals:], free)
         self.order = np.asarray(reverse_cuthill_mckee(graph, symmetric_mode=True), dtype=np.int64)
         self.place = np.empty(free, dtype=np.int64)
         self.place[self.order] = np.arange(free)
@@ -94,7 +97,7 @@ class _Band:
         low, high = np.minimum(a, b), np.maximum(a, b)
         self.half = int((high - low).max(initial=0))
         self.free = free
-        self._flat = high * (self.half + 1) + self.half + low - high
+        self._flat = low * (self.half + 1) + high - low
 
     def factorise(self, entries: FloatArray, ground: IntArray, tie: float) -> Solver | None:
         """Return the solver, or ``None`` where rounding spoils the definiteness."""
@@ -102,13 +105,13 @@ class _Band:
 
         width = self.half + 1
         band = sums(self._flat, entries, width * self.free).reshape(self.free, width)
-        band[self.place[ground], self.half] += tie
-        factor, info = dpbtrf(band.T, lower=0, overwrite_ab=1)
+        band[self.place[ground], 0] += tie
+        factor, info = dpbtrf(band.T, lower=1, overwrite_ab=1)
         if info != 0:
             return None
 
         def solve(rhs: FloatArray) -> FloatArray:
-            answer, _ = dpbtrs(factor, rhs[self.order], lower=0)
+            answer, _ = dpbtrs(factor, rhs[self.order], lower=1)
             return np.asarray(answer[self.place])
 
         return solve
@@ -133,7 +136,8 @@ class _Sparse:
         matrix.data[:] = sums(slot, whole, len(matrix.data))
         matrix.data[diagonal[ground]] += tie
         how = "MMD_AT_PLUS_A" if self._order is None else "NATURAL"
-        factor = splu(matrix, permc_spec=how, diag_pivot_thresh=0.0, options={"SymmetricMode": True})
+        options = {"SymmetricMode": True}
+        factor = splu(matrix, permc_spec=how, diag_pivot_thresh=0.0, relax=4, panel_size=1, options=options)
         order = self._order
         if order is None:
             self._order = np.asarray(factor.perm_c, dtype=np.int64)

@@ -19,9 +19,8 @@ from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
-from scipy.sparse import csr_array
-from scipy.sparse.csgraph import breadth_first_order, connected_components
 
+from supplycheck.network.graphs import parts_of, spread_from
 from supplycheck.network.links import BoolArray, Links, sums
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -121,9 +120,7 @@ def _chains(links: Links, inner: BoolArray) -> Reduced:
     owner = np.tile(np.arange(count), 2)
     at_inner = np.flatnonzero(inner[ends])
     pairs = owner[at_inner[np.argsort(ends[at_inner])]].reshape(-1, 2)
-    graph = csr_array((np.ones(len(pairs)), (pairs[:, 0], pairs[:, 1])), (count, count))
-    chains, label = connected_components(graph, directed=False)
-    label = label.astype(np.int64)
+    chains, label = parts_of(pairs[:, 0], pairs[:, 1], count)
     # the two outer ends of each chain; a ring of inner nodes has none and carries nothing
     outer = np.flatnonzero(~inner[ends])
     outer = outer[np.argsort(label[owner[outer]] * (2 * count) + outer)]
@@ -164,14 +161,10 @@ def _directions(
     share is where the flow enters it.
     """
     count = len(links)
-    rows = np.concatenate([pairs[:, 0], np.full(len(first_link), count)])
-    cols = np.concatenate([pairs[:, 1], first_link])
-    graph = csr_array((np.ones(len(rows)), (rows, cols)), (count + 1, count + 1))
-    _, before = breadth_first_order(graph, count, directed=False, return_predecessors=True)
-    before = before[:count].astype(np.int64)
+    _, before = spread_from(pairs[:, 0], pairs[:, 1], first_link, count)
     entry = np.full(count, -1)
-    follows = (before >= 0) & (before < count)
-    link, prior = np.flatnonzero(follows), before[follows]
+    link = np.flatnonzero(before >= 0)
+    prior = before[link]
     s = links.start[link]
     shared = inner[s] & ((s == links.start[prior]) | (s == links.end[prior]))
     entry[link] = np.where(shared, s, links.end[link])
