@@ -139,15 +139,15 @@ def _check_readings(test: FlowTest, units: UnitSet) -> None:
 
     if test.static > HIGHEST_STATIC.si(units) * (1 + 1e-9):
         raise DomainError(
-            f"the static {units.text(test.static, 'pressure')} is too high for a water main; allowed: at most "
-            f"{HIGHEST_STATIC.text(units)}. Check the decimal point and the units."
+            f"the static {units.text(test.static, 'pressure')} is too high for a water main; allowed: at "
+            f"most {HIGHEST_STATIC.text(units)}. Check the decimal point and the units."
         )
     for outlet in (outlet for point in test.points for outlet in point.outlets):
         if outlet.pitot > test.static:
             pitot, static = (units.text(value, "pressure") for value in (outlet.pitot, test.static))
             raise DomainError(
-                f"the pitot reading {pitot} of {outlet.hydrant} is above the static {static}; allowed: at most "
-                "the static. Check the readings and the decimal point."
+                f"the pitot reading {pitot} of {outlet.hydrant} is above the static {static}; allowed: "
+                "at most the static. Check the readings and the decimal point."
             )
 
 

@@ -108,7 +108,9 @@ class KindReader:
     ) -> None:
         self.sections, self.standard, self.extra = sections, standard, extra
         self.notes, self.faults = notes, faults
-        self.system = sections.criteria.system if sections.criteria else "wet"
+        told = sections.criteria.system if sections.criteria else None
+        self.system = told or "wet"
+        self.untold = "" if told else ", that of wet pipes: no kind of system is given"
         families = {law.family for law in laws}
         self.needs_c = "hazen-williams" in families
         self.needs_roughness = "darcy-weisbach" in families
@@ -127,7 +129,7 @@ class KindReader:
                     remedy="correct the material, or give c_factor",
                 )
             return None, ""
-        self.notes.add(f"pipe.{name}.c_factor", f"C {row.value:g}", "catalogue", row.source)
+        self.notes.add(f"pipe.{name}.c_factor", f"C {row.value:g}{self.untold}", "catalogue", row.source)
         return row.value, row.source
 
     def _roughness(self, name: str, table: PipeTable, units: UnitSet) -> tuple[float | None, str]:

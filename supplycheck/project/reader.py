@@ -303,6 +303,7 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
         files=folder.files(),
         standpipes=duties.standpipes,
         hydrants=duties.hydrants,
+        outflows=duties.outflows,
     )
 
 

@@ -74,8 +74,8 @@ class CriteriaTable(UnitTable):
 
     hazard: Name
     """Hazard class, for example `ordinary hazard group 2`; `none` where there are no sprinklers."""
-    system: Literal["wet", "dry", "preaction", "double interlock preaction", "deluge"]
-    """Kind of system."""
+    system: Literal["wet", "dry", "preaction", "double interlock preaction", "deluge"] | None = None
+    """Kind of system. Needed with sprinklers."""
     density: Density | None = None
     """Design density, instead of that of the hazard class."""
     area: Area | None = None

@@ -318,6 +318,11 @@ def _listed(
     return tuple((number, one) for number, one in checked if one is not None)
 
 
+def _without_criteria(raw: Mapping[str, Any]) -> bool:
+    """Say whether the project may do without criteria, as far as the file tells: the nodes decide."""
+    return any(duty in raw for duty in _DUTIES) or ("network" in raw and "sprinkler" not in raw)
+
+
 def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Sections:
     """Return the checked tables of ``raw``, the parsed project file."""
     units = raw.get("units")
@@ -339,7 +344,7 @@ def read_sections(raw: Mapping[str, Any], file: str, faults: FaultList) -> Secti
             allowed='"us" or "metric"',
         )
     for key in _REQUIRED:
-        if key not in raw and not (key == "criteria" and any(duty in raw for duty in _DUTIES)):
+        if key not in raw and not (key == "criteria" and _without_criteria(raw)):
             faults.add(Place(file, key), "the table is missing", remedy=f"add a table [{key}]")
 
     def one(table: type[AnyTable], key: str) -> AnyTable | None:

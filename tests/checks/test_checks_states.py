@@ -15,6 +15,7 @@ import numpy as np
 import pytest
 from check_factory import DRY, EN, OPEN, QUICK, TEE, K, array_with, built
 from duty_factory import DUTY_CASES
+from plausibility_factory import PLAUSIBILITY_CASES
 from pump_factory import NEEDED, OPTION, STATES, pumps, state, with_state
 
 from supplycheck.checks import RULES, PumpRating, ScenarioFacts, run_checks
@@ -903,8 +904,9 @@ BASIS = [
 ]
 
 DUTIES = [Case(*one) for one in DUTY_CASES]
+PLAUSIBILITY = [Case(*one) for one in PLAUSIBILITY_CASES]
 
-CASES = SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS + DUTIES
+CASES = SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS + DUTIES + PLAUSIBILITY
 
 
 def name_of(case: Case) -> str:

@@ -1,0 +1,58 @@
+"""What is possible but seldom meant, made by hand from the sound project: (rule, state, changes, …)."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from typing import Any
+
+from supplycheck.model import Device
+from supplycheck.units import FOOT, GPM, PSI
+
+PIPES = "project.system.pipes"
+NO_PLACE = {"project.system.nodes.*.x": None}
+NO_CURVE = Device("backflow", "loss", (0.0,), (5 * PSI,), "maker's sheet")
+
+
+def again(number: int, **changes: Any) -> dict[str, Any]:
+    """Return the change that enters pipe ``number`` a second time."""
+    return {PIPES: lambda old: (*old, replace(old[number], tag="again", **changes))}
+
+
+def curve(*losses: float) -> dict[str, Any]:
+    """Return the change that gives the backflow preventer these losses [psi] at 0, 500 and 1000 gpm."""
+    return {"project.system.devices.backflow.values": tuple(loss * PSI for loss in losses)}
+
+
+PUMP_BYPASS = again(1, devices=("pump",)) | {
+    "project.system.devices": lambda old: (
+        *old,
+        Device("pump", "pump", (0.0, 500 * GPM), (120 * PSI, 90 * PSI), "maker's sheet"),
+    )
+}
+PLAUSIBILITY_CASES: tuple[tuple[Any, ...], ...] = (
+    ("length against distance", "ok"),
+    ("length against distance", "not applicable", NO_PLACE),
+    ("length against distance", "ok", {f"{PIPES}.U.length": 90 * FOOT}),
+    ("length against distance", "fail", {f"{PIPES}.U.length": 89 * FOOT}, 89 * FOOT, 100 * FOOT, ("U",)),
+    ("length against distance", "fail", {f"{PIPES}.U.length": 10 * FOOT}, 10 * FOOT, 100 * FOOT, ("U",)),
+    ("length against distance", "ok", {f"{PIPES}.C1.length": 100 * FOOT}),
+    ("length against distance", "ask authority", {f"{PIPES}.C1.length": 101 * FOOT}, 101 * FOOT, 5 * FOOT),
+    ("pipes side by side", "ok"),
+    ("pipes side by side", "ok", PUMP_BYPASS),
+    ("pipes side by side", "ask authority", again(1), None, None, ("R", "again")),
+    ("pipes side by side", "ask authority", again(1, start="T", end="B"), None, None, ("R", "again")),
+    ("device entered twice", "ok"),
+    ("device entered twice", "not applicable", {f"{PIPES}.U.devices": ()}),
+    (
+        "device entered twice",
+        "ask authority",
+        {f"{PIPES}.U.devices": ("backflow", "backflow")},
+        None,
+        None,
+        ("U",),
+    ),
+    ("dip in a loss curve", "ok"),
+    ("dip in a loss curve", "ok", curve(4, 4, 6)),
+    ("dip in a loss curve", "not applicable", {"project.system.devices.backflow": NO_CURVE}),
+    ("dip in a loss curve", "ask authority", curve(4, 3.5, 10), 3.5 * PSI, 4 * PSI, ("backflow",)),
+)
