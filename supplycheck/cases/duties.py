@@ -1,11 +1,11 @@
-"""Standpipes and hydrants: every case solved, the rows beside each other, what each hydrant can give."""
+"""Standpipes, hydrants, outflows: every case solved, the rows beside each other, what each hydrant can give."""
 
 from __future__ import annotations
 
 import math
 from collections import deque
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
 from supplycheck.cases.greatest_flow import at_rest, hydrant_rows
@@ -13,6 +13,7 @@ from supplycheck.cases.ground import Ground
 from supplycheck.cases.loads import load_of, required_of
 from supplycheck.demand.duties import DutyCase
 from supplycheck.demand.hydrants import hydrant_cases
+from supplycheck.demand.outflows import asked_at_nodes, outflow_cases, with_asked
 from supplycheck.demand.standpipes import is_complete, left_by, needed_at_node, standpipe_cases
 from supplycheck.errors import NotConvergedError
 from supplycheck.model import DemandCase, Project
@@ -45,7 +46,7 @@ class DutyResult:
 
 
 def solve_duties(ground: Ground, sprinklers: DemandCase | None) -> DutyResult:
-    """Return the answer for the standpipes and hydrants of a project.
+    """Return the answer for the standpipes, hydrants or fixed outflows of a project.
 
     ``sprinklers`` is the hardest case of the sprinklers, ``None`` where the project has none.
 
@@ -62,8 +63,12 @@ def solve_duties(ground: Ground, sprinklers: DemandCase | None) -> DutyResult:
         cases += standpipe_cases(project.standpipes, sprinklers)
     if project.hydrants is not None:
         cases += hydrant_cases(project.hydrants, project.system.devices, sprinklers)
+    if project.outflows is not None:
+        cases += outflow_cases(project.outflows, project.system.nodes)
     if not cases:
         return DutyResult(DutyAnswer())
+    asked = asked_at_nodes(project.system.nodes)
+    cases = [replace(one, case=with_asked(one.case, asked)) for one in cases]
     solved, cut = _solve(ground, cases)
     rows = [_row(ground, *worst) for worst in _hardest_of_each(solved)]
     rows += [_cut_row(one, tags) for one, tags in cut]
@@ -198,11 +203,12 @@ def _states(ground: Ground, case: DemandCase) -> tuple[tuple[OutletState, ...], 
         solution = ground.operating(load_of(ground.project, case))
     except NotConvergedError as error:
         return (), f"with the supply as it is there is no solution: {error}"
+    drawn = {node.tag: node.fixed_flow for node in ground.project.system.nodes}
     states = tuple(
         OutletState(
             outlet.what,
             outlet.node,
-            outlet.flow,
+            outlet.flow + drawn[outlet.node],
             float(solution.pressure[solution.node(outlet.node)]),
             outlet.minimum_pressure,
         )
@@ -233,7 +239,7 @@ def _standpipe_rows(ground: Ground, duty: StandpipeDuty, rows: Sequence[DutyRow]
     lowest: dict[str, float] = {}
     for row in rows:
         for state in row.outlets:
-            if row.duty == "standpipes":
+            if row.duty == "standpipes" and state.flow > 0:
                 lowest[state.node] = min(lowest.get(state.node, math.inf), state.pressure)
     for riser in duty.risers:
         for outlet in riser.outlets:

@@ -68,7 +68,8 @@ def only(case: DemandCase, summary: DemandSummary | None, project: Project) -> T
 
 def placement(case: DemandCase, summary: DemandSummary | None, spots: Spots) -> Placement:
     """Return the row of ``case``; without a ``summary`` its numbers are unknown."""
-    tags = (*case.heads, *(outlet.node for outlet in case.outlets))
+    outlets = () if case.duty == "sprinklers" else case.outlets
+    tags = (*case.heads, *(outlet.node for outlet in outlets))
     xs = [x for x, _ in map(spots.__getitem__, tags) if x is not None]
     ys = [y for _, y in map(spots.__getitem__, tags) if y is not None]
     return Placement(

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections import Counter
 from collections.abc import Mapping, Sequence
+from dataclasses import replace
 from operator import itemgetter
 from typing import TypeVar
 
@@ -13,6 +14,7 @@ from supplycheck.demand.heads import Heads, all_heads
 from supplycheck.demand.labels import Labels, unique
 from supplycheck.demand.line import Line
 from supplycheck.demand.lines import find_lines
+from supplycheck.demand.outflows import asked_at_nodes, with_asked
 from supplycheck.demand.placement import Placement, Rule
 from supplycheck.demand.records import Candidates, Step
 from supplycheck.demand.runs import ROUND
@@ -43,10 +45,15 @@ def demand_cases(project: Project, *, cap: int = CAP) -> Candidates:
     _check(project.criteria)
     heads = all_heads(project)
     if project.criteria.design_area != "search":
-        return _given(project, heads, project.criteria.design_area)
-    if project.criteria.system == "deluge":
-        return _whole_system(project, heads)
-    return _searched(project, heads, cap)
+        found = _given(project, heads, project.criteria.design_area)
+    elif project.criteria.system == "deluge":
+        found = _whole_system(project, heads)
+    else:
+        found = _searched(project, heads, cap)
+    asked = asked_at_nodes(project.system.nodes)
+    if not asked:
+        return found
+    return replace(found, cases=tuple(with_asked(case, asked) for case in found.cases))
 
 
 def _check(criteria: Criteria) -> None:

@@ -1,4 +1,4 @@
-"""What the cases of standpipes and hydrants share."""
+"""What the cases of standpipes, hydrants and fixed outflows share."""
 
 from __future__ import annotations
 
@@ -24,7 +24,7 @@ class DutyCase:
 
 def fixed_case(
     label: str,
-    duty: Literal["standpipes", "hydrants"],
+    duty: Literal["standpipes", "hydrants", "outflows"],
     outlets: Sequence[FixedOutlet],
     *,
     sprinklers: DemandCase | None = None,

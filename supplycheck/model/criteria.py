@@ -77,10 +77,10 @@ class Criteria:
 
 @dataclass(frozen=True, slots=True)
 class FixedOutlet:
-    """An outlet whose flow never floats: a standpipe valve or a hydrant.
+    """An outlet whose flow never floats: a standpipe valve, a hydrant, an outflow.
 
     It must give ``flow`` [m³/s] with at least ``minimum_pressure`` [Pa] left at its node; with flow 0 it
-    only asks for the pressure (the highest point of a main, say). ``what`` says what it is.
+    only asks for the pressure (the highest point of a main, or a node whose outflow is counted elsewhere). ``what`` says what it is.
     """
 
     node: str
@@ -115,4 +115,4 @@ class DemandCase:
     flows: tuple[tuple[str, float], ...] = ()
     closed_pipes: tuple[str, ...] = ()
     with_hose: bool = True
-    duty: Literal["sprinklers", "standpipes", "hydrants"] = "sprinklers"
+    duty: Literal["sprinklers", "standpipes", "hydrants", "outflows"] = "sprinklers"

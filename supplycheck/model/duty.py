@@ -1,4 +1,4 @@
-"""Duties beside sprinklers: standpipes and private hydrants. What is asked, and what was found. All SI."""
+"""Duties beside sprinklers: standpipes, private hydrants, fixed outflows. What is asked, and what was found. All SI."""
 
 from __future__ import annotations
 
@@ -127,6 +127,15 @@ class HydrantDuty:
     place: Place | None = None
     hydrants_asked: int | None = None
     asked_source: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class OutflowDuty:
+    """Fixed outflows that are all that a project asks: the nodes that draw, and those among them that
+    state no minimum pressure and are asked for 0 Pa."""
+
+    drawn: tuple[str, ...]
+    unstated: tuple[str, ...]
 
 
 @dataclass(frozen=True, slots=True)

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from supplycheck.findings import Place
 from supplycheck.model.criteria import Criteria, HoseAllowance
-from supplycheck.model.duty import HydrantDuty, StandpipeDuty
+from supplycheck.model.duty import HydrantDuty, OutflowDuty, StandpipeDuty
 from supplycheck.model.fluid import Fluid, FrictionLaw
 from supplycheck.model.supply import Supply
 from supplycheck.model.system import Origin, System
@@ -85,3 +85,4 @@ class Project:
     origins: tuple[Assumption, ...] = ()
     standpipes: StandpipeDuty | None = None
     hydrants: HydrantDuty | None = None
+    outflows: OutflowDuty | None = None

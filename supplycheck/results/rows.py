@@ -55,7 +55,7 @@ def node_rows(project: Project, case: DemandCase, solution: Solution) -> tuple[N
                 pressure=float(solution.pressure[index]),
                 discharge=float(solution.outflow[index]),
                 k_factor=k_factor_of(project, node),
-                required_discharge=required.flow if required else None,
+                required_discharge=required.flow + node.fixed_flow if required else None,
                 required_pressure=required.pressure if required else None,
                 required_by=required.by if required else "",
                 area=node.area,
