@@ -6,9 +6,18 @@ import itertools
 import math
 from typing import Final
 
-from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
-from supplycheck.report.figures.axes import Taken, plain, round_steps
-from supplycheck.report.theme import CLAY, INK, LAGOON, PETROL, PLUM, RULE, SAND, SLATE, text_width
+from supplycheck.report.drawing import Box, Drawing, Item, Label, Line
+from supplycheck.report.figures.axes import Taken, plain, round_steps, short
+from supplycheck.report.figures.marks import (
+    KEY_ROW,
+    Mark,
+    key,
+    key_rows,
+    names_beside,
+    numbers_beside,
+    symbol,
+)
+from supplycheck.report.theme import CLAY, INK, LAGOON, PETROL, PLUM, RULE, SLATE, text_width
 from supplycheck.results.records import CurvePoints, GraphPoint
 from supplycheck.units import UnitSet
 
@@ -25,15 +34,16 @@ _CURVES: Final[dict[str, tuple[str, float, tuple[float, ...]]]] = {
     "tank": (LAGOON, 1.4, ()),
     "pump": (PLUM, 1.4, ()),
 }
-_Mark = tuple[str, str, float, float]
 _FAR_DASH: Final = (3.5, 2.5)
+_LONG_DASH: Final = (12.0, 3.0)
+_Stroke = tuple[str, float, tuple[float, ...]]
 
 
 class _Frame:
     """Places flows [display unit] and pressures [display unit] on the drawing."""
 
-    def __init__(self, width: float, height: float, flow: float, steps: list[float]) -> None:
-        self.right, self.top = width - 14.0, height - 10.0
+    def __init__(self, size: tuple[float, float], bottom: float, flow: float, steps: list[float]) -> None:
+        self.right, self.top, self.bottom = size[0] - 14.0, size[1] - 10.0, bottom
         self.flow, self.steps = flow, steps
         self.low, self.high = steps[0], steps[-1]
 
@@ -42,7 +52,7 @@ class _Frame:
         return _LEFT + (self.right - _LEFT) * share
 
     def y(self, pressure: float) -> float:
-        return _BOTTOM + (self.top - _BOTTOM) * (pressure - self.low) / (self.high - self.low)
+        return self.bottom + (self.top - self.bottom) * (pressure - self.low) / (self.high - self.low)
 
 
 def supply_graph(
@@ -52,22 +62,46 @@ def supply_graph(
     size: tuple[float, float],
 ) -> Drawing:
     """Return the graph; a curve is dashed beyond the flow up to which it was tested."""
-    width, height = size
     lines = [_in_units(curve, units) for curve in curves]
-    marks: list[_Mark] = [
-        (p.name, p.style, units.from_si(p.flow, "flow"), units.from_si(p.pressure, "pressure"))
-        for p in points
-    ]
-    frame = _frame(lines, marks, width, height)
-    if frame is None:
-        return Drawing(width, 20.0, (Label(0, 6, "no curve to draw"),), "no curve to draw")
-    taken = Taken(_LEFT, _BOTTOM, frame.right, frame.top)
-    items: list[Item] = [*_grid(frame, units)]
-    for curve, line in zip(curves, lines, strict=True):
-        items += _curve(curve, line, frame, units, taken)
-    items += _marks(marks, frame, units, taken)
-    items += _legend(curves, width)
-    return Drawing(width, height, tuple(items), "supply and demand against flow")
+    marks = [_mark_of(point, units) for point in points]
+    strokes = _strokes(curves)
+    plain_bottom = _BOTTOM + 11.0 * (_legend_rows(curves, strokes, size[0]) - 1)
+    for numbered in (False, True):
+        rows = key_rows(marks, size[0] - _LEFT) if numbered else []
+        frame = _frame(lines, marks, size, plain_bottom + KEY_ROW * len(rows))
+        if frame is None:
+            return Drawing(size[0], 20.0, (Label(0, 6, "no curve to draw"),), "no curve to draw")
+        taken = Taken(_LEFT, frame.bottom, frame.right, frame.top)
+        items: list[Item] = [*_grid(frame, units)]
+        for curve, line, stroke in zip(curves, lines, strokes, strict=True):
+            items += _curve(curve, line, stroke, frame, units, taken)
+        at = [(frame.x(mark.flow), frame.y(mark.pressure)) for mark in marks]
+        names = numbers_beside(at, taken) if numbered else names_beside(marks, at, taken)
+        if names is not None:
+            break
+    symbols = [item for mark, place in zip(marks, at, strict=True) for item in symbol(mark.style, *place)]
+    legend_top = plain_bottom - 40.0 + KEY_ROW * len(rows)
+    items += [*(names or []), *symbols, *_legend(curves, strokes, size[0], legend_top)]
+    items += key(marks, rows, legend_top - 11.0 * _legend_rows(curves, strokes, size[0]))
+    return Drawing(*size, tuple(items), "supply and demand against flow")
+
+
+def _mark_of(point: GraphPoint, units: UnitSet) -> Mark:
+    flow, pressure = units.from_si(point.flow, "flow"), units.from_si(point.pressure, "pressure")
+    numbers = f"{units.text(point.flow, 'flow')}, {units.text(point.pressure, 'pressure')}"
+    return Mark(point.name, point.style, flow, pressure, f"{point.name}: {numbers}")
+
+
+def _strokes(curves: tuple[CurvePoints, ...]) -> list[_Stroke]:
+    """Return the stroke of each curve: of several alike, long dashes and weight tell them apart."""
+    found: list[_Stroke] = []
+    for place, curve in enumerate(curves):
+        colour, width, dash = _CURVES[curve.style]
+        before = sum(one.style == curve.style for one in curves[:place])
+        if before % 2:
+            dash = _LONG_DASH
+        found.append((colour, width * (1 + 0.9 * (before // 2)), dash))
+    return found
 
 
 def _in_units(curve: CurvePoints, units: UnitSet) -> list[tuple[float, float]]:
@@ -80,21 +114,21 @@ def _in_units(curve: CurvePoints, units: UnitSet) -> list[tuple[float, float]]:
 
 def _frame(
     lines: list[list[tuple[float, float]]],
-    marks: list[_Mark],
-    width: float,
-    height: float,
+    marks: list[Mark],
+    size: tuple[float, float],
+    bottom: float,
 ) -> _Frame | None:
-    every = [point for line in lines for point in line] + [(q, p) for _, _, q, p in marks]
+    every = [point for line in lines for point in line] + [(m.flow, m.pressure) for m in marks]
     flow = max((q for q, _ in every), default=0.0)
     if flow <= 0:
         return None
-    steps = round_steps(max(p for _, p in every) * 1.06, max(4, round(height / 30)))
+    steps = round_steps(max(p for _, p in every) * 1.06, max(4, round(size[1] / 30)))
     lowest = min(p for _, p in every)
     if lowest < 0:
         step = steps[1]
         below = math.ceil(min(-lowest, 3 * step) / step)
         steps = [-step * place for place in range(below, 0, -1)] + steps
-    return _Frame(width, height, flow * 1.02, steps)
+    return _Frame(size, bottom, flow * 1.02, steps)
 
 
 def _grid(frame: _Frame, units: UnitSet) -> list[Item]:
@@ -115,24 +149,29 @@ def _grid(frame: _Frame, units: UnitSet) -> list[Item]:
         text = plain(flow)
         half = text_width(text, 6.6) / 2
         labelled = x - half > last + 5
-        items.append(Line(((x, _BOTTOM), (x, frame.top)), RULE, 0.35 if labelled else 0.15))
+        items.append(Line(((x, frame.bottom), (x, frame.top)), RULE, 0.35 if labelled else 0.15))
         if labelled:
-            items.append(Label(x, _BOTTOM - 9, text, 6.6, "middle"))
+            items.append(Label(x, frame.bottom - 9, text, 6.6, "middle"))
             last = x + half
-    items.append(Box(_LEFT, _BOTTOM, frame.right - _LEFT, frame.top - _BOTTOM, None, SLATE, 0.7))
+    items.append(Box(_LEFT, frame.bottom, frame.right - _LEFT, frame.top - frame.bottom, None, SLATE, 0.7))
     title = f"flow, {units.symbol('flow')} (scale linear in flow to the power 1.85)"
     middle = (_LEFT + frame.right) / 2
-    items.append(Label(middle, _BOTTOM - 20, title, 6.8, "middle", colour=SLATE))
-    y = (_BOTTOM + frame.top) / 2
+    items.append(Label(middle, frame.bottom - 20, title, 6.8, "middle", colour=SLATE))
+    y = (frame.bottom + frame.top) / 2
     pressure_title = f"pressure, {units.symbol('pressure')}"
     items.append(Label(10, y, pressure_title, 6.8, "middle", False, SLATE, 90.0))
     return items
 
 
 def _curve(
-    curve: CurvePoints, line: list[tuple[float, float]], frame: _Frame, units: UnitSet, taken: Taken
+    curve: CurvePoints,
+    line: list[tuple[float, float]],
+    stroke: _Stroke,
+    frame: _Frame,
+    units: UnitSet,
+    taken: Taken,
 ) -> list[Item]:
-    colour, width, dash = _CURVES[curve.style]
+    colour, width, dash = stroke
     inside = [(q, p) for q, p in _clipped(line, frame.low)]
     if len(inside) < 2:
         return []
@@ -181,64 +220,29 @@ def _between(start: float, end: float, share: float) -> float:
     return float(power ** (1 / EXPONENT))
 
 
-def _marks(marks: list[_Mark], frame: _Frame, units: UnitSet, taken: Taken) -> list[Item]:
-    items: list[Item] = []
-    for _, _, flow, pressure in marks:
-        x, y = frame.x(flow), frame.y(pressure)
-        taken.take((x - 3.4, y - 3.4, x + 3.4, y + 3.4))
-    left_out: list[str] = []
-    for name, style, flow, pressure in marks:
-        x, y = frame.x(flow), frame.y(pressure)
-        items += _mark(style, x, y)
-        flow_text = f"{flow:.{units.unit('flow').decimals}f} {units.symbol('flow')}"
-        pressure_text = f"{pressure:.{units.unit('pressure').decimals}f} {units.symbol('pressure')}"
-        numbers = f"{flow_text}, {pressure_text}".replace("-", "−")
-        text = f"{name}: {numbers}"
-        found = taken.place(
-            x, y, text, 6.6, gap=6.0, reach="far", down=_is_below(flow, pressure, marks, frame)
-        )
-        if found is None:
-            left_out.append(text)
-        else:
-            at_x, at_y, anchor = found
-            if abs(at_y - y) > 17 or abs(at_x - x) > 17:
-                near = at_y - 2 if at_y > y else at_y + 6
-                items.append(Line(((x, y), (at_x, near)), SLATE, 0.4))
-            items.append(Label(at_x, at_y, text, 6.6, anchor, False, INK, 0.0, "#ffffff"))
-    for place, text in enumerate(left_out):
-        items.append(Label(_LEFT + 6, _BOTTOM + 6 + place * 8, text, 6.2, behind="#ffffff"))
-    return items
-
-
-def _is_below(flow: float, pressure: float, marks: list[_Mark], frame: _Frame) -> bool:
-    """True where another mark stands over this one, so that its label had better go down."""
-    x = frame.x(flow)
-    return any(abs(frame.x(q) - x) < 70 and p > pressure for _, _, q, p in marks)
-
-
-def _mark(style: str, x: float, y: float) -> list[Item]:
-    if style == "test":
-        return [Dot(x, y, 2.8, "#ffffff", SLATE, 1.2)]
-    if style == "demand":
-        return [Line(((x, y + 3.4), (x + 3.4, y), (x, y - 3.4), (x - 3.4, y)), CLAY, 0.8, (), "#ffffff")]
-    if style == "demand with hose":
-        return [Line(((x, y + 4), (x + 4, y), (x, y - 4), (x - 4, y)), CLAY, 0.8, (), CLAY)]
-    if style == "available":
-        return [Dot(x, y, 3.0, PETROL)]
-    return [Box(x - 2.8, y - 2.8, 5.6, 5.6, SAND, INK, 0.8)]
-
-
-def _legend(curves: tuple[CurvePoints, ...], width: float) -> list[Item]:
-    items: list[Item] = []
-    x, y = _LEFT, 13.0
-    entries = [(curve.name, *_CURVES[curve.style]) for curve in curves]
+def _legend_entries(curves: tuple[CurvePoints, ...], strokes: list[_Stroke]) -> list[tuple[str, _Stroke]]:
+    entries = [(curve.name, stroke) for curve, stroke in zip(curves, strokes, strict=True)]
     if any(curve.extrapolated_from is not None for curve in curves):
-        entries.append(("beyond the tested flow", INK, 1.2, _FAR_DASH))
-    for name, colour, line, dash in entries:
-        wide = 34 + text_width(name, 6.8)
+        entries.append(("beyond the tested flow", (INK, 1.2, _FAR_DASH)))
+    return entries
+
+
+def _legend_rows(curves: tuple[CurvePoints, ...], strokes: list[_Stroke], width: float) -> int:
+    return len({item.y for item in _legend(curves, strokes, width, 0.0) if isinstance(item, Label)}) or 1
+
+
+def _legend(
+    curves: tuple[CurvePoints, ...], strokes: list[_Stroke], width: float, top: float
+) -> list[Item]:
+    """Return the names of the curves in rows from ``top`` down."""
+    items: list[Item] = []
+    x, y = _LEFT, top
+    for name, (colour, line, dash) in _legend_entries(curves, strokes):
+        text = short(name, width - _LEFT - 34, 6.8)
+        wide = 36 + text_width(text, 6.8)
         if x + wide > width and x > _LEFT:
             x, y = _LEFT, y - 11
-        items.append(Line(((x, y + 2.2), (x + 22, y + 2.2)), colour, line, dash))
-        items.append(Label(x + 26, y, name, 6.8))
+        items.append(Line(((x, y + 2.2), (x + 26, y + 2.2)), colour, line, dash))
+        items.append(Label(x + 30, y, text, 6.8))
         x += wide + 10
     return items
