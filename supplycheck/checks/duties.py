@@ -1,4 +1,4 @@
-"""Rules on standpipes and private hydrants."""
+"""Rules on standpipes, private hydrants and fixed outflows."""
 
 from __future__ import annotations
 
@@ -66,6 +66,21 @@ CONNECTION = About(
     "pressure that must be fed at the connection for the standpipe demand",
     ("ask authority", "missing", "not applicable"),
     "NFPA 14: the standpipe demand is supplied through the connection too (from memory)",
+)
+
+OUTFLOWS = About(
+    "pressure asked at nodes",
+    "pressure with the supply as it is at every node that states a minimum pressure, sprinklers apart",
+    ("ok", "fail", "not applicable"),
+    "the project; that every outflow runs at once: common practice, no source",
+    weight=3,
+)
+STATED = About(
+    "minimum pressure of outflows",
+    "whether every fixed outflow states the pressure that must be left there",
+    ("ok", "missing", "not applicable"),
+    "reviewers' practice, no source",
+    weight=2,
 )
 
 NO_HYDRANTS = "There are no private hydrants."
@@ -288,6 +303,39 @@ def connection(context: CheckContext) -> Finding:
     )
 
 
+def asked_at_nodes(context: CheckContext) -> Finding:
+    """The node with least to spare beyond what the project states."""
+    places = {tag: row for row, tag in enumerate(context.operating.node_tags)}
+    states = [
+        (float(context.operating.pressure[places[node.tag]]) - node.minimum_pressure, node)
+        for node in context.project.system.nodes
+        if node.minimum_pressure is not None and node.kind != "sprinkler"
+    ]
+    if not states:
+        return OUTFLOWS.says("not applicable", "No node but sprinklers states a minimum pressure.")
+    spare, node = min(states, key=lambda pair: pair[0])
+    asked = node.minimum_pressure or 0.0
+    measured, limit, tags = pressure(spare + asked), pressure(asked), (node.tag,)
+    text = f"Node {node.tag} keeps {{measured}} in the case {context.case.label}; {{limit}} is asked."
+    if spare >= -limits.ROUND_OFF * max(abs(asked), 1.0):
+        return OUTFLOWS.says("ok", text, measured=measured, limit=limit, tags=tags)
+    do = "Enlarge what feeds this node, or boost the supply."
+    return OUTFLOWS.says("fail", text, measured=measured, limit=limit, tags=tags, remedy=do)
+
+
+def stated(context: CheckContext) -> Finding:
+    """An outflow without a pressure would be served by any supply that reaches it."""
+    duty = context.project.outflows
+    if duty is None:
+        return STATED.says("not applicable", "Fixed outflows are not what this project is judged by.")
+    if not duty.unstated:
+        text = "{measured} outflows, each with the pressure that must be left."
+        return STATED.says("ok", text, measured=count(len(duty.drawn)))
+    ask = f"Which pressure must be left at {some(duty.unstated)}?"
+    text = f"Not run: no minimum pressure is stated at {some(duty.unstated)}; 0 is taken."
+    return STATED.says("missing", text, tags=duty.unstated, remedy=ask)
+
+
 _ALL: tuple[tuple[About, Callable[[CheckContext], Finding]], ...] = (
     (FIRE_FLOW, fire_flow),
     (NUMBER, number),
@@ -298,5 +346,7 @@ _ALL: tuple[tuple[About, Callable[[CheckContext], Finding]], ...] = (
     (OUTLETS, outlets),
     (REGULATING, regulating),
     (CONNECTION, connection),
+    (OUTFLOWS, asked_at_nodes),
+    (STATED, stated),
 )
 RULES = tuple(Rule(about, run) for about, run in _ALL)

@@ -22,6 +22,7 @@ _WORDS: Final = (
     (r"device\.(.+)\.(?:loss|curve)", "{0}: {value}"),
     (r"layout\.(.+)\.elevation", "{0} at elevation {value}"),
     (r"nodes\.(.+)\.elevation", "node {0} at elevation {value}"),
+    (r"network\.nodes\.minimum_pressure", "least pressure at outflows: {value}"),
     (r"fire_flow\.greatest_each", "one hydrant may give {value}"),
     (r"fire_flow\.counts", "hydrants that count: {value}"),
     (r"fire_flow\.highest_point", "highest point of the main: {value}"),

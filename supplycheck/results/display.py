@@ -54,6 +54,8 @@ STATE_WORDS: Final = MappingProxyType(
     }
 )
 
+NOT_AT_ALL: Final = "none: the supply cannot give this flow"
+
 _FIELD: Final = re.compile(r"\{([A-Za-z_]\w*)\}")
 
 
@@ -142,6 +144,11 @@ def demand_text(result: Result, units: UnitSet) -> str:
     return text
 
 
+def available_text(pressure: float, units: UnitSet) -> str:
+    """Return the pressure [Pa] that the supply has at a flow; none where it cannot give the flow at all."""
+    return NOT_AT_ALL if pressure < 0 else units.text(pressure, "pressure")
+
+
 def fill(text: str, finding: Finding, units: UnitSet) -> str:
     """Return ``text`` with ``{measured}``, ``{limit}`` and the keys of ``finding.values`` filled in.
 
@@ -200,7 +207,10 @@ def demand_parts(demand: DemandRecord, units: UnitSet) -> str:
 
 
 def duties_text(duties: DutyAnswer) -> str:
-    """Return in one sentence how many cases of hydrants and standpipes were solved and count."""
+    """Return in one sentence how many cases of other duties than sprinklers were solved and count."""
+    if all(row.duty == "outflows" for row in duties.rows):
+        nodes = sum(len(row.outlets) for row in duties.rows)
+        return f"All fixed outflows at once; a pressure is asked at {nodes} node{'s' * (nodes != 1)}."
     counted = sum(row.counts for row in duties.rows)
     names = " and ".join(dict.fromkeys(row.duty for row in duties.rows))
     return f"{len(duties.rows)} of {names} side by side in the report, {counted} count for the verdict."

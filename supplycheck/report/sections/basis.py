@@ -26,7 +26,7 @@ def _design(result: Result, show: Show) -> list[Block]:
     """Return the criteria of the sprinklers, or the few that hold without sprinklers."""
     project = result.project
     if not project.criteria.has_sprinklers:
-        return [Facts(_without_sprinklers(project.criteria, show))]
+        return [Facts(_without_sprinklers(project, show))]
     return [
         Facts(_criteria(project.criteria, show), columns=2),
         Facts(_sources(project.criteria, show)),
@@ -49,9 +49,11 @@ def _search(result: Result) -> list[Block]:
     return [Paragraph(text)]
 
 
-def _without_sprinklers(criteria: Criteria, show: Show) -> tuple[tuple[str, str], ...]:
+def _without_sprinklers(project: Project, show: Show) -> tuple[tuple[str, str], ...]:
+    criteria = project.criteria
+    where = "hydrants and standpipes" if project.outflows is None else "fixed outflows"
     return (
-        ("Sprinklers", "none in this project; what is asked stands under hydrants and standpipes"),
+        ("Sprinklers", f"none in this project; what is asked stands under {where}"),
         ("Duration", show.t(criteria.duration, "time")),
         ("Component rating", show.t(criteria.maximum_pressure, "pressure")),
         ("Velocity limits", _velocity(criteria, show)),

@@ -1,4 +1,5 @@
-"""Hydrants and standpipes: every case beside the others, a sheet for each hydrant, every hose outlet."""
+"""Hydrants, standpipes, outflows: every case beside the others, a sheet for each hydrant, every hose outlet, every
+outflow."""
 
 from __future__ import annotations
 
@@ -22,8 +23,10 @@ from supplycheck.results.records import GraphPoint, Result
 
 
 def duties(result: Result, width: float) -> Section | None:
-    """Return the section on hydrants and standpipes, ``None`` where the project has neither."""
+    """Return the section on the duties beside sprinklers, ``None`` where the project has none."""
     project, show = result.project, Show.of(result)
+    if project.outflows is not None:
+        return Section("Fixed outflows", (_cases(result, show), _outflows(result, show)), fresh=True)
     if project.hydrants is None and project.standpipes is None:
         return None
     blocks: list[Block] = [_cases(result, show), *_graph(result, show, width)]
@@ -251,6 +254,45 @@ def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
             size=6.6,
         ),
     ]
+
+
+def _outflows(result: Result, show: Show) -> Table:
+    columns = (
+        words("Node"),
+        words("Kind"),
+        column("Elevation", show.s("length")),
+        column("Outflow", show.s("flow")),
+        column("Left at the demand", show.s("pressure")),
+        column("Left with the supply as it is", show.s("pressure")),
+        column("Asked", show.s("pressure")),
+        column("To spare", show.s("pressure")),
+    )
+    at_demand = {node.tag: node for node in result.nodes}
+    duty = result.project.outflows
+    unstated = set(duty.unstated) if duty else set()
+    rows = tuple(
+        Row(
+            (
+                one.node,
+                at_demand[one.node].kind,
+                show.n(at_demand[one.node].elevation, "length"),
+                show.n(one.flow, "flow"),
+                show.n(at_demand[one.node].pressure, "pressure"),
+                show.n(one.pressure, "pressure"),
+                show.n(one.required, "pressure"),
+                show.n(one.spare, "pressure"),
+            ),
+            note="no minimum pressure is stated: 0 is taken" if one.node in unstated else "",
+            strong=one.node == result.demand.governing_head,
+        )
+        for row in result.duties.rows
+        for one in row.outlets
+    )
+    note = (
+        "At the demand the supply is lowered until the first node is left exactly what is asked there, in "
+        "bold. Outflows are fixed: they never float with the pressure."
+    )
+    return Table("Every node that asks for a pressure", columns, rows, note, size=6.6)
 
 
 def _standpipes(result: Result, duty: StandpipeDuty, show: Show) -> list[Block]:
