@@ -1,4 +1,4 @@
-"""Standpipes, hydrants, outflows: every case solved, the rows beside each other, what each hydrant can give."""
+"""Standpipes, hydrants, outflows: every case solved, row beside row, and what each hydrant can give."""
 
 from __future__ import annotations
 

@@ -305,9 +305,12 @@ def connection(context: CheckContext) -> Finding:
 
 def asked_at_nodes(context: CheckContext) -> Finding:
     """The node with least to spare beyond what the project states."""
-    places = {tag: row for row, tag in enumerate(context.operating.node_tags)}
+    operating = context.operating
+    if operating is None:
+        return OUTFLOWS.says("not applicable", "What really flows was not solved.")
+    places = {tag: row for row, tag in enumerate(operating.node_tags)}
     states = [
-        (float(context.operating.pressure[places[node.tag]]) - node.minimum_pressure, node)
+        (float(operating.pressure[places[node.tag]]) - node.minimum_pressure, node)
         for node in context.project.system.nodes
         if node.minimum_pressure is not None and node.kind != "sprinkler"
     ]

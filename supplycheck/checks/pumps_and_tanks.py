@@ -39,7 +39,9 @@ def duration(context: CheckContext) -> Finding:
     """Given, and no less than the class asks."""
     given, figures = context.project.criteria.duration, context.class_figures
     if given is None:
-        ask = f"How long must the supply last for {context.project.criteria.hazard}?"
+        criteria = context.project.criteria
+        what = criteria.hazard if criteria.has_sprinklers else "what this project asks of it"
+        ask = f"How long must the supply last for {what}?"
         return DURATION.says("missing", "Not run: no duration is given.", remedy=ask)
     measured = Measure(given, "time")
     if (

@@ -243,7 +243,8 @@ def margin(context: CheckContext) -> Finding:
         "demand": pressure(facts.demand_pressure),
         "flow": flow(facts.demand_flow),
     }
-    at = f"at {facts.node}, {{flow}}: {{available}} available, {{demand}} needed"
+    has = "more than it can give" if facts.available_pressure < 0 else "{available} available"
+    at = f"at {facts.node}, {{flow}}: {has}, {{demand}} needed"
     source = rule.source if rule is not None and rule.source else MARGIN.source
     raise_it = "Enlarge pipes, cut the demand, or raise the supply."
     if facts.margin < 0:

@@ -17,7 +17,7 @@ LABEL = "all fixed outflows"
 
 
 def asked_at_nodes(nodes: Iterable[Node]) -> tuple[FixedOutlet, ...]:
-    """Return the pressures [Pa] that nodes other than sprinklers ask for; what they draw is no part of it."""
+    """Return the pressures [Pa] that nodes other than sprinklers ask for, without what they draw."""
     return tuple(
         FixedOutlet(node.tag, 0.0, node.minimum_pressure, name_of(node))
         for node in nodes

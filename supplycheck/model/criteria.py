@@ -80,7 +80,8 @@ class FixedOutlet:
     """An outlet whose flow never floats: a standpipe valve, a hydrant, an outflow.
 
     It must give ``flow`` [m³/s] with at least ``minimum_pressure`` [Pa] left at its node; with flow 0 it
-    only asks for the pressure (the highest point of a main, or a node whose outflow is counted elsewhere). ``what`` says what it is.
+    only asks for the pressure (the highest point of a main, say, or a node whose own
+    outflow flows anyway). ``what`` says what it is.
     """
 
     node: str

@@ -1,4 +1,4 @@
-"""Duties beside sprinklers: standpipes, private hydrants, fixed outflows. What is asked, and what was found. All SI."""
+"""Duties beside sprinklers: standpipes, hydrants, fixed outflows. What is asked, what was found. All SI."""
 
 from __future__ import annotations
 
@@ -131,8 +131,11 @@ class HydrantDuty:
 
 @dataclass(frozen=True, slots=True)
 class OutflowDuty:
-    """Fixed outflows that are all that a project asks: the nodes that draw, and those among them that
-    state no minimum pressure and are asked for 0 Pa."""
+    """Fixed outflows where a project asks for nothing else.
+
+    ``drawn`` are the nodes that draw; ``unstated`` those of them that state no minimum pressure: they
+    are asked for 0 Pa.
+    """
 
     drawn: tuple[str, ...]
     unstated: tuple[str, ...]

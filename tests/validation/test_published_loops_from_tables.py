@@ -101,7 +101,7 @@ def tolerance(tag: str) -> float:
 
 
 def test_two_loops_from_tables_to_the_record(tmp_path: Path) -> None:
-    """The pressures with the supply as it is; the outlets ask 30 m each (from memory of the same papers)."""
+    """The pressures with the supply as it is; the outlets ask 30 m each (from memory)."""
     found = two_loops(tmp_path)
     (case,) = found["duties"]["cases"]
     left = {one["node"]: one["pressure"] / METRE for one in case["outlets"]}

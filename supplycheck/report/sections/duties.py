@@ -1,5 +1,4 @@
-"""Hydrants, standpipes, outflows: every case beside the others, a sheet for each hydrant, every hose outlet, every
-outflow."""
+"""Hydrants, standpipes, outflows: every case beside the others, a sheet for each hydrant, all outlets."""
 
 from __future__ import annotations
 
