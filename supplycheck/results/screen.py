@@ -9,6 +9,7 @@ from typing import Final
 from supplycheck.results.display import (
     VERDICT_TITLES,
     area_text,
+    available_text,
     counts_text,
     demand_parts,
     demand_text,
@@ -65,7 +66,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ),
         (
             "Available",
-            f"{_t(units, supply.available_pressure)} at that flow ({read})",
+            _available(supply.available_pressure, units) + f" ({read})",
             2,
         ),
         ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),
@@ -75,6 +76,10 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ("Balance", f"flows disagree by {flow_gap}, pressures by {gap}", 1),
         ("Findings", counts_text(result.findings), 2),
     ]
+
+
+def _available(pressure: float, units: UnitSet) -> str:
+    return available_text(pressure, units) + ("" if pressure < 0 else " at that flow")
 
 
 def _headline(result: Result) -> str:

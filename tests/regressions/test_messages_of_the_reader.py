@@ -1,4 +1,4 @@
-"""Messages that named the wrong place, the wrong unit, or no value at all."""
+"""Messages that named the wrong place, the wrong unit, no value at all, or one that cannot be."""
 
 from __future__ import annotations
 
@@ -8,9 +8,14 @@ import pytest
 from click.testing import CliRunner
 from project_texts import LAYOUT_PROJECT, PIPES, TABLE_PROJECT, faults
 
+from supplycheck.check import check_project
 from supplycheck.cli import main
 from supplycheck.findings import Fault
 from supplycheck.project import ProjectFaultsError, read_project
+from supplycheck.report.build import build_document
+from supplycheck.report.document import Figure
+from supplycheck.results.screen import screen_text
+from supplycheck.units import US
 
 SCENARIO = '[[scenario]]\nname = "s"\n'
 
@@ -104,3 +109,19 @@ def test_new_needs_a_name(tmp_path: Path, name: str, monkeypatch: pytest.MonkeyP
     assert printed.exit_code == 2 and "is empty" in printed.stderr
     assert list(tmp_path.iterdir()) == []
     assert CliRunner().invoke(main, ["new", "."]).exit_code == 0
+
+
+def test_a_flow_that_the_supply_cannot_give_has_no_pressure(tmp_path: Path) -> None:
+    """A curve carried on below zero once printed as a negative pressure available."""
+    path = tmp_path / "project.toml"
+    path.write_text(spoilt("flow = 1000", "flow = 60"), encoding="utf-8")
+    result = check_project(path)
+    assert result.verdict == "not adequate" and result.supply.available_pressure < 0
+    number = US.text(result.supply.available_pressure, "pressure")
+    screen = screen_text(result)
+    assert "cannot give this flow" in screen and "more than it can give" in screen
+    assert number not in screen
+    first = build_document(result).sections[0]
+    told = str([block for block in first.blocks if not isinstance(block, Figure)])
+    assert "which the supply cannot give" in told
+    assert number not in told

@@ -79,7 +79,7 @@ def _available(
     whole = last >= first + len(path) - 1
     rows = last - first + (2 if first == 0 else 1)
     bottom = 30.0 if whole else height - 18 - rows * _ROW
-    available = units.text(result.supply.available_pressure, "pressure")
+    available = _given(result.supply.available_pressure, units)
     text = f"available {available} at {short(node, 90, 6.6)}"
     half = text_width(text, 6.6, bold=True) / 2
     items: list[Item] = [
@@ -140,6 +140,11 @@ def _key(width: float) -> list[Item]:
     return items
 
 
+def _given(pressure: float, units: UnitSet) -> str:
+    """Return the pressure [Pa] available at a flow; none where the supply cannot give the flow at all."""
+    return "none" if pressure < 0 else units.text(pressure, "pressure")
+
+
 def answer_bars(result: Result, units: UnitSet, width: float) -> Drawing:
     """Return two bars: the pressure needed, with what the margin rule adds, and the one available."""
     demand, supply, margin = result.demand, result.supply, result.margin
@@ -161,7 +166,7 @@ def answer_bars(result: Result, units: UnitSet, width: float) -> Drawing:
     items += [
         Label(0, 11, "available", 7.4, colour=SLATE),
         Box(left, 7, x[2] - left, 12, PETROL),
-        Label(x[2] + 5, 10.5, units.text(supply.available_pressure, "pressure"), 7.0),
+        Label(x[2] + 5, 10.5, _given(supply.available_pressure, units), 7.0),
         Line(((left, 2), (left, 42)), INK, 0.8),
         Line(((x[2], 2), (x[2], 42)), PETROL, 0.6, (1.5, 1.5)),
     ]

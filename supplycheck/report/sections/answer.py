@@ -57,6 +57,7 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
         )
     if demand.outlet_flow > 0:
         hose = demand_parts(demand, show.units)
+    beyond = ", which the supply cannot give" if supply.available_pressure < 0 else ""
     asked = "no rule given" if margin.required is None else show.t(margin.required, "pressure")
     after = "cannot be judged" if margin.after_rule is None else show.signed(margin.after_rule, "pressure")
     return (
@@ -67,8 +68,8 @@ def _tiles(result: Result, show: Show) -> tuple[Tile, ...]:
         ),
         Tile(
             "Available",
-            show.t(supply.available_pressure, "pressure"),
-            f"at {demand.node} at that flow; static there "
+            "none" if supply.available_pressure < 0 else show.t(supply.available_pressure, "pressure"),
+            f"at {demand.node} at that flow{beyond}; static there "
             f"{show.t(supply.static_at_comparison, 'pressure')}",
         ),
         Tile(

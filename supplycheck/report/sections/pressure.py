@@ -7,6 +7,7 @@ from typing import Final
 from supplycheck.report.document import Block, Figure, Paragraph, Row, Section, Table
 from supplycheck.report.figures.bars import pressure_bars
 from supplycheck.report.show import Show, column, steps_table, words
+from supplycheck.results.display import available_text
 from supplycheck.results.records import PathStep, Result
 from supplycheck.results.totals import path_totals
 
@@ -79,8 +80,8 @@ def _table(result: Result, path: tuple[PathStep, ...], show: Show) -> Table:
         )
         cells = tuple(show.n(v, "pressure", 2 if show.units.name == "us" else 3) for v in values)
         rows.append(Row(("", "whole path", "", *cells), strong=True))
-    available = show.t(result.supply.available_pressure, "pressure")
-    note = f"At {result.demand.node} the supply has {available} available at the demand flow."
+    available = available_text(result.supply.available_pressure, show.units)
+    note = f"Available at {result.demand.node} at the demand flow: {available}."
     return Table("Pressure by segment", columns, tuple(rows), note)
 
 
