@@ -26,14 +26,15 @@ NODE_COLUMNS: Final = (
     Column(
         "kind",
         "`junction`, `sprinkler`, `supply`, `hose`, `hydrant` or `outlet`. "
-        "Default: `sprinkler` where a sprinkler or a K-factor is given, otherwise `junction`.",
+        "Default: `sprinkler` where a sprinkler or a K-factor is given, `outlet` where a flow is, "
+        "otherwise `junction`.",
     ),
     Column("sprinkler", "Sprinkler type, `[sprinkler.NAME]`."),
     Column("k_factor", "K-factor of this outlet, instead of that of its type.", "k_factor"),
     Column("area", "Floor area of this head. Default: the coverage of its type.", "area"),
     Column("line", "Branch line on which the head sits."),
-    Column("flow", "Fixed outflow of a hose, hydrant or outlet.", "flow"),
-    Column("minimum_pressure", "Lowest pressure at this node.", "pressure"),
+    Column("flow", "Fixed outflow of a hose, hydrant or outlet. It runs in every case.", "flow"),
+    Column("minimum_pressure", "Lowest pressure at this node, asked in every case; at a sprinkler where it is open.", "pressure"),
 )
 PIPE_COLUMNS: Final = (
     Column("tag", "Name of the pipe, unique. Default: its two nodes, `A-B`."),
@@ -132,10 +133,10 @@ class _NodeReader:
             )
         sprinkler = self._sprinkler(row)
         k_factor = table.number(row, "k_factor", "k_factor", units, faults)
-        default = "sprinkler" if sprinkler or k_factor is not None else "junction"
+        flow = table.number(row, "flow", "flow", units, faults, "zero or more")
+        default = "sprinkler" if sprinkler or k_factor is not None else "outlet" if flow else "junction"
         kind = _choice(row, "kind", _KINDS, default, faults)
         area = table.number(row, "area", "area", units, faults)
-        flow = table.number(row, "flow", "flow", units, faults, "zero or more")
         if tag is None:
             return None
         if kind == "sprinkler":
