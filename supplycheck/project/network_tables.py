@@ -34,7 +34,11 @@ NODE_COLUMNS: Final = (
     Column("area", "Floor area of this head. Default: the coverage of its type.", "area"),
     Column("line", "Branch line on which the head sits."),
     Column("flow", "Fixed outflow of a hose, hydrant or outlet. It runs in every case.", "flow"),
-    Column("minimum_pressure", "Lowest pressure at this node, asked in every case; at a sprinkler where it is open.", "pressure"),
+    Column(
+        "minimum_pressure",
+        "Lowest pressure at this node, asked in every case; at a sprinkler where it is open.",
+        "pressure",
+    ),
 )
 PIPE_COLUMNS: Final = (
     Column("tag", "Name of the pipe, unique. Default: its two nodes, `A-B`."),
