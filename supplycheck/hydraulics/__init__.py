@@ -8,6 +8,7 @@ from supplycheck.hydraulics.darcy_weisbach import (
     darcy_weisbach_gradient,
     friction_factor,
     friction_group,
+    friction_group_unchecked,
     reynolds_number,
 )
 from supplycheck.hydraulics.discharge import (
@@ -59,6 +60,7 @@ __all__ = [
     "equivalent_length",
     "friction_factor",
     "friction_group",
+    "friction_group_unchecked",
     "hazen_williams_gradient",
     "hazen_williams_resistance",
     "k_factor_discharge",

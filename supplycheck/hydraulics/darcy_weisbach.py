@@ -104,13 +104,19 @@ def friction_group(*, reynolds: Number, relative_roughness: AnyNumber) -> tuple[
         )
     if re.shape != rough.shape:
         re, rough = np.broadcast_arrays(re, rough)
+    value, slope = friction_group_unchecked(re, rough)
+    return plain(value), plain(slope)
+
+
+def friction_group_unchecked(re: FloatArray, rough: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return :func:`friction_group` of arrays of one shape that are known to be in range."""
     value, slope = _colebrook(np.maximum(re, TURBULENT_START), rough)
     low = re < TURBULENT_START
     if low.any():
-        value, slope = np.array(value), np.array(slope)
+        value, slope = np.array(value), np.array(slope)  # a scalar of numpy takes no assignment
         # below the turbulent range `value` and `slope` hold the Colebrook end of the bridge
         value[low], slope[low] = _bridge(re[low], value[low], slope[low])
-    return plain(value), plain(slope)
+    return value, slope
 
 
 def _colebrook(re: FloatArray, rough: FloatArray) -> tuple[FloatArray, FloatArray]:

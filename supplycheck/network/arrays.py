@@ -10,7 +10,7 @@ from types import MappingProxyType
 import numpy as np
 
 from supplycheck.errors import NotConvergedError
-from supplycheck.hydraulics import hazen_williams_resistance, minor_loss, reynolds_number
+from supplycheck.hydraulics import friction_group, hazen_williams_resistance, minor_loss, reynolds_number
 from supplycheck.model.fluid import Fluid, FrictionLaw
 from supplycheck.model.system import Device, Pipe, System
 from supplycheck.network.curves import DeviceLaw
@@ -50,7 +50,7 @@ def build_network(system: System, *, law: FrictionLaw, fluid: Fluid) -> Network:
         With cause ``"input"`` where a pipe names a node that does not exist, joins a node to itself
         or lacks the C-factor or roughness that the law needs.
     DomainError
-        Where a device has no proper curve.
+        Where a device has no proper curve, or a roughness is negative or not below its bore.
     """
     node_rows = {node.tag: row for row, node in enumerate(system.nodes)}
     pipes = system.pipes
@@ -135,11 +135,15 @@ def _friction(
     by_flow, _ = reynolds_number(
         flow=np.ones(len(sorts)), bore=sort_bore, density=fluid.density, viscosity=fluid.viscosity
     )
+    relative = sort_roughness / sort_bore
+    friction_group(
+        reynolds=np.zeros(len(sorts)), relative_roughness=relative
+    )  # refuses what is out of range
     terms = Terms(
         link=np.arange(len(pipes)),
         sort=sort.reshape(-1),
         length=length,
-        relative=sort_roughness / sort_bore,
+        relative=relative,
         by_flow=by_flow,
         scale=fluid.viscosity**2 / (2 * fluid.density * sort_bore**3),
     )

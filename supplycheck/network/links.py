@@ -19,7 +19,7 @@ from typing import Final
 import numpy as np
 from numpy.typing import NDArray
 
-from supplycheck.hydraulics import friction_group, smooth_power
+from supplycheck.hydraulics import friction_group_unchecked, smooth_power
 from supplycheck.network.curves import DeviceLaw
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -56,9 +56,7 @@ class Terms:
         """Return loss [Pa] and slope on each of ``count`` links carrying ``flow``."""
         here = flow[self.link]
         by_flow = self.by_flow[self.sort]
-        group, rise = friction_group(
-            reynolds=by_flow * np.abs(here), relative_roughness=self.relative[self.sort]
-        )
+        group, rise = friction_group_unchecked(by_flow * np.abs(here), self.relative[self.sort])
         weight = self.scale[self.sort] * self.length
         total = sums(self.link, np.copysign(weight * group, here), count)
         return total, sums(self.link, weight * by_flow * rise, count)
