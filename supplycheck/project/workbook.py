@@ -3,12 +3,21 @@
 from __future__ import annotations
 
 import io
+import re
+import warnings
+import zipfile
 from collections.abc import Iterator
 from typing import Any, Final
+from xml.etree import ElementTree
 
 from supplycheck.findings import Place
 from supplycheck.project.faults import FaultList, listed, near, quoted
 
+_MAIN: Final = "{http://schemas.openxmlformats.org/spreadsheetml/2006/main}"
+_LINK: Final = "{http://schemas.openxmlformats.org/officeDocument/2006/relationships}id"
+_REFERENCE: Final = re.compile(r"\$?([A-Z]{1,3})\$?(\d{1,7})")
+UNREADABLE: Final = (KeyError, ValueError, OSError, TypeError, SyntaxError, EOFError)
+MOST_COLUMNS: Final = 100
 UNSTORED: Final = "\0formula"
 MERGED: Final = "\0merged "
 """Stand for cells without a value of their own; no cell of a workbook holds a zero byte."""
@@ -32,16 +41,13 @@ def sheet_rows(
 
     A cell without a value of its own holds :data:`UNSTORED`, or :data:`MERGED` and its range.
     """
-    import warnings
-    import zipfile
-
     import openpyxl
 
     try:
         with warnings.catch_warnings():
             warnings.simplefilter("ignore")  # styles and extensions that the reader does not need
             book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=True)
-    except (zipfile.BadZipFile, KeyError, ValueError, OSError, TypeError, SyntaxError, EOFError):
+    except (zipfile.BadZipFile, *UNREADABLE):
         faults.add(
             place,
             "cannot be read as XLSX",
@@ -69,54 +75,76 @@ def sheet_rows(
                 texts += [""] * (column + 1 - len(texts))
                 texts[column] = texts[column] or mark
             yield number, texts
-    except (zipfile.BadZipFile, KeyError, ValueError, OSError, TypeError, SyntaxError, EOFError) as caught:
+    except (zipfile.BadZipFile, *UNREADABLE) as caught:
         faults.add(place, f"the sheet cannot be read ({type(caught).__name__})", found=quoted(name))
     finally:
         book.close()
 
 
-def _holds(data: bytes, marks: tuple[bytes, ...]) -> bool:
-    """Return whether a sheet of the workbook holds one of ``marks``, read piece by piece."""
-    import zipfile
-
-    with zipfile.ZipFile(io.BytesIO(data)) as archive:
-        for entry in archive.namelist():
-            if not (entry.startswith("xl/worksheets/") and entry.endswith(".xml")):
-                continue
-            with archive.open(entry) as stream:
-                kept = b""
-                while piece := stream.read(1 << 20):
-                    if any(mark in kept + piece for mark in marks):
-                        return True
-                    kept = piece[-16:]
-    return False
+def _part_of(archive: zipfile.ZipFile, sheet: str) -> str:
+    """Return the part of the workbook that holds ``sheet``; raises :class:`KeyError` without one."""
+    book = ElementTree.fromstring(archive.read("xl/workbook.xml"))
+    links = ElementTree.fromstring(archive.read("xl/_rels/workbook.xml.rels"))
+    targets = {link.get("Id"): link.get("Target", "") for link in links}
+    for entry in book.iter(f"{_MAIN}sheet"):
+        if entry.get("name") == sheet:
+            target = targets[entry.get(_LINK)]
+            return target.lstrip("/") if target.startswith("/") else f"xl/{target}"
+    raise KeyError(sheet)
 
 
 def _marked(data: bytes, sheet: str) -> dict[int, list[tuple[int, str]]]:
-    """Return by row the positions, from 0, of cells that may be empty for a reason, with a mark of it.
+    """Return by row the positions, from 0, of cells that are empty for a reason, with a mark of it.
 
-    These are formulas (empty where no result is stored) and cells that are merged into another one. The
-    workbook is read a second time for them only where it holds any at all.
+    These are formulas without a stored result (an empty text is one) and cells that are merged into
+    another one; of a merged range, those of its first two rows.
     """
-    import warnings
-    import zipfile
-
-    import openpyxl
-
     found: dict[int, list[tuple[int, str]]] = {}
     try:
-        if not _holds(data, (b"<f>", b"<f ", b"<f/", b"mergeCell ")):
-            return found
-        with warnings.catch_warnings():
-            warnings.simplefilter("ignore")
-            page = openpyxl.load_workbook(io.BytesIO(data))[sheet]
-    except (zipfile.BadZipFile, KeyError, ValueError, OSError, TypeError, SyntaxError, EOFError):
+        with zipfile.ZipFile(io.BytesIO(data)) as archive, archive.open(_part_of(archive, sheet)) as stream:
+            for _, element in ElementTree.iterparse(stream):
+                if element.tag == f"{_MAIN}c":
+                    if element.find(f"{_MAIN}f") is not None and _is_bare(element):
+                        _add(found, element.get("r", ""), UNSTORED)
+                elif element.tag == f"{_MAIN}row":
+                    element.clear()
+                elif element.tag == f"{_MAIN}mergeCell":
+                    _add_merged(found, element.get("ref", ""))
+    except (zipfile.BadZipFile, *UNREADABLE):
         return found  # the reading of the values says so
-    for row in page.iter_rows():
-        for cell in row:
-            if cell.data_type == "f":
-                found.setdefault(cell.row, []).append((cell.column - 1, UNSTORED))
-    for merged in page.merged_cells.ranges:
-        for number, column in list(merged.cells)[1:]:
-            found.setdefault(number, []).append((column - 1, f"{MERGED}{merged}"))
     return found
+
+
+def _is_bare(cell: ElementTree.Element) -> bool:
+    """Return whether a cell with a formula stores no result."""
+    return cell.get("t") != "str" and not cell.findtext(f"{_MAIN}v")
+
+
+def _add(found: dict[int, list[tuple[int, str]]], reference: str, mark: str) -> None:
+    match = _REFERENCE.fullmatch(reference)
+    if match:
+        found.setdefault(int(match[2]), []).append((_position(match[1]), mark))
+
+
+def _add_merged(found: dict[int, list[tuple[int, str]]], reference: str) -> None:
+    first, _, last = reference.partition(":")
+    start, end = _REFERENCE.fullmatch(first), _REFERENCE.fullmatch(last)
+    if start is None or end is None:
+        return
+    left, top = _position(start[1]), int(start[2])
+    right, bottom = min(_position(end[1]), left + MOST_COLUMNS), min(int(end[2]), top + 1)
+    for number in range(top, bottom + 1):
+        columns = range(left + (number == top), right + 1)
+        found.setdefault(number, []).extend((column, f"{MERGED}{reference}") for column in columns)
+
+
+def _position(letters: str) -> int:
+    """Return the position, from 0, of a column.
+
+    >>> _position("A"), _position("AB")
+    (0, 27)
+    """
+    number = 0
+    for letter in letters:
+        number = 26 * number + ord(letter) - ord("A") + 1
+    return number - 1

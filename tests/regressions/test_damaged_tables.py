@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import zipfile
 from pathlib import Path
 
 import openpyxl
@@ -57,6 +58,38 @@ def test_a_formula_outside_the_table_does_not_matter(tmp_path: Path) -> None:
     book(tmp_path, {"J3": "=1+1", "B9": "=SUM(B2:B5)"})
     (fault,) = faults(tmp_path, BOOK)  # the sum stands in the column x, the other in none
     assert fault.place.where == "row 9, column x"
+
+
+def test_a_stored_result_counts_even_if_it_is_an_empty_text(tmp_path: Path) -> None:
+    """Spreadsheet programs store the result of `=IF(A9="","",A9)` as a text without characters."""
+    book(tmp_path, {"G4": "=1+1", "D4": "=5+5"})
+    part = "xl/worksheets/sheet2.xml"
+    with zipfile.ZipFile(tmp_path / "book.xlsx") as archive:
+        parts = {name: archive.read(name) for name in archive.namelist()}
+    sheet = parts[part].decode()
+    for cell, before, after in (
+        ("G4", '"G4"', '"G4" t="str"'),
+        ("D4", "<f>5+5</f><v", "<f>5+5</f><v>10</v><v"),
+    ):
+        assert before in sheet, cell
+        sheet = sheet.replace(before, after)
+    sheet = sheet.replace("<v>10</v><v />", "<v>10</v>").replace("<v>10</v><v></v>", "<v>10</v>")
+    parts[part] = sheet.replace("<v>10</v><v/>", "<v>10</v>").encode()
+    with zipfile.ZipFile(tmp_path / "book.xlsx", "w") as archive:
+        for name, content in parts.items():
+            archive.writestr(name, content)
+    assert faults(tmp_path, BOOK) == []
+    assert read(tmp_path, BOOK).system.nodes[2].elevation == pytest.approx(10 * FOOT)
+
+
+def test_a_huge_merged_range_costs_nothing(tmp_path: Path) -> None:
+    book(tmp_path, {}, merge="E2:E3")
+    with zipfile.ZipFile(tmp_path / "book.xlsx") as archive:
+        parts = {name: archive.read(name) for name in archive.namelist()}
+    with zipfile.ZipFile(tmp_path / "book.xlsx", "w") as archive:
+        for name, content in parts.items():
+            archive.writestr(name, content.replace(b"E2:E3", b"E2:XFD1048576"))
+    assert faults(tmp_path, BOOK)[0].found == "E2:XFD1048576"
 
 
 def test_merged_cells_are_named(tmp_path: Path) -> None:
