@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Any
 
+from supplycheck.project.columns import NODE_COLUMNS, PIPE_COLUMNS
 from supplycheck.project.describe import descriptions, json_schema, tables
-from supplycheck.project.network_tables import NODE_COLUMNS, PIPE_COLUMNS
 from supplycheck.project.plausible import LIMITS
 from supplycheck.project.schema import ProjectFile
 from supplycheck.project.schema_parts import Table
