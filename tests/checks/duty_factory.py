@@ -1,10 +1,12 @@
-"""Hydrants and standpipes made by hand for the rules; every number is invented."""
+"""Hydrants, standpipes and outflows made by hand for the rules; every number is invented."""
 
 from __future__ import annotations
 
 import math
 from dataclasses import replace
 from typing import Any
+
+from check_factory import sound
 
 from supplycheck.model.duty import (
     ConnectionRow,
@@ -14,6 +16,7 @@ from supplycheck.model.duty import (
     Hydrant,
     HydrantDuty,
     HydrantRow,
+    OutflowDuty,
     OutletState,
     RegulatingDevice,
     Riser,
@@ -104,6 +107,11 @@ def outlet(**changes: Any) -> tuple[StandpipeRow, ...]:
 
 def hydrant(**changes: Any) -> tuple[HydrantRow, ...]:
     return (replace(HYDRANT, **changes),)
+
+
+def asked_at_b(asked: float) -> dict[str, Any]:
+    """Return the change of a context to a node B that asks for ``asked`` psi."""
+    return {"operating": sound().solution, "project.system.nodes.B.minimum_pressure": asked * PSI}
 
 
 LISTED = {"counts": False, "kind": "valve shut"}
@@ -198,4 +206,17 @@ DUTY_CASES: list[tuple[Any, ...]] = [
     ("fire department connection", "missing", tower()),
     ("fire department connection", "missing", tower(fed=replace(CONNECTION, note="no solution: cut"))),
     ("fire department connection", "ask authority", tower(fed=CONNECTION), 150 * PSI, None, ("B",)),
+    ("pressure asked at nodes", "not applicable"),
+    ("pressure asked at nodes", "ok", asked_at_b(5), None, 5 * PSI, ("B",)),
+    ("pressure asked at nodes", "fail", asked_at_b(1000), None, 1000 * PSI, ("B",)),
+    ("minimum pressure of outflows", "not applicable"),
+    ("minimum pressure of outflows", "ok", {"project.outflows": OutflowDuty(("B", "T"), ())}, 2),
+    (
+        "minimum pressure of outflows",
+        "missing",
+        {"project.outflows": OutflowDuty(("B", "T"), ("T",))},
+        None,
+        None,
+        ("T",),
+    ),
 ]

@@ -56,7 +56,7 @@ def check(folder: Path, text: str, nodes: list[str], pipes: list[str]) -> Result
 
 
 def lost(flow: float, length: float, bore: float) -> float:
-    return length * 4.52 * flow**1.85 / (120**1.85 * bore**4.87)
+    return float(length * 4.52 * flow**1.85 / (120**1.85 * bore**4.87))
 
 
 def test_the_node_with_least_to_spare_sets_the_demand(tmp_path: Path) -> None:

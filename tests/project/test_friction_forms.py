@@ -25,7 +25,8 @@ def project(folder: Path, law: str, standard: str = "NFPA 13 (2022)", more: str 
 
 def gradient(law: FrictionLaw, flow: float, bore: float) -> float:
     """Return the loss [Pa/m] at C 120."""
-    return law.coefficient * flow**law.flow_exponent / (120**law.flow_exponent * bore**law.bore_exponent)
+    power = law.flow_exponent
+    return float(law.coefficient * flow**power / (120**power * bore**law.bore_exponent))
 
 
 @pytest.mark.parametrize("standard", ["NFPA 13 (2022)", "EN 12845 (2015)"])
