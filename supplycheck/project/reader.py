@@ -187,11 +187,13 @@ def _check_area(
     """Note an empty design area and heads in it that do not exist."""
     where = "criteria.design_area"
     heads = [node for node in system.nodes if node.kind == "sprinkler"]
+    draws = any(node.fixed_flow > 0 for node in system.nodes)
     if not heads and not faults.touched(sections.place("layout")):
         faults.add(
             sections.place("layout" if sections.layout else "network.nodes"),
             "there is no sprinkler",
             allowed="at least one node of kind sprinkler",
+            remedy='or hazard = "none" in [criteria]' if draws else "",
         )
     area = criteria.design_area if criteria else "search"
     if area == "search":

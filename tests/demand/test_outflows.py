@@ -150,3 +150,10 @@ def test_sprinklers_need_criteria_and_the_kind_of_system(tmp_path: Path) -> None
     assert "criteria.system: is missing" in fault
     (fault,) = faults(tmp_path, HEADS[HEADS.index("[sprinkler") :], nodes, LINES)
     assert "criteria: the table is missing" in fault
+
+
+def test_a_hazard_class_without_sprinklers_is_told_what_to_write(tmp_path: Path) -> None:
+    (fault,) = faults(
+        tmp_path, HEADS[: HEADS.index("design_area")], ["B,0,outlet,,100,10"], ["x,S,B,100,2"]
+    )
+    assert "there is no sprinkler" in fault and 'hazard = "none"' in fault
