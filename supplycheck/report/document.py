@@ -75,12 +75,16 @@ class Table:
 
 @dataclass(frozen=True, slots=True)
 class Figure:
-    """A drawing with its title and a caption; ``if_room`` leaves it out where the page is full."""
+    """A drawing with its title and a caption; ``if_room`` leaves it out where the page is full.
+
+    ``smaller`` is drawn instead where only that has room.
+    """
 
     title: str
     drawing: Drawing
     caption: str = ""
     if_room: bool = False
+    smaller: Drawing | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -125,7 +129,7 @@ Block = Heading | Paragraph | Facts | Table | Figure | Verdict | BlankLines | Li
 
 @dataclass(frozen=True, slots=True)
 class Section:
-    """A section; ``landscape`` turns its pages, ``fresh`` starts on a new page."""
+    """A section; ``landscape`` turns its pages, ``fresh`` starts on a new page, if not nearly empty."""
 
     title: str
     blocks: tuple[Block, ...]

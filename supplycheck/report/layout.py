@@ -24,6 +24,8 @@ from supplycheck.report.theme import CLAY, INK, MIST, PAPER, PETROL, RULE, SLATE
 from supplycheck.report.wrapping import Ruler, wrap
 
 _SIZES: Final = {"body": 8.4, "lead": 9.6, "small": 7.0, "caution": 8.4}
+_LITTLE: Final = 0.36
+"""A section that wants a new page goes on below the last one where that took no more of the page."""
 
 
 def lay_out(document: Document, ruler: Ruler) -> list[Sheet]:
@@ -45,12 +47,13 @@ def _front(sheets: Sheets, document: Document) -> None:
 
 
 def _section(sheets: Sheets, section: Section, number: int) -> None:
-    if section.fresh or section.landscape != sheets.landscape:
+    used = (sheets.top - sheets.y) / (sheets.top - sheets.bottom)
+    if section.landscape != sheets.landscape or (section.fresh and used > _LITTLE):
         sheets.turn(section.landscape)
     if number > 0:
-        sheets.need(96)
+        sheets.need(max(96.0, 48.0 + _start_height(section)))
         if not sheets.is_fresh:
-            sheets.y -= 8
+            sheets.y -= 14
         sheets.sheet.entries.append((section.title, sheets.y))
         sheets.text(section.title, 13.0, bold=True, colour=PETROL)
         sheets.put(Line(((sheets.left, sheets.y), (sheets.left + sheets.room, sheets.y)), PETROL, 1.1))
@@ -62,6 +65,16 @@ def _section(sheets: Sheets, section: Section, number: int) -> None:
             after = section.blocks[place + 1] if place + 1 < len(section.blocks) else None
             sheets.need(20 + min(_facts_height(sheets, after), 200) if isinstance(after, Facts) else 48)
         _block(sheets, block)
+
+
+def _start_height(section: Section) -> float:
+    """Return the room that a figure at the start of ``section`` takes, as it has to follow the title."""
+    height = 0.0
+    for block in section.blocks[:3]:
+        if isinstance(block, Figure):
+            return height + block.drawing.height + 30.0
+        height += 36.0
+    return 0.0
 
 
 def _block(sheets: Sheets, block: Block) -> None:
@@ -154,6 +167,9 @@ def _figure(sheets: Sheets, block: Figure) -> None:
     drawing = block.drawing
     caption = wrap(block.caption, sheets.room, 7.0, sheets.ruler) if block.caption else []
     height = drawing.height + 18 + len(caption) * 9.7
+    if block.smaller is not None and sheets.y - height < sheets.bottom:
+        height -= drawing.height - block.smaller.height
+        drawing = block.smaller
     if block.if_room and sheets.y - height < sheets.bottom:
         return
     sheets.need(height)

@@ -12,6 +12,8 @@ from supplycheck.report.theme import INK, MIST, PETROL, RULE, SLATE
 from supplycheck.report.wrapping import Ruler, wrap
 
 PAD: Final = 3.0
+GUTTER: Final = 7.0
+"""Room left of a column of words that follows a column of numbers, so that the two do not run together."""
 LEAST: Final = 24.0
 TOGETHER: Final = 6
 """Tables of so few rows are not broken over pages."""
@@ -25,6 +27,7 @@ class _Grid:
 
     widths: tuple[float, ...]
     size: float
+    insets: tuple[float, ...]
 
     @property
     def leading(self) -> float:
@@ -33,6 +36,11 @@ class _Grid:
     @property
     def total(self) -> float:
         return sum(self.widths)
+
+    @property
+    def rooms(self) -> tuple[float, ...]:
+        """The width that the text of each column may take."""
+        return tuple(width - inset - PAD for width, inset in zip(self.widths, self.insets, strict=True))
 
 
 def put_table(sheets: Sheets, table: Table) -> None:
@@ -47,7 +55,11 @@ def put_table(sheets: Sheets, table: Table) -> None:
     _header(sheets, table.columns, head, grid)
     if not table.rows:
         sheets.text(table.empty, grid.size, colour=SLATE, indent=PAD)
+    below = 4 + len(wrap(table.note, sheets.room, 6.6, sheets.ruler)) * 6.6 * 1.38 if table.note else 0.0
     for one in laid:
+        last = one is laid[-1] and sheets.y - _row_height(one, grid) - below < sheets.bottom
+        if last and not _is_below_header(sheets, head, grid):  # a note never stands alone on a page
+            _go_on(sheets, table, head, grid)
         _row(sheets, table, head, grid, one)
     sheets.put(Line(((sheets.left, sheets.y), (sheets.left + grid.total, sheets.y)), SLATE, 0.6))
     sheets.y -= 4
@@ -58,8 +70,8 @@ def put_table(sheets: Sheets, table: Table) -> None:
 
 def _laid(number: int, row: Row, grid: _Grid, ruler: Ruler) -> _Laid:
     lines = [
-        wrap(cell, width - 2 * PAD, grid.size, ruler, bold=row.strong)
-        for cell, width in zip(row.cells, grid.widths, strict=True)
+        wrap(cell, room, grid.size, ruler, bold=row.strong)
+        for cell, room in zip(row.cells, grid.rooms, strict=True)
     ]
     notes = wrap(row.note, grid.total - 18, grid.size - 0.4, ruler) if row.note else []
     return number, row, lines, notes
@@ -77,32 +89,41 @@ def _title(sheets: Sheets, title: str) -> None:
 
 
 def _grid(table: Table, room: float, ruler: Ruler) -> _Grid:
-    size = table.size
+    size, insets = table.size, _insets(table.columns)
     if all(column.share for column in table.columns):
         whole = sum(column.share for column in table.columns)
-        return _Grid(tuple(room * column.share / whole for column in table.columns), size)
+        return _Grid(tuple(room * column.share / whole for column in table.columns), size, insets)
     natural = _natural(table, size, ruler)
     while sum(natural) > room and size > 5.6 and not any(column.wrap for column in table.columns):
         size -= 0.2
         natural = _natural(table, size, ruler)
     over = sum(natural) - room
     if over <= 0:
-        return _Grid(_stretched(table, natural, room), size)
+        return _Grid(_stretched(table, natural, room), size, insets)
     elastic = [width if column.wrap else 0.0 for column, width in zip(table.columns, natural, strict=True)]
     widths = _shrunk(natural, elastic, over)
     over = sum(widths) - room
     if over > 0:
         widths = _shrunk(widths, widths, over)
-    return _Grid(tuple(widths), size)
+    return _Grid(tuple(widths), size, insets)
+
+
+def _insets(columns: tuple[Column, ...]) -> tuple[float, ...]:
+    """Return the room left of the text of each column."""
+    before = (None, *columns[:-1])
+    return tuple(
+        PAD + GUTTER if last is not None and last.right and not column.right else PAD
+        for last, column in zip(before, columns, strict=True)
+    )
 
 
 def _natural(table: Table, size: float, ruler: Ruler) -> list[float]:
     widths = []
-    for place, column in enumerate(table.columns):
+    for place, (column, inset) in enumerate(zip(table.columns, _insets(table.columns), strict=True)):
         words = [*column.title.split(" "), *column.unit.split(" ")]
         need = max((ruler.width(word, size, True) for word in words), default=0.0)
         cells = (ruler.width(ruler.clean(row.cells[place]), size, row.strong) for row in table.rows)
-        widths.append(max(need, max(cells, default=0.0), LEAST - 2 * PAD) + 2 * PAD + 0.5)
+        widths.append(max(need, max(cells, default=0.0), LEAST - 2 * PAD) + inset + PAD + 0.5)
     return widths
 
 
@@ -138,8 +159,8 @@ def _shrunk(widths: list[float], elastic: list[float], over: float) -> list[floa
 
 def _header_lines(columns: tuple[Column, ...], grid: _Grid, ruler: Ruler) -> list[tuple[list[str], str]]:
     return [
-        (wrap(column.title, width - 2 * PAD + 0.5, grid.size, ruler, bold=True), column.unit)
-        for column, width in zip(columns, grid.widths, strict=True)
+        (wrap(column.title, room + 0.5, grid.size, ruler, bold=True), column.unit)
+        for column, room in zip(columns, grid.rooms, strict=True)
     ]
 
 
@@ -156,14 +177,15 @@ def _header(
     items: list[Item] = [Box(sheets.left, sheets.y, grid.total, height, fill=MIST)]
     has_units = any(unit for _, unit in head)
     x = sheets.left
-    for column, width, (lines, unit) in zip(columns, grid.widths, head, strict=True):
+    for place, (column, (lines, unit)) in enumerate(zip(columns, head, strict=True)):
+        width, inset = grid.widths[place], grid.insets[place]
         y = sheets.y + 3.5 + (grid.leading if has_units else 0.0)
         for line in reversed(lines):
-            items.append(_cell(x, y, width, line, _Style(grid.size, column.right, bold=True)))
+            items.append(_cell(x, y, width, line, _Style(grid.size, column.right, inset, bold=True)))
             y += grid.leading
         if unit:
             items.append(
-                _cell(x, sheets.y + 3.5, width, unit, _Style(grid.size, column.right, colour=SLATE))
+                _cell(x, sheets.y + 3.5, width, unit, _Style(grid.size, column.right, inset, colour=SLATE))
             )
         x += width
     items.append(Line(((sheets.left, sheets.y), (x, sheets.y)), SLATE, 0.8))
@@ -176,6 +198,7 @@ class _Style:
 
     size: float
     right: bool
+    inset: float = PAD
     bold: bool = False
     colour: str = INK
 
@@ -183,7 +206,14 @@ class _Style:
 def _cell(left: float, y: float, width: float, text: str, style: _Style) -> Label:
     if style.right:
         return Label(left + width - PAD, y, text, style.size, "end", style.bold, style.colour)
-    return Label(left + PAD, y, text, style.size, "start", style.bold, style.colour)
+    return Label(left + style.inset, y, text, style.size, "start", style.bold, style.colour)
+
+
+def _go_on(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid) -> None:
+    """Start a page with the title and the header of ``table``."""
+    sheets.new_page()
+    _title(sheets, f"{table.title} (continued)" if table.title else "")
+    _header(sheets, table.columns, head, grid)
 
 
 def _row(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: _Laid) -> None:
@@ -194,9 +224,7 @@ def _row(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: 
     while left > 0:
         room = int((sheets.y - sheets.bottom - 4) / grid.leading)
         if room < left and not _is_below_header(sheets, head, grid):
-            sheets.new_page()
-            _title(sheets, f"{table.title} (continued)" if table.title else "")
-            _header(sheets, table.columns, head, grid)
+            _go_on(sheets, table, head, grid)
             continue
         taken = min(left, max(room, 1))
         _part(sheets, grid, table.columns, (number, row, lines, notes), start, taken)
@@ -218,8 +246,9 @@ def _part(
     sheets.y -= height
     items: list[Item] = []
     x = sheets.left
-    for column, width, cell in zip(columns, grid.widths, lines, strict=True):
-        style = _Style(grid.size, column.right, row.strong)
+    for number, (column, cell) in enumerate(zip(columns, lines, strict=True)):
+        width = grid.widths[number]
+        style = _Style(grid.size, column.right, grid.insets[number], row.strong)
         for place, line in enumerate(cell[start : start + taken]):
             y = top - (place + 1) * grid.leading + grid.size * 0.12
             if line:

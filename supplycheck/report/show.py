@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from dataclasses import replace
 
 from supplycheck.report.document import Column, Row, Table
 from supplycheck.results.display import nominal_text, residual_text, step_text, value_text
@@ -57,6 +58,17 @@ def column(title: str, unit: str = "") -> Column:
 def words(title: str) -> Column:
     """Return a column of text that may be broken."""
     return Column(title, wrap=True)
+
+
+def without_empty(table: Table, *titles: str) -> Table:
+    """Return ``table`` without those of the columns named ``titles`` in which no row holds a value."""
+    kept = [
+        place
+        for place, one in enumerate(table.columns)
+        if one.title not in titles or any(row.cells[place].strip() not in {"", "–"} for row in table.rows)
+    ]
+    rows = tuple(replace(row, cells=tuple(row.cells[place] for place in kept)) for row in table.rows)
+    return replace(table, columns=tuple(table.columns[place] for place in kept), rows=rows)
 
 
 def steps_table(title: str, steps: Iterable[HandStep], show: Show) -> Table:

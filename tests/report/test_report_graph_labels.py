@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from itertools import combinations
-from pathlib import Path
 
 import pytest
 from hypothesis import given, settings

@@ -88,10 +88,13 @@ class Taken:
         bold: bool = False,
         reach: Reach = "around",
         down: bool = False,
+        up: bool = False,
+        pad: float = 1.0,
     ) -> tuple[float, float, Anchor] | None:
         """Return where ``text`` fits beside (``x``, ``y``) and cover that place; ``None`` if nowhere.
 
-        ``reach`` says how far from the point it may stand; ``down`` tries the places below first.
+        ``reach`` says how far from the point it may stand; ``down`` tries the places below first,
+        ``up`` those above; ``pad`` is left free on either side.
         """
         wide = text_width(text, size, bold=bold)
         tries: tuple[tuple[float, float, Anchor], ...] = (
@@ -117,9 +120,11 @@ class Taken:
             )
         if down:
             tries = tuple(sorted(tries, key=lambda one: one[1] > y))
+        if up:
+            tries = tuple(sorted(tries, key=lambda one: one[1] < y))
         for at_x, at_y, anchor in tries:
             left = at_x - {"start": 0.0, "middle": wide / 2, "end": wide}[anchor]
-            box = (left - 1.0, at_y - size * 0.22, left + wide + 1.0, at_y + size * 0.8)
+            box = (left - pad, at_y - size * 0.22, left + wide + pad, at_y + size * 0.8)
             if self.is_free(box):
                 self.take(box)
                 return at_x, at_y, anchor

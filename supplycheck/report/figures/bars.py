@@ -49,7 +49,8 @@ def pressure_bars(
         at = _NAMES + scale * pressure
         items.append(Line(((at, bottom), (at, height - 18)), RULE, 0.35))
         items.append(Label(at, bottom - 9, plain(pressure), 6.4, "middle", colour=SLATE))
-    items.append(Label(right + 6, bottom - 9, units.symbol("pressure"), 6.4, colour=SLATE))
+    beside = right + 4 + text_width(plain(steps[-1]), 6.4) / 2
+    items.append(Label(beside, bottom - 9, units.symbol("pressure"), 6.4, colour=SLATE))
     y = height - 18 - _ROW
     if first == 0 and path:
         items += _head_row(result.demand.governing_name, path[0], x, y, units)
@@ -58,6 +59,7 @@ def pressure_bars(
         items += _step_row(number, step, x, y, units)
         y -= _ROW
     items += _available(path, first, result, units, x(result.supply.available_pressure), (width, height))
+    items.sort(key=lambda item: isinstance(item, Label) and item.behind is not None)  # texts over the line
     return Drawing(width, height, (*items, *_key(width)), "pressure needed along the path")
 
 

@@ -61,13 +61,18 @@ def supply_graph(
     units: UnitSet,
     size: tuple[float, float],
 ) -> Drawing:
-    """Return the graph; a curve is dashed beyond the flow up to which it was tested."""
+    """Return the graph; a curve is dashed beyond the flow up to which it was tested.
+
+    Where the marks stand too close to be named beside them they are numbered, and the drawing grows by
+    the rows of a key below.
+    """
     lines = [_in_units(curve, units) for curve in curves]
     marks = [_mark_of(point, units) for point in points]
     strokes = _strokes(curves)
     plain_bottom = _BOTTOM + 11.0 * (_legend_rows(curves, strokes, size[0]) - 1)
     for numbered in (False, True):
-        rows = key_rows(marks, size[0] - _LEFT) if numbered else []
+        rows = key_rows(marks, size[0]) if numbered else []
+        size = (size[0], size[1] + KEY_ROW * len(rows))
         frame = _frame(lines, marks, size, plain_bottom + KEY_ROW * len(rows))
         if frame is None:
             return Drawing(size[0], 20.0, (Label(0, 6, "no curve to draw"),), "no curve to draw")

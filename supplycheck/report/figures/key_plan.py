@@ -49,7 +49,10 @@ def key_plan(result: Result, units: UnitSet, shown: Window, size: tuple[float, f
         items += _mark(node, x, y)
         taken.take((x - 5, y - 5, x + 5, y + 5))
     style = Label(0, 0, "", 6.4, bold=True)
+    named = {result.demand.node, *(node.tag for node in marked if node.kind == "supply")}
     for node in marked:
+        if shown.holds(*places[node.tag]) and node.tag not in named:
+            continue  # the large plan names it
         label = put_label(taken, at(*places[node.tag]), short(node.tag, 80, 6.4), style, "far", 6.5)
         if label is not None:
             items.append(label)

@@ -15,7 +15,9 @@ KEY_ROW: Final = 9.6
 
 _SIZE: Final = 6.6
 _HALF: Final = 4.2
+_NEAR: Final = 42.0
 _TOGETHER: Final = 6.0
+_KEY_SIZE: Final = 6.4
 _KEY_INDENT: Final = 22.0
 
 
@@ -49,8 +51,8 @@ def names_beside(marks: list[Mark], at: list[tuple[float, float]], taken: Taken)
     items: list[Item] = []
     for mark, (x, y) in zip(marks, at, strict=True):
         under = any(abs(other - x) < 70 and up > y for other, up in at)
-        found = taken.place(x, y, mark.text, _SIZE, gap=6.0, down=under)
-        if found is None:
+        found = taken.place(x, y, mark.text, _SIZE, gap=6.0, reach="far", down=under, pad=3.0)
+        if found is None or math.hypot(found[0] - x, found[1] - y) > _NEAR:
             return None
         at_x, at_y, anchor = found
         near = (at_x, at_y - 2.0 if at_y > y else at_y + 6.0)
@@ -67,7 +69,11 @@ def numbers_beside(at: list[tuple[float, float]], taken: Taken) -> list[Item]:
     for group in _groups(at):
         x, y = at[group[0]]
         text = ", ".join(str(place + 1) for place in group)
-        found = taken.place(x, y, text, _SIZE, gap=5.0, bold=True) or _nearest(x, y, text, taken)
+        around = [up - y for other, up in at if abs(other - x) < 40 and up != y]
+        above = bool(around) and max(around) < 0
+        found = taken.place(
+            x, y, text, _SIZE, gap=5.0, bold=True, down=bool(around) and not above, up=above
+        ) or _nearest(x, y, text, taken)
         if found is None:
             continue
         at_x, at_y, anchor = found
@@ -115,7 +121,7 @@ def _nearest(x: float, y: float, text: str, taken: Taken) -> tuple[float, float,
 
 def key_rows(marks: list[Mark], width: float) -> list[list[tuple[float, int]]]:
     """Return the rows of the key for ``width``: of every entry its indent and the place of its mark."""
-    widest = max((text_width(mark.text, _SIZE) for mark in marks), default=0.0) + _KEY_INDENT + 8.0
+    widest = max((text_width(mark.text, _KEY_SIZE) for mark in marks), default=0.0) + _KEY_INDENT + 4.0
     columns = max(1, min(3, int(width / widest)))
     share = width / columns
     return [
@@ -125,17 +131,15 @@ def key_rows(marks: list[Mark], width: float) -> list[list[tuple[float, int]]]:
     ]
 
 
-def key(
-    marks: list[Mark], rows: list[list[tuple[float, int]]], top: float, left: float = 40.0
-) -> list[Item]:
+def key(marks: list[Mark], rows: list[list[tuple[float, int]]], top: float) -> list[Item]:
     """Return the key: number, symbol, name, flow and pressure of every mark, the first row at ``top``."""
     items: list[Item] = []
-    room = (rows[0][1][0] if rows and len(rows[0]) > 1 else 480.0) - _KEY_INDENT - 4.0
+    room = (rows[0][1][0] if rows and len(rows[0]) > 1 else 505.0) - _KEY_INDENT - 2.0
     for number, row in enumerate(rows):
         y = top - number * KEY_ROW
         for indent, place in row:
-            x = left + indent
-            items.append(Label(x, y, str(place + 1), _SIZE, bold=True))
-            items += symbol(marks[place].style, x + 14.0, y + 2.3)
-            items.append(Label(x + _KEY_INDENT, y, short(marks[place].text, room, _SIZE), _SIZE))
+            x = indent
+            items.append(Label(x, y, str(place + 1), _KEY_SIZE, bold=True))
+            items += symbol(marks[place].style, x + 15.0, y + 2.3)
+            items.append(Label(x + _KEY_INDENT, y, short(marks[place].text, room, _KEY_SIZE), _KEY_SIZE))
     return items

@@ -46,7 +46,7 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
 def _window(heads: list[tuple[float, float]], spots: list[Placement]) -> Window:
     """Return the part to draw: the spots and what lies round them, not farther than the heads reach."""
     xs, ys = [one.x or 0.0 for one in spots], [one.y or 0.0 for one in spots]
-    round_about = max(_AROUND, 0.3 * max(max(xs) - min(xs), max(ys) - min(ys)))
+    round_about = max(_AROUND, 0.12 * max(max(xs) - min(xs), max(ys) - min(ys)))
     all_x, all_y = xs + [x for x, _ in heads], ys + [y for _, y in heads]
     return Window(
         max(min(xs) - round_about, min(all_x)),

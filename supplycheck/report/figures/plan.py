@@ -21,6 +21,7 @@ CROWDED: Final = 2500
 
 _EDGE: Final = 16.0
 _BAR_ROOM: Final = 20.0
+_RING: Final = 3.9
 _RAMP: Final = ("#7fb2bd", "#4f94a3", "#2b7787", "#0b4a5a", "#16262e")
 
 
@@ -66,6 +67,7 @@ class _Ground:
     enlarged: bool
     crowded: bool
     size: float
+    ringed: frozenset[str]
 
     def of(self, tag: str) -> tuple[float, float]:
         """Return where node ``tag`` stands on the drawing."""
@@ -156,7 +158,11 @@ def _view(
     items += _area(result, scale, taken)
     strokes = pipe_strokes(result.pipes)
     size_of = 2.3 if enlarged else max(0.8, min(2.0, 0.16 * scale.factor + 0.5))
-    ground = _Ground(scale, places, taken, units, enlarged, len(inside) > CROWDED, size_of)
+    rings, upright, ringed = _upright(result.pipes, places, window, scale)
+    ground = _Ground(scale, places, taken, units, enlarged, len(inside) > CROWDED, size_of, ringed)
+    for tag in ringed:
+        x, y = ground.of(tag)
+        taken.take((x - _RING, y - _RING, x + _RING, y + _RING))
     for pipe in result.pipes:
         items += _pipe(pipe, ground, strokes)
     for node in inside:
@@ -165,7 +171,6 @@ def _view(
     items += tags
     items += _scale_bar(scale, units, width)
     items += _legend(width)
-    rings, upright = _upright(result.pipes, places, window, scale)
     items += rings
     missing = tuple(node.tag for node in result.nodes if node.tag not in places)
     outside = tuple(tag for tag, place in places.items() if not window.holds(*place))
@@ -235,17 +240,19 @@ def _pipe(pipe: PipeRow, ground: _Ground, strokes: dict[str, tuple[float, str]])
 
 def _upright(
     pipes: tuple[PipeRow, ...], places: Places, window: Window, scale: Scale
-) -> tuple[list[Item], tuple[str, ...]]:
-    """Return rings where pipes run upright (drops to heads apart) and the ends of those pipes."""
+) -> tuple[list[Item], tuple[str, ...], frozenset[str]]:
+    """Return rings where pipes run upright (drops to heads apart), the ends of those pipes, their nodes."""
     items: list[Item] = []
-    names = []
+    names: list[str] = []
+    nodes: set[str] = set()
     for pipe in pipes:
         at = places.get(pipe.start)
         if at is None or at != places.get(pipe.end) or pipe.role == "drop" or not window.holds(*at):
             continue
         items.append(Dot(*scale.at(*at), 3.6, None, INK, 0.9))
         names.append(f"{pipe.start} to {pipe.end}")
-    return items, tuple(names)
+        nodes |= {pipe.start, pipe.end}
+    return items, tuple(names), frozenset(nodes)
 
 
 def _arrow(a: tuple[float, float], b: tuple[float, float], long: float) -> Line:
@@ -303,7 +310,7 @@ def _tags(result: Result, inside: list[NodeRow], ground: _Ground) -> tuple[list[
         first = rank(node) == 0
         reach: Reach = "around" if first or enlarged else "beside"
         at = ground.of(node.tag)
-        gap = _reach_of(node, ground.size) + 1.4
+        gap = max(_reach_of(node, ground.size), _RING if node.tag in ground.ringed else 0.0) + 0.9
         label = put_label(ground.taken, at, text, strong if first else style, reach, gap)
         if label is not None:
             items += _leader(label, at, gap)

@@ -43,6 +43,7 @@ def answer(result: Result, width: float) -> Section:
             "Supply and demand",
             supply_graph(result.curves, result.points, show.units, (width, 158.0)),
             if_room=True,
+            smaller=supply_graph(result.curves, result.points, show.units, (width, 118.0)),
         ),
     ]
     return Section("The answer", tuple(blocks))

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from supplycheck.report.document import Block, Column, Facts, Heading, Paragraph, Row, Section, Table
-from supplycheck.report.show import Show, column, words
+from supplycheck.report.show import Show, column, without_empty, words
 from supplycheck.results.display import (
     STATE_TITLES,
     STATES,
@@ -50,7 +50,8 @@ def findings(result: Result) -> Section:
                 )
             )
         if rows:
-            blocks.append(Table(f"{STATE_TITLES[state]} ({len(rows)})", columns, tuple(rows)))
+            table = Table(f"{STATE_TITLES[state]} ({len(rows)})", columns, tuple(rows))
+            blocks.append(without_empty(table, "Measured", "Limit"))
     if len(blocks) == 1:
         blocks.append(Paragraph("No check was run."))
     if result.open_questions:
@@ -128,7 +129,8 @@ def _scenarios(result: Result, show: Show) -> Table:
     note = (
         "With the supply as it is: heads give what the pressure makes them give, not only what is required."
     )
-    return Table("Scenarios", columns, rows, note, empty="no scenario was calculated", size=6.6)
+    table = Table("Scenarios", columns, rows, note, empty="no scenario was calculated", size=6.6)
+    return without_empty(table, "Storage lasts", "Over-discharge", "Density") if rows else table
 
 
 def _head_table(row: ScenarioRow, show: Show) -> Table:

@@ -71,7 +71,7 @@ def _caption(view: PlanView, *, outside: bool = False) -> str:
 def _placements(result: Result, show: Show, width: float) -> list[Block]:
     area = result.design_area
     blocks: list[Block] = []
-    drawn = placement_map(result, show.units, (width, 205.0))
+    drawn = placement_map(result, show.units, (width, 212.0))
     if drawn is not None:
         blocks.append(
             Figure(

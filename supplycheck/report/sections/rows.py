@@ -7,7 +7,7 @@ from typing import Final, TypeVar
 
 from supplycheck.model import Device
 from supplycheck.report.document import Block, Column, Paragraph, Row, Section, Table
-from supplycheck.report.show import Show, column, words
+from supplycheck.report.show import Show, column, without_empty, words
 from supplycheck.results.hand import Pen
 from supplycheck.results.records import NodeRow, PipeRow, Result
 
@@ -39,7 +39,15 @@ def node_analysis(result: Result) -> Section:
     rows = tuple(_node(node, show, with_velocity=with_velocity) for node in nodes)
     note = "Heads in the design area are in bold. Pressures are gauge pressures in the demand solution."
     note += _left_out(len(result.nodes) - len(nodes), "nodes", "nodes.csv")
-    table = Table("Nodes", tuple(columns), rows, note, size=6.6)
+    table = without_empty(
+        Table("Nodes", tuple(columns), rows, note, size=6.6),
+        "K-factor",
+        "Area",
+        "Branch line",
+        "Required flow",
+        "Required pressure",
+        "Required by",
+    )
     return Section("Node analysis", (table,), fresh=True)
 
 

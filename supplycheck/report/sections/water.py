@@ -6,7 +6,7 @@ from supplycheck.model import FlowTest, Supply
 from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph, Row, Section, Table
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, column, given, steps_table, words
-from supplycheck.results.display import demand_text
+from supplycheck.results.display import available_text, demand_text
 from supplycheck.results.records import Result
 
 
@@ -21,9 +21,7 @@ def water(result: Result, width: float) -> Section:
         Figure(
             "Supply and demand",
             graph,
-            "Dashed: beyond the greatest flow that was tested. The flow axis is linear in flow to "
-            "the power "
-            "1.85, so that a measured supply is a straight line.",
+            _caption(result),
         ),
     ]
     for test in supply.tests:
@@ -45,6 +43,21 @@ def water(result: Result, width: float) -> Section:
     return Section("Water supply analysis", tuple(blocks), fresh=True)
 
 
+def _caption(result: Result) -> str:
+    """Return what the reader has to know about the graph, of several sources also how they are marked."""
+    text = (
+        "The flow axis is linear in flow to the power 1.85, so that a measured supply is a straight line."
+    )
+    if any(curve.extrapolated_from is not None for curve in result.curves):
+        text = f"Dashed: beyond the greatest flow that was tested. {text}"
+    if sum(point.style == "available" for point in result.points) > 1:
+        text += (
+            f" The demand line is that at {result.demand.node}; at every other source two marks "
+            "stand at the flow which that source gives."
+        )
+    return text
+
+
 def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     supply, demand = result.supply, result.demand
     ratio = supply.tested_range_ratio
@@ -52,7 +65,7 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Compared at", demand.node),
         ("Static there", show.t(supply.static_at_comparison, "pressure")),
         ("Demand there", f"{show.t(demand.pressure, 'pressure')}; {demand_text(result, show.units)}"),
-        ("Available there", show.t(supply.available_pressure, "pressure")),
+        ("Available there", available_text(supply.available_pressure, show.units)),
         ("Before adjustments", show.t(supply.unadjusted_pressure, "pressure")),
         (
             "Flow at the demand pressure",
