@@ -108,14 +108,16 @@ def friction_group(*, reynolds: Number, relative_roughness: AnyNumber) -> tuple[
     return plain(value), plain(slope)
 
 
-def friction_group_unchecked(re: FloatArray, rough: FloatArray) -> tuple[FloatArray, FloatArray]:
+def friction_group_unchecked(
+    reynolds: FloatArray, relative_roughness: FloatArray
+) -> tuple[FloatArray, FloatArray]:
     """Return :func:`friction_group` of arrays of one shape that are known to be in range."""
-    value, slope = _colebrook(np.maximum(re, TURBULENT_START), rough)
-    low = re < TURBULENT_START
+    value, slope = _colebrook(np.maximum(reynolds, TURBULENT_START), relative_roughness)
+    low = reynolds < TURBULENT_START
     if low.any():
         value, slope = np.array(value), np.array(slope)  # a scalar of numpy takes no assignment
         # below the turbulent range `value` and `slope` hold the Colebrook end of the bridge
-        value[low], slope[low] = _bridge(re[low], value[low], slope[low])
+        value[low], slope[low] = _bridge(reynolds[low], value[low], slope[low])
     return value, slope
 
 

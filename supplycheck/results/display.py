@@ -95,14 +95,15 @@ def _never_nothing(value: float, kind: str, units: UnitSet) -> str:
 
 
 def residual_text(value: float, kind: str, units: UnitSet) -> str:
-    """Return what is left over in the calculation, to three decimals, ``< 0.001`` below them.
+    """Return what is left over in the calculation, to three decimals; below them the bound it keeps.
 
     >>> from supplycheck.units import US
-    >>> residual_text(1e-12, "pressure", US)
-    '< 0.001 psi'
+    >>> residual_text(1e-12, "pressure", US), residual_text(12.0, "pressure", US)
+    ('< 1e-9 psi', '0.002 psi')
     """
     number = units.from_si(value, kind)
-    shown = "< 0.001" if 0 <= number < 0.0005 else f"{number:.3f}"
+    bounds = ((1e-9, "< 1e-9"), (1e-6, "< 1e-6"), (5e-4, "< 0.001"))
+    shown = next((text for bound, text in bounds if 0 <= number < bound), f"{number:.3f}")
     return f"{shown} {units.symbol(kind)}"
 
 

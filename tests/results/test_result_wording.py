@@ -54,7 +54,7 @@ def test_what_is_not_zero_never_prints_as_zero() -> None:
     assert value_text(1e-9 * PSI, "pressure", US) == "< 0.1 psi"
     assert value_text(100.0, "pressure", METRIC) == "< 0.01 bar"
     assert value_text(0.0, "pressure", US) == "0.0 psi"
-    assert residual_text(3e-15 * PSI, "pressure", US) == "< 0.001 psi"
+    assert residual_text(3e-15 * PSI, "pressure", US) == "< 1e-9 psi"
     assert residual_text(0.02 * PSI, "pressure", US) == "0.020 psi"
 
 
