@@ -50,12 +50,13 @@ def put_table(sheets: Sheets, table: Table) -> None:
     height = _header_height(head, grid)
     laid = [_laid(number, row, grid, sheets.ruler) for number, row in enumerate(table.rows)]
     rows = sum(_row_height(one, grid) for one in laid) if len(laid) <= TOGETHER else 3.2 * grid.leading
+    below = 4 + len(wrap(table.note, sheets.room, 6.6, sheets.ruler)) * 6.6 * 1.38 if table.note else 0.0
+    rows += below if len(laid) <= TOGETHER else 0.0
     sheets.need(height + rows + (14 if table.title else 0))
     _title(sheets, table.title)
     _header(sheets, table.columns, head, grid)
     if not table.rows:
         sheets.text(table.empty, grid.size, colour=SLATE, indent=PAD)
-    below = 4 + len(wrap(table.note, sheets.room, 6.6, sheets.ruler)) * 6.6 * 1.38 if table.note else 0.0
     for one in laid:
         last = one is laid[-1] and sheets.y - _row_height(one, grid) - below < sheets.bottom
         if last and not _is_below_header(sheets, head, grid):  # a note never stands alone on a page

@@ -15,6 +15,9 @@ from supplycheck.results.records import Placement, Result
 from supplycheck.units import UnitSet
 
 MOST_NUMBERS: Final = 40
+MOST_STRETCH: Final = 2.5
+"""The map is stretched to the width by so much at most: it compares placements and measures nothing."""
+
 _AROUND: Final = 4.0  # m
 _SHADES: Final = ("#e3eef0", "#b5d3d9", "#7fb2bd", "#3f8797", "#0b4a5a")
 
@@ -31,7 +34,9 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
     wide, high = max(window.x1 - window.x0, 1e-6), max(window.y1 - window.y0, 1e-6)
     factor = min((size[0] - 32) / wide, (size[1] - 60) / high)
     height = max(high * factor, 30.0) + 60
-    scale = Scale(window, factor, (size[0] - wide * factor) / 2, 34 + (height - 50 - high * factor) / 2)
+    across = min(MOST_STRETCH, (size[0] - 32) / (wide * factor))
+    left = (size[0] - wide * factor * across) / 2
+    scale = Scale(window, factor, left, 34 + (height - 50 - high * factor) / 2, across)
     items: list[Item] = [Box(0, 24, size[0], height - 24, PAPER, SLATE, 0.5)]
     for pipe in result.pipes:
         start, end = nodes.get(pipe.start), nodes.get(pipe.end)

@@ -21,7 +21,7 @@ CROWDED: Final = 2500
 
 _EDGE: Final = 16.0
 _BAR_ROOM: Final = 20.0
-_RING: Final = 3.9
+_RING: Final = 3.6
 _RAMP: Final = ("#7fb2bd", "#4f94a3", "#2b7787", "#0b4a5a", "#16262e")
 
 
@@ -41,17 +41,18 @@ class PlanView:
 
 @dataclass(frozen=True, slots=True)
 class Scale:
-    """Places coordinates [m] on the drawing [points], the same in both directions."""
+    """Places coordinates [m] on the drawing [points]; ``across`` stretches it from left to right."""
 
     window: Window
     factor: float
     left: float
     bottom: float
+    across: float = 1.0
 
     def at(self, x: float, y: float) -> tuple[float, float]:
         """Return the place of (``x``, ``y``)."""
         return (
-            self.left + (x - self.window.x0) * self.factor,
+            self.left + (x - self.window.x0) * self.factor * self.across,
             self.bottom + (y - self.window.y0) * self.factor,
         )
 
@@ -310,7 +311,8 @@ def _tags(result: Result, inside: list[NodeRow], ground: _Ground) -> tuple[list[
         first = rank(node) == 0
         reach: Reach = "around" if first or enlarged else "beside"
         at = ground.of(node.tag)
-        gap = max(_reach_of(node, ground.size), _RING if node.tag in ground.ringed else 0.0) + 0.9
+        around = _RING - 0.3 if node.tag in ground.ringed else 0.0
+        gap = max(_reach_of(node, ground.size), around) + 1.4
         label = put_label(ground.taken, at, text, strong if first else style, reach, gap)
         if label is not None:
             items += _leader(label, at, gap)

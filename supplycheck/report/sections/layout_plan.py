@@ -71,13 +71,14 @@ def _caption(view: PlanView, *, outside: bool = False) -> str:
 def _placements(result: Result, show: Show, width: float) -> list[Block]:
     area = result.design_area
     blocks: list[Block] = []
-    drawn = placement_map(result, show.units, (width, 212.0))
+    drawn = placement_map(result, show.units, (width, 200.0))
     if drawn is not None:
         blocks.append(
             Figure(
                 "Required pressure by placement of the design area",
                 drawn,
-                f"{area.tried} placements tried; each dot stands at the centre of its heads.",
+                f"{area.tried} placements tried; each dot stands at the centre of its heads. "
+                "Stretched to the width, not to scale.",
             )
         )
     chosen = [("governing", area.governing), ("runner-up", area.runner_up)]
