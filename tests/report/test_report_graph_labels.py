@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 from itertools import combinations
+from pathlib import Path
 
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from sample_result import curves, points
 
+from supplycheck.check import check_project
+from supplycheck.report.build import build_document
+from supplycheck.report.document import Figure
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.pdf import FontRuler
@@ -17,6 +21,8 @@ from supplycheck.units import GPM, METRIC, PSI, US
 
 Area = tuple[float, float, float, float]
 RULER = FontRuler()
+EXAMPLES = sorted(path.parent for path in Path(__file__).parents[2].glob("examples/*/project.toml"))
+SLOW = {"yard-main"}
 STYLES = ("test", "demand", "demand with hose", "available")
 
 
@@ -121,3 +127,16 @@ def test_curves_of_one_kind_differ_without_colour() -> None:
     ]
     assert len(samples) == 5
     assert len(set(samples)) == 5
+
+
+@pytest.mark.parametrize(
+    "folder",
+    [pytest.param(one, marks=[pytest.mark.slow] * (one.name in SLOW), id=one.name) for one in EXAMPLES],
+)
+def test_labels_of_the_examples_keep_apart(folder: Path) -> None:
+    document = build_document(check_project(folder / "project.toml"))
+    figures = [block for part in document.sections for block in part.blocks if isinstance(block, Figure)]
+    drawings = [one for figure in figures for one in (figure.drawing, figure.smaller) if one is not None]
+    graphs = [one for one in drawings if one.shows == "supply and demand against flow"]
+    assert len(graphs) >= 3
+    assert [fault for graph in graphs for fault in faults(graph)] == []
