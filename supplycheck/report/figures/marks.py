@@ -72,7 +72,7 @@ def numbers_beside(at: list[tuple[float, float]], taken: Taken) -> list[Item]:
         around = [up - y for other, up in at if abs(other - x) < 40 and up != y]
         above = bool(around) and max(around) < 0
         found = taken.place(
-            x, y, text, _SIZE, gap=5.0, bold=True, down=bool(around) and not above, up=above
+            x, y, text, _SIZE, gap=5.6, bold=True, down=bool(around) and not above, up=above
         ) or _nearest(x, y, text, taken)
         if found is None:
             continue
