@@ -5,8 +5,6 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 import numpy as np
-from scipy.sparse import csr_array
-from scipy.sparse.csgraph import breadth_first_order
 
 from supplycheck.errors import NotConvergedError
 from supplycheck.network.arrays import Network
@@ -59,6 +57,9 @@ def _error(cause: str, problem: str, tags: Sequence[str], remedy: str) -> NotCon
 
 def _check_one_way(network: Network, links: Links, asked: IntArray, sources: IntArray) -> None:
     """Check that every node asked about can be reached from a supply without passing a valve backwards."""
+    from scipy.sparse import csr_array
+    from scipy.sparse.csgraph import breadth_first_order
+
     nodes = len(network.node_tags)
     both = ~links.one_way
     rows = np.concatenate([links.start, links.end[both], np.full(len(sources), nodes)])

@@ -18,7 +18,7 @@ from typing import Any, Final
 
 import numpy as np
 
-from supplycheck.network.graphs import two_way_graph
+from supplycheck.network.graphs import parts_of, two_way_graph
 from supplycheck.network.links import sums
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -27,6 +27,9 @@ DENSE_BELOW: Final = 48
 NARROW: Final = 64
 """Greatest half bandwidth at which the band is quicker than the sparse factorisation. Beyond it the blocks
 of LAPACK are large enough for OpenBLAS to share among threads, which costs many times what it brings."""
+
+SMALL_BLOCK: Final = 64
+"""Most nodes in each unconnected part up to which all parts are solved as one stack of dense matrices."""
 
 Solver = Callable[[FloatArray], FloatArray]
 
@@ -45,6 +48,7 @@ class Nodal:
         self._source = np.concatenate([links[s_free], links[e_free], links[both]])
         self._sign = np.ones(len(self._rows))
         self._sign[self._diagonals :] = -1.0
+        self._blocks: _Blocks | None = None
         self._band: _Band | None = None
         self._sparse: _Sparse | None = None
 
@@ -60,6 +64,10 @@ class Nodal:
         tie = float(np.median(conductance)) if len(ground) else 0.0
         if self.free < DENSE_BELOW:
             return self._dense(entries, ground, tie)
+        if self._blocks is None:
+            self._blocks = _Blocks(self._rows, self._cols, self._diagonals, self.free)
+        if self._blocks.largest <= SMALL_BLOCK:
+            return self._blocks.factorise(entries, ground, tie)
         if self._sparse is None:
             self._band = self._band or _Band(self._rows, self._cols, self._diagonals, self.free)
             if self._band.half <= NARROW:
@@ -77,6 +85,48 @@ class Nodal:
         matrix = half + half.T
         np.fill_diagonal(matrix, diagonal)
         return lambda rhs: np.asarray(np.linalg.solve(matrix, rhs), dtype=np.float64)
+
+
+class _Blocks:
+    """Unconnected parts, such as cases laid side by side, as a stack of small dense matrices.
+
+    The stack holds every part padded to the largest with a diagonal of one, which changes nothing.
+    """
+
+    def __init__(self, rows: IntArray, cols: IntArray, diagonals: int, free: int) -> None:
+        count, label = parts_of(rows[diagonals:], cols[diagonals:], free)
+        sizes = np.bincount(label, minlength=count)
+        self.largest = int(sizes.max(initial=0))
+        order = np.argsort(label, kind="stable")
+        first = np.concatenate([[0], np.cumsum(sizes)[:-1]])
+        inside = np.empty(free, dtype=np.int64)
+        inside[order] = np.arange(free) - first[label[order]]
+        self._shape = (count, self.largest, self.largest)
+        self._spot = label * self.largest + inside
+        self._flat = self._spot[rows] * self.largest + inside[cols]
+        self._mirror = self._spot[cols[diagonals:]] * self.largest + inside[rows[diagonals:]]
+        self._diagonal = self._spot * self.largest + inside
+        self._diagonals = diagonals
+        used = np.zeros(count * self.largest, dtype=bool)
+        used[self._spot] = True
+        spare = np.flatnonzero(~used)
+        self._padding = spare * self.largest + spare % self.largest
+
+    def factorise(self, entries: FloatArray, ground: IntArray, tie: float) -> Solver:
+        count, size, _ = self._shape
+        values = sums(self._flat, entries, count * size * size)
+        values += sums(self._mirror, entries[self._diagonals :], count * size * size)
+        values[self._diagonal[ground]] += tie
+        values[self._padding] = 1.0
+        stack = values.reshape(self._shape)
+
+        def solve(rhs: FloatArray) -> FloatArray:
+            whole = np.zeros((count * size, *rhs.shape[1:]))
+            whole[self._spot] = rhs
+            answer = np.linalg.solve(stack, whole.reshape(count, size, -1))
+            return np.asarray(answer.reshape(whole.shape)[self._spot])
+
+        return solve
 
 
 class _Band:
