@@ -48,7 +48,6 @@ class _Verbs(click.Group):
 
     def invoke(self, ctx: click.Context) -> object:
         """Run the verb; a fault of our own ends in a plain message and code 4, never in code 1."""
-        gc.set_threshold(100_000, 20, 20)  # a short life: looking for cycles often costs a tenth of it
         try:
             return super().invoke(ctx)
         except (click.exceptions.Exit, click.Abort, click.ClickException):
@@ -71,3 +70,16 @@ def main() -> None:
     Exit codes: 0 supply adequate, 1 supply not adequate (or undetermined), 2 wrong usage,
     3 the project has errors, 4 the calculation did not converge.
     """
+
+
+def run() -> None:
+    """Start the command line in a process of its own, as the installed program does.
+
+    A run is short, so cycles are looked for rarely, and not at all once it is over: both would cost a
+    fifth of the time of a check.
+    """
+    gc.set_threshold(1_000_000, 50, 50)
+    try:
+        main()
+    finally:
+        gc.freeze()

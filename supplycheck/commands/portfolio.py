@@ -136,7 +136,7 @@ def _outcomes(work: Sequence[Job], jobs: int, no_files: bool) -> Iterator[Outcom
 
 def check_one(job: Job, no_files: bool) -> Outcome:
     """Check one project in a process of its own, which no fault of another can reach."""
-    code = "from supplycheck.cli import main; main()"
+    code = "from supplycheck.cli import run; run()"
     arguments = ["check", str(job.path), "--out", str(job.folder), "--json"]
     if no_files:
         arguments.append("--no-files")

@@ -16,7 +16,7 @@ import pytest
 
 EXAMPLE = Path(__file__).parents[2] / "examples" / "parcel-depot"
 IMPORTS = "import numpy, scipy.sparse, pandas, pydantic, click, reportlab"
-MAIN = "from supplycheck.cli import main; main()"
+MAIN = "from supplycheck.cli import run; run()"
 
 
 @pytest.fixture(scope="module")
