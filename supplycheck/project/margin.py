@@ -11,6 +11,10 @@ from supplycheck.project.schema_supply import MarginTable
 from supplycheck.project.sections import Sections
 from supplycheck.units import UnitSet
 
+SMALLEST_PERCENT = 0.01
+"""A smaller share is taken for a fraction typed where per cent is meant (no authority asks for so little:
+common practice, no source)."""
+
 _NEEDS = {
     "none": (),
     "fixed": ("pressure",),
@@ -96,6 +100,14 @@ def _rule(
     units = units_in(table, units)
     _check_keys(table, where, sections, faults, band=band)
     percent = table.percent.si(units) if table.percent else 0.0
+    if 0 < percent < SMALLEST_PERCENT:
+        faults.add(
+            sections.place(f"{where}.percent"),
+            "is less than one per cent, as if it were a fraction",
+            found=f"{percent * 100:g}",
+            allowed="per cent: 10 for one tenth",
+            remedy=f"write {percent * 1e4:g} if {percent * 1e4:g} % is meant",
+        )
     if percent >= 1:
         faults.add(
             sections.place(f"{where}.percent"),

@@ -18,7 +18,8 @@ class TagCheck:
         self.known, self.sections, self.faults = system is not None, sections, faults
 
     def _missing(self, tag: str, where: str, what: str, known: Collection[str]) -> None:
-        close = near(tag, known) if len(known) < 5000 else ""
+        turned = "-".join(reversed(tag.split("-")))  # pipes are named from the supply outward
+        close = turned if turned in known else near(tag, known) if len(known) < 5000 else ""
         self.faults.add(
             self.sections.place(where),
             f"there is no such {what}",
