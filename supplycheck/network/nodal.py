@@ -28,6 +28,8 @@ NARROW: Final = 64
 """Greatest half bandwidth at which the band is quicker than the sparse factorisation. Beyond it the blocks
 of LAPACK are large enough for OpenBLAS to share among threads, which costs many times what it brings."""
 
+MOST_STACKED: Final = 1024
+"""Most nodes in all whose parts are looked for; sixteen cases of :data:`SMALL_BLOCK` nodes side by side."""
 SMALL_BLOCK: Final = 64
 """Most nodes in each unconnected part up to which all parts are solved as one stack of dense matrices."""
 
@@ -64,9 +66,9 @@ class Nodal:
         tie = float(np.median(conductance)) if len(ground) else 0.0
         if self.free < DENSE_BELOW:
             return self._dense(entries, ground, tie)
-        if self._blocks is None:
+        if self._blocks is None and self.free <= MOST_STACKED:
             self._blocks = _Blocks(self._rows, self._cols, self._diagonals, self.free)
-        if self._blocks.largest <= SMALL_BLOCK:
+        if self._blocks is not None and self._blocks.largest <= SMALL_BLOCK:
             return self._blocks.factorise(entries, ground, tie)
         if self._sparse is None:
             self._band = self._band or _Band(self._rows, self._cols, self._diagonals, self.free)
