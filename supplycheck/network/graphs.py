@@ -9,7 +9,7 @@ from scipy.sparse import csr_array
 
 from supplycheck.network.records import IntArray
 
-SMALL: Final = 1500
+SMALL: Final = 300
 """Most nodes searched here: to load the library's graph searches takes as long as a small check."""
 
 

@@ -13,7 +13,7 @@ from supplycheck.network.graphs import parts_of, spread_from
 @pytest.mark.parametrize("seed", range(40))
 def test_parts_and_spread(seed: int) -> None:
     rng = np.random.default_rng(seed)
-    size = int(rng.integers(1, 400))
+    size = int(rng.integers(1, 600))
     links = int(rng.integers(0, 2 * size))
     start, end = rng.integers(0, size, links), rng.integers(0, size, links)
     graph = coo_array((np.ones(links), (start, end)), (size, size)).tocsr()
