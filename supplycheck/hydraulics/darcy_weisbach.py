@@ -146,18 +146,17 @@ def _wright_omega(z: FloatArray) -> FloatArray:
 
 
 def _bridge(re: FloatArray, end: FloatArray, end_slope: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Return f·Re² and its derivative for Re below the turbulent range: laminar, then the cubic."""
+    """Return f·Re² and its derivative for Re below the turbulent range.
+
+    The laminar line, plus what the cubic adds to it: nothing, with slope zero, up to the laminar end.
+    """
     width = TURBULENT_START - LAMINAR_END
-    start, start_slope = 64.0 * LAMINAR_END, 64.0
     u = np.maximum(re - LAMINAR_END, 0.0) / width
-    rise = end - start
-    m0, m1 = width * start_slope, width * end_slope
-    c2 = 3.0 * rise - 2.0 * m0 - m1
-    c3 = m0 + m1 - 2.0 * rise
-    laminar = re <= LAMINAR_END
-    value = np.where(laminar, 64.0 * re, start + u * (m0 + u * (c2 + u * c3)))
-    slope = np.where(laminar, 64.0, (m0 + u * (2.0 * c2 + 3.0 * u * c3)) / width)
-    return value, slope
+    rise = end - 64.0 * TURBULENT_START
+    turn = width * (end_slope - 64.0)
+    c2 = 3.0 * rise - turn
+    c3 = u * (turn - 2.0 * rise)
+    return 64.0 * re + u * u * (c2 + c3), 64.0 + u / width * (2.0 * c2 + 3.0 * c3)
 
 
 def reynolds_number(

@@ -11,9 +11,9 @@ import numpy as np
 from supplycheck.errors import NotConvergedError
 from supplycheck.hydraulics import smooth_power
 from supplycheck.network.arrays import Network
-from supplycheck.network.core import Law, Problem, State, first_state
+from supplycheck.network.core import Problem, State, first_state
 from supplycheck.network.curves import SourceLaw
-from supplycheck.network.links import STEEP, BoolArray, Links
+from supplycheck.network.links import STEEP, BoolArray, Law, Links
 from supplycheck.network.nodal import Nodal
 from supplycheck.network.records import FloatArray, IntArray, LoadCase, SourceCurve
 
@@ -208,7 +208,7 @@ def assemble(
         moves=moves,
         floor_rows=floor_rows,
         floors=base[case.floor_rows] + case.floors if demand else np.zeros(0),
-        nodal=Nodal(start, end, free),
+        nodal=Nodal(start, end, free, copies=len(base) // size),
         group=np.concatenate([rows, feed.rows[piped], case.outlets]) // size,
         groups=len(base) // size,
     )
@@ -230,11 +230,14 @@ def assemble(
 
 def _law(links: Links, sources: Sequence[SourceLaw], case: Case) -> Law:
     pipes, behind = len(links), len(links) + len(sources)
+    of_pipes = links.law()
+    if not (sources or len(case.outlets)):
+        return of_pipes
     per_k = case.k_factor**-2.0
 
     def law(flow: FloatArray) -> tuple[FloatArray, FloatArray]:
         value, slope = np.empty_like(flow), np.empty_like(flow)
-        value[:pipes], slope[:pipes] = links.loss(flow[:pipes])
+        value[:pipes], slope[:pipes] = of_pipes(flow[:pipes])
         for row, source in enumerate(sources, start=pipes):
             value[row : row + 1], slope[row : row + 1] = source.fall(flow[row : row + 1])
         out = flow[behind:]

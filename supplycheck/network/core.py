@@ -25,17 +25,14 @@ References
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass, field, replace
 from typing import Final
 
 import numpy as np
 
-from supplycheck.network.links import BoolArray
+from supplycheck.network.links import BoolArray, Law
 from supplycheck.network.nodal import Nodal
 from supplycheck.network.records import FloatArray, IntArray
-
-Law = Callable[[FloatArray], tuple[FloatArray, FloatArray]]
 
 HEAD_TOLERANCE: Final = 1e-5
 """Largest loss residual and slack of a converged state [Pa]."""
@@ -178,28 +175,25 @@ def solve(
         energy, mass, slope = residuals(problem, state)
     else:
         state, energy, mass, slope = _opening(problem, state)
+    rounding = 1e-13 * _largest(problem.fixed)
     for count in range(1, limit + 1):
         before = state.shift
         try:
             step, shift, extra, head = _step(problem, state, energy, mass, slope)
         except (np.linalg.LinAlgError, RuntimeError):  # a singular matrix, dense or sparse
             break
-        if not (np.abs(step).max(initial=0.0) < HIGHEST_FLOW and np.isfinite(head).all()):
+        largest = _largest(step)
+        if not largest < HIGHEST_FLOW:  # or no number at all, as where a head is none
             break
         length = 1.0
-        if damped and count > 1 and np.abs(mass).max(initial=0.0) <= 1e-9 * _scale(state.flow):
+        if damped and count > 1 and _largest(mass) <= 1e-9 * _scale(state.flow):
             length = _line_search(problem, state.flow, step, head, extra)
         flow = state.flow + length * step
         head = head if length == 1.0 else _partly(problem, state.head, head, length)
-        state = replace(
-            state, flow=flow, head=head, shift=shift, extra=extra, iterations=state.iterations + 1
-        )
+        state = State(flow, head, shift, extra, state.iterations + 1, False, np.inf, np.inf)
         energy, mass, slope = residuals(problem, state)
-        worst = float(np.abs(energy).max(initial=0.0))
-        lost = float(np.abs(mass).max(initial=0.0))
-        scale = _scale(flow)
-        moved = length * float(np.abs(step).max(initial=0.0))
-        rounding = 1e-13 * float(np.abs(problem.fixed).max(initial=0.0))
+        worst, lost, scale = _largest(energy), _largest(mass), _scale(flow)
+        moved = length * largest
         good = worst <= HEAD_TOLERANCE + rounding
         if good and moved > FLOW_TOLERANCE * scale:
             good = _next_step(problem, energy, slope) <= NEXT_PART * FLOW_TOLERANCE * scale
@@ -209,12 +203,7 @@ def solve(
         good = good or (worst <= ROUGH_HEAD and count == limit)
         if good and lost <= MASS_TOLERANCE * scale and _slack(problem, head) <= HEAD_TOLERANCE + rounding:
             return replace(state, converged=True, energy=worst, mass=lost)
-    return replace(
-        state,
-        converged=False,
-        energy=float(np.abs(energy).max(initial=0.0)),
-        mass=float(np.abs(mass).max(initial=0.0)),
-    )
+    return replace(state, converged=False, energy=_largest(energy), mass=_largest(mass))
 
 
 def _next_step(problem: Problem, energy: FloatArray, slope: FloatArray) -> float:
@@ -229,7 +218,11 @@ def _next_step(problem: Problem, energy: FloatArray, slope: FloatArray) -> float
 
 
 def _scale(flow: FloatArray) -> float:
-    return max(float(np.abs(flow).max(initial=0.0)), 1e-6)
+    return max(_largest(flow), 1e-6)
+
+
+def _largest(values: FloatArray) -> float:
+    return float(np.abs(values).max(initial=0.0))
 
 
 def _slack(problem: Problem, head: FloatArray) -> float:
@@ -264,9 +257,9 @@ def _step(
         conductance[problem.closed] = 0.0
     demand = len(problem.floor_rows) > 0
     drive = [conductance * energy]
-    moves = np.zeros(nodes)
-    moves[n:] = problem.moves
     if demand:
+        moves = np.zeros(nodes)
+        moves[n:] = problem.moves
         drive.append(conductance * (moves[problem.start] - moves[problem.end]))
     for link in problem.valve_links:
         pull = np.zeros(len(conductance))

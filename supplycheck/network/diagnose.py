@@ -11,7 +11,7 @@ from supplycheck.network.arrays import Network
 from supplycheck.network.assemble import Assembled, Case, Feed
 from supplycheck.network.core import residuals
 from supplycheck.network.find import NoStateError
-from supplycheck.network.graphs import parts_of
+from supplycheck.network.graphs import parts_of, spread_from
 from supplycheck.network.links import Links
 from supplycheck.network.records import FloatArray, IntArray
 from supplycheck.network.reduce import Reduced
@@ -30,11 +30,10 @@ def check_structure(network: Network, links: Links, case: Case, feed: Feed) -> N
         are joined by pipes without resistance.
     """
     asked = np.flatnonzero(case.keep())
-    nodes = len(network.node_tags)
-    parts, label = parts_of(links.start, links.end, nodes)
-    fed = np.zeros(parts, dtype=bool)
-    fed[label[feed.rows]] = True
-    lost = asked[~fed[label[asked]]]
+    reached, _ = spread_from(links.start, links.end, feed.rows, len(network.node_tags))
+    fed = np.zeros(len(network.node_tags), dtype=bool)
+    fed[reached] = True
+    lost = asked[~fed[asked]]
     if len(lost):
         raise _error(
             "structure",

@@ -13,6 +13,7 @@ All but the devices are odd in the flow and add up exactly in series, which is w
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, replace
 from typing import Final
 
@@ -30,6 +31,8 @@ STEEP: Final = 1e13
 """Slope of a one-way link against its direction [Pa·s/m³]; such a link is then closed exactly."""
 
 BoolArray = NDArray[np.bool_]
+Law = Callable[[FloatArray], tuple[FloatArray, FloatArray]]
+"""Losses [Pa] and their slopes [Pa·s/m³] as a function of the flows [m³/s], one for each link."""
 
 
 def sums(row: IntArray, value: FloatArray, count: int) -> FloatArray:
@@ -52,14 +55,30 @@ class Terms:
     by_flow: FloatArray
     scale: FloatArray
 
-    def loss(self, flow: FloatArray, count: int) -> tuple[FloatArray, FloatArray]:
-        """Return loss [Pa] and slope on each of ``count`` links carrying ``flow``."""
-        here = flow[self.link]
-        by_flow = self.by_flow[self.sort]
-        group, rise = friction_group_unchecked(by_flow * np.abs(here), self.relative[self.sort])
-        weight = self.scale[self.sort] * self.length
-        total = sums(self.link, np.copysign(weight * group, here), count)
-        return total, sums(self.link, weight * by_flow * rise, count)
+    def law(self, count: int) -> Law:
+        """Return loss [Pa] and slope on each of ``count`` links as a function of their flow."""
+        link, by_flow, relative = self.link, self.by_flow[self.sort], self.relative[self.sort]
+        weight = self.weight()
+        slope_weight = weight * by_flow
+        one_each = len(link) == count and bool((link == np.arange(count)).all())
+
+        def law(flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+            here = flow if one_each else flow[link]
+            group, rise = friction_group_unchecked(by_flow * np.abs(here), relative)
+            value, slope = np.copysign(weight * group, here), slope_weight * rise
+            return (value, slope) if one_each else (sums(link, value, count), sums(link, slope, count))
+
+        return law
+
+    def weight(self) -> FloatArray:
+        """Return (t,) the loss of each term [Pa] where its f·Re² is 1."""
+        return self.scale[self.sort] * self.length
+
+    def numbers(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return (t,) Reynolds number and f·Re² [-] of each term where it carries ``flow`` (t,)."""
+        reynolds = self.by_flow[self.sort] * np.abs(flow)
+        group, _ = friction_group_unchecked(reynolds, self.relative[self.sort])
+        return reynolds, group
 
     def merged(self, to: IntArray) -> Terms:
         """Return the terms with link ``i`` become part of link ``to[i]`` (negative: dropped)."""
@@ -93,46 +112,79 @@ class Links:
     def __len__(self) -> int:
         return len(self.start)
 
-    def friction(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return the friction loss [Pa] and its slope, without devices."""
-        if self.terms is not None:
-            value, slope = self.terms.loss(flow, len(flow))
-        else:
-            power, dpower = smooth_power(flow, self.exponent)
-            value = self.resistance * power
-            slope = self.resistance * dpower
-        value += self.least * flow
-        slope += self.least
-        if self.minor.any():
+    def friction_law(self) -> Law:
+        """Return the friction loss [Pa] and its slope, without devices, as a function of the flow."""
+        along = self._power_law if self.terms is None else self.terms.law(len(self))
+        besides = self._besides()
+
+        def law(flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+            value, slope = along(flow)
+            if besides is not None:
+                more, rise = besides(flow)
+                value += more
+                slope += rise
+            return value, slope
+
+        return law
+
+    def friction_of(self, flow: FloatArray, along: FloatArray) -> FloatArray:
+        """Return the friction loss [Pa] where that along the pipes themselves is known."""
+        besides = self._besides()
+        return along if besides is None else along + besides(flow)[0]
+
+    def _power_law(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+        power, dpower = smooth_power(flow, self.exponent)
+        return self.resistance * power, self.resistance * dpower
+
+    def _besides(self) -> Law | None:
+        """Return the loss of fittings with a coefficient and of pipes without a law, or ``None``."""
+        if not self.minor.any():
+            return (lambda flow: (self.least * flow, self.least)) if self.least.any() else None
+
+        def law(flow: FloatArray) -> tuple[FloatArray, FloatArray]:
             square, dsquare = smooth_power(flow, 2.0)
-            value += self.minor * square
-            slope += self.minor * dsquare
-        return value, slope
+            return self.least * flow + self.minor * square, self.least + self.minor * dsquare
 
-    def device_drop(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return the drop of the devices in each link [Pa] and its slope (0 where there are none)."""
-        value, slope = np.zeros(len(self)), np.zeros(len(self))
+        return law
+
+    def device_law(self) -> Law:
+        """Return the drop of the devices in each link [Pa] and its slope as a function of the flow."""
         places: dict[int, tuple[DeviceLaw, list[int]]] = {}
-        for link, law in self.devices:
-            places.setdefault(id(law), (law, []))[1].append(link)
-        for law, rows in places.values():
-            drop, rise = law.drop(flow[rows])
-            np.add.at(value, rows, drop)
-            np.add.at(slope, rows, rise)
-        return value, slope
+        for link, device in self.devices:
+            places.setdefault(id(device), (device, []))[1].append(link)
 
-    def loss(self, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return the whole loss [Pa] and its slope; against its direction a one-way link is steep."""
-        value, slope = self.friction(flow)
-        if self.devices:
-            drop, rise = self.device_drop(flow)
+        def law(flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+            value, slope = np.zeros(len(flow)), np.zeros(len(flow))
+            for device, rows in places.values():
+                drop, rise = device.drop(flow[rows])
+                np.add.at(value, rows, drop)
+                np.add.at(slope, rows, rise)
+            return value, slope
+
+        return law
+
+    def law(self) -> Law:
+        """Return the whole loss [Pa] and its slope as a function of the flow.
+
+        Against its direction a one-way link is steep.
+        """
+        friction, devices, one_way = self.friction_law(), self.device_law(), self.one_way
+        valves = bool(one_way.any())
+        if not (self.devices or valves):
+            return friction
+
+        def law(flow: FloatArray) -> tuple[FloatArray, FloatArray]:
+            value, slope = friction(flow)
+            drop, rise = devices(flow)
             value += drop
             slope += rise
-        if self.one_way.any():
-            back = self.one_way & (flow < 0)
-            value[back] += STEEP * flow[back]
-            slope[back] += STEEP
-        return value, slope
+            if valves:
+                back = one_way & (flow < 0)
+                value[back] += STEEP * flow[back]
+                slope[back] += STEEP
+            return value, slope
+
+        return law
 
     def marked(self) -> BoolArray:
         """Return which links hold a device or are one-way: they are never merged with others."""

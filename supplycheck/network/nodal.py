@@ -1,9 +1,10 @@
 """The linear system of the nodes: one symmetric matrix pattern, refilled and factorised many times.
 
 The matrix is A·G·Aᵀ with A the incidence of the links on the free nodes and G their conductances: symmetric
-and positive definite. Small systems are dense; long narrow ones (mains with lines between them) are
-brought into a narrow band [1]_ and factorised by Cholesky; the rest keep one fill-reducing order,
-found with the first sparse factorisation, so that later ones only refill the values.
+and positive definite. Small systems are dense, cases side by side a stack of such; long narrow ones
+(mains with lines between them) are brought into a narrow band [1]_ and factorised by Cholesky; the rest
+keep one fill-reducing order, found with the first sparse factorisation, so that later ones only refill
+the values.
 
 References
 ----------
@@ -23,7 +24,10 @@ from supplycheck.network.links import sums
 from supplycheck.network.records import FloatArray, IntArray
 
 DENSE_BELOW: Final = 48
-"""Number of free nodes below which the matrix is dense."""
+"""Number of free nodes below which the matrix is dense and numpy solves it."""
+CHOLESKY_BELOW: Final = 80
+"""Number of free nodes below which it is dense and factorised by Cholesky: half the work, once the library
+that has it is loaded."""
 NARROW: Final = 64
 """Greatest half bandwidth at which the band is quicker than the sparse factorisation. Beyond it the blocks
 of LAPACK are large enough for OpenBLAS to share among threads, which costs many times what it brings."""
@@ -37,10 +41,13 @@ Solver = Callable[[FloatArray], FloatArray]
 
 
 class Nodal:
-    """Matrix of ``free`` nodes joined by links ``start``–``end`` (rows of ``free`` and above: fixed)."""
+    """Matrix of ``free`` nodes joined by links ``start``–``end`` (rows of ``free`` and above: fixed).
 
-    def __init__(self, start: IntArray, end: IntArray, free: int) -> None:
-        self.free = free
+    ``copies`` cases that nothing joins may lie in it side by side.
+    """
+
+    def __init__(self, start: IntArray, end: IntArray, free: int, copies: int = 1) -> None:
+        self.free, self.copies = free, copies
         links = np.arange(len(start))
         s_free, e_free = start < free, end < free
         both = s_free & e_free
@@ -50,6 +57,7 @@ class Nodal:
         self._source = np.concatenate([links[s_free], links[e_free], links[both]])
         self._sign = np.ones(len(self._rows))
         self._sign[self._diagonals :] = -1.0
+        self._flat: IntArray | None = None
         self._blocks: _Blocks | None = None
         self._band: _Band | None = None
         self._sparse: _Sparse | None = None
@@ -64,9 +72,9 @@ class Nodal:
         """
         entries = self._sign * conductance[self._source]
         tie = float(np.median(conductance)) if len(ground) else 0.0
-        if self.free < DENSE_BELOW:
+        if self.free < DENSE_BELOW or (self.free < CHOLESKY_BELOW and self.copies == 1):
             return self._dense(entries, ground, tie)
-        if self._blocks is None and self.free <= MOST_STACKED:
+        if self.copies > 1 and self._blocks is None and self.free <= MOST_STACKED:
             self._blocks = _Blocks(self._rows, self._cols, self._diagonals, self.free)
         if self._blocks is not None and self._blocks.largest <= SMALL_BLOCK:
             return self._blocks.factorise(entries, ground, tie)
@@ -81,12 +89,28 @@ class Nodal:
 
     def _dense(self, entries: FloatArray, ground: IntArray, tie: float) -> Solver:
         n = self.free
-        half = sums(self._rows * n + self._cols, entries, n * n).reshape(n, n)
-        diagonal = half.diagonal().copy()
-        diagonal[ground] += tie
-        matrix = half + half.T
-        np.fill_diagonal(matrix, diagonal)
+        if self._flat is None:
+            low, high = np.minimum(self._rows, self._cols), np.maximum(self._rows, self._cols)
+            self._flat = low * n + high
+        upper = sums(self._flat, entries, n * n).reshape(n, n)
+        if len(ground):
+            upper[ground, ground] += tie
+        solver = _cholesky(upper) if n >= DENSE_BELOW else None
+        if solver is not None:
+            return solver
+        matrix = upper + upper.T
+        np.fill_diagonal(matrix, upper.diagonal())
         return lambda rhs: np.asarray(np.linalg.solve(matrix, rhs), dtype=np.float64)
+
+
+def _cholesky(upper: FloatArray) -> Solver | None:
+    """Return the solver for the upper half of a matrix, or ``None`` where rounding spoils definiteness."""
+    from scipy.linalg.lapack import dpotrf, dpotrs
+
+    factor, info = dpotrf(upper.T, lower=1, clean=0)
+    if info != 0:
+        return None
+    return lambda rhs: np.asarray(dpotrs(factor, rhs, lower=1)[0])
 
 
 class _Blocks:

@@ -20,7 +20,6 @@ from typing import Final
 
 import numpy as np
 
-from supplycheck.network.graphs import parts_of, spread_from
 from supplycheck.network.links import BoolArray, Links, sums
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -114,26 +113,31 @@ def _merge_chains(whole: Reduced, keep: BoolArray) -> Reduced:
 
 
 def _chains(links: Links, inner: BoolArray) -> Reduced:
-    """Return the links with every chain through ``inner`` nodes made one link."""
+    """Return the links with every chain through ``inner`` nodes made one link.
+
+    Each link is walked both ways: walk ``i`` from its start to its end, walk ``count + i`` back. At an
+    inner node a walk goes on along the other link there; where it ends says which chain it is in.
+    """
     count = len(links)
     ends = np.concatenate([links.start, links.end])
-    owner = np.tile(np.arange(count), 2)
     at_inner = np.flatnonzero(inner[ends])
-    pairs = owner[at_inner[np.argsort(ends[at_inner])]].reshape(-1, 2)
-    chains, label = parts_of(pairs[:, 0], pairs[:, 1], count)
-    # the two outer ends of each chain; a ring of inner nodes has none and carries nothing
-    outer = np.flatnonzero(~inner[ends])
-    outer = outer[np.argsort(label[owner[outer]] * (2 * count) + outer)]
-    closed_off = np.bincount(label[owner[outer]], minlength=chains) == 0
-    first, last = outer[::2], outer[1::2]
-    sign = _directions(links, inner, pairs, owner[first], ends[first])
-    number = np.cumsum(~closed_off) - 1
-    part = np.where(closed_off[label], -1, number[label])
-    live_chains = int((~closed_off).sum())
-    live = part >= 0
+    pairs = at_inner[np.argsort(ends[at_inner], kind="stable")].reshape(-1, 2)
+    onward = np.arange(2 * count)
+    onward[(pairs + count) % (2 * count)] = pairs[:, ::-1]
+    last = _ends_of(onward)
+    ahead, back = last[:count], last[count:]
+    live = onward[ahead] == ahead  # a ring of inner nodes never ends, and carries nothing
+    way, against = np.minimum(ahead, back), np.maximum(ahead, back)
+    is_way = np.zeros(2 * count, dtype=bool)
+    is_way[way[live]] = True
+    live_chains = int(is_way.sum())
+    part = np.where(live, np.cumsum(is_way)[way] - 1, -1)
+    come_from = np.empty(live_chains, dtype=np.int64)
+    come_from[part[live]] = against[live]
+    arrives = np.concatenate([links.end, links.start])
     merged = Links(
-        start=ends[first],
-        end=ends[last],
+        start=arrives[come_from],
+        end=arrives[is_way],
         resistance=sums(part[live], links.resistance[live], live_chains),
         exponent=links.exponent,
         minor=sums(part[live], links.minor[live], live_chains),
@@ -143,7 +147,7 @@ def _chains(links: Links, inner: BoolArray) -> Reduced:
         devices=tuple((int(part[link]), law) for link, law in links.devices if part[link] >= 0),
         terms=links.terms.merged(part) if links.terms is not None else None,
     )
-    return Reduced(merged, part, np.where(live, sign, 0.0))
+    return Reduced(merged, part, np.where(live, np.where(ahead < back, 1.0, -1.0), 0.0))
 
 
 def _smallest(part: IntArray, area: FloatArray, count: int) -> FloatArray:
@@ -152,21 +156,12 @@ def _smallest(part: IntArray, area: FloatArray, count: int) -> FloatArray:
     return smallest
 
 
-def _directions(
-    links: Links, inner: BoolArray, pairs: IntArray, first_link: IntArray, first_node: IntArray
-) -> FloatArray:
-    """Return for each link whether it runs with its chain (1) or against it (−1).
-
-    A search from the first link of every chain gives each other link the one before it; the node they
-    share is where the flow enters it.
-    """
-    count = len(links)
-    _, before = spread_from(pairs[:, 0], pairs[:, 1], first_link, count)
-    entry = np.full(count, -1)
-    link = np.flatnonzero(before >= 0)
-    prior = before[link]
-    s = links.start[link]
-    shared = inner[s] & ((s == links.start[prior]) | (s == links.end[prior]))
-    entry[link] = np.where(shared, s, links.end[link])
-    entry[first_link] = first_node
-    return np.where(entry == links.start, 1.0, -1.0)
+def _ends_of(onward: IntArray) -> IntArray:
+    """Return where each walk that steps ``onward`` comes to rest; in a ring, some step of the ring."""
+    last = onward
+    for _ in range(len(onward).bit_length()):
+        further = last[last]
+        if np.array_equal(further, last):
+            break
+        last = further
+    return last

@@ -7,7 +7,6 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from supplycheck.hydraulics import friction_factor
 from supplycheck.network.arrays import Network
 from supplycheck.network.assemble import Assembled, Case, Feed
 from supplycheck.network.core import State
@@ -58,8 +57,8 @@ def whole_solution(found: Found, sources: Sequence[SourceCurve], *, demand: bool
     links, nodes = network.links, len(network.node_tags)
     flow = found.pipe_flow() + 0.0
     flow[links.one_way & (flow < 0)] = 0.0  # rounding: a one-way link is closed exactly before this
-    friction, _ = links.friction(flow)
-    device, _ = links.device_drop(flow)
+    friction, reynolds, factor = _friction(network, flow)
+    device, _ = links.device_law()(flow)
     taken_off = np.zeros(nodes)
     taken_off[case.outlets] = case.offset
     head = found.heads(friction + device)
@@ -82,7 +81,6 @@ def whole_solution(found: Found, sources: Sequence[SourceCurve], *, demand: bool
         array[case.shut] = np.nan
     rise = np.where(case.shut, np.nan, rise)
     velocity = flow / links.area
-    reynolds, factor = _numbers(network, flow)
     shift, governing = found.requirement(supplied, pressure) if demand else (np.nan, "")
     return Solution(
         node_tags=network.node_tags,
@@ -115,16 +113,19 @@ def whole_solution(found: Found, sources: Sequence[SourceCurve], *, demand: bool
     )
 
 
-def _numbers(network: Network, flow: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Return Reynolds number and Darcy friction factor of each pipe; NaN where it has none."""
-    fluid = network.fluid
-    reynolds = 4 * fluid.density * np.abs(flow) / (np.pi * network.bore * fluid.viscosity)
+def _friction(network: Network, flow: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return friction loss [Pa], Reynolds number and Darcy factor of each pipe; NaN where it has none."""
+    links, fluid = network.links, network.fluid
     factor = np.full(len(flow), np.nan)
-    if network.law.family == "darcy-weisbach":
-        moving = reynolds > 0
-        rough = network.roughness[moving] / network.bore[moving]
-        factor[moving], _ = friction_factor(reynolds=reynolds[moving], relative_roughness=rough)
-    return reynolds, factor
+    if links.terms is None:
+        reynolds = 4 * fluid.density * np.abs(flow) / (np.pi * network.bore * fluid.viscosity)
+        friction, _ = links.friction_law()(flow)
+        return friction, reynolds, factor
+    reynolds, group = links.terms.numbers(flow)  # one term for each pipe, in their order
+    moving = reynolds > 0
+    factor[moving] = group[moving] / reynolds[moving] / reynolds[moving]
+    along = np.copysign(links.terms.weight() * group, flow)
+    return links.friction_of(flow, along), reynolds, factor
 
 
 def _holding(network: Network, flow: FloatArray) -> BoolArray:

@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 import numpy as np
 import pytest
 from network_systems import network, random_load, random_system, supply
 
 from supplycheck.network import core
 from supplycheck.network.assemble import assemble, read_case, read_feed
-from supplycheck.network.nodal import DENSE_BELOW, Nodal, _Band, _Sparse
+from supplycheck.network.nodal import CHOLESKY_BELOW, DENSE_BELOW, Nodal, _Band, _Sparse
+from supplycheck.network.records import FloatArray
 
 
 def problem_of(seed: int, law: str):  # type: ignore[no-untyped-def]
@@ -66,14 +69,24 @@ def test_damped_and_full_steps_agree(seed: int) -> None:
     assert damped.flow == pytest.approx(full.flow, abs=1e-9 * np.abs(full.flow).max())
 
 
-@pytest.mark.parametrize("free", [5, DENSE_BELOW + 30])
-def test_each_linear_solver_against_the_plain_matrix(free: int) -> None:
+def spoilt(g: FloatArray) -> FloatArray:
+    """Return conductances of which one is below zero, so that Cholesky gives up."""
+    return np.append(g[:-1], -50.0)
+
+
+@pytest.mark.parametrize(
+    ("free", "change"),
+    [(5, np.copy), (DENSE_BELOW + 5, np.copy), (DENSE_BELOW + 5, spoilt), (CHOLESKY_BELOW + 30, np.copy)],
+)
+def test_each_linear_solver_against_the_plain_matrix(
+    free: int, change: Callable[[FloatArray], FloatArray]
+) -> None:
     rng = np.random.default_rng(free)
     start = np.concatenate([np.arange(free), rng.integers(0, free, free)])
     end = np.concatenate([np.arange(1, free + 1), rng.integers(0, free + 1, free)])
     keep = start != end
     start, end = start[keep], end[keep]
-    g = rng.uniform(0.1, 10, len(start))
+    g = change(rng.uniform(0.1, 10, len(start)))
     matrix = np.zeros((free + 1, free + 1))
     for a, b, c in zip(start, end, g, strict=True):
         matrix[[a, b], [a, b]] += c
@@ -83,6 +96,8 @@ def test_each_linear_solver_against_the_plain_matrix(free: int) -> None:
     nothing = np.zeros(0, dtype=np.int64)
     nodal = Nodal(start, end, free)
     assert nodal.factorise(g, nothing)(rhs) == pytest.approx(expected)
+    if (g < 0).any():
+        return
     entries = nodal._sign * g[nodal._source]
     for made in (
         _Band(nodal._rows, nodal._cols, nodal._diagonals, free),

@@ -51,7 +51,7 @@ def assert_balanced(made: Network, solution: Solution) -> None:
     fall = solution.pressure[made.links.start] - solution.pressure[made.links.end]
     loss = solution.friction + solution.elevation_loss + solution.device_loss
     assert np.nanmax(np.abs(fall - loss)) <= 1e-6 * PSI
-    law, _ = made.links.friction(solution.pipe_flow)
+    law, _ = made.links.friction_law()(solution.pipe_flow)
     assert solution.friction == pytest.approx(law, rel=1e-12, abs=1e-9)
 
 
