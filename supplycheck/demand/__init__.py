@@ -2,6 +2,6 @@
 
 from supplycheck.demand.area import demand_cases
 from supplycheck.demand.heads import required_at_head
-from supplycheck.demand.records import Candidates, Step
+from supplycheck.demand.records import Candidates
 
 __all__ = ["Candidates", "Step", "demand_cases", "required_at_head"]

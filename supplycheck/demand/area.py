@@ -16,11 +16,12 @@ from supplycheck.demand.line import Line
 from supplycheck.demand.lines import find_lines
 from supplycheck.demand.outflows import asked_at_nodes, with_asked
 from supplycheck.demand.placement import Placement, Rule
-from supplycheck.demand.records import Candidates, Step
+from supplycheck.demand.records import Candidates
 from supplycheck.demand.runs import ROUND
 from supplycheck.demand.search import CAP, search
 from supplycheck.errors import DomainError
 from supplycheck.model import Criteria, DemandCase, Project
+from supplycheck.model.words import Step, Words
 
 EUROPEAN = "EN 12845"
 _T = TypeVar("_T")
@@ -119,8 +120,8 @@ def _given(project: Project, heads: Heads, tags: Sequence[str]) -> Candidates:
     case = _case(heads, rows, text, lines, along, "; ".join(notes))
     steps = area_steps(criteria)
     values = (("count", float(len(rows)), "count"), ("area", criteria.required_area, "area"))
-    formula = "sum of the areas of the {count} heads given; required {area}"
-    steps.append(Step("Area covered", formula, area, "area", values))
+    formula = Words("sum of the areas of the {count} heads given; required {area}", values)
+    steps.append(Step("Area covered", formula, area, "area"))
     statement = (
         f"The {len(rows)} heads of the design area are given in the project. Other placements were not "
         "tried: that this one is the most demanding is not shown."
@@ -184,10 +185,10 @@ def _whole_system(project: Project, heads: Heads) -> Candidates:
     note = "deluge: every head flows"
     case = _case(heads, rows, f"all {len(rows)} heads of the deluge system", lines, along, note)
     area = float(heads.area.sum())
-    values = (("count", float(len(rows)), "count"),)
+    formula = Words("sum of the areas of all {count} heads", (("count", float(len(rows)), "count"),))
     steps = [
-        Step("Density", "from the criteria", project.criteria.density, "density"),
-        Step("Area covered", "sum of the areas of all {count} heads", area, "area", values),
+        Step("Density", Words("from the criteria"), project.criteria.density, "density"),
+        Step("Area covered", formula, area, "area"),
     ]
     statement = f"A deluge system: all {len(rows)} heads flow at the same time, so there is one placement."
     return Candidates((case,), tuple(steps), statement, "search")

@@ -8,24 +8,25 @@ import numpy as np
 
 from supplycheck.demand.heads import Heads
 from supplycheck.demand.line import Lines
-from supplycheck.demand.records import Step
 from supplycheck.demand.runs import ROUND
 from supplycheck.model import Criteria
+from supplycheck.model.words import Step, Words
 
 
 def area_steps(criteria: Criteria) -> list[Step]:
     """Return the steps from the density to the required area, each modifier in its order."""
     steps = [
-        Step("Density", criteria.hazard.replace("{", "(").replace("}", ")"), criteria.density, "density"),
-        Step("Base area", "area that goes with the density", criteria.base_area, "area"),
+        Step("Density", Words("{hazard}", (("hazard", criteria.hazard, ""),)), criteria.density, "density"),
+        Step("Base area", Words("area that goes with the density"), criteria.base_area, "area"),
     ]
     area = criteria.base_area
     for modifier in criteria.modifiers:
         before, area = area, area * modifier.factor
         values = (("before", before, "area"), ("factor", modifier.factor, "ratio"))
-        text = f"Area after {modifier.name}"
-        steps.append(Step(text, "{before} × {factor}", area, "area", values, modifier.source))
-    steps.append(Step("Required area", "base area × every modifier", criteria.required_area, "area"))
+        formula = Words("{before} × {factor}", values)
+        steps.append(Step(f"Area after {modifier.name}", formula, area, "area", modifier.source))
+    product = Words("base area × every modifier")
+    steps.append(Step("Required area", product, criteria.required_area, "area"))
     return steps
 
 
@@ -41,41 +42,27 @@ def whole_up(value: float) -> int:
 def _head_steps(criteria: Criteria, heads: Heads, own: float) -> list[Step]:
     low, high = float(heads.area.min()), float(heads.area.max())
     equal = math.isclose(low, high, rel_tol=1e-9)
-    values = (("low", low, "area"), ("high", high, "area"))
-    steps = [
-        Step("Area per head", "the same at every head", own, "area")
-        if equal
-        else Step(
-            "Area per head",
-            "from {low} to {high}; the middle value here, each head's own below",
-            own,
-            "area",
-            values,
-        )
-    ]
+    same = Words("the same at every head")
+    spread = Words(
+        "from {low} to {high}; the middle value here, each head's own below",
+        (("low", low, "area"), ("high", high, "area")),
+    )
     required = criteria.required_area
     count = max(whole_up(required / own), criteria.minimum_heads)
     formula = "{area} ÷ {own} = {ratio}, rounded up"
     if count > whole_up(required / own):
         formula += "; at least {least} heads"
-    steps.append(
-        Step(
-            "Heads in the area",
-            formula,
-            float(count),
-            "count",
-            (
-                ("area", required, "area"),
-                ("own", own, "area"),
-                ("ratio", required / own, "ratio"),
-                ("least", float(criteria.minimum_heads), "count"),
-            ),
-            ""
-            if equal
-            else "whole heads are added until the sum of their own areas reaches the required area",
-        )
+    values = (
+        ("area", required, "area"),
+        ("own", own, "area"),
+        ("ratio", required / own, "ratio"),
+        ("least", float(criteria.minimum_heads), "count"),
     )
-    return steps
+    note = "whole heads are added until the sum of their own areas reaches the required area"
+    return [
+        Step("Area per head", same if equal else spread, own, "area"),
+        Step("Heads in the area", Words(formula, values), float(count), "count", "" if equal else note),
+    ]
 
 
 def shape_steps(criteria: Criteria, length: float, heads: Heads, lines: Lines) -> list[Step]:
@@ -83,30 +70,27 @@ def shape_steps(criteria: Criteria, length: float, heads: Heads, lines: Lines) -
     own = float(np.median(heads.area))
     steps = _head_steps(criteria, heads, own)
     values = (("factor", criteria.shape_factor, "ratio"), ("area", criteria.required_area, "area"))
-    steps.append(
-        Step("Length along the lines", "{factor} × √({area})", length, "length", values, "at least")
-    )
+    side = Words("{factor} × √({area})", values)
+    steps.append(Step("Length along the lines", side, length, "length", "at least"))
     spaced = [line.share for line in lines.sides if len(line) > 1]
     if not spaced:
         return steps
     spacing = float(np.median(np.concatenate(spaced)))
     ratio = length / spacing
     along = whole_up(ratio)
-    steps.append(
-        Step(
-            "Heads along a line",
-            "{length} ÷ {spacing} = {ratio}, rounded up",
-            float(along),
-            "count",
-            (("length", length, "length"), ("spacing", spacing, "length"), ("ratio", ratio, "ratio")),
-            "a shorter line is taken whole and the rest made up on further lines",
-        )
+    divided = Words(
+        "{length} ÷ {spacing} = {ratio}, rounded up",
+        (("length", length, "length"), ("spacing", spacing, "length"), ("ratio", ratio, "ratio")),
     )
+    note = "a shorter line is taken whole and the rest made up on further lines"
+    steps.append(Step("Heads along a line", divided, float(along), "count", note))
     count = steps[1].value
-    formula = "{count} heads ÷ {along} a line, rounded up"
-    rows = (("count", count, "count"), ("along", float(along), "count"))
+    rows = Words(
+        "{count} heads ÷ {along} a line, rounded up",
+        (("count", count, "count"), ("along", float(along), "count")),
+    )
     note = "the last line holds the heads that are left over"
-    steps.append(Step("Lines", formula, float(whole_up(count / along)), "count", rows, note))
+    steps.append(Step("Lines", rows, float(whole_up(count / along)), "count", note))
     return steps
 
 

@@ -2,16 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Final
 
 from supplycheck.checks import open_questions
 from supplycheck.demand import Candidates
-from supplycheck.demand import Step as AreaStep
 from supplycheck.findings import Finding
 from supplycheck.model import DemandCase, Project
 from supplycheck.model.duty import DutyAnswer
+from supplycheck.model.words import Show, Step
 from supplycheck.network import Solution
 from supplycheck.results.balance import balance_of
 from supplycheck.results.display import step_text, value_text
@@ -37,10 +37,7 @@ from supplycheck.results.records import (
 )
 from supplycheck.results.rows import fitting_rows, node_rows, pipe_rows
 from supplycheck.supply import Comparison, CurveLine, GraphData, MarkedPoint
-from supplycheck.supply import Step as SupplyStep
 from supplycheck.units import UNIT_SETS
-
-Show = Callable[[float, str], str]
 
 STORAGE: Final = "water storage"
 """The check whose failure means that the supply does not carry the demand for its duration."""
@@ -241,14 +238,10 @@ def _margin(comparison: Comparison, show: Show, fine: Show) -> MarginRecord:
     )
 
 
-def _filled(steps: Iterable[SupplyStep], show: Show) -> tuple[HandStep, ...]:
+def _filled(steps: Iterable[Step], show: Show) -> tuple[HandStep, ...]:
     return tuple(
         HandStep(step.step, step.formula.fill(show), step.value, step.kind, step.note) for step in steps
     )
-
-
-def _area_steps(steps: Sequence[AreaStep], show: Show) -> tuple[HandStep, ...]:
-    return tuple(HandStep(step.text, step.filled(show), step.value, step.kind, step.note) for step in steps)
 
 
 def _design_area(stages: Stages, show: Show) -> DesignAreaRecord:
@@ -257,7 +250,7 @@ def _design_area(stages: Stages, show: Show) -> DesignAreaRecord:
     governing = placements[tried.hardest or 0]
     return DesignAreaRecord(
         mode=candidates.mode,
-        steps=_area_steps(candidates.steps, show),
+        steps=_filled(candidates.steps, show),
         placements=placements,
         governing=governing,
         runner_up=None if tried.runner_up is None else placements[tried.runner_up],

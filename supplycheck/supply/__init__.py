@@ -19,7 +19,6 @@ from supplycheck.supply.outlets import OutletFlow, outlet_flow, reduce_outlets
 from supplycheck.supply.quality import FlowTestFacts, PitotFact, flow_test_facts
 from supplycheck.supply.route import CarriedCurve, Route
 from supplycheck.supply.sources import NodeSupply, Stage, gauge_curve, source_curves, supply_curves
-from supplycheck.supply.words import Step, Words
 
 __all__ = [
     "CarriedCurve",
@@ -37,9 +36,7 @@ __all__ = [
     "Route",
     "SourceShare",
     "Stage",
-    "Step",
     "SupplyCurve",
-    "Words",
     "age_in_years",
     "compare",
     "constant_curve",

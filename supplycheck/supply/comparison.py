@@ -19,6 +19,7 @@ from typing import Final
 
 from supplycheck.errors import DomainError
 from supplycheck.model import Project
+from supplycheck.model.words import Step, Value, Words
 from supplycheck.network.records import Solution
 from supplycheck.supply.hose import hose_parts
 from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margin, rule_words
@@ -31,7 +32,6 @@ from supplycheck.supply.narration import (
 )
 from supplycheck.supply.route import CarriedCurve, no_flow_pressure, solved_route
 from supplycheck.supply.sources import NodeSupply
-from supplycheck.supply.words import Step, Value, Words
 
 
 @dataclass(frozen=True, slots=True)

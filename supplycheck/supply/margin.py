@@ -19,8 +19,8 @@ from dataclasses import dataclass
 
 from supplycheck.errors import DomainError
 from supplycheck.model import MarginRule
+from supplycheck.model.words import Step, Value, Words
 from supplycheck.supply.curve import SupplyCurve
-from supplycheck.supply.words import Step, Value, Words
 
 
 @dataclass(frozen=True, slots=True)

@@ -8,11 +8,11 @@ from typing import Final
 
 from supplycheck.hydraulics import pitot_discharge
 from supplycheck.model import FlowTest
+from supplycheck.model.words import Step, Words
 from supplycheck.supply.curve import SupplyCurve
 from supplycheck.supply.outlets import outlet_flow
 from supplycheck.supply.route import Route
 from supplycheck.supply.sources import NodeSupply
-from supplycheck.supply.words import Step, Words
 
 _FORMS: Final = {
     "us": (231 * 0.0254**3 / 60, 0.0254, 0.45359237 * 9.80665 / 0.0254**2, "gpm, in and psi"),

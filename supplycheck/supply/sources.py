@@ -12,9 +12,9 @@ from typing import Final
 
 from supplycheck.errors import DomainError
 from supplycheck.model import Adjustment, FlowTest, Project, Supply, System, Tank
+from supplycheck.model.words import Words
 from supplycheck.network.records import SourceCurve
 from supplycheck.supply.curve import SupplyCurve, constant_curve, curve_through, lower_envelope
-from supplycheck.supply.words import Words
 
 _PSI: Final = 0.45359237 * 9.80665 / 0.0254**2
 READING: Final = 1.0 * _PSI

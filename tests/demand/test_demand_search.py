@@ -297,13 +297,13 @@ def test_each_case_carries_what_its_heads_need() -> None:
 def test_steps_tell_the_derivation() -> None:
     modifiers = (AreaModifier("dry pipe", 1.3, "a"), AreaModifier("slope", 1.3, "b"))
     found = demand_cases(project(tree([0] * 9, [9] * 9), criteria(modifiers=modifiers)))
-    steps = {step.text: step for step in found.steps}
+    steps = {step.step: step for step in found.steps}
     assert steps["Area after dry pipe"].value / FT2 == pytest.approx(1950, rel=1e-12)
     assert steps["Required area"].value / FT2 == pytest.approx(2535, rel=1e-12)
     assert steps["Heads in the area"].value == 20  # 2535/130 = 19.5
     assert steps["Heads along a line"].value == 5  # 1.2√2535 = 60.4 ft, 4.65 spacings of 13 ft
     assert steps["Lines"].value == 4
-    text = steps["Heads in the area"].filled(lambda value, kind: US.text(value, kind))
+    text = steps["Heads in the area"].formula.fill(US.text)
     assert text == "2535.0 ft² ÷ 130.0 ft² = 19.500, rounded up"
 
 

@@ -14,7 +14,7 @@ Show = Callable[[float, str], str]
 
 
 Value = tuple[str, float | str, str]
-"""A name, what fills it and its kind of quantity; a text (kind ``""``) is put in as it stands."""
+"""A name, what fills it and its kind of quantity: ``"count"`` for whole numbers, ``""`` for a text."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,16 +31,22 @@ class Words:
         >>> Words("lowered by {drop} ({why})", values).fill(lambda value, kind: f"{value} Pa")
         'lowered by 2.0 Pa ({drop})'
         """
-        shown = {
-            name: value if isinstance(value, str) else show(value, kind)
-            for name, value, kind in self.values
-        }
+        shown = {name: _shown(value, kind, show) for name, value, kind in self.values}
         return _NAME.sub(lambda found: shown.get(found[1], found[0]), self.template)
+
+
+def _shown(value: float | str, kind: str, show: Show) -> str:
+    if isinstance(value, str):
+        return value
+    return f"{value:.0f}" if kind == "count" else show(value, kind)
 
 
 @dataclass(frozen=True, slots=True)
 class Step:
-    """One line of a calculation that can be followed by hand: title, formula, result [SI], its kind."""
+    """One line of a calculation that can be followed by hand: title, formula, result [SI], its kind.
+
+    ``kind`` is a kind of quantity, or ``"count"`` for whole numbers.
+    """
 
     step: str
     formula: Words
