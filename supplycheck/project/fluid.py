@@ -10,12 +10,12 @@ from supplycheck.errors import DomainError
 from supplycheck.hydraulics.water import water_density, water_viscosity
 from supplycheck.model import HEAD_FORM, Fluid, FrictionLaw
 from supplycheck.model.fluid import HEAD_FORM_WEIGHT
-from supplycheck.project.criteria import Standard
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList
 from supplycheck.project.layout_parts import units_in
 from supplycheck.project.schema import FluidTable
 from supplycheck.project.sections import Sections
+from supplycheck.project.standard import Standard
 from supplycheck.units import GRAVITY, UNIT_SETS, UnitSet
 
 ROOM: Final = 293.15

@@ -23,7 +23,7 @@ from supplycheck.model import (
     System,
 )
 from supplycheck.model.system import Origin
-from supplycheck.project.criteria import CriteriaReader, Standard, read_laws, read_standard
+from supplycheck.project.criteria import CriteriaReader
 from supplycheck.project.drafts import DraftSystem, Notes
 from supplycheck.project.duties import NO_HOSE, criteria_table, read_duties, with_duration
 from supplycheck.project.faults import FaultList, quoted
@@ -35,6 +35,7 @@ from supplycheck.project.layout_parts import units_in
 from supplycheck.project.network_tables import read_network
 from supplycheck.project.parts import KindReader, kinds_by_name, read_devices, read_extra, read_sprinklers
 from supplycheck.project.sections import Sections, read_sections
+from supplycheck.project.standard import Standard, read_laws, read_standard
 from supplycheck.project.supply import SupplyReader
 from supplycheck.project.system import Finisher, finish
 from supplycheck.project.tags import TagCheck
