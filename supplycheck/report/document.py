@@ -63,7 +63,7 @@ class Row:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """A table whose header repeats on each page; ``empty`` is printed where it has no row."""
+    """A table whose header repeats on each page; without rows it is a line, ``empty`` behind its title."""
 
     title: str
     columns: tuple[Column, ...]
@@ -71,6 +71,17 @@ class Table:
     note: str = ""
     empty: str = "none"
     size: float = 7.0
+
+
+def without_rows(table: Table) -> str:
+    """Return the one line that stands for a table without rows.
+
+    >>> without_rows(Table("Adjustments", (), (), empty="none in the project"))
+    'Adjustments: none in the project.'
+    """
+    return (
+        f"{table.title}: {table.empty}." if table.title else f"{table.empty[:1].upper()}{table.empty[1:]}."
+    )
 
 
 @dataclass(frozen=True, slots=True)

@@ -17,6 +17,7 @@ from supplycheck.report.document import (
     Paragraph,
     Table,
     Verdict,
+    without_rows,
 )
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.theme import INK, MIST, PETROL, RULE, SLATE, VERDICT_COLOURS, text_width
@@ -124,6 +125,8 @@ def _verdict(block: Verdict) -> str:
 
 
 def _table(block: Table) -> str:
+    if not block.rows:
+        return f"<p>{_safe(without_rows(block))}</p>"
     head = "".join(
         f'<th class="{"n" if column.right else ""}" scope="col">{_safe(column.title)}'
         + (f"<small>{_safe(column.unit)}</small>" if column.unit else "")
@@ -140,8 +143,6 @@ def _table(block: Table) -> str:
         rows.append(f'<tr class="{"strong" if row.strong else ""}">{cells}</tr>')
         if row.note:
             rows.append(f'<tr class="note"><td colspan="{span}">{_safe(row.note)}</td></tr>')
-    if not rows:
-        rows.append(f'<tr class="note"><td colspan="{span}">{_safe(block.empty)}</td></tr>')
     caption = f"<caption>{_safe(block.title)}</caption>" if block.title else ""
     note = f'<p class="quiet">{_safe(block.note)}</p>' if block.note else ""
     body = "\n".join(rows)

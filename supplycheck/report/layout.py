@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Final
 
 from supplycheck.report.document import (
@@ -17,9 +18,9 @@ from supplycheck.report.document import (
     Table,
     Verdict,
 )
-from supplycheck.report.drawing import Box, Item, Label, Line
+from supplycheck.report.drawing import Box, Drawing, Item, Label, Line
 from supplycheck.report.sheet import Sheet, Sheets
-from supplycheck.report.sheet_table import put_table
+from supplycheck.report.sheet_table import opening_height, put_table
 from supplycheck.report.theme import CLAY, INK, MIST, PAPER, PETROL, RULE, SLATE, VERDICT_COLOURS
 from supplycheck.report.wrapping import Ruler, wrap
 
@@ -51,7 +52,7 @@ def _section(sheets: Sheets, section: Section, number: int) -> None:
     if section.landscape != sheets.landscape or (section.fresh and used > _LITTLE):
         sheets.turn(section.landscape)
     if number > 0:
-        sheets.need(max(96.0, 48.0 + _start_height(section)))
+        sheets.need(max(96.0, 42.0 + _opening_height(sheets, section.blocks)))
         if not sheets.is_fresh:
             sheets.y -= 14
         sheets.sheet.entries.append((section.title, sheets.y))
@@ -62,19 +63,42 @@ def _section(sheets: Sheets, section: Section, number: int) -> None:
         sheets.sheet.entries.append((section.title, sheets.top))
     for place, block in enumerate(section.blocks):
         if isinstance(block, Heading):
-            after = section.blocks[place + 1] if place + 1 < len(section.blocks) else None
-            sheets.need(20 + min(_facts_height(sheets, after), 200) if isinstance(after, Facts) else 48)
+            sheets.need(_opening_height(sheets, section.blocks[place:]))
         _block(sheets, block)
 
 
-def _start_height(section: Section) -> float:
-    """Return the room that a figure at the start of ``section`` takes, as it has to follow the title."""
+_MOST_KEPT: Final = 0.9
+"""Share of a page that is kept together at most, from a heading to the first rows below it."""
+
+
+def _opening_height(sheets: Sheets, blocks: Sequence[Block]) -> float:
+    """Return the room that ``blocks`` take down to the first rows, figure or item of a list.
+
+    A heading, and the sentences between it and what it heads, are never parted from it.
+    """
     height = 0.0
-    for block in section.blocks[:3]:
-        if isinstance(block, Figure):
-            return height + block.drawing.height + 30.0
-        height += 36.0
-    return 0.0
+    for block in blocks:
+        match block:
+            case Heading():
+                height += 4 + 9.4 * 1.38 + 2
+            case Paragraph():
+                size = _SIZES[block.tone]
+                height += len(wrap(block.text, sheets.room, size, sheets.ruler)) * size * 1.38 + 3
+                if block.bullet:
+                    break
+            case Facts():
+                height += min(_facts_height(sheets, block), 200.0)
+                break
+            case Table():
+                height += opening_height(sheets, block)
+                break
+            case Figure():
+                height += 0.0 if block.if_room else _figure_height(sheets, block, block.drawing)
+                break
+            case _:
+                height += 40.0
+                break
+    return min(height, _MOST_KEPT * (sheets.top - sheets.bottom))
 
 
 def _block(sheets: Sheets, block: Block) -> None:
@@ -163,10 +187,14 @@ def _facts(sheets: Sheets, block: Facts) -> None:
     sheets.y -= 6
 
 
+def _figure_height(sheets: Sheets, block: Figure, drawing: Drawing) -> float:
+    caption = wrap(block.caption, sheets.room, 7.0, sheets.ruler) if block.caption else []
+    return drawing.height + 18 + len(caption) * 9.7
+
+
 def _figure(sheets: Sheets, block: Figure) -> None:
     drawing = block.drawing
-    caption = wrap(block.caption, sheets.room, 7.0, sheets.ruler) if block.caption else []
-    height = drawing.height + 18 + len(caption) * 9.7
+    height = _figure_height(sheets, block, drawing)
     if block.smaller is not None and sheets.y - height < sheets.bottom:
         height -= drawing.height - block.smaller.height
         drawing = block.smaller

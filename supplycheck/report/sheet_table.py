@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
-from supplycheck.report.document import Column, Row, Table
+from supplycheck.report.document import Column, Row, Table, without_rows
 from supplycheck.report.drawing import Box, Item, Label, Line
 from supplycheck.report.sheet import Sheets
 from supplycheck.report.theme import INK, MIST, PETROL, RULE, SLATE
@@ -17,6 +17,9 @@ GUTTER: Final = 7.0
 LEAST: Final = 24.0
 TOGETHER: Final = 6
 """Tables of so few rows are not broken over pages."""
+KEPT: Final = 2
+"""So many rows of a longer table stay with its header, and with the heading above it."""
+_MEASURED: Final = 200
 
 _Laid = tuple[int, Row, list[list[str]], list[str]]
 
@@ -43,23 +46,47 @@ class _Grid:
         return tuple(width - inset - PAD for width, inset in zip(self.widths, self.insets, strict=True))
 
 
+def opening_height(sheets: Sheets, table: Table) -> float:
+    """Return the room that the start of ``table`` takes: title, header, and the rows kept with them."""
+    if not table.rows:
+        return 8.4 * 1.38
+    grid = _grid(replace(table, rows=table.rows[:_MEASURED]), sheets.room, sheets.ruler)
+    head = _header_lines(table.columns, grid, sheets.ruler)
+    rows = table.rows[: TOGETHER + 1]
+    laid = [_laid(number, row, grid, sheets.ruler) for number, row in enumerate(rows)]
+    return _opening(table, head, grid, laid, _note_height(sheets, table))
+
+
+def _opening(
+    table: Table, head: list[tuple[list[str], str]], grid: _Grid, laid: list[_Laid], below: float
+) -> float:
+    """Return the height of title, header and the first rows, of a short table that of all of it."""
+    first = laid if len(laid) <= TOGETHER else laid[:KEPT]
+    rows = sum(_row_height(one, grid) for one in first)
+    title = 14.6 if table.title else 0.0
+    return title + _header_height(head, grid) + rows + (below if first is laid else 0.0)
+
+
+def _note_height(sheets: Sheets, table: Table) -> float:
+    lines = wrap(table.note, sheets.room, 6.6, sheets.ruler) if table.note else []
+    return 4 + len(lines) * 6.6 * 1.38 if lines else 0.0
+
+
 def put_table(sheets: Sheets, table: Table) -> None:
-    """Write ``table`` from the cursor down."""
+    """Write ``table`` from the cursor down; one without rows takes a line."""
+    if not table.rows:
+        sheets.text(without_rows(table), 8.4, colour=INK)
+        sheets.y -= 8
+        return
     grid = _grid(table, sheets.room, sheets.ruler)
     head = _header_lines(table.columns, grid, sheets.ruler)
-    height = _header_height(head, grid)
     laid = [_laid(number, row, grid, sheets.ruler) for number, row in enumerate(table.rows)]
-    rows = sum(_row_height(one, grid) for one in laid) if len(laid) <= TOGETHER else 3.2 * grid.leading
-    below = 4 + len(wrap(table.note, sheets.room, 6.6, sheets.ruler)) * 6.6 * 1.38 if table.note else 0.0
-    rows += below if len(laid) <= TOGETHER else 0.0
-    sheets.need(height + rows + (14 if table.title else 0))
+    below = _note_height(sheets, table)
+    sheets.need(_opening(table, head, grid, laid, below))
     _title(sheets, table.title)
     _header(sheets, table.columns, head, grid)
-    if not table.rows:
-        sheets.text(table.empty, grid.size, colour=SLATE, indent=PAD)
-    for one in laid:
-        last = one is laid[-1] and sheets.y - _row_height(one, grid) - below < sheets.bottom
-        if last and not _is_below_header(sheets, head, grid):  # a note never stands alone on a page
+    for place, one in enumerate(laid):
+        if _ends_alone(sheets, laid[place:], grid, below) and not _is_below_header(sheets, head, grid):
             _go_on(sheets, table, head, grid)
         _row(sheets, table, head, grid, one)
     sheets.put(Line(((sheets.left, sheets.y), (sheets.left + grid.total, sheets.y)), SLATE, 0.6))
@@ -67,6 +94,13 @@ def put_table(sheets: Sheets, table: Table) -> None:
     if table.note:
         sheets.text(table.note, 6.6, colour=SLATE)
     sheets.y -= 8
+
+
+def _ends_alone(sheets: Sheets, left: list[_Laid], grid: _Grid, below: float) -> bool:
+    """True where the last row, or the note, would stand alone on the next page if the rows went on here."""
+    if len(left) > 2:
+        return False
+    return sheets.y - sum(_row_height(one, grid) for one in left) - below < sheets.bottom
 
 
 def _laid(number: int, row: Row, grid: _Grid, ruler: Ruler) -> _Laid:

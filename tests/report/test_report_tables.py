@@ -2,17 +2,38 @@
 
 from __future__ import annotations
 
-from supplycheck.report.document import Column, Document, Row, Section, Table
-from supplycheck.report.drawing import Label
+import pytest
+
+from supplycheck.report.document import (
+    Block,
+    Column,
+    Document,
+    Facts,
+    Figure,
+    Heading,
+    Paragraph,
+    Row,
+    Section,
+    Table,
+)
+from supplycheck.report.drawing import Drawing, Label
+from supplycheck.report.html import html_text
 from supplycheck.report.layout import lay_out
 from supplycheck.report.pdf import FontRuler
 from supplycheck.report.sheet import Sheet
 from supplycheck.report.show import without_empty
 
 
+def _document(*sections: Section) -> Document:
+    return Document("title", "", "2026-11-20", "letter", "standing", "producer", sections)
+
+
 def _pages(*sections: Section) -> list[Sheet]:
-    document = Document("title", "", "2026-11-20", "letter", "standing", "producer", sections)
-    return lay_out(document, FontRuler())
+    return lay_out(_document(*sections), FontRuler())
+
+
+def _rows(count: int, name: str = "row") -> Table:
+    return Table("", (Column("A"),), tuple(Row((f"{name} {place}",)) for place in range(count)))
 
 
 def _texts(sheet: Sheet) -> list[str]:
@@ -54,3 +75,50 @@ def test_a_short_section_shares_its_page_and_a_long_one_does_not() -> None:
     after = Section("After", (table(3),), fresh=True)
     assert len(_pages(Section("The answer", (table(8),)), after)) == 1
     assert len(_pages(Section("The answer", (table(35),)), after)) == 2
+
+
+WHAT_FOLLOWS: dict[str, tuple[tuple[Block, ...], str]] = {
+    "a short table": ((_rows(3, "own"),), "own 2"),
+    "a long table": ((_rows(90, "own"),), "own 1"),
+    "a sentence and a table": ((Paragraph("said of it"), _rows(3, "own")), "own 2"),
+    "two sentences and a long table": ((Paragraph("one"), Paragraph("two"), _rows(90, "own")), "own 1"),
+    "facts": ((Facts((("label", "value"), ("last label", "value"))),), "last label"),
+    "a figure": ((Figure("", Drawing(100.0, 160.0, (Label(0, 0, "foot of it"),))),), "foot of it"),
+}
+
+
+@pytest.mark.parametrize("blocks, last", WHAT_FOLLOWS.values(), ids=list(WHAT_FOLLOWS))
+def test_a_heading_is_never_parted_from_what_it_heads(blocks: tuple[Block, ...], last: str) -> None:
+    """Wherever on the page it falls: the heading stands on the page of the first rows below it."""
+    for used in range(2, 70):
+        for page in _pages(Section("The answer", (_rows(used), Heading("heading of it"), *blocks))):
+            assert ("heading of it" in _texts(page)) == (last in _texts(page))
+
+
+def test_the_title_of_a_section_is_never_parted_from_its_first_rows() -> None:
+    for used in range(2, 70):
+        first = Section("The answer", (_rows(used),))
+        second = Section("Title of it", (Paragraph("said of it"), _rows(90, "own")))
+        for page in _pages(first, second):
+            assert ("Title of it" in _texts(page)) == ("own 1" in _texts(page))
+
+
+def test_no_row_goes_over_to_a_page_alone() -> None:
+    for count in range(8, 150):
+        pages = [
+            [text for text in _texts(page) if text.startswith("row ")]
+            for page in _pages(Section("The answer", (_rows(count),)))
+        ]
+        assert all(len(rows) > 1 for rows in pages)
+        assert [row for rows in pages for row in rows] == [f"row {place}" for place in range(count)]
+
+
+def test_a_table_without_rows_is_one_line_without_a_header() -> None:
+    table = Table("Adjustments of the curve", (Column("What it does"),), (), empty="none in the project")
+    section = Section("The answer", (table,))
+    texts = _texts(_pages(section)[0])
+    assert "Adjustments of the curve: none in the project." in texts
+    assert "What it does" not in texts
+    page = html_text(_document(section))
+    assert "Adjustments of the curve: none in the project." in page
+    assert "What it does" not in page
