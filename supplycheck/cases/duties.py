@@ -10,7 +10,7 @@ from typing import Final
 
 from supplycheck.cases.greatest_flow import at_rest, hydrant_rows
 from supplycheck.cases.ground import Ground
-from supplycheck.cases.loads import load_of, required_of
+from supplycheck.cases.loads import Draws, load_of, required_of
 from supplycheck.demand.duties import DutyCase
 from supplycheck.demand.hydrants import hydrant_cases
 from supplycheck.demand.outflows import asked_at_nodes, outflow_cases, with_asked
@@ -121,7 +121,8 @@ def _solve(
         else:
             open_cases.append(one)
     policy = ground.project.criteria.velocity_pressure
-    questions = [(load_of(ground.project, one.case), required_of(one.case)) for one in open_cases]
+    draws = Draws.of(ground.project)
+    questions = [(draws.load(one.case), required_of(one.case)) for one in open_cases]
     node = ground.project.supply.compare_at
     at = node if all(node in tags for tags in reached.values()) else None
     summaries = demand_many(ground.network, questions, ground.sources, velocity_pressure=policy, at=at)
@@ -277,7 +278,8 @@ def _connection(ground: Ground, cases: Sequence[DutyCase]) -> ConnectionRow | No
     if duty is None or duty.connection is None:
         return None
     fed = [one for one in cases if one.case.duty == "standpipes" and one.kind != "with sprinklers"]
-    questions = [(load_of(ground.project, one.case), required_of(one.case)) for one in fed]
+    draws = Draws.of(ground.project)
+    questions = [(draws.load(one.case), required_of(one.case)) for one in fed]
     source = SourceCurve(duty.connection, 0.0)
     try:
         answers = demand_many(ground.network, questions, [source])

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from types import MappingProxyType
 
 from supplycheck.model import DemandCase, Project
@@ -11,13 +11,31 @@ from supplycheck.network import LoadCase
 from supplycheck.supply import hose_loads
 
 
+@dataclass(frozen=True, slots=True)
+class Draws:
+    """What a project draws whatever its case [m³/s]: hose where a case takes it, and outflows at nodes."""
+
+    hose: Mapping[str, float]
+    fixed: Mapping[str, float]
+
+    @classmethod
+    def of(cls, project: Project) -> Draws:
+        """Return the draws of ``project``; raises :class:`DomainError` where its hose joins nowhere."""
+        fixed = {node.tag: node.fixed_flow for node in project.system.nodes if node.fixed_flow}
+        return cls(hose_loads(project), MappingProxyType(fixed))
+
+    def load(self, case: DemandCase) -> LoadCase:
+        """Return what flows in ``case``: heads, outlets, hose, and all fixed outflows, each once."""
+        flows: dict[str, float] = dict(self.hose) if case.with_hose else {}
+        outlets = ((one.node, one.flow) for one in case.outlets)
+        for tag, flow in (*self.fixed.items(), *case.flows, *outlets):
+            flows[tag] = flows.get(tag, 0.0) + flow
+        return LoadCase(case.heads, MappingProxyType(flows), case.closed_pipes)
+
+
 def load_of(project: Project, case: DemandCase) -> LoadCase:
-    """Return what flows in ``case``: heads, outlets, hose, and all other fixed outflows, each once."""
-    flows: dict[str, float] = dict(hose_loads(project)) if case.with_hose else {}
-    drawn = [(node.tag, node.fixed_flow) for node in project.system.nodes if node.fixed_flow]
-    for tag, flow in (*drawn, *case.flows, *((one.node, one.flow) for one in case.outlets)):
-        flows[tag] = flows.get(tag, 0.0) + flow
-    return LoadCase(case.heads, MappingProxyType(flows), case.closed_pipes)
+    """Return what flows in the one ``case`` of ``project``."""
+    return Draws.of(project).load(case)
 
 
 def required_of(case: DemandCase) -> Mapping[str, float]:

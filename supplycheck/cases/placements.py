@@ -8,7 +8,7 @@ from typing import Final
 
 import numpy as np
 
-from supplycheck.cases.loads import load_of, required_of
+from supplycheck.cases.loads import Draws, required_of
 from supplycheck.demand import Candidates
 from supplycheck.model import DemandCase, Project
 from supplycheck.network import DemandSummary, Network, SourceCurve, demand_many, solve_operating
@@ -36,7 +36,8 @@ def try_all(
     cases = candidates.cases
     if not cases:
         return Tried((), None, None, 0, None)
-    loads = [(load_of(project, case), required_of(case)) for case in cases]
+    draws = Draws.of(project)
+    loads = [(draws.load(case), required_of(case)) for case in cases]
     policy, at = project.criteria.velocity_pressure, project.supply.compare_at
     summaries = demand_many(network, loads, sources, progress, velocity_pressure=policy, at=at)
     spots = spots_of(project)
@@ -101,11 +102,12 @@ def _favourable(
     resistance = [one.source_pressure / one.total_flow**2 for one in summaries]
     rows = np.argsort(resistance, kind="stable")[:FAVOURABLE].tolist()
     best: Favourable | None = None
+    draws = Draws.of(project)
     for row in rows:
         case = candidates.cases[row]
         state = solve_operating(
             network,
-            load_of(project, case),
+            draws.load(case),
             sources,
             velocity_pressure=project.criteria.velocity_pressure,
         )
