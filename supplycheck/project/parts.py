@@ -14,7 +14,7 @@ from supplycheck.model import Device, FrictionLaw, PipeKind, Sprinkler
 from supplycheck.project.drafts import Notes
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.layout_parts import units_in
-from supplycheck.project.plausible import LARGEST_DIP, check_k_factor
+from supplycheck.project.plausible import LARGEST_DIP, check_k_factor, check_roughness
 from supplycheck.project.pumps import PUMP_KEYS, PumpReader
 from supplycheck.project.schema_system import DeviceTable, PipeTable, SprinklerTable
 from supplycheck.project.sections import Sections
@@ -134,6 +134,12 @@ class KindReader:
 
     def _roughness(self, name: str, table: PipeTable, units: UnitSet) -> tuple[float | None, str]:
         if table.roughness is not None:
+            try:
+                typical = catalogue.roughness(table.material).value
+            except (NotInCatalogueError, DomainError):
+                typical = None
+            place = self.sections.place(f"pipe.{name}.roughness")
+            check_roughness(table.roughness, units, typical, place, self.faults)
             return table.roughness.si(units), table.source or OWN
         if not self.needs_roughness:
             return None, ""

@@ -13,7 +13,8 @@ from typing import Final
 
 from supplycheck.findings import Place
 from supplycheck.project.faults import FaultList
-from supplycheck.units import METRIC, US, UnitSet
+from supplycheck.project.quantity import Written
+from supplycheck.units import METRIC, US, UnitSet, units_of
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,6 +53,12 @@ LARGEST_K: Final = Limit("k_factor", 50, 720)
 57 L/min/bar½, must not pass as a US one."""
 LARGEST_OUTLET: Final = Limit("size", 6, 160)
 """Pumper outlets are 4 to 6 in (from memory)."""
+ROUGHEST: Final = Limit("roughness", 0.01, 3, 2)
+"""Riveted steel and rough concrete end there in tables of roughness (from memory)."""
+ROUGHEST_OF_BORE: Final = 1 / 20
+"""Greatest relative roughness of the chart of friction factors (Moody 1944, from memory)."""
+UNLIKE: Final = 5.0
+"""A roughness as many times that of its material is asked about where another unit makes it fit."""
 LARGEST_DIP: Final = 0.25
 """Share of its highest loss by which the loss of a device may fall: a spring-loaded check that opens."""
 FIRST_TEST: Final = dt.date(1950, 1, 1)
@@ -64,6 +71,7 @@ LIMITS: Final = (
     ("date of a test", "from 1950 to the date of the project or the day of submittal"),
     ("water level, from its node", f"at most {FARTHEST_WATER.both} above or below"),
     ("K-factor of a sprinkler", f"{SMALLEST_K.both} to {LARGEST_K.both}"),
+    ("roughness of a pipe", f"below {ROUGHEST.both}; at most a twentieth of the bore"),
     ("density", f"{LEAST_DENSITY.both} to {GREATEST_DENSITY.both}"),
     ("distance of heads, and of lines", f"at least {CLOSEST.both}"),
     ("elevations of a layout", f"at most {FARTHEST_HEAD.both} apart"),
@@ -72,6 +80,9 @@ LIMITS: Final = (
 """What is bounded, and the bound in words; for the page of the project file."""
 
 _NEAR: Final = 1 + 1e-9
+_ABOUT: Final = 0.15
+"""Share by which a roughness differs between tables: 0.045 and 0.05 mm are printed for the same steel."""
+_ROUGHNESS_REMEDY: Final = 'check the decimal point and state the unit, as in "0.0018 in" or "0.045 mm"'
 
 
 def check_k_factor(value: float, units: UnitSet, place: Place, faults: FaultList) -> None:
@@ -94,6 +105,53 @@ def check_k_factor(value: float, units: UnitSet, place: Place, faults: FaultList
         allowed=f"{SMALLEST_K.text(units)} to {LARGEST_K.text(units)}",
         remedy=remedy,
     )
+
+
+def check_roughness(
+    written: Written, units: UnitSet, typical: float | None, place: Place, faults: FaultList
+) -> None:
+    """Note a roughness that no pipe has, or a bare number that fits its material in another unit only.
+
+    ``typical`` [m] is the roughness of the material by the catalogue, ``None`` where it has none.
+    """
+    value = written.si(units)
+    too_rough = value >= ROUGHEST.si(units) / _NEAR
+    fits = [
+        unit.symbol
+        for unit in (units_of("size") + units_of("length") if written.unit is None else ())
+        if typical and value > 0 and abs(unit.to_si(written.number) / typical - 1) < _ABOUT
+    ]
+    unlike = bool(typical) and value > 0 and not 1 / UNLIKE < value / (typical or 1.0) < UNLIKE
+    if not (too_rough or (fits and unlike)):
+        return
+    symbol = units.symbol("roughness")
+    remedy = f'state the unit: roughness = "{written.number:g} {fits[0]}"' if fits else _ROUGHNESS_REMEDY
+    allowed = f"less than {ROUGHEST.si(units) / units.unit('roughness').factor:g} {symbol}"
+    if typical:
+        known = units.from_si(typical, "roughness")
+        allowed += f"; the catalogue has {known:.2g} {symbol} for this material"
+    faults.add(
+        place,
+        "is too rough for a pipe" if too_rough else "does not fit the material in this unit",
+        found=written.text(units) + (f", a bare number being in {symbol}" if written.unit is None else ""),
+        allowed=allowed,
+        remedy=remedy,
+    )
+
+
+def check_relative_roughness(
+    written: Written, bore: float, units: UnitSet, place: Place, faults: FaultList
+) -> None:
+    """Note a roughness of more than a twentieth of the smallest ``bore`` [m] that has it."""
+    if written.si(units) > ROUGHEST_OF_BORE * bore * _NEAR:
+        faults.add(
+            place,
+            "is too rough for the bore",
+            found=written.text(units),
+            allowed=f"at most {units.text(ROUGHEST_OF_BORE * bore, 'size')}, a twentieth of the bore of "
+            f"{units.text(bore, 'size')}",
+            remedy=_ROUGHNESS_REMEDY,
+        )
 
 
 def check_density(value: float | None, units: UnitSet, place: Place, faults: FaultList) -> None:

@@ -15,6 +15,7 @@ from typing import Annotated, Any, Final, Literal
 from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
+from supplycheck.project.dates import ALLOWED, date_problem, date_remedy
 from supplycheck.project.faults import quoted
 from supplycheck.units import METRIC, US, Unit, UnitSet, find_unit, units_of
 
@@ -294,10 +295,10 @@ class _DateRule:
                 "number",
                 "{problem}",
                 {
-                    "problem": "is not a date",
+                    "problem": date_problem(str(value)),
                     "found": quoted(value),
-                    "allowed": "year-month-day, for example 2026-06-01",
-                    "remedy": "",
+                    "allowed": ALLOWED,
+                    "remedy": date_remedy(str(value)),
                 },
             ) from None
 

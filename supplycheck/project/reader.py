@@ -24,6 +24,7 @@ from supplycheck.model import (
 )
 from supplycheck.model.system import Origin
 from supplycheck.project.criteria import CriteriaReader
+from supplycheck.project.dates import ALLOWED, date_problem, date_remedy, unquoted_date
 from supplycheck.project.drafts import DraftSystem, Notes
 from supplycheck.project.duties import NO_HOSE, criteria_table, read_duties, with_duration
 from supplycheck.project.faults import FaultList, quoted
@@ -73,6 +74,16 @@ def _parse(text: str, name: str, faults: FaultList) -> dict[str, Any] | None:
             what = f"[{'.'.join(keys)}]" if twice else "a key"
             remedy = "keep one of them" + ("; a list of them is written [[…]]" if twice else "")
             faults.add(Place(name, where), f"{what} stands twice", found=quoted(line), remedy=remedy)
+            return None
+        day = unquoted_date(line)
+        if day:
+            faults.add(
+                Place(name, where),
+                date_problem(day),
+                found=quoted(line),
+                allowed=ALLOWED,
+                remedy=date_remedy(day),
+            )
             return None
         faults.add(
             Place(name, where),

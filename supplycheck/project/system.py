@@ -15,7 +15,9 @@ from supplycheck.project.faults import FaultList, listed, quoted
 from supplycheck.project.fittings import Lengths, PipeSize, WrittenFitting, parse
 from supplycheck.project.geometry import infer
 from supplycheck.project.graph import islands, tree_from
+from supplycheck.project.layout_parts import units_in
 from supplycheck.project.parts import DeviceOrLength, KindOfPipe
+from supplycheck.project.plausible import check_relative_roughness
 from supplycheck.project.sections import Sections
 from supplycheck.units import UNIT_SETS, UnitSet
 
@@ -290,6 +292,19 @@ def _note_bores(
         notes.add(f"pipe.{name}: bores", text, "catalogue", "; ".join(sources.get(name, ())))
 
 
+def _check_roughness(pipes: Sequence[Pipe], finisher: Finisher, faults: FaultList) -> None:
+    """Note a roughness written for a kind of pipe that is too large for the smallest bore in use."""
+    smallest: dict[str, Pipe] = {}
+    for pipe in pipes:
+        if math.isfinite(pipe.bore):
+            smallest[pipe.kind] = min(smallest.get(pipe.kind, pipe), pipe, key=lambda one: one.bore)
+    for name, pipe in smallest.items():
+        table, place = finisher.sections.pipes.get(name), finisher.sections.place(f"pipe.{name}.roughness")
+        if table is not None and table.roughness is not None and not faults.touched(place):
+            units = units_in(table, UNIT_SETS[finisher.sections.units])
+            check_relative_roughness(table.roughness, pipe.bore, units, place, faults)
+
+
 def _note_idle_devices(drafts: Sequence[DraftPipe], finisher: Finisher, faults: FaultList) -> None:
     """Note devices that stand in no pipe: their loss would be forgotten."""
     used = {tag for draft in drafts for tag in draft.devices}
@@ -328,6 +343,7 @@ def finish(
         finisher.pipe(pipe, bore, nominal, charges.get(number, ()))
         for number, (pipe, (bore, nominal)) in enumerate(zip(draft.pipes, sizes, strict=True))
     ]
+    _check_roughness(pipes, finisher, faults)
     if draft.complete:
         _note_idle_devices(draft.pipes, finisher, faults)
     if not faults:
