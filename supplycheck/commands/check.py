@@ -51,7 +51,8 @@ def command(projects: tuple[Path, ...], out: Path | None, as_json: bool, no_file
     from supplycheck.commands.portfolio import is_portfolio, run_portfolio
 
     if is_portfolio(projects):
-        sys.exit(run_portfolio(projects, out, jobs=jobs, as_json=as_json, no_files=no_files))
+        options = ["--no-files"] if no_files else []
+        sys.exit(run_portfolio(projects, out, jobs=jobs, as_json=as_json, options=options))
     sys.exit(run(projects[0], out, as_json=as_json, no_files=no_files))
 
 

@@ -20,6 +20,16 @@ PROJECT: Final = "project.toml"
 CRASHED: Final = 4
 WRONG_USAGE: Final = 2
 _WORDS: Final = {2: "wrong usage", 3: "project faults", 4: "no result"}
+_OURS: Final = b"project,title,verdict,exit_code,"
+_COUNTED: Final = {
+    "adequate": "adequate",
+    "not adequate": "not adequate",
+    "undetermined": "undetermined",
+    "project faults": "with project faults",
+    "no result": "without a result",
+    "wrong usage": "not checked (wrong usage)",
+}
+"""Outcomes in the order in which the last line counts them, and the words that follow each number."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -33,7 +43,10 @@ class Job:
 
 @dataclass(frozen=True, slots=True)
 class Outcome:
-    """What became of a project: its exit code, the verdict or the problem, and its figures."""
+    """What became of a project: its exit code, the verdict or the problem, and its figures.
+
+    ``fails`` counts findings outside a limit, which do not change the verdict; ``written`` tells a package.
+    """
 
     job: Job
     code: int
@@ -46,6 +59,8 @@ class Outcome:
     available: float | None = None
     margin: float | None = None
     required: float | None = None
+    fails: int | None = None
+    written: bool = False
 
 
 def is_portfolio(projects: Sequence[Path]) -> bool:
@@ -98,48 +113,79 @@ def jobs_of(projects: Sequence[Path], out: Path | None) -> list[Job]:
 
 
 def run_portfolio(
-    projects: Sequence[Path], out: Path | None, *, jobs: int, as_json: bool, no_files: bool
+    projects: Sequence[Path], out: Path | None, *, jobs: int, as_json: bool, options: Sequence[str] = ()
 ) -> int:
-    """Check every project, print one line each, write the table and return the worst exit code."""
+    """Check every project, print one line each, write the table and return the worst exit code.
+
+    ``options`` are handed to the check of each project. Raises :class:`click.UsageError`, before any work,
+    where the table would overwrite a file that is not its own.
+    """
     work = jobs_of(projects, out)
+    home = out or (projects[0] if len(projects) == 1 else Path())
+    files = "--no-files" not in options
+    if files:
+        _guard(home / TABLE, work)
     wide = min(max((len(job.name) for job in work), default=0), 40)
     outcomes: list[Outcome] = []
     if not as_json:
-        click.echo(f"{len(work)} projects\n")
-        head = f"{'project':<{wide}}  {'verdict':<16}{'demand':>24}{'available':>14}{'margin':>12}"
+        head = (
+            f"{'project':<{wide}}  {'verdict':<16}{'demand':>24}{'available':>14}{'margin':>12}{'fails':>7}"
+        )
         click.echo(head)
-    for outcome in _outcomes(work, jobs, no_files):
+    for outcome in _outcomes(work, jobs, options):
         outcomes.append(outcome)
         if not as_json:
             click.echo(_line(outcome, wide))
     worst = max((outcome.code for outcome in outcomes), default=WRONG_USAGE)
-    home = out or (projects[0] if len(projects) == 1 else Path())
-    if not no_files:
+    if files:
         try:
             _write(home, outcomes)
         except OSError as error:
             click.echo(f"{TABLE} could not be written to {home}: {error.strerror}", err=True)
-            worst = max(worst, WRONG_USAGE)
+            files, worst = False, max(worst, WRONG_USAGE)
     if as_json:
         record = {"schema": 1, "worst": worst, "projects": [_plain(one) for one in outcomes]}
         click.echo(json.dumps(record, indent=2, ensure_ascii=False))
     else:
-        click.echo("\n" + _count(outcomes) + ("" if no_files else f" Table: {home / TABLE}"))
+        click.echo("\n".join(["", *_closing(outcomes, home / TABLE if files else None)]))
     return worst
 
 
-def _outcomes(work: Sequence[Job], jobs: int, no_files: bool) -> Iterator[Outcome]:
+def _guard(table: Path, work: Sequence[Job]) -> None:
+    """Raise :class:`click.UsageError` where ``table`` is there and is not a table of an earlier check."""
+    from supplycheck.project.files import files_named
+
+    choose = "choose another folder with --out."
+    if table.is_dir():
+        raise click.UsageError(f"{table} is a folder, where a table is to be written; {choose}")
+    if not table.exists():
+        return
+    for job in work:
+        if any(file.exists() and table.samefile(file) for file in files_named(job.path)):
+            raise click.UsageError(
+                f"{table} is a file of the project {job.name}, which would be overwritten; {choose}"
+            )
+    try:
+        with table.open("rb") as file:
+            ours = file.read(len(_OURS)) == _OURS
+    except OSError as error:
+        raise click.UsageError(f"{table} cannot be read ({error.strerror}); {choose}") from None
+    if not ours:
+        raise click.UsageError(
+            f"{table} was not written by supplycheck and would be overwritten; rename it, or {choose}"
+        )
+
+
+def _outcomes(work: Sequence[Job], jobs: int, options: Sequence[str]) -> Iterator[Outcome]:
     """Yield the outcomes in the order of ``work``, ``jobs`` processes at a time."""
     with ThreadPoolExecutor(jobs) as pool:
-        yield from pool.map(lambda job: check_one(job, no_files), work)
+        yield from pool.map(lambda job: check_one(job, options), work)
 
 
-def check_one(job: Job, no_files: bool) -> Outcome:
+def check_one(job: Job, options: Sequence[str] = ()) -> Outcome:
     """Check one project in a process of its own, which no fault of another can reach."""
     code = "from supplycheck.cli import run; run()"
-    arguments = ["check", str(job.path), "--out", str(job.folder), "--json"]
-    if no_files:
-        arguments.append("--no-files")
+    arguments = ["check", str(job.path), "--out", str(job.folder), "--json", *options]
     safe = {**os.environ, "PYTHONIOENCODING": "utf-8"}
     done = subprocess.run(
         [sys.executable, "-P", "-c", code, *arguments], capture_output=True, env=safe, check=False
@@ -154,10 +200,10 @@ def check_one(job: Job, no_files: bool) -> Outcome:
         problem = _problem(record, said) or f"the process ended with code {done.returncode}"
         code_of = done.returncode if known else CRASHED
         return Outcome(job, code_of, _WORDS[code_of], problem)
-    return _judged(job, done.returncode, record)
+    return _judged(job, done.returncode, record, written="--no-files" not in options)
 
 
-def _judged(job: Job, code: int, record: dict[str, Any]) -> Outcome:
+def _judged(job: Job, code: int, record: dict[str, Any], *, written: bool) -> Outcome:
     demand, supply, margin = record["demand"], record["supply"], record["margin"]
     return Outcome(
         job,
@@ -170,6 +216,8 @@ def _judged(job: Job, code: int, record: dict[str, Any]) -> Outcome:
         available=supply["available_pressure"],
         margin=margin["pressure"],
         required=margin["required"],
+        fails=sum(finding["state"] == "fail" for finding in record["findings"]),
+        written=written,
     )
 
 
@@ -184,7 +232,7 @@ def _problem(record: Any, said: str) -> str:
             return f"{place + ': ' if place else ''}{first['problem']}{more}"
         if record.get("message"):
             return str(record["message"])
-    return " ".join(said.split())[:400]
+    return " ".join(said.rpartition("Error: ")[2].split())[:400]
 
 
 def _line(outcome: Outcome, wide: int) -> str:
@@ -205,12 +253,30 @@ def _line(outcome: Outcome, wide: int) -> str:
     demand = f"{number(outcome.demand_flow, flow, 0)} at {number(outcome.demand, pressure, places)}"
     available = number(outcome.available, pressure, places)
     margin = number(outcome.margin, pressure, places)
-    return f"{name:<{wide}}  {outcome.verdict:<16}{demand:>24}{available:>14}{margin:>12}"
+    return f"{name:<{wide}}  {outcome.verdict:<16}{demand:>24}{available:>14}{margin:>12}{outcome.fails:>7}"
 
 
-def _count(outcomes: Sequence[Outcome]) -> str:
+def _closing(outcomes: Sequence[Outcome], table: Path | None) -> list[str]:
+    """Return what stands below the lines: what the counts mean, the table, and how many of each."""
+    lines = []
+    if any(outcome.fails for outcome in outcomes):
+        lines.append("Fails: findings outside a limit; the verdict speaks of pressure and flow alone.")
+    faulty = next((outcome for outcome in outcomes if not outcome.units), None)
+    if faulty is not None:
+        lines.append(
+            f"For all faults of a project check it alone: supplycheck check {_quoted(faulty.job.path)}"
+        )
+    if table is not None:
+        lines.append(f"Table: {table}")
     counts = Counter(outcome.verdict for outcome in outcomes)
-    return ", ".join(f"{count} {verdict}" for verdict, count in counts.items()) + "."
+    told = [f"{counts[verdict]} {words}" for verdict, words in _COUNTED.items() if counts[verdict]]
+    number = "1 project" if len(outcomes) == 1 else f"{len(outcomes)} projects"
+    return [*lines, f"{number}: {', '.join(told)}."]
+
+
+def _quoted(path: Path) -> str:
+    text = str(path)
+    return f'"{text}"' if " " in text else text
 
 
 def _plain(outcome: Outcome) -> dict[str, Any]:
@@ -226,10 +292,11 @@ def _plain(outcome: Outcome) -> dict[str, Any]:
         "available_pressure": outcome.available,
         "margin": outcome.margin,
         "margin_required": outcome.required,
+        "findings_failed": outcome.fails,
         "pressure_unit": outcome.units.get("pressure"),
         "problem": outcome.problem,
         "file": str(outcome.job.path),
-        "package": str(outcome.job.folder),
+        "package": str(outcome.job.folder) if outcome.written else "",
     }
 
 
@@ -240,4 +307,5 @@ def _write(home: Path, outcomes: Sequence[Outcome]) -> None:
     from supplycheck.results.tables import csv_text
 
     table = pd.DataFrame.from_records([_plain(outcome) for outcome in outcomes])
+    table["findings_failed"] = table["findings_failed"].astype("Int64")
     write_files(home, {TABLE: csv_text(table).encode()})

@@ -42,23 +42,28 @@ def test_one_line_each_a_table_and_the_worst_code(portfolio: Path) -> None:
     assert "adequate" in lines["north/depot"]
     assert "not adequate" in lines["workshop"]
     assert "project faults" in lines["broken"]
-    assert "2 adequate" in result.output
+    last = result.output.splitlines()[-1]
+    assert last == "4 projects: 2 adequate, 1 not adequate, 1 with project faults."
+    assert f"supplycheck check {portfolio / 'broken' / 'project.toml'}" in result.output
     with (portfolio / "portfolio.csv").open(encoding="utf-8", newline="") as file:
         table = {row["project"]: row for row in csv.DictReader(file)}
     assert list(table) == ["broken", "north/depot", "office", "workshop"]
     for name, row in table.items():
         folder = portfolio / name / "review"
-        assert Path(row["package"]) == folder
         if name == "broken":
-            assert not folder.exists()
+            assert row["package"] == "" and not folder.exists()
             assert "project.toml" in row["problem"]
             continue
+        assert Path(row["package"]) == folder
         answer = json.loads((folder / "result.json").read_text(encoding="utf-8"))
         assert (folder / "review.pdf").exists()
         assert row["verdict"] == answer["verdict"]
         assert float(row["margin"]) == answer["margin"]["pressure"]
         assert float(row["demand_flow"]) == answer["demand"]["flow"]
         assert float(row["available_pressure"]) == answer["supply"]["available_pressure"]
+        failed = [one for one in answer["findings"] if one["state"] == "fail"]
+        assert row["findings_failed"] == str(len(failed))
+        assert lines[name].split()[-1] == str(len(failed))
         assert row["pressure_unit"] == answer["units"]["pressure"]
 
 
@@ -98,6 +103,21 @@ def test_a_crash_is_no_verdict_and_reaches_no_other(
 ) -> None:
     job = Job("office", portfolio / "office" / "project.toml", tmp_path)
     monkeypatch.setenv("PYTHONHOME", str(tmp_path))  # the process cannot even start
-    outcome = check_one(job, no_files=True)
+    outcome = check_one(job, ["--no-files"])
     assert (outcome.code, outcome.verdict) == (CRASHED, "no result")
     assert outcome.problem
+
+
+def test_a_package_that_cannot_be_written_is_told_without_our_own_command_line(
+    portfolio: Path, tmp_path: Path
+) -> None:
+    """One project's refusal stops no other, and is told as the sentence that a person needs."""
+    home = tmp_path / "looped"
+    shutil.copytree(EXAMPLES / "looped-workshop", home, ignore=shutil.ignore_patterns("review"))
+    result = check(str(home), str(portfolio / "office"), "--out", str(tmp_path))
+    assert result.exit_code == 2
+    line = next(line for line in result.output.splitlines() if line.startswith("looped"))
+    assert "wrong usage" in line
+    assert "Usage:" not in result.output and "nodes.csv" in line
+    assert result.output.splitlines()[-1] == "2 projects: 1 adequate, 1 not checked (wrong usage)."
+    assert (tmp_path / "office" / "result.json").exists()
