@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import re
+from dataclasses import replace
 from functools import cache
 from pathlib import Path
 from typing import Any
@@ -14,11 +15,13 @@ from supplycheck.check import check_project
 from supplycheck.report.build import build_document
 from supplycheck.report.document import Facts, Figure, Heading, Paragraph, Section, Table
 from supplycheck.report.drawing import Label
+from supplycheck.report.figures.plan import whole_plan
 from supplycheck.report.sections.duties import duties
 from supplycheck.results.json import result_json
 from supplycheck.results.records import Result
 from supplycheck.results.screen import screen_text
 from supplycheck.results.tables import frames
+from supplycheck.units import US
 
 EXAMPLES = Path(__file__).parents[2] / "examples"
 YARD, TOWER = "yard-main", "tower-standpipe"
@@ -49,7 +52,7 @@ def test_only_where_there_are_hydrants_or_standpipes() -> None:
     assert section_of(YARD).title == "Hydrants"
     assert section_of(TOWER).title == "Standpipes"
     titles = [section.title for section in build_document(result_of(YARD)).sections]
-    assert titles.index("Hydrants") < titles.index("Plan and design area")
+    assert titles.index("Hydrants") < titles.index("Plan")
 
 
 def test_every_case_stands_in_the_table_with_the_numbers_of_the_record() -> None:
@@ -168,3 +171,53 @@ def test_tables_hold_every_case_outlet_and_hydrant() -> None:
     ]
     assert "hose_outlets" not in tables and len(frames(result_of(TOWER))["hose_outlets"]) == 50
     assert "cases" not in frames(result_of("office-floor"))
+
+
+LEGEND = {"head in the design area", "head", "other head", "supply", "design area", "shut pipe"}
+
+
+@pytest.mark.parametrize("name, outlets", [(YARD, "hydrant"), (TOWER, "outlet")])
+def test_a_plan_without_sprinklers_speaks_of_none(name: str, outlets: str) -> None:
+    section = next(one for one in build_document(result_of(name)).sections if one.title == "Plan")
+    words = {
+        item.text
+        for block in section.blocks
+        if isinstance(block, Figure)
+        for item in block.drawing.items
+        if isinstance(item, Label)
+    }
+    assert outlets in words
+    assert not words & (LEGEND - {"supply"})
+
+
+def test_the_legend_of_a_plan_holds_what_is_drawn() -> None:
+    result = result_of("parcel-depot")
+    hose = replace(
+        result, nodes=tuple(replace(n, kind="hose") if n.tag == "S" else n for n in result.nodes)
+    )
+    for one, drawn in ((result, {"supply"}), (hose, {"hose"})):
+        view = whole_plan(one, US, (522.0, 400.0))
+        words = {item.text for item in view.drawing.items if isinstance(item, Label)}
+        expected = {"head in the design area", "other head", "design area"}
+        expected |= drawn if "S" not in view.outside else set()
+        assert words & (LEGEND | {"hose", "hydrant", "outlet"}) == expected
+
+
+def test_pages_without_sprinklers_do_not_speak_of_a_design_area() -> None:
+    """Findings and the echo of the input apart, which say that it does not apply."""
+    for name in (YARD, TOWER):
+        sections = build_document(result_of(name)).sections
+        told = [one for one in sections if one.title not in ("Findings", "Input as read")]
+        assert "design area" not in repr(told).replace("the design area of", "")
+        flows = next(one for one in sections if one.title.startswith("What really flows"))
+        table = next(block for block in flows.blocks if isinstance(block, Table))
+        assert "Lowest head" not in [column.title for column in table.columns]
+
+
+def test_the_basis_names_the_section_that_holds_what_is_asked() -> None:
+    for name, title in ((YARD, "hydrants"), (TOWER, "standpipes")):
+        basis = next(
+            one for one in build_document(result_of(name)).sections if one.title == "Basis of design"
+        )
+        facts = [pair for block in basis.blocks if isinstance(block, Facts) for pair in block.pairs]
+        assert ("Sprinklers", f"none in this project; what is asked stands under {title}") in facts

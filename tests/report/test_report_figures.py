@@ -168,3 +168,27 @@ def test_placement_map_marks_the_governing_and_the_runner_up() -> None:
     assert "runner-up 57.5 psi" in words
     dots = [item for item in drawing.items if isinstance(item, Dot) and item.fill]
     assert len(dots) == len(result.design_area.placements) + 5
+
+
+@pytest.mark.parametrize("apart", [0.0, 0.2, 2.0, 30.0])
+def test_what_names_a_ring_of_the_map_stands_clear_of_every_ring(apart: float) -> None:
+    result = sample(lines=12, heads=6)
+    area = result.design_area
+    first = area.placements[0]
+    second = replace(area.placements[1], x=(first.x or 0.0) + apart, y=first.y)
+    placed = (first, second, *area.placements[2:])
+    result = replace(
+        result, design_area=replace(area, placements=placed, governing=first, runner_up=second)
+    )
+    drawing = placement_map(result, US, (522, 250))
+    assert drawing is not None
+    rings = [item for item in drawing.items if isinstance(item, Dot) and item.fill is None]
+    names = [item for item in drawing.items if isinstance(item, Label) and item.bold]
+    assert {name.text.split()[0] for name in names} == {"governing", "runner-up"}
+    for name in names:
+        wide = text_width(name.text, name.size, bold=True)
+        left = name.x - {"start": 0.0, "middle": wide / 2, "end": wide}[name.anchor]
+        for ring in rings[:-1]:  # the last one is that of the legend
+            across = max(left - ring.x, ring.x - left - wide, 0.0)
+            along = max(name.y - 0.24 * name.size - ring.y, ring.y - name.y - 0.8 * name.size, 0.0)
+            assert math.hypot(across, along) >= ring.radius + ring.line / 2 + 1.0

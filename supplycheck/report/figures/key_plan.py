@@ -6,6 +6,7 @@ from typing import Final
 
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Taken, plain, put_label, round_steps, short
+from supplycheck.report.figures.legends import in_a_row, outlet_words
 from supplycheck.report.figures.outline import Window
 from supplycheck.report.figures.plan import places_of
 from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, SAND, SLATE
@@ -57,7 +58,7 @@ def key_plan(result: Result, units: UnitSet, shown: Window, size: tuple[float, f
         if label is not None:
             items.append(label)
     return Drawing(
-        size[0], height, (*items, *_foot(factor, units, size[0])), "key plan of the whole system"
+        size[0], height, (*items, *_foot(factor, units, size[0], marked)), "key plan of the whole system"
     )
 
 
@@ -73,20 +74,22 @@ def _mark(node: NodeRow, x: float, y: float) -> list[Item]:
     return [Dot(x, y, 2.0, INK)]
 
 
-def _foot(factor: float, units: UnitSet, width: float) -> list[Item]:
+def _foot(factor: float, units: UnitSet, width: float, marked: list[NodeRow]) -> list[Item]:
     per_unit = factor * units.to_si(1.0, "length")
     length = round_steps(70.0 / per_unit, 1)[1]
     if length * per_unit > 130:
         length /= 2
     right = width - 4
     left = right - length * per_unit
+    outlets = outlet_words(marked)
+    entries: list[tuple[Line | Box, float, str]] = []
+    if any(node.kind == "supply" for node in marked):
+        entries.append((Line(((0, 3), (7, 3), (3.5, 10)), PAPER, 0.5, (), PETROL), 11.0, "supply"))
+    if outlets:
+        entries.append((Box(0, 3, 6, 6, SAND, INK, 0.6), 10.0, outlets))
+    entries.append((Box(0, 3, 12, 6, "#f4e9d2", CLAY, 0.6, (3.0, 2.0)), 16.0, "part shown in the plan"))
     return [
         Line(((left, 6), (right, 6)), INK, 1.4),
         Label(left - 5, 3.5, f"{plain(length)} {units.symbol('length')}", 6.4, "end"),
-        Line(((0, 3), (7, 3), (3.5, 10)), PAPER, 0.5, (), PETROL),
-        Label(11, 3.5, "supply", 6.4),
-        Box(44, 3, 6, 6, SAND, INK, 0.6),
-        Label(54, 3.5, "hose, hydrant, outlet", 6.4),
-        Box(132, 3, 12, 6, "#f4e9d2", CLAY, 0.6, (3.0, 2.0)),
-        Label(148, 3.5, "part shown in the plan", 6.4),
+        *in_a_row(entries, 3.5),
     ]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
 
@@ -19,6 +20,9 @@ MOST_STRETCH: Final = 2.5
 """The map is stretched to the width by so much at most: it compares placements and measures nothing."""
 
 _AROUND: Final = 4.0  # m
+_SIZE: Final = 6.6
+_CLEAR: Final = 5.0
+"""Room between a ring and the text that names it [points]."""
 _SHADES: Final = ("#e3eef0", "#b5d3d9", "#7fb2bd", "#3f8797", "#0b4a5a")
 
 
@@ -82,6 +86,54 @@ def _shade(value: float, bounds: list[float]) -> int:
     return next((i for i in range(len(_SHADES) - 1) if value < bounds[i + 1]), len(_SHADES) - 1)
 
 
+@dataclass(frozen=True, slots=True)
+class _Named:
+    """A placement that is named: where it stands, how far its ring reaches, what is written beside it."""
+
+    x: float
+    y: float
+    reach: float
+    text: str
+
+
+def _rings(result: Result, scale: Scale, units: UnitSet, radius: float) -> tuple[list[Item], list[_Named]]:
+    """Return the rings round the governing placement and the runner-up; one for both at one place."""
+    area = result.design_area
+    chosen = [(area.governing, "governing", radius + 3.2), (area.runner_up, "runner-up", radius + 2.2)]
+    rings: list[Item] = []
+    named: list[_Named] = []
+    for spot, word, reach in chosen:
+        if spot is None or spot.x is None or spot.y is None:
+            continue
+        x, y = scale.at(spot.x, spot.y)
+        over = [one.reach for one in named if math.hypot(x - one.x, y - one.y) < reach + one.reach]
+        if not over:
+            rings.append(Dot(x, y, reach, None, PAPER, 3.0))
+            rings.append(Dot(x, y, reach, None, CLAY if word == "governing" else INK, 1.8))
+        text = f"{word} {units.text(spot.required_pressure, 'pressure')}"
+        named.append(_Named(x, y, max([reach, *over]), text))
+    return rings, named
+
+
+def _named(mark: _Named, taken: Taken) -> list[Item]:
+    """Return the text beside a ring, clear of it, and a line to it where it had to stand apart."""
+    gap = mark.reach + _CLEAR
+    found = taken.place(mark.x, mark.y, mark.text, _SIZE, gap=gap, bold=True, reach="far", pad=_CLEAR / 2)
+    if found is None:
+        return []
+    at_x, at_y, anchor = found
+    wide = text_width(mark.text, _SIZE, bold=True)
+    left = at_x - {"start": 0.0, "middle": wide / 2, "end": wide}[anchor]
+    near = (min(max(mark.x, left), left + wide), min(max(mark.y, at_y), at_y + 0.75 * _SIZE))
+    far = math.hypot(near[0] - mark.x, near[1] - mark.y)
+    items: list[Item] = []
+    if far > 1.5 * gap:
+        share = (mark.reach + 0.9) / far
+        start = (mark.x + (near[0] - mark.x) * share, mark.y + (near[1] - mark.y) * share)
+        items.append(Line((start, near), INK, 0.4))
+    return [*items, Label(at_x, at_y, mark.text, _SIZE, anchor, True, INK, 0.0, PAPER)]
+
+
 def _spots(
     spots: list[Placement], result: Result, scale: Scale, units: UnitSet, size: tuple[float, float]
 ) -> list[Item]:
@@ -94,25 +146,11 @@ def _spots(
         x, y = scale.at(one.x or 0.0, one.y or 0.0)
         taken.take((x - radius, y - radius, x + radius, y + radius))
         items.append(Dot(x, y, radius, _SHADES[_shade(one.required_pressure, bounds)], INK, 0.4))
-    chosen = [(area.governing, "governing", radius + 3.2), (area.runner_up, "runner-up", radius + 2.2)]
-    rings: list[Item] = []
-    named: list[tuple[float, float, float, str]] = []
-    for spot, word, reach in chosen:
-        if spot is None or spot.x is None or spot.y is None:
-            continue
-        x, y = scale.at(spot.x, spot.y)
-        taken.take((x - reach - 1, y - reach - 1, x + reach + 1, y + reach + 1))
-        if not any(math.hypot(x - other[0], y - other[1]) < reach + other[2] for other in named):
-            rings.append(Dot(x, y, reach, None, PAPER, 3.0))
-            rings.append(Dot(x, y, reach, None, CLAY if word == "governing" else INK, 1.8))
-        named.append((x, y, reach, f"{word} {units.text(spot.required_pressure, 'pressure')}"))
-    labels: list[Item] = []
-    for x, y, reach, text in named:
-        found = taken.place(x, y, text, 6.6, gap=reach + 2.5, bold=True, reach="far")
-        if found:
-            near = found[1] + (5.0 if found[1] < y else 0.0)
-            labels.append(Line(((x, y + (reach if near > y else -reach)), (found[0], near)), INK, 0.4))
-            labels.append(Label(found[0], found[1], text, 6.6, found[2], True, INK, 0.0, PAPER))
+    rings, named = _rings(result, scale, units, radius)
+    for mark in named:
+        x, y, reach = mark.x, mark.y, mark.reach + 1
+        taken.take((x - reach, y - reach, x + reach, y + reach))
+    labels = [item for mark in named for item in _named(mark, taken)]
     if len(spots) <= MOST_NUMBERS:
         for one in spots:
             if one in {area.governing, area.runner_up}:

@@ -8,9 +8,9 @@ from typing import Final
 
 from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Reach, Taken, plain, put_label, round_steps, short
+from supplycheck.report.figures.legends import pipe_strokes, plan_legend
 from supplycheck.report.figures.outline import Window, cells_of_heads, clipped, outline_of
-from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, SAND, SLATE, text_width
-from supplycheck.results.display import nominal_text
+from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, SAND, SLATE
 from supplycheck.results.records import NodeRow, PipeRow, Result
 from supplycheck.units import UnitSet
 
@@ -22,7 +22,6 @@ CROWDED: Final = 2500
 _EDGE: Final = 16.0
 _BAR_ROOM: Final = 20.0
 _RING: Final = 3.6
-_RAMP: Final = ("#7fb2bd", "#4f94a3", "#2b7787", "#0b4a5a", "#16262e")
 
 
 @dataclass(frozen=True, slots=True)
@@ -171,7 +170,7 @@ def _view(
     tags, shown, wanted = _tags(result, inside, ground)
     items += tags
     items += _scale_bar(scale, units, width)
-    items += _legend(width)
+    items += plan_legend(inside, _some_shut(result, places, window))
     items += rings
     missing = tuple(node.tag for node in result.nodes if node.tag not in places)
     outside = tuple(tag for tag, place in places.items() if not window.holds(*place))
@@ -188,6 +187,14 @@ def _view(
     )
 
 
+def _some_shut(result: Result, places: Places, window: Window) -> bool:
+    """True where a shut pipe is drawn."""
+    ends = [
+        (places.get(pipe.start), places.get(pipe.end)) for pipe in result.pipes if pipe.valve == "closed"
+    ]
+    return any(start and end and start != end and clipped(start, end, window) for start, end in ends)
+
+
 def _area(result: Result, scale: Scale, taken: Taken) -> list[Item]:
     """Return the ground and the outline of the design area."""
     boxes = cells_of_heads(result.nodes)
@@ -201,19 +208,6 @@ def _area(result: Result, scale: Scale, taken: Taken) -> list[Item]:
         taken.take_line(*edge)
         items.append(Line(edge, CLAY, 1.2, (5.0, 2.5)))
     return items
-
-
-def pipe_strokes(pipes: tuple[PipeRow, ...]) -> dict[str, tuple[float, str]]:
-    """Return line width and colour by nominal size, wider and darker for a larger bore."""
-    bores: dict[str, float] = {}
-    for pipe in pipes:
-        bores[pipe.nominal] = max(bores.get(pipe.nominal, 0.0), pipe.bore)
-    ordered = sorted(bores, key=lambda nominal: (bores[nominal], nominal))
-    last = max(len(ordered) - 1, 1)
-    return {
-        nominal: (0.6 + 2.6 * place / last, _RAMP[round((len(_RAMP) - 1) * place / last)])
-        for place, nominal in enumerate(ordered)
-    }
 
 
 def _pipe(pipe: PipeRow, ground: _Ground, strokes: dict[str, tuple[float, str]]) -> list[Item]:
@@ -344,53 +338,3 @@ def _scale_bar(scale: Scale, units: UnitSet, width: float) -> list[Item]:
         Line(((right, 5), (right, 11)), INK, 0.8),
         Label(left - 5, 5.5, text, 6.6, "end"),
     ]
-
-
-def _legend(width: float) -> list[Item]:
-    entries = (
-        (Dot(4, 8, 2.3, CLAY, INK, 0.5), "head in the design area"),
-        (Dot(4, 8, 2.3, PAPER, INK, 0.5), "head"),
-        (Line(((0, 5), (8, 5), (4, 12)), PAPER, 0.5, (), PETROL), "supply"),
-        (Box(1, 5, 6, 6, SAND, INK, 0.6), "hose, hydrant, outlet"),
-        (Line(((0, 8), (14, 8)), CLAY, 1.2, (5.0, 2.5)), "design area"),
-    )
-    items: list[Item] = []
-    x = 0.0
-    for symbol, text in entries:
-        if isinstance(symbol, Dot):
-            items.append(
-                Dot(symbol.x + x, symbol.y, symbol.radius, symbol.fill, symbol.stroke, symbol.line)
-            )
-        elif isinstance(symbol, Box):
-            items.append(Box(x + 1, 5, 6, 6, symbol.fill, symbol.stroke, symbol.line))
-        else:
-            points = tuple((px + x, py) for px, py in symbol.points)
-            items.append(Line(points, symbol.stroke, symbol.width, symbol.dash, symbol.fill))
-        shift = 18 if text == "design area" else 11
-        items.append(Label(x + shift, 5.5, text, 6.4))
-        x += shift + text_width(text, 6.4) + 12
-    return items if x < width else items[:4]
-
-
-def size_legend(pipes: tuple[PipeRow, ...], units: UnitSet, width: float) -> Drawing:
-    """Return the legend of pipe sizes: a sample of the line, the nominal size, the bore or bores."""
-    strokes = pipe_strokes(pipes)
-    items: list[Item] = []
-    x, rows = 0.0, 1
-    placed: list[tuple[float, int, str, str]] = []
-    for nominal in strokes:
-        bores = sorted({pipe.bore for pipe in pipes if pipe.nominal == nominal})
-        inside = " / ".join(units.text(bore, "size") for bore in bores[:3])
-        text = f"{short(nominal_text(nominal, units), 120, 6.6)} ({inside})"
-        wide = 32 + text_width(text, 6.6)
-        if x + wide > width and x > 0:
-            x, rows = 0.0, rows + 1
-        placed.append((x, rows, nominal, text))
-        x += wide + 8
-    height = rows * 11.0 + 2
-    for x, row, nominal, text in placed:
-        y = height - row * 11.0
-        stroke, colour = strokes[nominal]
-        items.append(Line(((x, y + 2.4), (x + 22, y + 2.4)), colour, stroke))
-        items.append(Label(x + 27, y, text, 6.6))
-    return Drawing(width, height, tuple(items), "line by pipe size")

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from supplycheck.model import Criteria, Project, Sprinkler
 from supplycheck.report.document import Block, Facts, Heading, Paragraph, Row, Section, Table
+from supplycheck.report.sections.duties import duty_title
 from supplycheck.report.show import Show, column, given, steps_table, words
 from supplycheck.results.records import Result
 
@@ -51,7 +52,7 @@ def _search(result: Result) -> list[Block]:
 
 def _without_sprinklers(project: Project, show: Show) -> tuple[tuple[str, str], ...]:
     criteria = project.criteria
-    where = "hydrants and standpipes" if project.outflows is None else "fixed outflows"
+    where = duty_title(project).lower()
     return (
         ("Sprinklers", f"none in this project; what is asked stands under {where}"),
         ("Duration", show.t(criteria.duration, "time")),

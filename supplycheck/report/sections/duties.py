@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 
+from supplycheck.model import Project
 from supplycheck.model.duty import DutyRow, HydrantDuty, HydrantRow, OutletState, StandpipeDuty
 from supplycheck.report.document import (
     Block,
@@ -24,8 +25,9 @@ from supplycheck.results.records import GraphPoint, Result
 def duties(result: Result, width: float) -> Section | None:
     """Return the section on the duties beside sprinklers, ``None`` where the project has none."""
     project, show = result.project, Show.of(result)
+    title = duty_title(project)
     if project.outflows is not None:
-        return Section("Fixed outflows", (_cases(result, show), _outflows(result, show)), fresh=True)
+        return Section(title, (_cases(result, show), _outflows(result, show)), fresh=True)
     if project.hydrants is None and project.standpipes is None:
         return None
     blocks: list[Block] = [_cases(result, show), *_graph(result, show, width)]
@@ -33,9 +35,16 @@ def duties(result: Result, width: float) -> Section | None:
         blocks += _hydrants(result, project.hydrants, show)
     if project.standpipes is not None:
         blocks += _standpipes(result, project.standpipes, show)
+    return Section(title, tuple(blocks), fresh=True)
+
+
+def duty_title(project: Project) -> str:
+    """Return the title of the section on what is asked beside sprinklers."""
+    if project.outflows is not None:
+        return "Fixed outflows"
     names = ["hydrants"] if project.hydrants is not None else []
     names += ["standpipes"] if project.standpipes is not None else []
-    return Section(" and ".join(names).capitalize(), tuple(blocks), fresh=True)
+    return " and ".join(names).capitalize()
 
 
 def _spare(row: DutyRow) -> OutletState | None:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Final
+
 from supplycheck.report.document import Block, Column, Facts, Heading, Paragraph, Row, Section, Table
 from supplycheck.report.show import Show, column, without_empty, words
 from supplycheck.results.display import (
@@ -93,6 +95,19 @@ def flows(result: Result) -> Section:
     return Section("What really flows, and the balance", tuple(blocks))
 
 
+_WHERE_THERE: Final = (
+    "Heads",
+    "Open",
+    "Lowest head",
+    "There",
+    "Of its required flow",
+    "Density",
+    "Over-discharge",
+    "Storage lasts",
+)
+"""Columns of the scenarios that are printed only where one of them holds a value."""
+
+
 def _scenarios(result: Result, show: Show) -> Table:
     columns = (
         words("Scenario"),
@@ -113,8 +128,8 @@ def _scenarios(result: Result, show: Show) -> Table:
                 row.name,
                 show.n(row.total_flow, "flow"),
                 show.n(row.supply_pressure, "pressure"),
-                show.n(row.sprinkler_flow, "flow"),
-                str(row.heads_open),
+                show.n(row.sprinkler_flow, "flow") if row.heads_open else "–",
+                str(row.heads_open) if row.heads_open else "–",
                 row.lowest_head or "–",
                 show.n(row.lowest_pressure, "pressure"),
                 show.n(row.lowest_ratio, "ratio", 2),
@@ -126,11 +141,12 @@ def _scenarios(result: Result, show: Show) -> Table:
         )
         for row in result.scenarios
     )
-    note = (
-        "With the supply as it is: heads give what the pressure makes them give, not only what is required."
-    )
+    note = "With the supply as it is, which may give more than is required."
+    if any(row.heads_open for row in result.scenarios):
+        note = "With the supply as it is: heads give what the pressure makes them give, not only what is "
+        note += "required."
     table = Table("Scenarios", columns, rows, note, empty="no scenario was calculated", size=6.6)
-    return without_empty(table, "Storage lasts", "Over-discharge", "Density") if rows else table
+    return without_empty(table, *_WHERE_THERE) if rows else table
 
 
 def _head_table(row: ScenarioRow, show: Show) -> Table:

@@ -7,8 +7,9 @@ from typing import Final
 
 from supplycheck.report.document import Block, Figure, Paragraph, Row, Section, Table
 from supplycheck.report.figures.key_plan import key_plan
+from supplycheck.report.figures.legends import size_legend
 from supplycheck.report.figures.placements import placement_map
-from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, size_legend, whole_plan
+from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, whole_plan
 from supplycheck.report.show import Show, column, words
 from supplycheck.results.display import tags_text
 from supplycheck.results.records import Favourable, Placement, Result
@@ -43,9 +44,10 @@ def plan(result: Result, width: float) -> Section:
                 "every pipe with its end nodes; give x and y in the node table to have the plan drawn."
             )
         )
-    if result.project.criteria.has_sprinklers:
+    sprinklers = result.project.criteria.has_sprinklers
+    if sprinklers:
         blocks += _placements(result, show, width)
-    return Section("Plan and design area", tuple(blocks), fresh=True)
+    return Section("Plan and design area" if sprinklers else "Plan", tuple(blocks), fresh=True)
 
 
 def _caption(view: PlanView, *, outside: bool = False) -> str:

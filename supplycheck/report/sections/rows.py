@@ -37,7 +37,9 @@ def node_analysis(result: Result) -> Section:
         columns.insert(5, column("Velocity pressure", show.s("pressure")))
     nodes = _printed(result.nodes, [n.in_design_area or n.discharge > 0 for n in result.nodes])
     rows = tuple(_node(node, show, with_velocity=with_velocity) for node in nodes)
-    note = "Heads in the design area are in bold. Pressures are gauge pressures in the demand solution."
+    note = "Pressures are gauge pressures in the demand solution."
+    if any(node.in_design_area for node in result.nodes):
+        note = f"Heads in the design area are in bold. {note}"
     note += _left_out(len(result.nodes) - len(nodes), "nodes", "nodes.csv")
     table = without_empty(
         Table("Nodes", tuple(columns), rows, note, size=6.6),

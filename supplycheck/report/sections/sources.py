@@ -10,7 +10,7 @@ from supplycheck.results.records import NeededPump, PumpRecord, PumpState, Resul
 
 _WHEN = {
     "demand": "demand",
-    "actual supply": "what really flows, design area open",
+    "actual supply": "what really flows",
     "150 % of rated flow": "150 % of the rated flow, nothing else open",
 }
 
