@@ -16,8 +16,17 @@ import pandas as pd
 from supplycheck.findings import Finding
 from supplycheck.results.display import finding_text, in_order, measure_text, remedy_text, visible
 from supplycheck.results.json_rows import Plain
-from supplycheck.results.records import NodeRow, PathStep, PipeRow, Placement, Result, ScenarioRow
+from supplycheck.results.records import (
+    FittingRow,
+    NodeRow,
+    PathStep,
+    PipeRow,
+    Placement,
+    Result,
+    ScenarioRow,
+)
 from supplycheck.results.tables_duties import duty_tables
+from supplycheck.results.tables_sources import curve_rows, source_tables
 from supplycheck.units import UNIT_SETS, UnitSet
 
 _EXECUTED: Final = ("=", "+", "-", "@", "\t", "\r", "\n")
@@ -40,19 +49,30 @@ class _Columns:
 
 def frames(result: Result) -> dict[str, pd.DataFrame]:
     """Return every table of ``result`` by name: nodes, pipes, sprinklers (of the design area), path,
-    placements, scenarios, findings; of hydrants and standpipes where the project has some.
+    fittings, supply (lines and points of the graph), placements, scenarios, findings; of pumps, tanks,
+    hydrants and standpipes, the heads of each scenario and a second friction law where there are some.
     """
     units = UNIT_SETS[result.project.units]
     make = _Columns(units)
     area = [node for node in result.nodes if node.in_design_area]
+    some = {
+        "second_law": [
+            _second(row, make) for row in result.pipes if row.second_law_friction_loss is not None
+        ],
+        "scenario_heads": [one for row in result.scenarios for one in _heads(row, make)],
+        **source_tables(result.pumps, result.needed_pump, result.tanks, make),
+        **duty_tables(result.duties, make),
+    }
     return {
         "nodes": _frame([_node(row, make) for row in result.nodes]),
         "pipes": _frame([_pipe(row, make) for row in result.pipes]),
         "sprinklers": _frame([_sprinkler(row, make) for row in area]),
         "path": _frame([_step(number, row, make) for number, row in enumerate(result.path, start=1)]),
+        "fittings": _frame([_fitting(row, make) for row in result.fittings]),
+        "supply": _frame(curve_rows(result.curves, result.points, make)),
         "placements": _frame([_placement(one, result, make) for one in result.design_area.placements]),
         "scenarios": _frame([_scenario(row, make) for row in result.scenarios]),
-        **{name: _frame(rows) for name, rows in duty_tables(result.duties, make).items()},
+        **{name: _frame(rows) for name, rows in some.items() if rows},
         "findings": _frame([_finding(one, units) for one in in_order(result.findings)]),
     }
 
@@ -191,8 +211,55 @@ def _scenario(row: ScenarioRow, make: _Columns) -> Record:
         **make("lowest_ratio", row.lowest_ratio, "ratio"),
         **make("delivered_density", row.delivered_density, "density"),
         **make("over_discharge", row.over_discharge, "ratio"),
-        "minutes_of_storage": row.minutes_of_storage,
+        **make("lasts", _seconds(row.minutes_of_storage), "time"),
         "note": row.note,
+    }
+
+
+def _seconds(minutes: float | None) -> float | None:
+    return None if minutes is None else minutes * 60.0
+
+
+def _heads(row: ScenarioRow, make: _Columns) -> list[Record]:
+    return [
+        {
+            "scenario": row.name,
+            "head": tag,
+            **make("flow", flow, "flow"),
+            **make("pressure", pressure, "pressure"),
+        }
+        for tag, flow, pressure in row.head_flows
+    ]
+
+
+def _second(row: PipeRow, make: _Columns) -> Record:
+    return {
+        "pipe": row.tag,
+        "from": row.start,
+        "to": row.end,
+        **make("flow", row.flow, "flow"),
+        **make("bore", row.bore, "size"),
+        **make("roughness", row.roughness, "roughness"),
+        **make("total_length", row.total_length, "length"),
+        **make("friction_loss", row.friction_loss, "pressure"),
+        **make("second_law_friction_loss", row.second_law_friction_loss, "pressure"),
+    }
+
+
+def _fitting(row: FittingRow, make: _Columns) -> Record:
+    return {
+        "fitting": row.name,
+        "nominal": row.nominal,
+        "pipe_kind": row.pipe_kind,
+        "count": row.count,
+        **make("bore", row.bore, "size"),
+        **make("c_factor", row.c_factor, "ratio"),
+        **make("table_length", row.table_length, "length"),
+        **make("c_multiplier", row.c_multiplier, "ratio"),
+        **make("bore_factor", row.bore_factor, "ratio"),
+        **make("length", row.length, "length"),
+        **make("minor_k", row.minor_k, "ratio"),
+        "source": row.source,
     }
 
 
