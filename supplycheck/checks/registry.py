@@ -22,6 +22,7 @@ from supplycheck.checks import (
     pumps_and_tanks,
     readings,
     scenarios,
+    sizes,
     standing,
     water_supply,
 )
@@ -44,6 +45,7 @@ RULES: Final[tuple[Rule, ...]] = (
     *flow_record.RULES,
     *devices.RULES,
     *pipes.RULES,
+    *sizes.RULES,
     *plausibility.RULES,
     *fittings.RULES,
     *balance.RULES,

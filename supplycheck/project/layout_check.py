@@ -100,6 +100,31 @@ def _check_grid(layout: LayoutTable, sections: Sections, faults: FaultList) -> N
         )
 
 
+def _check_sizes(layout: LayoutTable, sections: Sections, faults: FaultList) -> None:
+    """Note sizes of lines and cross main for which there is no piece."""
+    heads, lines = max(layout.heads), layout.lines
+    of_main = (lines + 1) // 2 if layout.cross_main.feed == "centre" else lines - 1
+    counted = [
+        ("cross_main", layout.cross_main.sizes, of_main, f"{lines} lines, {layout.cross_main.feed} feed")
+    ]
+    if layout.type != "grid":
+        counted.append(
+            ("branch", layout.branch.sizes, heads, f"{heads} heads on the longer side of a line")
+        )
+    for key, sizes, pieces, why in counted:
+        most = max(pieces, 1)
+        given = "heads" if key == "branch" else "lines"
+        if len(sizes) > most and not faults.touched(sections.place(f"layout.{given}")):
+            what = "a line" if key == "branch" else "the cross main"
+            faults.add(
+                sections.place(f"layout.{key}.sizes"),
+                f"lists more sizes than {what} has pieces",
+                found=f"{len(sizes)} sizes: {listed(sizes)}",
+                allowed=f"at most {most}: {what} has {most} piece{'s' if most > 1 else ''} ({why})",
+                remedy=f"{listed(sizes[most:])} would not be used: take out what is too much",
+            )
+
+
 def _check_spacing(layout: LayoutTable, units: UnitSet, sections: Sections, faults: FaultList) -> None:
     for key in ("line_spacing", "head_spacing"):
         written = getattr(layout, key)
@@ -138,6 +163,7 @@ def check_layout(layout: LayoutTable, units: UnitSet, sections: Sections, faults
     _check_names(layout, sections, faults)
     _check_spacing(layout, units, sections, faults)
     _check_counts(layout, sections, faults)
+    _check_sizes(layout, sections, faults)
     if layout.type == "grid":
         _check_grid(layout, sections, faults)
     if layout.type == "tree" and layout.far_main is not None:

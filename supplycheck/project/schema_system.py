@@ -122,7 +122,8 @@ class LinePiece(UnitTable):
     pipe: Name
     """Kind of pipe."""
     sizes: Annotated[list[NominalSize], Field(min_length=1)]
-    """Nominal sizes from the end head inward, one for each piece; the last one repeats."""
+    """Nominal sizes from the end head inward, one for each piece; the last one repeats, more than
+    there are pieces are a fault."""
     elevation: Elevation | None = None
     """Elevation of the lines. Default: that of the heads where there is no drop."""
 
@@ -155,7 +156,8 @@ class CrossMainPiece(UnitTable):
     pipe: Name
     """Kind of pipe."""
     sizes: Annotated[list[NominalSize], Field(min_length=1)]
-    """Nominal sizes from the far end towards the feed, one for each piece; the last one repeats."""
+    """Nominal sizes from the far end towards the feed, one for each piece; the last one repeats, more than
+    there are pieces are a fault."""
     elevation: Elevation | None = None
     """Elevation. Default: that of the lines, less the length of the riser nipples."""
     feed: Literal["end", "centre"] = "end"

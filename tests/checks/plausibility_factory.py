@@ -6,7 +6,7 @@ from dataclasses import replace
 from typing import Any
 
 from supplycheck.model import Device
-from supplycheck.units import FOOT, GPM, PSI
+from supplycheck.units import FOOT, GPM, INCH, PSI
 
 PIPES = "project.system.pipes"
 NO_PLACE = {"project.system.nodes.*.x": None}
@@ -29,6 +29,7 @@ PUMP_BYPASS = again(1, devices=("pump",)) | {
         Device("pump", "pump", (0.0, 500 * GPM), (120 * PSI, 90 * PSI), "maker's sheet"),
     )
 }
+SMALL_RISER = {f"{PIPES}.R.nominal": "1 1/2", f"{PIPES}.R.bore": 1.61 * INCH}
 PLAUSIBILITY_CASES: tuple[tuple[Any, ...], ...] = (
     ("length against distance", "ok"),
     ("length against distance", "not applicable", NO_PLACE),
@@ -37,6 +38,10 @@ PLAUSIBILITY_CASES: tuple[tuple[Any, ...], ...] = (
     ("length against distance", "fail", {f"{PIPES}.U.length": 10 * FOOT}, 10 * FOOT, 100 * FOOT, ("U",)),
     ("length against distance", "ok", {f"{PIPES}.C1.length": 100 * FOOT}),
     ("length against distance", "ask authority", {f"{PIPES}.C1.length": 101 * FOOT}, 101 * FOOT, 5 * FOOT),
+    ("size toward the supply", "ok"),
+    ("size toward the supply", "not applicable", {f"{PIPES}.*.valve": "closed"}),
+    ("size toward the supply", "ask authority", SMALL_RISER, None, None, ("R",)),
+    ("size toward the supply", "ok", SMALL_RISER | {f"{PIPES}.R.role": "riser nipple"}),
     ("pipes side by side", "ok"),
     ("pipes side by side", "ok", PUMP_BYPASS),
     ("pipes side by side", "ask authority", again(1), None, None, ("R", "again")),

@@ -77,7 +77,8 @@ def test_short_lines_that_meet_end_to_end_inside_a_loop(tmp_path: Path) -> None:
     # Three heads inward from either main; five are asked along the line: they lie over both dead ends.
     distance = 5.25 * 2 + 10.5 * 5
     far = FAR.replace("60", f"{distance}")
-    project = variant(tmp_path, type='"loop"', heads="[0, 3]", riser_nipple=NIPPLE + far)
+    branch = '{ pipe = "lines", sizes = ["1", "1 1/4", "1 1/2"], elevation = 15 }'
+    project = variant(tmp_path, type='"loop"', heads="[0, 3]", branch=branch, riser_nipple=NIPPLE + far)
     lines = found(project)
     assert sorted(len(line) for line in lines.sides) == [3] * 12
     assert {(len(line), line.joint) for line in lines.joined} == {(6, "end to end")}
