@@ -6,7 +6,7 @@ import re
 
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, count, some
-from supplycheck.checks.wording import in_words
+from supplycheck.checks.wording import told
 from supplycheck.findings import Finding
 
 EDITION = About(
@@ -189,9 +189,10 @@ def assumed(context: CheckContext) -> Finding:
     ]
     if not notes:
         return ASSUMED.says("ok", "No value is assumed.", measured=count(0))
-    told = [in_words(note.key, note.value) for note in notes]
-    text = f"{{measured}} assumed: {some(told, show=2)}."
-    ask = f"Are these assumed values right: {'; '.join(told)}?"
+    standpipes = context.project.standpipes
+    words = told(notes, [riser.tag for riser in standpipes.risers] if standpipes else [])
+    text = f"{{measured}} assumed: {some(words, show=2)}."
+    ask = f"Are these assumed values right: {'; '.join(words)}?"
     keys = tuple(note.key for note in notes)
     return ASSUMED.says("ask authority", text, measured=count(len(keys)), tags=keys, remedy=ask)
 

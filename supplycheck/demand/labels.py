@@ -64,16 +64,18 @@ class Labels:
             found = self._spans[key] = _span(row)
         return found
 
-    def _counted(self, line: Line, span: str) -> str:
+    def _counted(self, line: Line, last: Line, span: str) -> str:
         if span is ALL:
-            return f" ({self._tags[line.heads[0]]} to {self._tags[line.heads[-1]]})"
+            return f" ({self._tags[line.heads[0]]} to {self._tags[last.heads[-1]]})"
         found = self._origins.get(id(line))
         if found is None:
             found = self._origins[id(line)] = _origin(line, self._tags)
         return found
 
     def of(self, placement: Placement) -> str:
-        """Return the readable name of a placement."""
+        """Return the readable name of a placement; one that takes every head is named by that alone."""
+        if len(placement.heads) == len(self._tags):
+            return ALL
         groups: list[tuple[str, Line, Line]] = []
         for row in placement.rows:
             span = self._span(row)
@@ -87,7 +89,7 @@ class Labels:
                 first, last = last, first
             names = _names(first.name, last.name)
             across = f" {first.joint}" if first.joint else ""
-            parts.append(f"{names}{across}, {span}{self._counted(first, span)}")
+            parts.append(f"{names}{across}, {span}{self._counted(first, last, span)}")
         text = "; ".join(parts)
         if placement.extra:
             near = len(placement.extra)

@@ -112,6 +112,17 @@ def test_an_area_smaller_than_the_design_area_opens_all_its_heads() -> None:
     found = cases(tree([0] * 2, [4] * 2))
     assert sets(found) == {frozenset(f"E{i}.{j}" for i in (0, 1) for j in range(4))}
     assert "smaller than the design area: all heads" in found[0].note
+    assert found[0].label == "all heads"
+
+
+def test_a_label_of_whole_lines_runs_from_the_first_head_to_the_last() -> None:
+    # Lines of four, twelve heads: three whole lines at a time.
+    found = cases(tree([0] * 4, [4] * 4))
+    whole = {case.label for case in found if "all heads" in case.label}
+    assert "lines L0–L2, all heads (E0.0 to E2.3)" in whole
+    for case in found:
+        if case.label in whole:
+            assert case.label.endswith(f"({min(case.heads)} to {max(case.heads)})")
 
 
 def test_a_minimum_number_of_heads() -> None:

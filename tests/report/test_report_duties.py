@@ -221,3 +221,10 @@ def test_the_basis_names_the_section_that_holds_what_is_asked() -> None:
         )
         facts = [pair for block in basis.blocks if isinstance(block, Facts) for pair in block.pairs]
         assert ("Sprinklers", f"none in this project; what is asked stands under {title}") in facts
+
+
+def test_questions_on_standpipes_hold_no_key_of_the_project_file() -> None:
+    asked = next(one for one in result_of(TOWER).open_questions if "assumed values" in one)
+    assert "riser" not in asked
+    assert "hose outlets of 2.500 in at all 5 standpipes" in asked
+    assert "no fittings beyond those written in the tables" in asked
