@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+import re
 from collections import defaultdict
 from dataclasses import dataclass
+from types import MappingProxyType
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
-from supplycheck.checks.rule import About, Rule, some
+from supplycheck.checks.geometry import distance
+from supplycheck.checks.rule import About, Rule, count, some
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import Fitting, Pipe
 
@@ -20,8 +23,19 @@ EQUIVALENT = About(
 TEES = About(
     "tee where flow turns",
     "whether each point where flow divides is charged a tee or cross",
-    ("ok", "fail", "not applicable"),
+    ("ok", "fail", "ask authority", "not applicable"),
     "NFPA 13 charging rules (from memory): the leg that turns is charged the tee",
+)
+TWICE = About(
+    "fitting charged twice",
+    "whether an elbow or a tee stands on a pipe both as written and from geometry",
+    ("ok", "ask authority", "not applicable"),
+    "reviewers' practice, no source: both count, so that one real fitting may be charged twice",
+)
+OWN_TURNS = 1.05
+"""A pipe that is longer than its ends are apart by over 5 % has elbows of its own (common practice)."""
+_FAMILIES = MappingProxyType(
+    {"elbow": re.compile(r"elbow|bend|\bell\b"), "tee": re.compile(r"\b(tee|cross)\b")}
 )
 
 
@@ -83,8 +97,9 @@ def equivalent(context: CheckContext) -> Finding:
 def tees(context: CheckContext) -> Finding:
     """Where three pipes carry flow, at least one of them turns."""
     small = limits.ROUND_OFF * context.comparison.demand_flow
+    pipes = context.project.system.pipes
     at: dict[str, list[Pipe]] = defaultdict(list)
-    for pipe in context.project.system.pipes:
+    for pipe in pipes:
         if abs(context.flow(pipe)) > small:
             at[pipe.start].append(pipe)
             at[pipe.end].append(pipe)
@@ -92,9 +107,16 @@ def tees(context: CheckContext) -> Finding:
     if not forks:
         return TEES.says("not applicable", "The flow divides nowhere.")
     bare = tuple(tag for tag, pipes in forks.items() if not any(_turns(pipe, tag) for pipe in pipes))
+    mains = not context.project.criteria.has_sprinklers
+    if mains and not any(pipe.fittings for pipe in pipes):
+        text = "No fitting is charged anywhere in these mains; the flow divides at {count} points."
+        ask = "Does the C-factor of the mains take in their fittings, or are tees and valves to be added?"
+        return TEES.says("ask authority", text, tags=bare, remedy=ask, values={"count": count(len(forks))})
     if bare:
         text = f"No tee or cross is charged where the flow divides at {some(bare)}."
-        do = "Charge the leg that turns (branch outlet, riser nipple) the tee of its own size."
+        which = "" if mains else " (branch outlet, riser nipple)"
+        do = f"Charge the leg that turns{which} the tee of its own size."
+        do += ' Tables do so by fittings = "from geometry".' if mains else ""
         return TEES.says("fail", text, tags=bare, remedy=do)
     return TEES.says("ok", "Each point where the flow divides is charged a tee or cross.")
 
@@ -108,4 +130,38 @@ def _turns(pipe: Pipe, tag: str) -> bool:
     )
 
 
-RULES = (Rule(EQUIVALENT, equivalent), Rule(TEES, tees))
+def _wanders(context: CheckContext, pipe: Pipe) -> bool:
+    apart = distance(context.nodes[pipe.start], context.nodes[pipe.end])
+    return apart is not None and pipe.length > OWN_TURNS * apart
+
+
+def twice(context: CheckContext) -> Finding:
+    """Whether it is one fitting or two cannot be seen from the file; both count, on the safe side."""
+    both = [
+        pipe
+        for pipe in context.project.system.pipes
+        if {"given", "inferred"} <= {one.origin for one in pipe.fittings}
+    ]
+    if not both:
+        return TWICE.says("not applicable", "No pipe has fittings both as written and from geometry.")
+    found = []
+    for pipe in both:
+        for family, words in _FAMILIES.items():
+            named = [one for one in pipe.fittings if words.search(one.name.casefold())]
+            written = [one for one in named if one.origin == "given"]
+            inferred = [one for one in named if one.origin == "inferred"]
+            if written and inferred and not (family == "elbow" and _wanders(context, pipe)):
+                found.append((pipe, written[0], inferred[0]))
+    if not found:
+        return TWICE.says("ok", "No elbow or tee is both written on a pipe and inferred for it.")
+    pipe, one, other = found[0]
+    tags = tuple(dict.fromkeys(each.tag for each, _, _ in found))
+    text = f"{pipe.tag} is charged {one.count} {one.name} as written and {other.count} {other.name} at "
+    text += f"{other.node} from geometry, {{measured}} for the written one."
+    ask = f"Is the {one.name} written on {some(tags)} the turn at its end, "
+    ask += "so that it is to be taken out of the column fittings?"
+    measured = Measure(one.length, "length")
+    return TWICE.says("ask authority", text, measured=measured, tags=tags, remedy=ask)
+
+
+RULES = (Rule(EQUIVALENT, equivalent), Rule(TEES, tees), Rule(TWICE, twice))

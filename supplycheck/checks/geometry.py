@@ -34,6 +34,13 @@ def _place(node: Node) -> tuple[float, float]:
     return (node.x or 0.0, node.y or 0.0)
 
 
+def distance(one: Node, other: Node) -> float | None:
+    """Return the distance of two nodes [m], height included; ``None`` where it is not known."""
+    if one.x is None or one.y is None or other.x is None or other.y is None:
+        return None
+    return math.dist((one.x, one.y, one.elevation), (other.x, other.y, other.elevation))
+
+
 def _lines(heads: Iterable[Node]) -> list[_Line]:
     by_line: dict[str, list[Node]] = defaultdict(list)
     for node in heads:

@@ -4,11 +4,12 @@ At a node where two pipes meet, a turn of 22.5° to 67.5° is a 45° elbow and a
 is charged to the smaller pipe (the smaller outlet of a reducing elbow), between equal ones to the one
 farther from the supply. Where three or more meet, or two and an outlet, it is a tee or cross:
 
-- where all water for the node comes through one pipe, each other pipe that does not lead straight on is
-  charged the tee at its own size (so the tee on top of a riser nipple goes to the branch lines, that at
-  its bottom to the riser nipple, and that of a feed main to the cross main);
+- where all water for the node comes through one pipe, each other pipe that does not lead straight on (of
+  several the straightest does) is charged the tee at its own size (so the tee on top of a riser nipple goes
+  to the branch lines, that at its bottom to the riser nipple, and that of a feed main to the cross main);
 - in a loop, where water may come from more than one side, the pipes of a straight run are not charged
-  and each leg is charged the tee at its own size; without a straight run all but the largest are.
+  and each leg is charged the tee at its own size; where two runs cross, the smaller one counts as legs,
+  between equal ones that farther from the supply; without a straight run all but the largest are charged.
 
 The fitting into which a head screws is not charged. Vertical pieces count through elevation.
 
@@ -22,6 +23,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import combinations
 from typing import Final
 
 from supplycheck.model import Node
@@ -78,21 +80,18 @@ def _elbow(legs: Sequence[_Leg], cosine: float, node: str) -> list[Charge]:
 
 
 def _tee_from(incoming: _Leg, legs: Sequence[_Leg], node: str) -> list[Charge]:
-    return [
-        Charge(leg.pipe, "tee", node)
-        for leg in legs
-        if leg is not incoming and _cosine(incoming.away, leg.away) <= STRAIGHT
-    ]
+    onward = [leg for leg in legs if leg is not incoming]
+    run = max(onward, key=lambda leg: (_cosine(incoming.away, leg.away), leg.bore))
+    straight = _cosine(incoming.away, run.away) > STRAIGHT
+    return [Charge(leg.pipe, "tee", node) for leg in onward if leg is not run or not straight]
 
 
 def _tee_in_loop(legs: Sequence[_Leg], node: str) -> list[Charge]:
-    run = {
-        leg.pipe
-        for leg in legs
-        for other in legs
-        if leg is not other and _cosine(leg.away, other.away) > STRAIGHT
-    }
-    if not run:
+    runs = [pair for pair in combinations(legs, 2) if _cosine(pair[0].away, pair[1].away) > STRAIGHT]
+    if runs:
+        largest = max(runs, key=lambda pair: (pair[0].bore + pair[1].bore, -min(leg.depth for leg in pair)))
+        run = {leg.pipe for leg in largest}
+    else:
         run = {max(legs, key=lambda leg: (leg.bore, -leg.depth)).pipe}
     return [Charge(leg.pipe, "tee", node) for leg in legs if leg.pipe not in run]
 

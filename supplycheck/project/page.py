@@ -62,10 +62,12 @@ fitting is listed as inferred, with its node.
   through one pipe, each other pipe that does not lead straight on is charged the tee at its own size: the
   tee on top of a riser nipple goes to the branch lines, that at its bottom to the riser nipple, that of a
   feed main to the cross main. In a loop, where water may come from more than one side, the straight run is
-  not charged and each leg is charged the tee at its own size.
+  not charged and each leg is charged the tee at its own size; where two runs cross, the smaller one is.
 - The fitting into which a head screws is not charged, nor a change of size on a straight run.
 - A piece of a layout with its own `fittings` is charged those and nothing from geometry. In a table, those
-  written on a pipe are added to those from geometry.
+  written on a pipe are added to those from geometry: valves are written there, and turns inside a pipe that
+  is longer than its ends are apart. An elbow or a tee that is both written and inferred counts twice, and
+  is asked about.
 
 Equivalent lengths are those of the standard at C 120, times (C/120)^1.85 and, under NFPA 13, times
 (bore / schedule 40 bore)^4.87.

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 from typing import Any
 
-from supplycheck.model import Device
+from supplycheck.model import Device, Fitting
 from supplycheck.units import FOOT, GPM, INCH, PSI
 
 PIPES = "project.system.pipes"
@@ -29,6 +29,10 @@ PUMP_BYPASS = again(1, devices=("pump",)) | {
         Device("pump", "pump", (0.0, 500 * GPM), (120 * PSI, 90 * PSI), "maker's sheet"),
     )
 }
+TEE = Fitting("tee", 1, 10 * FOOT, 10 * FOOT, 0.0, "given", "NFPA 13 equivalent lengths")
+GATE = replace(TEE, name="gate valve", length=FOOT)
+WRITTEN_TEE = {f"{PIPES}.C1.fittings": lambda old: (*old, TEE)}
+BARE_MAINS = {f"{PIPES}.*.fittings": (), "project.criteria.density": 0.0}
 SMALL_RISER = {f"{PIPES}.R.nominal": "1 1/2", f"{PIPES}.R.bore": 1.61 * INCH}
 PLAUSIBILITY_CASES: tuple[tuple[Any, ...], ...] = (
     ("length against distance", "ok"),
@@ -38,6 +42,10 @@ PLAUSIBILITY_CASES: tuple[tuple[Any, ...], ...] = (
     ("length against distance", "fail", {f"{PIPES}.U.length": 10 * FOOT}, 10 * FOOT, 100 * FOOT, ("U",)),
     ("length against distance", "ok", {f"{PIPES}.C1.length": 100 * FOOT}),
     ("length against distance", "ask authority", {f"{PIPES}.C1.length": 101 * FOOT}, 101 * FOOT, 5 * FOOT),
+    ("fitting charged twice", "not applicable"),
+    ("fitting charged twice", "ok", {f"{PIPES}.C1.fittings": lambda old: (*old, GATE)}),
+    ("fitting charged twice", "ask authority", WRITTEN_TEE, 10 * FOOT, None, ("C1",)),
+    ("tee where flow turns", "ask authority", BARE_MAINS, None, None, ("T",)),
     ("size toward the supply", "ok"),
     ("size toward the supply", "not applicable", {f"{PIPES}.*.valve": "closed"}),
     ("size toward the supply", "ask authority", SMALL_RISER, None, None, ("R",)),
