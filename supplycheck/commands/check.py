@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 import sys
 import time
+from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Final
 
@@ -20,7 +21,9 @@ NOT_ADEQUATE: Final = 1
 WRONG_USAGE: Final = 2
 PROJECT_FAULTS: Final = 3
 NOT_CONVERGED: Final = 4
-PACKAGE_FILES: Final = ("result.json", "review.pdf", "nodes.csv", "pipes.csv", "tables.xlsx")
+PACKAGE_FILES: Final = ("result.json", "review.pdf", "nodes.csv", "pipes.csv", "tables.xlsx", "review.html")
+PAGE: Final = "review.html"
+OURS: Final = b'<meta name="generator" content="supplycheck '
 PATIENCE: Final = 1.0  # seconds before a progress bar appears
 
 
@@ -31,6 +34,11 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
     type=click.Path(path_type=Path, file_okay=False),
     help="Folder for the review package (default: `review` beside the project file).",
 )
+@click.option(
+    "--html",
+    is_flag=True,
+    help="Write review.html as well: the review package as one page for a browser, nothing fetched.",
+)
 @click.option("--json", "as_json", is_flag=True, help="Print result.json instead of the screen answer.")
 @click.option("--no-files", is_flag=True, help="Write no files; only print the answer.")
 @click.option(
@@ -40,7 +48,9 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
     show_default=True,
     help="Projects checked at a time, where there are several.",
 )
-def command(projects: tuple[Path, ...], out: Path | None, as_json: bool, no_files: bool, jobs: int) -> None:
+def command(
+    projects: tuple[Path, ...], out: Path | None, html: bool, as_json: bool, no_files: bool, jobs: int
+) -> None:
     """Check the system in PROJECT (a project.toml, or its folder) against its water supply.
 
     Writes result.json, review.pdf, nodes.csv, pipes.csv and tables.xlsx.
@@ -50,14 +60,16 @@ def command(projects: tuple[Path, ...], out: Path | None, as_json: bool, no_file
     """
     from supplycheck.commands.portfolio import is_portfolio, run_portfolio
 
+    if html and no_files:
+        raise click.UsageError("--html writes a file and --no-files none; leave out one of them.")
     if is_portfolio(projects):
-        options = ["--no-files"] if no_files else []
+        options = [name for name, on in (("--no-files", no_files), ("--html", html)) if on]
         sys.exit(run_portfolio(projects, out, jobs=jobs, as_json=as_json, options=options))
-    sys.exit(run(projects[0], out, as_json=as_json, no_files=no_files))
+    sys.exit(run(projects[0], out, as_json=as_json, no_files=no_files, html=html))
 
 
-def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> int:
-    """Do the job and return the exit code."""
+def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool, html: bool = False) -> int:
+    """Do the job and return the exit code; ``html`` writes the page for a browser as well."""
     from supplycheck.check import check_project
     from supplycheck.errors import DomainError, NotConvergedError
     from supplycheck.project import ProjectFaultsError
@@ -67,7 +79,15 @@ def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> in
 
     path = project / "project.toml" if project.is_dir() else project
     folder = out or path.parent / "review"
-    spoiled = None if no_files else _own_file(path, folder)
+    page = folder / PAGE
+    if html and page.exists() and not _ours(page):
+        raise click.UsageError(
+            f"--html: {page} was not written by supplycheck and would be overwritten; rename it, or choose "
+            "another folder with --out."
+        )
+    html = html or (not no_files and _ours(page))
+    files = [name for name in PACKAGE_FILES if html or name != PAGE]
+    spoiled = None if no_files else _own_file(path, folder, files)
     if spoiled is not None:
         option = "--out" if out else "review package"
         raise click.UsageError(
@@ -88,7 +108,7 @@ def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> in
         return PROJECT_FAULTS
     if not no_files:
         try:
-            write_files(folder, package_files(result))
+            write_files(folder, package_files(result, html=html))
         except OSError as error:
             click.echo(f"The review package could not be written to {folder}: {error.strerror}", err=True)
             return WRONG_USAGE
@@ -99,12 +119,21 @@ def run(project: Path, out: Path | None, *, as_json: bool, no_files: bool) -> in
     return ADEQUATE if result.verdict == "adequate" else NOT_ADEQUATE
 
 
-def _own_file(path: Path, folder: Path) -> str | None:
+def _ours(page: Path) -> bool:
+    """Return whether ``page`` is one of an earlier check, which must not be left behind out of date."""
+    try:
+        with page.open("rb") as file:
+            return OURS in file.read(300)
+    except OSError:
+        return False
+
+
+def _own_file(path: Path, folder: Path, names: Sequence[str]) -> str | None:
     """Return the file of the package that would overwrite a file which the project at ``path`` reads."""
     from supplycheck.project.files import files_named
 
     own = [file for file in files_named(path) if file.exists()]
-    for target in (folder / name for name in PACKAGE_FILES):
+    for target in (folder / name for name in names):
         if target.exists() and any(target.samefile(file) for file in own):
             return target.name
     return None

@@ -5,20 +5,27 @@ from __future__ import annotations
 import tempfile
 from collections.abc import Mapping
 from pathlib import Path
+from typing import Final
 
 from supplycheck.report.build import build_document
+from supplycheck.report.html import html_text
 from supplycheck.report.pdf import pdf_bytes
 from supplycheck.results.json import result_json
 from supplycheck.results.records import Result
 from supplycheck.results.tables import csv_text, frames, xlsx_bytes
 
+HTML: Final = "review.html"
+"""The file of the package that is written only where it is asked for."""
 
-def package_files(result: Result) -> Mapping[str, bytes]:
-    """Return name → content of every file of the review package."""
+
+def package_files(result: Result, *, html: bool = False) -> Mapping[str, bytes]:
+    """Return name → content of every file of the review package; ``html`` adds the page for a browser."""
     tables = frames(result)
+    document = build_document(result)
     return {
         "result.json": result_json(result).encode(),
-        "review.pdf": pdf_bytes(build_document(result)),
+        "review.pdf": pdf_bytes(document),
+        **({HTML: html_text(document).encode()} if html else {}),
         "nodes.csv": csv_text(tables["nodes"]).encode(),
         "pipes.csv": csv_text(tables["pipes"]).encode(),
         "tables.xlsx": xlsx_bytes(tables, result.project.facts.date),

@@ -10,7 +10,7 @@ from click.testing import CliRunner, Result
 
 from supplycheck.check import check_project
 from supplycheck.cli import main
-from supplycheck.commands.check import PACKAGE_FILES
+from supplycheck.commands.check import PACKAGE_FILES, PAGE
 from supplycheck.report.package import package_files
 
 EXAMPLE = Path(__file__).parents[2] / "examples" / "looped-workshop"
@@ -69,4 +69,6 @@ def test_another_folder_is_written(workshop: Path) -> None:
 
 
 def test_the_names_that_are_guarded_are_those_that_are_written(workshop: Path) -> None:
-    assert set(PACKAGE_FILES) == set(package_files(check_project(workshop / "project.toml")))
+    result = check_project(workshop / "project.toml")
+    assert set(PACKAGE_FILES) == set(package_files(result, html=True))
+    assert set(package_files(result)) == set(PACKAGE_FILES) - {PAGE}

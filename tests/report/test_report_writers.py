@@ -15,12 +15,13 @@ from sample_result import sample
 
 from supplycheck.report.build import build_document
 from supplycheck.report.document import Figure
-from supplycheck.report.html import html_text, svg
+from supplycheck.report.html import html_text
 from supplycheck.report.pdf import pdf_bytes
+from supplycheck.report.svg import svg
 
 REPORT = Path(__file__).parents[2] / "supplycheck" / "report"
-WRITERS = ("pdf.py", "html.py", "layout.py", "sheet.py", "sheet_table.py", "wrapping.py")
-SEEN = {"document", "drawing", "theme", "wrapping", "sheet", "sheet_table", "layout"}
+WRITERS = ("pdf.py", "html.py", "svg.py", "layout.py", "sheet.py", "sheet_table.py", "wrapping.py")
+SEEN = {"document", "drawing", "theme", "svg", "wrapping", "sheet", "sheet_table", "layout"}
 
 
 @pytest.mark.parametrize("name", WRITERS)
