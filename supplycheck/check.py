@@ -14,6 +14,7 @@ from supplycheck.cases.ground import Ground, Solved
 from supplycheck.cases.loads import without_hose
 from supplycheck.cases.placements import Progress, only, try_all
 from supplycheck.cases.scenarios import scenario_rows
+from supplycheck.cases.second_law import by_second_law
 from supplycheck.checks import run_checks
 from supplycheck.context import CheckGrounds, check_context
 from supplycheck.demand import Candidates, demand_cases
@@ -98,6 +99,7 @@ def check(project: Project, progress: Progress | None = None) -> Result:
             tanks=_tanks(project, solution, governing.operating),
             needed_pump=needed,
             duties=duties.answer,
+            second_law=by_second_law(ground, governing.case),
         )
     )
 

@@ -196,15 +196,19 @@ def floor(context: CheckContext) -> Finding:
     if left is None:
         ask = "What is the pressure in the main at the demand flow?"
         return FLOOR.says("missing", "Not run: the pressure left in the main is not known.", remedy=ask)
-    measured, allowed = pressure(left), pressure(limit)
+    allowed = pressure(limit)
+    measured: Measure | None = pressure(left)
     if left >= limit - limits.ROUND_OFF * abs(limit):
         text = f"{{measured}} is left in the main{where} at the demand flow; the floor is {{limit}}."
         return FLOOR.says("ok", text, measured=measured, limit=allowed)
+    only = f"Only {{measured}} is left in the main{where} at the demand flow"
+    if left < 0:  # the curve carried on beyond its zero is no pressure that anybody could read
+        measured, only = None, f"No pressure is left in the main{where} at the demand flow"
     if given is None:
-        text = f"Only {{measured}} is left in the main{where} at the demand flow; {{limit}} is usual."
+        text = f"{only}; {{limit}} is usual."
         ask = "How much pressure must stay in the main at the demand flow?"
         return FLOOR.says("ask authority", text, measured=measured, limit=allowed, remedy=ask)
-    text = f"Only {{measured}} is left in the main{where} at the demand flow; the floor is {{limit}}."
+    text = f"{only}; the floor is {{limit}}."
     do = "Lower the demand or use a second supply: a main must not be drawn below its floor."
     return FLOOR.says("fail", text, measured=measured, limit=allowed, remedy=do)
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import zip_longest
 from typing import Final
 
 from supplycheck.report.document import (
@@ -77,7 +78,7 @@ def _opening_height(sheets: Sheets, blocks: Sequence[Block]) -> float:
     A heading, and the sentences between it and what it heads, are never parted from it.
     """
     height = 0.0
-    for block in blocks:
+    for block, after in zip_longest(blocks, blocks[1:]):
         match block:
             case Heading():
                 height += 4 + 9.4 * 1.38 + 2
@@ -88,7 +89,8 @@ def _opening_height(sheets: Sheets, blocks: Sequence[Block]) -> float:
                     break
             case Facts():
                 height += min(_facts_height(sheets, block), 200.0)
-                break
+                if not isinstance(after, Figure):
+                    break
             case Table():
                 height += opening_height(sheets, block)
                 break

@@ -6,7 +6,7 @@ from collections.abc import Iterable
 from dataclasses import replace
 
 from supplycheck.report.document import Column, Row, Table
-from supplycheck.results.display import nominal_text, residual_text, step_text, value_text
+from supplycheck.results.display import left_text, nominal_text, residual_text, step_text, value_text
 from supplycheck.results.records import HandStep, Result
 from supplycheck.units import UNIT_SETS, UnitSet
 
@@ -31,6 +31,14 @@ class Show:
         if kind not in self.units.units:
             return value_text(value, kind, self.units)
         return self.units.text(value, kind, decimals)
+
+    def left(self, value: float | None) -> str:
+        """Return a pressure that is left at a flow without its unit; none below zero."""
+        return left_text(value, self.units, unit=False)
+
+    def left_t(self, value: float | None) -> str:
+        """Return a pressure that is left at a flow with its unit; none below zero."""
+        return left_text(value, self.units)
 
     def signed(self, value: float | None, kind: str) -> str:
         """Return the number with its unit and its sign, also where it is positive."""

@@ -31,6 +31,7 @@ from supplycheck.results.records import (
     PumpRecord,
     Result,
     ScenarioRow,
+    SecondLaw,
     SupplyRecord,
     TankRecord,
     Verdict,
@@ -80,6 +81,7 @@ class Stages:
     tanks: tuple[TankRecord, ...] = ()
     needed_pump: NeededPump | None = None
     duties: DutyAnswer = field(default_factory=DutyAnswer)
+    second_law: SecondLaw | None = None
 
 
 def assemble(stages: Stages) -> Result:
@@ -127,6 +129,7 @@ def assemble(stages: Stages) -> Result:
         needed_pump=stages.needed_pump,
         duties=stages.duties,
         fittings=fitting_rows(project),
+        second_law=stages.second_law,
     )
 
 
@@ -166,7 +169,7 @@ def _verdict_text(verdict: Verdict, comparison: Comparison, solution: Solution, 
         )
     margin = show(abs(comparison.margin), "pressure")
     if comparison.margin < 0:
-        return f"The supply falls short of the demand by {margin}."
+        return f"The supply falls short of the demand by {margin}{_and_of_the_rule(comparison, show)}."
     if verdict == "not adequate" and (comparison.after_rule or 0.0) >= 0:
         return f"The pressure suffices, with {margin} to spare, but the stored water does not last."
     if comparison.required is None or comparison.after_rule is None:
@@ -174,13 +177,21 @@ def _verdict_text(verdict: Verdict, comparison: Comparison, solution: Solution, 
             f"The supply carries the demand with {margin} to spare, but no margin rule is given: "
             'ask the authority, then write it under [supply.margin] (rule = "none" if it asks for none).'
         )
-    asked = show(comparison.required, "pressure")
-    if verdict == "adequate":
-        return f"The supply carries the demand with {margin} to spare; the margin rule asks for {asked}."
+    if comparison.required == 0.0:
+        return f"The supply carries the demand with {margin} to spare; no margin is asked."
+    asked, left = show(comparison.required, "pressure"), show(abs(comparison.after_rule), "pressure")
+    more = "more" if verdict == "adequate" else "less"
     return (
-        f"The supply carries the demand with {margin} to spare, less than the {asked} that the "
+        f"The supply carries the demand with {margin} to spare, {left} {more} than the {asked} that the "
         "margin rule asks for."
     )
+
+
+def _and_of_the_rule(comparison: Comparison, show: Show) -> str:
+    """Return by how much a supply that is short is short of the margin rule as well."""
+    if not comparison.required or comparison.after_rule is None:
+        return ""
+    return f", and of what the margin rule asks for by {show(-comparison.after_rule, 'pressure')}"
 
 
 def _governs(nodes: tuple[NodeRow, ...], governing: str, case: DemandCase, show: Show) -> str:
@@ -224,6 +235,7 @@ def _supply(comparison: Comparison, show: Show, fine: Show) -> SupplyRecord:
         tested_range_ratio=main.tested_ratio,
         steps=_filled(comparison.supply_steps, fine),
         statement=" ".join(note.fill(show) for note in comparison.notes),
+        governing=main.governing,
     )
 
 

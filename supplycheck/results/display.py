@@ -55,6 +55,8 @@ STATE_WORDS: Final = MappingProxyType(
 )
 
 NOT_AT_ALL: Final = "none: the supply cannot give this flow"
+NONE_LEFT: Final = "none"
+"""What stands for a pressure below zero: at this flow none is left. The margin still counts from below."""
 
 _FIELD: Final = re.compile(r"\{([A-Za-z_]\w*)\}")
 
@@ -148,6 +150,62 @@ def demand_text(result: Result, units: UnitSet) -> str:
 def available_text(pressure: float, units: UnitSet) -> str:
     """Return the pressure [Pa] that the supply has at a flow; none where it cannot give the flow at all."""
     return NOT_AT_ALL if pressure < 0 else units.text(pressure, "pressure")
+
+
+def left_text(pressure: float | None, units: UnitSet, *, unit: bool = True) -> str:
+    """Return the pressure [Pa] that is left at a flow, with or without its ``unit``; none below zero.
+
+    >>> from supplycheck.units import US
+    >>> left_text(-7000.0, US), left_text(70000.0, US), left_text(70000.0, US, unit=False)
+    ('none', '10.2 psi', '10.2')
+    """
+    if pressure is not None and pressure < 0:
+        return NONE_LEFT
+    return units.text(pressure, "pressure") if unit else units.number(pressure, "pressure")
+
+
+def read_test_text(result: Result) -> str:
+    """Return which of several tests is read at the demand, where and of when; empty for a single one."""
+    tests = result.project.supply.tests
+    if len(tests) < 2:
+        return ""
+    read = next((test for test in tests if test.tag == result.supply.governing), None)
+    return "" if read is None else f"{read.tag} at {read.node}, {read.date.isoformat()}"
+
+
+def law_names(first: str, second: str) -> tuple[str, str]:
+    """Return the names of two friction laws, short where they differ without the form they are written in.
+
+    >>> law_names("Hazen-Williams, 4.52 Q^1.85 / (C^1.85 d^4.87) psi/ft", "Darcy-Weisbach with Colebrook")
+    ('Hazen-Williams', 'Darcy-Weisbach')
+    >>> law_names("Hazen-Williams, 4.52 …", "Hazen-Williams, 10.67 …")
+    ('Hazen-Williams, 4.52 …', 'Hazen-Williams, 10.67 …')
+    """
+    short, other = (re.split(r",| with ", name)[0] for name in (first, second))
+    return (first, second) if short == other else (short, other)
+
+
+def second_law_text(result: Result, units: UnitSet) -> str:
+    """Return in one sentence what the second law asks, what it leaves, and that the first decides."""
+    second = result.second_law
+    if second is None:
+        return ""
+    first, name = law_names(result.project.law.name, second.name)
+    if not math.isfinite(second.pressure):
+        return f"{name}: {second.note}. {first} decides."
+    margin, own = units.text(second.margin, "pressure"), units.text(result.margin.pressure, "pressure")
+    text = (
+        f"{name} needs {units.text(second.pressure, 'pressure')} at {units.text(second.flow, 'flow')}, "
+        f"margin {margin} instead of {own}; {first} decides."
+    )
+    return text + ("" if _alike(result) else f" By {name} alone the answer would be another.")
+
+
+def _alike(result: Result) -> bool:
+    """True where both laws are on the same side of the demand and of the margin rule."""
+    second, margin = result.second_law, result.margin
+    pairs = [(second.margin, margin.pressure), (second.after_rule, margin.after_rule)] if second else []
+    return all(a is None or b is None or (a < 0) == (b < 0) for a, b in pairs)
 
 
 def fill(text: str, finding: Finding, units: UnitSet) -> str:

@@ -61,6 +61,7 @@ def result_record(result: Result) -> Record:
         "demand": _demand(result, plain),
         "supply": _supply(result, plain),
         "margin": _margin(result, plain),
+        "second_law": _second_law(result, plain),
         "design_area": _design_area(result.design_area, plain),
         "nodes": [node_record(row, plain) for row in result.nodes],
         "pipes": [pipe_record(row, plain) for row in result.pipes],
@@ -140,6 +141,7 @@ def _supply(result: Result, plain: Plain) -> Record:
     ]
     return {
         **numbers,
+        "governing": supply.governing,
         "statement": supply.statement,
         "steps": step_records(supply.steps, plain),
         "tests": [_test(test, plain) for test in result.project.supply.tests],
@@ -189,6 +191,35 @@ def _margin(result: Result, plain: Plain) -> Record:
         "rule": margin.rule,
         "source": margin.source,
         "steps": step_records(margin.steps, plain),
+    }
+
+
+def _second_law(result: Result, plain: Plain) -> Record | None:
+    """Return the governing case by the second friction law, and the difference second less first."""
+    second = result.second_law
+    if second is None:
+        return None
+    numbers = plain.record(
+        {
+            "flow": (second.flow, "flow"),
+            "pressure": (second.pressure, "pressure"),
+            "available_pressure": (second.available_pressure, "pressure"),
+            "margin": (second.margin, "pressure"),
+            "required": (second.required, "pressure"),
+            "after_rule": (second.after_rule, "pressure"),
+        }
+    )
+    difference = {
+        "flow": (second.flow - result.demand.flow, "flow"),
+        "pressure": (second.pressure - result.demand.pressure, "pressure"),
+        "margin": (second.margin - result.margin.pressure, "pressure"),
+    }
+    return {
+        "name": second.name,
+        "decides": result.project.law.name,
+        **numbers,
+        "difference": plain.record(difference),
+        "note": second.note,
     }
 
 

@@ -258,7 +258,8 @@ class SupplyRecord:
 
     ``unadjusted_pressure`` is the same before the adjustments of the project. ``available_flow`` is the
     flow available at the demand pressure (``None`` where the curve never falls to it);
-    ``flow_at_20_psi`` is read at the test node.
+    ``flow_at_20_psi`` is read at the gauge of the test. ``governing`` names the test or tank whose curve
+    is the lowest at the demand; ``static``, ``residual`` and ``test_flow`` are its readings.
     """
 
     static: float
@@ -272,6 +273,7 @@ class SupplyRecord:
     tested_range_ratio: float | None
     steps: tuple[HandStep, ...]
     statement: str
+    governing: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -284,6 +286,24 @@ class MarginRecord:
     rule: str
     steps: tuple[HandStep, ...]
     source: str
+
+
+@dataclass(frozen=True, slots=True)
+class SecondLaw:
+    """The governing case by the second friction law ``name``: flow [m³/s], pressures [Pa].
+
+    As in the demand, supply and margin records. The verdict rests on the first law; not finite, with a
+    ``note``, where the case has no solution by this one.
+    """
+
+    name: str
+    flow: float
+    pressure: float
+    available_pressure: float
+    margin: float
+    required: float | None
+    after_rule: float | None
+    note: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -355,3 +375,4 @@ class Result:
     needed_pump: NeededPump | None = None
     duties: DutyAnswer = field(default_factory=DutyAnswer)
     fittings: tuple[FittingRow, ...] = ()
+    second_law: SecondLaw | None = None

@@ -15,7 +15,9 @@ from supplycheck.results.display import (
     demand_text,
     duties_text,
     finding_text,
+    read_test_text,
     residual_text,
+    second_law_text,
     visible,
 )
 from supplycheck.results.records import Result
@@ -53,7 +55,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
     read = "tank"
     if supply.residual is not None and supply.test_flow is not None:
         residual = f"residual {_t(units, supply.residual)} at {_t(units, supply.test_flow, 'flow')}"
-        read = f"test: static {_t(units, supply.static)}, {residual}"
+        read = f"{read_test_text(result) or 'test'}: static {_t(units, supply.static)}, {residual}"
     asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
     after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
     flow_gap = residual_text(balance.largest_flow_imbalance, "flow", units)
@@ -71,6 +73,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         ),
         ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),
         ("Rule", margin.rule, 2),
+        *([("Second law", second_law_text(result, units), 2)] if result.second_law else []),
         ("Governs", result.governs, 2),
         *_asked(result),
         ("Balance", f"flows disagree by {flow_gap}, pressures by {gap}", 1),

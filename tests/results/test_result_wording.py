@@ -6,6 +6,7 @@ from dataclasses import replace
 from pathlib import Path
 
 import pytest
+from duty_projects import supply, written
 from sample_result import sample
 
 from supplycheck.check import check_project
@@ -16,6 +17,7 @@ from supplycheck.report.sections.judged import flows
 from supplycheck.report.sections.rows import node_analysis
 from supplycheck.report.sections.water import water
 from supplycheck.results.display import demand_text, passing, residual_text, value_text
+from supplycheck.results.records import Result
 from supplycheck.results.screen import screen_text
 from supplycheck.units import BAR, METRIC, PSI, UNIT_SETS, US
 
@@ -95,3 +97,73 @@ def test_nominal_sizes_of_a_metric_project_are_named() -> None:
     ]
     assert sizes[0] == "DN 25"
     assert all(size.startswith("DN ") or size.endswith(" in") for size in sizes)
+
+
+def _numbers(result: Result) -> dict[str, str]:
+    facts = next(one for one in water(result, 500.0).blocks if isinstance(one, Facts))
+    return dict(facts.pairs)
+
+
+def test_of_several_tests_the_readings_say_which_one_they_are() -> None:
+    result = check_project(FOLDER / "two-supply-campus" / "project.toml")
+    tests = {test.tag: test for test in result.project.supply.tests}
+    assert len(tests) == 2
+    read = tests[result.supply.governing]
+    named = f"({read.tag} at {read.node}, {read.date.isoformat()})"
+    assert _numbers(result)["Static"] == f"{US.text(read.static, 'pressure')} {named}"
+    assert _numbers(result)["Residual"].endswith(f" {named}")
+    assert f"{named[:-1]}: static" in " ".join(screen_text(result).split())
+
+
+def test_of_a_single_test_the_readings_stand_alone() -> None:
+    result = check_project(FOLDER / "parcel-depot" / "project.toml")
+    assert _numbers(result)["Static"] == US.text(result.supply.static, "pressure")
+    assert "(test: static" in screen_text(result)
+
+
+def test_the_flow_at_20_psi_is_that_at_the_gauge() -> None:
+    found = _numbers(check_project(FOLDER / "parcel-depot" / "project.toml"))["Flow at 20 psi (1.38 bar)"]
+    assert found.endswith(" gpm at the gauge of the test")
+
+
+@pytest.mark.parametrize("name", ["parcel-depot", "boosted-warehouse", "office-floor", "yard-main"])
+def test_the_headline_says_what_is_left_after_the_rule(name: str) -> None:
+    result = check_project(FOLDER / name / "project.toml")
+    units, margin = UNIT_SETS[result.project.units], result.margin
+    assert margin.required is not None
+    left = units.text(margin.pressure - margin.required, "pressure")
+    assert result.verdict_text.startswith(
+        f"The supply carries the demand with {units.text(margin.pressure, 'pressure')} to spare, {left} "
+        f"more than the {units.text(margin.required, 'pressure')} that the margin rule asks for."
+    )
+
+
+SITE = ["S,0,supply", "B,0,outlet,,500"], ["x,S,B,100,6"]
+
+
+def _said(folder: Path, static: float, asked: str) -> Result:
+    """A main that falls by 10 psi at 500 gpm, and a pipe that takes little."""
+    rule = supply(static, static - 10, 500).replace('rule = "none"', asked)
+    return check_project(written(folder, "", *SITE, test=rule))
+
+
+def test_a_margin_below_the_rule_says_how_much_is_wanting(tmp_path: Path) -> None:
+    result = _said(tmp_path, 20.0, 'rule = "fixed"\npressure = 15')
+    wanting = US.text(15 * PSI - result.margin.pressure, "pressure")
+    assert result.verdict == "not adequate"
+    assert f"{wanting} less than the 15.0 psi that the margin rule asks for" in result.verdict_text
+
+
+def test_a_supply_that_is_short_says_what_the_rule_wants_as_well(tmp_path: Path) -> None:
+    result = _said(tmp_path, 10.0, 'rule = "fixed"\npressure = 15')
+    short = -result.margin.pressure
+    assert short > 0
+    assert result.verdict_text == (
+        f"The supply falls short of the demand by {US.text(short, 'pressure')}, and of what the margin "
+        f"rule asks for by {US.text(short + 15 * PSI, 'pressure')}."
+    )
+
+
+def test_where_no_margin_is_asked_it_says_so(tmp_path: Path) -> None:
+    result = _said(tmp_path, 40.0, 'rule = "none"')
+    assert result.verdict_text.endswith(" to spare; no margin is asked.")

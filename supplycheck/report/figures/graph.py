@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import itertools
 import math
+from itertools import compress
 from typing import Final
 
 from supplycheck.report.drawing import Box, Drawing, Item, Label, Line
@@ -18,6 +19,7 @@ from supplycheck.report.figures.marks import (
     symbol,
 )
 from supplycheck.report.theme import CLAY, INK, LAGOON, PETROL, PLUM, RULE, SLATE, text_width
+from supplycheck.results.display import NONE_LEFT
 from supplycheck.results.records import CurvePoints, GraphPoint
 from supplycheck.units import UnitSet
 
@@ -68,12 +70,14 @@ def supply_graph(
     """
     lines = [_in_units(curve, units) for curve in curves]
     marks = [_mark_of(point, units) for point in points]
+    drawn = [_has_pressure(curve, line) for curve, line in zip(curves, lines, strict=True)]
+    curves, lines = tuple(compress(curves, drawn)), list(compress(lines, drawn))
     strokes = _strokes(curves)
     plain_bottom = _BOTTOM + 11.0 * (_legend_rows(curves, strokes, size[0]) - 1)
     for numbered in (False, True):
         rows = key_rows(marks, size[0]) if numbered else []
         size = (size[0], size[1] + KEY_ROW * len(rows))
-        frame = _frame(lines, marks, size, plain_bottom + KEY_ROW * len(rows))
+        frame = _frame(curves, lines, marks, size, plain_bottom + KEY_ROW * len(rows))
         if frame is None:
             return Drawing(size[0], 20.0, (Label(0, 6, "no curve to draw"),), "no curve to draw")
         taken = Taken(_LEFT, frame.bottom, frame.right, frame.top)
@@ -91,9 +95,17 @@ def supply_graph(
     return Drawing(*size, tuple(items), "supply and demand against flow")
 
 
+def _has_pressure(curve: CurvePoints, line: list[tuple[float, float]]) -> bool:
+    """True where something of ``line`` can be drawn: a supply below zero at every flow cannot."""
+    return curve.style == "demand" or not line or max(pressure for _, pressure in line) > 0.0
+
+
 def _mark_of(point: GraphPoint, units: UnitSet) -> Mark:
+    """Return a mark; where no pressure is left it stands on the line of zero and says so."""
     flow, pressure = units.from_si(point.flow, "flow"), units.from_si(point.pressure, "pressure")
     numbers = f"{units.text(point.flow, 'flow')}, {units.text(point.pressure, 'pressure')}"
+    if pressure < 0 and not point.style.startswith("demand"):
+        numbers, pressure = f"{NONE_LEFT} at {units.text(point.flow, 'flow')}", 0.0
     return Mark(point.name, point.style, flow, pressure, f"{point.name}: {numbers}")
 
 
@@ -118,6 +130,7 @@ def _in_units(curve: CurvePoints, units: UnitSet) -> list[tuple[float, float]]:
 
 
 def _frame(
+    curves: tuple[CurvePoints, ...],
     lines: list[list[tuple[float, float]]],
     marks: list[Mark],
     size: tuple[float, float],
@@ -128,7 +141,8 @@ def _frame(
     if flow <= 0:
         return None
     steps = round_steps(max(p for _, p in every) * 1.06, max(4, round(size[1] / 30)))
-    lowest = min(p for _, p in every)
+    needed = [line for curve, line in zip(curves, lines, strict=True) if curve.style == "demand"]
+    lowest = min([p for line in needed for _, p in line] + [m.pressure for m in marks], default=0.0)
     if lowest < 0:
         step = steps[1]
         below = math.ceil(min(-lowest, 3 * step) / step)

@@ -16,6 +16,7 @@ from supplycheck.results.display import (
     demand_text,
     duties_text,
     finding_text,
+    second_law_text,
 )
 from supplycheck.results.records import Result
 
@@ -87,6 +88,7 @@ def _reasons(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("What governs", result.governs),
         *_asked(result),
         ("Margin rule", result.margin.rule),
+        *([("Second law", second_law_text(result, show.units))] if result.second_law else []),
         *_pump(result, show),
         ("Findings", counts_text(result.findings)),
     )
@@ -124,7 +126,7 @@ def _pump(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     one = next((option for option in needed.options if option.suction_holds), needed.options[0])
     where = f"in place of {needed.instead_of}" if needed.instead_of else f"behind {needed.node}"
     rating = f"{show.t(one.rating.flow, 'flow')} at {show.t(one.rating.pressure, 'pressure')}"
-    left = show.t(one.suction_at_overload, "pressure")
+    left = show.left_t(one.suction_at_overload)
     text = f"rated {rating}, {where}; {left} left at its suction at 150 % of the flow"
     return (("A pump that would do", text),)
 

@@ -68,7 +68,7 @@ def _cases(result: Result, show: Show) -> Table:
     note = (
         "Every case is solved on the network; flows at outlets are fixed. Needed and margin are at "
         f"{result.demand.node} at the flow of the case; left and asked are at the outlet with the supply "
-        "as it is. The case that governs is in bold."
+        "as it is, none where no pressure is left. The case that governs is in bold."
     )
     return Table("Cases side by side", columns, tuple(rows), note, empty="no case was solved", size=6.6)
 
@@ -127,7 +127,7 @@ def _case(row: DutyRow, show: Show, *, strong: bool) -> Row:
             show.n(row.required_pressure, "pressure"),
             show.n(row.margin, "pressure"),
             spare.node if spare else row.governing,
-            show.n(spare.pressure if spare else None, "pressure"),
+            show.left(spare.pressure if spare else None),
             show.n(spare.required if spare else None, "pressure"),
         ),
         note="; ".join(notes),
@@ -183,7 +183,7 @@ def _hydrants(result: Result, duty: HydrantDuty, show: Show) -> list[Block]:
                 row.node,
                 show.n(row.static, "pressure"),
                 show.n(row.alone, "flow"),
-                show.n(row.residual_alone, "pressure"),
+                show.left(row.residual_alone),
                 show.n(row.greatest_flow, "flow"),
                 show.n(row.greatest_on_maximum_day, "flow"),
                 row.limited_by,
@@ -220,7 +220,7 @@ def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
         ("Share of the fire flow", show.t(hydrant.share, "flow")),
         (
             "Asked alone",
-            f"{show.t(hydrant.alone, 'flow')}, {show.t(hydrant.residual_alone, 'pressure')} left",
+            f"{show.t(hydrant.alone, 'flow')}, {show.left_t(hydrant.residual_alone)} left",
         ),
         ("Loss of lateral and body", loss),
         ("Greatest flow", show.t(hydrant.greatest_flow, "flow")),
@@ -237,7 +237,7 @@ def _sheet(result: Result, hydrant: HydrantRow, show: Show) -> list[Block]:
             (
                 label,
                 show.n(one.flow, "flow"),
-                show.n(one.pressure, "pressure"),
+                show.left(one.pressure),
                 show.n(one.required, "pressure"),
                 show.n(one.spare, "pressure"),
             )
@@ -286,7 +286,7 @@ def _outflows(result: Result, show: Show) -> Table:
                 show.n(at_demand[one.node].elevation, "length"),
                 show.n(one.flow, "flow"),
                 show.n(at_demand[one.node].pressure, "pressure"),
-                show.n(one.pressure, "pressure"),
+                show.left(one.pressure),
                 show.n(one.required, "pressure"),
                 show.n(one.spare, "pressure"),
             ),
@@ -358,7 +358,7 @@ def _outlets(result: Result, show: Show) -> Table:
                 show.n(row.size, "size", 1),
                 show.n(row.required, "pressure"),
                 show.n(row.needed_at_node, "pressure"),
-                show.n(row.lowest_flowing, "pressure"),
+                show.left(row.lowest_flowing),
                 show.n(row.no_flow, "pressure"),
                 row.device or "none",
                 show.n(row.after_device, "pressure"),

@@ -127,7 +127,7 @@ def _scenarios(result: Result, show: Show) -> Table:
             (
                 row.name,
                 show.n(row.total_flow, "flow"),
-                show.n(row.supply_pressure, "pressure"),
+                show.left(row.supply_pressure),
                 show.n(row.sprinkler_flow, "flow") if row.heads_open else "–",
                 str(row.heads_open) if row.heads_open else "–",
                 row.lowest_head or "–",

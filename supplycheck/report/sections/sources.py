@@ -105,17 +105,17 @@ def _state_cells(state: PumpState, show: Show, *, header: bool) -> tuple[str, ..
         _WHEN[state.name],
         show.n(state.flow, "flow"),
         show.n(state.share, "percent"),
-        *(show.n(value, "pressure") for value in (state.main, state.suction, state.net, state.discharge)),
+        *(show.left(value) for value in (state.main, state.suction, state.net, state.discharge)),
     )
-    return (*cells, show.n(state.at_header, "pressure")) if header else cells
+    return (*cells, show.left(state.at_header)) if header else cells
 
 
 def _needed(needed: NeededPump, show: Show) -> list[Block]:
     where = f"in place of pump {needed.instead_of}" if needed.instead_of else f"behind {needed.node}"
     text = (
         f"The supply falls short by {show.t(needed.missing, 'pressure')}, the margin rule included. A pump "
-        f"{where} would have to add {show.t(needed.net, 'pressure')} at {show.t(needed.flow, 'flow')}, on "
-        f"{show.t(needed.suction, 'pressure')} of suction. Of each size below, every pump within the "
+        f"{where} would have to add {show.t(needed.net, 'pressure')} at {show.t(needed.flow, 'flow')}, "
+        f"{_on_suction(needed.suction, show)}. Of each size below, every pump within the "
         "limits of the pump standard is strong enough. The floor is that of a main, or the authority's own."
     )
     columns = (
@@ -131,7 +131,7 @@ def _needed(needed: NeededPump, show: Show) -> list[Block]:
                 show.n(one.rating.flow, "flow"),
                 show.n(one.rating.pressure, "pressure"),
                 show.n(one.demand_share, "percent"),
-                show.n(one.suction_at_overload, "pressure"),
+                show.left(one.suction_at_overload),
                 "holds" if one.suction_holds else "does not hold",
             )
         )
@@ -142,6 +142,12 @@ def _needed(needed: NeededPump, show: Show) -> list[Block]:
         Paragraph(text),
         Table("Sizes that would do", columns, rows, empty="no size reaches"),
     ]
+
+
+def _on_suction(suction: float, show: Show) -> str:
+    if suction < 0:
+        return "though at that flow the supply has no pressure left for its suction"
+    return f"on {show.t(suction, 'pressure')} of suction"
 
 
 def _tanks(tanks: tuple[TankRecord, ...], show: Show, width: float) -> list[Block]:

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from supplycheck.model import FlowTest, Supply
 from supplycheck.report.document import Block, Facts, Figure, Heading, Paragraph, Row, Section, Table
 from supplycheck.report.figures.graph import supply_graph
 from supplycheck.report.show import Show, column, given, steps_table, words
-from supplycheck.results.display import available_text, demand_text
-from supplycheck.results.records import Result
+from supplycheck.results.display import NONE_LEFT, available_text, demand_text, law_names, read_test_text
+from supplycheck.results.records import HandStep, Result
 
 
 def water(result: Result, width: float) -> Section:
@@ -30,10 +32,11 @@ def water(result: Result, width: float) -> Section:
         blocks.append(_tanks(supply, show))
     blocks += [
         _adjustments(supply, show),
-        steps_table("The curve, step by step", result.supply.steps, show),
+        _curve_steps(result, show),
         Heading("Margin"),
         Paragraph(result.margin.rule + (f" ({result.margin.source})" if result.margin.source else "")),
         steps_table("The margin, step by step", result.margin.steps, show),
+        *_second_law(result, show),
         Paragraph(
             "Nothing is rounded inside the calculation: a sum of printed numbers may differ from its "
             "printed result by one in the last digit.",
@@ -41,6 +44,89 @@ def water(result: Result, width: float) -> Section:
         ),
     ]
     return Section("Water supply analysis", tuple(blocks), fresh=True)
+
+
+def _curve_steps(result: Result, show: Show) -> Table:
+    """Return the steps; past the zero of the curve no pressure is left, only a number to reckon with."""
+    steps = result.supply.steps
+    table = steps_table("The curve, step by step", steps, show)
+    rows = tuple(
+        _none_left(row) if step.kind == "pressure" and step.value < 0 and not _is_rest(step) else row
+        for row, step in zip(table.rows, steps, strict=True)
+    )
+    return replace(table, rows=rows)
+
+
+def _is_rest(step: HandStep) -> bool:
+    return step.step.startswith("Left over")
+
+
+def _none_left(row: Row) -> Row:
+    past = f"past the zero of the curve, carried on to {row.cells[2]} for the margin"
+    return Row((*row.cells[:2], NONE_LEFT), note="; ".join(text for text in (row.note, past) if text))
+
+
+def _second_law(result: Result, show: Show) -> list[Block]:
+    """Return demand, supply and margin by both friction laws, and which of them decides."""
+    second = result.second_law
+    if second is None:
+        return []
+    first, other = law_names(result.project.law.name, second.name)
+    title = "Both friction laws"
+    if second.note:
+        return [Paragraph(f"{title}: by {other} {second.note}. {first} decides.")]
+    demand, margin = result.demand, result.margin
+    columns = (
+        words("Friction law"),
+        column("Demand flow", show.s("flow")),
+        column(f"Demand at {demand.node}", show.s("pressure")),
+        column(f"Available at {demand.node}", show.s("pressure")),
+        column("Margin before the rule", show.s("pressure")),
+        column("Left after the rule", show.s("pressure")),
+    )
+    available = result.supply.available_pressure
+    rows = (
+        _law_row(
+            first, demand.flow, (demand.pressure, available, margin.pressure, margin.after_rule), show
+        ),
+        _law_row(
+            other,
+            second.flow,
+            (second.pressure, second.available_pressure, second.margin, second.after_rule),
+            show,
+        ),
+        Row(
+            (
+                f"{other} less {first}",
+                show.n(second.flow - demand.flow, "flow"),
+                show.n(second.pressure - demand.pressure, "pressure"),
+                "",
+                show.n(second.margin - margin.pressure, "pressure"),
+                "",
+            )
+        ),
+    )
+    note = (
+        f"The verdict rests on {first}. {other} is worked for the same heads and outlets on the same "
+        "pipes; other placements of the design area are not tried by it."
+    )
+    return [Table(title, columns, rows, note)]
+
+
+def _law_row(
+    name: str, flow: float, pressures: tuple[float, float, float, float | None], show: Show
+) -> Row:
+    demand, available, margin, after = pressures
+    return Row(
+        (
+            name,
+            show.n(flow, "flow"),
+            show.n(demand, "pressure"),
+            show.left(available),
+            show.n(margin, "pressure"),
+            show.n(after, "pressure"),
+        )
+    )
 
 
 def _caption(result: Result) -> str:
@@ -66,7 +152,7 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Static there", show.t(supply.static_at_comparison, "pressure")),
         ("Demand there", f"{show.t(demand.pressure, 'pressure')}; {demand_text(result, show.units)}"),
         ("Available there", available_text(supply.available_pressure, show.units)),
-        ("Before adjustments", show.t(supply.unadjusted_pressure, "pressure")),
+        ("Before adjustments", available_text(supply.unadjusted_pressure, show.units)),
         (
             "Flow at the demand pressure",
             show.t(supply.available_flow, "flow") if supply.available_flow else "none",
@@ -74,11 +160,14 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
     )
     if supply.residual is None:  # a tank gives most: there is no reading
         return common
+    named = read_test_text(result)
+    of_which = f" ({named})" if named else ""
+    residual = f"{show.t(supply.residual, 'pressure')} at {show.t(supply.test_flow, 'flow')}"
     return (
-        ("Static", show.t(supply.static, "pressure")),
-        ("Residual", f"{show.t(supply.residual, 'pressure')} at {show.t(supply.test_flow, 'flow')}"),
+        ("Static", f"{show.t(supply.static, 'pressure')}{of_which}"),
+        ("Residual", f"{residual}{of_which}"),
         *common,
-        ("Flow at 20 psi (1.38 bar)", f"{show.t(supply.flow_at_20_psi, 'flow')} at the test"),
+        ("Flow at 20 psi (1.38 bar)", f"{show.t(supply.flow_at_20_psi, 'flow')} at the gauge of the test"),
         ("Demand / tested flow", "–" if ratio is None else f"{ratio:.2f}"),
     )
 
