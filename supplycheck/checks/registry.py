@@ -24,6 +24,7 @@ from supplycheck.checks import (
     scenarios,
     sizes,
     standing,
+    starter,
     water_supply,
 )
 from supplycheck.checks.context import CheckContext
@@ -31,6 +32,7 @@ from supplycheck.checks.rule import Rule
 from supplycheck.findings import Finding, State
 
 RULES: Final[tuple[Rule, ...]] = (
+    *starter.RULES,
     *water_supply.RULES,
     *standing.RULES,
     *pumps_and_tanks.RULES,

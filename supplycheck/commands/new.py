@@ -10,16 +10,19 @@ import click
 @click.command(name="new")
 @click.argument("directory", type=click.Path(file_okay=False))
 def command(directory: str) -> None:
-    """Write a commented starter project into DIRECTORY; it passes as it stands.
+    """Write a commented starter project into DIRECTORY.
+
+    The file DIRECTORY/project.toml is complete and can be checked at once. Its layout and flow test are
+    invented: put your own in their place line by line. The check lists what is still the starter's.
 
     An existing project is never overwritten.
     """
-    from importlib.resources import files
+    from supplycheck.project.starter import starter_text
 
     if not directory.strip():
         raise click.UsageError("DIRECTORY is empty; name the folder of the new project ('.' for this one).")
     target = Path(directory) / "project.toml"
-    text = files("supplycheck.project").joinpath("starter.toml").read_text(encoding="utf-8")
+    text = starter_text()
     try:
         target.parent.mkdir(parents=True, exist_ok=True)
         with target.open("x", encoding="utf-8", newline="\n") as file:
@@ -30,4 +33,9 @@ def command(directory: str) -> None:
         ) from None
     except OSError as caught:
         raise click.UsageError(f"{target} cannot be written ({caught.strerror})") from None
-    click.echo(f"wrote {target}\nnext: supplycheck check {directory}")
+    click.echo(
+        f"wrote {target}\n"
+        "Its layout and flow test are invented. Put your own in their place, first where a text begins\n"
+        "with REPLACE; the check lists by key and line what is still the starter's.\n"
+        f"next: supplycheck check {directory}"
+    )

@@ -9,7 +9,7 @@ from supplycheck.model.criteria import (
     VelocityPolicy,
 )
 from supplycheck.model.fluid import DARCY, HEAD_FORM, HW_METRIC, HW_US, Fluid, FrictionLaw
-from supplycheck.model.project import Assumption, InputFile, Project, ProjectFacts, Scenario
+from supplycheck.model.project import Assumption, InputFile, Project, ProjectFacts, Scenario, Unedited
 from supplycheck.model.supply import (
     Adjustment,
     FlowTest,
@@ -53,5 +53,6 @@ __all__ = [
     "System",
     "Tank",
     "TestPoint",
+    "Unedited",
     "VelocityPolicy",
 ]

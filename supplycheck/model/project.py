@@ -67,6 +67,15 @@ class Scenario:
 
 
 @dataclass(frozen=True, slots=True)
+class Unedited:
+    """A value of the project file that is still the starter's; ``figure`` where the answer rests on it."""
+
+    key: str
+    line: int
+    figure: bool
+
+
+@dataclass(frozen=True, slots=True)
 class Project:
     """Everything that the calculation needs, read and checked. ``units`` is ``"us"`` or ``"metric"``."""
 
@@ -86,3 +95,4 @@ class Project:
     standpipes: StandpipeDuty | None = None
     hydrants: HydrantDuty | None = None
     outflows: OutflowDuty | None = None
+    unedited: tuple[Unedited, ...] = ()

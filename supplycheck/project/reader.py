@@ -6,6 +6,7 @@ import contextlib
 import math
 import re
 import tomllib
+from dataclasses import replace
 from pathlib import Path
 from typing import Any, Final
 
@@ -37,6 +38,7 @@ from supplycheck.project.network_tables import read_network
 from supplycheck.project.parts import KindReader, kinds_by_name, read_devices, read_extra, read_sprinklers
 from supplycheck.project.sections import Sections, read_sections
 from supplycheck.project.standard import Standard, read_laws, read_standard
+from supplycheck.project.starter import unedited
 from supplycheck.project.supply import SupplyReader
 from supplycheck.project.system import Finisher, finish
 from supplycheck.project.tags import TagCheck
@@ -358,7 +360,8 @@ def read_project(path: Path) -> Project:
     sections = read_sections(raw or {}, path.name, faults)
     faults.seal()
     try:
-        return _assemble(sections, folder, faults)
+        project = _assemble(sections, folder, faults)
+        return replace(project, unedited=unedited(text or "", raw or {}))
     except DomainError:
         faults.stop()  # a stand-in for a value that could not be read has gone too far
         raise

@@ -31,6 +31,7 @@ from supplycheck.model import (
     Outlet,
     Tank,
     TestPoint,
+    Unedited,
 )
 from supplycheck.network.records import Solution
 from supplycheck.results.display import finding_text
@@ -905,8 +906,21 @@ BASIS = [
 
 DUTIES = [Case(*one) for one in DUTY_CASES]
 PLAUSIBILITY = [Case(*one) for one in PLAUSIBILITY_CASES]
+LEFT = {
+    "title": Unedited("project.title", 16, figure=False),
+    "site": Unedited("project.site", 17, figure=False),
+    "layout": Unedited("layout", 60, figure=True),
+    "static": Unedited("supply.flow_test.static", 91, figure=True),
+}
+STARTER = [
+    Case("values of the starter", "ok", {}, 0),
+    Case("values of the starter", "missing", {"project.unedited": tuple(LEFT.values())}, 4),
+    Case("values of the starter", "missing", {"project.unedited": (LEFT["site"],)}, 1),
+    Case("values of the starter", "fail", {"project.unedited": (LEFT["site"], LEFT["static"])}, 2, 0),
+    Case("values of the starter", "fail", {"project.unedited": (LEFT["layout"],)}, 1, 0),
+]
 
-CASES = SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS + DUTIES + PLAUSIBILITY
+CASES = STARTER + SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS + DUTIES + PLAUSIBILITY
 
 
 def name_of(case: Case) -> str:
