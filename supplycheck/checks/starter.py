@@ -36,7 +36,7 @@ def unedited(context: CheckContext) -> Finding:
         text = "Not run: texts of the starter that are not replaced yet: {measured}."
         return UNEDITED.says("missing", text, measured=number, remedy=ask)
     rests = "so the supply is nobody's test" if _on_supply(figures) else "and the answer rests on them"
-    text = f"{{measured}} of the starter's values stand; figures among them are invented, {rests}."
+    text = f"Values of the starter that still stand: {{measured}}, invented figures among them, {rests}."
     do = f"Put your own values in place of the starter's: {_places(left)}."
     return UNEDITED.says("fail", text, measured=number, limit=count(0), remedy=do)
 
