@@ -237,7 +237,7 @@ def _problem(record: Any, said: str) -> str:
 
 def _line(outcome: Outcome, wide: int) -> str:
     """Return the line of one project."""
-    from supplycheck.results.display import visible
+    from supplycheck.results.display import NONE_LEFT, visible
 
     name = visible(outcome.job.name)
     name = name if len(name) <= wide else name[: wide - 1] + "…"
@@ -251,7 +251,8 @@ def _line(outcome: Outcome, wide: int) -> str:
         return "–" if value is None else f"{value:.{decimals}f} {symbol}".replace("-", "−")
 
     demand = f"{number(outcome.demand_flow, flow, 0)} at {number(outcome.demand, pressure, places)}"
-    available = number(outcome.available, pressure, places)
+    short = outcome.available is not None and outcome.available < 0
+    available = NONE_LEFT if short else number(outcome.available, pressure, places)
     margin = number(outcome.margin, pressure, places)
     return f"{name:<{wide}}  {outcome.verdict:<16}{demand:>24}{available:>14}{margin:>12}{outcome.fails:>7}"
 

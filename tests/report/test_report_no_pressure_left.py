@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 import re
+from dataclasses import replace
+from pathlib import Path
 
 import pytest
 from duty_projects import supply, written
 
 from supplycheck.check import check_project
+from supplycheck.commands.portfolio import Job, Outcome, _line
 from supplycheck.report.build import build_document
 from supplycheck.report.document import Facts, Figure, Table
 from supplycheck.report.drawing import Box, Dot, Label
@@ -81,3 +84,14 @@ def test_the_finding_on_the_main_says_that_nothing_is_left(result: Result) -> No
     found = next(one for one in result.findings if one.check == "pressure left in the main")
     assert found.measured is None
     assert finding_text(found, US).startswith("No pressure is left in the main")
+
+
+def test_the_line_of_a_portfolio_says_none() -> None:
+    job = Job("weak", Path("project.toml"), Path("review"))
+    units = {"flow": "gpm", "pressure": "psi"}
+    told = Outcome(
+        job, 1, "not adequate", "weak", units=units, demand_flow=900.0, demand=40.0, available=-160.2,
+        margin=-200.2, required=0.0, fails=2,
+    )  # fmt: skip
+    assert re.search(r"900 gpm at 40\.0 psi\s+none\s+−200\.2 psi", _line(told, 8))
+    assert re.search(r"at 40\.0 psi\s+–\s", _line(replace(told, available=None), 8))
