@@ -53,7 +53,7 @@ def _section(sheets: Sheets, section: Section, number: int) -> None:
     if section.landscape != sheets.landscape or (section.fresh and used > _LITTLE):
         sheets.turn(section.landscape)
     if number > 0:
-        sheets.need(max(96.0, 42.0 + _opening_height(sheets, section.blocks)))
+        sheets.need(max(96.0, 42.0 + _opening_height(sheets, section.blocks, figure=True)))
         if not sheets.is_fresh:
             sheets.y -= 14
         sheets.sheet.entries.append((section.title, sheets.y))
@@ -72,10 +72,11 @@ _MOST_KEPT: Final = 0.9
 """Share of a page that is kept together at most, from a heading to the first rows below it."""
 
 
-def _opening_height(sheets: Sheets, blocks: Sequence[Block]) -> float:
+def _opening_height(sheets: Sheets, blocks: Sequence[Block], *, figure: bool = False) -> float:
     """Return the room that ``blocks`` take down to the first rows, figure or item of a list.
 
-    A heading, and the sentences between it and what it heads, are never parted from it.
+    A heading, and the sentences between it and what it heads, are never parted from it; facts stay with
+    the rows that follow them, and where ``figure`` says so with the figure.
     """
     height = 0.0
     for block, after in zip_longest(blocks, blocks[1:]):
@@ -89,13 +90,15 @@ def _opening_height(sheets: Sheets, blocks: Sequence[Block]) -> float:
                     break
             case Facts():
                 height += min(_facts_height(sheets, block), 200.0)
-                if not isinstance(after, Figure):
+                if not (isinstance(after, Table) or (figure and isinstance(after, Figure))):
                     break
             case Table():
                 height += opening_height(sheets, block)
                 break
             case Figure():
-                height += 0.0 if block.if_room else _figure_height(sheets, block, block.drawing)
+                height += (
+                    0.0 if block.if_room else _figure_height(sheets, block, block.smaller or block.drawing)
+                )
                 break
             case _:
                 height += 40.0

@@ -63,7 +63,7 @@ def _opening(
     """Return the height of title, header and the first rows, of a short table that of all of it."""
     first = laid if len(laid) <= TOGETHER else laid[:KEPT]
     rows = sum(_row_height(one, grid) for one in first)
-    title = 14.6 if table.title else 0.0
+    title = 17.6 if table.title else 0.0
     return title + _header_height(head, grid) + rows + (below if first is laid else 0.0)
 
 
@@ -119,6 +119,7 @@ def _row_height(laid: _Laid, grid: _Grid) -> float:
 
 def _title(sheets: Sheets, title: str) -> None:
     if title:
+        sheets.y -= 0.0 if sheets.is_fresh else 3.0
         sheets.text(title, 8.4, bold=True, colour=PETROL)
         sheets.y -= 3
 

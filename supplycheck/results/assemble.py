@@ -182,8 +182,8 @@ def _verdict_text(verdict: Verdict, comparison: Comparison, solution: Solution, 
     asked, left = show(comparison.required, "pressure"), show(abs(comparison.after_rule), "pressure")
     more = "more" if verdict == "adequate" else "less"
     return (
-        f"The supply carries the demand with {margin} to spare, {left} {more} than the {asked} that the "
-        "margin rule asks for."
+        f"The supply carries the demand with {margin} to spare, {left} {more} than the rule asks for "
+        f"({asked})."
     )
 
 
@@ -191,7 +191,7 @@ def _and_of_the_rule(comparison: Comparison, show: Show) -> str:
     """Return by how much a supply that is short is short of the margin rule as well."""
     if not comparison.required or comparison.after_rule is None:
         return ""
-    return f", and of what the margin rule asks for by {show(-comparison.after_rule, 'pressure')}"
+    return f", and of what the rule asks for by {show(-comparison.after_rule, 'pressure')}"
 
 
 def _governs(nodes: tuple[NodeRow, ...], governing: str, case: DemandCase, show: Show) -> str:

@@ -134,7 +134,7 @@ def test_the_headline_says_what_is_left_after_the_rule(name: str) -> None:
     left = units.text(margin.pressure - margin.required, "pressure")
     assert result.verdict_text.startswith(
         f"The supply carries the demand with {units.text(margin.pressure, 'pressure')} to spare, {left} "
-        f"more than the {units.text(margin.required, 'pressure')} that the margin rule asks for."
+        f"more than the rule asks for ({units.text(margin.required, 'pressure')})."
     )
 
 
@@ -151,7 +151,7 @@ def test_a_margin_below_the_rule_says_how_much_is_wanting(tmp_path: Path) -> Non
     result = _said(tmp_path, 20.0, 'rule = "fixed"\npressure = 15')
     wanting = US.text(15 * PSI - result.margin.pressure, "pressure")
     assert result.verdict == "not adequate"
-    assert f"{wanting} less than the 15.0 psi that the margin rule asks for" in result.verdict_text
+    assert f"{wanting} less than the rule asks for (15.0 psi)." in result.verdict_text
 
 
 def test_a_supply_that_is_short_says_what_the_rule_wants_as_well(tmp_path: Path) -> None:
@@ -159,7 +159,7 @@ def test_a_supply_that_is_short_says_what_the_rule_wants_as_well(tmp_path: Path)
     short = -result.margin.pressure
     assert short > 0
     assert result.verdict_text == (
-        f"The supply falls short of the demand by {US.text(short, 'pressure')}, and of what the margin "
+        f"The supply falls short of the demand by {US.text(short, 'pressure')}, and of what the "
         f"rule asks for by {US.text(short + 15 * PSI, 'pressure')}."
     )
 

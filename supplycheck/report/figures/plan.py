@@ -119,7 +119,8 @@ def area_plan(result: Result, units: UnitSet, size: tuple[float, float]) -> Plan
         ys += [y0, y1]
     reach = 0.04 * max(max(xs) - min(xs), max(ys) - min(ys), 3.0) + 0.5
     window = Window(min(xs) - reach, min(ys) - reach, max(xs) + reach, max(ys) + reach)
-    return _view(result, units, _filling(window, size), size, enlarged=True)
+    whole = _round(list(places_of(result).values()), result).grown(reach)
+    return _view(result, units, _within(_filling(window, size), whole), size, enlarged=True)
 
 
 def _filling(window: Window, size: tuple[float, float]) -> Window:
@@ -129,6 +130,14 @@ def _filling(window: Window, size: tuple[float, float]) -> Window:
     more_x = max(high * shape - wide, 0.0) / 2
     more_y = max(min(wide / shape, 2 * high) - high, 0.0) / 2
     return Window(window.x0 - more_x, window.y0 - more_y, window.x1 + more_x, window.y1 + more_y)
+
+
+def _within(window: Window, whole: Window) -> Window:
+    """Return ``window`` moved up or down, then cut, so that it shows nothing beyond ``whole``."""
+    over, under = max(window.y1 - whole.y1, 0.0), max(whole.y0 - window.y0, 0.0)
+    move = under if under else -over
+    low, high = max(window.y0 + move, whole.y0), min(window.y1 + move, whole.y1)
+    return Window(window.x0, low, window.x1, high)
 
 
 def _factor(window: Window, size: tuple[float, float]) -> float:

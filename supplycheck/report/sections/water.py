@@ -24,6 +24,7 @@ def water(result: Result, width: float) -> Section:
             "Supply and demand",
             graph,
             _caption(result),
+            smaller=supply_graph(result.curves, result.points, show.units, (width, 250.0)),
         ),
     ]
     for test in supply.tests:
@@ -231,7 +232,11 @@ def _test(test: FlowTest, show: Show) -> list[Block]:
         column("Pitot", show.s("pressure")),
         column("Pumper factor"),
     )
-    return [Heading(f"{kind}: {test.tag}"), Facts(pairs, columns=2), Table("", columns, tuple(rows))]
+    return [
+        Heading(f"{kind}: {test.tag}"),
+        Facts(pairs, columns=2),
+        Table("Readings", columns, tuple(rows)),
+    ]
 
 
 def _tanks(supply: Supply, show: Show) -> Table:
