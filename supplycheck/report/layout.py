@@ -277,12 +277,26 @@ def _blank_lines(sheets: Sheets, block: BlankLines) -> None:
     sheets.y -= 14
 
 
+_LISTED: Final = 6.4
+_TAIL: Final = 10
+"""The last page of a listing holds so many lines at least."""
+
+
 def _listing(sheets: Sheets, block: Listing) -> None:
     sheets.need(40)
     sheets.text(block.title, 8.4, bold=True, colour=PETROL)
     if block.note:
         sheets.text(block.note, 7.0, colour=SLATE)
     sheets.y -= 2
-    for line in block.lines:
-        sheets.text(line, 6.4, colour=INK, indent=6)
+    leading, indent = _LISTED * 1.38, 6.0
+    lines = [
+        part for line in block.lines for part in wrap(line, sheets.room - indent, _LISTED, sheets.ruler)
+    ]
+    here = int((sheets.y - sheets.bottom) / leading)
+    page = int((sheets.top - sheets.bottom) / leading)
+    alone = 0 < (len(lines) - here) % page < _TAIL if len(lines) > here else False
+    for place, line in enumerate(lines):
+        if alone and place == len(lines) - _TAIL:
+            sheets.need(_TAIL * leading)
+        sheets.text(line, _LISTED, colour=INK, indent=indent)
     sheets.y -= 8

@@ -11,6 +11,7 @@ from supplycheck.report.document import (
     Facts,
     Figure,
     Heading,
+    Listing,
     Paragraph,
     Row,
     Section,
@@ -122,3 +123,14 @@ def test_a_table_without_rows_is_one_line_without_a_header() -> None:
     page = html_text(_document(section))
     assert "Adjustments of the curve: none in the project." in page
     assert "What it does" not in page
+
+
+def test_a_listing_does_not_end_on_a_page_of_its_own() -> None:
+    for count in range(40, 240):
+        listing = Listing("file", tuple(f"line {place}" for place in range(count)))
+        told = [
+            [text for text in _texts(page) if text.startswith("line ")]
+            for page in _pages(Section("The answer", (listing,)))
+        ]
+        assert [text for page in told for text in page] == list(listing.lines)
+        assert len(told[-1]) >= 10

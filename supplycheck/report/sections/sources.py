@@ -70,6 +70,7 @@ def _pump(pump: PumpRecord, show: Show, width: float) -> list[Block]:
                 f"Supply, pump and both together at {facts.tag}",
                 supply_graph(pump.curves, pump.points, show.units, (width, 300.0)),
                 f"Against the flow through the pump.{drawn}{beyond}",
+                smaller=supply_graph(pump.curves, pump.points, show.units, (width, 220.0)),
             )
         )
     return blocks
