@@ -9,11 +9,11 @@ import click
 
 COMMANDS = {
     "check": "Check a system against its water supply and write the review package.",
-    "new": "Write a commented starter project that passes as it stands.",
-    "pipe": "Solve one pipe: loss, flow or diameter.",
-    "flowtest": "Reduce a hydrant flow test.",
-    "hydrants": "Screen a file of hydrant tests: flow, class, quality, requirement.",
-    "schema": "Print the JSON Schema of the project file.",
+    "new": "Write a commented starter project, to be changed into your own.",
+    "pipe": "Solve one pipe: pressure loss, flow, diameter or pump.",
+    "flowtest": "Turn the readings of one hydrant flow test into a supply curve.",
+    "hydrants": "Screen a table of many hydrant tests: flow, class, quality, requirement.",
+    "schema": "Print the JSON Schema of the project file, for editors.",
 }
 
 
@@ -62,13 +62,25 @@ class _Verbs(click.Group):
             formatter.write_dl(list(COMMANDS.items()))
 
 
-@click.group(cls=_Verbs, context_settings={"help_option_names": ["-h", "--help"]})
-@click.version_option(package_name="supplycheck")
+@click.group(cls=_Verbs, context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100})
+@click.version_option(package_name="supplycheck", help="Print the version and leave.")
 def main() -> None:
     """Check a fire sprinkler, standpipe or hydrant system against its water supply.
 
-    Exit codes: 0 supply adequate, 1 supply not adequate (or undetermined), 2 wrong usage,
-    3 the project has errors, 4 the calculation did not converge.
+    A preliminary engineering aid: not a design, an approval, a listing or a certificate. A licensed or
+    certified person checks the inputs and signs; the authority having jurisdiction decides.
+
+    \b
+    To begin:   supplycheck new my-building
+                supplycheck check my-building
+    Each verb:  supplycheck check --help
+
+    \b
+    Exit codes: 0  done; `check`: the supply is adequate
+                1  `check`: not adequate, or undetermined; `hydrants`: a requirement is not met
+                2  wrong usage, or files that cannot be written
+                3  the project or the readings have faults; all of them are listed
+                4  no result: the calculation did not converge
     """
 
 

@@ -32,31 +32,51 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
 @click.option(
     "--out",
     type=click.Path(path_type=Path, file_okay=False),
-    help="Folder for the review package (default: `review` beside the project file).",
+    help="Folder for the review package; of several projects, a folder of its own for each below this one. "
+    "Default: `review` beside each project file.",
 )
 @click.option(
     "--html",
     is_flag=True,
-    help="Write review.html as well: the review package as one page for a browser, nothing fetched.",
+    help="Write review.html as well: the review package as one page for a browser, which fetches nothing.",
 )
-@click.option("--json", "as_json", is_flag=True, help="Print result.json instead of the screen answer.")
-@click.option("--no-files", is_flag=True, help="Write no files; only print the answer.")
+@click.option(
+    "--json",
+    "as_json",
+    is_flag=True,
+    help="Print JSON in place of the answer in words: result.json, or the table.",
+)
+@click.option("--no-files", is_flag=True, help="Print the answer and write no file.")
 @click.option(
     "--jobs",
+    metavar="NUMBER",
     type=click.IntRange(1, 64),
     default=1,
     show_default=True,
-    help="Projects checked at a time, where there are several.",
+    help="How many of several projects are checked at the same time.",
 )
 def command(
     projects: tuple[Path, ...], out: Path | None, html: bool, as_json: bool, no_files: bool, jobs: int
 ) -> None:
     """Check the system in PROJECT (a project.toml, or its folder) against its water supply.
 
-    Writes result.json, review.pdf, nodes.csv, pipes.csv and tables.xlsx.
+    Prints the answer on one screen and writes the review package: review.pdf for the reviewer, result.json
+    with every number, and nodes.csv, pipes.csv and tables.xlsx for a spreadsheet.
 
-    Several PROJECTs, or a folder that holds project folders, are checked one by one, each in a process of
-    its own: one line each, a table portfolio.csv, and the highest exit code of them all.
+    \b
+    supplycheck check my-building
+    supplycheck check my-building --out issued/2026-11-20 --html
+    supplycheck check projects --jobs 2
+
+    Several PROJECTs, or a folder that holds project folders, are checked each by itself, and none stops
+    another: a line for each, a table portfolio.csv, and the highest exit code of them all.
+
+    \b
+    Exit codes: 0  the supply is adequate; findings that fail do not change that, and are named
+                1  not adequate, or undetermined: no margin rule, or a device beyond its curve
+                2  wrong usage, or files that cannot be written
+                3  the project has faults: all are listed, and nothing is written
+                4  the calculation did not converge: nodes or pipes at fault are named
     """
     from supplycheck.commands.portfolio import is_portfolio, run_portfolio
 

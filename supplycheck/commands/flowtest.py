@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 import click
 
-from supplycheck.commands.readings import OUTLET_FORM, read_day, read_flow_test, read_si
+from supplycheck.commands.readings import read_day, read_flow_test, read_si
 
 if TYPE_CHECKING:
     from supplycheck.model import FlowTest
@@ -37,40 +37,75 @@ class Answer:
 
 
 @click.command(name="flowtest", context_settings={"help_option_names": ["-h", "--help"]})
-@click.option("--static", required=True, help="Static pressure at the gauge.")
-@click.option("--residual", help="Residual pressure at the gauge while water flows.")
-@click.option("--flow", help="Total flow at the residual pressure; or give outlets.")
 @click.option(
-    "--outlet", "outlets", multiple=True, help=f"A flowing outlet: '{OUTLET_FORM}'. Repeat for more."
+    "--static", metavar="PRESSURE", required=True, help="Static pressure at the gauge, before water flows."
+)
+@click.option("--residual", metavar="PRESSURE", help="Residual pressure at the gauge while water flows.")
+@click.option("--flow", metavar="FLOW", help="Total flow at the residual pressure, in place of outlets.")
+@click.option(
+    "--outlet",
+    "outlets",
+    metavar="READINGS",
+    multiple=True,
+    help="An outlet that flowed: 'diameter, coefficient, pitot reading', as in '2.5 in, 0.90, 14 psi'. The "
+    "coefficient may be a shape ('smooth and rounded') or the K-factor of a diffuser ('k 160'); a fourth "
+    "part is the pumper factor. Repeat for more.",
 )
 @click.option(
-    "--point", "points", multiple=True, help="A further reading: 'residual, flow'. Repeat for more."
+    "--point",
+    "points",
+    metavar="READINGS",
+    multiple=True,
+    help="A further reading of the same test: 'residual, flow', as in '55 psi, 800 gpm'. Repeat for more.",
 )
 @click.option(
     "--pumper-factor",
+    metavar="NUMBER",
     help="Factor for outlets of 4 in and more that carry none: a number, or 'table' for the published one.",
 )
 @click.option(
-    "--gauge", help="Full scale and accuracy of the gauge: '200 psi, 1' (per cent of full scale)."
+    "--gauge",
+    metavar="RANGE",
+    help="Full scale of the gauge and its accuracy in per cent of that: '200 psi, 1'.",
 )
 @click.option(
     "--units",
     type=click.Choice(["us", "metric"]),
     default="us",
     show_default=True,
-    help="Units of bare numbers and of the answer; any number may carry its own ('5.5 bar').",
+    help="Units of the answer and of numbers that carry none; any may carry its own ('5.5 bar').",
 )
 @click.option(
-    "--at-pressure", "at_pressures", multiple=True, help="Flow at this pressure. Default: 20 psi."
+    "--at-pressure",
+    "at_pressures",
+    metavar="PRESSURE",
+    multiple=True,
+    help="Ask for the flow at this pressure. Repeat for more. Default: 20 psi.",
 )
-@click.option("--at-flow", "at_flows", multiple=True, help="Pressure at this flow. Repeat for more.")
-@click.option("--date", "date", help="Day of the test, YYYY-MM-DD.")
-@click.option("--submittal", help="Day of submittal, YYYY-MM-DD: the age of the test counts to it.")
+@click.option(
+    "--at-flow",
+    "at_flows",
+    metavar="FLOW",
+    multiple=True,
+    help="Ask for the pressure at this flow. Repeat for more.",
+)
+@click.option("--date", "date", metavar="YYYY-MM-DD", help="Day of the test.")
+@click.option(
+    "--submittal", metavar="YYYY-MM-DD", help="Day of submittal, to which the age of the test counts."
+)
 @click.option("--json", "as_json", is_flag=True, help="Print the answer as JSON.")
 def command(units: str, as_json: bool, **given: Any) -> None:
-    """Reduce a hydrant flow test: flow, supply curve, flow at 20 psi, class, remarks.
+    """Turn the readings of one hydrant flow test into a supply curve.
 
-    Example: supplycheck flowtest --static 80 --residual 47 --outlet "2.5 in, 0.90, 14 psi"
+    Prints the flow of each outlet, the curve, the flow at 20 psi with the class of the hydrant, and what a
+    reviewer would ask about the test. Give the static pressure, the residual, and either --flow or every
+    --outlet that flowed.
+
+    \b
+    supplycheck flowtest --static 80 --residual 47 --outlet "2.5 in, 0.90, 14 psi"
+    supplycheck flowtest --units metric --static 5.4 --residual 3.6 --flow 4200 --at-flow 3000
+
+    Exit codes: 0 done, 2 wrong usage, 3 readings that make no test.
     """
     from supplycheck.errors import DomainError
     from supplycheck.units import UNIT_SETS

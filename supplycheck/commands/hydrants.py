@@ -29,10 +29,27 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
     type=click.Choice(["us", "metric"]),
     help="Units of the answer, and of rows that name none. Default: as the file says.",
 )
-@click.option("--required-flow", help="Flow that every hydrant must give, unless its row states another.")
-@click.option("--at-pressure", default="20 psi", show_default=True, help="Pressure of the required flow.")
-@click.option("--maximum-age", type=click.IntRange(1, 1200), help="Months after which a test is stale.")
-@click.option("--as-of", help="Day of the screening, YYYY-MM-DD. Default: today.")
+@click.option(
+    "--required-flow",
+    metavar="FLOW",
+    help="Flow that every hydrant must give ('1000 gpm'), unless its row states another.",
+)
+@click.option(
+    "--at-pressure",
+    metavar="PRESSURE",
+    default="20 psi",
+    show_default=True,
+    help="Residual pressure at which the required flow is asked.",
+)
+@click.option(
+    "--maximum-age",
+    metavar="MONTHS",
+    type=click.IntRange(1, 1200),
+    help="Age from which a test is called stale.",
+)
+@click.option(
+    "--as-of", metavar="YYYY-MM-DD", help="Day to which the age of the tests counts. Default: today."
+)
 @click.option(
     "--out",
     type=click.Path(path_type=Path, file_okay=False),
@@ -41,19 +58,31 @@ PATIENCE: Final = 1.0  # seconds before a progress bar appears
 @click.option("--json", "as_json", is_flag=True, help="Print the summary as JSON.")
 @click.option(
     "--jobs",
+    metavar="NUMBER",
     type=click.IntRange(1, 64),
     default=1,
     show_default=True,
-    help="Processes that share the rows.",
+    help="How many processes share the rows.",
 )
 @click.option("--no-pdf", is_flag=True, help="Write no report.pdf.")
 def command(tests: Path, out: Path | None, as_json: bool, jobs: int, no_pdf: bool, **given: Any) -> None:
     """Screen the hydrant tests in TESTS (CSV, one row a test): flow, class, quality, requirement.
 
-    Writes results.csv, results.xlsx, results.geojson (with coordinates), report.pdf and rejects.csv.
+    The first row names the columns: hydrant, static and residual, and either flow or diameter, coefficient
+    and pitot (diameter_2 … for further outlets). Others that are understood: date, units, pumper_factor,
+    required_flow, longitude and latitude, or x and y. A heading may state its unit: static (psi).
 
-    Exit codes: 0 every hydrant gives its required flow (or none is required), 1 some do not or could not
-    be judged, 2 wrong usage, 3 the file cannot be screened.
+    Writes results.csv, results.xlsx, results.geojson (with coordinates), report.pdf, and rejects.csv with
+    the rows that cannot be used and why.
+
+    \b
+    supplycheck hydrants tests.csv --units us --required-flow "1000 gpm" --maximum-age 60
+
+    \b
+    Exit codes: 0  every hydrant gives its required flow, or none is required
+                1  some do not, or could not be judged
+                2  wrong usage
+                3  the file cannot be screened
     """
     from supplycheck.screening.records import ScreeningError
 

@@ -16,6 +16,12 @@ def command(directory: str) -> None:
     invented: put your own in their place line by line. The check lists what is still the starter's.
 
     An existing project is never overwritten.
+
+    \b
+    supplycheck new my-building
+    supplycheck check my-building
+
+    Exit codes: 0 written, 2 wrong usage, or a project is there already.
     """
     from supplycheck.project.starter import starter_text
 

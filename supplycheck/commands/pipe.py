@@ -6,7 +6,7 @@ from typing import Any
 
 import click
 
-HELP = """Solve one pipe: loss, flow, diameter or pump.
+HELP = """Solve one pipe: pressure loss, flow, diameter or pump.
 
 Leave out what is to be found. With --flow and --diameter (or --material and --size) it is the loss;
 with --loss or the pressures at both ends it is whichever of --flow and --diameter is missing; with flow,
@@ -34,25 +34,29 @@ def _option(name: str, text: str, metavar: str = "NUMBER") -> Any:
 _OPTIONS = (
     _option("--flow", "Flow (gpm, L/min)."),
     _option("--diameter", "Inside diameter (in, mm)."),
-    _option("--material", "Kind of pipe in the catalogue.", "TEXT"),
-    _option("--size", "Nominal size of that material, instead of --diameter.", "TEXT"),
-    _option("--system", "Kind of system (wet, dry …), for C from the catalogue.", "TEXT"),
+    _option("--material", 'Kind of pipe in the catalogue, as in "steel schedule 40".', "NAME"),
+    _option("--size", "Nominal size of that material, in place of --diameter.", "SIZE"),
+    _option("--system", "Kind of system (wet, dry …), with which the catalogue gives C.", "NAME"),
     _option("--loss", "Friction and minor loss together (psi, bar; or a head)."),
     _option("--start-pressure", "Gauge pressure at the start (psi, bar)."),
     _option("--end-pressure", "Gauge pressure at the end (psi, bar)."),
     _option("--length", "Length of the pipe (ft, m)."),
-    click.option("--law", type=click.Choice(_LAWS), help="Friction law; follows from what is given."),
+    click.option(
+        "--law",
+        type=click.Choice(_LAWS),
+        help="Friction law. Default: the one whose C-factor or roughness is given.",
+    ),
     click.option(
         "--form",
         type=click.Choice(("us", "metric", "head")),
-        help="Published form of Hazen-Williams; follows from --units.",
+        help="Form of Hazen-Williams: 4.52 (us), 6.05e5 (metric), 10.67 (head). Default: by --units.",
     ),
-    _option("--c-factor", "Hazen-Williams C."),
+    _option("--c-factor", "C of Hazen-Williams, 120 for instance."),
     _option("--roughness", "Absolute roughness for Darcy-Weisbach (ft, mm)."),
-    _option("--friction-factor", "A given Darcy friction factor instead of a roughness."),
+    _option("--friction-factor", "A given Darcy friction factor in place of a roughness."),
     _option("--minor-k", "Sum of the loss coefficients K of fittings, entrance and exit."),
     _option(
-        "--fittings", 'Fittings of a known size, "2 elbow 90; 1 tee"; lengths from the catalogue.', "TEXT"
+        "--fittings", 'Fittings of that --size, "2 elbow 90; 1 tee"; lengths from the catalogue.', "LIST"
     ),
     _option("--equivalent-length", "Equivalent length of fittings, corrected for C and bore (ft, m)."),
     _option("--rise", "Elevation of the end above the start, may be negative (ft, m)."),
@@ -66,10 +70,14 @@ _OPTIONS = (
     _option("--density", "Density of another fluid (lb/ft³, kg/m³)."),
     _option("--viscosity", "Dynamic viscosity of another fluid (cP)."),
     click.option(
-        "--units", type=click.Choice(("us", "metric")), default="us", show_default=True, help="Unit set."
+        "--units",
+        type=click.Choice(("us", "metric")),
+        default="us",
+        show_default=True,
+        help="Units of the answer and of numbers that carry none.",
     ),
     click.option("--steps", is_flag=True, help="Print every trial of the search."),
-    click.option("--json", "as_json", is_flag=True, help="Print JSON."),
+    click.option("--json", "as_json", is_flag=True, help="Print the answer as JSON."),
 )
 
 

@@ -7,7 +7,14 @@ import click
 
 @click.command(name="schema")
 def command() -> None:
-    """Print the JSON Schema of the project file, from which editors complete its keys."""
+    """Print the JSON Schema of the project file.
+
+    An editor that knows it completes and checks the keys of a project.toml as they are typed; each key says
+    what it means and in which unit its bare numbers are.
+
+    \b
+    supplycheck schema > project.schema.json
+    """
     import json
 
     from supplycheck.project.describe import json_schema
