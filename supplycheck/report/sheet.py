@@ -55,7 +55,7 @@ class Sheets:
     @property
     def bottom(self) -> float:
         """The lowest place for text on a page [points]."""
-        return MARGIN + 12.0
+        return MARGIN + 6.0
 
     @property
     def top(self) -> float:

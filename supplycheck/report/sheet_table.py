@@ -17,9 +17,11 @@ GUTTER: Final = 7.0
 LEAST: Final = 24.0
 TOGETHER: Final = 6
 """Tables of so few rows are not broken over pages."""
-KEPT: Final = 2
+KEPT: Final = 3
 """So many rows of a longer table stay with its header, and with the heading above it."""
 _MEASURED: Final = 200
+_SLACK: Final = 4.0
+"""Room that a row must leave below it to be written on a page."""
 
 _Laid = tuple[int, Row, list[list[str]], list[str]]
 
@@ -62,7 +64,7 @@ def _opening(
 ) -> float:
     """Return the height of title, header and the first rows, of a short table that of all of it."""
     first = laid if len(laid) <= TOGETHER else laid[:KEPT]
-    rows = sum(_row_height(one, grid) for one in first)
+    rows = sum(_row_height(one, grid) for one in first) + _SLACK
     title = 17.6 if table.title else 0.0
     return title + _header_height(head, grid) + rows + (below if first is laid else 0.0)
 
@@ -258,7 +260,7 @@ def _row(sheets: Sheets, table: Table, head: list[tuple[list[str], str]], grid: 
     start = 0
     left = max(len(cell) for cell in lines) + len(notes)
     while left > 0:
-        room = int((sheets.y - sheets.bottom - 4) / grid.leading)
+        room = int((sheets.y - sheets.bottom - _SLACK) / grid.leading)
         if room < left and not _is_below_header(sheets, head, grid):
             _go_on(sheets, table, head, grid)
             continue
