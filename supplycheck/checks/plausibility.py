@@ -2,27 +2,41 @@
 
 from __future__ import annotations
 
-import math
 from collections import defaultdict
 from itertools import pairwise
+from typing import Final
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
+from supplycheck.checks.geometry import distance
 from supplycheck.checks.rule import About, Rule, flow, pressure, some
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import Device, Pipe
+from supplycheck.model.slips import likely_slip
 
-SHORTEST, LONGEST = 0.9, 20.0
-"""Length of a pipe over the distance of its ends: below, a fault of entry; above, to be asked about.
+SHORTEST: Final = 0.9
+"""Length of a pipe over the distance of its ends: below, a fault of entry. Tables are refused before that.
 
 Common practice, no source: a tenth covers coordinates read off a drawing.
 """
+STRAIGHT: Final = 1.5
+"""The same for a piece of a branch line or a cross main: longer is to be asked about.
+
+Two legs square to each other are at most √2 = 1.41 times as long as the straight line, so that a piece
+may turn a corner; a metre for a foot makes 3.28, a decimal place 10.
+"""
+WANDERING: Final = 5.0
+"""The same for risers, feeds, underground and unnamed pipes: round three sides of a square makes 3."""
+OFFSET: Final = limits.FOOT
+"""An offset of a straight piece, whatever its length [m] (common practice, no source)."""
+NEAREST: Final = 1.0
+"""Ends of a wandering pipe nearer than this count as this far apart [m] (common practice, no source)."""
 
 LENGTH = About(
     "length against distance",
     "length of every pipe against the distance between its ends, where both have coordinates",
     ("ok", "fail", "ask authority", "not applicable"),
-    "geometry; nine tenths and twenty times: reviewers' practice, no source",
+    "geometry; straight pieces of lines and mains at most 1.5 times, others 5 times: reviewers' practice",
     weight=3,
 )
 PARALLEL = About(
@@ -46,18 +60,19 @@ DIP = About(
 )
 
 
-def _distance(context: CheckContext, pipe: Pipe) -> float | None:
-    """Return the distance of the ends of ``pipe`` [m], ``None`` where it is not known."""
-    ends = [context.nodes[tag] for tag in (pipe.start, pipe.end)]
-    if any(node.x is None or node.y is None for node in ends):
-        return None
-    one, two = ((node.x or 0.0, node.y or 0.0, node.elevation) for node in ends)
-    return math.dist(one, two)
+def _longest(context: CheckContext, pipe: Pipe, apart: float) -> float:
+    """Return the greatest length [m] of ``pipe`` that needs no question."""
+    ends = (context.nodes[pipe.start], context.nodes[pipe.end])
+    neighbours = pipe.role == "pipe" and all(node.kind == "sprinkler" for node in ends)
+    if pipe.role in ("branch line", "cross main") or neighbours:
+        return STRAIGHT * apart + OFFSET
+    return WANDERING * max(apart, NEAREST)
 
 
 def length(context: CheckContext) -> Finding:
     """The pipe that falls short by most of its distance is told, then the one that is longest for it."""
-    told = [(pipe, _distance(context, pipe)) for pipe in context.project.system.pipes]
+    nodes, pipes = context.nodes, context.project.system.pipes
+    told = [(pipe, distance(nodes[pipe.start], nodes[pipe.end])) for pipe in pipes]
     known = [(pipe, apart) for pipe, apart in told if apart is not None]
     if not known:
         return LENGTH.says("not applicable", "No pipe has coordinates at both ends.")
@@ -66,32 +81,39 @@ def length(context: CheckContext) -> Finding:
         for pipe, apart in known
         if apart > 0 and pipe.length < SHORTEST * apart - limits.TYPED_LENGTH
     ]
-    text = "{pipe} is {{measured}} long; its ends {start} and {end} are {{limit}} apart."
     if short:
         short.sort(key=lambda one: one[0])
-        do = "Correct the length or the coordinates."
-        return _length_says("fail", text, short, do)
+        return _length_says("fail", short, "Correct the length or the coordinates.")
     far = [
-        (apart / pipe.length, pipe, apart)
+        (_longest(context, pipe, apart) / pipe.length, pipe, apart)
         for pipe, apart in known
-        if pipe.length > LONGEST * max(apart, limits.FOOT)
+        if pipe.length > _longest(context, pipe, apart)
     ]
     if far:
         far.sort(key=lambda one: one[0])
-        ask = f"Is {far[0][1].tag} really that long, with all its turns?"
-        return _length_says("ask authority", text, far, ask)
+        ask = f"Is {some(pipe.tag for _, pipe, _ in far)} really that long, with all its turns?"
+        return _length_says("ask authority", far, ask)
     return LENGTH.says("ok", "Every pipe is as long as its ends are apart, or reasonably longer.")
 
 
-def _length_says(state: State, text: str, found: list[tuple[float, Pipe, float]], remedy: str) -> Finding:
+def _length_says(state: State, found: list[tuple[float, Pipe, float]], remedy: str) -> Finding:
     _, worst, apart = found[0]
+    text = f"{worst.tag} is {{measured}} long; its ends {worst.start} and {worst.end} are {{limit}} apart"
+    values = {}
+    if apart > 0:
+        slip = likely_slip(worst.length / apart)
+        text += ", {times} times" + (f": {slip}" if slip else ".")
+        values = {"times": Measure(worst.length / apart, "ratio")}
+    else:
+        text += "."
     return LENGTH.says(
         state,
-        text.format(pipe=worst.tag, start=worst.start, end=worst.end),
+        text,
         measured=Measure(worst.length, "length"),
         limit=Measure(apart, "length"),
         tags=tuple(pipe.tag for _, pipe, _ in found),
         remedy=remedy,
+        values=values,
     )
 
 

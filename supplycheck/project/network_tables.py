@@ -13,6 +13,7 @@ from supplycheck.project.columns import NODE_COLUMNS, PIPE_COLUMNS
 from supplycheck.project.drafts import DraftPipe, DraftSystem, Notes
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.files import Folder
+from supplycheck.project.lengths import GivenLength, Rounding, check_length, distance, read_rounding
 from supplycheck.project.plausible import check_k_factor
 from supplycheck.project.schema_parts import LONGEST_TAG
 from supplycheck.project.sections import Sections
@@ -173,20 +174,6 @@ class _NodeReader:
         return k_factor, area
 
 
-def _lengths(
-    pipe: tuple[Row, str, str], length: float | None, nodes: Mapping[str, Node]
-) -> tuple[float | None, bool]:
-    """Return the length of a pipe and whether it was taken from the coordinates."""
-    if length is not None:
-        return length, False
-    _, start, end = pipe
-    a, b = nodes[start], nodes[end]
-    if None in (a.x, a.y, b.x, b.y):
-        return None, False
-    distance = math.dist((a.x or 0, a.y or 0, a.elevation), (b.x or 0, b.y or 0, b.elevation))
-    return distance, True
-
-
 class _PipeReader:
     """Reads rows of the table of pipes."""
 
@@ -196,8 +183,10 @@ class _PipeReader:
         units: UnitSet,
         sections: Sections,
         nodes: Mapping[str, Node],
+        rounding: Rounding,
         faults: FaultList,
     ) -> None:
+        self.rounding = rounding
         self.table, self.units, self.sections, self.nodes, self.faults = (
             table,
             units,
@@ -290,9 +279,13 @@ class _PipeReader:
         )
 
     def _length(self, row: Row, start: str, end: str, given: float | None) -> float:
-        length, inferred = _lengths((row, start, end), given, self.nodes)
-        self.from_coordinates += inferred
-        rise = abs(self.nodes[start].elevation - self.nodes[end].elevation)
+        a, b = self.nodes[start], self.nodes[end]
+        if given is not None:
+            check_length(
+                GivenLength(given, a, b, row.place("length")), self.rounding, self.units, self.faults
+            )
+            return given
+        length = distance(a, b)
         if length is None:
             self.faults.add(
                 row.place("length"),
@@ -300,19 +293,12 @@ class _PipeReader:
                 allowed="a length here, or coordinates x and y at both nodes",
             )
             return math.nan
-        if inferred and length == 0:
+        self.from_coordinates += 1
+        if length == 0:
             self.faults.add(
                 row.place("length"),
                 f"{start} and {end} stand at the same point",
                 allowed="a length above zero",
-            )
-        elif not inferred and length < rise * 0.99:
-            self.faults.add(
-                row.place("length"),
-                f"is shorter than the difference of elevation between {start} and {end}",
-                found=self.units.text(length, "length"),
-                allowed=f"at least {self.units.text(rise, 'length')}",
-                remedy="correct the length or the elevations",
             )
         return length
 
@@ -352,7 +338,8 @@ def read_network(
     nodes = [node for node in map(node_reader.node, node_table.rows) if node is not None]
     _without_twins([(node.tag, node.place or Place("")) for node in nodes], "node", faults)
     by_tag = {node.tag: node for node in nodes}
-    pipe_reader = _PipeReader(pipe_table, units, sections, by_tag, faults)
+    rounding = read_rounding(node_table, pipe_table, units)
+    pipe_reader = _PipeReader(pipe_table, units, sections, by_tag, rounding, faults)
     pipes = [pipe for pipe in map(pipe_reader.pipe, pipe_table.rows) if pipe is not None]
     _without_twins([(pipe.tag, pipe.place) for pipe in pipes], "pipe", faults)
     if "fittings" not in network.model_fields_set:

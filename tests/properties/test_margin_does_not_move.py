@@ -96,8 +96,8 @@ outside_node = "LEAD"
         nodes = ["tag,x,y,elevation,kind,sprinkler,area"]
         for row, (tag, height) in enumerate(zip(CHAIN, self.heights, strict=True)):
             kind = "junction" if row else "supply"
-            nodes.append(f"{tag},{row * 10},0,{height + datum},{kind},,")
-        nodes += [f"{tag},{60 + 10 * row},0,{top + datum},sprinkler,A,100" for row, tag in enumerate(HEADS)]
+            nodes.append(f"{tag},{row * 5},0,{height + datum},{kind},,")
+        nodes += [f"{tag},{35 + 10 * row},0,{top + datum},sprinkler,A,100" for row, tag in enumerate(HEADS)]
         devices = ("", "", "meter", "backflow", "pump" if self.pump else "")
         pipes = ["from,to,length,kind,size,fittings,devices"]
         for start, end, length, device in zip(CHAIN, CHAIN[1:], self.lengths, devices, strict=False):

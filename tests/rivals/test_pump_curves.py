@@ -62,7 +62,7 @@ tag,x,y,elevation,kind,sprinkler,area
 S,0,0,0,supply,,
 B,100,0,0,junction,,
 D,101,0,0,junction,,
-H,181,0,20,sprinkler,A,100
+H,178,0,20,sprinkler,A,100
 """
 PIPES = """\
 from,to,length,kind,bore,c_factor,fittings,devices
