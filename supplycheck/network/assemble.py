@@ -16,6 +16,7 @@ from supplycheck.network.curves import SourceLaw
 from supplycheck.network.links import STEEP, BoolArray, Law, Links
 from supplycheck.network.nodal import Nodal
 from supplycheck.network.records import FloatArray, IntArray, LoadCase, SourceCurve
+from supplycheck.network.stations import set_apart
 
 GUESS_VELOCITY = 0.3
 """Velocity of the first guess in every pipe [m/s]."""
@@ -133,9 +134,10 @@ def _input_error(problem: str, tags: Sequence[str], remedy: str) -> NotConverged
 class Assembled:
     """A problem for the core and where its rows come from.
 
-    ``rows`` are the node rows of the network for the core's free nodes and then its fixed source
-    nodes; core links are the reduced links, then ``piped`` supplies, then outlets. ``valves`` (v,) are
-    the core links with a pressure-reducing valve, ``valve_rows`` the core nodes behind them and
+    ``rows`` are the node rows of the network for the core's free nodes and then its fixed source nodes
+    (beyond those of the network: nodes behind a valve); core links are the reduced links, the valves, the
+    ``piped`` supplies, the outlets. ``valves`` (v,) are the core links with a pressure-reducing valve,
+    ``valve_pipes`` the reduced links in which they stand, ``valve_rows`` the core nodes behind them and
     ``valve_heads`` [Pa] the heads they are set to.
     """
 
@@ -145,6 +147,7 @@ class Assembled:
     piped: IntArray
     start: State
     valves: IntArray
+    valve_pipes: IntArray
     valve_rows: IntArray
     valve_heads: FloatArray
 
@@ -155,8 +158,9 @@ class Assembled:
     def heads(self, state: State, nodes: int) -> tuple[FloatArray, BoolArray]:
         """Return heads (n,) [Pa] where known, and where they are."""
         head, known = np.full(nodes, np.nan), np.zeros(nodes, dtype=bool)
-        head[self.rows] = state.head[: len(self.rows)]
-        known[self.rows] = True
+        own = self.rows < nodes
+        head[self.rows[own]] = state.head[: len(self.rows)][own]
+        known[self.rows[own]] = True
         return head, known
 
 
@@ -167,6 +171,9 @@ def assemble(
 
     ``size`` is the number of node rows of each copy where several lie side by side.
     """
+    apart = set_apart(links, base)
+    links, base = apart.links, apart.base
+    outflow = np.concatenate([case.outflow, np.zeros(len(apart.valves))])
     size = size or len(base)
     held = feed.rows[feed.fixed]
     used = np.zeros(len(base), dtype=bool)
@@ -175,7 +182,7 @@ def assemble(
         links.end,
         case.outlets,
         case.floor_rows,
-        np.flatnonzero(case.outflow),
+        np.flatnonzero(outflow),
         feed.rows,
     ):
         used[rows] = True
@@ -201,7 +208,7 @@ def assemble(
     problem = Problem(
         start=start,
         end=end,
-        outflow=case.outflow[rows[:free]],
+        outflow=outflow[rows[:free]],
         fixed=fixed,
         law=_law(links, [feed.laws[i] for i in piped], case),
         one_way=one_way,
@@ -213,18 +220,16 @@ def assemble(
         groups=len(base) // size,
     )
     guess = _guess(links, case, len(piped), static - base[feed.rows])
-    set_laws = [(link, law.setting) for link, law in links.devices if law.setting is not None]
-    valves = np.array([link for link, _ in set_laws], dtype=np.int64)
-    behind = links.end[valves]
     return Assembled(
         problem,
         rows,
         len(links),
         piped,
         first_state(problem, guess),
-        valves,
-        index[behind],
-        base[behind] + np.array([setting for _, setting in set_laws]),
+        apart.valves,
+        apart.pipes,
+        index[apart.behind],
+        apart.heads,
     )
 
 

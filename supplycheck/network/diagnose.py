@@ -132,10 +132,8 @@ def explain(
 ) -> NotConvergedError:
     """Return the diagnosis of a state that was not found."""
     state, tags = failure.state, network.pipe_tags
-    valves = [
-        network.pipe_tags[int(np.flatnonzero(reduced.part == link)[0])]
-        for link in assembled.valves.tolist()
-    ]
+    held = [int(np.flatnonzero(reduced.part == link)[0]) for link in assembled.valve_pipes.tolist()]
+    valves = [law.tag for link, law in network.links.devices if link in held and law.setting is not None]
     if failure.why == "out of reach":
         slack = state.head[assembled.problem.floor_rows] - assembled.problem.floors
         short = assembled.rows[assembled.problem.floor_rows[slack < 0]]

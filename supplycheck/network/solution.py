@@ -156,7 +156,7 @@ def _notes(
         link: law for link, law in links.devices if law.setting is not None and not case.shut[link]
     }
     for link, law in regulating.items():
-        notes.append(_valve_note(network, link, law, flow, pressure))
+        notes.append(_valve_note(network, link, law, flow, (pressure, device)))
     held = np.flatnonzero(links.one_way & ~case.shut & (flow <= 0) & (device < -1.0)).tolist()
     notes += [
         f"the one-way valve in pipe {pipes[link]} is closed by the pressure behind it"
@@ -166,10 +166,14 @@ def _notes(
     return tuple(notes)
 
 
-def _valve_note(network: Network, link: int, law: DeviceLaw, flow: FloatArray, pressure: FloatArray) -> str:
+def _valve_note(
+    network: Network, link: int, law: DeviceLaw, flow: FloatArray, found: tuple[FloatArray, FloatArray]
+) -> str:
+    """Return what the valve does, by the (pressure at nodes, device loss in pipes) ``found``."""
     name = f"pressure-reducing valve {law.tag} in pipe {network.pipe_tags[link]}"
     setting = law.setting if law.setting is not None else np.nan
-    behind = pressure[network.links.end[link]]
+    pressure, device = found
+    behind = pressure[network.links.start[link]] - device[link] + _lost_after(network, link, law, flow)
     if abs(behind - setting) <= 1.0:
         return f"{name} holds its setting"
     if behind > setting:
@@ -177,3 +181,10 @@ def _valve_note(network: Network, link: int, law: DeviceLaw, flow: FloatArray, p
     if pressure[network.links.start[link]] < setting:
         return f"{name} is fully open: it is set above its inlet pressure"
     return f"{name} is fully open" if flow[link] > 0 else f"{name} passes nothing"
+
+
+def _lost_after(network: Network, link: int, law: DeviceLaw, flow: FloatArray) -> float:
+    """Return the loss [Pa] of the devices named after ``law`` in the pipe ``link``."""
+    laws = [other for row, other in network.links.devices if row == link]
+    after = laws[laws.index(law) + 1 :]
+    return sum(float(other.drop(flow[link : link + 1])[0][0]) for other in after)

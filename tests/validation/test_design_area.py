@@ -90,7 +90,7 @@ def search(
 
 
 def step(found: Candidates, text: str) -> float:
-    return next(each.value for each in found.steps if each.text == text)
+    return next(each.value for each in found.steps if each.step == text)
 
 
 def test_course_page_twenty_five_heads_at_18_4_psi() -> None:
