@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, pressure, some
+from supplycheck.checks.standing import no_flow_pressures
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import Device, Pipe
 
@@ -32,7 +33,7 @@ CURVE = About(
 )
 REDUCING = About(
     "pressure-reducing valve",
-    "inlet pressure of each pressure-reducing valve against its setting",
+    "pressure before each pressure-reducing valve without flow against its setting",
     ("ok", "fail", "not applicable"),
     "the valve's setting as given",
 )
@@ -112,28 +113,38 @@ def curve(context: CheckContext) -> Finding:
 
 
 def reducing(context: CheckContext) -> Finding:
-    """A valve set above its inlet stands fully open and reduces nothing."""
+    """A valve set above what stands before it without flow never reduces anything.
+
+    That it stands open at the design flow, where less than its setting is left, is as it should be.
+    """
+    standing = no_flow_pressures(context)
     valves = [
-        (pipe, device)
+        (standing[pipe.start], setting, device, pipe)
         for pipe in context.project.system.pipes
         for tag in pipe.devices
         for device in (context.devices[tag],)
-        if device.kind == "pressure-reducing valve" and device.setting is not None
+        if device.kind == "pressure-reducing valve"
+        and (setting := device.setting) is not None
+        and pipe.start in standing
     ]
     if not valves:
         return REDUCING.says("not applicable", "There is no pressure-reducing valve.")
-
-    def inlet(pipe: Pipe) -> float:
-        return context.pressure(pipe.start if context.flow(pipe) >= 0 else pipe.end)
-
-    pipe, device = min(valves, key=lambda one: inlet(one[0]) - (one[1].setting or 0.0))
-    setting = device.setting or 0.0
-    measured, limit = Measure(inlet(pipe), "pressure"), pressure(setting)
-    text = f"{device.tag} takes in {{measured}} and is set to {{limit}}."
-    if inlet(pipe) < setting:
-        do = "The valve stands fully open: lower its setting, or leave it out."
-        return REDUCING.says("fail", text, measured=measured, limit=limit, tags=(device.tag,), remedy=do)
+    inlet, setting, device, pipe = min(valves, key=lambda one: one[0] - one[1])
+    measured, limit = Measure(inlet, "pressure"), pressure(setting)
+    text = f"Without flow {{measured}} stands before {device.tag} in {pipe.tag}; it is set to {{limit}}"
+    if inlet < setting:
+        never = tuple(one.tag for before, held, one, _ in valves if before < held)
+        do = "It never reduces the pressure: lower its setting, or leave it out."
+        return REDUCING.says("fail", f"{text}.", measured=measured, limit=limit, tags=never, remedy=do)
+    open_there = _stands_open(context, pipe, setting)
+    text += " and stands fully open at the design flow." if open_there else "."
     return REDUCING.says("ok", text, measured=measured, limit=limit, tags=(device.tag,))
+
+
+def _stands_open(context: CheckContext, pipe: Pipe, setting: float) -> bool:
+    """Return whether less than ``setting`` [Pa] stands before the valve with the actual supply."""
+    state = context.operating
+    return state is not None and float(state.pressure[state.node(pipe.start)]) < setting
 
 
 RULES = (Rule(ON_PATH, on_path), Rule(FIXED, fixed), Rule(CURVE, curve), Rule(REDUCING, reducing))

@@ -273,7 +273,7 @@ class DeviceTable(UnitTable):
     equivalent_length: LengthOrZero | None = None
     """Equivalent length at C 120 in pipe of the size in which it stands, instead of a loss."""
     setting: Pressure | None = None
-    """Outlet pressure of a pressure-reducing valve."""
+    """Outlet pressure of a pressure-reducing valve, which stands at the start of its pipe."""
     rated_flow: Flow | None = None
     """Rated flow of one pump."""
     rated_pressure: Pressure | None = None
