@@ -10,7 +10,9 @@ from supplycheck import catalogue
 from supplycheck.cases.ground import Solved
 from supplycheck.checks import CheckContext, ClassFigures, ComparisonFacts, PumpRating, ScenarioFacts
 from supplycheck.demand import Candidates
-from supplycheck.errors import NotInCatalogueError
+from supplycheck.demand.heads import all_heads
+from supplycheck.demand.lines import inferred_lines
+from supplycheck.errors import DomainError, NotInCatalogueError
 from supplycheck.model import DemandCase, Project
 from supplycheck.model.duty import DutyAnswer
 from supplycheck.results.assemble import Tried
@@ -57,7 +59,19 @@ def check_context(grounds: CheckGrounds, solved: Solved) -> CheckContext:
         needed_pump=grounds.needed_pump,
         duties=grounds.duties,
         scenarios=scenario_facts(solved.case, grounds.scenarios),
+        inferred_lines=lines_by_head(project),
     )
+
+
+def lines_by_head(project: Project) -> Mapping[str, str]:
+    """Return the inferred branch line of each head that is given none; empty where none can be inferred."""
+    heads = [node for node in project.system.nodes if node.kind == "sprinkler"]
+    if all(node.branch_line is not None for node in heads):
+        return {}
+    try:
+        return inferred_lines(all_heads(project), project.system)
+    except DomainError:
+        return {}
 
 
 def scenario_facts(case: DemandCase, rows: Sequence[ScenarioRow]) -> tuple[ScenarioFacts, ...]:

@@ -7,7 +7,7 @@ from collections import defaultdict
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
-from supplycheck.checks.geometry import gaps_along
+from supplycheck.checks.geometry import gaps_along, lines_note, no_lines
 from supplycheck.checks.rule import About, Rule, count, some
 from supplycheck.findings import Finding, Measure, State
 
@@ -143,8 +143,8 @@ def shape(context: CheckContext) -> Finding:
     in_case = set(context.case.heads)
     gaps = [gap.distance for gap in gaps_along(context.case_heads)]
     if sum(map(len, on_line.values())) < len(context.case.heads) or not gaps:
-        ask = "Where in plan does each head of the design area stand, and on which branch line?"
-        return SHAPE.says("missing", "Not run: lines and coordinates of the heads not given.", remedy=ask)
+        text, ask = no_lines(context)
+        return SHAPE.says("missing", text, remedy=ask)
     pitch = sum(gaps) / len(gaps)
     length = criteria.shape_factor * math.sqrt(criteria.required_area)
     needed = math.ceil(length / pitch - limits.ROUND_OFF)
@@ -157,10 +157,12 @@ def shape(context: CheckContext) -> Finding:
     if len(short) > 1 or len(short) == len(on_line):
         tags = tuple(tag for line in short for tag in on_line[line])
         text = f"Short of the {{needed}} heads that {{limit}} along the lines asks: line {some(short)}."
+        text += lines_note(context)
         do = f"Take {needed} heads on each line before going to the next."
         return SHAPE.says("fail", text, measured=measured, limit=limit, values=values, tags=tags, remedy=do)
     if most < needed:
         text = "{needed} heads along the line are asked by {limit}; the lines are shorter and taken whole."
+    text += lines_note(context)
     return SHAPE.says("ok", text, measured=measured, limit=limit, values=values)
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from types import MappingProxyType
 
 from supplycheck.model import DemandCase, Device, Node, Pipe, PipeKind, Project, Sprinkler
@@ -88,6 +88,8 @@ class CheckContext:
     printed. ``no_flow`` [Pa] by node is the pressure with every outlet shut where it was solved. ``pumps``
     are the facts of every pump, ``needed_pump`` the one that would close a gap. ``duties`` is what was
     found for standpipes and hydrants, ``scenarios`` what each scenario of the project leaves the heads.
+    ``inferred_lines`` names by head the branch line that was inferred where none is given; the heads here
+    carry it as theirs.
     """
 
     project: Project
@@ -107,6 +109,7 @@ class CheckContext:
     needed_pump: NeededPump | None = None
     duties: DutyAnswer = field(default_factory=DutyAnswer)
     scenarios: tuple[ScenarioFacts, ...] = ()
+    inferred_lines: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
     nodes: Mapping[str, Node] = field(init=False)
     kinds: Mapping[str, PipeKind] = field(init=False)
     sprinklers: Mapping[str, Sprinkler] = field(init=False)
@@ -118,7 +121,12 @@ class CheckContext:
         """Build the look-ups once."""
         system = self.project.system
         set_once = object.__setattr__
-        set_once(self, "nodes", MappingProxyType({node.tag: node for node in system.nodes}))
+        lines = self.inferred_lines
+        nodes = {
+            node.tag: replace(node, branch_line=lines[node.tag]) if node.tag in lines else node
+            for node in system.nodes
+        }
+        set_once(self, "nodes", MappingProxyType(nodes))
         set_once(self, "kinds", MappingProxyType({kind.name: kind for kind in system.pipe_kinds}))
         set_once(self, "sprinklers", MappingProxyType({one.tag: one for one in system.sprinklers}))
         set_once(self, "devices", MappingProxyType({one.tag: one for one in system.devices}))
@@ -150,7 +158,7 @@ class CheckContext:
     @property
     def all_heads(self) -> tuple[Node, ...]:
         """Every sprinkler of the layout."""
-        return tuple(node for node in self.project.system.nodes if node.kind == "sprinkler")
+        return tuple(node for node in self.nodes.values() if node.kind == "sprinkler")
 
     def pressure(self, tag: str) -> float:
         """Pressure at node ``tag`` in the demand state [Pa]."""

@@ -7,6 +7,8 @@ from collections import defaultdict
 from collections.abc import Iterable
 from dataclasses import dataclass
 
+from supplycheck.checks.context import CheckContext
+from supplycheck.checks.rule import some
 from supplycheck.model import Node
 
 _COLLINEAR = 0.3
@@ -102,3 +104,29 @@ def largest_per_tag(gaps: Iterable[Gap]) -> dict[str, float]:
         for tag in (gap.first, gap.second):
             most[tag] = max(most.get(tag, 0.0), gap.distance)
     return most
+
+
+def lines_note(context: CheckContext) -> str:
+    """Return what a finding on lines says where they are inferred, empty where all are given."""
+    if not context.inferred_lines:
+        return ""
+    lone = [node.tag for node in context.all_heads if node.branch_line is None]
+    left = f" {some(lone)} is on none and left out." if lone else ""
+    return f" Lines are inferred from pipes and coordinates.{left}"
+
+
+def no_lines(context: CheckContext) -> tuple[str, str]:
+    """Return why no rule on lines could be run, and what is to be added, as a question."""
+    unplaced = [node.tag for node in context.all_heads if node.x is None or node.y is None]
+    if unplaced:
+        ask = f"Where in plan do {some(unplaced)} stand (x and y of the nodes)?"
+        return f"Not run: no coordinates for {some(unplaced)}.", ask
+    lone = [node.tag for node in context.all_heads if node.branch_line is None]
+    if lone:
+        text = f"Not run: no branch line is given for {some(lone)}; none could be inferred from the pipes."
+        ask = f"On which branch line does each of {some(lone)} stand "
+        return text, ask + "(column line of the nodes, the same text for all heads of a line)?"
+    return (
+        "Not run: no two heads stand on one branch line.",
+        "Does each head really stand alone on its branch line?",
+    )

@@ -6,7 +6,7 @@ import math
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
-from supplycheck.checks.geometry import gaps_along, gaps_between, largest_per_tag
+from supplycheck.checks.geometry import gaps_along, gaps_between, largest_per_tag, lines_note, no_lines
 from supplycheck.checks.rule import About, Rule, flow, pressure, some
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import Node
@@ -210,14 +210,15 @@ def spacing(context: CheckContext) -> Finding:
     limit = context.project.criteria.maximum_spacing
     gaps = gaps_along(context.all_heads) + gaps_between(context.all_heads)
     if limit is None or not gaps:
-        what = "coordinates and branch lines of the heads" if limit is not None else "a spacing limit"
+        text = "Not run: a spacing limit not given."
         ask = f"What is the greatest distance between heads for {context.project.criteria.hazard}?"
         if limit is not None:
-            ask = "Where in plan does each head stand, and on which branch line?"
-        return SPACING.says("missing", f"Not run: {what} not given.", remedy=ask)
+            text, ask = no_lines(context)
+        return SPACING.says("missing", text, remedy=ask)
     worst = max(gaps, key=lambda gap: gap.distance)
     measured, allowed = Measure(worst.distance, "length"), Measure(limit, "length")
     text = f"{worst.first} and {worst.second} are {{measured}} apart; {{limit}} is allowed."
+    text += lines_note(context)
     if worst.distance > limit + limits.TYPED_LENGTH:
         over = [gap for gap in gaps if gap.distance > limit + limits.TYPED_LENGTH]
         over.sort(key=lambda gap: -gap.distance)
@@ -231,14 +232,13 @@ def close(context: CheckContext) -> Finding:
     """One head may wet and so delay the next."""
     gaps = gaps_along(context.all_heads)
     if not gaps:
-        ask = "Where in plan does each head stand, and on which branch line?"
-        return CLOSE.says(
-            "missing", "Not run: coordinates and branch lines of the heads not given.", remedy=ask
-        )
+        text, ask = no_lines(context)
+        return CLOSE.says("missing", text, remedy=ask)
     limit = limits.CLOSEST_HEADS[context.project.criteria.standard]
     least = min(gaps, key=lambda gap: gap.distance)
     measured, allowed = Measure(least.distance, "length"), Measure(limit, "length")
     text = f"{least.first} and {least.second} are {{measured}} apart; {{limit}} is the least."
+    text += lines_note(context)
     state: State = "ok" if least.distance >= limit - limits.TYPED_LENGTH else "fail"
     do = "" if state == "ok" else "Move one of them, or put a baffle between them."
     return CLOSE.says(
@@ -256,18 +256,21 @@ def own_area(context: CheckContext) -> Finding:
         if node.area is not None and node.tag in along and (node.branch_line or "") in between
     }
     if not known:
-        ask = "Where in plan does each head stand, on which line, and what area does it cover?"
-        return OWN_AREA.says(
-            "missing", "Not run: coordinates, lines or areas of the heads not given.", remedy=ask
-        )
+        if along and between:
+            text = "Not run: no head of the area has neighbours along and across, and an area of its own."
+            ask = "What floor area does each head cover, and which lines lie beside its own?"
+        else:
+            text, ask = no_lines(context)
+        return OWN_AREA.says("missing", text, remedy=ask)
     tag = min(known, key=lambda one: known[one][0] / known[one][1] if known[one][1] else math.inf)
     measured, limit = Measure(known[tag][0], "area"), Measure(known[tag][1], "area")
     low = tuple(one for one, (area, product) in known.items() if area < 0.99 * product)
     if low:
-        text = f"{tag} is said to cover {{measured}}; its spacing gives {{limit}}."
+        text = f"{tag} is said to cover {{measured}}; its spacing gives {{limit}}.{lines_note(context)}"
         ask = f"Why do {some(low)} cover less than spacing along times between lines?"
         return OWN_AREA.says("ask authority", text, measured=measured, limit=limit, tags=low, remedy=ask)
     text = f"No head covers less than its spacing gives; nearest is {tag}: {{measured}} against {{limit}}."
+    text += lines_note(context)
     return OWN_AREA.says("ok", text, measured=measured, limit=limit, tags=(tag,))
 
 

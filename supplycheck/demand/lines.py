@@ -269,13 +269,18 @@ def _end_to_end(sides: Sequence[Line]) -> list[tuple[int, int]]:
     return pairs
 
 
+def _over_main(made: Sequence[Line], a: int, b: int) -> bool:
+    """Say whether two sides that a main parts lie in one row, so that they make one line."""
+    return made[a].bay == made[b].bay and abs(made[a].across - made[b].across) < 0.5 * made[a].width
+
+
 def _joined(
     made: Sequence[Line], pairs: Sequence[tuple[int, int]], plan: _Plan, bays: list[float]
 ) -> list[Line]:
     """Return the lines that the sides make across a main (``pairs``) or end to end."""
     groups, over_main = _Groups(len(made)), _Groups(len(made))
     for a, b in pairs:
-        if made[a].bay == made[b].bay and abs(made[a].across - made[b].across) < 0.5 * made[a].width:
+        if _over_main(made, a, b):
             groups.merge(a, b)
             over_main.merge(a, b)
     for a, b in _end_to_end(made):
@@ -293,14 +298,17 @@ def _joined(
     return joined
 
 
-def find_lines(heads: Heads, system: System) -> Lines:
-    """Return the branch lines of all heads, sides and joined ones.
+@dataclass(frozen=True, slots=True, eq=False)
+class _Sides:
+    """The sides as lines, with the pairs of them that a main parts, and the plan they lie in."""
 
-    Raises
-    ------
-    DomainError
-        Where a head has no coordinates.
-    """
+    plan: _Plan
+    lines: tuple[Line, ...]
+    pairs: list[tuple[int, int]]
+    bays: list[float]
+
+
+def _read_sides(heads: Heads, system: System) -> _Sides:
     xy, z = _coordinates(heads)
     piping: Piping = read_piping(system, heads.nodes)
     beside_main = {row for link in piping.links if link.crossing for row in (link.first, link.second)}
@@ -320,6 +328,44 @@ def find_lines(heads: Heads, system: System) -> Lines:
     made = tuple(
         _line(names[i], rows, bay_of[i], bays[bay_of[i]], plan, (i,)) for i, rows in enumerate(sides)
     )
-    joined = _joined(made, pairs, plan, bays)
+    return _Sides(plan, made, pairs, bays)
+
+
+def find_lines(heads: Heads, system: System) -> Lines:
+    """Return the branch lines of all heads, sides and joined ones.
+
+    Raises
+    ------
+    DomainError
+        Where a head has no coordinates.
+    """
+    sides = _read_sides(heads, system)
+    joined = _joined(sides.lines, sides.pairs, sides.plan, sides.bays)
     inferred = any(node.branch_line is None for node in heads.nodes)
-    return Lines(made, tuple(joined), inferred)
+    return Lines(sides.lines, tuple(joined), inferred)
+
+
+def inferred_lines(heads: Heads, system: System) -> dict[str, str]:
+    """Return the name of the branch line, ``line H1–H4``, of each head whose line is inferred.
+
+    The two sides of a main make one line, as they do where a table names it. A head that is alone on its
+    line is left out: nothing says that it makes one.
+
+    Raises
+    ------
+    DomainError
+        Where a head has no coordinates.
+    """
+    sides = _read_sides(heads, system)
+    groups = _Groups(len(sides.lines))
+    for a, b in sides.pairs:
+        if _over_main(sides.lines, a, b):
+            groups.merge(a, b)
+    found: dict[str, str] = {}
+    for group in groups.groups(range(len(sides.lines))):
+        group.sort(key=lambda i: float(sides.lines[i].along[0]))
+        tags = [heads.tags[row] for i in group for row in sides.lines[i].heads]
+        told = any(heads.nodes[row].branch_line is not None for i in group for row in sides.lines[i].heads)
+        if len(tags) > 1 and not told:
+            found.update(dict.fromkeys(tags, f"line {tags[0]}–{tags[-1]}"))
+    return found

@@ -20,8 +20,16 @@ NODE_COLUMNS: Final = (
     Column("sprinkler", "Sprinkler type, `[sprinkler.NAME]`."),
     Column("k_factor", "K-factor of this outlet, instead of that of its type.", "k_factor"),
     Column("area", "Floor area of this head. Default: the coverage of its type.", "area"),
-    Column("line", "Branch line on which the head sits."),
-    Column("flow", "Fixed outflow of a hose, hydrant or outlet. It runs in every case.", "flow"),
+    Column(
+        "line",
+        "Branch line on which the head sits, the same text for all its heads. Default: inferred from straight "
+        "runs of pipe and coordinates.",
+    ),
+    Column(
+        "flow",
+        "Fixed outflow of a hose, hydrant or outlet. It runs in every case and in every scenario.",
+        "flow",
+    ),
     Column(
         "minimum_pressure",
         "Lowest pressure at this node, asked in every case; at a sprinkler where it is open.",
@@ -33,7 +41,10 @@ PIPE_COLUMNS: Final = (
     Column("from", "Node at one end.", required=True),
     Column("to", "Node at the other end.", required=True),
     Column(
-        "length", "Length. Default: the distance between its nodes, where both have coordinates.", "length"
+        "length",
+        "Length from centre to centre. Default: the distance between its nodes, where both have coordinates; "
+        "less than that, beyond rounding, is a fault.",
+        "length",
     ),
     Column("kind", "Kind of pipe, `[pipe.NAME]`.", required=True),
     Column("size", "Nominal size, from which the bore is looked up."),

@@ -351,5 +351,9 @@ def read_network(
             "inferred",
             "coordinates and elevations of the nodes",
         )
+    untold = [node for node in nodes if node.kind == "sprinkler" and node.branch_line is None]
+    if untold and all(node.x is not None and node.y is not None for node in untold):
+        told = f"branch lines of {len(untold)} sprinklers"
+        notes.add("network.nodes.line", told, "inferred", "straight runs of pipe and coordinates")
     complete &= len(by_tag) == len(node_table.rows) and len(pipes) == len(pipe_table.rows)
     return DraftSystem(tuple(nodes), tuple(pipes), complete)
