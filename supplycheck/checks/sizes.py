@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 from collections import defaultdict
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Final
 
 from supplycheck.checks import limits
@@ -56,34 +56,58 @@ def _far(pipe: Pipe, node: str) -> str:
     return pipe.end if pipe.start == node else pipe.start
 
 
+class _Loose:
+    """The pipes that are still joined at each node, as their number and the exclusive or of their rows.
+
+    Where one is left, the latter is its row: enough to take leaves off a tree of any size.
+    """
+
+    def __init__(self, pipes: Sequence[Pipe]) -> None:
+        self.pipes = pipes
+        self.count: dict[str, int] = defaultdict(int)
+        self._rows: dict[str, int] = defaultdict(int)
+        for row, pipe in enumerate(pipes):
+            for tag in (pipe.start, pipe.end):
+                self.count[tag] += 1
+                self._rows[tag] ^= row
+
+    def take(self, node: str) -> Pipe:
+        """Take off and return the only pipe that is left at ``node``."""
+        row = self._rows[node]
+        pipe = self.pipes[row]
+        for tag in (pipe.start, pipe.end):
+            self.count[tag] -= 1
+            self._rows[tag] ^= row
+        return pipe
+
+
 def sole_feeds(system: System) -> dict[str, Pipe]:
     """Return the one pipe through which all water comes, for each node that has one."""
-    at = _at_nodes(pipe for pipe in system.pipes if pipe.valve != "closed")
+    loose = _Loose([pipe for pipe in system.pipes if pipe.valve != "closed"])
     supplies = [node.tag for node in system.nodes if node.kind == "supply"]
     found: dict[str, Pipe] = {}
-    leaves = [tag for tag, pipes in at.items() if len(pipes) == 1 and tag not in supplies]
+    leaves = [tag for tag, count in loose.count.items() if count == 1 and tag not in supplies]
     while leaves:
         leaf = leaves.pop()
-        if len(at[leaf]) != 1:
+        if loose.count[leaf] != 1:
             continue
-        _, pipe = at[leaf].popitem()
-        found[leaf] = pipe
+        found[leaf] = pipe = loose.take(leaf)
         inward = _far(pipe, leaf)
-        del at[inward][pipe.tag]
-        if len(at[inward]) == 1 and inward not in supplies:
+        if loose.count[inward] == 1 and inward not in supplies:
             leaves.append(inward)
     here = supplies[0] if len(supplies) == 1 else ""
-    while here in at and len(at[here]) == 1:
-        _, pipe = at[here].popitem()
+    while loose.count[here] == 1:
+        pipe = loose.take(here)
         here = _far(pipe, here)
         found[here] = pipe
-        del at[here][pipe.tag]
     return found
 
 
-def _ring_mains(system: System) -> list[tuple[Pipe, Pipe]]:
-    """Return neighbours on the cross main of a layout, the one nearer to the supply first."""
+def _ring_mains(system: System, feeds: Mapping[str, Pipe]) -> list[tuple[Pipe, Pipe]]:
+    """Return neighbours on the looped cross main of a layout, the one nearer to the supply first."""
+    alone = {pipe.tag for pipe in feeds.values()}
     mains = [pipe for pipe in system.pipes if pipe.place and pipe.place.where == "layout.cross_main"]
+    mains = [pipe for pipe in mains if pipe.tag not in alone]
     if not mains:
         return []
     at = _at_nodes(system.pipes)
@@ -117,7 +141,7 @@ def _pairs(system: System, feeds: Mapping[str, Pipe]) -> list[tuple[Pipe, Pipe]]
             here = _far(feeds[here], here)
         if here in feeds:
             pairs.append((feeds[here], pipe))
-    return list(dict.fromkeys([*pairs, *_ring_mains(system)]))
+    return list(dict.fromkeys([*pairs, *_ring_mains(system, feeds)]))
 
 
 def _nominal(pipe: Pipe) -> float | None:

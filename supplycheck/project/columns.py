@@ -22,8 +22,8 @@ NODE_COLUMNS: Final = (
     Column("area", "Floor area of this head. Default: the coverage of its type.", "area"),
     Column(
         "line",
-        "Branch line on which the head sits, the same text for all its heads. Default: inferred from straight "
-        "runs of pipe and coordinates.",
+        "Branch line on which the head sits, the same text for all its heads. Default: inferred from "
+        "straight runs of pipe and coordinates.",
     ),
     Column(
         "flow",
@@ -42,8 +42,8 @@ PIPE_COLUMNS: Final = (
     Column("to", "Node at the other end.", required=True),
     Column(
         "length",
-        "Length from centre to centre. Default: the distance between its nodes, where both have coordinates; "
-        "less than that, beyond rounding, is a fault.",
+        "Length from centre to centre. Default: the distance between its nodes, where both have "
+        "coordinates; less than that, beyond rounding, is a fault.",
         "length",
     ),
     Column("kind", "Kind of pipe, `[pipe.NAME]`.", required=True),
