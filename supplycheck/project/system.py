@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import math
 from collections import Counter
-from collections.abc import Collection, Mapping, Sequence
+from collections.abc import Mapping, Sequence
+from types import MappingProxyType
 
 from supplycheck import catalogue
 from supplycheck.errors import NotInCatalogueError
@@ -46,7 +47,7 @@ def _note_islands(
 
 
 def _reached(
-    nodes: Sequence[Node], pipes: Sequence[DraftPipe], one_way: Collection[str]
+    nodes: Sequence[Node], pipes: Sequence[DraftPipe], one_way: Mapping[str, str]
 ) -> tuple[set[str], list[DraftPipe]]:
     """Return the nodes that water can reach, and the one-way pipes that end there but begin elsewhere."""
     onward: dict[str, list[str]] = {node.tag: [] for node in nodes}
@@ -68,16 +69,19 @@ def _reached(
 
 
 def _check_one_way(
-    nodes: Sequence[Node], pipes: Sequence[DraftPipe], one_way: Collection[str], faults: FaultList
+    nodes: Sequence[Node], pipes: Sequence[DraftPipe], one_way: Mapping[str, str], faults: FaultList
 ) -> None:
-    """Note check valves against which water would have to flow to reach an outlet."""
+    """Note one-way devices against which water would have to flow to reach an outlet."""
     reached, against = _reached(nodes, pipes, one_way)
     outlets = ("sprinkler", "hydrant", "outlet")
     dry = [node.tag for node in nodes if node.kind in outlets and node.tag not in reached]
     if dry and against:
+        pipe = against[0]
+        held = [f"{one_way[tag]} {tag}" for tag in pipe.devices if tag in one_way]
+        name = held[0] if held and pipe.valve != "check" else "check valve"
         faults.add(
-            against[0].place,
-            f"the check valve in {against[0].tag} points the wrong way: no water passes beyond it",
+            pipe.place,
+            f"the {name} in {pipe.tag} points the wrong way: no water passes beyond it",
             found=f"{len(dry)} sprinklers or outlets: {listed(dry)}",
             allowed="flow from the first node of the pipe to the second only",
             remedy="exchange the two nodes of this pipe",
@@ -89,11 +93,11 @@ def check_connections(
     pipes: Sequence[DraftPipe],
     place: Place,
     faults: FaultList,
-    one_way: Collection[str] = (),
+    one_way: Mapping[str, str] = MappingProxyType({}),
 ) -> None:
     """Note a missing supply, nodes that no pipe joins to it, and valves that cut nodes off.
 
-    ``one_way`` are the tags of the devices that let no water back.
+    ``one_way`` are the devices that let no water back, by tag the kind of each.
     """
     roots = [number for number, node in enumerate(nodes) if node.kind == "supply"]
     if not roots:
@@ -329,7 +333,11 @@ def finish(
     """Return the finished system. With faults noted it is not fit for use."""
     place = finisher.sections.place("layout" if finisher.sections.layout else "network.nodes")
     if draft.complete:
-        one_way = {tag for tag, one in finisher.devices.items() if one.device and one.device.one_way}
+        one_way = {
+            tag: one.device.kind
+            for tag, one in finisher.devices.items()
+            if one.device and (one.device.one_way or one.device.kind != "loss")
+        }
         check_connections(draft.nodes, draft.pipes, place, faults, one_way)
     sizes = [finisher.size(pipe) for pipe in draft.pipes]
     finisher.note_unknown_sizes()

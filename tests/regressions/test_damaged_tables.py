@@ -197,12 +197,20 @@ def test_a_reversed_check_valve_is_named_with_its_row(tmp_path: Path) -> None:
     assert faults(tmp_path, TABLE_PROJECT, pipes=pipes.replace("T,S,", "S,T,")) == []
 
 
-def test_a_reversed_check_valve_as_a_device(tmp_path: Path) -> None:
-    text = HEAD + '[device.cv]\nkind = "check valve"\nloss = 1\nsource = "sheet"\n'
+@pytest.mark.parametrize(
+    ("keys", "name"),
+    [
+        ('kind = "check valve"\nloss = 1', "check valve cv"),
+        ('kind = "pressure-reducing valve"\nsetting = 40', "pressure-reducing valve cv"),
+        ('kind = "pump"\ncurve = [[0, 50], [100, 40]]', "pump cv"),
+    ],
+)
+def test_a_reversed_one_way_device(tmp_path: Path, keys: str, name: str) -> None:
+    text = HEAD + f'[device.cv]\n{keys}\nsource = "sheet"\n'
     text += '[network]\nnodes = "nodes.csv"\npipes = "pipes.csv"\n'
     pipes = PIPES.replace("fittings\n", "fittings,devices\n").replace("1 elbow 90\n", "1 elbow 90,cv\n")
     (fault,) = faults(tmp_path, text, pipes=pipes)
-    assert fault.place.where == "row 4"
+    assert fault.place.where == "row 4" and f"the {name} in" in fault.problem
     assert faults(tmp_path, text, pipes=pipes.replace("T,S,", "S,T,")) == []
 
 
