@@ -135,29 +135,34 @@ def _wanders(context: CheckContext, pipe: Pipe) -> bool:
     return apart is not None and pipe.length > OWN_TURNS * apart
 
 
+def _family(fitting: Fitting) -> str:
+    name = fitting.name.casefold()
+    return next((family for family, words in _FAMILIES.items() if words.search(name)), "")
+
+
 def twice(context: CheckContext) -> Finding:
-    """Whether it is one fitting or two cannot be seen from the file; both count, on the safe side."""
-    both = [
-        pipe
-        for pipe in context.project.system.pipes
-        if {"given", "inferred"} <= {one.origin for one in pipe.fittings}
-    ]
+    """Whether it is one fitting or two cannot be seen from the file; both count, on the safe side.
+
+    Only fittings of one pipe are compared: an elbow written on one pipe and one that geometry charges to
+    the next are as a rule the two ends of the former.
+    """
+    pipes = context.project.system.pipes
+    both = [pipe for pipe in pipes if {"given", "inferred"} <= {one.origin for one in pipe.fittings}]
     if not both:
         return TWICE.says("not applicable", "No pipe has fittings both as written and from geometry.")
     found = []
     for pipe in both:
-        for family, words in _FAMILIES.items():
-            named = [one for one in pipe.fittings if words.search(one.name.casefold())]
-            written = [one for one in named if one.origin == "given"]
-            inferred = [one for one in named if one.origin == "inferred"]
-            if written and inferred and not (family == "elbow" and _wanders(context, pipe)):
-                found.append((pipe, written[0], inferred[0]))
+        inferred = {_family(one): one for one in pipe.fittings if one.origin == "inferred"}
+        for one in pipe.fittings:
+            other = inferred.get(_family(one)) if one.origin == "given" else None
+            if other and not (_family(one) == "elbow" and _wanders(context, pipe)):
+                found.append((pipe, one, other))
     if not found:
         return TWICE.says("ok", "No elbow or tee is both written on a pipe and inferred for it.")
     pipe, one, other = found[0]
     tags = tuple(dict.fromkeys(each.tag for each, _, _ in found))
-    text = f"{pipe.tag} is charged {one.count} {one.name} as written and {other.count} {other.name} at "
-    text += f"{other.node} from geometry, {{measured}} for the written one."
+    text = f"{pipe.tag} is charged {one.count} {one.name} as written; geometry charges it {other.count} "
+    text += f"{other.name} at {other.node}. The written one adds {{measured}}."
     ask = f"Is the {one.name} written on {some(tags)} the turn at its end, "
     ask += "so that it is to be taken out of the column fittings?"
     measured = Measure(one.length, "length")

@@ -178,7 +178,7 @@ def toward_supply(context: CheckContext) -> Finding:
     listed = [words for key, words in _KEYS.items() if key in places]
     ask = f"Is {some(tags)} really smaller than the pipe it feeds?"
     if listed:
-        ask = f"Are the sizes of {' and those of '.join(listed)}?"
+        ask = f"Are {', and '.join(listed)}?"
     return SIZES.says("ask authority", text, tags=tags, remedy=ask)
 
 

@@ -25,10 +25,10 @@ tag,from,to,length,kind,size,fittings
 P1,H2,H1,10,lines,1,{end}
 P2,T,H2,10,lines,1 1/4,{line}
 P3,T,H3,10,lines,1,
-P4,R,T,10,lines,2 1/2,
+P4,R,T,10,lines,2 1/2,{main}
 P5,S,R,{length},lines,2,{riser}
 """
-PLAIN = {"end": "", "line": "", "riser": "", "length": "10"}
+PLAIN = {"end": "", "line": "", "riser": "", "main": "", "length": "10"}
 TWICE = "fitting charged twice"
 TEES = "tee where flow turns"
 
@@ -44,12 +44,19 @@ def found_in(folder: Path, rule: str, text: str, nodes: str, pipes: str) -> Find
         ({}, "not applicable", "", ""),
         ({"riser": "1 gate valve"}, "ok", "", ""),
         ({"end": "1 tee"}, "not applicable", "", ""),
-        ({"line": "1 tee"}, "ask authority", "P2", "tee as written and 1 tee at T"),
-        ({"line": "1 cross"}, "ask authority", "P2", "tee as written and 1 tee at T"),
+        ({"line": "1 tee"}, "ask authority", "P2", "tee as written; geometry charges it 1 tee at T"),
+        ({"line": "1 cross"}, "ask authority", "P2", "tee as written; geometry charges it 1 tee at T"),
         ({"line": "1 elbow 90"}, "ok", "", ""),
-        ({"riser": "1 elbow 90"}, "ask authority", "P5", "elbow 90 as written and 1 elbow 90 at R"),
+        (
+            {"riser": "1 elbow 90"},
+            "ask authority",
+            "P5",
+            "elbow 90 as written; geometry charges it 1 elbow 90 at R.",
+        ),
         ({"riser": "2 long elbow 90; 1 gate valve"}, "ask authority", "P5", "2 long elbow 90 as written"),
         ({"riser": "2 elbow 90", "length": "15"}, "ok", "", ""),
+        ({"main": "1 elbow 90"}, "not applicable", "", ""),
+        ({"main": "1 tee"}, "not applicable", "", ""),
         ({"riser": "flanged elbow = 4 ft"}, "ask authority", "P5", "1 flanged elbow as written"),
     ],
 )
