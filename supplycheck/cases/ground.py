@@ -44,5 +44,5 @@ class Ground:
         solution = solve_demand(
             self.network, load, required_of(case), self.sources, velocity_pressure=policy
         )
-        comparison = compare(without_hose(self.project, case), solution, self.curves)
+        comparison = compare(without_hose(self.project, case), solution, self.curves, self.network)
         return Solved(case, solution, self.operating(load), comparison)

@@ -34,7 +34,7 @@ def by_second_law(ground: Ground, case: DemandCase) -> SecondLaw | None:
     except NotConvergedError as error:
         nothing = math.nan
         return SecondLaw(law.name, nothing, nothing, nothing, nothing, None, None, f"no solution: {error}")
-    found = compare(without_hose(project, case), solution, ground.curves)
+    found = compare(without_hose(project, case), solution, ground.curves, network)
     return SecondLaw(
         law.name,
         found.demand_flow,

@@ -6,8 +6,8 @@ from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, pressure, some
 from supplycheck.findings import Finding, State
-from supplycheck.model import Pipe
 from supplycheck.supply import supply_curves
+from supplycheck.supply.standing import standing_pressures
 
 NO_FLOW = About(
     "pressure without flow",
@@ -25,67 +25,30 @@ SPRINKLER_MAXIMUM = About(
 
 
 def no_flow_pressures(context: CheckContext) -> dict[str, float]:
-    """Return the highest pressure [Pa] at each node without flow, walked from each source of pressure.
+    """Return the highest pressure [Pa] at each node without flow, from every source of pressure.
 
-    These are the point of comparison and, where several sources feed the system, the node of each with
-    its own static. A pump adds its churn, a pressure-reducing valve holds its setting; shut pipes are not
-    passed, check valves only forwards: behind one the higher pressure stands.
+    These are the nodes of the sources with their own statics; where the project does not place them, the
+    point of comparison. A pump adds its churn, a pressure-reducing valve holds its setting; shut pipes are
+    not passed, one-way ones only forwards: behind one the higher pressure stands.
     """
     if context.no_flow is not None:
         return dict(context.no_flow)
-    compared = context.comparison.node
-    walks = [_walked(context, compared, context.comparison.static_at_compare)]
-    several = statics(context)
-    walks += [_walked(context, tag, static) for tag, static in several.items() if tag != compared]
-    found: dict[str, float] = {}
-    for walk in walks:
-        for tag, value in walk.items():
-            found[tag] = max(value, found.get(tag, value))
-    return found
+    at, found = context.comparison.node, statics(context)
+    if at in found or not found:
+        found[at] = context.comparison.static_at_compare
+    return standing_pressures(context.project.system, found, context.project.fluid.unit_weight)
 
 
 def statics(context: CheckContext) -> dict[str, float]:
-    """Return the highest measured static [Pa] at each source node where there are several, else nothing."""
-    project = context.project
+    """Return the highest measured static [Pa] at each source node that does not lie at the point compared.
+
+    Nothing where a single source feeds the point at which it is compared, or one stands at no node.
+    """
+    project, compared = context.project, context.comparison.node
     placed = {test.node for test in project.supply.tests} | {tank.node for tank in project.supply.tanks}
-    if len(placed) < 2 or not placed <= set(context.nodes):
+    if placed <= {compared} or not placed <= set(context.nodes):
         return {}
     return {one.node: max(curve.static for curve in one.measured) for one in supply_curves(project)}
-
-
-def _walked(context: CheckContext, start: str, pressure_there: float) -> dict[str, float]:
-    weight, found = context.project.fluid.unit_weight, {start: pressure_there}
-    row = [start]
-    joined: dict[str, list[Pipe]] = {tag: [] for tag in context.nodes}
-    for pipe in context.project.system.pipes:
-        if pipe.valve != "closed":
-            joined[pipe.start].append(pipe)
-            if not _one_way(context, pipe):
-                joined[pipe.end].append(pipe)
-    for here in row:
-        for pipe in joined[here]:
-            there = pipe.end if pipe.start == here else pipe.start
-            if there not in found:
-                beyond = _past_devices(context, pipe, found[here], onward=pipe.start == here)
-                rise = context.nodes[there].elevation - context.nodes[here].elevation
-                found[there] = beyond - weight * rise
-                row.append(there)
-    return found
-
-
-def _one_way(context: CheckContext, pipe: Pipe) -> bool:
-    devices = [context.devices[tag] for tag in pipe.devices]
-    return pipe.valve == "check" or any(one.one_way or one.kind == "check valve" for one in devices)
-
-
-def _past_devices(context: CheckContext, pipe: Pipe, value: float, *, onward: bool) -> float:
-    for tag in pipe.devices if onward else reversed(pipe.devices):
-        device = context.devices[tag]
-        if device.kind == "pump":
-            value += max(device.values, default=0.0) * (1 if onward else -1)
-        elif device.kind == "pressure-reducing valve" and device.setting is not None and onward:
-            value = min(value, device.setting)
-    return value
 
 
 def no_flow(context: CheckContext) -> Finding:

@@ -4,7 +4,7 @@ Flow tests and tanks become one :class:`NodeSupply` a source node (:func:`supply
 takes through :func:`source_curves`; :func:`compare` sets the demand solution beside them.
 """
 
-from supplycheck.supply.comparison import Comparison, SourceShare, compare, reference_date
+from supplycheck.supply.comparison import Comparison, compare, reference_date
 from supplycheck.supply.curve import SupplyCurve, constant_curve, curve_through, lower_envelope
 from supplycheck.supply.graph import CurveLine, GraphData, MarkedPoint, curve_points
 from supplycheck.supply.hose import HoseLoad, hose_loads, hose_parts
@@ -18,6 +18,7 @@ from supplycheck.supply.margin import (
 from supplycheck.supply.outlets import OutletFlow, outlet_flow, reduce_outlets
 from supplycheck.supply.quality import FlowTestFacts, PitotFact, flow_test_facts
 from supplycheck.supply.route import CarriedCurve, Route
+from supplycheck.supply.shares import SourceShare
 from supplycheck.supply.sources import NodeSupply, Stage, gauge_curve, source_curves, supply_curves
 
 __all__ = [

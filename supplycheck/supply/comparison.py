@@ -20,43 +20,16 @@ from typing import Final
 from supplycheck.errors import DomainError
 from supplycheck.model import Project
 from supplycheck.model.words import Step, Value, Words
+from supplycheck.network import Network
 from supplycheck.network.records import Solution
 from supplycheck.supply.hose import hose_parts
 from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margin, rule_words
-from supplycheck.supply.narration import (
-    arrival_steps,
-    demand_step,
-    left_over_step,
-    sharing_step,
-    source_steps,
-)
-from supplycheck.supply.route import CarriedCurve, no_flow_pressure, solved_route
+from supplycheck.supply.narration import demand_step, left_over_step, sharing_step, source_steps
+from supplycheck.supply.point import Point, point_of
+from supplycheck.supply.route import CarriedCurve
+from supplycheck.supply.shares import SourceShare
 from supplycheck.supply.sources import NodeSupply
-
-
-@dataclass(frozen=True, slots=True)
-class SourceShare:
-    """What one source gives in the demand solution, and what it could give; pressures [Pa], flow [m³/s].
-
-    ``available`` is the compared curve at ``flow``, ``unadjusted`` the lowest measured curve there.
-    ``governing`` names the test or tank; ``test_static``, ``test_residual`` and ``test_flow`` are as read
-    (the reading at the largest flow of that test), ``None`` for a tank. ``required`` is what the margin
-    rule asks of this source.
-    """
-
-    node: str
-    flow: float
-    demand_pressure: float
-    available: float
-    unadjusted: float
-    governing: str
-    test_static: float | None
-    test_residual: float | None
-    test_flow: float | None
-    tested_flow: float
-    extrapolated: bool
-    tested_ratio: float | None
-    required: float | None
+from supplycheck.supply.states import States
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,12 +37,17 @@ class Comparison:
     """Demand against supply at ``node``; pressures [Pa], flows [m³/s].
 
     ``demand_flow`` is all that the sources give: ``sprinkler_flow`` + ``hose_inside`` + ``hose_outside`` +
-    ``other_flow``. ``carried_flow`` is the part that passes ``node`` or is drawn at it. ``available_flow``
-    is the flow at which the demand pressure is still there (``None``: at every flow). ``margin`` is the
-    available less the demand pressure; ``required`` what the rule asks (``None``: no rule given) and
-    ``after_rule`` what is left. ``static`` and ``highest_static`` are the no-flow pressures at ``node`` on
-    the compared curve and on the highest measured one. ``principal`` is the source that gives most; the
-    flows at 20 psi are read at its gauge, on the lowest measured and on the adjusted curve.
+    ``other_flow``. ``carried_flow`` is what passes ``node`` or is drawn at it. ``available_pressure`` is
+    what a gauge at ``node`` shows with the demand drawn from the supplies as they are. ``available_flow``
+    is the flow at which the demand pressure is still there (``None``: at every flow). ``margin`` is by how
+    much the supply can be lowered with the demand still met: the available less the demand pressure, unless
+    a regulating valve before ``node`` holds some of it back. ``required`` is what the rule asks
+    (``None``: no rule given) and ``after_rule`` what is left. ``static`` is what a gauge at ``node`` shows
+    with nothing drawn from the compared curves, ``highest_static`` the highest that the highest measured
+    ones can bring there. ``principal`` is the source that gives most; the flows at 20 psi are read at its
+    gauge, on the lowest measured and on the adjusted curve. ``carried`` is the curve of the source whose
+    water comes to ``node``, behind the losses of its route. ``states`` solves the network for the
+    pressure at ``node``; ``None`` where the sum along the route is exact at every flow.
     """
 
     node: str
@@ -99,6 +77,7 @@ class Comparison:
     flow_at_20_psi: float | None
     adjusted_flow_at_20_psi: float | None
     notes: tuple[Words, ...]
+    states: States | None = None
 
     @property
     def hose_flow(self) -> float:
@@ -120,15 +99,18 @@ def reference_date(project: Project) -> dt.date:
     return project.supply.submittal_date or project.facts.date
 
 
-def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) -> Comparison:
+def compare(
+    project: Project, solution: Solution, curves: Sequence[NodeSupply], network: Network | None = None
+) -> Comparison:
     """Return demand against supply at ``project.supply.compare_at``.
 
-    ``solution`` is the demand solution made with these ``curves``. With one source the margin is the
-    curve at the demand flow less the demand at the source; with several it is ``solution.shift``, by how
-    much all curves can be lowered together, and the source that gives most stands for the rest.
+    ``solution`` is the demand solution made with these ``curves``; ``network`` saves building it anew. With
+    one source the margin is the curve at the demand flow less the demand at the source; with several it is
+    ``solution.shift``, by how much all curves can be lowered together.
 
     Raises :class:`DomainError` where the solution holds no demand (no shift, no flow), where the point of
-    comparison does not exist or no open pipe leads to it, and for a margin rule that cannot be applied.
+    comparison does not exist or no open pipe leads to it, and for a margin rule that cannot be applied;
+    :class:`NotConvergedError` where the pressure there has to be solved and has no solution.
     """
     by_node = {one.node: one for one in curves}
     if len(solution.source_tags) == 0 or not math.isfinite(solution.shift):
@@ -145,18 +127,10 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
     at = project.supply.compare_at
     if at not in solution.node_tags:
         raise DomainError(f"the point of comparison {at} is not a node of the network")
-    demand = float(solution.pressure[solution.node(at)])
-    exponent = project.law.flow_exponent
-    path = solved_route(project.system, solution, main.node, at, main.flow, exponent)
-    carried, before = CarriedCurve(supply.curve, path), CarriedCurve(supply.unadjusted, path)
+    point = point_of(project, solution, by_node, shares, margin, network)
     rule = project.supply.margin
     required = None if rule is None else _strictest(shares).required
     flows = _flows(project, solution)
-    weight = project.fluid.unit_weight
-    statics = [
-        no_flow_pressure(project.system, static, main.node, at, weight)
-        for static in (supply.curve.static, max(curve.static for curve in supply.measured))
-    ]
     return Comparison(
         node=at,
         demand_flow=math.fsum(share.flow for share in shares),
@@ -165,12 +139,12 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
         hose_inside=flows["inside"],
         hose_outside=flows["outside"],
         other_flow=flows["other"],
-        demand_pressure=demand,
-        available_pressure=demand + margin,
-        unadjusted_pressure=demand + margin + main.unadjusted - main.available,
-        available_flow=carried.flow_at(demand),
-        static=statics[0],
-        highest_static=statics[1],
+        demand_pressure=point.demand,
+        available_pressure=point.available,
+        unadjusted_pressure=point.unadjusted,
+        available_flow=point.available_flow,
+        static=point.static,
+        highest_static=point.highest_static,
         margin=margin,
         required=required,
         after_rule=None if required is None else margin - required,
@@ -178,17 +152,21 @@ def compare(project: Project, solution: Solution, curves: Sequence[NodeSupply]) 
         rule_source=rule.source if rule is not None else "",
         principal=main.node,
         sources=shares,
-        carried=carried,
-        carried_unadjusted=before,
+        carried=point.carried,
+        carried_unadjusted=point.carried_unadjusted,
         supply_steps=(
             demand_step(_named(flows)),
             *_source_steps(project, by_node, shares),
-            *arrival_steps(supply, max(main.flow, 0.0), carried.route, at, demand, margin),
+            *point.steps,
         ),
-        margin_steps=_margin_steps(project, by_node, shares, demand, margin, required),
+        margin_steps=_margin_steps(project, by_node, shares, point, margin, required),
         flow_at_20_psi=supply.rated_flow(RATING_PRESSURE),
         adjusted_flow_at_20_psi=supply.rated_flow(RATING_PRESSURE, adjusted=True),
-        notes=_sharing_notes(shares) + _own_notes(by_node, shares) + _range_notes(shares, carried),
+        notes=_sharing_notes(shares)
+        + point.notes
+        + _own_notes(by_node, shares)
+        + _range_notes(shares, point.carried),
+        states=point.states,
     )
 
 
@@ -210,7 +188,7 @@ def _margin_of(project: Project, supply: NodeSupply, flow: float, demand: float)
 
 def _share(project: Project, supply: NodeSupply, flow: float, demand: float) -> SourceShare:
     curve = supply.curve
-    given = max(flow, 0.0)  # a source that is fed backwards is read at no flow
+    given = max(flow, 0.0)  # what a test says of a source that is fed is said at no flow
     test = supply.test_at(given)
     last = None if test is None else max(test.points, key=lambda point: (point.flow, -point.residual))
     member = supply.adjusted_member(given)
@@ -219,8 +197,8 @@ def _share(project: Project, supply: NodeSupply, flow: float, demand: float) -> 
         node=supply.node,
         flow=flow,
         demand_pressure=demand,
-        available=curve.pressure_at(given),
-        unadjusted=supply.unadjusted.pressure_at(given),
+        available=curve.either_way(flow),
+        unadjusted=supply.unadjusted.either_way(flow),
         governing=member.name,
         test_static=None if test is None else test.static,
         test_residual=None if last is None else last.residual,
@@ -283,8 +261,7 @@ def _source_steps(
     several = len(shares) > 1
     steps = [sharing_step([(share.node, share.flow) for share in shares])] if several else []
     for share in shares:
-        flow = max(share.flow, 0.0)
-        steps += source_steps(by_node[share.node], flow, project.units, RATING_PRESSURE)
+        steps += source_steps(by_node[share.node], share.flow, project.units, RATING_PRESSURE)
         steps += [left_over_step(share.node, share.available, share.demand_pressure)] if several else []
     return tuple(steps)
 
@@ -308,13 +285,23 @@ def _margin_steps(
     project: Project,
     by_node: dict[str, NodeSupply],
     shares: tuple[SourceShare, ...],
-    demand: float,
+    point: Point,
     margin: float,
     required: float | None,
 ) -> tuple[Step, ...]:
-    available = (("available", demand + margin, "pressure"), ("demand", demand, "pressure"))
     alike = "all supplies lowered alike" if len(shares) > 1 else ""
-    words = Words("{available} − {demand}", available)
+    if point.held_back:
+        main = max(shares, key=lambda share: share.flow)
+        available, demand, alike = (
+            main.available,
+            main.demand_pressure,
+            "; ".join(filter(None, (alike, f"read at {main.node}"))),
+        )
+    else:
+        available, demand = point.available, point.demand
+    words = Words(
+        "{available} − {demand}", (("available", available, "pressure"), ("demand", demand, "pressure"))
+    )
     steps = [Step("Margin before the rule", words, margin, "pressure", alike)]
     if required is None:
         return tuple(steps)

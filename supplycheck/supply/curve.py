@@ -81,6 +81,16 @@ class SupplyCurve:
         piece = self._piece(flow)
         return self._at(flow**self.exponent, piece)
 
+    def either_way(self, flow: float) -> float:
+        """Return the pressure [Pa] at ``flow`` [m³/s]; negative where water runs into the source.
+
+        The curve then rises above static as far as it falls below it at the same flow drawn, as the
+        network solver reads it: an assumption, since no test tells how a main takes water.
+        """
+        if flow >= 0.0:
+            return self.pressure_at(flow)
+        return 2.0 * self.static - self.pressure_at(-flow)
+
     def _at(self, power: float, piece: int) -> float:
         powers = self.powers
         start, pressure = powers[piece], self.pressures[piece]

@@ -10,17 +10,21 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import Literal
 
-from supplycheck.errors import DomainError
+from supplycheck.errors import DomainError, NotConvergedError
 from supplycheck.model import Project
 from supplycheck.network.records import Solution
-from supplycheck.supply.comparison import Comparison, SourceShare
+from supplycheck.supply.comparison import Comparison
 from supplycheck.supply.curve import EXPONENT, SupplyCurve
-from supplycheck.supply.route import CarriedCurve, Route, solved_route
+from supplycheck.supply.route import CarriedCurve, Route, holding_pipes, solved_route
+from supplycheck.supply.shares import SourceShare
 from supplycheck.supply.sources import NodeSupply
+from supplycheck.supply.states import States, fed_sources
 
 LineStyle = Literal["measured", "adjusted", "demand", "combined", "tank", "pump"]
 PointStyle = Literal["test", "demand", "demand with hose", "available", "operating"]
 _SAMPLES = 25
+_SOLVED = 12
+_MOST_REACH = 3.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,33 +64,64 @@ def curve_points(
 ) -> GraphData:
     """Return the graph of ``comparison``: supply as measured and as compared, demand, marked points.
 
-    The supply lines are those of the principal source, carried to the point of comparison with the losses
-    of the demand solution; where pumps stand on the way, the supply is shown without them, then the pumps
-    by themselves, then both together as far as the curves go. Test points are carried like the lines.
-    Where several sources give water, every line and point stands at the flow of its own source, and the
-    lines of the others follow: at the point of comparison, or at their own node where their water cannot
-    come there.
+    The supply lines are those of the source whose water comes to the point of comparison, carried there
+    with the losses of the demand solution; where pumps stand on the way, the supply is shown without them,
+    then the pumps by themselves, then both together as far as the curves go. Test points are carried like
+    the lines. Where several sources give water, every line and point stands at the flow of its own source,
+    and the lines of the others follow: at the point of comparison, or at their own node where their water
+    cannot come there. Where no sum along a route holds, the line at the point of comparison is solved: all
+    supplies together against all that is drawn; each source has its own lines at its own node.
     """
     by_node = {one.node: one for one in curves}
-    supply, path = by_node[comparison.principal], comparison.carried.route
-    lines = _supply_lines(supply, path, _reach(supply, comparison.main_source.flow))
-    points = [*_test_points(supply, path), *_demand_points(comparison)]
-    for share in comparison.sources:
-        if share.node != comparison.principal:
-            more = _of_another(project, solution, comparison, share, by_node[share.node])
-            lines, points = [*lines, *more.lines], [*points, *more.points]
+    start = comparison.carried.supply.node
+    if comparison.states is not None:
+        lines, points = [_solved_line(comparison, comparison.states)], _whole_points(comparison)
+        others = comparison.sources
+    else:
+        supply, path = by_node[start], comparison.carried.route
+        lines = _supply_lines(supply, path, _reach(supply, comparison))
+        points = [*_test_points(supply, path), *_demand_points(comparison)]
+        others = tuple(share for share in comparison.sources if share.node != start)
+    for share in others:
+        more = _of_another(project, solution, comparison, share, by_node[share.node])
+        lines, points = [*lines, *more.lines], [*points, *more.points]
     return GraphData((*lines, _demand_line(project, solution, comparison)), tuple(points))
+
+
+def _solved_line(comparison: Comparison, states: States) -> CurveLine:
+    """Return what all supplies together leave at the point of comparison against all that is drawn."""
+    most = comparison.available_flow or 0.0
+    reach = 1.1 * max(comparison.demand_flow, min(most, _MOST_REACH * comparison.demand_flow))
+    tested = {share.node: share.tested_flow for share in comparison.sources}
+    kept, known = [(0.0, comparison.static)], reach
+    for index in range(1, _SOLVED + 1):
+        flow = reach * (index / _SOLVED) ** (1 / EXPONENT)
+        try:
+            state = states.state(flow / states.total)
+        except NotConvergedError:
+            break
+        pressure = states.shown(state)
+        if pressure < 0.0:
+            break
+        given = zip(state.source_tags, state.source_flow.tolist(), strict=True)
+        if any(amount > tested[tag] for tag, amount in given):
+            known = min(known, kept[-1][0])
+        kept.append((flow, pressure))
+    flows, pressures = zip(*kept, strict=True)
+    end = known if 0.0 < known < flows[-1] else None
+    return CurveLine(f"supply at {comparison.node}, network solved", "combined", flows, pressures, end)
 
 
 def _of_another(
     project: Project, solution: Solution, comparison: Comparison, share: SourceShare, supply: NodeSupply
 ) -> GraphData:
-    """Return lines and points of a source that is not the principal one."""
+    """Return lines and points of a source that is not the one carried to the point of comparison."""
     way, demanded, at = _way(project, solution, comparison, share)
     place = f" at {at}" + (f", {share.node}" if share.node != at else "")
-    lines = _supply_lines(supply, way, _reach(supply, share.flow))
+    name = place + (", water runs into it" if share.node in fed_sources(solution) else "")
+    lines = _supply_lines(supply, way, _reach(supply, comparison))
     points = [*_test_points(supply, way), *_share_points(share, demanded, comparison.margin, place)]
-    return GraphData(tuple(replace(line, name=line.name + place) for line in lines), tuple(points))
+    return GraphData(tuple(replace(line, name=line.name + name) for line in lines), tuple(points))
 
 
 def _way(
@@ -94,15 +129,18 @@ def _way(
 ) -> tuple[Route, float, str]:
     """Return the route of another source, the demand [Pa] at its end, and the node of that end.
 
-    It ends at the point of comparison where water of this source can come there, else at its own node.
+    It ends at the point of comparison where water of this source can come there and the sum along the way
+    holds, else at its own node.
     """
     at, exponent = comparison.node, project.law.flow_exponent
-    try:
-        if share.flow > 0.0:
+    if share.flow > 0.0 and comparison.states is None:
+        try:
             way = solved_route(project.system, solution, share.node, at, share.flow, exponent)
-            return way, comparison.demand_pressure, at
-    except DomainError:
-        pass
+        except DomainError:
+            pass
+        else:
+            if holding_pipes(project.system, solution).isdisjoint(way.pipes):
+                return way, comparison.demand_pressure, at
     own = Route((), max(share.flow, 0.0), 0.0, 0.0, 0.0, 0.0, (), exponent)
     return own, share.demand_pressure, share.node
 
@@ -117,9 +155,11 @@ def _share_points(share: SourceShare, demanded: float, margin: float, place: str
     ]
 
 
-def _reach(supply: NodeSupply, flow: float) -> float:
+def _reach(supply: NodeSupply, comparison: Comparison) -> float:
+    """Return how far the lines of a source go [m³/s]: past its tests and past what it gives."""
     tested = [curve.tested_flow for curve in supply.measured if math.isfinite(curve.tested_flow)]
-    return 1.1 * max([flow, *tested])
+    given = max(next(one.flow for one in comparison.sources if one.node == supply.node), 0.0)
+    return 1.1 * (max([given, *tested]) or comparison.demand_flow)
 
 
 def _supply_lines(supply: NodeSupply, path: Route, reach: float) -> list[CurveLine]:
@@ -176,8 +216,8 @@ def _demand_line(project: Project, solution: Solution, comparison: Comparison) -
     """Return the system's demand: from its height at no flow to the demand, then on by the hose."""
     levels = {node.tag: node.elevation for node in project.system.nodes}
     height = levels.get(solution.governing, levels[comparison.node]) - levels[comparison.node]
-    several = len(comparison.sources) > 1
-    given = comparison.main_source.flow if several else comparison.demand_flow
+    several = len(comparison.sources) > 1 and comparison.states is None
+    given = _carried_share(comparison).flow if several else comparison.demand_flow
     hose = 0.0 if several else comparison.hose_flow
     flow = given - hose
     start, end = project.fluid.unit_weight * height, comparison.demand_pressure
@@ -201,12 +241,23 @@ def _test_points(supply: NodeSupply, path: Route) -> list[MarkedPoint]:
     return points
 
 
+def _carried_share(comparison: Comparison) -> SourceShare:
+    """Return the share of the source that is carried to the point of comparison."""
+    start = comparison.carried.supply.node
+    return next(share for share in comparison.sources if share.node == start)
+
+
 def _demand_points(comparison: Comparison) -> list[MarkedPoint]:
+    if len(comparison.sources) == 1:
+        return _whole_points(comparison)
+    share = _carried_share(comparison)
+    place = f" at {comparison.node}" + (f", {share.node}" if share.node != comparison.node else "")
+    return _share_points(share, comparison.demand_pressure, comparison.margin, place)
+
+
+def _whole_points(comparison: Comparison) -> list[MarkedPoint]:
+    """Return demand and supply at the point of comparison at the flow of the whole demand."""
     pressure, total = comparison.demand_pressure, comparison.demand_flow
-    if len(comparison.sources) > 1:
-        main = comparison.main_source
-        place = f" at {comparison.node}" + (f", {main.node}" if main.node != comparison.node else "")
-        return _share_points(main, pressure, comparison.margin, place)
     points = [MarkedPoint("demand", "demand", total - comparison.hose_flow, pressure)]
     if comparison.hose_flow > 0.0:
         points.append(MarkedPoint("demand with hose", "demand with hose", total, pressure))

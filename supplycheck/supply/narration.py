@@ -8,7 +8,7 @@ from typing import Final
 
 from supplycheck.hydraulics import pitot_discharge
 from supplycheck.model import FlowTest
-from supplycheck.model.words import Step, Words
+from supplycheck.model.words import Step, Value, Words
 from supplycheck.supply.curve import SupplyCurve
 from supplycheck.supply.outlets import outlet_flow
 from supplycheck.supply.route import Route
@@ -22,7 +22,18 @@ _FORMS: Final = {
 
 
 def curve_words(curve: SupplyCurve, flow: float) -> Words:
-    """Return the piece of the curve on which ``flow`` lies, as a formula with its numbers."""
+    """Return the piece of the curve on which ``flow`` lies, as a formula with its numbers.
+
+    A negative flow runs into the source: the curve then rises above static as far as it falls below it.
+    """
+    if flow < 0.0 and len(curve.flows) > 1:
+        taken: tuple[Value, ...] = (
+            ("p0", curve.static, "pressure"),
+            ("p1", curve.pressure_at(-flow), "pressure"),
+            ("q", -flow, "flow"),
+        )
+        text = "{p0} + ({p0} − {p1}): {q} run into it, and {p1} would be left with as much drawn"
+        return Words(text, taken)
     values = [("q", flow, "flow"), ("p0", curve.pressures[0], "pressure")]
     flows = curve.flows
     if len(flows) == 1:
@@ -120,27 +131,43 @@ def _projection(curve: SupplyCurve, pressure: float) -> Words:
 
 
 def sharing_step(shares: Sequence[tuple[str, float]]) -> Step:
-    """Return what each of several sources gives [m³/s], as one sum."""
-    text = " + ".join(f"{node} {{v{index}}}" for index, (node, _) in enumerate(shares))
-    values = tuple((f"v{index}", flow, "flow") for index, (_, flow) in enumerate(shares))
-    total = math.fsum(flow for _, flow in shares)
-    return Step(
-        "Given by the sources", Words(text, values), total, "flow", "each on its own curve, at its own flow"
+    """Return what each of several sources gives or takes [m³/s], as one sum."""
+    return _sharing("Given by the sources", shares, "each on its own curve, at its own flow")
+
+
+def state_sharing_step(shares: Sequence[tuple[str, float]]) -> Step:
+    """Return the same where the demand is drawn from the supplies as they are."""
+    return _sharing("Given by the supplies as they are", shares, "the same draws, no supply lowered")
+
+
+def _sharing(title: str, shares: Sequence[tuple[str, float]], note: str) -> Step:
+    ordered = sorted(shares, key=lambda share: share[1] < 0.0)
+    parts = [
+        f"{node} {{v{index}}}" if flow >= 0.0 else f"{{v{index}}} that run into {node}"
+        for index, (node, flow) in enumerate(ordered)
+    ]
+    text = parts[0] + "".join(
+        (" + " if flow >= 0.0 else " − ") + part
+        for part, (_, flow) in zip(parts[1:], ordered[1:], strict=True)
     )
+    values = tuple((f"v{index}", abs(flow), "flow") for index, (_, flow) in enumerate(ordered))
+    return Step(title, Words(text, values), math.fsum(flow for _, flow in shares), "flow", note)
 
 
 def source_steps(supply: NodeSupply, flow: float, units: str, rating: float) -> tuple[Step, ...]:
     """Return the steps from the test as read to the pressure at the node of the source.
 
-    ``flow`` [m³/s] is what the source gives; ``rating`` [Pa] the pressure at which a main is rated.
+    ``flow`` [m³/s] is what the source gives, negative where water runs into it; ``rating`` [Pa] the
+    pressure at which a main is rated.
     """
-    test = supply.test_at(flow)
+    given = max(flow, 0.0)
+    test = supply.test_at(given)
     steps = [] if test is None else [*pitot_steps(test, units)]
     steps += rating_steps(supply, rating)
-    measured = supply.measured_member(flow)
+    measured = supply.measured_member(given)
     gauge = measured.lowered(measured.offset)
     if supply.tests:
-        value, title = gauge.pressure_at(flow), f"Curve of {measured.name} at the demand flow"
+        value, title = gauge.either_way(flow), f"Curve of {measured.name} at the demand flow"
         steps.append(Step(title, curve_words(gauge, flow), value, "pressure", "at the gauge"))
         words = Words(
             "{gauge} + {gain}", (("gauge", value, "pressure"), ("gain", measured.offset, "pressure"))
@@ -148,7 +175,7 @@ def source_steps(supply: NodeSupply, flow: float, units: str, rating: float) -> 
         title, carried = f"Carried to node {supply.node}", value + measured.offset
         steps.append(Step(title, words, carried, "pressure", "height from the gauge to the node"))
     for stage in supply.stages[0 if supply.tank else 1 :]:
-        value = stage.curve.pressure_at(flow)
+        value = stage.curve.either_way(flow)
         title = "Tank" if supply.tank else "Adjusted"
         steps.append(Step(title, stage.words, value, "pressure", "at the demand flow"))
     return tuple(steps)
@@ -159,8 +186,24 @@ def left_over_step(node: str, available: float, demand: float) -> Step:
     words = Words(
         "{available} − {demand}", (("available", available, "pressure"), ("demand", demand, "pressure"))
     )
-    title, note = f"Left over at {node}", "the same at every source that gives water"
+    title, note = f"Left over at {node}", "the same at every source: all are lowered alike"
     return Step(title, words, available - demand, "pressure", note)
+
+
+def carried_step(start: tuple[str, float], path: Route, at: str, note: str) -> Step:
+    """Return the step from a pressure [Pa], named as in a formula, along ``path`` to node ``at``."""
+    name, pressure = start
+    words = Words(
+        name + "{supply} − height {height} − friction {friction} − devices {device}",
+        (
+            ("supply", pressure, "pressure"),
+            ("height", path.elevation, "pressure"),
+            ("friction", path.friction, "pressure"),
+            ("device", path.device, "pressure"),
+        ),
+    )
+    value = pressure - path.elevation - path.friction - path.device
+    return Step(f"Carried to {at}", words, value, "pressure", note)
 
 
 def arrival_steps(
@@ -171,22 +214,41 @@ def arrival_steps(
     ``flow`` [m³/s] is what the source gives, ``demand`` and ``margin`` [Pa] stand at ``at``.
     """
     steps = []
-    available = supply.curve.pressure_at(flow)
     if path.pipes:
-        words = Words(
-            "{supply} − height {height} − friction {friction} − devices {device}",
-            (
-                ("supply", available, "pressure"),
-                ("height", path.elevation, "pressure"),
-                ("friction", path.friction, "pressure"),
-                ("device", path.device, "pressure"),
-            ),
-        )
-        value = available - path.elevation - path.friction - path.device
-        steps.append(Step(f"Carried to {at}", words, value, "pressure", "losses at the demand flow"))
+        start = ("", supply.curve.either_way(flow))
+        steps.append(carried_step(start, path, at, f"from {supply.node}, losses at the demand flow"))
     words = Words(
         "demand {demand} + margin {margin}",
         (("demand", demand, "pressure"), ("margin", margin, "pressure")),
     )
     steps.append(Step(f"Available at {at}", words, demand + margin, "pressure"))
+    return tuple(steps)
+
+
+def way_in_steps(supply: NodeSupply, flow: float, path: Route, at: str) -> tuple[Step, ...]:
+    """Return the steps to node ``at`` from a source that gives ``flow`` [m³/s] in a solved state."""
+    curve = supply.curve
+    title, at_source = f"Curve of {curve.name} at {supply.node}", curve.either_way(flow)
+    note = "as it is, at what it gives"
+    steps = [Step(title, curve_words(curve, flow), at_source, "pressure", note)]
+    if path.pipes:
+        steps.append(carried_step(("", at_source), path, at, "losses at the flows of that state"))
+    return tuple(steps)
+
+
+def behind_valve_steps(valve: str, setting: float, path: Route, at: str) -> tuple[Step, ...]:
+    """Return the step to node ``at`` from a regulating valve that holds its ``setting`` [Pa] before it."""
+    return (carried_step((f"set by {valve} ", setting), path, at, "the valve holds its setting"),)
+
+
+def shown_step(at: str, available: float, demand: float, left: float | None) -> tuple[Step, ...]:
+    """Return what a gauge at ``at`` shows in the solved state, and what is ``left`` [Pa] where a valve
+    holds back some of the margin."""
+    note = "a gauge there, with the demand drawn from the supplies as they are: network solved"
+    shown = Words("{shown}", (("shown", available, "pressure"),))
+    steps = [Step(f"Available at {at}", shown, available, "pressure", note)]
+    if left is not None:
+        values = (("available", available, "pressure"), ("demand", demand, "pressure"))
+        note = "a regulating valve holds back the rest of the margin"
+        steps.append(Step(f"Left at {at}", Words("{available} − {demand}", values), left, "pressure", note))
     return tuple(steps)

@@ -4,14 +4,20 @@ from __future__ import annotations
 
 import math
 from collections import deque
-from collections.abc import Collection, Mapping
+from collections.abc import Collection
 from dataclasses import dataclass, replace
+from typing import Final
 
 from supplycheck.errors import DomainError
 from supplycheck.hydraulics import Curve
 from supplycheck.model import Device, Pipe, System
 from supplycheck.network.records import Solution
 from supplycheck.supply.curve import SupplyCurve
+from supplycheck.supply.standing import is_one_way, standing_pressures
+
+_NO_WAY: Final = "no open pipe leads from supply node {start} to {end}"
+STILL: Final = 1.0
+"""Difference of pressure [Pa] beyond which a valve is taken to hold it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -103,16 +109,16 @@ def route(
 ) -> tuple[tuple[Pipe, int], ...]:
     """Return the pipes from ``start`` to ``end`` with the fewest segments, each with its sense (±1).
 
-    No check valve is passed against its direction.
+    No check valve, pump or regulating valve is passed against its direction, none in ``closed`` at all.
     Raises :class:`DomainError` where no open pipe leads there.
     """
     beside: dict[str, list[tuple[Pipe, str, int]]] = {}
-    held = {one.tag for one in system.devices if one.one_way or one.kind == "check valve"}
+    devices = {device.tag: device for device in system.devices}
     for pipe in system.pipes:
         if pipe.valve == "closed" or pipe.tag in closed:
             continue
         beside.setdefault(pipe.start, []).append((pipe, pipe.end, 1))
-        if pipe.valve != "check" and held.isdisjoint(pipe.devices):
+        if not is_one_way(pipe, devices):
             beside.setdefault(pipe.end, []).append((pipe, pipe.start, -1))
     came: dict[str, tuple[Pipe, str, int]] = {}
     queue, seen = deque([start]), {start}
@@ -124,7 +130,7 @@ def route(
                 came[there] = (pipe, here, sense)
                 queue.append(there)
     if end not in seen:
-        raise DomainError(f"no open pipe leads from supply node {start} to the point of comparison {end}")
+        raise DomainError(_NO_WAY.format(start=start, end=end))
     found: list[tuple[Pipe, int]] = []
     while end != start:
         pipe, end, sense = came[end]
@@ -137,14 +143,18 @@ def solved_route(
 ) -> Route:
     """Return the route from ``start`` to ``end`` with its losses in ``solution``.
 
-    ``flow`` [m³/s] is what the source at ``start`` gives; friction follows flow**exponent.
+    ``flow`` [m³/s] is what the source at ``start`` gives; friction follows flow**exponent. A valve that is
+    shut by the pressure behind it is passed only where there is no other way.
     """
     row = {tag: index for index, tag in enumerate(solution.pipe_tags)}
     shut = {tag for tag, index in row.items() if solution.friction[index] != solution.friction[index]}
     devices = {device.tag: device for device in system.devices}
     elevation = friction = device_loss = following = 0.0
     curves: list[tuple[Curve, float, int]] = []
-    steps = route(system, start, end, shut)
+    try:
+        steps = route(system, start, end, shut | holding_pipes(system, solution))
+    except DomainError:
+        steps = route(system, start, end, shut)
     for pipe, sense in steps:
         index = row[pipe.tag]
         elevation += sense * float(solution.elevation_loss[index])
@@ -168,6 +178,28 @@ def solved_route(
     )
 
 
+def holding_pipes(system: System, solution: Solution) -> set[str]:
+    """Return the pipes in which a valve holds a difference of pressure in ``solution``.
+
+    They are one-way pipes shut by the pressure behind them, and regulating valves that hold their setting.
+    What is lost there is no loss of the flow.
+    """
+    devices = {device.tag: device for device in system.devices}
+    row = {tag: index for index, tag in enumerate(solution.pipe_tags)}
+    found = set()
+    for pipe in system.pipes:
+        if pipe.valve == "closed" or not is_one_way(pipe, devices):
+            continue
+        index, own = row[pipe.tag], 0.0
+        flow = max(float(solution.pipe_flow[index]), 0.0)
+        for device in (devices[tag] for tag in pipe.devices if flow > 0.0 and devices[tag].flows):
+            sign = -1.0 if device.kind == "pump" else 1.0
+            own += sign * float(Curve(device.flows, device.values).carried_on(flow)[0])
+        if abs(float(solution.device_loss[index]) - own) > STILL:
+            found.add(pipe.tag)
+    return found
+
+
 def _following(device: Device) -> Curve | None:
     """Return the curve of a device whose loss or gain follows the flow."""
     follows = device.kind in {"loss", "check valve", "pump"} and len(device.flows) > 1
@@ -175,19 +207,12 @@ def _following(device: Device) -> Curve | None:
 
 
 def no_flow_pressure(system: System, static: float, start: str, end: str, unit_weight: float) -> float:
-    """Return the pressure [Pa] at ``end`` with nothing flowing and ``static`` [Pa] at ``start``.
+    """Return the pressure [Pa] at ``end`` with nothing flowing and ``static`` [Pa] at ``start`` alone.
 
-    Pumps on the way add their pressure at no flow; a regulating valve holds its setting. Losses are
-    nothing at no flow, fixed ones too, so that the figure is the greatest there can be.
+    Pumps on the way add their pressure at no flow; a regulating valve holds its setting.
+    Raises :class:`DomainError` where no open pipe leads there.
     """
-    levels: Mapping[str, float] = {node.tag: node.elevation for node in system.nodes}
-    devices = {device.tag: device for device in system.devices}
-    pressure = static
-    for pipe, sense in route(system, start, end):
-        for device in (devices[tag] for tag in pipe.devices[::sense]):
-            if device.kind == "pump" and device.values:
-                pressure += sense * device.values[0]
-            elif device.kind == "pressure-reducing valve" and device.setting is not None and sense > 0:
-                pressure = min(pressure, device.setting)
-        pressure -= sense * unit_weight * (levels[pipe.end] - levels[pipe.start])
-    return pressure
+    standing = standing_pressures(system, {start: static}, unit_weight)
+    if end not in standing:
+        raise DomainError(_NO_WAY.format(start=start, end=end))
+    return standing[end]
