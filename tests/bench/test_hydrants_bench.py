@@ -8,7 +8,6 @@ of the results, in chunks as well; it reduces nothing, and makes no map, no work
 from __future__ import annotations
 
 import datetime as dt
-import subprocess
 import sys
 import time
 from collections.abc import Callable, Iterator
@@ -18,6 +17,7 @@ from pathlib import Path
 import numpy as np
 import pandas as pd
 import pytest
+from peak_memory import peak_memory
 
 from supplycheck.screening.records import Question
 from supplycheck.screening.run import screen
@@ -105,30 +105,16 @@ def test_a_million_rows_take_at_most_three_times_pandas(tmp_path: Path) -> None:
     assert ratio(tmp_path, 1_000_000, runs=2) <= LIMIT
 
 
-def peak_memory(tests: Path, out: Path) -> float:
+def peak_of(tests: Path, out: Path) -> float:
     """Return the peak memory [MB] of a whole run of the command with all its files."""
-    # VmHWM belongs to the process alone; ru_maxrss of a child starts with what its parent used.
-    code = (
-        "import re, sys\n"
-        "from pathlib import Path\n"
-        "from supplycheck.cli import main\n"
-        "try:\n    main()\n"
-        "finally:\n"
-        "    found = re.search(r'VmHWM:\\s+(\\d+) kB', Path('/proc/self/status').read_text())\n"
-        "    print('peak', found[1], file=sys.stderr)\n"
-    )
     arguments = ["hydrants", str(tests), "--out", str(out), "--as-of", "2026-11-20"]
-    done = subprocess.run(
-        [sys.executable, "-c", code, *arguments], capture_output=True, text=True, check=False
-    )
-    assert done.returncode in (0, 1), done.stderr
-    return int(done.stderr.rsplit("peak", 1)[1]) / 1024
+    return peak_memory("from supplycheck.cli import main\nmain()", arguments)
 
 
 @pytest.mark.skipif(sys.platform != "linux", reason="the peak is read from /proc")
 def test_memory_is_bounded_and_does_not_grow_with_the_file(tmp_path: Path) -> None:
-    small = peak_memory(write_tests(tmp_path / "small.csv", 60_000), tmp_path / "small")
-    large = peak_memory(write_tests(tmp_path / "large.csv", 240_000), tmp_path / "large")
+    small = peak_of(write_tests(tmp_path / "small.csv", 60_000), tmp_path / "small")
+    large = peak_of(write_tests(tmp_path / "large.csv", 240_000), tmp_path / "large")
     print(f"peak memory: {small:.0f} MB at 60,000 rows, {large:.0f} MB at 240,000")
     assert large <= MEMORY
     # Four times the rows may add the 24 bytes a row that duplicates are known by, and 40 MB of noise.
@@ -140,5 +126,5 @@ def test_memory_is_bounded_and_does_not_grow_with_the_file(tmp_path: Path) -> No
 def test_memory_of_three_million_rows(tmp_path: Path) -> None:
     """Beyond two million rows the known pairs lie in files; no workbook holds so many rows."""
     tests, out = write_tests(tmp_path / "tests.csv", 3_000_000), tmp_path / "out"
-    assert peak_memory(tests, out) <= MEMORY
+    assert peak_of(tests, out) <= MEMORY
     assert not (out / "results.xlsx").exists()
