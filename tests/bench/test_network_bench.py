@@ -8,6 +8,7 @@ so that other work on the machine counts as little as possible.
 from __future__ import annotations
 
 import math
+import sys
 import time
 from collections.abc import Callable
 from itertools import pairwise
