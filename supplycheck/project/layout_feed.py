@@ -56,6 +56,7 @@ def _length(piece: _Piece, rise: float, units: UnitSet, sections: Sections, faul
             sections.place(f"layout.{piece.key}.bottom_elevation"),
             "is that of the top of the riser, so that the riser has no length",
             allowed="the elevation of the base of the riser",
+            remedy="correct it, or give the length of the riser, or take the riser out",
         )
         return 1.0
     if given is not None and given < rise - SAME:

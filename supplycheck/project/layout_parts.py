@@ -137,6 +137,7 @@ def read_levels(
             sections.place("layout.riser_nipple"),
             "has no length: cross main and lines stand at one elevation",
             allowed="a length here, or an elevation for the cross main",
+            remedy="take the riser nipple out if the lines leave the main at its own height",
         )
     else:
         nipple_length = _at_least(

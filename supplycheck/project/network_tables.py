@@ -257,7 +257,11 @@ class _PipeReader:
             return None
         if start == end:
             faults.add(
-                row.place("to"), "a pipe joins a node to itself", found=quoted(end), allowed="two nodes"
+                row.place("to"),
+                "a pipe joins a node to itself",
+                found=quoted(end),
+                allowed="two nodes",
+                remedy="correct one of the two tags, or take the pipe out",
             )
             return None
         length = self._length(row, start, end, length)
@@ -299,6 +303,7 @@ class _PipeReader:
                 row.place("length"),
                 f"{start} and {end} stand at the same point",
                 allowed="a length above zero",
+                remedy="give the pipe's length, or use one tag for both nodes",
             )
         return length
 

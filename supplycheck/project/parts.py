@@ -303,6 +303,7 @@ def _device(
             sections.place(f"device.{tag}.setting"),
             "is missing",
             allowed="the outlet pressure of the valve",
+            remedy='give the pressure it is set to leave behind it, such as setting = "60 psi"',
         )
     if table.kind != "pressure-reducing valve" and table.setting is not None:
         faults.add(

@@ -179,7 +179,11 @@ def read_number(value: object, kind: str, sign: Sign = "positive") -> Written:
         raise NumberError("is too large", f"at most {LARGEST:g}")
     if (sign == "positive" and number <= 0) or (sign == "zero or more" and number < 0):
         wanted = "a number above zero" if sign == "positive" else "zero or a number above it"
-        raise NumberError("is negative" if number < 0 else "is zero", wanted)
+        raise NumberError(
+            "is negative" if number < 0 else "is zero",
+            wanted,
+            "correct it, or leave it out if there is none",
+        )
     if kind == "temperature" and written.unit is None and number < -459.67:
         raise NumberError("is below absolute zero", "a temperature above −459.67 °F or −273.15 °C")
     return written

@@ -3,10 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Sequence
+from typing import Final
 
 from supplycheck.model import System
 from supplycheck.project.faults import FaultList, listed, near, quoted
 from supplycheck.project.sections import Sections
+
+_REMEDY: Final = "correct the tag: nodes.csv and pipes.csv of the review package list those of a layout"
 
 
 class TagCheck:
@@ -25,7 +28,7 @@ class TagCheck:
             f"there is no such {what}",
             found=quoted(tag),
             allowed=f"a tag of a {what} of the system",
-            remedy=f"did you mean {close}?" if close else "",
+            remedy=f"did you mean {close}?" if close else _REMEDY,
         )
 
     def node(self, tag: str, where: str) -> None:
@@ -49,6 +52,7 @@ class TagCheck:
                 "is not a sprinkler" if len(others) == 1 else f"{len(others)} nodes are not sprinklers",
                 found=listed(others) if len(others) == 1 else "; ".join(others[:12]),
                 allowed="tags of sprinklers",
+                remedy="name sprinklers only; what else flows goes into flows",
             )
 
     def pipes_named(self, tags: Sequence[str], where: str) -> None:
@@ -65,4 +69,5 @@ class TagCheck:
                 f"there are no such {what}s",
                 found=listed([quoted(tag) for tag in tags]),
                 allowed=f"tags of {what}s of the system",
+                remedy=_REMEDY,
             )
