@@ -254,3 +254,18 @@ def test_more_kinds_of_faults_than_are_shown_are_counted(tmp_path: Path) -> None
     printed = CliRunner().invoke(main, ["check", str(write(tmp_path, text))])
     assert printed.stderr.count("unknown key") == MOST_SHOWN
     assert "and 30 more faults" in printed.stderr
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "where", "remedy"),
+    [
+        ("T,S,10", "T,S,0", "row 4, column length", "leave it out"),
+        ("T,S,10", "T,T,10", "row 4, column to", "correct one of the two tags"),
+    ],
+)
+def test_what_to_do_is_said_for_pipes_that_lead_nowhere(
+    tmp_path: Path, old: str, new: str, where: str, remedy: str
+) -> None:
+    found = faults(tmp_path, TABLE_PROJECT, pipes=PIPES.replace(old, new))
+    assert found[0].place.where == where and remedy in found[0].remedy
+    assert all(fault.remedy for fault in found)
