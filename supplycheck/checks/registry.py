@@ -22,6 +22,7 @@ from supplycheck.checks import (
     pumps_and_tanks,
     readings,
     scenarios,
+    sharing,
     sizes,
     standing,
     starter,
@@ -34,6 +35,7 @@ from supplycheck.findings import Finding, State
 RULES: Final[tuple[Rule, ...]] = (
     *starter.RULES,
     *water_supply.RULES,
+    *sharing.RULES,
     *standing.RULES,
     *pumps_and_tanks.RULES,
     *pumps.RULES,

@@ -10,6 +10,7 @@ from supplycheck.checks.rule import About, Rule, flow, named, pressure, some
 from supplycheck.findings import Finding, Measure, State
 from supplycheck.model import FlowTest
 from supplycheck.supply import supply_curves
+from supplycheck.supply.point import NOTABLE
 
 RANGE = About(
     "demand within the tested flow",
@@ -249,6 +250,8 @@ def margin(context: CheckContext) -> Finding:
     }
     has = "more than it can give" if facts.available_pressure < 0 else "{available} available"
     at = f"at {facts.node}, {{flow}}: {has}, {{demand}} needed"
+    if _held_back(context):
+        at = f"at the supply; behind a regulating valve {at}"
     source = rule.source if rule is not None and rule.source else MARGIN.source
     raise_it = "Enlarge pipes, cut the demand, or raise the supply."
     if facts.margin < 0:
@@ -284,6 +287,14 @@ def margin(context: CheckContext) -> Finding:
         remedy="" if state == "ok" else raise_it,
         source=source,
     )
+
+
+def _held_back(context: CheckContext) -> bool:
+    """Return whether a regulating valve keeps some of the margin from the point of comparison."""
+    facts = context.comparison
+    valves = any(one.kind == "pressure-reducing valve" for one in context.devices.values())
+    kept = facts.margin - (facts.available_pressure - facts.demand_pressure)
+    return valves and kept > NOTABLE
 
 
 RULES = (

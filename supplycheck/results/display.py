@@ -143,7 +143,11 @@ def demand_text(result: Result, units: UnitSet) -> str:
     text = f"{units.text(demand.flow, 'flow')} in all"
     here = passing(result)
     if here and abs(here - demand.flow) > 1e-6 * demand.flow:
-        text += f", of which {units.text(here, 'flow')} pass {demand.node}"
+        if here < demand.flow:
+            text += f", of which {units.text(here, 'flow')} pass {demand.node}"
+        else:
+            text += f"; {units.text(here, 'flow')} pass {demand.node}, more than is drawn: some runs into "
+            text += "another supply or in a circle"
     return text
 
 

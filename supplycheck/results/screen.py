@@ -21,6 +21,7 @@ from supplycheck.results.display import (
     visible,
 )
 from supplycheck.results.records import Result
+from supplycheck.supply.point import NOTABLE
 from supplycheck.units import UNIT_SETS, UnitSet
 
 COLUMNS: Final = 96
@@ -58,6 +59,8 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
         read = f"{read_test_text(result) or 'test'}: static {_t(units, supply.static)}, {residual}"
     asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
     after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
+    kept = margin.pressure - (supply.available_pressure - demand.pressure)
+    where = " at the supply" if kept > NOTABLE else ""  # a regulating valve holds it back
     flow_gap = residual_text(balance.largest_flow_imbalance, "flow", units)
     gap = residual_text(balance.largest_pressure_imbalance, "pressure", units)
     return [
@@ -71,7 +74,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
             _available(supply.available_pressure, units) + f" ({read})",
             2,
         ),
-        ("Margin", f"{_signed(units, margin.pressure)} before the rule; {asked}{after}", 1),
+        ("Margin", f"{_signed(units, margin.pressure)}{where} before the rule; {asked}{after}", 1),
         ("Rule", margin.rule, 2),
         *([("Second law", second_law_text(result, units), 2)] if result.second_law else []),
         ("Governs", result.governs, 2),

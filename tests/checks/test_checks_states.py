@@ -17,6 +17,7 @@ from check_factory import DRY, EN, OPEN, QUICK, TEE, K, array_with, built
 from duty_factory import DUTY_CASES
 from plausibility_factory import PLAUSIBILITY_CASES
 from pump_factory import NEEDED, OPTION, STATES, pumps, state, with_state
+from sharing_factory import fed, two_sources
 
 from supplycheck.checks import RULES, PumpRating, ScenarioFacts, run_checks
 from supplycheck.checks.standing import no_flow_pressures
@@ -924,7 +925,28 @@ STARTER = [
     Case("values of the starter", "fail", {"project.unedited": (LEFT["layout"],)}, 1, 0),
 ]
 
-CASES = STARTER + SUPPLY + TESTS + AREA + HEADS + HOSE + DEVICES + PIPES + BASIS + DUTIES + PLAUSIBILITY
+SHARING = [
+    Case("water running into a supply", "not applicable"),
+    Case("water running into a supply", "ok", two_sources()),
+    Case("water running into a supply", "ask authority", fed(100 * GPM), 100 * GPM, tags=("W",)),
+    Case("water running into a supply", "ask authority", two_sources(kept=False), tags=("W",)),
+    Case("water running into a supply", "ask authority", fed(100 * GPM, tank=True), 100 * GPM, tags=("W",)),
+]
+
+CASES = (
+    SHARING
+    + STARTER
+    + SUPPLY
+    + TESTS
+    + AREA
+    + HEADS
+    + HOSE
+    + DEVICES
+    + PIPES
+    + BASIS
+    + DUTIES
+    + PLAUSIBILITY
+)
 
 
 def name_of(case: Case) -> str:
@@ -1010,39 +1032,6 @@ def test_english_light_hazard_is_asked_with_its_conditions() -> None:
     assert (
         asked.startswith("Does light hazard cover this occupancy: offices?") and "fire resistance" in asked
     )
-
-
-def two_sources() -> dict[str, Any]:
-    """A second, weaker main at W feeds T through a check valve; it gives 100 gpm, S the rest."""
-    keeper = Device("keeper", "check valve", (0.0, 1000 * GPM), (0.0, PSI), "maker", one_way=True)
-
-    def nodes(old: Any) -> Any:
-        return (*old, replace(next(one for one in old if one.tag == "S"), tag="W", elevation=4 * FOOT))
-
-    def pipes(old: Any) -> Any:
-        lead = next(one for one in old if one.tag == "U")
-        return (*old, replace(lead, tag="V", start="W", end="B", devices=("keeper",)))
-
-    def more(state: Solution) -> Solution:
-        total = float(state.source_flow[0])
-        return replace(
-            state,
-            source_tags=("S", "W"),
-            source_flow=np.array([total - 100 * GPM, 100 * GPM]),
-            source_pressure=np.array([float(state.source_pressure[0])] * 2),
-        )
-
-    def tests(old: Any) -> Any:
-        weak = replace(old[0], tag="T-2", node="W", static=60 * PSI, gauge_elevation=4 * FOOT)
-        return (*old, replace(weak, points=(TestPoint(50 * PSI, 125 * GPM),)))
-
-    return {
-        "project.system.devices": lambda old: (*old, keeper),
-        "project.system.nodes": nodes,
-        "project.system.pipes": pipes,
-        "project.supply.tests": tests,
-        "solution": more,
-    }
 
 
 def test_each_of_several_sources_has_its_own_static_and_its_own_share() -> None:

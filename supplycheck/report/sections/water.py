@@ -156,7 +156,7 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Before adjustments", available_text(supply.unadjusted_pressure, show.units)),
         (
             "Flow at the demand pressure",
-            show.t(supply.available_flow, "flow") if supply.available_flow else "none",
+            _flow_there(supply.available_flow, show),
         ),
     )
     if supply.residual is None:  # a tank gives most: there is no reading
@@ -171,6 +171,13 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Flow at 20 psi (1.38 bar)", f"{show.t(supply.flow_at_20_psi, 'flow')} at the gauge of the test"),
         ("Demand / tested flow", "–" if ratio is None else f"{ratio:.2f}"),
     )
+
+
+def _flow_there(flow: float | None, show: Show) -> str:
+    """Return the flow at which the demand pressure is still there, in words where there is no such flow."""
+    if flow is None:
+        return "not limited: the pressure is there at every flow"
+    return show.t(flow, "flow") if flow > 0.0 else "none"
 
 
 def _test(test: FlowTest, show: Show) -> list[Block]:
