@@ -27,6 +27,8 @@ from supplycheck.units import UNIT_SETS, UnitSet
 COLUMNS: Final = 96
 LINES: Final = 24
 _LABEL: Final = 12
+_LISTS: Final = 2
+"""Lines that the lists of failures and questions have at least, one each."""
 
 
 def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
@@ -37,9 +39,10 @@ def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
     """
     units = UNIT_SETS[result.project.units]
     title = _wrapped("", result.project.facts.title, 1)
-    head = [*title, *_wrapped("", f"{_headline(result)}: {result.verdict_text}", 2), ""]
-    body = [line for label, text, most in _entries(result, units) for line in _wrapped(label, text, most)]
     tail = _files([files] if isinstance(files, str) else files) if files else []
+    verdict = f"{_headline(result)}: {result.verdict_text}"
+    body, spare = _body(result, units, verdict, LINES - len(title) - 1 - len(tail) - _LISTS)
+    head = [*title, *_wrapped("", verdict, spare), ""]
     room = LINES - len(head) - len(body) - len(tail)
     fails = [f"{one.check}: {finding_text(one, units)}" for one in result.findings if one.state == "fail"]
     questions = list(result.open_questions)
@@ -47,6 +50,20 @@ def screen_text(result: Result, files: str | Sequence[str] = ()) -> str:
     fail_lines = _list("Fails", fails, for_fails)
     question_lines = _list("Open", questions, max(room - len(fail_lines), 1))
     return "\n".join([*head, *body, *fail_lines, *question_lines, *tail])
+
+
+def _body(result: Result, units: UnitSet, verdict: str, room: int) -> tuple[list[str], int]:
+    """Return the lines below the verdict, and how many of ``room`` the verdict may take.
+
+    The verdict names what is outside a limit: where it needs the lines, the others keep to one each.
+    """
+    entries, needed = _entries(result, units), len(_wrapped("", verdict, LINES))
+    body: list[str] = []
+    for longest in (2, 1):
+        body = [line for label, text, most in entries for line in _wrapped(label, text, min(most, longest))]
+        if len(body) + needed <= room:
+            break
+    return body, max(room - len(body), 2)
 
 
 def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
@@ -60,7 +77,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
     asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
     after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
     kept = margin.pressure - (supply.available_pressure - demand.pressure)
-    where = " at the supply" if kept > NOTABLE else ""  # a regulating valve holds it back
+    where = " at the supply" if abs(kept) > NOTABLE else ""  # a regulating valve throttles
     flow_gap = residual_text(balance.largest_flow_imbalance, "flow", units)
     gap = residual_text(balance.largest_pressure_imbalance, "pressure", units)
     return [

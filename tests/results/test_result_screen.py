@@ -40,6 +40,17 @@ def test_what_does_not_fit_is_counted() -> None:
     assert "30 outside a limit" in text
 
 
+@pytest.mark.parametrize("count", [1, 4, 9, 16])
+def test_all_that_is_outside_a_limit_is_named_above(count: int) -> None:
+    """The README promises it; at 24 to 28 letters a name, sixteen of them take five lines of 96."""
+    names = [f"a check with a long name {number}" for number in range(count)]
+    text = f"The supply carries the demand. But outside a limit: {', '.join(names)}; read that first."
+    fails = tuple(replace(findings()[1], check=name) for name in names)
+    shown = screen_text(replace(sample(), verdict_text=text, findings=fails), ["review.pdf"])
+    assert len(shown.splitlines()) <= LINES
+    assert f"{', '.join(names)}; read that first." in " ".join(shown.split("\n\n")[0].split())
+
+
 def test_long_words_do_not_break_the_screen() -> None:
     text = screen_text(replace(sample(title="x" * 300), governs="y" * 400, verdict_text="z " * 400))
     assert len(text.splitlines()) <= LINES
