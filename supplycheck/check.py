@@ -32,6 +32,7 @@ from supplycheck.supply import (
     source_curves,
     supply_curves,
 )
+from supplycheck.supply.beyond import beyond_words
 from supplycheck.supply.needed import needed_pump
 from supplycheck.supply.pumping import Stages as SourceStages
 from supplycheck.supply.pumping import pump_answers
@@ -139,4 +140,6 @@ def _tanks(project: Project, solution: Solution, operating: Solution) -> tuple[T
         dict(zip(state.source_tags, state.source_flow.tolist(), strict=True))
         for state in (solution, operating)
     )
-    return tank_answers(project.supply.tanks, project.criteria.duration, nominal, actual)
+    words = beyond_words(operating)
+    note = f"What really flows is {words}." if words else ""
+    return tank_answers(project.supply.tanks, project.criteria.duration, nominal, actual, note)

@@ -13,7 +13,7 @@ from supplycheck.demand import Candidates
 from supplycheck.demand.heads import all_heads
 from supplycheck.demand.lines import inferred_lines
 from supplycheck.errors import DomainError, NotInCatalogueError
-from supplycheck.model import DemandCase, Project
+from supplycheck.model import Project
 from supplycheck.model.duty import DutyAnswer
 from supplycheck.results.assemble import Tried
 from supplycheck.results.records import ScenarioRow
@@ -58,7 +58,8 @@ def check_context(grounds: CheckGrounds, solved: Solved) -> CheckContext:
         pumps=grounds.pumps,
         needed_pump=grounds.needed_pump,
         duties=grounds.duties,
-        scenarios=scenario_facts(solved.case, grounds.scenarios),
+        scenarios=scenario_facts(grounds.scenarios),
+        beyond=tuple((row.name, one) for row in grounds.scenarios for one in row.beyond),
         inferred_lines=lines_by_head(project),
     )
 
@@ -74,15 +75,15 @@ def lines_by_head(project: Project) -> Mapping[str, str]:
         return {}
 
 
-def scenario_facts(case: DemandCase, rows: Sequence[ScenarioRow]) -> tuple[ScenarioFacts, ...]:
-    """Return what the project's scenarios, all rows but the first, leave the heads of ``case``."""
-    asked = dict(zip(case.heads, case.required_flow, strict=True))
+def scenario_facts(rows: Sequence[ScenarioRow]) -> tuple[ScenarioFacts, ...]:
+    """Return what the project's scenarios, all rows but the first, leave their open heads."""
     found = []
     for row in rows[1:]:
-        shares = [(flow / asked[tag], tag) for tag, flow, _ in row.head_flows if asked.get(tag, 0.0) > 0.0]
+        needs = zip(row.head_flows, row.head_needs, strict=True)
+        shares = [(flow / need, tag) for (tag, flow, _), need in needs if need]
         share, head = min(shares, default=(None, ""))
         solved = math.isfinite(row.total_flow)
-        found.append(ScenarioFacts(row.name, head, share, row.note, solved))
+        found.append(ScenarioFacts(row.name, head, share, row.note, solved, row.dry))
     return tuple(found)
 
 

@@ -32,6 +32,7 @@ from supplycheck.network import (
     SourceCurve,
     demand_many,
 )
+from supplycheck.supply.beyond import beyond_words
 
 MOST_ROWS: Final = 80
 """Hydrant cases that are listed one by one."""
@@ -215,7 +216,8 @@ def _states(ground: Ground, case: DemandCase) -> tuple[tuple[OutletState, ...], 
         )
         for outlet in case.outlets
     )
-    return states, ""
+    beyond = beyond_words(solution)
+    return states, f"with the supply as it is {beyond}" if beyond else ""
 
 
 def _cut_row(one: DutyCase, away: tuple[str, ...]) -> DutyRow:

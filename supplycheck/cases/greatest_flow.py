@@ -12,6 +12,7 @@ from supplycheck.errors import DomainError, NotConvergedError
 from supplycheck.model import Device, Project
 from supplycheck.model.duty import Hydrant, HydrantDuty, HydrantRow
 from supplycheck.network import LoadCase
+from supplycheck.supply.beyond import beyond_words
 from supplycheck.supply.route import no_flow_pressure
 
 LARGEST_FLOW: Final = 100.0
@@ -116,4 +117,7 @@ def greatest_flow(
     except NotConvergedError as error:
         return None, "", f"no solution: {error}"
     note = "" if in_range(device, flow) else "the loss of the hydrant is carried on beyond its curve"
+    drawn = _drawn(ground.project, {**others, hydrant.node: others.get(hydrant.node, 0.0) + flow})
+    beyond = beyond_words(ground.operating(drawn))
+    note = "; ".join(text for text in (note, beyond and f"the greatest flow is {beyond}") if text)
     return flow, min(spare(flow))[1], note

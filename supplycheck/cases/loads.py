@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
+from itertools import chain
 from types import MappingProxyType
 
-from supplycheck.model import DemandCase, Project
+from supplycheck.model import DemandCase, Project, Scenario
 from supplycheck.network import LoadCase
 from supplycheck.supply import hose_loads
 
@@ -26,11 +27,36 @@ class Draws:
 
     def load(self, case: DemandCase) -> LoadCase:
         """Return what flows in ``case``: heads, outlets, hose, and all fixed outflows, each once."""
-        flows: dict[str, float] = dict(self.hose) if case.with_hose else {}
-        outlets = ((one.node, one.flow) for one in case.outlets)
-        for tag, flow in (*self.fixed.items(), *case.flows, *outlets):
-            flows[tag] = flows.get(tag, 0.0) + flow
-        return LoadCase(case.heads, MappingProxyType(flows), case.closed_pipes)
+        hose = self.hose if case.with_hose else {}
+        flows = added(hose.items(), self.fixed.items(), _own(case))
+        return LoadCase(case.heads, flows, case.closed_pipes)
+
+    def of_scenario(self, scenario: Scenario, case: DemandCase) -> LoadCase:
+        """Return what flows in ``scenario``, which adds to what the nodes draw.
+
+        Where it names no heads, those of ``case`` are open; where ``case`` has none and the scenario names
+        no flows either, what ``case`` draws at its outlets flows.
+        """
+        hose = self.hose if scenario.with_hose else {}
+        fixed = self.fixed if scenario.with_node_flows else {}
+        asked: Iterable[tuple[str, float]] = scenario.flows
+        if scenario.open_heads is None and not case.heads and not scenario.flows:
+            asked = _own(case)
+        heads = case.heads if scenario.open_heads is None else scenario.open_heads
+        return LoadCase(heads, added(hose.items(), fixed.items(), asked), scenario.closed_pipes)
+
+
+def added(*parts: Iterable[tuple[str, float]]) -> Mapping[str, float]:
+    """Return the flows [m³/s] of all ``parts`` by node, added where they share one."""
+    flows: dict[str, float] = {}
+    for tag, flow in chain.from_iterable(parts):
+        flows[tag] = flows.get(tag, 0.0) + flow
+    return MappingProxyType(flows)
+
+
+def _own(case: DemandCase) -> tuple[tuple[str, float], ...]:
+    """Return what ``case`` itself draws beside its heads."""
+    return (*case.flows, *((one.node, one.flow) for one in case.outlets))
 
 
 def load_of(project: Project, case: DemandCase) -> LoadCase:

@@ -4,16 +4,22 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import Final
 
 import numpy as np
 
-from supplycheck.errors import NotConvergedError
+from supplycheck.cases.loads import Draws
+from supplycheck.demand import required_at_head
+from supplycheck.errors import DomainError, NotConvergedError
 from supplycheck.model import DemandCase, Project, Scenario
-from supplycheck.network import LoadCase, Network, Solution, SourceCurve, solve_operating
+from supplycheck.network import Network, Solution, SourceCurve, solve_operating
 from supplycheck.results.records import ScenarioRow
-from supplycheck.supply import hose_loads
+from supplycheck.supply.beyond import beyond_curves
 
 DESIGN_AREA = "design area, actual supply"
+AT_REST: Final = 1e-9
+"""Flow [m³/s] below which nothing is taken to flow: what the solver leaves."""
 
 
 def scenario_rows(
@@ -27,88 +33,114 @@ def scenario_rows(
 
     A scenario that has no solution keeps its row, with the reason in its note.
     """
+    reader = _Reader(project, network, case, sources, Draws.of(project))
     name = DESIGN_AREA if case.heads else f"{case.label}, actual supply"
-    first = _row(project, name, operating, case, case.heads, "")
-    named = (_solve(project, network, case, sources, scenario) for scenario in project.scenarios)
-    return (first, *named)
+    first = reader.row(_Named(name, case.heads), operating)
+    return (first, *(reader.solved(scenario) for scenario in project.scenarios))
 
 
-def _solve(
-    project: Project,
-    network: Network,
-    case: DemandCase,
-    sources: Sequence[SourceCurve],
-    scenario: Scenario,
-) -> ScenarioRow:
-    heads = case.heads if scenario.open_heads is None else scenario.open_heads
-    flows: dict[str, float] = dict(hose_loads(project)) if scenario.with_hose else {}
-    for tag, flow in scenario.flows:
-        flows[tag] = flows.get(tag, 0.0) + flow
-    load = LoadCase(heads, flows, scenario.closed_pipes)
-    policy = project.criteria.velocity_pressure
-    try:
-        solution = solve_operating(network, load, sources, velocity_pressure=policy)
-    except NotConvergedError as error:
-        told = str(error)
-        told += "" if error.remedy in told else f"; {error.remedy}"
-        return _empty(scenario.name, len(heads), f"no solution: {told}")
-    return _row(project, scenario.name, solution, case, heads, _what(scenario))
+@dataclass(frozen=True, slots=True)
+class _Named:
+    """What one row is about: its name, its open heads, what is said of it beforehand."""
+
+    name: str
+    heads: tuple[str, ...]
+    note: str = ""
+    besides: tuple[tuple[str, float, float], ...] = ()
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Reader:
+    """Solves scenarios and reads their rows."""
+
+    project: Project
+    network: Network
+    case: DemandCase
+    sources: Sequence[SourceCurve]
+    draws: Draws
+
+    def solved(self, scenario: Scenario) -> ScenarioRow:
+        load = self.draws.of_scenario(scenario, self.case)
+        policy = self.project.criteria.velocity_pressure
+        try:
+            solution = solve_operating(self.network, load, self.sources, velocity_pressure=policy)
+        except NotConvergedError as error:
+            told = str(error)
+            told += "" if error.remedy in told else f"; {error.remedy}"
+            return _empty(scenario.name, len(load.open_outlets), f"no solution: {told}")
+        named = _Named(scenario.name, load.open_outlets, _what(scenario), self._besides(scenario))
+        return self.row(named, solution)
+
+    def _besides(self, scenario: Scenario) -> tuple[tuple[str, float, float], ...]:
+        """Return node, flow of the scenario and flow of the node table where both run at one node."""
+        if not scenario.with_node_flows:
+            return ()
+        own = self.draws.fixed
+        return tuple((tag, flow, own[tag]) for tag, flow in scenario.flows if flow > 0.0 and tag in own)
+
+    def row(self, named: _Named, solution: Solution) -> ScenarioRow:
+        index = {tag: row for row, tag in enumerate(solution.node_tags)}
+        rows = [index[tag] for tag in named.heads]
+        flows = tuple(map(_flow, solution.outflow[rows].tolist()))
+        needs = self._needs(named.heads)
+        judged = [(flow, need) for flow, need in zip(flows, needs, strict=True) if need]
+        need = sum(need for _, need in judged)
+        lowest = min(rows, key=lambda row: float(solution.pressure[row])) if rows else None
+        areas = [self.project.system.nodes[row].area or math.nan for row in rows]
+        area = sum(areas) if rows else math.nan
+        main = int(np.argmax(solution.source_flow))
+        return ScenarioRow(
+            name=named.name,
+            total_flow=_flow(float(np.sum(solution.source_flow))),
+            supply_pressure=float(solution.source_pressure[main]),
+            sprinkler_flow=sum(flows),
+            heads_open=len(rows),
+            lowest_head=solution.node_tags[lowest] if lowest is not None else "",
+            lowest_pressure=float(solution.pressure[lowest]) if lowest is not None else math.nan,
+            lowest_ratio=min((flow / need for flow, need in judged), default=None),
+            delivered_density=sum(flows) / area if math.isfinite(area) and area > 0 else None,
+            over_discharge=sum(flow for flow, _ in judged) / need - 1 if need else None,
+            minutes_of_storage=_storage(self.project, solution),
+            note=named.note,
+            head_flows=tuple(
+                (tag, flow, float(solution.pressure[row]))
+                for tag, flow, row in zip(named.heads, flows, rows, strict=True)
+            ),
+            head_needs=needs,
+            dry=tuple(tag for tag, flow in zip(named.heads, flows, strict=True) if flow == 0.0),
+            beyond=beyond_curves(self.project.system.devices, solution),
+            besides=named.besides,
+        )
+
+    def _needs(self, heads: Sequence[str]) -> tuple[float | None, ...]:
+        """Return the flow [m³/s] that each head needs: of the design area, or by its own figures."""
+        asked: dict[str, float | None] = dict(zip(self.case.heads, self.case.required_flow, strict=True))
+        nodes = {node.tag: node for node in self.project.system.nodes}
+        for tag in heads:
+            if tag not in asked:
+                try:
+                    asked[tag] = required_at_head(self.project, nodes[tag])[0]
+                except DomainError:
+                    asked[tag] = None
+        return tuple(asked[tag] for tag in heads)
+
+
+def _flow(value: float) -> float:
+    """Return ``value`` [m³/s]; zero where it is what the solver left."""
+    return value if abs(value) > AT_REST else 0.0
 
 
 def _what(scenario: Scenario) -> str:
     parts = [f"shut: {', '.join(scenario.closed_pipes)}"] if scenario.closed_pipes else []
     parts += [f"drawn at {', '.join(tag for tag, _ in scenario.flows)}"] if scenario.flows else []
     parts += [] if scenario.with_hose else ["without hose"]
+    parts += [] if scenario.with_node_flows else ["without the flows of the node table"]
     return "; ".join(parts)
 
 
 def _empty(name: str, heads: int, note: str) -> ScenarioRow:
     nothing = math.nan
     return ScenarioRow(name, nothing, nothing, nothing, heads, "", nothing, None, None, None, None, note)
-
-
-def _row(
-    project: Project,
-    name: str,
-    solution: Solution,
-    case: DemandCase,
-    heads: Sequence[str],
-    note: str,
-) -> ScenarioRow:
-    index = {tag: row for row, tag in enumerate(solution.node_tags)}
-    rows = [index[tag] for tag in heads]
-    nodes = project.system.nodes
-    discharge = solution.outflow[rows]
-    asked = dict(zip(case.heads, case.required_flow, strict=True))
-    area = sum(nodes[row].area or math.nan for row in rows)
-    inside = [
-        (row, flow) for row, flow in zip(rows, discharge.tolist(), strict=True) if nodes[row].tag in asked
-    ]
-    ratios = [flow / asked[nodes[row].tag] for row, flow in inside]
-    need = sum(asked[nodes[row].tag] for row, _ in inside)
-    lowest = min(rows, key=lambda row: float(solution.pressure[row])) if rows else None
-    total = float(np.sum(solution.source_flow))
-    main = int(np.argmax(solution.source_flow))
-    return ScenarioRow(
-        name=name,
-        total_flow=total,
-        supply_pressure=float(solution.source_pressure[main]),
-        sprinkler_flow=float(discharge.sum()),
-        heads_open=len(rows),
-        lowest_head=solution.node_tags[lowest] if lowest is not None else "",
-        lowest_pressure=float(solution.pressure[lowest]) if lowest is not None else math.nan,
-        lowest_ratio=min(ratios) if ratios else None,
-        delivered_density=float(discharge.sum()) / area
-        if rows and math.isfinite(area) and area > 0
-        else None,
-        over_discharge=sum(flow for _, flow in inside) / need - 1 if need else None,
-        minutes_of_storage=_storage(project, solution),
-        note=note,
-        head_flows=tuple(
-            (solution.node_tags[row], float(solution.outflow[row]), float(solution.pressure[row]))
-            for row in rows
-        ),
-    )
 
 
 def _storage(project: Project, solution: Solution) -> float | None:

@@ -9,6 +9,7 @@ from types import MappingProxyType
 from supplycheck.model import DemandCase, Device, Node, Pipe, PipeKind, Project, Sprinkler
 from supplycheck.model.duty import DutyAnswer
 from supplycheck.network.records import Solution
+from supplycheck.supply.beyond import Beyond
 from supplycheck.supply.needed import NeededPump
 from supplycheck.supply.pumping import PumpAnswer
 
@@ -63,10 +64,11 @@ class PumpRating:
 
 @dataclass(frozen=True, slots=True)
 class ScenarioFacts:
-    """What one scenario of the project leaves the heads of the design area.
+    """What one scenario of the project leaves its open heads.
 
-    ``share`` is the least discharge of a head over what it needs, at ``head``; ``None`` where no head of
-    the area is open in the scenario. ``note`` says what is shut, or why there is no solution.
+    ``share`` is the least discharge of a head over what it needs, at ``head``; ``None`` where no head is
+    open in the scenario. ``dry`` are the open heads that give nothing. ``note`` says what is shut, or why
+    there is no solution.
     """
 
     name: str
@@ -74,6 +76,7 @@ class ScenarioFacts:
     share: float | None
     note: str = ""
     solved: bool = True
+    dry: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -87,7 +90,8 @@ class CheckContext:
     hand; ``reference_bores`` [m] by nominal size is the pipe for which the table of equivalent lengths is
     printed. ``no_flow`` [Pa] by node is the pressure with every outlet shut where it was solved. ``pumps``
     are the facts of every pump, ``needed_pump`` the one that would close a gap. ``duties`` is what was
-    found for standpipes and hydrants, ``scenarios`` what each scenario of the project leaves the heads.
+    found for standpipes and hydrants, ``scenarios`` what each scenario of the project leaves its heads and
+    ``beyond`` the flows outside the curve of a device in what really flows, each with the name of its row.
     ``inferred_lines`` names by head the branch line that was inferred where none is given; the heads here
     carry it as theirs.
     """
@@ -109,6 +113,7 @@ class CheckContext:
     needed_pump: NeededPump | None = None
     duties: DutyAnswer = field(default_factory=DutyAnswer)
     scenarios: tuple[ScenarioFacts, ...] = ()
+    beyond: tuple[tuple[str, Beyond], ...] = ()
     inferred_lines: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
     nodes: Mapping[str, Node] = field(init=False)
     kinds: Mapping[str, PipeKind] = field(init=False)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
@@ -10,6 +10,7 @@ from supplycheck.checks.rule import About, Rule, flow, pressure, some
 from supplycheck.checks.standing import no_flow_pressures
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import Device, Pipe
+from supplycheck.supply.beyond import Beyond, beyond_curves
 
 ON_PATH = About(
     "devices on the way",
@@ -27,6 +28,13 @@ FIXED = About(
 CURVE = About(
     "device curve range",
     "flow through each device against the range of its curve",
+    ("ok", "fail", "not applicable"),
+    "the curve as given; outside it nothing is known",
+    weight=3,
+)
+REAL_CURVE = About(
+    "device curve range, real flow",
+    "flow through each device with the actual supply, and in the scenarios, against the range of its curve",
     ("ok", "fail", "not applicable"),
     "the curve as given; outside it nothing is known",
     weight=3,
@@ -112,6 +120,42 @@ def curve(context: CheckContext) -> Finding:
     return CURVE.says("ok", text, measured=flow(amount), limit=flow(limit), tags=(tag,))
 
 
+def real_curve(context: CheckContext) -> Finding:
+    """What really flows is often more than the demand; the flow furthest outside its curve is told."""
+    state = context.operating
+    here = () if state is None else beyond_curves(context.devices.values(), state)
+    told = dict.fromkeys(here, "with the actual supply")
+    for name, one in context.beyond:
+        told.setdefault(one, f"in {name}")
+    if told:
+        return _beyond(told)
+    if state is None:
+        return REAL_CURVE.says("not applicable", "What really flows was not solved.")
+    amounts = dict(zip(state.pipe_tags, state.pipe_flow.tolist(), strict=True))
+    curved = {tag for tag, device in context.devices.items() if len(device.flows) > 1}
+    passed = [tag for pipe in context.project.system.pipes if amounts[pipe.tag] for tag in pipe.devices]
+    seen = tuple(dict.fromkeys(tag for tag in passed if tag in curved))
+    if not seen:
+        return REAL_CURVE.says("not applicable", "No flow passes a device with a curve.")
+    too = ", in the scenarios too," if context.scenarios else ""
+    text = f"What really flows{too} stays on the curve of {some(seen)}."
+    return REAL_CURVE.says("ok", text, tags=seen)
+
+
+def _beyond(told: Mapping[Beyond, str]) -> Finding:
+    worst = max(told, key=lambda one: one.share)
+    outside = tuple(dict.fromkeys(one.device for one in sorted(told, key=lambda one: -one.share)))
+    return REAL_CURVE.says(
+        "fail",
+        f"{{measured}} passes {worst.device} {told[worst]}; its curve {worst.side} {{limit}}. "
+        "What is read there is not to be relied on: see the scenarios.",
+        measured=flow(worst.flow),
+        limit=flow(worst.end),
+        tags=outside,
+        remedy=f"Give a curve of {some(outside)} that covers what really flows.",
+    )
+
+
 def reducing(context: CheckContext) -> Finding:
     """A valve set above what stands before it without flow never reduces anything.
 
@@ -147,4 +191,10 @@ def _stands_open(context: CheckContext, pipe: Pipe, setting: float) -> bool:
     return state is not None and float(state.pressure[state.node(pipe.start)]) < setting
 
 
-RULES = (Rule(ON_PATH, on_path), Rule(FIXED, fixed), Rule(CURVE, curve), Rule(REDUCING, reducing))
+RULES = (
+    Rule(ON_PATH, on_path),
+    Rule(FIXED, fixed),
+    Rule(CURVE, curve),
+    Rule(REAL_CURVE, real_curve),
+    Rule(REDUCING, reducing),
+)

@@ -9,6 +9,7 @@ from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, count, flow, pressure, some
 from supplycheck.findings import Finding, Measure
 from supplycheck.model.duty import DutyRow, HydrantDuty, OutletState, StandpipeDuty
+from supplycheck.supply.beyond import beyond_words
 
 FIRE_FLOW = About(
     "required fire flow",
@@ -320,6 +321,8 @@ def asked_at_nodes(context: CheckContext) -> Finding:
     asked = node.minimum_pressure or 0.0
     measured, limit, tags = pressure(spare + asked), pressure(asked), (node.tag,)
     text = f"Node {node.tag} keeps {{measured}} in the case {context.case.label}; {{limit}} is asked."
+    doubt = beyond_words(operating)
+    text += f" What really flows is {doubt}." if doubt else ""
     if spare >= -limits.ROUND_OFF * max(abs(asked), 1.0):
         return OUTFLOWS.says("ok", text, measured=measured, limit=limit, tags=tags)
     do = "Enlarge what feeds this node, or boost the supply."

@@ -79,7 +79,8 @@ def suction(context: CheckContext) -> Finding:
     if not found:
         return SUCTION.says("not applicable", "No pump runs." if context.pumps else _NONE)
     pump, state, limit = min(found, key=lambda one: one[1].suction - one[2])
-    text = f"Pump {pump.tag} takes in at {{measured}} {_STATES[state.name]} ({{flow}})"
+    past = ", beyond the end of its curve" if state.flow > pump.curve_end * (1 + limits.ROUND_OFF) else ""
+    text = f"Pump {pump.tag} takes in at {{measured}} {_STATES[state.name]} ({{flow}}{past})"
     measured, allowed, values = pressure(state.suction), pressure(limit), {"flow": flow(state.flow)}
     tags = (pump.tag,)
     if state.suction < limit - limits.PSI * limits.ROUND_OFF:

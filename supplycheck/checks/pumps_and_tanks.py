@@ -7,6 +7,7 @@ from supplycheck.checks.context import CheckContext, PumpRating
 from supplycheck.checks.rule import About, Rule, some
 from supplycheck.findings import Finding, Measure
 from supplycheck.model import Device, Tank
+from supplycheck.supply.beyond import beyond_words
 
 DURATION = About(
     "duration",
@@ -89,14 +90,18 @@ def storage(context: CheckContext) -> Finding:
     )
     tags = tuple(tank.tag for tank in tanks)
     text = f"{some(tags)} with refill gives {{measured}}; {{time}} of demand takes {{limit}}."
+    doubt = "" if context.operating is None else beyond_words(context.operating)
+    doubt = f" What really flows is {doubt}." if doubt else ""
     runs = _drawn(context, tanks) * seconds
     if held >= need * (1 - limits.ROUND_OFF) and held < runs * (1 - limits.ROUND_OFF):
         text = f"{some(tags)} gives {{measured}}, enough for the demand; what really runs takes {{limit}}."
         ask = f"Must {some(tags)} last for the flow that really runs, or for the demand alone?"
         limit = Measure(runs, "volume")
-        return STORAGE.says("ask authority", text, measured=measured, limit=limit, tags=tags, remedy=ask)
+        return STORAGE.says(
+            "ask authority", text + doubt, measured=measured, limit=limit, tags=tags, remedy=ask
+        )
     if held >= need * (1 - limits.ROUND_OFF):
-        return STORAGE.says("ok", text, measured=measured, limit=limit, values=values, tags=tags)
+        return STORAGE.says("ok", text + doubt, measured=measured, limit=limit, values=values, tags=tags)
     do = "Enlarge the tank or its refill."
     return STORAGE.says("fail", text, measured=measured, limit=limit, values=values, tags=tags, remedy=do)
 

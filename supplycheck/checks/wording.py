@@ -26,6 +26,7 @@ _WORDS: Final = (
     (r"layout\.(.+)\.elevation", "{0} at elevation {value}"),
     (r"nodes\.(.+)\.elevation", "node {0} at elevation {value}"),
     (r"network\.nodes\.minimum_pressure", "least pressure at outflows: {value}"),
+    (r"scenario\[\d+\]\.flows\.(.+)", "at {0} {value}"),
     (r"fire_flow\.greatest_each", "one hydrant may give {value}"),
     (r"fire_flow\.counts", "{value}"),
     (r"fire_flow\.highest_point", "highest point of the main: {value}"),

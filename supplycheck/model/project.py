@@ -55,7 +55,8 @@ class Scenario:
     """A named question beside the design demand, solved with the actual supply.
 
     ``open_heads`` are node tags (``None``: those of the governing design area); ``closed_pipes`` are
-    shut; ``flows`` are fixed outflows [m³/s] by node; ``with_hose`` keeps the hose allowance.
+    shut; ``flows`` are fixed outflows [m³/s] by node, on top of those of the node table, which
+    ``with_node_flows`` keeps; ``with_hose`` keeps the hose allowance.
     """
 
     name: str
@@ -64,6 +65,7 @@ class Scenario:
     flows: tuple[tuple[str, float], ...]
     with_hose: bool
     place: Place | None = None
+    with_node_flows: bool = True
 
 
 @dataclass(frozen=True, slots=True)

@@ -27,7 +27,7 @@ NODE_COLUMNS: Final = (
     ),
     Column(
         "flow",
-        "Fixed outflow of a hose, hydrant or outlet. It runs in every case and in every scenario.",
+        "Fixed outflow of a hose, hydrant or outlet. It runs in every case and every scenario.",
         "flow",
     ),
     Column(

@@ -19,7 +19,6 @@ from supplycheck.model import (
     HoseAllowance,
     Project,
     ProjectFacts,
-    Scenario,
     Supply,
     System,
 )
@@ -36,6 +35,7 @@ from supplycheck.project.layout import generate
 from supplycheck.project.layout_parts import units_in
 from supplycheck.project.network_tables import read_network
 from supplycheck.project.parts import KindReader, kinds_by_name, read_devices, read_extra, read_sprinklers
+from supplycheck.project.scenarios import read_scenarios
 from supplycheck.project.sections import Sections, read_sections
 from supplycheck.project.standard import Standard, read_laws, read_standard
 from supplycheck.project.starter import unedited
@@ -164,37 +164,6 @@ def _hose(
     return HoseAllowance(inside, inside_node, outside, outside_node, source, origin)
 
 
-def _scenarios(sections: Sections, tags: TagCheck, faults: FaultList) -> tuple[Scenario, ...]:
-    found: dict[str, Scenario] = {}
-    for number, table in sections.scenarios:
-        where = f"scenario[{number}]"
-        units = units_in(table, UNIT_SETS[sections.units])
-        if table.name in found:
-            faults.add(
-                sections.place(f"{where}.name"),
-                "stands twice",
-                found=quoted(table.name),
-                allowed="every name once",
-            )
-        heads = None if table.heads == "design area" else tuple(table.heads)
-        if heads == () and not table.flows:
-            faults.add(
-                sections.place(f"{where}.heads"),
-                "is empty, and nothing else flows",
-                found="[]",
-                allowed='"design area", the tags of at least one sprinkler, or flows',
-            )
-        tags.heads(heads or (), f"{where}.heads")
-        tags.pipes_named(table.closed_pipes, f"{where}.closed_pipes")
-        for tag in table.flows:
-            tags.node(tag, f"{where}.flows")
-        flows = tuple((tag, flow.si(units)) for tag, flow in table.flows.items())
-        found[table.name] = Scenario(
-            table.name, heads, tuple(table.closed_pipes), flows, table.hose, sections.place(where)
-        )
-    return tuple(found.values())
-
-
 def _check_area(
     sections: Sections, criteria: Criteria | None, system: System, tags: TagCheck, faults: FaultList
 ) -> None:
@@ -290,7 +259,7 @@ def _assemble(sections: Sections, folder: Folder, faults: FaultList) -> Project:
         hose = NO_HOSE
     elif supply is not None:
         hose = _hose(sections, row, supply, tags, notes, faults)
-    scenarios = _scenarios(sections, tags, faults)
+    scenarios = read_scenarios(sections, tags, notes, faults)
     facts = _facts(sections, standard) if standard else None
     faults.stop()
     if (

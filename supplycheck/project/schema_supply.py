@@ -216,7 +216,13 @@ class HoseTable(UnitTable):
 
 
 class ScenarioTable(UnitTable):
-    """A named question beside the design demand, solved with the actual supply."""
+    """A named question beside the design demand, solved with the actual supply.
+
+    Its open heads, the hose, the outflows of the node table and its own `flows` all run at once. Where the
+    node table draws at a node of `flows` too, both run: that is noted as an assumption unless `node_flows`
+    says it. To put a flow in the place of that of the node table, set `node_flows = false` and list all
+    that runs.
+    """
 
     name: Name
     """Name of the scenario."""
@@ -225,6 +231,8 @@ class ScenarioTable(UnitTable):
     closed_pipes: list[Name] = Field(default_factory=list)
     """Tags of pipes that are shut."""
     flows: dict[str, FlowOrZero] = Field(default_factory=dict)
-    """Fixed outflows by node."""
+    """Fixed outflows by node, on top of what the node table draws there."""
+    node_flows: bool | None = None
+    """Whether the outflows of the node table run too. Default: they do, as in every case."""
     hose: bool = True
     """Whether the hose allowance flows too."""

@@ -9,6 +9,7 @@ from typing import Any
 from supplycheck.findings import Finding, Measure
 from supplycheck.results.display import finding_text, remedy_text
 from supplycheck.results.records import FittingRow, HandStep, NodeRow, PathStep, PipeRow, ScenarioRow
+from supplycheck.results.scenario_note import scenario_note
 from supplycheck.units import UnitSet
 
 Record = dict[str, Any]
@@ -206,16 +207,36 @@ def scenario_record(row: ScenarioRow, plain: Plain) -> Record:
             "minutes_of_storage": (row.minutes_of_storage, "plain"),
         }
     )
+    needs = row.head_needs or (None,) * len(row.head_flows)
     heads = [
-        {"tag": tag, "flow": plain(flow, "flow"), "pressure": plain(pressure, "pressure")}
-        for tag, flow, pressure in row.head_flows
+        {
+            "tag": tag,
+            **plain.record(
+                {
+                    "flow": (flow, "flow"),
+                    "pressure": (pressure, "pressure"),
+                    "required_flow": (need, "flow"),
+                }
+            ),
+        }
+        for (tag, flow, pressure), need in zip(row.head_flows, needs, strict=True)
+    ]
+    beyond = [
+        {
+            "device": one.device,
+            "pipe": one.pipe,
+            **plain.record({"flow": (one.flow, "flow"), "curve_end": (one.end, "flow")}),
+        }
+        for one in row.beyond
     ]
     return {
         "name": row.name,
         "heads_open": row.heads_open,
         "lowest_head": row.lowest_head,
         **numbers,
-        "note": row.note,
+        "note": scenario_note(row, plain.units),
+        "dry_heads": list(row.dry),
+        "beyond_curves": beyond,
         "heads": heads,
     }
 

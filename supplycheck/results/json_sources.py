@@ -142,7 +142,8 @@ def tank_record(tank: TankRecord, plain: Numbers) -> Record:
         }
     )
     lines = [_line(line, plain) for line in tank.lines]
-    return {"tag": time.tag, "kind": tank.kind, "node": tank.node, **numbers, "time_line": lines}
+    told = {"tag": time.tag, "kind": tank.kind, "node": tank.node, **numbers}
+    return {**told, "note": tank.note, "time_line": lines}
 
 
 def _line(line: TankLine, plain: Numbers) -> Record:

@@ -15,6 +15,7 @@ from supplycheck.findings import Finding
 from supplycheck.model import Project
 from supplycheck.model.duty import DutyAnswer
 from supplycheck.model.system import Fitting
+from supplycheck.supply.beyond import Beyond
 from supplycheck.supply.needed import NeededPump as NeededPump
 from supplycheck.supply.pumping import PumpAnswer as PumpAnswer
 from supplycheck.supply.pumping import PumpState as PumpState
@@ -320,7 +321,13 @@ class BalanceRecord:
 
 @dataclass(frozen=True, slots=True)
 class ScenarioRow:
-    """What really flows in one scenario, with the actual supply."""
+    """What really flows in one scenario, with the actual supply; flows [m³/s], pressures [Pa].
+
+    ``head_flows`` are tag, flow and pressure of every open head, ``head_needs`` the flow each needs in the
+    same order (``None``: not known); ``lowest_ratio`` and ``over_discharge`` compare the two. ``dry`` are
+    the open heads that give nothing, ``beyond`` the flows outside the curve of a device, ``besides`` the
+    nodes at which both the scenario and the node table draw: node, flow of the one, flow of the other.
+    """
 
     name: str
     total_flow: float
@@ -335,6 +342,10 @@ class ScenarioRow:
     minutes_of_storage: float | None
     note: str
     head_flows: tuple[tuple[str, float, float], ...] = ()
+    head_needs: tuple[float | None, ...] = ()
+    dry: tuple[str, ...] = ()
+    beyond: tuple[Beyond, ...] = ()
+    besides: tuple[tuple[str, float, float], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -25,6 +25,7 @@ from supplycheck.results.records import (
     Result,
     ScenarioRow,
 )
+from supplycheck.results.scenario_note import scenario_note
 from supplycheck.results.tables_duties import duty_tables
 from supplycheck.results.tables_sources import curve_rows, source_tables
 from supplycheck.units import UNIT_SETS, UnitSet
@@ -212,7 +213,7 @@ def _scenario(row: ScenarioRow, make: _Columns) -> Record:
         **make("delivered_density", row.delivered_density, "density"),
         **make("over_discharge", row.over_discharge, "ratio"),
         **make("lasts", _seconds(row.minutes_of_storage), "time"),
-        "note": row.note,
+        "note": scenario_note(row, make.units),
     }
 
 
@@ -221,14 +222,16 @@ def _seconds(minutes: float | None) -> float | None:
 
 
 def _heads(row: ScenarioRow, make: _Columns) -> list[Record]:
+    needs = row.head_needs or (None,) * len(row.head_flows)
     return [
         {
             "scenario": row.name,
             "head": tag,
             **make("flow", flow, "flow"),
             **make("pressure", pressure, "pressure"),
+            **make("required_flow", need, "flow"),
         }
-        for tag, flow, pressure in row.head_flows
+        for (tag, flow, pressure), need in zip(row.head_flows, needs, strict=True)
     ]
 
 

@@ -157,7 +157,7 @@ def _tank(tank: TankRecord, make: Make) -> Record:
         **make("lasts_at_nominal_flow", time.lasts, "time"),
         **make("lasts_at_actual_flow", time.actual_lasts, "time"),
         **make("refill_time", time.refill_time, "time"),
-        "note": _KEEPS_UP if endless else "",
+        "note": "; ".join(text for text in (_KEEPS_UP if endless else "", tank.note) if text),
     }
 
 

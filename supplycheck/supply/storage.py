@@ -131,6 +131,7 @@ class TankAnswer:
     """One tank of a project: its times, its levels [m], the refill credit [m³] and its time line.
 
     ``credit`` is what the refill brings while the supply must last (``None`` where no duration is given).
+    ``note`` says what makes the flow that really runs doubtful.
     """
 
     kind: str
@@ -140,6 +141,7 @@ class TankAnswer:
     credit: float | None
     time: TankTime
     lines: tuple[TankLine, ...]
+    note: str = ""
 
 
 def tank_answers(
@@ -147,10 +149,11 @@ def tank_answers(
     duration: float | None,
     nominal: Mapping[str, float],
     actual: Mapping[str, float],
+    note: str = "",
 ) -> tuple[TankAnswer, ...]:
     """Return every tank against what is drawn from its node; flows [m³/s] by node, ``duration`` [s].
 
-    Raises :class:`DomainError` for a volume of 0.
+    ``note`` is what is to be said of the ``actual`` flows. Raises :class:`DomainError` for a volume of 0.
     """
     found = []
     for tank in tanks:
@@ -168,6 +171,7 @@ def tank_answers(
                 credit=None if duration is None else tank.refill * duration,
                 time=time,
                 lines=tuple(line for line in lines if line is not None),
+                note=note,
             )
         )
     return tuple(found)

@@ -36,6 +36,7 @@ from supplycheck.model import (
 )
 from supplycheck.network.records import Solution
 from supplycheck.results.display import finding_text
+from supplycheck.supply.beyond import Beyond
 from supplycheck.units import FOOT, GPM, INCH, METRIC, PSI, US
 
 BY_NAME = {rule.about.name: rule for rule in RULES}
@@ -82,6 +83,10 @@ RESERVOIR = replace(TANK, kind="reservoir")
 
 FAR_SHUT = ScenarioFacts("far main shut", "H7", 1.13, "shut: F1")
 SHORT = replace(FAR_SHUT, name="cross main shut", share=0.57)
+RUNS_DRY = replace(FAR_SHUT, name="all shut", share=0.0, dry=("H7", "H8"))
+REAL_FLOW = {"operating": built({}).solution}
+FAR_OUT = {"operating": replace(built({}).solution, out_of_range=(("U", "backflow", 1200 * GPM),))}
+SCENARIO_OUT = {"beyond": (("far main shut", Beyond("meter", "F1", 90 * GPM, 100 * GPM)),)}
 NONE_THERE = ScenarioFacts("both shut", "", None, "no solution", solved=False)
 CHECK_VALVE = Device(
     "backflow", "check valve", (0.0, 1000 * GPM), (2 * PSI, 8 * PSI), "maker", one_way=True
@@ -714,6 +719,11 @@ DEVICES = [
         400 * GPM,
     ),
     Case("device curve range", "not applicable", FIXED_LOSS),
+    Case("device curve range, real flow", "ok", REAL_FLOW, tags=("backflow",)),
+    Case("device curve range, real flow", "fail", FAR_OUT, 1200 * GPM, 1000 * GPM, ("backflow",)),
+    Case("device curve range, real flow", "fail", SCENARIO_OUT, 90 * GPM, 100 * GPM, ("meter",)),
+    Case("device curve range, real flow", "not applicable", FIXED_LOSS | REAL_FLOW),
+    Case("device curve range, real flow", "not applicable"),
     Case("pressure-reducing valve", "not applicable"),
     # 80 psi stands at the source without flow, in the demand state much less: set to 50 psi the valve works
     Case("pressure-reducing valve", "ok", WITH_REDUCER, None, 50 * PSI, ("reducer",)),
@@ -907,6 +917,7 @@ BASIS = [
     Case("scenarios", "ok", {"scenarios": (FAR_SHUT, replace(FAR_SHUT, share=1.02))}, 1.02, 1.0, ("H7",)),
     Case("scenarios", "ask authority", {"scenarios": (SHORT, FAR_SHUT)}, 0.57, 1.0, ("H7",)),
     Case("scenarios", "ask authority", {"scenarios": (FAR_SHUT, NONE_THERE)}, tags=("both shut",)),
+    Case("scenarios", "fail", {"scenarios": (FAR_SHUT, RUNS_DRY, NONE_THERE)}, 0.0, 1.0, ("H7", "H8")),
 ]
 
 DUTIES = [Case(*one) for one in DUTY_CASES]

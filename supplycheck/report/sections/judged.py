@@ -15,6 +15,7 @@ from supplycheck.results.display import (
     tags_text,
 )
 from supplycheck.results.records import Result, ScenarioRow
+from supplycheck.results.scenario_note import scenario_note
 
 
 def findings(result: Result) -> Section:
@@ -131,13 +132,13 @@ def _scenarios(result: Result, show: Show) -> Table:
                 show.n(row.sprinkler_flow, "flow") if row.heads_open else "–",
                 str(row.heads_open) if row.heads_open else "–",
                 row.lowest_head or "–",
-                show.n(row.lowest_pressure, "pressure"),
+                show.left(row.lowest_pressure),
                 show.n(row.lowest_ratio, "ratio", 2),
                 show.n(row.delivered_density, "density"),
                 "–" if row.over_discharge is None else show.t(row.over_discharge, "percent", 0),
                 "–" if row.minutes_of_storage is None else f"{row.minutes_of_storage:.0f}",
             ),
-            note=row.note,
+            note=scenario_note(row, show.units),
         )
         for row in result.scenarios
     )
@@ -152,9 +153,7 @@ def _scenarios(result: Result, show: Show) -> Table:
 def _head_table(row: ScenarioRow, show: Show) -> Table:
     columns = (words("Head"), column("Flow", show.s("flow")), column("Pressure", show.s("pressure")))
     three: list[Row] = []
-    cells = [
-        (tag, show.n(flow, "flow"), show.n(pressure, "pressure")) for tag, flow, pressure in row.head_flows
-    ]
+    cells = [(tag, show.n(flow, "flow"), show.left(pressure)) for tag, flow, pressure in row.head_flows]
     for first in range(0, len(cells), 3):
         group = cells[first : first + 3]
         group += [("", "", "")] * (3 - len(group))

@@ -173,6 +173,7 @@ def _tanks(tanks: tuple[TankRecord, ...], show: Show, width: float) -> list[Bloc
             ("Time of refill", show.t(time.refill_time, "time")),
         )
         blocks += [Heading(f"Tank {time.tag}"), Facts(pairs, columns=2)]
+        blocks += [Paragraph(tank.note)] if tank.note else []
         drawing = tank_time_line(tank, show.units, (width, 210.0))
         if drawing is not None:
             caption = "The volume needed is what is drawn beyond the refill over the time it must last."
