@@ -250,8 +250,8 @@ def margin(context: CheckContext) -> Finding:
     }
     has = "more than it can give" if facts.available_pressure < 0 else "{available} available"
     at = f"at {facts.node}, {{flow}}: {has}, {{demand}} needed"
-    if _held_back(context):
-        at = f"at the supply; behind a regulating valve {at}"
+    if _throttled(context):
+        at = f"at the supply; with a regulating valve, {at}"
     source = rule.source if rule is not None and rule.source else MARGIN.source
     raise_it = "Enlarge pipes, cut the demand, or raise the supply."
     if facts.margin < 0:
@@ -289,12 +289,12 @@ def margin(context: CheckContext) -> Finding:
     )
 
 
-def _held_back(context: CheckContext) -> bool:
-    """Return whether a regulating valve keeps some of the margin from the point of comparison."""
+def _throttled(context: CheckContext) -> bool:
+    """Return whether a regulating valve makes what is left at the point another figure than the margin."""
     facts = context.comparison
     valves = any(one.kind == "pressure-reducing valve" for one in context.devices.values())
     kept = facts.margin - (facts.available_pressure - facts.demand_pressure)
-    return valves and kept > NOTABLE
+    return valves and abs(kept) > NOTABLE
 
 
 RULES = (

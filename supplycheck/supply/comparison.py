@@ -41,7 +41,7 @@ class Comparison:
     what a gauge at ``node`` shows with the demand drawn from the supplies as they are. ``available_flow``
     is the flow at which the demand pressure is still there (``None``: at every flow). ``margin`` is by how
     much the supply can be lowered with the demand still met: the available less the demand pressure, unless
-    a regulating valve before ``node`` holds some of it back. ``required`` is what the rule asks
+    a regulating valve throttles more while the supply is not lowered. ``required`` is what the rule asks
     (``None``: no rule given) and ``after_rule`` what is left. ``static`` is what a gauge at ``node`` shows
     with nothing drawn from the compared curves, ``highest_static`` the highest that the highest measured
     ones can bring there. ``principal`` is the source that gives most; the flows at 20 psi are read at its

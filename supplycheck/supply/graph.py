@@ -91,8 +91,10 @@ def curve_points(
 def _solved_line(comparison: Comparison, states: States) -> CurveLine:
     """Return what all supplies together leave at the point of comparison against all that is drawn."""
     most = comparison.available_flow or 0.0
-    reach = 1.1 * max(comparison.demand_flow, min(most, _MOST_REACH * comparison.demand_flow))
     tested = {share.node: share.tested_flow for share in comparison.sources}
+    known_to = [flow for flow in tested.values() if math.isfinite(flow)]
+    far = max([_MOST_REACH * comparison.demand_flow, *known_to])
+    reach = 1.1 * max(comparison.demand_flow, min(most, far))
     kept, known = [(0.0, comparison.static)], reach
     for index in range(1, _SOLVED + 1):
         flow = reach * (index / _SOLVED) ** (1 / EXPONENT)

@@ -242,13 +242,16 @@ def behind_valve_steps(valve: str, setting: float, path: Route, at: str) -> tupl
 
 
 def shown_step(at: str, available: float, demand: float, left: float | None) -> tuple[Step, ...]:
-    """Return what a gauge at ``at`` shows in the solved state, and what is ``left`` [Pa] where a valve
-    holds back some of the margin."""
+    """Return what a gauge at ``at`` shows in the solved state.
+
+    ``left`` [Pa] is what that leaves above the demand; ``None`` where it is the margin, which a regulating
+    valve may change.
+    """
     note = "a gauge there, with the demand drawn from the supplies as they are: network solved"
     shown = Words("{shown}", (("shown", available, "pressure"),))
     steps = [Step(f"Available at {at}", shown, available, "pressure", note)]
     if left is not None:
         values = (("available", available, "pressure"), ("demand", demand, "pressure"))
-        note = "a regulating valve holds back the rest of the margin"
+        note = "not the margin: a regulating valve throttles more while no supply is lowered"
         steps.append(Step(f"Left at {at}", Words("{available} − {demand}", values), left, "pressure", note))
     return tuple(steps)

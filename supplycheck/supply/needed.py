@@ -48,7 +48,7 @@ def needed_pump(
     pumps: Sequence[PumpAnswer],
     rated_flows: Sequence[float] = (),
 ) -> NeededPump | None:
-    """Return the pump that would close the gap, ``None`` where the supply is enough.
+    """Return the pump that would close the gap, ``None`` where the supply is enough or none helps.
 
     ``rated_flows`` [m³/s] are the sizes in which pumps are made; where none is given or none reaches, the
     pump is rated at the demand flow itself. It stands behind the principal source, after what is drawn at
@@ -66,6 +66,8 @@ def needed_pump(
         given = float(solution.source_flow[solution.source_tags.index(node)])
         drawn = float(solution.outflow[solution.node(node)])
         flow = given - drawn
+        if flow <= 0.0:  # another source feeds what is drawn here: a pump behind this one moves nothing
+            return None
         asked = {0.0, flow, *(OVERLOAD_FLOW * rated for rated in (*rated_flows, flow))}
         below = _curve(node, [(q, supply.curve.pressure_at(q + drawn)) for q in sorted(asked)])
     else:

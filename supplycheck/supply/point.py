@@ -47,9 +47,9 @@ class Point:
     """The point of comparison; pressures [Pa], flow [m³/s].
 
     ``available`` is what a gauge there shows with the demand drawn from the supplies as they are;
-    ``unadjusted`` the same before the adjustments of the project. ``held_back`` says that a regulating
-    valve keeps it below demand and margin together. ``states`` is ``None`` where the sum along the route
-    is exact at every flow.
+    ``unadjusted`` the same before the adjustments of the project. ``held_back`` says that by a
+    regulating valve it is not demand and margin together. ``states`` is ``None`` where the sum along the
+    route is exact at every flow.
     """
 
     demand: float
@@ -198,8 +198,8 @@ class _Finder:
     def _held_note(self, available: float, demand: float) -> Words:
         text = (
             "With the demand drawn a gauge at {at} would show {available}, {left} above the demand there. "
-            "The supply could be lowered by {margin} with the demand still met: a regulating valve before "
-            "{at} holds back the difference."
+            "The supply could be lowered by {margin} with the demand still met. The two differ because a "
+            "regulating valve throttles more while the supply is not lowered."
         )
         values = (
             ("at", self.at, ""),
