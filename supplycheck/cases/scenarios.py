@@ -89,6 +89,7 @@ class _Reader:
         areas = [self.project.system.nodes[row].area or math.nan for row in rows]
         area = sum(areas) if rows else math.nan
         main = int(np.argmax(solution.source_flow))
+        dry = tuple(tag for tag, flow in zip(named.heads, flows, strict=True) if flow == 0.0)
         return ScenarioRow(
             name=named.name,
             total_flow=_flow(float(np.sum(solution.source_flow))),
@@ -99,7 +100,7 @@ class _Reader:
             lowest_pressure=float(solution.pressure[lowest]) if lowest is not None else math.nan,
             lowest_ratio=min((flow / need for flow, need in judged), default=None),
             delivered_density=sum(flows) / area if math.isfinite(area) and area > 0 else None,
-            over_discharge=sum(flow for flow, _ in judged) / need - 1 if need else None,
+            over_discharge=sum(flow for flow, _ in judged) / need - 1 if need and not dry else None,
             minutes_of_storage=_storage(self.project, solution),
             note=named.note,
             head_flows=tuple(
@@ -107,7 +108,7 @@ class _Reader:
                 for tag, flow, row in zip(named.heads, flows, rows, strict=True)
             ),
             head_needs=needs,
-            dry=tuple(tag for tag, flow in zip(named.heads, flows, strict=True) if flow == 0.0),
+            dry=dry,
             beyond=beyond_curves(self.project.system.devices, solution),
             besides=named.besides,
         )

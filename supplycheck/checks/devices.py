@@ -33,7 +33,7 @@ CURVE = About(
     weight=3,
 )
 REAL_CURVE = About(
-    "device curve range, real flow",
+    "device curve range in real flow",
     "flow through each device with the actual supply, and in the scenarios, against the range of its curve",
     ("ok", "fail", "not applicable"),
     "the curve as given; outside it nothing is known",

@@ -324,9 +324,10 @@ class ScenarioRow:
     """What really flows in one scenario, with the actual supply; flows [m³/s], pressures [Pa].
 
     ``head_flows`` are tag, flow and pressure of every open head, ``head_needs`` the flow each needs in the
-    same order (``None``: not known); ``lowest_ratio`` and ``over_discharge`` compare the two. ``dry`` are
-    the open heads that give nothing, ``beyond`` the flows outside the curve of a device, ``besides`` the
-    nodes at which both the scenario and the node table draw: node, flow of the one, flow of the other.
+    same order (``None``: not known); ``lowest_ratio`` and ``over_discharge`` compare the two, the latter
+    only where no head is dry. ``dry`` are the open heads that give nothing, ``beyond`` the flows outside
+    the curve of a device, ``besides`` the nodes at which both the scenario and the node table draw: node,
+    flow of the one, flow of the other.
     """
 
     name: str

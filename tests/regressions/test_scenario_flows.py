@@ -188,7 +188,7 @@ def test_the_record_holds_the_numbers(past_end: Result) -> None:
 
 
 def test_a_finding_fails_and_screen_and_verdict_name_it(past_end: Result) -> None:
-    found = finding(past_end, "device curve range, real flow")
+    found = finding(past_end, "device curve range in real flow")
     assert found.state == "fail" and found.tags == ("c",)
     assert found.measured is not None and found.limit is not None
     greatest = row(past_end, "more").total_flow
@@ -199,7 +199,7 @@ def test_a_finding_fails_and_screen_and_verdict_name_it(past_end: Result) -> Non
 
 def test_a_curve_that_reaches_far_enough_says_nothing(tmp_path: Path) -> None:
     result = with_curve(tmp_path, 400, scenario("more", "flows = { A = 30 }"))
-    assert finding(result, "device curve range, real flow").state == "ok"
+    assert finding(result, "device curve range in real flow").state == "ok"
     assert all(not one.beyond for one in result.scenarios)
     assert told(result, "design area, actual supply") == ""
 
@@ -252,6 +252,7 @@ def test_dry_heads_are_named(high: Result) -> None:
 def test_nothing_is_nought(high: Result) -> None:
     still = row(high, "only t2")
     assert (still.total_flow, still.sprinkler_flow, still.lowest_ratio) == (0.0, 0.0, 0.0)
+    assert still.over_discharge is None
     assert not str(still.total_flow).startswith("-")
 
 
