@@ -10,7 +10,7 @@ from supplycheck.report.sections.basis import basis
 from supplycheck.report.sections.closing import assumptions, cautions, echo
 from supplycheck.report.sections.duties import duties
 from supplycheck.report.sections.judged import findings, flows
-from supplycheck.report.sections.layout_plan import plan
+from supplycheck.report.sections.layout_plan import placements, plan
 from supplycheck.report.sections.pressure import hand_check, pressure
 from supplycheck.report.sections.rows import node_analysis, pipe_information
 from supplycheck.report.sections.sources import sources
@@ -41,6 +41,7 @@ def build_document(result: Result) -> Document:
         flows(result),
         assumptions(result),
         cautions(result),
+        *_if_any(placements(result)),
         echo(result),
     )
     parts = [facts.site, facts.stage, f"calculated {facts.date.isoformat()}"]

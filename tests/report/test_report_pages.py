@@ -152,6 +152,7 @@ def test_the_sections_stand_in_the_order_in_which_a_reviewer_reads() -> None:
         "What really flows, and the balance",
         "Assumptions and origins",
         "Cautions and review",
+        "Placements one by one",
         "Input as read",
     )
     assert tuple(titles) == wanted

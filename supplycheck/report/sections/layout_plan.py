@@ -5,7 +5,7 @@ from __future__ import annotations
 from types import MappingProxyType
 from typing import Final
 
-from supplycheck.report.document import Block, Figure, Paragraph, Row, Section, Table
+from supplycheck.report.document import Block, Column, Figure, Paragraph, Row, Section, Table
 from supplycheck.report.figures.key_plan import key_plan
 from supplycheck.report.figures.legends import size_legend
 from supplycheck.report.figures.placements import placement_map
@@ -14,6 +14,9 @@ from supplycheck.report.show import Show, column, words
 from supplycheck.results.display import tags_text
 from supplycheck.results.records import Favourable, Placement, Result
 
+ALL_PLACEMENTS: Final = "Placements one by one"
+MOST_PLACEMENTS: Final = 48
+"""Placements that are printed one by one, the hardest first."""
 PLAN_ROOM: Final = MappingProxyType({"letter": 515.0, "a4": 562.0})
 
 
@@ -87,8 +90,36 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
     rows = tuple(_row(word, one, show) for word, one in chosen if one is not None)
     if area.most_favourable is not None:
         rows = (*rows, _favourable_row(area.most_favourable, show))
-    columns = (
-        words("Placement"),
+    note = "How they were found: basis of design." if area.mode == "search" else area.statement
+    if len(area.placements) > len(chosen):
+        note += f" The others stand under “{ALL_PLACEMENTS}”."
+    blocks.append(Table("Placements compared", _columns("Placement", show), rows, note))
+    return blocks
+
+
+def placements(result: Result) -> Section | None:
+    """Return all placements that were tried, the hardest first; ``None`` where there are only two."""
+    show, area = Show.of(result), result.design_area
+    count = len(area.placements)
+    if count <= 2:
+        return None
+    hardest = sorted(
+        area.placements, key=lambda one: (one is not area.governing, one.margin, -one.required_pressure)
+    )
+    shown = hardest[:MOST_PLACEMENTS]
+    rows = tuple(_row(str(place), one, show) for place, one in enumerate(shown, start=1))
+    which = f"The {len(shown)} hardest of {count}" if len(shown) < count else f"All {count}"
+    note = (
+        f"{which} that were tried, by the margin before the rule. Every one stands in result.json "
+        "(design_area.placements) and on the sheet placements of tables.xlsx."
+    )
+    table = Table("By the margin that is left", _columns("No.", show), rows, note, size=6.6)
+    return Section(ALL_PLACEMENTS, (table,), fresh=True)
+
+
+def _columns(first: str, show: Show) -> tuple[Column, ...]:
+    return (
+        words(first),
         words("Label"),
         column("Required", show.s("pressure")),
         column("Flow", show.s("flow")),
@@ -97,9 +128,6 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
         column("Heads"),
         words("Tags"),
     )
-    note = "How they were found: basis of design." if area.mode == "search" else area.statement
-    blocks.append(Table("Placements compared", columns, rows, note))
-    return blocks
 
 
 def _favourable_row(best: Favourable, show: Show) -> Row:
