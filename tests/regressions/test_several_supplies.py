@@ -211,6 +211,17 @@ def test_a_main_that_takes_water_is_read_at_what_runs_into_it(tmp_path: Path) ->
     assert f"{given:.1f} gpm pass E, more than is drawn" in told and "of which" not in told
 
 
+@pytest.mark.parametrize("at", ["E", "W", "J", "H"])
+def test_the_margin_is_the_same_wherever_it_is_read_though_water_runs_into_a_main(
+    tmp_path: Path, at: str
+) -> None:
+    result = run(tmp_path, STRONG.table + WEAK.table, at=at)
+    given, left = shared(STRONG, WEAK)
+    here = {"E": STRONG.at(given), "W": WEAK.at(NEED - given), "J": AT_J + left, "H": HEAD + left}
+    assert result.supply.available_pressure / PSI == pytest.approx(here[at], abs=1e-3)
+    assert result.margin.pressure / PSI == pytest.approx(left, abs=1e-3)
+
+
 def test_without_flow_two_open_mains_settle_between_their_statics(tmp_path: Path) -> None:
     """The strong main runs into the weak one though nothing is drawn: E shows what is left at that flow."""
     given, _ = shared(STRONG, WEAK, drawn=0.0)
