@@ -103,6 +103,7 @@ def comparison_facts(comparison: Comparison) -> ComparisonFacts:
         tested_flow_ratio=main.tested_ratio,
         main_pressure_at_demand=main.available,
         margin_rule=comparison.rule.template,
+        limited_at=comparison.floor.node if comparison.floor is not None else "",
     )
 
 

@@ -22,7 +22,8 @@ class ComparisonFacts:
     ``required`` what the rule asks (``None`` without a rule). ``static_at_compare`` is the greatest
     pressure at ``node`` without flow: of the measured supply, not lowered by an adjustment (a static
     cap counts). ``tested_flow_ratio`` is the demand over the largest tested flow;
-    ``main_pressure_at_demand`` the pressure at the test node at the demand flow, adjusted.
+    ``main_pressure_at_demand`` the pressure at the test node at the demand flow, adjusted;
+    ``limited_at`` the node where lowering the supply by more than the margin leaves nothing in a main.
     """
 
     node: str
@@ -37,6 +38,7 @@ class ComparisonFacts:
     tested_flow_ratio: float | None = None
     main_pressure_at_demand: float | None = None
     margin_rule: str = ""
+    limited_at: str = ""
 
 
 @dataclass(frozen=True, slots=True)

@@ -250,12 +250,13 @@ def margin(context: CheckContext) -> Finding:
     }
     has = "more than it can give" if facts.available_pressure < 0 else "{available} available"
     at = f"at {facts.node}, {{flow}}: {has}, {{demand}} needed"
-    if _throttled(context):
+    ends = f" (lowered further, nothing is left at {facts.limited_at})" if facts.limited_at else ""
+    if not ends and _throttled(context):
         at = f"at the supply; with a regulating valve, {at}"
     source = rule.source if rule is not None and rule.source else MARGIN.source
     raise_it = "Enlarge pipes, cut the demand, or raise the supply."
     if facts.margin < 0:
-        text = f"The supply falls short by {{short}} {at}."
+        text = f"The supply falls short by {{short}}{ends} {at}."
         values["short"] = pressure(-facts.margin)
         limit = None if facts.required is None else pressure(facts.required)
         return MARGIN.says(
@@ -269,14 +270,14 @@ def margin(context: CheckContext) -> Finding:
             source=source,
         )
     if facts.required is None:
-        text = f"Not run: no margin rule. {{measured}} is left {at}."
+        text = f"Not run: no margin rule. {{measured}} is left{ends} {at}."
         ask = "Which margin between supply and demand does the authority ask for (or none)?"
         return MARGIN.says(
             "missing", text, measured=measured, values=values, tags=(facts.node,), remedy=ask
         )
     state: State = "ok" if facts.margin >= facts.required else "fail"
     asked = "no margin" if facts.required == 0 else "{limit}"
-    text = f"{{measured}} is left, {asked} is asked, {at}."
+    text = f"{{measured}} is left{ends}, {asked} is asked, {at}."
     return MARGIN.says(
         state,
         text,

@@ -247,6 +247,7 @@ def _margin(comparison: Comparison, show: Show, fine: Show) -> MarginRecord:
         rule=comparison.rule.fill(show),
         steps=_filled(comparison.margin_steps, fine),
         source=comparison.rule_source,
+        limited_at=comparison.floor.node if comparison.floor is not None else None,
     )
 
 

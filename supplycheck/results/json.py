@@ -188,6 +188,7 @@ def _margin(result: Result, plain: Plain) -> Record:
     )
     return {
         **numbers,
+        "limited_at": margin.limited_at,
         "rule": margin.rule,
         "source": margin.source,
         "steps": step_records(margin.steps, plain),

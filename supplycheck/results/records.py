@@ -279,7 +279,11 @@ class SupplyRecord:
 
 @dataclass(frozen=True, slots=True)
 class MarginRecord:
-    """Margin before the rule (``pressure``), what the rule asks (``required``), what is left."""
+    """Margin before the rule (``pressure``), what the rule asks (``required``), what is left.
+
+    ``limited_at`` is the node where nothing would be left in a main if the supply were lowered further than
+    the margin, though a pump could carry the demand by its numbers.
+    """
 
     pressure: float
     required: float | None
@@ -287,6 +291,7 @@ class MarginRecord:
     rule: str
     steps: tuple[HandStep, ...]
     source: str
+    limited_at: str | None = None
 
 
 @dataclass(frozen=True, slots=True)

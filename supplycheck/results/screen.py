@@ -77,7 +77,8 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
     asked = "no rule given" if margin.required is None else f"{_t(units, margin.required)} asked"
     after = "" if margin.after_rule is None else f", {_signed(units, margin.after_rule)} left after it"
     kept = margin.pressure - (supply.available_pressure - demand.pressure)
-    where = " at the supply" if abs(kept) > NOTABLE else ""  # a regulating valve throttles
+    where = " at the supply" if abs(kept) > NOTABLE else ""  # a valve throttles, or a main ends
+    ends = f"; lowered further, nothing is left at {margin.limited_at}" if margin.limited_at else ""
     flow_gap = residual_text(balance.largest_flow_imbalance, "flow", units)
     gap = residual_text(balance.largest_pressure_imbalance, "pressure", units)
     return [
@@ -91,7 +92,7 @@ def _entries(result: Result, units: UnitSet) -> list[tuple[str, str, int]]:
             _available(supply.available_pressure, units) + f" ({read})",
             2,
         ),
-        ("Margin", f"{_signed(units, margin.pressure)}{where} before the rule; {asked}{after}", 1),
+        ("Margin", f"{_signed(units, margin.pressure)}{where} before the rule; {asked}{after}{ends}", 2),
         ("Rule", margin.rule, 2),
         *([("Second law", second_law_text(result, units), 2)] if result.second_law else []),
         ("Governs", result.governs, 2),

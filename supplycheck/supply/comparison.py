@@ -22,6 +22,7 @@ from supplycheck.model import Project
 from supplycheck.model.words import Step, Value, Words
 from supplycheck.network import Network
 from supplycheck.network.records import Solution
+from supplycheck.supply.floor import Floor, floor_of
 from supplycheck.supply.hose import hose_parts
 from supplycheck.supply.margin import MarginCase, RequiredMargin, required_margin, rule_words
 from supplycheck.supply.narration import demand_step, left_over_step, sharing_step, source_steps
@@ -41,7 +42,8 @@ class Comparison:
     what a gauge at ``node`` shows with the demand drawn from the supplies as they are. ``available_flow``
     is the flow at which the demand pressure is still there (``None``: at every flow). ``margin`` is by how
     much the supply can be lowered with the demand still met: the available less the demand pressure, unless
-    a regulating valve throttles more while the supply is not lowered. ``required`` is what the rule asks
+    a regulating valve throttles more while the supply is not lowered, or less than nothing would be left in
+    a main (``floor``). ``required`` is what the rule asks
     (``None``: no rule given) and ``after_rule`` what is left. ``static`` is what a gauge at ``node`` shows
     with nothing drawn from the compared curves, ``highest_static`` the highest that the highest measured
     ones can bring there. ``principal`` is the source that gives most; the flows at 20 psi are read at its
@@ -78,6 +80,12 @@ class Comparison:
     adjusted_flow_at_20_psi: float | None
     notes: tuple[Words, ...]
     states: States | None = None
+    floor: Floor | None = None
+
+    @property
+    def shift(self) -> float:
+        """By how much the supply stands lower in the demand state than it is [Pa], by the numbers alone."""
+        return self.margin + (self.floor.lack if self.floor is not None else 0.0)
 
     @property
     def hose_flow(self) -> float:
@@ -128,6 +136,9 @@ def compare(
     if at not in solution.node_tags:
         raise DomainError(f"the point of comparison {at} is not a node of the network")
     point = point_of(project, solution, by_node, shares, margin, network)
+    floor = floor_of(project, solution, by_node, shares)
+    steps = _left_steps(shares, point, margin, floor)
+    margin -= floor.lack if floor is not None else 0.0
     rule = project.supply.margin
     required = None if rule is None else _strictest(shares).required
     flows = _flows(project, solution)
@@ -159,14 +170,16 @@ def compare(
             *_source_steps(project, by_node, shares),
             *point.steps,
         ),
-        margin_steps=_margin_steps(project, by_node, shares, point, margin, required),
+        margin_steps=steps + _rule_steps(project, by_node, shares, margin, required),
         flow_at_20_psi=supply.rated_flow(RATING_PRESSURE),
         adjusted_flow_at_20_psi=supply.rated_flow(RATING_PRESSURE, adjusted=True),
         notes=_sharing_notes(shares)
         + point.notes
+        + _floor_notes(floor, margin)
         + _own_notes(by_node, shares)
         + _range_notes(shares, point.carried),
         states=point.states,
+        floor=floor,
     )
 
 
@@ -281,14 +294,20 @@ def _own_notes(by_node: Mapping[str, NodeSupply], shares: Sequence[SourceShare])
     return tuple(note for share in shares for note in by_node[share.node].notes)
 
 
-def _margin_steps(
-    project: Project,
-    by_node: dict[str, NodeSupply],
-    shares: tuple[SourceShare, ...],
-    point: Point,
-    margin: float,
-    required: float | None,
+def _floor_notes(floor: Floor | None, margin: float) -> tuple[Words, ...]:
+    if floor is None:
+        return ()
+    text = (
+        "Lowered by more than {margin} the supply leaves no pressure at {node}; what a pump could carry "
+        "beyond that is not counted as margin."
+    )
+    return (Words(text, (("margin", max(margin, 0.0), "pressure"), ("node", floor.node, ""))),)
+
+
+def _left_steps(
+    shares: tuple[SourceShare, ...], point: Point, margin: float, floor: Floor | None
 ) -> tuple[Step, ...]:
+    """Return the steps to the margin before the rule, of which ``margin`` is left by the numbers alone."""
     alike = "all supplies lowered alike" if len(shares) > 1 else ""
     if point.held_back:
         main = max(shares, key=lambda share: share.flow)
@@ -299,17 +318,32 @@ def _margin_steps(
         )
     else:
         available, demand = point.available, point.demand
-    words = Words(
-        "{available} − {demand}", (("available", available, "pressure"), ("demand", demand, "pressure"))
+    text = "{available} − ({demand})" if demand < 0 else "{available} − {demand}"
+    words = Words(text, (("available", available, "pressure"), ("demand", demand, "pressure")))
+    if floor is None:
+        return (Step("Margin before the rule", words, margin, "pressure", alike),)
+    values = (("margin", margin, "pressure"), ("lack", floor.lack, "pressure"))
+    note = f"no less than nothing is left at {floor.node}"
+    kept = Step(
+        "Margin before the rule", Words("{margin} − {lack}", values), margin - floor.lack, "pressure", note
     )
-    steps = [Step("Margin before the rule", words, margin, "pressure", alike)]
+    return (Step("Left over by the numbers", words, margin, "pressure", alike), kept)
+
+
+def _rule_steps(
+    project: Project,
+    by_node: dict[str, NodeSupply],
+    shares: tuple[SourceShare, ...],
+    margin: float,
+    required: float | None,
+) -> tuple[Step, ...]:
     if required is None:
-        return tuple(steps)
+        return ()
     strictest = _strictest(shares)
     asked = _margin_of(
         project, by_node[strictest.node], max(strictest.flow, 0.0), strictest.demand_pressure
     )
-    steps += list(asked.steps) if asked is not None else []
+    steps = list(asked.steps) if asked is not None else []
     values = (("margin", margin, "pressure"), ("required", required, "pressure"))
     words = Words("{margin} − {required}", values)
     steps.append(Step("Margin after the rule", words, margin - required, "pressure"))

@@ -122,7 +122,7 @@ def _of_another(
     place = f" at {at}" + (f", {share.node}" if share.node != at else "")
     name = place + (", water runs into it" if share.node in fed_sources(solution) else "")
     lines = _supply_lines(supply, way, _reach(supply, comparison))
-    points = [*_test_points(supply, way), *_share_points(share, demanded, comparison.margin, place)]
+    points = [*_test_points(supply, way), *_share_points(share, demanded, comparison.shift, place)]
     return GraphData(tuple(replace(line, name=line.name + name) for line in lines), tuple(points))
 
 
@@ -254,7 +254,7 @@ def _demand_points(comparison: Comparison) -> list[MarkedPoint]:
         return _whole_points(comparison)
     share = _carried_share(comparison)
     place = f" at {comparison.node}" + (f", {share.node}" if share.node != comparison.node else "")
-    return _share_points(share, comparison.demand_pressure, comparison.margin, place)
+    return _share_points(share, comparison.demand_pressure, comparison.shift, place)
 
 
 def _whole_points(comparison: Comparison) -> list[MarkedPoint]:

@@ -54,7 +54,7 @@ def needed_pump(
     pump is rated at the demand flow itself. It stands behind the principal source, after what is drawn at
     its node, or takes the place of the pump that carries most.
     """
-    missing = -(comparison.margin if comparison.after_rule is None else comparison.after_rule)
+    missing = (comparison.required or 0.0) - comparison.shift  # no pump helps where the main itself ends
     if missing <= 0.0:
         return None
     supply = next(one for one in curves if one.node == comparison.principal)

@@ -229,7 +229,7 @@ class _Reader:
     def _states(self, supply: NodeSupply) -> tuple[PumpState, ...]:
         stages = self.stages
         states = [
-            self._state("demand", stages.solution, supply, stages.comparison.margin),
+            self._state("demand", stages.solution, supply, stages.comparison.shift),
             self._state("actual supply", stages.operating, supply, 0.0),
         ]
         solution = self._overload()
