@@ -67,6 +67,32 @@ from,to,length,kind,size,fittings
 002,T,10,lines,1 1/4,1 tee
 T,S,10,lines,2,1 elbow 90
 """
+ONE_HEAD = """\
+units = "us"
+[project]
+title = "One head"
+date = 2026-11-16
+standard = "NFPA 13 (2022)"
+authority = "Fire marshal"
+[criteria]
+hazard = "ordinary hazard group 1"
+system = "wet"
+design_area = ["H"]
+[sprinkler.A]
+k_factor = 5.6
+minimum_pressure = 7
+coverage_area = 130
+[pipe.p]
+material = "steel schedule 40"
+c_factor = 120
+[network]
+nodes = "nodes.csv"
+pipes = "pipes.csv"
+[hose]
+outside = 0
+source = "invented for this test"
+"""
+"""One head H by density in tables that the test adds, with its supply and margin rule."""
 LAYOUT_PROJECT = HEAD + LAYOUT
 TABLE_PROJECT = HEAD + NETWORK
 

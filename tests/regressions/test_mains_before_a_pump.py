@@ -10,40 +10,18 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
+from project_texts import ONE_HEAD, write
 
 from supplycheck.check import check_project
 from supplycheck.results.records import Result
 from supplycheck.units import PSI
 
-PROJECT = """
-units = "us"
-[project]
-title = "A weak main and a strong pump"
-date = 2026-11-16
-standard = "NFPA 13 (2022)"
-authority = "Fire marshal"
-[criteria]
-hazard = "ordinary hazard group 1"
-system = "wet"
-design_area = ["H"]
-[sprinkler.A]
-k_factor = 5.6
-minimum_pressure = 7
-coverage_area = 130
-[pipe.p]
-material = "steel schedule 40"
-c_factor = 120
-[network]
-nodes = "nodes.csv"
-pipes = "pipes.csv"
+BOOSTER = """
 [device.booster]
 kind = "pump"
 curve = [[0, 90], [100, 85], [200, 60]]
 rated_flow = 100
 rated_pressure = 85
-source = "invented for this test"
-[hose]
-outside = 0
 source = "invented for this test"
 """
 TEST = """
@@ -72,10 +50,7 @@ FLOW = 0.15 * 130  # gpm: density of ordinary hazard group 1 times the area of t
 
 
 def checked(folder: Path, supply: str, rule: str) -> Result:
-    (folder / "project.toml").write_text(PROJECT + supply + rule, encoding="utf-8")
-    (folder / "nodes.csv").write_text(NODES, encoding="utf-8")
-    (folder / "pipes.csv").write_text(PIPES, encoding="utf-8")
-    return check_project(folder / "project.toml")
+    return check_project(write(folder, ONE_HEAD + BOOSTER + supply + rule, NODES, PIPES))
 
 
 def lost(flow: float, length: float, bore: float) -> float:

@@ -13,6 +13,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 import pytest
+from project_texts import ONE_HEAD
 from scipy.optimize import brentq
 
 from supplycheck.check import check_project
@@ -27,31 +28,6 @@ HEAD = (NEED / 5.6) ** 2  # psi
 BRANCH = (10, 1.049)  # ft, in: from J up to the head H
 LEFT, RIGHT = (200, 3.068), (150, 2.067)  # ft, in: from E and from W to J
 
-PROJECT = """
-units = "us"
-[project]
-title = "Two feeds"
-date = 2026-11-16
-standard = "NFPA 13 (2022)"
-authority = "Fire marshal"
-[criteria]
-hazard = "ordinary hazard group 1"
-system = "wet"
-design_area = ["H"]
-[sprinkler.A]
-k_factor = 5.6
-minimum_pressure = 7
-coverage_area = 130
-[pipe.p]
-material = "steel schedule 40"
-c_factor = 120
-[network]
-nodes = "nodes.csv"
-pipes = "pipes.csv"
-[hose]
-outside = 0
-source = "invented for this test"
-"""
 NODES = "tag,elevation,kind,sprinkler\nE,0,supply,\nW,0,supply,\nJ,12,,\nH,20,sprinkler,A\n"
 
 
@@ -101,9 +77,7 @@ def run(
     )
     (folder / "nodes.csv").write_text(NODES, encoding="utf-8")
     (folder / "pipes.csv").write_text(pipes, encoding="utf-8")
-    text = (
-        f'{PROJECT}[supply]\ncompare_at = "{at}"\n{supplies}[supply.margin]\nrule = "fixed"\npressure = 5\n'
-    )
+    text = f'{ONE_HEAD}[supply]\ncompare_at = "{at}"\n{supplies}[supply.margin]\nrule = "fixed"\npressure = 5\n'
     (folder / "project.toml").write_text(text + more, encoding="utf-8")
     return check_project(folder / "project.toml")
 
@@ -282,9 +256,7 @@ def regulated(folder: Path, at: str, setting: float, supplies: str, *, second: b
     pipes += f"w,W,H,{RIGHT[0]},p,{RIGHT[1]},120,,open\n" if second else ""
     (folder / "nodes.csv").write_text(nodes, encoding="utf-8")
     (folder / "pipes.csv").write_text(pipes, encoding="utf-8")
-    text = (
-        f'{PROJECT}[supply]\ncompare_at = "{at}"\n{supplies}[supply.margin]\nrule = "fixed"\npressure = 5\n'
-    )
+    text = f'{ONE_HEAD}[supply]\ncompare_at = "{at}"\n{supplies}[supply.margin]\nrule = "fixed"\npressure = 5\n'
     (folder / "project.toml").write_text(text + VALVE.format(setting=setting), encoding="utf-8")
     return check_project(folder / "project.toml")
 
