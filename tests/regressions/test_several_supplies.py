@@ -28,6 +28,7 @@ HEAD = (NEED / 5.6) ** 2  # psi
 BRANCH = (10, 1.049)  # ft, in: from J up to the head H
 LEFT, RIGHT = (200, 3.068), (150, 2.067)  # ft, in: from E and from W to J
 
+RULE = '[supply.margin]\nrule = "fixed"\npressure = 5\n'
 NODES = "tag,elevation,kind,sprinkler\nE,0,supply,\nW,0,supply,\nJ,12,,\nH,20,sprinkler,A\n"
 
 
@@ -77,7 +78,7 @@ def run(
     )
     (folder / "nodes.csv").write_text(NODES, encoding="utf-8")
     (folder / "pipes.csv").write_text(pipes, encoding="utf-8")
-    text = f'{ONE_HEAD}[supply]\ncompare_at = "{at}"\n{supplies}[supply.margin]\nrule = "fixed"\npressure = 5\n'
+    text = f'{ONE_HEAD}[supply]\ncompare_at = "{at}"\n{supplies}{RULE}'
     (folder / "project.toml").write_text(text + more, encoding="utf-8")
     return check_project(folder / "project.toml")
 
@@ -256,7 +257,7 @@ def regulated(folder: Path, at: str, setting: float, supplies: str, *, second: b
     pipes += f"w,W,H,{RIGHT[0]},p,{RIGHT[1]},120,,open\n" if second else ""
     (folder / "nodes.csv").write_text(nodes, encoding="utf-8")
     (folder / "pipes.csv").write_text(pipes, encoding="utf-8")
-    text = f'{ONE_HEAD}[supply]\ncompare_at = "{at}"\n{supplies}[supply.margin]\nrule = "fixed"\npressure = 5\n'
+    text = f'{ONE_HEAD}[supply]\ncompare_at = "{at}"\n{supplies}{RULE}'
     (folder / "project.toml").write_text(text + VALVE.format(setting=setting), encoding="utf-8")
     return check_project(folder / "project.toml")
 
