@@ -173,7 +173,7 @@ def assemble(
     """
     apart = set_apart(links, base)
     links, base = apart.links, apart.base
-    outflow = np.concatenate([case.outflow, np.zeros(len(apart.valves))])
+    outflow = np.concatenate([case.outflow, np.zeros(len(base) - len(case.outflow))])
     size = size or len(base)
     held = feed.rows[feed.fixed]
     used = np.zeros(len(base), dtype=bool)

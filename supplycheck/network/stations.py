@@ -1,8 +1,10 @@
 """Pressure-reducing valves as links of their own, each at the start of its pipe.
 
 A valve is set to a pressure behind itself, not at the far end of its pipe. For the core a pipe that holds
-one therefore becomes two links with a node between them, as high as the start of the pipe: the valve,
-with the devices named before it, and the pipe with those named after it.
+one therefore becomes links one behind the other, with nodes between them as high as the start of the
+pipe: the devices named before the valve, where there are any, the valve, and the pipe with those named
+after it. The valve's own link holds nothing else, so that what stands before it and behind it are heads
+of the core.
 """
 
 from __future__ import annotations
@@ -11,7 +13,6 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from supplycheck.network.curves import DeviceLaw
 from supplycheck.network.links import LEAST_SLOPE, Links
 from supplycheck.network.records import FloatArray, IntArray
 
@@ -20,8 +21,8 @@ from supplycheck.network.records import FloatArray, IntArray
 class Stations:
     """Links with every pressure-reducing valve set apart, and the valves (v,).
 
-    The first links are those of the pipes, as they were but for their start; the valves come last. ``base``
-    [Pa] holds the nodes behind the valves behind all others. ``valves`` are links, ``pipes`` the links of
+    The first links are those of the pipes, as they were but for their start; the others come last. ``base``
+    [Pa] holds the nodes between them behind all others. ``valves`` are links, ``pipes`` the links of
     the pipes they stand in, ``behind`` the nodes behind them and ``heads`` [Pa] what they are set to.
     """
 
@@ -43,36 +44,65 @@ def set_apart(links: Links, base: FloatArray) -> Stations:
     nothing = np.zeros(0, dtype=np.int64)
     if not places:
         return Stations(links, base, nothing, nothing, nothing, np.zeros(0))
-    count, nodes = len(links), len(base)
+    builder = _Builder(links, base)
+    for place, link, _ in places:
+        builder.valve(place, link)
     pipes = np.array([link for _, link, _ in places], dtype=np.int64)
-    valves, behind = count + np.arange(len(places)), nodes + np.arange(len(places))
-    start = links.start.copy()
-    ahead = np.empty_like(pipes)
-    for row, link in enumerate(pipes):  # the second valve of a pipe stands behind the first
-        ahead[row], start[link] = start[link], behind[row]
-    level = base[links.start[pipes]]
-    one_way = links.one_way.copy()
-    one_way[pipes] = False  # the valve before it lets nothing back
-    more = np.zeros(len(places))
-    apart = replace(
-        links,
-        start=np.concatenate([start, ahead]),
-        end=np.concatenate([links.end, behind]),
-        resistance=np.concatenate([links.resistance, more]),
-        minor=np.concatenate([links.minor, more]),
-        least=np.concatenate([links.least, more + LEAST_SLOPE]),
-        area=np.concatenate([links.area, links.area[pipes]]),
-        one_way=np.concatenate([one_way, np.ones(len(places), dtype=bool)]),
-        devices=_moved(links, [(place, link) for place, link, _ in places], count),
+    heads = base[links.start[pipes]] + np.array([setting for _, _, setting in places])
+    return Stations(
+        builder.links(),
+        np.concatenate([base, builder.level]),
+        np.array(builder.valves, dtype=np.int64),
+        pipes,
+        np.array(builder.behind, dtype=np.int64),
+        heads,
     )
-    heads = level + np.array([setting for _, _, setting in places])
-    return Stations(apart, np.concatenate([base, level]), valves, pipes, behind, heads)
 
 
-def _moved(links: Links, places: list[tuple[int, int]], count: int) -> tuple[tuple[int, DeviceLaw], ...]:
-    """Return every device with its link: the next valve in its pipe (place, link), else the pipe."""
-    moved = []
-    for place, (link, law) in enumerate(links.devices):
-        onward = [row for row, (valve, pipe) in enumerate(places) if pipe == link and valve >= place]
-        moved.append((count + onward[0] if onward else link, law))
-    return tuple(moved)
+class _Builder:
+    """Puts further links and nodes behind those of ``links`` and ``base``."""
+
+    def __init__(self, links: Links, base: FloatArray) -> None:
+        self.old, self.base = links, base
+        self.start = links.start.copy()
+        self.home = [link for link, _ in links.devices]
+        self.one_way = links.one_way.copy()
+        self.further: list[tuple[int, int, int, bool]] = []  # start, end, pipe, one-way
+        self.level: list[float] = []
+        self.valves: list[int] = []
+        self.behind: list[int] = []
+
+    def valve(self, place: int, link: int) -> None:
+        """Set the valve ``place`` of the devices, in the pipe ``link``, behind what is set already."""
+        before = [row for row in range(place) if self.home[row] == link]
+        if before:
+            self._step(link, before, any(self.old.devices[row][1].one_way for row in before))
+        self.valves.append(self._step(link, [place], True))
+        self.behind.append(int(self.start[link]))
+        self.one_way[link] = False  # the valve before it lets nothing back
+
+    def _step(self, link: int, devices: list[int], one_way: bool) -> int:
+        """Return a new link at the start of what is left of ``link``, with ``devices``."""
+        number, node = len(self.old) + len(self.further), len(self.base) + len(self.level)
+        self.further.append((int(self.start[link]), node, link, one_way))
+        self.level.append(float(self.base[self.old.start[link]]))
+        self.start[link] = node
+        for row in devices:
+            self.home[row] = number
+        return number
+
+    def links(self) -> Links:
+        """Return all links, the further ones last."""
+        old, further = self.old, self.further
+        none = np.zeros(len(further))
+        return replace(
+            old,
+            start=np.concatenate([self.start, [one[0] for one in further]]),
+            end=np.concatenate([old.end, [one[1] for one in further]]),
+            resistance=np.concatenate([old.resistance, none]),
+            minor=np.concatenate([old.minor, none]),
+            least=np.concatenate([old.least, none + LEAST_SLOPE]),
+            area=np.concatenate([old.area, old.area[[one[2] for one in further]]]),
+            one_way=np.concatenate([self.one_way, [one[3] for one in further]]),
+            devices=tuple((home, law) for home, (_, law) in zip(self.home, old.devices, strict=True)),
+        )
