@@ -64,7 +64,7 @@ def find_state(assembled: Assembled, start: State | None = None) -> State:
     begin = assembled.start if start is None else start
     if len(assembled.valves):
         if len(problem.floor_rows):
-            return _lowest(problem, begin, lambda p, s: _with_valves(assembled, p, s))
+            return _lowest_with_valves(assembled, problem, begin)
         return _with_valves(assembled, problem, begin)
     return _closed_exactly(problem, begin, _either)
 
@@ -86,8 +86,27 @@ def _sure(problem: Problem, begin: State) -> State:
     return state
 
 
-def _lowest(problem: Problem, begin: State, inner: Solve) -> State:
-    """Return the state at the lowest shift whose least slack is zero, by bracketing."""
+def _lowest_with_valves(assembled: Assembled, problem: Problem, begin: State) -> State:
+    """Return the state at the lowest shift with every pressure-reducing valve in its state.
+
+    With all of them open Newton finds it at once; where none then has more behind it than its setting that
+    is the answer, else the bracketing starts there, which spares it the states in which nothing flows.
+    """
+    count = len(assembled.valves)
+    opened = solve(problem, begin, limit=FAST_LIMIT)
+    if not opened.converged or bool((problem.one_way & (opened.flow < BACKWARDS)).any()):
+        return _lowest(problem, begin, lambda p, s: _with_valves(assembled, p, s))
+    opened = replace(opened, extra=np.zeros(count))
+    wide = _Valves(assembled, np.zeros(count, dtype=bool), np.zeros(count, dtype=bool))
+    if not any(wide.fault(opened, valve) for valve in range(count)):
+        return opened
+    return _lowest(
+        problem, opened, lambda p, s: _with_valves(assembled, p, s), first=float(opened.shift[0])
+    )
+
+
+def _lowest(problem: Problem, begin: State, inner: Solve, first: float | None = None) -> State:
+    """Return the state at the lowest shift whose least slack is zero, by bracketing from ``first`` on."""
     if problem.groups > 1:
         raise NoStateError("numbers", begin)
     bare = replace(problem, floor_rows=problem.floor_rows[:0], floors=problem.floors[:0])
@@ -104,7 +123,7 @@ def _lowest(problem: Problem, begin: State, inner: Solve) -> State:
         return float((state.head[problem.floor_rows] - problem.floors).min())
 
     top = float(problem.floors.max())
-    low = top - float((problem.fixed[problem.moves > 0]).max())
+    low = top - float((problem.fixed[problem.moves > 0]).max()) if first is None else first
     step = max(1e5, 0.1 * abs(top))
     at_low = least_slack(low)
     high, at_high = low, at_low

@@ -154,6 +154,40 @@ def test_devices_beside_a_reducing_valve_keep_their_order(order: tuple[str, ...]
     assert any("prv in pipe b holds" in note for note in solution.notes)
 
 
+@pytest.mark.parametrize("setting", [1.5e5, 3e5, 4e5, 9e5])
+def test_a_pump_before_a_reducing_valve_in_one_pipe_is_as_in_two(setting: float) -> None:
+    """The supply alone is too weak for the heads: only with the pump's gain does the valve have to act."""
+    pump = Device("boost", "pump", (0.0, 0.004, 0.008), (4e5, 3e5, 1e5), "")
+    weak = [SourceCurve("S", 1e5)]
+    levels = (node("A", 0.0), node("B", 20.0, K80))
+    one = system(
+        [node("S"), *levels],
+        [
+            replace(pipe("a", "S", "A", 5, 0.053), devices=("boost", "prv")),
+            pipe("b", "A", "B", 25, 0.0419),
+        ],
+        (pump, prv(setting)),
+    )
+    two = system(
+        [node("S"), node("M"), *levels],
+        [
+            replace(pipe("p", "S", "M", 0.0, 0.053), devices=("boost",)),
+            replace(pipe("a", "M", "A", 5, 0.053), devices=("prv",)),
+            pipe("b", "A", "B", 25, 0.0419),
+        ],
+        (pump, prv(setting)),
+    )
+    ours, expected = (solve_operating(network(made), LoadCase(("B",)), weak) for made in (one, two))
+    assert ours.outflow[ours.node("B")] == pytest.approx(expected.outflow[expected.node("B")], rel=1e-6)
+    assert ours.pressure[ours.node("A")] == pytest.approx(expected.pressure[expected.node("A")], abs=1.0)
+    if setting > 2.2e5:  # 20 m of water are 1.96 bar
+        assert ours.outflow[ours.node("B")] > 0
+        need = {"B": 0.2e5}
+        lowest = [solve_demand(network(made), LoadCase(("B",)), need, weak) for made in (one, two)]
+        assert lowest[0].source_pressure == pytest.approx(lowest[1].source_pressure, abs=1.0)
+        assert lowest[0].outflow[lowest[0].node("B")] == pytest.approx(K80 * 0.2e5**0.5, rel=1e-6)
+
+
 def test_device_curve_is_exact_and_refused_beyond_its_range() -> None:
     curve = Device("bf", "loss", (0.0, 0.002, 0.004), (2e4, 3e4, 5e4), "")
     made = network(line((curve,), devices=("bf",)))
