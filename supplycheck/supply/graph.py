@@ -25,6 +25,7 @@ PointStyle = Literal["test", "demand", "demand with hose", "available", "operati
 _SAMPLES = 25
 _SOLVED = 12
 _MOST_REACH = 3.0
+_MOVED = 1.0  # Pa
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,8 +68,8 @@ def curve_points(
     The supply lines are those of the source whose water comes to the point of comparison, carried there
     with the losses of the demand solution; where pumps stand on the way, the supply is shown without them,
     then the pumps by themselves, then both together as far as the curves go. Test points are carried like
-    the lines. Where several sources give water, every line and point stands at the flow of its own source,
-    and the lines of the others follow: at the point of comparison, or at their own node where their water
+    the lines, and named so where that moves them. Where several sources give water, every line and point
+    stands at the flow of its own source, and the lines of the others follow: at the point of comparison, or at their own node where their water
     cannot come there. Where no sum along a route holds, the line at the point of comparison is solved: all
     supplies together against all that is drawn; each source has its own lines at its own node.
     """
@@ -79,8 +80,8 @@ def curve_points(
         others = comparison.sources
     else:
         supply, path = by_node[start], comparison.carried.route
-        lines = _supply_lines(supply, path, _reach(supply, comparison))
-        points = [*_test_points(supply, path), *_demand_points(comparison)]
+        lines = _supply_lines(supply, path, _reach(supply, comparison), comparison.node)
+        points = [*_test_points(supply, path, comparison.node), *_demand_points(comparison)]
         others = tuple(share for share in comparison.sources if share.node != start)
     for share in others:
         more = _of_another(project, solution, comparison, share, by_node[share.node])
@@ -120,10 +121,25 @@ def _of_another(
     """Return lines and points of a source that is not the one carried to the point of comparison."""
     way, demanded, at = _way(project, solution, comparison, share)
     place = f" at {at}" + (f", {share.node}" if share.node != at else "")
-    name = place + (", water runs into it" if share.node in fed_sources(solution) else "")
-    lines = _supply_lines(supply, way, _reach(supply, comparison))
-    points = [*_test_points(supply, way), *_share_points(share, demanded, comparison.shift, place)]
-    return GraphData(tuple(replace(line, name=line.name + name) for line in lines), tuple(points))
+    into = ", water runs into it" if share.node in fed_sources(solution) else ""
+    lines = _supply_lines(supply, way, _reach(supply, comparison), at)
+    points = [*_test_points(supply, way, at), *_share_points(share, demanded, comparison.shift, place)]
+    return GraphData(
+        tuple(replace(line, name=_placed(line.name, place, at) + into) for line in lines), tuple(points)
+    )
+
+
+def _placed(name: str, place: str, at: str) -> str:
+    """Return ``name`` with its ``place`` " at …", which begins with the node to which it may be carried."""
+    carried = f"carried to {at}"
+    return name + (place.removeprefix(f" at {at}") if name.endswith(carried) else place)
+
+
+def _test_label(curve: SupplyCurve, path: Route, at: str) -> str:
+    """Return ", carried to …" where a reading is shown there with height, losses or devices taken off."""
+    most = curve.tested_flow if math.isfinite(curve.tested_flow) else path.flow
+    moved = (curve.offset, path.loss_at(0.0), path.loss_at(most))
+    return f", carried to {at}" if any(abs(one) >= _MOVED for one in moved) else ""
 
 
 def _way(
@@ -164,13 +180,16 @@ def _reach(supply: NodeSupply, comparison: Comparison) -> float:
     return 1.1 * (max([given, *tested]) or comparison.demand_flow)
 
 
-def _supply_lines(supply: NodeSupply, path: Route, reach: float) -> list[CurveLine]:
+def _supply_lines(supply: NodeSupply, path: Route, reach: float, at: str) -> list[CurveLine]:
     alone = path.without_pumps if path.pumps else path
     if supply.tank is not None:
         lines = [_line(f"{supply.tank.tag}, tank", "tank", supply.curve, alone, reach)]
     else:
         lines = [
-            _line(f"{one.name}, as measured", "measured", one, alone, reach) for one in supply.measured
+            _line(
+                one.name + (_test_label(one, alone, at) or ", as measured"), "measured", one, alone, reach
+            )
+            for one in supply.measured
         ]
         if len(supply.measured) > 1:
             lines.append(_line("low-supply curve", "measured", supply.unadjusted, alone, reach))
@@ -230,14 +249,19 @@ def _demand_line(project: Project, solution: Solution, comparison: Comparison) -
     return CurveLine("demand", "demand", flows, pressures)
 
 
-def _test_points(supply: NodeSupply, path: Route) -> list[MarkedPoint]:
+def _test_points(supply: NodeSupply, path: Route, at: str) -> list[MarkedPoint]:
     alone = path.without_pumps if path.pumps else path
     points = []
     for test, curve in zip(supply.tests, supply.measured, strict=False):  # a tank has no readings
         readings = [(f"{test.tag} static", 0.0, test.static)]
         readings += [(f"{test.tag} residual", one.flow, one.residual) for one in test.points]
         points += [
-            MarkedPoint(name, "test", flow, pressure + curve.offset - alone.loss_at(flow))
+            MarkedPoint(
+                name + _test_label(curve, alone, at),
+                "test",
+                flow,
+                pressure + curve.offset - alone.loss_at(flow),
+            )
             for name, flow, pressure in readings
         ]
     return points

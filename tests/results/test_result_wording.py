@@ -122,8 +122,20 @@ def test_of_a_single_test_the_readings_stand_alone() -> None:
 
 
 def test_the_flow_at_20_psi_is_that_at_the_gauge() -> None:
-    found = _numbers(check_project(FOLDER / "parcel-depot" / "project.toml"))["Flow at 20 psi (1.38 bar)"]
-    assert found.endswith(" gpm at the gauge of the test")
+    """Both are told, and both are past the test, whose residual is above 20 psi."""
+    result = check_project(FOLDER / "office-floor" / "project.toml")
+    numbers = _numbers(result)
+    found = [numbers[f"Flow at 20 psi (1.38 bar), {how}"] for how in ("as measured", "adjusted")]
+    assert all(text.endswith(" L/min at the gauge, beyond the tested flow") for text in found)
+    flows = [float(text.split()[0]) for text in found]
+    assert result.supply.residual is not None and result.supply.residual > 20 * PSI
+    low = next(one for one in result.project.supply.adjustments if one.kind == "low supply").pressure
+    assert low is not None and result.supply.test_flow is not None
+    # The published law Qt × (drop to 20 psi / drop of the test)^(1/1.85), static and residual both lowered.
+    static, drop = result.supply.static, result.supply.static - result.supply.residual
+    for flow, lowered in zip(flows, (0.0, low), strict=True):
+        share = ((static - lowered - 20 * PSI) / drop) ** (1 / 1.85)
+        assert flow == pytest.approx(METRIC.from_si(result.supply.test_flow, "flow") * share, abs=0.06)
 
 
 @pytest.mark.parametrize("name", ["parcel-depot", "boosted-warehouse", "office-floor", "yard-main"])

@@ -124,7 +124,8 @@ def test_every_source_has_its_lines_and_points_at_its_own_flow() -> None:
     solution, curves = solved(project, 30 * PSI), supply_curves(project)
     comparison = compare(project, solution, curves)
     graph = curve_points(project, solution, curves, comparison)
-    assert {line.name for line in graph.lines} == {"T, as measured", "W, as measured at X", "demand"}
+    # The gauge of T stands at 3 ft, node S at −5 ft, X elsewhere again: neither reading is shown as read.
+    assert {line.name for line in graph.lines} == {"T, carried to S", "W, carried to X", "demand"}
     marked = {point.name: point for point in graph.points}
     for share in comparison.sources:
         available, demand = marked[f"available at {share.node}"], marked[f"demand at {share.node}"]
@@ -134,6 +135,22 @@ def test_every_source_has_its_lines_and_points_at_its_own_flow() -> None:
         assert available.pressure - demand.pressure == pytest.approx(comparison.margin, rel=1e-9)
     demand_line = next(line for line in graph.lines if line.style == "demand")
     assert demand_line.flows[-1] == comparison.main_source.flow
+
+
+@pytest.mark.parametrize(
+    ("gauge", "place", "named"),
+    [(-5.0, "S", "T, as measured"), (3.0, "S", "T, carried to S"), (-5.0, "B", "T, carried to B")],
+)
+def test_a_reading_that_is_carried_says_so(gauge: float, place: str, named: str) -> None:
+    """Node S stands at −5 ft, B at 1 ft behind a preventer; a foot of height is 0.433 psi."""
+    project = project_of(Chain(tests=(flow_test(gauge=gauge),), compare_at=place))
+    solution, curves = solved(project, 30 * PSI), supply_curves(project)
+    graph = curve_points(project, solution, curves, compare(project, solution, curves))
+    assert graph.lines[0].name == named
+    static = next(point for point in graph.points if point.name.startswith("T static"))
+    assert static.name.endswith("carried to " + place) == (named != "T, as measured")
+    lifted = 82 - 0.433 * ((1.0 if place == "B" else -5.0) - gauge)
+    assert static.pressure / PSI == pytest.approx(lifted, abs=0.01)
 
 
 def test_no_route_passes_a_check_valve_backwards() -> None:

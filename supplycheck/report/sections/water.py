@@ -133,7 +133,8 @@ def _law_row(
 def _caption(result: Result) -> str:
     """Return what the reader has to know about the graph, of several sources also how they are marked."""
     text = (
-        "The flow axis is linear in flow to the power 1.85, so that a measured supply is a straight line."
+        "The flow axis is linear in flow to the power 1.85: the supply of a test is a straight line on "
+        "this scale where nothing is lost on the way to the point of comparison."
     )
     if any(curve.extrapolated_from is not None for curve in result.curves):
         text = f"Dashed: beyond the greatest flow that was tested. {text}"
@@ -168,9 +169,24 @@ def _numbers(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
         ("Static", f"{show.t(supply.static, 'pressure')}{of_which}"),
         ("Residual", f"{residual}{of_which}"),
         *common,
-        ("Flow at 20 psi (1.38 bar)", f"{show.t(supply.flow_at_20_psi, 'flow')} at the gauge of the test"),
+        *_rated(result, show),
         ("Demand / tested flow", "–" if ratio is None else f"{ratio:.2f}"),
     )
+
+
+def _rated(result: Result, show: Show) -> tuple[tuple[str, str], ...]:
+    """Return the flows at 20 psi at the gauge: as measured, and adjusted where that differs."""
+    supply, title = result.supply, "Flow at 20 psi (1.38 bar)"
+    found = [("as measured", supply.flow_at_20_psi)]
+    steps = [step for step in supply.steps if step.step.endswith("at 20 psi (1.38 bar), adjusted")]
+    found += [("adjusted", step.value) for step in steps[:1]]
+    return tuple((f"{title}, {how}", _rated_text(result, flow, show)) for how, flow in found)
+
+
+def _rated_text(result: Result, flow: float | None, show: Show) -> str:
+    text, tested = f"{show.t(flow, 'flow')} at the gauge", result.supply.test_flow
+    beyond = flow is not None and tested is not None and flow > tested * (1 + 1e-9)
+    return f"{text}, beyond the tested flow" if beyond else text
 
 
 def _flow_there(flow: float | None, show: Show) -> str:
