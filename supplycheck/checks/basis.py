@@ -64,7 +64,7 @@ ASSUMED = About(
 OUTSIDE = About(
     "outside this calculation",
     "freezing, obstructions, seismic bracing, storage arrangements, corrosion",
-    ("not applicable",),
+    ("ask authority",),
     "scope of a hydraulic calculation",
     weight=1,
 )
@@ -177,7 +177,8 @@ def full_calculation(context: CheckContext) -> Finding:
     loops = loops_in(context)
     if not loops:
         return FULL.says("not applicable", "The pipes form no loop.")
-    return FULL.says("ok", "{measured} loops, solved as one network.", measured=count(loops))
+    text = f"{{measured}} loop{'s' * (loops != 1)}, solved as one network."
+    return FULL.says("ok", text, measured=count(loops))
 
 
 def assumed(context: CheckContext) -> Finding:
@@ -201,7 +202,8 @@ def outside(context: CheckContext) -> Finding:
     """One line for all that a hydraulic calculation does not see."""
     del context
     text = "Freezing, obstructions, seismic bracing, storage arrangements and corrosion are not looked at."
-    return OUTSIDE.says("not applicable", text)
+    ask = "Who looks at freezing, obstructions, seismic bracing, storage arrangements and corrosion?"
+    return OUTSIDE.says("ask authority", text, remedy=ask)
 
 
 RULES = (

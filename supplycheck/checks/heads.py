@@ -156,7 +156,7 @@ def discharge(context: CheckContext) -> Finding:
         text = f"{worst.tag} is reported at {{measured}}; K√p of its pressure is {{limit}}."
         do = "Do not use these results: the calculation contradicts itself."
         return DISCHARGE.says("fail", text, measured=measured, limit=limit, tags=(worst.tag,), remedy=do)
-    text = f"Every head discharges K√p; farthest off is {worst.tag}: {{measured}} against {{limit}}."
+    text = f"Every head discharges K√p, all {len(heads)} to within rounding; {worst.tag}: {{measured}}."
     return DISCHARGE.says("ok", text, measured=measured, limit=limit, tags=(worst.tag,))
 
 

@@ -15,8 +15,8 @@ Each rule looks at one thing and reports one state:
 | fail | a limit is broken; what to do stands beside it |
 | ask authority | a person has to decide; the question stands beside it |
 | missing | the check was not run, because its data are not given; the question stands beside it |
-| ok | the limit is kept, with what was measured |
-| not applicable | the rule has no object in this project, or lies outside the calculation |
+| ok | the limit is kept, with what was measured; or all is in order where there is no limit to keep |
+| not applicable | the rule has no object in this project |
 
 Rules on heads and on the design area are also not applicable where no sprinkler is part of the demand.
 

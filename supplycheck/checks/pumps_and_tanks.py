@@ -12,7 +12,7 @@ from supplycheck.supply.beyond import beyond_words
 DURATION = About(
     "duration",
     "whether the time that the supply must last is given",
-    ("ok", "fail", "missing"),
+    ("ok", "fail", "ask authority", "missing"),
     "duration of the hazard class in the adopted standard",
 )
 STORAGE = About(
@@ -56,10 +56,11 @@ def duration(context: CheckContext) -> Finding:
         )
         limit = Measure(figures.duration, "time")
         return DURATION.says("fail", text, measured=measured, limit=limit, remedy=do, source=figures.source)
-    text = "The supply is to last {measured}; a flow test does not show how long it does."
-    if not context.project.supply.tests:
-        text = "The supply is to last {measured}."
-    return DURATION.says("ok", text, measured=measured)
+    if context.project.supply.tests:
+        text = "The supply is to last {measured}; a flow test does not show how long it does."
+        ask = "Who says that the main can give the demand for the whole duration?"
+        return DURATION.says("ask authority", text, measured=measured, remedy=ask)
+    return DURATION.says("ok", "The supply is to last {measured}.", measured=measured)
 
 
 def storage(context: CheckContext) -> Finding:
@@ -148,15 +149,21 @@ def _at(curve: tuple[tuple[float, ...], tuple[float, ...]], wanted: float) -> fl
     return None
 
 
+def _shares(pump: Device, rated: PumpRating) -> tuple[float | None, float | None]:
+    """Return pressure without flow and at 150 % of the rated flow over the rated one, where it is told."""
+    ends = (_at((pump.flows, pump.values), flow) for flow in (0.0, limits.PUMP_FLOW * rated.flow))
+    churn, far = (None if value is None else value / rated.pressure for value in ends)
+    return churn, far
+
+
 def _pump_fault(pump: Device, rated: PumpRating) -> Finding | None:
     curve = (pump.flows, pump.values)
-    churn, far = _at(curve, 0.0), _at(curve, limits.PUMP_FLOW * rated.flow)
+    churn, far = _shares(pump, rated)
     at_rated = _at(curve, rated.flow)
     if churn is None or far is None or at_rated is None:
         ask = f"What does pump {pump.tag} give at no flow and at 150 % of rated flow?"
         text = f"Not run: the curve of {pump.tag} does not reach from no flow to 150 %."
         return PUMP.says("missing", text, tags=(pump.tag,), remedy=ask)
-    churn, far = churn / rated.pressure, far / rated.pressure
     if churn > limits.PUMP_CHURN + limits.ROUND_OFF:
         share, limit, where = churn, limits.PUMP_CHURN, "without flow"
     elif far < limits.PUMP_PRESSURE - limits.ROUND_OFF:
@@ -192,12 +199,19 @@ def pump_curve(context: CheckContext) -> Finding:
         if wrong is not None:
             return wrong
     tags = tuple(one.tag for one in pumps)
+    shares = [_shares(one, context.pump_ratings[one.tag]) for one in pumps]
+    churn = max(share for share, _ in shares if share is not None)
     values = {
-        "churn": Measure(limits.PUMP_CHURN, "percent"),
-        "far": Measure(limits.PUMP_PRESSURE, "percent"),
+        "churn": Measure(churn, "percent"),
+        "most": Measure(limits.PUMP_CHURN, "percent"),
+        "far": Measure(min(share for _, share in shares if share is not None), "percent"),
+        "least": Measure(limits.PUMP_PRESSURE, "percent"),
     }
-    text = f"{some(tags)}: churn at most {{churn}} and at 150 % flow at least {{far}} of rated pressure."
-    return PUMP.says("ok", text, tags=tags, values=values)
+    text = f"{some(tags)}: churn {{churn}} of rated pressure (at most {{most}}), {{far}} at 150 % flow "
+    text += "(at least {least})"
+    text += "." if len(tags) == 1 else "; the worst of all pumps."
+    measured, limit = values["churn"], values["most"]
+    return PUMP.says("ok", text, measured=measured, limit=limit, tags=tags, values=values)
 
 
 RULES = (

@@ -112,7 +112,8 @@ def drop(context: CheckContext) -> Finding:
             remedy=do,
         )
     if share(worst) >= limits.DROP_OLD * (1 - limits.ROUND_OFF):
-        return DROP.says("ok", f"{said}, at least {{old}}.", measured=measured, tags=tags, values=values)
+        text, limit = f"{said}, at least {{limit}}.", values["old"]
+        return DROP.says("ok", text, measured=measured, limit=limit, tags=tags)
     if max(point.flow for point in worst.points) >= context.comparison.demand_flow:
         text = f"{said}, at least {{limit}}, and flowed the full demand."
         return DROP.says("ok", text, measured=measured, limit=limit, tags=tags)

@@ -26,7 +26,9 @@ def scenarios(context: CheckContext) -> Finding:
         return _dry(dry, unsolved)
     if unsolved:
         text = f"No solution for {some(unsolved)}; the table of scenarios says why."
-        ask = f"Must the open heads still get what they need in {some(unsolved)}?"
+        ask = (
+            f"Must the open heads still get what they need in {some(unsolved)}, which could not be solved?"
+        )
         return SCENARIOS.says("ask authority", text, tags=unsolved, remedy=ask)
     told = [(one.share, one) for one in context.scenarios if one.share is not None]
     if not told:
@@ -40,6 +42,7 @@ def scenarios(context: CheckContext) -> Finding:
         text = f"In every scenario each open head gets what it needs. {text}."
         return SCENARIOS.says("ok", text, measured=measured, limit=limit, tags=(worst.head,))
     others = [name for name in low if name != worst.name]
+    at_worst = f" (in {worst.name})" if others else ""
     more = f"; heads are short in {some(others)} too" if others else ""
     return SCENARIOS.says(
         "ask authority",
@@ -47,7 +50,8 @@ def scenarios(context: CheckContext) -> Finding:
         measured=measured,
         limit=limit,
         tags=(worst.head,),
-        remedy=f"Must the open heads still get what they need in {some(low)}?",
+        remedy=f"Must the open heads still get what they need in {some(low)}, where {worst.head} "
+        f"gets {{measured}} of it{at_worst}?",
     )
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Final
 
 from supplycheck.checks import open_questions
@@ -14,7 +14,7 @@ from supplycheck.model.duty import DutyAnswer
 from supplycheck.model.words import Show, Step
 from supplycheck.network import Solution
 from supplycheck.results.balance import balance_of
-from supplycheck.results.display import step_text, value_text
+from supplycheck.results.display import remedy_text, step_text, value_text
 from supplycheck.results.path import hand_check, path_to_supply
 from supplycheck.results.records import (
     CurvePoints,
@@ -38,7 +38,7 @@ from supplycheck.results.records import (
 )
 from supplycheck.results.rows import fitting_rows, node_rows, pipe_rows
 from supplycheck.supply import Comparison, CurveLine, GraphData, MarkedPoint
-from supplycheck.units import UNIT_SETS
+from supplycheck.units import UNIT_SETS, UnitSet
 
 STORAGE: Final = "water storage"
 """The check whose failure means that the supply does not carry the demand for its duration."""
@@ -122,7 +122,7 @@ def assemble(stages: Stages) -> Result:
         points=_points(stages.graph.points),
         scenarios=stages.scenarios,
         findings=stages.findings,
-        open_questions=open_questions(stages.findings),
+        open_questions=_questions(stages.findings, units),
         library_versions=stages.library_versions,
         pumps=tuple(PumpRecord(one, _lines(one.lines), _points(one.points)) for one in stages.pumps),
         tanks=stages.tanks,
@@ -192,6 +192,11 @@ def _and_of_the_rule(comparison: Comparison, show: Show) -> str:
     if not comparison.required or comparison.after_rule is None:
         return ""
     return f", and of what the rule asks for by {show(-comparison.after_rule, 'pressure')}"
+
+
+def _questions(findings: Iterable[Finding], units: UnitSet) -> tuple[str, ...]:
+    """Return the open questions of ``findings`` with their numbers."""
+    return open_questions(replace(one, remedy=remedy_text(one, units)) for one in findings)
 
 
 def _governs(nodes: tuple[NodeRow, ...], governing: str, case: DemandCase, show: Show) -> str:

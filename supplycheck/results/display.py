@@ -39,7 +39,7 @@ STATE_TITLES: Final = MappingProxyType(
         "fail": "Outside a limit",
         "missing": "Not run: data missing",
         "ask authority": "To be put to the authority",
-        "ok": "Within the limit",
+        "ok": "Within a limit, or in order where there is no limit",
         "not applicable": "Not applicable here",
     }
 )
@@ -49,10 +49,13 @@ STATE_WORDS: Final = MappingProxyType(
         "fail": "outside a limit",
         "missing": "not run for want of data",
         "ask authority": "for the authority",
-        "ok": "within the limit",
+        "ok": "within a limit",
         "not applicable": "not applicable",
     }
 )
+
+NO_LIMIT: Final = "in order (no limit to keep)"
+"""What is said of findings that are in order without a value to be held against a limit."""
 
 NOT_AT_ALL: Final = "none: the supply cannot give this flow"
 NONE_LEFT: Final = "none"
@@ -248,8 +251,18 @@ def counts(findings: Iterable[Finding]) -> dict[State, int]:
 
 
 def counts_text(findings: Iterable[Finding]) -> str:
-    """Return how many findings there are of each state, in words."""
-    parts = [f"{number} {STATE_WORDS[state]}" for state, number in counts(findings).items() if number]
+    """Return how many findings there are of each state, in words.
+
+    Only what was measured and held against a limit is said to be within one.
+    """
+    found = list(findings)
+    loose = sum(one.state == "ok" and None in (one.measured, one.limit) for one in found)
+    parts = []
+    for state, number in counts(found).items():
+        groups = [(number, STATE_WORDS[state])]
+        if state == "ok":
+            groups = [(number - loose, STATE_WORDS[state]), (loose, NO_LIMIT)]
+        parts += [f"{many} {words}" for many, words in groups if many]
     return ", ".join(parts) or "no check was run"
 
 

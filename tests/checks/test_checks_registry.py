@@ -71,8 +71,10 @@ def test_open_questions_are_precise_and_weighty_first() -> None:
     assert asked[0].startswith("Does ") and asked[0].endswith("cover this occupancy: sorting of parcels?")
     assert "margin" in asked[1]
     assert "low-supply" in asked[2]
-    assert asked[3] == "At what hour was test T-1 run?"
-    assert len(asked) == 4
+    assert asked[3] == "Who says that the main can give the demand for the whole duration?"
+    assert "freezing" in asked[4]
+    assert asked[5] == "At what hour was test T-1 run?"
+    assert len(asked) == 6
 
 
 def test_open_questions_are_asked_once_and_failures_ask_none() -> None:

@@ -59,5 +59,14 @@ def test_the_worst_head_is_the_least_share_of_its_own_need(campus: Result) -> No
     assert found.tags == (worst,) and row.name in found.text
 
 
+def test_the_question_tells_how_short_the_worst_head_is() -> None:
+    result = check(read_project(EXAMPLES / "gridded-cold-store" / "project.toml"))
+    found = next(one for one in result.findings if one.check == "scenarios")
+    assert found.measured is not None and found.measured.value < 1
+    share = f"{found.measured.value * 100:.1f}%"
+    asked = [one for one in result.open_questions if one.startswith("Must the open heads")]
+    assert len(asked) == 1 and f"{found.tags[0]} gets {share} of it" in asked[0]
+
+
 def test_the_design_area_itself_is_no_scenario(campus: Result) -> None:
     assert [one.name for one in scenario_facts(campus.scenarios)] == ["Mill Lane shut"]

@@ -75,6 +75,13 @@ def test_findings_show_what_needs_action_first() -> None:
     assert counts_text(()) == "no check was run"
 
 
+def test_only_what_was_held_against_a_limit_is_within_one() -> None:
+    kept = Finding("a", "ok", "", Measure(7.0, "pressure"), Measure(8.0, "pressure"))
+    no_limit, not_measured = replace(kept, limit=None), replace(kept, measured=None)
+    assert counts_text([kept, kept]) == "2 within a limit"
+    assert counts_text([kept, no_limit, not_measured]) == "1 within a limit, 2 in order (no limit to keep)"
+
+
 def test_small_words() -> None:
     assert measure_text(None, US) == "–"
     assert tags_text([str(n) for n in range(20)], 3) == "0, 1, 2 and 17 more"
