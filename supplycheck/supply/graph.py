@@ -66,12 +66,13 @@ def curve_points(
     """Return the graph of ``comparison``: supply as measured and as compared, demand, marked points.
 
     The supply lines are those of the source whose water comes to the point of comparison, carried there
-    with the losses of the demand solution; where pumps stand on the way, the supply is shown without them,
-    then the pumps by themselves, then both together as far as the curves go. Test points are carried like
-    the lines, and named so where that moves them. Where several sources give water, every line and point
-    stands at the flow of its own source, and the lines of the others follow: at the point of comparison, or at their own node where their water
-    cannot come there. Where no sum along a route holds, the line at the point of comparison is solved: all
-    supplies together against all that is drawn; each source has its own lines at its own node.
+    with the losses of the demand solution; where pumps stand on the way, the supply is shown without
+    them, then the pumps by themselves, then both together as far as the curves go. Test points are
+    carried like the lines, and named so where that moves them. Where several sources give water, every
+    line and point stands at the flow of its own source, and the lines of the others follow: at the point
+    of comparison, or at their own node where their water cannot come there. Where no sum along a route
+    holds, the line at the point of comparison is solved: all supplies together against all that is drawn;
+    each source has its own lines at its own node.
     """
     by_node = {one.node: one for one in curves}
     start = comparison.carried.supply.node

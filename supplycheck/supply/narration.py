@@ -21,6 +21,10 @@ _FORMS: Final = {
 """Units [SI] of flow, diameter and pitot in which the law of an outlet is printed, and their names."""
 
 
+BETWEEN: Final = "straight in Q^1.85 between its points, the last piece carried on beyond them"
+"""How a curve of several points is read."""
+
+
 def curve_words(curve: SupplyCurve, flow: float) -> Words:
     """Return the piece of the curve on which ``flow`` lies, as a formula with its numbers.
 
@@ -59,6 +63,24 @@ def demand_step(parts: Mapping[str, float]) -> Step:
     values = tuple((f"v{index}", flow, "flow") for index, (_, flow) in enumerate(drawn))
     return Step(
         "Demand flow", Words(formula, values), math.fsum(parts.values()), "flow", "each counted once"
+    )
+
+
+def scaled_step(at: str, demand: float, total: float, flow: float) -> Step:
+    """Return how the flow at the demand pressure was found: every draw scaled alike.
+
+    ``total`` [m³/s] is all that is drawn at the demand, ``flow`` [m³/s] what is drawn where ``demand`` [Pa] is
+    left at node ``at``.
+    """
+    values = (("total", total, "flow"), ("share", flow / total, "percent"))
+    note = f"all outflows and hose scaled alike until the pressure at {at} is the demand pressure"
+    text = "{total} × {share}, where {demand} is left"
+    return Step(
+        "Flow at the demand pressure",
+        Words(text, (*values, ("demand", demand, "pressure"))),
+        flow,
+        "flow",
+        f"total of all supplies as they are; {note}",
     )
 
 
@@ -125,7 +147,7 @@ def rating_steps(supply: NodeSupply, pressure: float) -> tuple[Step, ...]:
 def _projection(curve: SupplyCurve, pressure: float) -> Words:
     values = [("s", curve.pressures[0], "pressure"), ("f", pressure, "pressure")]
     if len(curve.flows) != 2:
-        return Words("where its curve, at the gauge, falls to {f}", tuple(values))
+        return Words(f"where its curve, at the gauge, falls to {{f}}: {BETWEEN}", tuple(values))
     values += [("q", curve.flows[1], "flow"), ("r", curve.pressures[1], "pressure")]
     return Words("{q} × (({s} − {f}) / ({s} − {r}))^(1/1.85)", tuple(values))
 
@@ -168,7 +190,8 @@ def source_steps(supply: NodeSupply, flow: float, units: str, rating: float) -> 
     gauge = measured.lowered(measured.offset)
     if supply.tests:
         value, title = gauge.either_way(flow), f"Curve of {measured.name} at the demand flow"
-        steps.append(Step(title, curve_words(gauge, flow), value, "pressure", "at the gauge"))
+        note = "at the gauge" + (f"; {BETWEEN}" if len(gauge.flows) > 2 else "")
+        steps.append(Step(title, curve_words(gauge, flow), value, "pressure", note))
         words = Words(
             "{gauge} + {gain}", (("gauge", value, "pressure"), ("gain", measured.offset, "pressure"))
         )
@@ -193,13 +216,15 @@ def left_over_step(node: str, available: float, demand: float) -> Step:
 def carried_step(start: tuple[str, float], path: Route, at: str, note: str) -> Step:
     """Return the step from a pressure [Pa], named as in a formula, along ``path`` to node ``at``."""
     name, pressure = start
+    height = "− height {height}" if path.elevation >= 0.0 else "+ height {height}"
+    device = "− devices {device}" if path.device >= 0.0 else "+ devices with pump {device}"
     words = Words(
-        name + "{supply} − height {height} − friction {friction} − devices {device}",
+        f"{name}{{supply}} {height} − friction {{friction}} {device}",
         (
             ("supply", pressure, "pressure"),
-            ("height", path.elevation, "pressure"),
+            ("height", abs(path.elevation), "pressure"),
             ("friction", path.friction, "pressure"),
-            ("device", path.device, "pressure"),
+            ("device", abs(path.device), "pressure"),
         ),
     )
     value = pressure - path.elevation - path.friction - path.device

@@ -102,7 +102,7 @@ _WHERE_THERE: Final = (
     "Lowest head",
     "There",
     "Of its required flow",
-    "Density",
+    "Average density",
     "Over-discharge",
     "Storage lasts",
 )
@@ -119,7 +119,7 @@ def _scenarios(result: Result, show: Show) -> Table:
         words("Lowest head"),
         column("There", show.s("pressure")),
         column("Of its required flow"),
-        column("Density", show.s("density")),
+        column("Average density", show.s("density")),
         column("Over-discharge"),
         column("Storage lasts", "min"),
     )
@@ -146,6 +146,10 @@ def _scenarios(result: Result, show: Show) -> Table:
     if any(row.heads_open for row in result.scenarios):
         note = "With the supply as it is: heads give what the pressure makes them give, not only what is "
         note += "required."
+    if any(row.over_discharge is not None for row in result.scenarios):
+        note += " Over-discharge: total flow of the heads in the area ÷ sum of their required flows − 1."
+    if any(row.delivered_density is not None for row in result.scenarios):
+        note += " Average density: the same total flow ÷ the area of these heads."
     table = Table("Scenarios", columns, rows, note, empty="no scenario was calculated", size=6.6)
     return without_empty(table, *_WHERE_THERE) if rows else table
 

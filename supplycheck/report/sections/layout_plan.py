@@ -113,7 +113,7 @@ def placements(result: Result) -> Section | None:
         f"{which} that were tried, by the margin before the rule. Every one stands in result.json "
         "(design_area.placements) and on the sheet placements of tables.xlsx."
     )
-    table = Table("By the margin that is left", _columns("No.", show), rows, note, size=6.6)
+    table = Table("By margin before the rule", _columns("No.", show), rows, note, size=6.6)
     return Section(ALL_PLACEMENTS, (table,), fresh=True)
 
 

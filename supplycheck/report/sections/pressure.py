@@ -100,7 +100,7 @@ def hand_check(result: Result) -> Section:
         column("F", show.s("length")),
         column("T", show.s("length")),
         column("C or f"),
-        column("Loss per length", show.s("gradient")),
+        column("pf, loss per length", show.s("gradient")),
         column("K at start", show.s("k_factor")),
         column("At end", show.s("pressure")),
     )
@@ -114,8 +114,8 @@ def hand_check(result: Result) -> Section:
             "the formula with its numbers and its result; a flow that joins or splits has a line of its "
             "own before it is counted. Nothing is rounded inside the calculation, so that a line worked "
             "from the printed numbers may differ in the last digit. q flow of an outlet, Q flow in a pipe, "
-            "pf loss per length, Pf friction, Pe height, Pd devices, P pressure; Q at a node is what is "
-            "carried on from there."
+            "pf loss per length, Pf friction in the whole pipe, Pe height, Pd devices, P pressure, as in "
+            "the pipe information; Q at a node is what is carried on from there."
         ),
         Table("The path", columns, path_rows, note, size=6.6),
         steps_table("Line by line", result.hand_check, show),

@@ -95,9 +95,9 @@ def pipe_information(result: Result) -> Section:
     rows = tuple(_pipe(pipe, show, darcy=darcy, second=second) for pipe in shown)
     blocks: list[Block] = [
         Paragraph(
-            "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pt "
-            "pressure at the start and the end, pe change by elevation, pf friction with fittings, pd "
-            "devices: pt start − pt end = pf + pe + pd.",
+            "Written in the direction of flow. L pipe, F fittings as equivalent length, T both; pf "
+            "loss per length; Pt pressure at the start and the end, Pe change by elevation, Pf friction in "
+            "the whole pipe with fittings, Pd devices: Pt start − Pt end = Pf + Pe + Pd.",
             "small",
         ),
         Table("Pipes with flow", _pipe_columns(show, darcy=darcy, second=second), rows, size=6.3),
@@ -199,7 +199,7 @@ def _still_pipes(pipes: Sequence[PipeRow], show: Show) -> Table:
         column("L", show.s("length")),
         column("F", show.s("length")),
         column("C or roughness"),
-        column("pt", show.s("pressure")),
+        column("Pt", show.s("pressure")),
         words("Pipe, role, material, fittings"),
     )
     rows = tuple(
@@ -218,7 +218,7 @@ def _still_pipes(pipes: Sequence[PipeRow], show: Show) -> Table:
         )
         for pipe in pipes
     )
-    note = "pt is the pressure at the second node. Without flow there is no friction."
+    note = "Pt is the pressure at the second node. Without flow there is no friction."
     return Table("Pipes without flow in this solution", columns, rows, note, size=6.0)
 
 
@@ -237,16 +237,16 @@ def _pipe_columns(show: Show, *, darcy: bool, second: bool) -> tuple[Column, ...
         column("F", length),
         column("T", length),
         *law,
-        column("Loss per length", show.s("gradient")),
-        column("pt start", pressure),
-        column("pf", pressure),
-        column("pe", pressure),
-        column("pd", pressure),
-        column("pt end", pressure),
+        column("pf, loss per length", show.s("gradient")),
+        column("Pt start", pressure),
+        column("Pf", pressure),
+        column("Pe", pressure),
+        column("Pd", pressure),
+        column("Pt end", pressure),
         column("Velocity", show.s("velocity")),
     ]
     if second:
-        columns.append(column("pf by the second law", pressure))
+        columns.append(column("Pf by the second law", pressure))
     return tuple(columns)
 
 
