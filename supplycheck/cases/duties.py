@@ -8,6 +8,7 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 from typing import Final
 
+from supplycheck.cases.floors import counted, watched
 from supplycheck.cases.greatest_flow import at_rest, hydrant_rows
 from supplycheck.cases.ground import Ground
 from supplycheck.cases.loads import Draws, load_of, required_of
@@ -126,8 +127,12 @@ def _solve(
     questions = [(draws.load(one.case), required_of(one.case)) for one in open_cases]
     node = ground.project.supply.compare_at
     at = node if all(node in tags for tags in reached.values()) else None
-    summaries = demand_many(ground.network, questions, ground.sources, velocity_pressure=policy, at=at)
-    return list(zip(open_cases, summaries, strict=True)), cut
+    watch = [tag for tag in watched(ground) if all(tag in tags for tags in reached.values())]
+    summaries = demand_many(
+        ground.network, questions, ground.sources, velocity_pressure=policy, at=at, watch=watch
+    )
+    margins = counted(ground, [one.case for one in open_cases], summaries)
+    return list(zip(open_cases, margins, strict=True)), cut
 
 
 def _reached(project: Project, sources: Iterable[str], shut: Iterable[str]) -> set[str]:

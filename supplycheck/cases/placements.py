@@ -8,6 +8,8 @@ from typing import Final
 
 import numpy as np
 
+from supplycheck.cases.floors import counted, watched
+from supplycheck.cases.ground import Ground
 from supplycheck.cases.loads import Draws, required_of
 from supplycheck.demand import Candidates
 from supplycheck.model import DemandCase, Project
@@ -22,24 +24,24 @@ FAVOURABLE: Final = 200
 """Most placements whose real flow is solved to find the most favourable one."""
 
 
-def try_all(
-    project: Project,
-    network: Network,
-    candidates: Candidates,
-    sources: Sequence[SourceCurve],
-    progress: Progress | None,
-) -> Tried:
+def try_all(ground: Ground, candidates: Candidates, progress: Progress | None) -> Tried:
     """Return every placement of ``candidates`` solved; the first of equals counts as the hardest.
 
     Raises :class:`NotConvergedError` where a placement has no solution.
     """
+    project, network, sources = ground.project, ground.network, ground.sources
     cases = candidates.cases
     if not cases:
         return Tried((), None, None, 0, None)
     draws = Draws.of(project)
     loads = [(draws.load(case), required_of(case)) for case in cases]
     policy, at = project.criteria.velocity_pressure, project.supply.compare_at
-    summaries = demand_many(network, loads, sources, progress, velocity_pressure=policy, at=at)
+    watch = watched(ground)
+    summaries = counted(
+        ground,
+        cases,
+        demand_many(network, loads, sources, progress, velocity_pressure=policy, at=at, watch=watch),
+    )
     spots = spots_of(project)
     placements = tuple(
         placement(case, summary, spots) for case, summary in zip(cases, summaries, strict=True)

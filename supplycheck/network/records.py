@@ -91,7 +91,8 @@ class DemandSummary:
     """The short answer of one demand case in a search.
 
     ``source_pressure`` [Pa] at the first source, ``total_flow`` [m³/s], ``shift`` [Pa] as in
-    :class:`Solution`; ``pressure_at`` [Pa] is at the node that was asked about (else at the first source).
+    :class:`Solution`; ``pressure_at`` [Pa] is at the node that was asked about (else at the first source),
+    ``lowest`` [Pa] the least of the nodes that were to be watched.
     """
 
     source_pressure: float
@@ -100,3 +101,4 @@ class DemandSummary:
     governing: str
     iterations: int
     pressure_at: float = math.nan
+    lowest: float = math.inf

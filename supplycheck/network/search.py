@@ -40,6 +40,7 @@ def demand_many(
     *,
     velocity_pressure: bool = False,
     at: str | None = None,
+    watch: Sequence[str] = (),
 ) -> list[DemandSummary]:
     """Return the short answer of :func:`solve_demand` for each of ``cases``, in their order.
 
@@ -51,6 +52,7 @@ def demand_many(
     progress : Called with (cases done, cases in all).
     velocity_pressure : As in :func:`solve_demand`; cases are then solved one by one.
     at : Node whose pressure is wanted in every answer; the first source where it is not given.
+    watch : Nodes whose lowest pressure is wanted in every answer.
 
     Raises
     ------
@@ -59,7 +61,7 @@ def demand_many(
     DomainError
         Where the curve of a supply rises.
     """
-    search = _Search(network, cases, sources, progress, velocity_pressure, at)
+    search = _Search(network, cases, sources, progress, velocity_pressure, at, watch)
     alone = velocity_pressure or any(law.setting is not None for _, law in network.links.devices)
     if alone:
         search.one_by_one(range(len(cases)))
@@ -84,11 +86,13 @@ class _Search:
         progress: Progress | None,
         velocity_pressure: bool,
         at: str | None,
+        watch: Sequence[str],
     ) -> None:
         self.network, self.cases, self.sources = network, cases, sources
         self.progress, self.velocity_pressure = progress, velocity_pressure
         self.feed = read_feed(network, sources, demand=True)
         self.at = int(self.feed.rows[0]) if at is None else network.node_rows[at]
+        self.watch = np.array([network.node_rows[tag] for tag in watch], dtype=np.int64)
         self.asked = [self._rows_asked(load, required) for load, required in cases]
         self.done: dict[int, DemandSummary] = {}
 
@@ -117,13 +121,14 @@ class _Search:
                 solution.governing,
                 solution.iterations,
                 float(solution.pressure[self.at]),
+                float(solution.pressure[self.watch].min(initial=np.inf)),
             )
             self.report()
 
     def split(self, links: Links, shut: BoolArray | None, numbers: Sequence[int]) -> None:
         """Reduce ``links`` to what the cases ``numbers`` ask; solve them, or each part of them so."""
         keep = np.zeros(len(self.network.node_tags), dtype=bool)
-        keep[self.feed.rows] = keep[self.at] = True
+        keep[self.feed.rows] = keep[self.at] = keep[self.watch] = True
         for number in numbers:
             keep[self.asked[number]] = True
         reduced = reduce_links(links, keep, shut).links
@@ -143,7 +148,7 @@ class _Search:
             self.one_by_one(numbers)  # which says what is wrong
             return
         try:
-            bundle = _Bundle.of(self.network, links, cases, self.feed, self.at)
+            bundle = _Bundle.of(self.network, links, cases, self.feed, (self.at, *self.watch.tolist()))
             state = find_coarse(bundle.assembled)
         except NoStateError:
             self.one_by_one(numbers)
@@ -159,13 +164,15 @@ class _Bundle:
     assembled: Assembled
     index: IntArray
     size: int
-    at: int
+    told: tuple[int, ...]
 
     @classmethod
-    def of(cls, network: Network, links: Links, cases: Sequence[Case], feed: Feed, at: int) -> _Bundle:
+    def of(
+        cls, network: Network, links: Links, cases: Sequence[Case], feed: Feed, told: tuple[int, ...]
+    ) -> _Bundle:
         count, nodes = len(cases), len(network.node_tags)
         used = np.zeros(nodes, dtype=bool)
-        used[links.start] = used[links.end] = used[feed.rows] = used[at] = True
+        used[links.start] = used[links.end] = used[feed.rows] = used[list(told)] = True
         for case in cases:
             used |= case.keep()
         rows = np.flatnonzero(used)
@@ -193,11 +200,13 @@ class _Bundle:
         )
         tiled = links.copies(count, index, size)
         keep = whole.keep()
-        keep[feeds.rows] = keep[index[at] + offsets] = True
+        keep[feeds.rows] = True
+        for row in told:
+            keep[index[row] + offsets] = True
         reduced = reduce_links(tiled, keep)
         base = np.tile(network.base[rows], count)
         assembled = assemble(reduced.links, base, whole, feeds, demand=True, size=size)
-        return cls(cases, assembled, index, size, at)
+        return cls(cases, assembled, index, size, told)
 
     def summaries(self, network: Network, feed: Feed, state: State) -> list[DemandSummary]:
         """Return the answer of every case."""
@@ -205,7 +214,9 @@ class _Bundle:
         out = self.assembled.outlet_flow(state)
         source = self.index[feed.rows[0]] + self.size * np.arange(len(self.cases))
         pressure = head[source] - network.base[feed.rows[0]]
-        there = head[self.index[self.at] + self.size * np.arange(len(self.cases))] - network.base[self.at]
+        copies = self.size * np.arange(len(self.cases))
+        there, *watched = (head[self.index[row] + copies] - network.base[row] for row in self.told)
+        lowest = np.minimum.reduce(watched) if watched else np.full(len(self.cases), np.inf)
         ends = np.cumsum([len(case.outlets) for case in self.cases])
         drawn = np.array([case.outflow.sum() for case in self.cases])
         total = drawn + np.diff(np.concatenate([[0.0], np.cumsum(out)])[np.concatenate([[0], ends])])
@@ -218,5 +229,6 @@ class _Bundle:
             slack = head[rows] - network.base[case.floor_rows] - case.floors
             governing = network.node_tags[case.floor_rows[int(np.argmin(slack))]]
             numbers = (float(pressure[place]), float(total[place]), float(shift[place]))
-            answers.append(DemandSummary(*numbers, governing, state.iterations, float(there[place])))
+            told = float(there[place]), float(lowest[place])
+            answers.append(DemandSummary(*numbers, governing, state.iterations, *told))
         return answers

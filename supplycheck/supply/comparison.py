@@ -136,7 +136,7 @@ def compare(
     if at not in solution.node_tags:
         raise DomainError(f"the point of comparison {at} is not a node of the network")
     point = point_of(project, solution, by_node, shares, margin, network)
-    floor = floor_of(project, solution, by_node, shares)
+    floor = floor_of(project, solution, by_node)
     steps = _left_steps(shares, point, margin, floor)
     margin -= floor.lack if floor is not None else 0.0
     rule = project.supply.margin

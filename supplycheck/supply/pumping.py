@@ -18,6 +18,7 @@ from supplycheck.model import DemandCase, Device, Pipe, Project
 from supplycheck.network import LoadCase, Network, solve_operating
 from supplycheck.network.records import Solution
 from supplycheck.supply.comparison import Comparison
+from supplycheck.supply.floor import lost_in
 from supplycheck.supply.graph import CurveLine, MarkedPoint
 from supplycheck.supply.pump import PumpRating
 from supplycheck.supply.route import Route, no_flow_pressure, solved_route
@@ -216,15 +217,7 @@ class _Reader:
         return max(found, default=math.nan)
 
     def _suction(self, solution: Solution, flow: float) -> float:
-        return float(solution.pressure[solution.node(self.pipe.start)]) - self._lost_before(flow)
-
-    def _lost_before(self, flow: float) -> float:
-        total = 0.0
-        for device in self.before:
-            sign = -1.0 if device.kind == "pump" else 1.0
-            if device.kind != "pressure-reducing valve" and device.flows:
-                total += sign * float(Curve(device.flows, device.values).carried_on(flow)[0])
-        return total
+        return float(solution.pressure[solution.node(self.pipe.start)]) - lost_in(self.before, flow)
 
     def _states(self, supply: NodeSupply) -> tuple[PumpState, ...]:
         stages = self.stages
@@ -302,7 +295,7 @@ class _Reader:
         way = solved_route(project.system, solution, supply.node, self.pipe.start, demand.flow, exponent)
 
         def suction(flow: float) -> float:
-            return supply.curve.pressure_at(flow + drawn) - way.loss_at(flow) - self._lost_before(flow)
+            return supply.curve.pressure_at(flow + drawn) - way.loss_at(flow) - lost_in(self.before, flow)
 
         end = curve.flows[-1]
         flows = tuple(end * (index / _SAMPLES) ** (1 / exponent) for index in range(_SAMPLES + 1))

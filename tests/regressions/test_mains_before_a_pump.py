@@ -85,3 +85,47 @@ def test_a_tank_is_not_lowered_by_a_bad_day(tmp_path: Path) -> None:
     losses = lost(FLOW, 120, 1.380) + lost(FLOW, 4, 2.067) + lost(FLOW, 30, 2.067) + 20 * 0.433
     head = (FLOW / 5.6) ** 2
     assert result.margin.pressure / PSI == pytest.approx(46.2 * 0.433 + pump - losses - head, abs=0.05)
+
+
+@pytest.mark.parametrize("where", ["lead,S,P,120,p,1 1/4,meter\nstation,P,Q,4,p,2,booster", ""])
+def test_what_stands_before_the_pump_in_its_pipe_counts_before_it(tmp_path: Path, where: str) -> None:
+    """A meter of 6 psi before the pump, in the lead or in the pump's own pipe, leaves 6 psi less."""
+    old = "lead,S,P,120,p,1 1/4,\nstation,P,Q,4,p,2,booster"
+    pipes = PIPES.replace(old, where or old.replace("booster", "meter;booster"))
+    meter = '[device.meter]\nloss = 6\nsource = "invented for this test"\n'
+    text = ONE_HEAD + BOOSTER + meter + TEST + '[supply.margin]\nrule = "none"\n'
+    result = check_project(write(tmp_path, text, NODES, pipes))
+    assert result.margin.pressure / PSI == pytest.approx(left_before_the_pump() - 6, abs=0.01)
+    assert result.margin.limited_at == "P"
+
+
+def test_an_idle_tank_elsewhere_does_not_lift_the_main(tmp_path: Path) -> None:
+    """A roof tank behind a check valve gives nothing while the pump runs."""
+    tank = '[[supply.tank]]\ntag = "R"\nnode = "R"\nwater_level = 30\nvolume = 5000\n'
+    nodes = NODES + "R,30,supply,\n"
+    pipes = PIPES.replace("devices\n", "devices,valve\n").replace("1/4,\n", "1/4,,\n")
+    pipes = pipes.replace("booster\n", "booster,\n").replace("30,p,2,\n", "30,p,2,,\n")
+    pipes += "drop,R,Q,40,p,2,,check\n"
+    test = TEST.replace("static", "node = \"S\"\nstatic")
+    supply = f'[supply]\ncompare_at = "S"\n{test}{tank}[supply.margin]\nrule = "none"\n'
+    result = check_project(write(tmp_path, ONE_HEAD + BOOSTER + supply, nodes, pipes))
+    assert result.margin.pressure / PSI == pytest.approx(left_before_the_pump(), abs=0.01)
+    assert result.margin.limited_at == "P"
+
+
+def test_placements_are_ranked_by_the_margin_that_counts(tmp_path: Path) -> None:
+    """By the numbers the high head leaves less; of the weak main the low and thirsty one does."""
+    nodes = NODES + "L,12,sprinkler,B\n"
+    pipes = PIPES + "side,Q,L,10,p,2,\n"
+    low = "[sprinkler.B]\nk_factor = 14\nminimum_pressure = 25\ncoverage_area = 130\n"
+    found = {}
+    for head in ("H", "L"):
+        text = ONE_HEAD.replace('design_area = ["H"]', f'design_area = ["{head}"]')
+        text += BOOSTER + low + TEST + '[supply.margin]\nrule = "none"\n'
+        folder = tmp_path / head
+        folder.mkdir()
+        found[head] = check_project(write(folder, text, nodes, pipes))
+    margins = {head: result.margin.pressure for head, result in found.items()}
+    assert margins["L"] < margins["H"]
+    for head, result in found.items():
+        assert result.design_area.placements[0].margin == pytest.approx(margins[head], abs=10.0)
