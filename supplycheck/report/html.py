@@ -73,7 +73,6 @@ pre {{ white-space: pre-wrap; overflow-wrap: anywhere; font-size: .8em; backgrou
 .blank {{ border-bottom: 1px solid {SLATE}; min-height: 2em; color: {SLATE}; }}
 .kept {{ white-space: nowrap; }}
 svg {{ max-width: 100%; height: auto; }}
-@media (max-width: 45em) {{ svg {{ max-width: none; width: 46em; }} }}
 @media (min-width: 50em) {{ dl.two {{ grid-template-columns: max-content 1fr max-content 1fr; }} }}
 @media print {{
   body {{ font-size: 8.5pt; line-height: 1.35; max-width: none; padding: 0; }}

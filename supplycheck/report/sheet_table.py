@@ -99,8 +99,8 @@ def put_table(sheets: Sheets, table: Table) -> None:
 
 
 def _ends_alone(sheets: Sheets, left: list[_Laid], grid: _Grid, below: float) -> bool:
-    """True where the last row, or the note, would stand alone on the next page if the rows went on here."""
-    if len(left) > 2:
+    """True where fewer than :data:`KEPT` rows, or the note, would stand alone on the next page."""
+    if len(left) > KEPT:
         return False
     return sheets.y - sum(_row_height(one, grid) for one in left) - below < sheets.bottom
 

@@ -166,6 +166,10 @@ def test_placement_map_marks_the_governing_and_the_runner_up() -> None:
     words = [item.text for item in drawing.items if isinstance(item, Label)]
     assert "governing 58.3 psi" in words
     assert "runner-up 57.5 psi" in words
+    assert {"governing", "runner-up"} <= set(words)  # in the legend
+    rings = [item for item in drawing.items if isinstance(item, Dot) and item.fill is None]
+    assert len(rings) == 4
+    assert {item.branch_line for item in result.nodes if item.branch_line} & set(words)
     dots = [item for item in drawing.items if isinstance(item, Dot) and item.fill]
     assert len(dots) == len(result.design_area.placements) + 5
 
@@ -188,7 +192,7 @@ def test_what_names_a_ring_of_the_map_stands_clear_of_every_ring(apart: float) -
     for name in names:
         wide = text_width(name.text, name.size, bold=True)
         left = name.x - {"start": 0.0, "middle": wide / 2, "end": wide}[name.anchor]
-        for ring in rings[:-1]:  # the last one is that of the legend
+        for ring in rings[:-2]:  # the last two are those of the legend
             across = max(left - ring.x, ring.x - left - wide, 0.0)
             along = max(name.y - 0.24 * name.size - ring.y, ring.y - name.y - 0.8 * name.size, 0.0)
             assert math.hypot(across, along) >= ring.radius + ring.line / 2 + 1.0

@@ -15,6 +15,7 @@ from supplycheck.units import UnitSet
 _ROW: Final = 15.0
 _NAMES: Final = 178.0
 _ENDS: Final = 88.0
+_SEEN: Final = 100.0  # Pa
 
 Scale = Callable[[float], float]
 
@@ -26,6 +27,7 @@ _PARTS: Final = (
     ("elevation", SAND),
     ("devices", CLAY),
 )
+_GAIN: Final = "gain, to the left"
 
 
 def pressure_bars(
@@ -60,7 +62,12 @@ def pressure_bars(
         y -= _ROW
     items += _available(path, first, result, units, x(result.supply.available_pressure), (width, height))
     items.sort(key=lambda item: isinstance(item, Label) and item.behind is not None)  # texts over the line
-    return Drawing(width, height, (*items, *_key(width)), "pressure needed along the path")
+    gains = any(_is_gain(part) for step in path for part in (step.elevation, step.device))
+    return Drawing(width, height, (*items, *_key(width, gains=gains)), "pressure needed along the path")
+
+
+def _is_gain(part: float) -> bool:
+    return finite(part) < -_SEEN
 
 
 def _available(
@@ -115,30 +122,53 @@ def _step_row(number: int, step: PathStep, x: Scale, y: float, units: UnitSet) -
     ]
     at = finite(step.pressure_start)
     reach = x(at)
+    half = (_ROW - 5) / 2 if any(map(_is_gain, parts)) else 0.0  # gains stand below what they run back over
     for (_, colour), part in zip(_PARTS[1:], parts, strict=True):
         start, end = sorted((x(at), x(at + part)))
         if end - start > 0.05:
-            outline = INK if part < 0 else None
-            items.append(Box(start, y + 2, end - start, _ROW - 5, colour, outline, 0.6))
+            if _is_gain(part):
+                items += _hatched(start, y + 2, end - start, half)
+            else:
+                items.append(Box(start, y + 2 + half, end - start, _ROW - 5 - half, colour))
         at += part
         reach = max(reach, end)
     left = x(step.pressure_start)
     items.append(Line(((left, y + 2), (left, y + _ROW)), SLATE, 0.5))
-    items.append(
-        Label(reach + 4, y + 3.5, units.text(step.pressure_end, "pressure"), 6.6, behind="#ffffff")
-    )
+    items.append(_end_label(step, x, y, reach, units))
     return items
 
 
-def _key(width: float) -> list[Item]:
+def _end_label(step: PathStep, x: Scale, y: float, reach: float, units: UnitSet) -> Label:
+    """Return the pressure at the end of a segment; after a gain left of the bar, where the value lies."""
+    text, end = units.text(step.pressure_end, "pressure"), x(step.pressure_end)
+    if reach - end > 1.0 and end - 6 - text_width(text, 6.6) > x(0.0):
+        return Label(end - 4, y + 3.5, text, 6.6, "end", behind="#ffffff")
+    return Label(reach + 4, y + 3.5, text, 6.6, behind="#ffffff")
+
+
+def _hatched(left: float, bottom: float, width: float, height: float) -> list[Item]:
+    """Return a box with slanting lines: a gain, told from a loss without colour."""
+    items: list[Item] = [Box(left, bottom, width, height, "#ffffff", INK, 0.5)]
+    at = left
+    while at + height <= left + width:
+        items.append(Line(((at, bottom), (at + height, bottom + height)), INK, 0.5))
+        at += 3.0
+    return items
+
+
+def _key(width: float, *, gains: bool) -> list[Item]:
     items: list[Item] = []
     x = 0.0
     for name, colour in _PARTS:
         items.append(Box(x, 3, 9, 8, colour, INK, 0.4))
         items.append(Label(x + 13, 4.2, name, 6.8))
         x += 26 + text_width(name, 6.8)
+    if gains:
+        items += [*_hatched(x, 4, 12, 6), Label(x + 16, 4.2, _GAIN, 6.8)]
+        x += 29 + text_width(_GAIN, 6.8)
     items.append(Line(((x, 7), (x + 16, 7)), INK, 1.3, (5.0, 2.0)))
-    items.append(Label(min(x + 20, width), 4.2, "available at the demand flow", 6.8))
+    told = "available" if gains else "available at the demand flow"
+    items.append(Label(min(x + 20, width), 4.2, told, 6.8))
     return items
 
 

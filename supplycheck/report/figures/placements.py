@@ -11,7 +11,7 @@ from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Taken
 from supplycheck.report.figures.outline import Window, clipped
 from supplycheck.report.figures.plan import Scale, places_of
-from supplycheck.report.theme import CLAY, INK, PAPER, RULE, SLATE, text_width
+from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, RULE, SLATE, text_width
 from supplycheck.results.records import Placement, Result
 from supplycheck.units import UnitSet
 
@@ -48,7 +48,7 @@ def placement_map(result: Result, units: UnitSet, size: tuple[float, float]) -> 
         if cut is not None:
             items.append(Line((scale.at(*cut[0]), scale.at(*cut[1])), RULE, 0.4))
     items += _spots(spots, result, scale, units, (size[0], height))
-    items += _key(spots, units, size[0])
+    items += _key(spots, units, size[0], runner_up=area.runner_up is not None)
     return Drawing(size[0], height, tuple(items), "required pressure by placement of the design area")
 
 
@@ -97,7 +97,7 @@ class _Named:
 
 
 def _rings(result: Result, scale: Scale, units: UnitSet, radius: float) -> tuple[list[Item], list[_Named]]:
-    """Return the rings round the governing placement and the runner-up; one for both at one place."""
+    """Return the rings round the governing placement and the runner-up, one in the other at one place."""
     area = result.design_area
     chosen = [(area.governing, "governing", radius + 3.2), (area.runner_up, "runner-up", radius + 2.2)]
     rings: list[Item] = []
@@ -107,9 +107,10 @@ def _rings(result: Result, scale: Scale, units: UnitSet, radius: float) -> tuple
             continue
         x, y = scale.at(spot.x, spot.y)
         over = [one.reach for one in named if math.hypot(x - one.x, y - one.y) < reach + one.reach]
-        if not over:
-            rings.append(Dot(x, y, reach, None, PAPER, 3.0))
-            rings.append(Dot(x, y, reach, None, CLAY if word == "governing" else INK, 1.8))
+        if any(math.hypot(x - one.x, y - one.y) < 2.0 for one in named):
+            reach = max(over) + 2.4
+        governs = word == "governing"
+        rings.append(Dot(x, y, reach, None, CLAY if governs else INK, 1.8 if governs else 1.0))
         text = f"{word} {units.text(spot.required_pressure, 'pressure')}"
         named.append(_Named(x, y, max([reach, *over]), text))
     return rings, named
@@ -160,10 +161,29 @@ def _spots(
             found = taken.place(x, y, text, 5.6, gap=radius + 2.0, reach="beside")
             if found:
                 labels.append(Label(found[0], found[1], text, 5.6, found[2], colour=SLATE))
+    labels += _line_names(result, scale, taken)
     return [*items, *labels, *rings]
 
 
-def _key(spots: list[Placement], units: UnitSet, width: float) -> list[Item]:
+def _line_names(result: Result, scale: Scale, taken: Taken) -> list[Item]:
+    """Return the tag of each branch line at one of its ends, where there is room."""
+    nodes = places_of(result)
+    ends: dict[str, list[tuple[float, float]]] = {}
+    for node in result.nodes:
+        at = nodes.get(node.tag)
+        if node.branch_line and at is not None and scale.window.holds(*at):
+            ends.setdefault(node.branch_line, []).append(at)
+    items: list[Item] = []
+    for tag, places in ends.items():
+        for at in (min(places), max(places)):
+            found = taken.place(*scale.at(*at), tag, 5.6, gap=3.0, reach="beside")
+            if found:
+                items.append(Label(found[0], found[1], tag, 5.6, found[2], colour=PETROL))
+                break
+    return items
+
+
+def _key(spots: list[Placement], units: UnitSet, width: float, *, runner_up: bool) -> list[Item]:
     bounds = _classes(spots)
     items: list[Item] = [Label(0, 8, f"required pressure, {units.symbol('pressure')}", 6.8, colour=SLATE)]
     x = text_width("required pressure, L/min", 6.8) + 14
@@ -172,6 +192,9 @@ def _key(spots: list[Placement], units: UnitSet, width: float) -> list[Item]:
         items.append(Dot(x + 4, 10.4, 4.0, shade, INK, 0.4))
         items.append(Label(x + 11, 8, text, 6.4))
         x += 22 + text_width(text, 6.4)
-    items.append(Dot(min(x + 4, width - 60), 10.4, 4.4, None, CLAY, 1.6))
-    items.append(Label(min(x + 12, width - 52), 8, "governing", 6.4))
+    x = min(x, width - 52)
+    rings = [("governing", CLAY, 1.8), ("runner-up", INK, 1.0)]
+    for place, (word, colour, line) in enumerate(rings if runner_up else rings[:1]):
+        y = 13.0 - 11.0 * place if runner_up else 8.0
+        items += [Dot(x + 4, y + 2.4, 3.8, None, colour, line), Label(x + 12, y, word, 6.4)]
     return items

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from types import MappingProxyType
 from typing import Final
 
@@ -83,16 +84,20 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
                 "Required pressure by placement of the design area",
                 drawn,
                 f"{area.tried} placements tried; each dot stands at the centre of its heads. "
-                "Stretched to the width, not to scale.",
+                "Stretched to the width, not to scale. At the ends of lines: their tags.",
             )
         )
     chosen = [("governing", area.governing), ("runner-up", area.runner_up)]
     rows = tuple(_row(word, one, show) for word, one in chosen if one is not None)
     if area.most_favourable is not None:
-        rows = (*rows, _favourable_row(area.most_favourable, show))
+        rows = (*rows, _favourable_row(area.most_favourable, area.placements, show))
     note = "How they were found: basis of design." if area.mode == "search" else area.statement
     if len(area.placements) > len(chosen):
         note += f" The others stand under “{ALL_PLACEMENTS}”."
+    if area.runner_up is not None and len(area.placements) > len(chosen):
+        note += (
+            " Runner-up: the next that differs; mirror images and others that ask the same are left out."
+        )
     blocks.append(Table("Placements compared", _columns("Placement", show), rows, note))
     return blocks
 
@@ -130,11 +135,26 @@ def _columns(first: str, show: Show) -> tuple[Column, ...]:
     )
 
 
-def _favourable_row(best: Favourable, show: Show) -> Row:
-    """What really flows there; no demand is compared, so those columns stay empty."""
-    flow, count = show.n(best.flow, "flow"), str(len(best.heads))
-    tags = tags_text(best.heads, 40)
-    return Row(("most favourable", best.label, "–", f"{flow} really", "–", "–", count, tags))
+def _favourable_row(best: Favourable, tried: tuple[Placement, ...], show: Show) -> Row:
+    """Return the placement as it was tried, and what flows there with the supply as it is."""
+    same = next((one for one in tried if set(one.heads) == set(best.heads)), None)
+    flow = show.n(best.flow, "flow")
+    note = f"{flow} {show.s('flow')} with the actual supply"
+    if same is not None:
+        return replace(_row("most favourable", same, show), note=note)
+    return Row(
+        (
+            "most favourable",
+            best.label,
+            "–",
+            "–",
+            "–",
+            "–",
+            str(len(best.heads)),
+            tags_text(best.heads, 40),
+        ),
+        note=note,
+    )
 
 
 def _row(word: str, one: Placement, show: Show) -> Row:
