@@ -163,7 +163,7 @@ def reducing(context: CheckContext) -> Finding:
     """
     standing = no_flow_pressures(context)
     valves = [
-        (standing[pipe.start], setting, device, pipe)
+        (standing[pipe.start] + _churn_before(context, pipe, tag), setting, device, pipe)
         for pipe in context.project.system.pipes
         for tag in pipe.devices
         for device in (context.devices[tag],)
@@ -180,9 +180,15 @@ def reducing(context: CheckContext) -> Finding:
         never = tuple(one.tag for before, held, one, _ in valves if before < held)
         do = "It never reduces the pressure: lower its setting, or leave it out."
         return REDUCING.says("fail", f"{text}.", measured=measured, limit=limit, tags=never, remedy=do)
-    open_there = _stands_open(context, pipe, setting)
+    open_there = not _churn_before(context, pipe, device.tag) and _stands_open(context, pipe, setting)
     text += " and stands fully open at the design flow." if open_there else "."
     return REDUCING.says("ok", text, measured=measured, limit=limit, tags=(device.tag,))
+
+
+def _churn_before(context: CheckContext, pipe: Pipe, tag: str) -> float:
+    """Return what pumps named before the device ``tag`` add in its pipe without flow [Pa]."""
+    before = [context.devices[one] for one in pipe.devices[: pipe.devices.index(tag)]]
+    return sum(max(one.values, default=0.0) for one in before if one.kind == "pump")
 
 
 def _stands_open(context: CheckContext, pipe: Pipe, setting: float) -> bool:
