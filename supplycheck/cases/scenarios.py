@@ -111,6 +111,7 @@ class _Reader:
             dry=dry,
             beyond=beyond_curves(self.project.system.devices, solution),
             besides=named.besides,
+            shares=_shares(solution),
         )
 
     def _needs(self, heads: Sequence[str]) -> tuple[float | None, ...]:
@@ -129,6 +130,12 @@ class _Reader:
 def _flow(value: float) -> float:
     """Return ``value`` [m³/s]; zero where it is what the solver left."""
     return value if abs(value) > AT_REST else 0.0
+
+
+def _shares(solution: Solution) -> tuple[tuple[str, float], ...]:
+    """Return what each of several supplies gives [m³/s]; nothing for a single one."""
+    flows = tuple(map(_flow, solution.source_flow.tolist()))
+    return tuple(zip(solution.source_tags, flows, strict=True)) if len(flows) > 1 else ()
 
 
 def _what(scenario: Scenario) -> str:

@@ -134,6 +134,9 @@ def size(context: CheckContext) -> Finding:
 def shape(context: CheckContext) -> Finding:
     """Heads on each line against length over spacing; a line taken whole can give no more."""
     criteria = context.project.criteria
+    if context.european and criteria.design_area == "search":
+        text = "1.2√A is asked by NFPA 13 only; areas √A along the lines, whole lines and pairs were tried."
+        return SHAPE.says("not applicable", text)
     if context.european or criteria.shape_factor <= 0:
         return SHAPE.says("not applicable", "1.2√A along the lines is asked by NFPA 13 only.")
     on_line: dict[str, list[str]] = defaultdict(list)

@@ -7,6 +7,7 @@ import math
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, flow, pressure
+from supplycheck.checks.water_supply import floor_words
 from supplycheck.findings import Finding, Measure
 from supplycheck.supply.pumping import PumpAnswer, PumpState
 
@@ -21,7 +22,7 @@ MAIN = About(
     "main at the greatest pump flow",
     "pressure left in the main when a pump gives 150 % of its rated flow, against the floor of the main",
     ("ok", "fail", "ask authority", "missing", "not applicable"),
-    "practice of water utilities, no source (20 psi); the floor given by the project",
+    "floor given by the project, else assumed: 20 psi by practice of water utilities, no source",
     weight=3,
 )
 DISCHARGE = About(
@@ -118,7 +119,7 @@ def main(context: CheckContext) -> Finding:
     measured, allowed, values = pressure(state.main), pressure(limit), {"flow": flow(state.flow)}
     text, tags = f"{{measured}} is left in the main when {pump.tag} gives {{flow}}", (pump.tag,)
     if state.main >= limit - limits.ROUND_OFF * abs(limit):
-        text += "; the floor is {limit}."
+        text += f"; {floor_words(given)} {{limit}}."
         return MAIN.says("ok", text, measured=measured, limit=allowed, values=values, tags=tags)
     if given is None:
         ask = "How much pressure must stay in the main when the pump gives 150 % of its rated flow?"

@@ -14,6 +14,12 @@ INTO_SUPPLY = About(
     ("ok", "ask authority", "not applicable"),
     "common practice, no source: check valves keep water from running back into a public main or a tank",
 )
+APART = About(
+    "mains tested apart",
+    "where mains are tested at different nodes, whether one draws down the other",
+    ("ask authority", "not applicable"),
+    "reviewers' practice, no source: two taps of one network are not two independent supplies",
+)
 
 
 def into_supply(context: CheckContext) -> Finding:
@@ -60,4 +66,18 @@ def _asked(context: CheckContext, tags: tuple[str, ...]) -> str:
     )
 
 
-RULES = (Rule(INTO_SUPPLY, into_supply),)
+def apart(context: CheckContext) -> Finding:
+    """Each main is read by its own test; that none draws down another was not measured."""
+    tests = {test.node: test.tag for test in context.project.supply.tests}
+    if len(tests) < 2:
+        return APART.says("not applicable", "No two mains are tested at different nodes.")
+    where = some(tests)
+    return APART.says(
+        "ask authority",
+        f"The mains at {where} are taken as independent: what one gives does not lower the other.",
+        tags=tuple(tests.values()),
+        remedy=f"Do the mains at {where} affect one another: was one flowing while the other was tested?",
+    )
+
+
+RULES = (Rule(INTO_SUPPLY, into_supply), Rule(APART, apart))

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Final
+
 from supplycheck.checks import limits
 from supplycheck.checks.context import CheckContext
 from supplycheck.checks.rule import About, Rule, pressure, some
@@ -22,6 +24,10 @@ SPRINKLER_MAXIMUM = About(
     ("ok", "fail", "not applicable"),
     "listing of the sprinkler",
 )
+
+
+_TAKEN: Final = "supplies as measured, no loss taken off"
+"""What makes the pressure the highest there can be, and another than that of the adjusted supply."""
 
 
 def no_flow_pressures(context: CheckContext) -> dict[str, float]:
@@ -60,7 +66,7 @@ def no_flow(context: CheckContext) -> Finding:
     worst = max(pressures, key=lambda tag: pressures[tag])
     over = [tag for tag, value in pressures.items() if value > limit * (1 + limits.ROUND_OFF)]
     measured, allowed = pressure(pressures[worst]), pressure(limit)
-    text = f"Without flow {{measured}} stands at {worst}; components "
+    text = f"Without flow {{measured}} stands at {worst} ({_TAKEN}); components "
     if not over:
         return NO_FLOW.says(
             "ok", f"{text}stand {{limit}}.", measured=measured, limit=allowed, tags=(worst,)

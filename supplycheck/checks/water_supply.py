@@ -35,7 +35,7 @@ FLOOR = About(
     "pressure left in the main",
     "pressure in the main at the demand flow against its floor (20 psi by practice)",
     ("ok", "fail", "ask authority", "missing", "not applicable"),
-    "practice of water utilities, no source; the floor given by the project",
+    "floor given by the project, else assumed: 20 psi by practice of water utilities, no source",
     weight=3,
 )
 CARRIED = About(
@@ -187,6 +187,11 @@ def left_in_main(context: CheckContext) -> tuple[float | None, str]:
     return min(left, default=(None, ""))
 
 
+def floor_words(given: float | None) -> str:
+    """Return how a floor that is kept is named: of the project, or assumed."""
+    return "the floor is" if given is not None else "the project gives no floor, assumed is"
+
+
 def floor(context: CheckContext) -> Finding:
     """The floor of the project; where none is given, 20 psi by practice."""
     if not context.project.supply.tests:
@@ -200,7 +205,9 @@ def floor(context: CheckContext) -> Finding:
     allowed = pressure(limit)
     measured: Measure | None = pressure(left)
     if left >= limit - limits.ROUND_OFF * abs(limit):
-        text = f"{{measured}} is left in the main{where} at the demand flow; the floor is {{limit}}."
+        text = (
+            f"{{measured}} is left in the main{where} at the demand flow; {floor_words(given)} {{limit}}."
+        )
         return FLOOR.says("ok", text, measured=measured, limit=allowed)
     only = f"Only {{measured}} is left in the main{where} at the demand flow"
     if left < 0:  # the curve carried on beyond its zero is no pressure that anybody could read

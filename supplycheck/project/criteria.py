@@ -343,7 +343,7 @@ class CriteriaReader:
             return self._rule("shape factor").value
         self.notes.add(
             "criteria: shape of the design area",
-            "as near to a square as the heads allow",
+            "√A along the lines, or whole lines and pairs of lines; the most demanding of all tried",
             "assumed",
             "from memory of EN 12845 13.4.2, not verified",
         )

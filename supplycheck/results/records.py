@@ -332,7 +332,8 @@ class ScenarioRow:
     same order (``None``: not known); ``lowest_ratio`` and ``over_discharge`` compare the two, the latter
     only where no head is dry. ``dry`` are the open heads that give nothing, ``beyond`` the flows outside
     the curve of a device, ``besides`` the nodes at which both the scenario and the node table draw: node,
-    flow of the one, flow of the other.
+    flow of the one, flow of the other; ``shares`` what each of several supplies gives, negative where water
+    runs into it.
     """
 
     name: str
@@ -352,6 +353,7 @@ class ScenarioRow:
     dry: tuple[str, ...] = ()
     beyond: tuple[Beyond, ...] = ()
     besides: tuple[tuple[str, float, float], ...] = ()
+    shares: tuple[tuple[str, float], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

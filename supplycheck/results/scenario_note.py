@@ -18,11 +18,22 @@ def scenario_note(row: ScenarioRow, units: UnitSet) -> str:
     parts += [_dry(row.dry)] if row.dry else []
     parts += [_beyond(row, units)] if row.beyond else []
     parts += [row.note] if row.note else []
+    parts += [_shared(row.shares, units)] if row.shares and row.total_flow else []
     parts += [
         f"{units.text(flow, 'flow')} at {node} besides the {units.text(own, 'flow')} of the node table"
         for node, flow, own in row.besides
     ]
     return "; ".join(parts)
+
+
+def _shared(shares: Sequence[tuple[str, float]], units: UnitSet) -> str:
+    """Return what each supply gives; one that gives nothing says so, one that is fed too."""
+    return ", ".join(
+        f"{units.text(abs(flow), 'flow')} {'from' if flow > 0.0 else 'run into'} {tag}"
+        if flow
+        else f"nothing from {tag}"
+        for tag, flow in shares
+    )
 
 
 def _dry(tags: Sequence[str]) -> str:

@@ -66,22 +66,22 @@ def demand_step(parts: Mapping[str, float]) -> Step:
     )
 
 
-def scaled_step(at: str, demand: float, total: float, flow: float) -> Step:
+def scaled_step(at: str, demand: float, given: Mapping[str, float], flow: float) -> Step:
     """Return how the flow at the demand pressure was found: every draw scaled alike.
 
-    ``total`` [m³/s] is all that is drawn at the demand, ``flow`` [m³/s] what is drawn where ``demand`` [Pa] is
-    left at node ``at``.
+    ``given`` [m³/s] is what each source gives at the demand, ``flow`` [m³/s] what all give where ``demand``
+    [Pa] is left at node ``at``.
     """
-    values = (("total", total, "flow"), ("share", flow / total, "percent"))
-    note = f"all outflows and hose scaled alike until the pressure at {at} is the demand pressure"
-    text = "{total} × {share}, where {demand} is left"
-    return Step(
-        "Flow at the demand pressure",
-        Words(text, (*values, ("demand", demand, "pressure"))),
-        flow,
-        "flow",
-        f"total of all supplies as they are; {note}",
+    total = math.fsum(given.values())
+    values = (
+        ("total", total, "flow"),
+        ("share", flow / total, "percent"),
+        ("demand", demand, "pressure"),
     )
+    note = f"all outflows and hose scaled alike until the pressure at {at} is the demand pressure"
+    note += "; the total of all supplies" if len(given) > 1 else ""
+    words = Words("{total} × {share}, where {demand} is left", values)
+    return Step("Flow at the demand pressure", words, flow, "flow", note)
 
 
 def pitot_steps(test: FlowTest, units: str) -> tuple[Step, ...]:

@@ -19,6 +19,7 @@ from supplycheck.network.records import Solution
 from supplycheck.supply.narration import (
     arrival_steps,
     behind_valve_steps,
+    scaled_step,
     shown_step,
     state_sharing_step,
     way_in_steps,
@@ -128,6 +129,8 @@ class _Finder:
             steps = arrival_steps(supply, given[start], path, self.at, demand, self.margin)
         else:
             steps = self._state_steps(states, state, available, demand)
+        if flow and sure and sum(given.values()) > 0.0:
+            steps += (scaled_step(self.at, demand, given, flow),)
         return Point(
             demand=demand,
             available=available,

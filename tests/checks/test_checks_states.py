@@ -939,6 +939,8 @@ STARTER = [
 
 SHARING = [
     Case("water running into a supply", "not applicable"),
+    Case("mains tested apart", "not applicable"),
+    Case("mains tested apart", "ask authority", two_sources(), tags=("T-1", "T-2")),
     Case("water running into a supply", "ok", two_sources()),
     Case("water running into a supply", "ask authority", fed(100 * GPM), 100 * GPM, tags=("W",)),
     Case("water running into a supply", "ask authority", two_sources(kept=False), tags=("W",)),

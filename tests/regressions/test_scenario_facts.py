@@ -12,6 +12,8 @@ from supplycheck.context import scenario_facts
 from supplycheck.errors import NotConvergedError
 from supplycheck.project import read_project
 from supplycheck.results.records import Result
+from supplycheck.results.scenario_note import scenario_note
+from supplycheck.units import US
 
 EXAMPLES = Path(__file__).parents[2] / "examples"
 
@@ -57,6 +59,15 @@ def test_the_worst_head_is_the_least_share_of_its_own_need(campus: Result) -> No
     worst = min(shares, key=lambda tag: shares[tag])
     assert found.measured is not None and found.measured.value == pytest.approx(shares[worst], rel=1e-9)
     assert found.tags == (worst,) and row.name in found.text
+
+
+def test_a_scenario_tells_what_each_supply_gives(campus: Result) -> None:
+    """All that is drawn comes from the supplies, and the note names each of them."""
+    row = campus.scenarios[0]
+    assert sum(flow for _, flow in row.shares) == pytest.approx(row.total_flow, rel=1e-9)
+    note = scenario_note(row, US)
+    assert all(f"{US.text(abs(flow), 'flow')} " in note and tag in note for tag, flow in row.shares if flow)
+    assert {tag for tag, _ in row.shares} == {test.node for test in campus.project.supply.tests}
 
 
 def test_the_question_tells_how_short_the_worst_head_is() -> None:

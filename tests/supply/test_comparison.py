@@ -154,7 +154,10 @@ def test_margin_before_and_after_the_rule_in_words_and_numbers() -> None:
     assert "sprinklers 260.0 gpm + outside hose 250.0 gpm" in texts
     assert "10.0% × static 82.0 psi" in texts
     assert comparison.supply_steps[0].value == pytest.approx(comparison.demand_flow)
-    assert comparison.supply_steps[-1].value == pytest.approx(comparison.available_pressure)
+    assert comparison.supply_steps[-2].value == pytest.approx(comparison.available_pressure)
+    scaled = comparison.supply_steps[-1]
+    assert scaled.step == "Flow at the demand pressure" and scaled.value == comparison.available_flow
+    assert "scaled alike" in scaled.note
     assert not [text for text in texts if "{" in text]
     assert comparison.margin_steps[0].value == comparison.margin
     assert comparison.margin_steps[-1].value == comparison.after_rule
