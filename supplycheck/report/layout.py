@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from itertools import zip_longest
+from itertools import takewhile, zip_longest
 from typing import Final
 
 from supplycheck.report.document import (
@@ -65,6 +65,8 @@ def _section(sheets: Sheets, section: Section, number: int) -> None:
     for place, block in enumerate(section.blocks):
         if isinstance(block, Heading):
             sheets.need(_opening_height(sheets, section.blocks[place:]))
+        if isinstance(block, BlankLines) and not isinstance(section.blocks[place - 1], BlankLines):
+            sheets.need(_blanks_height(section.blocks[place:]))
         _block(sheets, block)
 
 
@@ -262,8 +264,18 @@ def _tiles(sheets: Sheets, block: Verdict, colour: str) -> None:
     sheets.y -= 10
 
 
+def _blanks_height(blocks: Sequence[Block]) -> float:
+    """Return the room of the blank lines that ``blocks`` begin with; all who sign do so on one page."""
+    signed = takewhile(lambda block: isinstance(block, BlankLines), blocks)
+    return sum(_blank_height(block) for block in signed if isinstance(block, BlankLines))
+
+
+def _blank_height(block: BlankLines) -> float:
+    return 9.4 * 1.38 + 24 * len(block.labels) + 22 * block.remarks + 14
+
+
 def _blank_lines(sheets: Sheets, block: BlankLines) -> None:
-    sheets.need(40 + 24 * (len(block.labels) + block.remarks))
+    sheets.need(_blank_height(block))
     sheets.text(block.title, 9.4, bold=True, colour=PETROL)
     right = sheets.left + sheets.room
     for label in block.labels:

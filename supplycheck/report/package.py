@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import errno
 import tempfile
 from collections.abc import Mapping
 from pathlib import Path
@@ -39,6 +40,9 @@ def write_files(folder: Path, files: Mapping[str, bytes]) -> None:
     right leaves the old files as they were. Raises :class:`OSError`.
     """
     folder.mkdir(parents=True, exist_ok=True)
+    for name in files:
+        if (folder / name).is_dir():
+            raise IsADirectoryError(errno.EISDIR, f"{name} is a folder there; move it or choose another --out")
     with tempfile.TemporaryDirectory(dir=folder, prefix=".unfinished-") as held:
         for name, content in files.items():
             (Path(held) / name).write_bytes(content)

@@ -129,6 +129,13 @@ def test_what_scrolls_can_be_reached_by_keyboard(page: str) -> None:
     assert all(attrs["tabindex"] == "0" and attrs["aria-label"] for attrs in regions)
 
 
+def test_figures_shrink_to_the_width_of_a_small_screen(page: str) -> None:
+    """The bars of the first page stand in view: no rule gives a figure a width of its own."""
+    rules = re.findall(r"svg \{([^}]*)\}", page)
+    assert "max-width: 100%" in rules[0]
+    assert not any("max-width: none" in rule or re.search(r"(?<!-)width: \d", rule) for rule in rules)
+
+
 def test_every_figure_tells_what_it_shows(page: str) -> None:
     """WCAG 1.1.1: a text alternative, and the words of the figure where they are few."""
     figures = read(page).of("svg")

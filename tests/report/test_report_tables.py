@@ -5,6 +5,7 @@ from __future__ import annotations
 import pytest
 
 from supplycheck.report.document import (
+    BlankLines,
     Block,
     Column,
     Document,
@@ -104,14 +105,22 @@ def test_the_title_of_a_section_is_never_parted_from_its_first_rows() -> None:
             assert ("Title of it" in _texts(page)) == ("own 2" in _texts(page))
 
 
-def test_no_row_goes_over_to_a_page_alone() -> None:
+def test_no_row_or_two_go_over_to_a_page_alone() -> None:
     for count in range(8, 150):
         pages = [
             [text for text in _texts(page) if text.startswith("row ")]
             for page in _pages(Section("The answer", (_rows(count),)))
         ]
-        assert all(len(rows) > 1 for rows in pages)
+        assert all(len(rows) >= 3 for rows in pages)
         assert [row for rows in pages for row in rows] == [f"row {place}" for place in range(count)]
+
+
+def test_those_who_sign_do_so_on_one_page() -> None:
+    first = BlankLines("For the designer", ("Name", "Date"), remarks=2)
+    second = BlankLines("For the authority", ("Name", "Date"), remarks=2)
+    for used in range(8, 60):
+        pages = [_texts(page) for page in _pages(Section("The answer", (_rows(used), first, second)))]
+        assert any({first.title, second.title} <= set(page) for page in pages)
 
 
 def test_a_table_without_rows_is_one_line_without_a_header() -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from types import MappingProxyType
 from typing import Final
@@ -88,9 +89,10 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
             )
         )
     chosen = [("governing", area.governing), ("runner-up", area.runner_up)]
-    rows = tuple(_row(word, one, show) for word, one in chosen if one is not None)
+    decimals = told_apart([one.required_pressure for _, one in chosen if one is not None], show)
+    rows = tuple(_row(word, one, show, decimals) for word, one in chosen if one is not None)
     if area.most_favourable is not None:
-        rows = (*rows, _favourable_row(area.most_favourable, area.placements, show))
+        rows = (*rows, _favourable_row(area.most_favourable, area.placements, show, decimals))
     note = "How they were found: basis of design." if area.mode == "search" else area.statement
     if len(area.placements) > len(chosen):
         note += f" The others stand under “{ALL_PLACEMENTS}”."
@@ -135,13 +137,13 @@ def _columns(first: str, show: Show) -> tuple[Column, ...]:
     )
 
 
-def _favourable_row(best: Favourable, tried: tuple[Placement, ...], show: Show) -> Row:
+def _favourable_row(best: Favourable, tried: tuple[Placement, ...], show: Show, decimals: int) -> Row:
     """Return the placement as it was tried, and what flows there with the supply as it is."""
     same = next((one for one in tried if set(one.heads) == set(best.heads)), None)
     flow = show.n(best.flow, "flow")
     note = f"{flow} {show.s('flow')} with the actual supply"
     if same is not None:
-        return replace(_row("most favourable", same, show), note=note)
+        return replace(_row("most favourable", same, show, decimals), note=note)
     return Row(
         (
             "most favourable",
@@ -157,14 +159,22 @@ def _favourable_row(best: Favourable, tried: tuple[Placement, ...], show: Show) 
     )
 
 
-def _row(word: str, one: Placement, show: Show) -> Row:
+def told_apart(pressures: Sequence[float], show: Show) -> int:
+    """Return the decimals of pressures: one more where two [Pa] that differ would be printed alike."""
+    usual = show.units.unit("pressure").decimals
+    alike = len({show.n(one, "pressure") for one in pressures}) < len(pressures)
+    finer = {show.n(one, "pressure", usual + 1) for one in pressures}
+    return usual + 1 if alike and len(finer) > 1 else usual
+
+
+def _row(word: str, one: Placement, show: Show, decimals: int | None = None) -> Row:
     return Row(
         (
             word,
             one.label,
-            show.n(one.required_pressure, "pressure"),
+            show.n(one.required_pressure, "pressure", decimals),
             show.n(one.flow, "flow"),
-            show.n(one.margin, "pressure"),
+            show.n(one.margin, "pressure", decimals),
             show.n(one.area, "area"),
             str(len(one.heads)),
             tags_text(one.heads, 40),
