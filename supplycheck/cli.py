@@ -4,6 +4,10 @@ from __future__ import annotations
 
 import gc
 import importlib
+import io
+import os
+import sys
+from pathlib import Path
 
 import click
 
@@ -31,6 +35,10 @@ def _where(error: Exception) -> str:
     return f"{type(error).__name__}: {error} (in {last.name}, {last.filename}:{last.lineno})"
 
 
+STOPPED = 130
+"""Exit code of a run that was stopped from the keyboard, as shells count it (128 + SIGINT)."""
+
+
 class _Verbs(click.Group):
     """A group that imports a verb's module only when the verb is used."""
 
@@ -50,8 +58,11 @@ class _Verbs(click.Group):
         """Run the verb; a fault of our own ends in a plain message and code 4, never in code 1."""
         try:
             return super().invoke(ctx)
-        except (click.exceptions.Exit, click.Abort, click.ClickException):
+        except (click.exceptions.Exit, click.Abort, click.ClickException, BrokenPipeError):
             raise
+        except KeyboardInterrupt:
+            click.echo("Stopped before the end: there is no answer.", err=True)
+            ctx.exit(STOPPED)
         except Exception as error:  # noqa: BLE001 - code 1 of a crash would read as "not adequate"
             click.echo(_OWN_FAULT.format(what=_where(error)), err=True)
             ctx.exit(4)
@@ -81,7 +92,18 @@ def main() -> None:
                 2  wrong usage, or files that cannot be written
                 3  the project or the readings have faults; all of them are listed
                 4  no result: the calculation did not converge
+              130  stopped from the keyboard
     """
+
+
+def _open_streams() -> None:
+    """Let each output stream take every text: what its encoding lacks is escaped, a closed one swallows."""
+    for name in ("stdout", "stderr"):
+        stream = getattr(sys, name)
+        if stream is None:
+            setattr(sys, name, Path(os.devnull).open("w", encoding="utf-8"))  # noqa: SIM115
+        elif isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="backslashreplace")
 
 
 def run() -> None:
@@ -91,6 +113,7 @@ def run() -> None:
     fifth of the time of a check.
     """
     gc.set_threshold(1_000_000, 50, 50)
+    _open_streams()
     try:
         main()
     finally:

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
+from types import MappingProxyType
 from typing import Final
 
 import numpy as np
@@ -35,18 +36,22 @@ def scenario_rows(
     """
     reader = _Reader(project, network, case, sources, Draws.of(project))
     name = DESIGN_AREA if case.heads else f"{case.label}, actual supply"
-    first = reader.row(_Named(name, case.heads), operating)
+    first = reader.row(_Named(name, case.heads, drawn=reader.draws.load(case).fixed_flows), operating)
     return (first, *(reader.solved(scenario) for scenario in project.scenarios))
 
 
 @dataclass(frozen=True, slots=True)
 class _Named:
-    """What one row is about: its name, its open heads, what is said of it beforehand."""
+    """What one row is about: its name, its open heads, what is said of it beforehand.
+
+    ``drawn`` [m³/s] is drawn at nodes besides what their heads give.
+    """
 
     name: str
     heads: tuple[str, ...]
     note: str = ""
     besides: tuple[tuple[str, float, float], ...] = ()
+    drawn: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -68,7 +73,8 @@ class _Reader:
             told = str(error)
             told += "" if error.remedy in told else f"; {error.remedy}"
             return _empty(scenario.name, len(load.open_outlets), f"no solution: {told}")
-        named = _Named(scenario.name, load.open_outlets, _what(scenario), self._besides(scenario))
+        besides = self._besides(scenario)
+        named = _Named(scenario.name, load.open_outlets, _what(scenario), besides, load.fixed_flows)
         return self.row(named, solution)
 
     def _besides(self, scenario: Scenario) -> tuple[tuple[str, float, float], ...]:
@@ -81,7 +87,8 @@ class _Reader:
     def row(self, named: _Named, solution: Solution) -> ScenarioRow:
         index = {tag: row for row, tag in enumerate(solution.node_tags)}
         rows = [index[tag] for tag in named.heads]
-        flows = tuple(map(_flow, solution.outflow[rows].tolist()))
+        drawn = [named.drawn.get(tag, 0.0) for tag in named.heads]
+        flows = tuple(map(_flow, (solution.outflow[rows] - drawn).tolist()))
         needs = self._needs(named.heads)
         judged = [(flow, need) for flow, need in zip(flows, needs, strict=True) if need]
         need = sum(need for _, need in judged)

@@ -9,12 +9,13 @@ from __future__ import annotations
 import datetime as dt
 import math
 from dataclasses import dataclass
+from fractions import Fraction
 from typing import Final
 
 from supplycheck.findings import Place
 from supplycheck.project.faults import FaultList
 from supplycheck.project.quantity import Written
-from supplycheck.units import METRIC, US, UnitSet, units_of
+from supplycheck.units import INCH, METRIC, US, UnitSet, units_of
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,6 +56,9 @@ LARGEST_OUTLET: Final = Limit("size", 6, 160)
 """Pumper outlets are 4 to 6 in (from memory)."""
 ROUGHEST: Final = Limit("roughness", 0.01, 3, 2)
 """Riveted steel and rough concrete end there in tables of roughness (from memory)."""
+LEAST_BORE: Final = 0.5
+GREATEST_BORE: Final = 1.6
+"""Bore as a part of the nominal size; tables run from about 0.7 (thick plastic) to 1.3 (3/8 in steel)."""
 ROUGHEST_OF_BORE: Final = 1 / 20
 """Greatest relative roughness of the chart of friction factors (Moody 1944, from memory)."""
 UNLIKE: Final = 5.0
@@ -151,6 +155,25 @@ def check_relative_roughness(
             allowed=f"at most {units.text(ROUGHEST_OF_BORE * bore, 'size')}, a twentieth of the bore of "
             f"{units.text(bore, 'size')}",
             remedy=_ROUGHNESS_REMEDY,
+        )
+
+
+def check_bore(bore: float, nominal: str, units: UnitSet, place: Place, faults: FaultList) -> None:
+    """Note a ``bore`` [m] that no pipe of the size ``nominal`` [in] can have; other sizes are let pass."""
+    try:
+        size = float(sum(Fraction(part) for part in nominal.split())) * INCH
+    except (ValueError, ZeroDivisionError):
+        return
+    if size <= 0 or math.isnan(bore):
+        return
+    low, high = LEAST_BORE * size, GREATEST_BORE * size
+    if not low <= bore <= high:
+        faults.add(
+            place,
+            f"is no bore of a pipe of size {nominal} in",
+            found=units.text(bore, "size"),
+            allowed=f"{units.text(low, 'size')} to {units.text(high, 'size')}",
+            remedy='check the decimal point and the unit, such as "4.026 in" or "102.3 mm"',
         )
 
 

@@ -189,10 +189,6 @@ def _check_area(
             allowed='"search", or the tags of at least one sprinkler',
         )
     tags.heads(area, where)
-    for tag in sorted({tag for tag in area if area.count(tag) > 1}):
-        faults.add(
-            sections.place(where), "a sprinkler stands twice", found=quoted(tag), allowed="every tag once"
-        )
 
 
 def _draft(

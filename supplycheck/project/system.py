@@ -18,7 +18,7 @@ from supplycheck.project.geometry import infer
 from supplycheck.project.graph import islands, tree_from
 from supplycheck.project.layout_parts import units_in
 from supplycheck.project.parts import DeviceOrLength, KindOfPipe
-from supplycheck.project.plausible import check_relative_roughness
+from supplycheck.project.plausible import check_bore, check_relative_roughness
 from supplycheck.project.sections import Sections
 from supplycheck.units import UNIT_SETS, UnitSet
 
@@ -309,6 +309,19 @@ def _check_roughness(pipes: Sequence[Pipe], finisher: Finisher, faults: FaultLis
             check_relative_roughness(table.roughness, pipe.bore, units, place, faults)
 
 
+def _check_bores(
+    drafts: Sequence[DraftPipe], sizes: Sequence[tuple[float, str]], finisher: Finisher, faults: FaultList
+) -> None:
+    """Note bores far from their nominal sizes, each pair once: in the table, or of the kind of pipe."""
+    told: set[tuple[str, float, str]] = set()
+    for draft, (bore, nominal) in zip(drafts, sizes, strict=True):
+        if (draft.kind, bore, nominal) not in told:
+            told.add((draft.kind, bore, nominal))
+            units = UNIT_SETS[finisher.sections.units]
+            place = _cell(draft, "bore" if draft.bore is not None else "size")
+            check_bore(bore, nominal, units, place, faults)
+
+
 def _note_idle_devices(drafts: Sequence[DraftPipe], finisher: Finisher, faults: FaultList) -> None:
     """Note devices that stand in no pipe: their loss would be forgotten."""
     used = {tag for draft in drafts for tag in draft.devices}
@@ -352,6 +365,7 @@ def finish(
         for number, (pipe, (bore, nominal)) in enumerate(zip(draft.pipes, sizes, strict=True))
     ]
     _check_roughness(pipes, finisher, faults)
+    _check_bores(draft.pipes, sizes, finisher, faults)
     if draft.complete:
         _note_idle_devices(draft.pipes, finisher, faults)
     if not faults:

@@ -38,6 +38,7 @@ class TagCheck:
 
     def heads(self, tags: Sequence[str], where: str) -> None:
         """Note the nodes that do not exist and those that are no sprinklers, all of them at once."""
+        self._twice(tags, where, "sprinkler")
         if not self.known:
             return
         self._all_missing([tag for tag in tags if tag not in self.nodes], where, "node", self.nodes)
@@ -57,8 +58,19 @@ class TagCheck:
 
     def pipes_named(self, tags: Sequence[str], where: str) -> None:
         """Note the pipes that do not exist, all of them at once."""
+        self._twice(tags, where, "pipe")
         if self.known:
             self._all_missing([tag for tag in tags if tag not in self.pipes], where, "pipe", self.pipes)
+
+    def _twice(self, tags: Sequence[str], where: str, what: str) -> None:
+        for tag in sorted({tag for tag in tags if tags.count(tag) > 1}):
+            self.faults.add(
+                self.sections.place(where),
+                f"a {what} stands twice",
+                found=quoted(tag),
+                allowed="every tag once",
+                remedy="take the second one out",
+            )
 
     def _all_missing(self, tags: list[str], where: str, what: str, known: Collection[str]) -> None:
         if len(tags) == 1:

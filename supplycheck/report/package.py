@@ -42,7 +42,9 @@ def write_files(folder: Path, files: Mapping[str, bytes]) -> None:
     folder.mkdir(parents=True, exist_ok=True)
     for name in files:
         if (folder / name).is_dir():
-            raise IsADirectoryError(errno.EISDIR, f"{name} is a folder there; move it or choose another --out")
+            raise IsADirectoryError(
+                errno.EISDIR, f"{name} is a folder there; move it or choose another --out"
+            )
     with tempfile.TemporaryDirectory(dir=folder, prefix=".unfinished-") as held:
         for name, content in files.items():
             (Path(held) / name).write_bytes(content)

@@ -287,3 +287,15 @@ def test_short_heads_outside_the_area_are_asked_about(tmp_path: Path) -> None:
     found = finding(result, "scenarios")
     assert found.state == "ask authority" and found.tags == ("t1",)
     assert found.measured is not None and 0.0 < found.measured.value < 1.0
+
+
+def test_what_is_drawn_beside_a_head_is_not_its_discharge(tmp_path: Path) -> None:
+    """60 gpm drawn where h2 hangs: the head itself gives K√P of the pressure there and no more."""
+    text = NO_HOSE + scenario("drawn at a head", "flows = { h2 = 60 }")
+    result = solved(tmp_path, text, NODES, PIPES)
+    told_of = row(result, "drawn at a head")
+    for _, flow, pressure in told_of.head_flows:
+        assert flow / GPM == pytest.approx(5.6 * (pressure / PSI) ** 0.5, rel=1e-6)
+    heads = sum(flow for _, flow, _ in told_of.head_flows)
+    assert told_of.sprinkler_flow == pytest.approx(heads)
+    assert told_of.total_flow == pytest.approx(heads + 60 * GPM, rel=1e-6)
