@@ -106,7 +106,7 @@ def test_an_idle_tank_elsewhere_does_not_lift_the_main(tmp_path: Path) -> None:
     pipes = PIPES.replace("devices\n", "devices,valve\n").replace("1/4,\n", "1/4,,\n")
     pipes = pipes.replace("booster\n", "booster,\n").replace("30,p,2,\n", "30,p,2,,\n")
     pipes += "drop,R,Q,40,p,2,,check\n"
-    test = TEST.replace("static", "node = \"S\"\nstatic")
+    test = TEST.replace("static", 'node = "S"\nstatic')
     supply = f'[supply]\ncompare_at = "S"\n{test}{tank}[supply.margin]\nrule = "none"\n'
     result = check_project(write(tmp_path, ONE_HEAD + BOOSTER + supply, nodes, pipes))
     assert result.margin.pressure / PSI == pytest.approx(left_before_the_pump(), abs=0.01)
