@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import replace
 
 from supplycheck.report.document import Column, Row, Table
@@ -56,6 +56,14 @@ class Show:
     def small(self, value: float, kind: str) -> str:
         """Return a residual of the calculation with its unit."""
         return residual_text(value, kind, self.units)
+
+
+def told_apart(pressures: Sequence[float], units: UnitSet) -> int:
+    """Return the decimals of pressures: one more where two [Pa] that differ would be printed alike."""
+    usual = units.unit("pressure").decimals
+    alike = len({units.number(one, "pressure") for one in pressures}) < len(pressures)
+    finer = {units.number(one, "pressure", usual + 1) for one in pressures}
+    return usual + 1 if alike and len(finer) > 1 else usual
 
 
 def column(title: str, unit: str = "") -> Column:

@@ -169,7 +169,8 @@ def test_placement_map_marks_the_governing_and_the_runner_up() -> None:
     assert {"governing", "runner-up"} <= set(words)  # in the legend
     rings = [item for item in drawing.items if isinstance(item, Dot) and item.fill is None]
     assert len(rings) == 4
-    assert {item.branch_line for item in result.nodes if item.branch_line} & set(words)
+    lines = {item.branch_line for item in result.nodes if item.branch_line}
+    assert lines <= set(words)
     dots = [item for item in drawing.items if isinstance(item, Dot) and item.fill]
     assert len(dots) == len(result.design_area.placements) + 5
 

@@ -10,8 +10,7 @@ from supplycheck.report.build import build_document
 from supplycheck.report.document import Document, Paragraph, Table
 from supplycheck.report.drawing import Box, Label, Line
 from supplycheck.report.figures.bars import pressure_bars
-from supplycheck.report.sections.layout_plan import told_apart
-from supplycheck.report.show import Show
+from supplycheck.report.show import Show, told_apart
 from supplycheck.results.records import Result
 from supplycheck.units import PSI, US
 
@@ -86,10 +85,9 @@ def test_the_most_favourable_area_shows_what_its_placement_asked() -> None:
 
 def test_pressures_that_differ_are_not_printed_alike() -> None:
     """51.04 and 51.01 psi are both 51.0 to one decimal; two that are the same stay as they are."""
-    show = Show(US)
-    assert told_apart([51.04 * PSI, 51.01 * PSI], show) == 2
-    assert told_apart([51.0 * PSI, 51.0 * PSI], show) == 1
-    assert told_apart([51.1 * PSI, 51.0 * PSI], show) == 1
+    assert told_apart([51.04 * PSI, 51.01 * PSI], US) == 2
+    assert told_apart([51.0 * PSI, 51.0 * PSI], US) == 1
+    assert told_apart([51.1 * PSI, 51.0 * PSI], US) == 1
 
 
 def test_a_gain_is_hatched_and_its_number_stands_where_its_value_lies() -> None:

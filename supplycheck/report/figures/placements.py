@@ -7,10 +7,11 @@ from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
 
-from supplycheck.report.drawing import Box, Dot, Drawing, Item, Label, Line
+from supplycheck.report.drawing import Anchor, Box, Dot, Drawing, Item, Label, Line
 from supplycheck.report.figures.axes import Taken
 from supplycheck.report.figures.outline import Window, clipped
 from supplycheck.report.figures.plan import Scale, places_of
+from supplycheck.report.show import told_apart
 from supplycheck.report.theme import CLAY, INK, PAPER, PETROL, RULE, SLATE, text_width
 from supplycheck.results.records import Placement, Result
 from supplycheck.units import UnitSet
@@ -21,6 +22,7 @@ MOST_STRETCH: Final = 2.5
 
 _AROUND: Final = 4.0  # m
 _SIZE: Final = 6.6
+_LINE: Final = 5.6
 _CLEAR: Final = 5.0
 """Room between a ring and the text that names it [points]."""
 _SHADES: Final = ("#e3eef0", "#b5d3d9", "#7fb2bd", "#3f8797", "#0b4a5a")
@@ -100,6 +102,8 @@ def _rings(result: Result, scale: Scale, units: UnitSet, radius: float) -> tuple
     """Return the rings round the governing placement and the runner-up, one in the other at one place."""
     area = result.design_area
     chosen = [(area.governing, "governing", radius + 3.2), (area.runner_up, "runner-up", radius + 2.2)]
+    both = [one.required_pressure for one, _, _ in chosen if one is not None]
+    decimals = told_apart(both, units)
     rings: list[Item] = []
     named: list[_Named] = []
     for spot, word, reach in chosen:
@@ -111,7 +115,7 @@ def _rings(result: Result, scale: Scale, units: UnitSet, radius: float) -> tuple
             reach = max(over) + 2.4
         governs = word == "governing"
         rings.append(Dot(x, y, reach, None, CLAY if governs else INK, 1.8 if governs else 1.0))
-        text = f"{word} {units.text(spot.required_pressure, 'pressure')}"
+        text = f"{word} {units.text(spot.required_pressure, 'pressure', decimals)}"
         named.append(_Named(x, y, max([reach, *over]), text))
     return rings, named
 
@@ -166,21 +170,36 @@ def _spots(
 
 
 def _line_names(result: Result, scale: Scale, taken: Taken) -> list[Item]:
-    """Return the tag of each branch line at one of its ends, where there is room."""
+    """Return the tag of each branch line beyond one of its ends, where there is room."""
     nodes = places_of(result)
     ends: dict[str, list[tuple[float, float]]] = {}
     for node in result.nodes:
         at = nodes.get(node.tag)
         if node.branch_line and at is not None and scale.window.holds(*at):
             ends.setdefault(node.branch_line, []).append(at)
-    items: list[Item] = []
-    for tag, places in ends.items():
-        for at in (min(places), max(places)):
-            found = taken.place(*scale.at(*at), tag, 5.6, gap=3.0, reach="beside")
-            if found:
-                items.append(Label(found[0], found[1], tag, 5.6, found[2], colour=PETROL))
-                break
-    return items
+    found = (_line_name(tag, [scale.at(*at) for at in places], taken) for tag, places in ends.items())
+    return [label for label in found if label is not None]
+
+
+def _line_name(tag: str, places: list[tuple[float, float]], taken: Taken) -> Label | None:
+    """Return ``tag`` just beyond an end of the line through ``places``, the outer end first."""
+    wide, middle = text_width(tag, _LINE), (taken.left + taken.right) / 2
+    (x0, y0), (x1, y1) = min(places), max(places)
+    tries: list[tuple[float, float, Anchor]] = [
+        (x0 - _LINE, y0 - 0.36 * _LINE, "end"),
+        (x1 + _LINE, y1 - 0.36 * _LINE, "start"),
+    ]
+    if abs(y1 - y0) > x1 - x0:  # the line runs up and down
+        tries = [(x1, max(y0, y1) + 4, "middle"), (x0, min(y0, y1) - 4 - 0.75 * _LINE, "middle")]
+    else:
+        tries.sort(key=lambda one: -abs(one[0] - middle))
+    for x, y, anchor in tries:
+        left = x - {"start": 0.0, "middle": wide / 2, "end": wide}[anchor]
+        box = (left - 1, y - 0.22 * _LINE, left + wide + 1, y + 0.8 * _LINE)
+        if taken.is_free(box):
+            taken.take(box)
+            return Label(x, y, tag, _LINE, anchor, colour=PETROL, behind=PAPER)
+    return None
 
 
 def _key(spots: list[Placement], units: UnitSet, width: float, *, runner_up: bool) -> list[Item]:

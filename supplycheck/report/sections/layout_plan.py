@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from dataclasses import replace
 from types import MappingProxyType
 from typing import Final
@@ -12,7 +11,7 @@ from supplycheck.report.figures.key_plan import key_plan
 from supplycheck.report.figures.legends import size_legend
 from supplycheck.report.figures.placements import placement_map
 from supplycheck.report.figures.plan import PlanView, area_plan, has_plan, whole_plan
-from supplycheck.report.show import Show, column, words
+from supplycheck.report.show import Show, column, told_apart, words
 from supplycheck.results.display import tags_text
 from supplycheck.results.records import Favourable, Placement, Result
 
@@ -89,7 +88,7 @@ def _placements(result: Result, show: Show, width: float) -> list[Block]:
             )
         )
     chosen = [("governing", area.governing), ("runner-up", area.runner_up)]
-    decimals = told_apart([one.required_pressure for _, one in chosen if one is not None], show)
+    decimals = told_apart([one.required_pressure for _, one in chosen if one is not None], show.units)
     rows = tuple(_row(word, one, show, decimals) for word, one in chosen if one is not None)
     if area.most_favourable is not None:
         rows = (*rows, _favourable_row(area.most_favourable, area.placements, show, decimals))
@@ -157,14 +156,6 @@ def _favourable_row(best: Favourable, tried: tuple[Placement, ...], show: Show, 
         ),
         note=note,
     )
-
-
-def told_apart(pressures: Sequence[float], show: Show) -> int:
-    """Return the decimals of pressures: one more where two [Pa] that differ would be printed alike."""
-    usual = show.units.unit("pressure").decimals
-    alike = len({show.n(one, "pressure") for one in pressures}) < len(pressures)
-    finer = {show.n(one, "pressure", usual + 1) for one in pressures}
-    return usual + 1 if alike and len(finer) > 1 else usual
 
 
 def _row(word: str, one: Placement, show: Show, decimals: int | None = None) -> Row:
