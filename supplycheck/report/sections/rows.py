@@ -104,7 +104,11 @@ def pipe_information(result: Result) -> Section:
     ]
     if second and result.project.second_law is not None:
         blocks.insert(
-            1, Paragraph(f"The second law, beside it: {result.project.second_law.name}.", "small")
+            1,
+            Paragraph(
+                f"The second law, beside it at the flows of the first: {result.project.second_law.name}.",
+                "small",
+            ),
         )
     if brief:
         blocks.append(_still_pipes(brief, show))
