@@ -136,9 +136,8 @@ def _friction(
         flow=np.ones(len(sorts)), bore=sort_bore, density=fluid.density, viscosity=fluid.viscosity
     )
     relative = sort_roughness / sort_bore
-    friction_group(
-        reynolds=np.zeros(len(sorts)), relative_roughness=relative
-    )  # refuses what is out of range
+    # refuses what is no roughness
+    friction_group(reynolds=np.zeros(len(sorts)), relative_roughness=relative)
     terms = Terms(
         link=np.arange(len(pipes)),
         sort=sort.reshape(-1),

@@ -11,7 +11,7 @@ from supplycheck.network.arrays import Network
 from supplycheck.network.assemble import Assembled, Case, Feed
 from supplycheck.network.core import residuals
 from supplycheck.network.find import NoStateError
-from supplycheck.network.graphs import parts_of, spread_from
+from supplycheck.network.graphs import one_way_graph, parts_of, spread_from
 from supplycheck.network.links import Links
 from supplycheck.network.records import FloatArray, IntArray
 from supplycheck.network.reduce import Reduced
@@ -56,15 +56,13 @@ def _error(cause: str, problem: str, tags: Sequence[str], remedy: str) -> NotCon
 
 def _check_one_way(network: Network, links: Links, asked: IntArray, sources: IntArray) -> None:
     """Check that every node asked about can be reached from a supply without passing a valve backwards."""
-    from scipy.sparse import csr_array
     from scipy.sparse.csgraph import breadth_first_order
 
     nodes = len(network.node_tags)
     both = ~links.one_way
     rows = np.concatenate([links.start, links.end[both], np.full(len(sources), nodes)])
     cols = np.concatenate([links.end, links.start[both], sources])
-    graph = csr_array((np.ones(len(rows)), (rows, cols)), (nodes + 1, nodes + 1))
-    reached = breadth_first_order(graph, nodes, return_predecessors=False)
+    reached = breadth_first_order(one_way_graph(rows, cols, nodes + 1), nodes, return_predecessors=False)
     lost = asked[~np.isin(asked, reached)]
     if len(lost):
         valves = [network.pipe_tags[row] for row in np.flatnonzero(network.links.one_way)]
