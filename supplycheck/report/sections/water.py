@@ -132,10 +132,7 @@ def _law_row(
 
 def _caption(result: Result) -> str:
     """Return what the reader has to know about the graph, of several sources also how they are marked."""
-    text = (
-        "The flow axis is linear in flow to the power 1.85: the supply of a test is a straight line on "
-        "this scale where nothing is lost on the way to the point of comparison."
-    )
+    text = "The flow axis is linear in flow^1.85: a test of one point, as measured, is straight on it."
     if any(curve.extrapolated_from is not None for curve in result.curves):
         text = f"Dashed: beyond the greatest flow that was tested. {text}"
     if sum(point.style == "available" for point in result.points) > 1:
